@@ -1,0 +1,69 @@
+//! Loads as typed.
+
+use crate::signal::Signal;
+
+/// A load as typed.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Load {
+    /// Its name.
+    pub name: String,
+    /// The body it loads.
+    pub body: String,
+    /// The other body for friction and viscous loads; `None` is ground.
+    pub against: Option<String>,
+    /// Its law.
+    pub law: LoadLaw,
+    /// Factor on what the law delivers; absent is 1.
+    pub scale: Option<Signal>,
+    /// Mirrored.
+    pub reversed: bool,
+    /// Where its figures come from.
+    pub source: Option<String>,
+}
+
+/// How a load's torque comes about.
+#[derive(Clone, Debug, PartialEq)]
+pub enum LoadLaw {
+    /// `torque*|w/speed|^exponent` against the motion; torque worked out from power where that is given.
+    PowerLaw {
+        /// N*m at `speed`.
+        torque: f64,
+        /// rad/s.
+        speed: f64,
+        /// Above zero.
+        exponent: f64,
+    },
+    /// Dry friction that sticks and slips.
+    Friction {
+        /// N*m while sliding.
+        sliding: f64,
+        /// N*m that breaks it away, never below `sliding`.
+        breakaway: f64,
+    },
+    /// Proportional to speed.
+    Viscous {
+        /// N*m*s/rad.
+        coefficient: f64,
+    },
+    /// External torque, positive drives forward, N*m.
+    Prescribed {
+        /// N*m.
+        torque: Signal,
+    },
+    /// Against the motion, read at |speed|.
+    Curve {
+        /// Rows of rad/s and N*m, speeds rising from 0 or above.
+        points: Vec<[f64; 2]>,
+    },
+    /// Wind or water rotor.
+    AxialRotor {
+        /// m.
+        radius: f64,
+        /// kg/m3.
+        density: f64,
+        /// m/s.
+        flow: Signal,
+        /// rad.
+        pitch: Signal,
+    },
+}

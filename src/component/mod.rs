@@ -1,0 +1,14 @@
+//! The physics: one kind of thing a file, with its shape in YAML, its checks and its law.
+
+pub mod body;
+pub mod brake;
+pub mod channel;
+pub mod gear_pair;
+pub mod law;
+pub mod load;
+pub mod magnetic_gear;
+pub mod motor;
+pub mod planetary;
+pub mod protection;
+pub mod requirement;
+pub mod shaft;
