@@ -46,6 +46,8 @@ pub struct Active {
     pub power: PowerKind,
     /// Speed of its power; `None`: the input.
     pub speed: Option<StateRow>,
+    /// Heat of an induction motor's rotor: place in the list of heats and synchronous speed, rad/s.
+    pub heat: Option<(usize, f64)>,
 }
 
 /// The function of an active term.
@@ -193,6 +195,7 @@ pub fn assemble(equations: &Equations, mode: &Mode, start: f64, end: f64, overri
             column: parts.column(&friction.row),
             power: PowerKind::Lost,
             speed: None,
+            heat: None,
         });
     }
     if parts.has_constant {
@@ -206,6 +209,7 @@ pub fn assemble(equations: &Equations, mode: &Mode, start: f64, end: f64, overri
             column: parts.column(&parts.constant_row()),
             power: PowerKind::None,
             speed: None,
+            heat: None,
         });
     }
     let linear = &parts.accelerate * &parts.force;
@@ -221,7 +225,7 @@ pub fn assemble(equations: &Equations, mode: &Mode, start: f64, end: f64, overri
             full[(state, state)] -= 1.0 / controller.lag;
         }
     }
-    let channels = channels::forms(equations, mode, &parts, &full);
+    let channels = channels::forms(equations, mode, &parts);
     let (stuck_drive, stuck_compliance) = parts.stuck_forms(equations);
     Assembly {
         start,
@@ -514,6 +518,7 @@ impl Active {
             column,
             power: term.power,
             speed: term.speed.clone(),
+            heat: term.heat,
         }
     }
 

@@ -44,6 +44,7 @@ pub fn build(model: &Model) -> Equations {
         frictions: Vec::new(),
         dampers: Vec::new(),
         controllers: Vec::new(),
+        heats: Vec::new(),
         bank: SignalBank::new(&model.scenario.signals),
         warnings: Vec::new(),
     };
@@ -94,6 +95,7 @@ fn add_magnet(equations: &mut Equations, index: usize) {
         power: PowerKind::None,
         speed: None,
         input_size: 1.0,
+            heat: None,
     });
     if let Some(fading) = magnet.fading {
         let scaled: BodyRow = row.iter().map(|(body, count)| (*body, count / fading.count)).collect();
@@ -109,6 +111,7 @@ fn add_magnet(equations: &mut Equations, index: usize) {
             power: PowerKind::Lost,
             speed: None,
             input_size: fading.peak_at,
+            heat: None,
         });
     }
     if magnet.damping > 0.0 {
@@ -144,6 +147,7 @@ fn add_cogging_and_drag(equations: &mut Equations, index: usize) {
             power: PowerKind::None,
             speed: None,
             input_size: 1.0,
+            heat: None,
         });
     }
     for (number, drag) in gear.drag.iter().enumerate() {
@@ -227,6 +231,16 @@ fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) {
         }
     };
     let Some(law) = law else { return };
+    let synchronous_speed = match &motor.law {
+        MotorLaw::RatingPlate { synchronous_speed, .. } | MotorLaw::Induction { synchronous_speed, .. } => {
+            Some(*synchronous_speed)
+        }
+        _ => None,
+    };
+    let heat = synchronous_speed.map(|speed| {
+        equations.heats.push((index, speed));
+        (equations.heats.len() - 1, speed)
+    });
     equations.terms.push(Term {
         owner: Owner::Motor(index),
         speed: matches!(law, Law::Unit).then(|| speed.clone()),
@@ -238,6 +252,7 @@ fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) {
         target: Target::Torque(direction),
         power: PowerKind::Drive,
         input_size: size,
+        heat,
     });
 }
 
@@ -267,7 +282,7 @@ fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: 
     let size = equations.model.scales.body_speed[body];
     equations.terms.push(Term {
         owner,
-        shape: Shape::Law(Law::Saturation { limit: *torque_limit }),
+        shape: Shape::Law(Law::saturation(*torque_limit)),
         input,
         offset: Some((*gain, reference)),
         parameters: [None; 2],
@@ -279,6 +294,7 @@ fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: 
         power: if torque_state.is_none() { PowerKind::Drive } else { PowerKind::None },
         speed: Some(own_speed.clone()),
         input_size: *torque_limit,
+            heat: None,
     });
     let integral = integral_state.zip(*integral_time).map(|(place, time)| {
         equations.terms.push(Term {
@@ -292,6 +308,7 @@ fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: 
             power: PowerKind::None,
             speed: None,
             input_size: size,
+            heat: None,
         });
         equations.terms.len() - 1
     });
@@ -308,6 +325,7 @@ fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: 
             power: PowerKind::Drive,
             speed: Some(own_speed),
             input_size: *torque_limit,
+            heat: None,
         });
     }
     equations.controllers.push(Controller {
@@ -388,6 +406,7 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
         power: PowerKind::Drive,
         speed: own_speed,
         input_size: size,
+            heat: None,
     });
 }
 

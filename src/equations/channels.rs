@@ -48,8 +48,8 @@ pub enum RotorChannel {
 }
 
 /// The forms of all channels in one mode.
-pub fn forms(equations: &Equations, mode: &Mode, parts: &Parts, full: &DMatrix<f64>) -> Vec<ChannelForm> {
-    let constraint = constraint_forms(equations, parts, full);
+pub fn forms(equations: &Equations, mode: &Mode, parts: &Parts) -> Vec<ChannelForm> {
+    let constraint = constraint_forms(equations, parts);
     equations
         .model
         .channels
@@ -232,7 +232,7 @@ fn power_of(equations: &Equations, owner: Owner) -> ChannelForm {
 /// ```text
 /// J w' = tau + C' mu   =>   mu = (C C')^+ C (J G u' - tau)
 /// ```
-fn constraint_forms(equations: &Equations, parts: &Parts, full: &DMatrix<f64>) -> Vec<LinearForm> {
+fn constraint_forms(equations: &Equations, parts: &Parts) -> Vec<LinearForm> {
     let model = &equations.model;
     let count = model.constraints.len();
     if count == 0 {
@@ -247,19 +247,20 @@ fn constraint_forms(equations: &Equations, parts: &Parts, full: &DMatrix<f64>) -
     }
     let solve = pseudo_inverse(&(&rows * rows.transpose())) * &rows;
     let inertia = |body: usize| model.scenario.bodies[body].inertia;
-    // Over the scaled state: inertia times acceleration minus torque, body by body.
+    // Over the scaled state: inertia times acceleration minus torque, body by body. Linear terms
+    // that stand in the matrix are left to the law values, like all other terms.
+    let own = &parts.accelerate * &parts.force;
     let mut over_state = DMatrix::zeros(bodies, equations.size);
     for body in 0..bodies {
         for state in 0..equations.size {
             let acceleration: f64 = model.reduction.speeds[body]
                 .iter()
-                .map(|&(place, share)| share * full[(place, state)] * equations.scale[place])
+                .map(|&(place, share)| share * own[(place, state)] * equations.scale[state])
                 .sum();
             let torque = parts.body_force[(body, state)] * equations.scale[state];
             over_state[(body, state)] = inertia(body) * acceleration - torque;
         }
     }
-    // Terms that the matrix already holds would count twice through `full`: take them out again below.
     let state_forms = &solve * over_state;
     let mut forms: Vec<LinearForm> = (0..count)
         .map(|line| LinearForm {

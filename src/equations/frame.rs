@@ -26,6 +26,8 @@ pub struct Counters {
 /// Values at one instant.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Frame {
+    /// The instant, s.
+    pub time: f64,
     /// Law values by place: terms, frictions (torque along their row), the constant 1.
     pub laws: Vec<f64>,
     /// Inputs of the laws by place.
@@ -108,6 +110,7 @@ impl Evaluator<'_> {
     /// Law values and holding torques.
     pub fn laws(&self, time: f64, state: &[f64], frame: &mut Frame) {
         let assembly = self.assembly;
+        frame.time = time;
         frame.laws.clear();
         frame.laws.resize(assembly.law_count, 0.0);
         frame.inputs.clear();
