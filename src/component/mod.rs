@@ -10,6 +10,7 @@ pub mod magnetic_gear;
 pub mod magnetic_law;
 pub mod motor;
 pub mod planetary;
+mod points;
 pub mod polyline;
 pub mod protection;
 pub mod requirement;
