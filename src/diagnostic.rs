@@ -15,6 +15,13 @@ pub enum Severity {
     Warning,
 }
 
+impl Severity {
+    /// True for an error.
+    pub fn is_error(self) -> bool {
+        self == Self::Error
+    }
+}
+
 impl fmt::Display for Severity {
     fn fmt(&self, formatter: &mut fmt::Formatter<'_>) -> fmt::Result {
         formatter.write_str(match self {

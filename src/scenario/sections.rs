@@ -15,7 +15,7 @@ use crate::component::requirement::Requirement;
 use crate::component::shaft::Shaft;
 use crate::quantity::{self, Dimension};
 use crate::signal::NamedSignal;
-use crate::signal::read::read_named;
+use crate::signal::read::read_named_signal;
 use crate::tree::{Fields, Node, Range, Shape};
 
 /// Rows of the series beyond this are a mistake.
@@ -249,7 +249,7 @@ fn read_signals(fields: &mut Fields<'_>) -> Vec<NamedSignal> {
             .iter()
             .map(|(name, node)| {
                 let path = fields.path_of(&format!("signals.{name}"));
-                read_named(&path, name, node, fields.faults())
+                read_named_signal(name, &path, node, fields.faults())
             })
             .collect(),
         Some(other) => {

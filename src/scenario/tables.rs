@@ -41,8 +41,8 @@ impl Tables {
                 Vec::new()
             }
         };
-        let mut fill = |path: String, signal: &mut Signal| signal.load_tables(&path, &mut load);
-        super::signals::each_mut(scenario, &mut fill);
+        let mut fill = |path: &str, signal: &mut Signal| signal.load_tables(path, &mut load);
+        super::signals::each_with_table(scenario, &mut fill);
     }
 
     fn rows(&mut self, file: &str, columns: &TableColumns) -> Result<Vec<[f64; 2]>, String> {
