@@ -7,6 +7,7 @@ pub mod gear_pair;
 pub mod law;
 pub mod load;
 pub mod magnetic_gear;
+mod magnetic_read;
 pub mod magnetic_law;
 pub mod motor;
 pub mod planetary;
