@@ -126,10 +126,10 @@ impl Plate {
 }
 
 impl MotorLaw {
-    /// The scalar law at full voltage; a prescribed torque is the unit law times its signal,
-    /// a speed loop's the limit of its command.
-    pub fn scalar(&self) -> Law {
-        match self {
+    /// The scalar law at full voltage; none for a speed loop, which has states of its own.
+    /// A prescribed torque is the unit law times its signal.
+    pub fn scalar(&self) -> Option<Law> {
+        let law = match self {
             Self::RatingPlate {
                 power,
                 speed,
@@ -155,10 +155,11 @@ impl MotorLaw {
             }
             Self::Curve { points, .. } => Law::MotorCurve(curve::MotorCurve::new(points)),
             Self::Prescribed { .. } => Law::Unit,
-            Self::SpeedLoop { torque_limit, .. } => Law::saturation(*torque_limit),
+            Self::SpeedLoop { .. } => return None,
             Self::OptimalPower { coefficient, torque_limit } => {
                 Law::OptimalPower(optimal_power::OptimalPower::new(*coefficient, *torque_limit))
             }
-        }
+        };
+        Some(law)
     }
 }

@@ -10,12 +10,12 @@ use crate::tree::{Fields, Range, Shape};
 type Form = (&'static str, &'static str, fn(&mut Fields<'_>, &mut Kind) -> Option<Signal>);
 
 const FORMS: [Form; 6] = [
-    ("step", "one value before an instant, another from then on", step),
-    ("ramp", "a straight line between two held values", ramp),
-    ("pulse", "one value between two instants, another outside", pulse),
-    ("sine", "mean + amplitude*sin(2 pi frequency t + phase)", sine),
-    ("table", "two columns of a CSV file, straight lines between its rows", table),
-    ("extreme_gust", "extreme operating gust of IEC 61400-1, 10.5 s long", extreme_gust),
+    ("step", "One value before an instant, another from then on.", step),
+    ("ramp", "A straight line between two held values.", ramp),
+    ("pulse", "One value between two instants, another outside.", pulse),
+    ("sine", "Mean + amplitude*sin(2 pi frequency t + phase).", sine),
+    ("table", "Two columns of a CSV file, straight lines between its rows.", table),
+    ("extreme_gust", "Extreme operating gust of IEC 61400-1, 10.5 s long.", extreme_gust),
 ];
 
 /// Reads the map of a form by its key.
@@ -59,8 +59,8 @@ fn time(fields: &mut Fields<'_>, key: &'static str, doc: &'static str) -> f64 {
 
 /// `start` and `end`, of which the second must be later.
 fn span(fields: &mut Fields<'_>) -> (f64, f64) {
-    let start = time(fields, "start", "when it begins");
-    let end = time(fields, "end", "when it ends, later than `start`");
+    let start = time(fields, "start", "When it begins.");
+    let end = time(fields, "end", "When it ends, later than `start`.");
     if start >= end {
         fields.fault_hint("end", "`end` must be later than `start`", "for a jump use `step`");
     }
@@ -73,41 +73,41 @@ fn sound<const N: usize>(numbers: [f64; N], signal: Signal) -> Option<Signal> {
 }
 
 fn step(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
-    let at = time(fields, "at", "when it jumps");
-    let from = value(fields, "from", kind, "value before");
-    let to = value(fields, "to", kind, "value from then on");
+    let at = time(fields, "at", "When it jumps.");
+    let from = value(fields, "from", kind, "Value before.");
+    let to = value(fields, "to", kind, "Value from then on.");
     sound([at, from, to], Signal::Step { at, from, to })
 }
 
 fn ramp(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
     let (start, end) = span(fields);
-    let from = value(fields, "from", kind, "value until `start`");
-    let to = value(fields, "to", kind, "value from `end` on");
+    let from = value(fields, "from", kind, "Value until `start`.");
+    let to = value(fields, "to", kind, "Value from `end` on.");
     sound([start, end, from, to], Signal::Ramp { start, end, from, to })
 }
 
 fn pulse(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
     let (start, end) = span(fields);
-    let base = value(fields, "base", kind, "value outside");
-    let peak = value(fields, "peak", kind, "value for start <= t < end");
+    let base = value(fields, "base", kind, "Value outside.");
+    let peak = value(fields, "peak", kind, "Value for start <= t < end.");
     sound([start, end, base, peak], Signal::Pulse { start, end, base, peak })
 }
 
 fn sine(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
-    let mean = value_or(fields, "mean", kind, 0.0, "mean value");
-    let amplitude = value(fields, "amplitude", kind, "amplitude about the mean");
+    let mean = value_or(fields, "mean", kind, 0.0, "Mean value.");
+    let amplitude = value(fields, "amplitude", kind, "Amplitude about the mean.");
     let frequency =
-        fields.quantity("frequency", Dimension::Frequency, Range::Positive, "periods a second");
-    let phase = fields.quantity_or("phase", Dimension::Angle, Range::Any, 0.0, "phase at time 0");
+        fields.quantity("frequency", Dimension::Frequency, Range::Positive, "Periods a second.");
+    let phase = fields.quantity_or("phase", Dimension::Angle, Range::Any, 0.0, "Phase at time 0.");
     sound([mean, amplitude, frequency, phase], Signal::Sine { mean, amplitude, frequency, phase })
 }
 
 fn table(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
-    let file = fields.name("file", "CSV file with a heading line, relative to the scenario");
-    let time = fields.name("time", "heading of the time column");
-    let value = fields.name("value", "heading of the value column");
-    let unit = fields.text("unit", "unit of the values; SI when absent");
-    let time_unit = fields.text("time_unit", "unit of the times; s when absent");
+    let file = fields.name("file", "CSV file with a heading line, relative to the scenario.");
+    let time = fields.name("time", "Heading of the time column.");
+    let value = fields.name("value", "Heading of the value column.");
+    let unit = fields.text("unit", "Unit of the values; SI when absent.");
+    let time_unit = fields.text("time_unit", "Unit of the times; s when absent.");
     let faults = fields.faults();
     // A quantity of one such unit tells the dimension, and what is wrong with the unit.
     if let Some(unit) = &unit {
@@ -131,23 +131,23 @@ fn table(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
 }
 
 fn extreme_gust(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
-    let start = time(fields, "start", "when the gust begins");
+    let start = time(fields, "start", "When the gust begins.");
     let mut length = |key, doc| fields.quantity(key, Dimension::Length, Range::Positive, doc);
-    let rotor_diameter = length("rotor_diameter", "diameter of the rotor");
-    let hub_height = length("hub_height", "height of the hub above ground");
+    let rotor_diameter = length("rotor_diameter", "Diameter of the rotor.");
+    let hub_height = length("hub_height", "Height of the hub above ground.");
     let hub_wind = fields.quantity(
         "hub_wind",
         Dimension::LinearSpeed,
         Range::Positive,
-        "wind speed at the hub outside the gust",
+        "Wind speed at the hub outside the gust.",
     );
     let turbine_class =
-        fields.one_of("turbine_class", &["I", "II", "III"], true, "turbine class of the standard");
+        fields.one_of("turbine_class", &["I", "II", "III"], true, "Turbine class of the standard.");
     let turbulence_class = fields.one_of(
         "turbulence_class",
         &["A+", "A", "B", "C"],
         true,
-        "turbulence class of the standard",
+        "Turbulence class of the standard.",
     );
     let here = fields.path().to_owned();
     kind.meet(&here, Some(Dimension::LinearSpeed), &mut fields.faults().borrow_mut());

@@ -42,7 +42,9 @@ pub fn read_signal_or(
     default: f64,
     doc: &'static str,
 ) -> Signal {
-    read_signal(fields, key, dimension, false, doc).unwrap_or(Signal::Constant(default))
+    let typed = read_signal(fields, key, dimension, false, doc);
+    fields.note_default(default);
+    typed.unwrap_or(Signal::Constant(default))
 }
 
 /// Reads a named signal, whose dimension its own units tell.
@@ -67,10 +69,10 @@ pub fn describe_forms(dimension: Dimension) -> Vec<FieldDescription> {
             "points",
             Shape::Rows(vec![Dimension::Time, dimension]),
             false,
-            "straight lines between [time, value]; two equal times are a jump",
+            "Straight lines between [time, value]; two equal times are a jump.",
         );
-        fields.raw("sum", Shape::Free, false, "the sum of the signals of a list");
-        fields.raw("product", Shape::Free, false, "the product of the signals of a list");
+        fields.raw("sum", Shape::Free, false, "The sum of the signals of a list.");
+        fields.raw("product", Shape::Free, false, "The product of the signals of a list.");
     })
 }
 

@@ -9,49 +9,44 @@ use crate::tree::{Alternative, Fields, Range, Shape};
 
 /// The laws a load may have; the last [`NOT_YET`] are refused by name.
 const LAWS: [Alternative<LoadLaw>; 8] = [
-    ("power_law", "torque*|w/speed|^exponent against the motion", power_law),
-    ("friction", "dry friction that sticks and slips", friction),
-    ("viscous", "torque in proportion to the speed", viscous),
-    ("prescribed", "an external torque as a signal, positive drives forward", prescribed),
-    ("curve", "points of speed and torque against the motion, read at |speed|", curve),
-    ("axial_rotor", "wind or water rotor in a flow", axial_rotor),
-    ("periodic", "torque by the body's angle", periodic),
-    ("propeller", "ship's propeller", propeller),
+    ("power_law", "Torque*|w/speed|^exponent against the motion.", power_law),
+    ("friction", "Dry friction that sticks and slips.", friction),
+    ("viscous", "Torque in proportion to the speed.", viscous),
+    ("prescribed", "An external torque as a signal, positive drives forward.", prescribed),
+    ("curve", "Points of speed and torque against the motion, read at |speed|.", curve),
+    ("axial_rotor", "Wind or water rotor in a flow.", axial_rotor),
+    ("periodic", "Torque by the body's angle.", periodic),
+    ("propeller", "Ship's propeller.", propeller),
 ];
 const NOT_YET: usize = 2;
 
 impl Load {
     /// Reads the load called `name`.
     pub fn read(name: &str, fields: &mut Fields<'_>) -> Self {
-        let body = fields.name("body", "the body it loads");
+        let body = fields.name("body", "The body it loads.");
         // The reference lists only what can be run.
         let hidden = if fields.describing() { NOT_YET } else { 0 };
         let law = fields.choice(
             "law",
             true,
-            "how its torque comes about",
+            "How its torque comes about.",
             LAWS.get(..LAWS.len() - hidden).unwrap_or(&LAWS),
         );
         let against = fields
-            .name_optional("against", "other body (friction and viscous); ground when absent");
+            .name_optional("against", "Other body (friction and viscous); ground when absent.");
         let scale = read_signal(
             fields,
             "scale",
             Dimension::One,
             false,
-            "factor on what the law delivers; friction: on sliding and breakaway alike",
+            "Factor on what the law delivers; friction: on sliding and breakaway alike.",
         );
-        let reversed = fields.flag("reversed", false, "mirrors the law");
-        let source = fields.text("source", "where its figures come from");
+        let reversed = fields.flag("reversed", false, "Mirrors the law.");
+        let source = fields.source();
         let between =
             matches!(law, Some(LoadLaw::Friction { .. } | LoadLaw::Viscous { .. }) | None);
         if against.is_some() && !between {
             fields.fault("against", "`against` is for friction and viscous loads only");
-        }
-        if let Some(Signal::Constant(value)) = scale {
-            if value < 0.0 && !matches!(law, Some(LoadLaw::Prescribed { .. }) | None) {
-                fields.fault("scale", "`scale` must not be negative");
-            }
         }
         // `ground` typed out is the default.
         let against = against.filter(|other| other != "ground");
@@ -66,22 +61,22 @@ fn power_law(fields: &mut Fields<'_>) -> LoadLaw {
         "torque",
         Dimension::Torque,
         Range::NotNegative,
-        "torque at `speed`; or `power` instead",
+        "Torque at `speed`; or `power` instead.",
     );
     let power = fields.quantity_optional(
         "power",
         Dimension::Power,
         Range::NotNegative,
-        "power at `speed`, instead of `torque`",
+        "Power at `speed`, instead of `torque`.",
     );
     let speed = fields.quantity(
         "speed",
         Dimension::Speed,
         Range::Positive,
-        "speed at which torque or power is stated",
+        "Speed at which torque or power is stated.",
     );
     let exponent =
-        fields.quantity("exponent", Dimension::One, Range::Positive, "2 for pumps and fans");
+        fields.quantity("exponent", Dimension::One, Range::Positive, "2 for pumps and fans.");
     let torque = match (torque, power) {
         (Some(torque), None) => torque,
         (None, Some(power)) => power / speed,
@@ -98,8 +93,12 @@ fn power_law(fields: &mut Fields<'_>) -> LoadLaw {
 }
 
 fn friction(fields: &mut Fields<'_>) -> LoadLaw {
-    let sliding =
-        fields.quantity("sliding", Dimension::Torque, Range::NotNegative, "torque while it slides");
+    let sliding = fields.quantity(
+        "sliding",
+        Dimension::Torque,
+        Range::NotNegative,
+        "Torque while it slides.",
+    );
     let breakaway = fields.quantity_or(
         "breakaway",
         Dimension::Torque,
@@ -119,14 +118,14 @@ fn viscous(fields: &mut Fields<'_>) -> LoadLaw {
             "coefficient",
             Dimension::Damping,
             Range::NotNegative,
-            "torque per speed",
+            "Torque per speed.",
         ),
     }
 }
 
 fn prescribed(fields: &mut Fields<'_>) -> LoadLaw {
     let torque =
-        read_signal(fields, "torque", Dimension::Torque, true, "torque, positive drives forward");
+        read_signal(fields, "torque", Dimension::Torque, true, "Torque, positive drives forward.");
     LoadLaw::Prescribed { torque: torque.unwrap_or(Signal::Constant(0.0)) }
 }
 
@@ -134,7 +133,7 @@ fn curve(fields: &mut Fields<'_>) -> LoadLaw {
     let points = read_curve(
         fields,
         0.0,
-        "rows of speed and torque, speeds rising from 0; end values are held; a torque at 0 sticks",
+        "Rows of speed and torque, speeds rising from 0; end values are held; a torque at 0 sticks.",
     );
     if points.first().is_some_and(|point| point[1] < 0.0) {
         fields.fault(
@@ -147,16 +146,16 @@ fn curve(fields: &mut Fields<'_>) -> LoadLaw {
 
 fn axial_rotor(fields: &mut Fields<'_>) -> LoadLaw {
     let radius =
-        fields.quantity("radius", Dimension::Length, Range::Positive, "radius of the rotor");
+        fields.quantity("radius", Dimension::Length, Range::Positive, "Radius of the rotor.");
     let density = fields.quantity(
         "density",
         Dimension::Density,
         Range::Positive,
-        "density of the fluid: air about 1.225 kg/m3, sea water 1025 kg/m3",
+        "Density of the fluid: air about 1.225 kg/m3, sea water 1025 kg/m3.",
     );
     let flow =
-        read_signal(fields, "flow", Dimension::LinearSpeed, true, "speed of the wind or water");
-    let pitch = read_signal_or(fields, "pitch", Dimension::Angle, 0.0, "pitch of the blades");
+        read_signal(fields, "flow", Dimension::LinearSpeed, true, "Speed of the wind or water.");
+    let pitch = read_signal_or(fields, "pitch", Dimension::Angle, 0.0, "Pitch of the blades.");
     fields.later("power_coefficient");
     let flow = flow.unwrap_or(Signal::Constant(0.0));
     LoadLaw::AxialRotor { radius, density, flow, pitch }

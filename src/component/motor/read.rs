@@ -9,41 +9,36 @@ use crate::tree::{Alternative, Fields, Range, Shape};
 
 /// The laws a motor may have.
 const LAWS: [Alternative<MotorLaw>; 7] = [
-    ("rating_plate", "cage motor from its rating plate", rating_plate),
-    ("induction", "Kloss's formula, right near synchronous speed", induction),
-    ("curve", "points of speed and torque at full voltage, read at the signed speed", curve),
-    ("prescribed", "a torque as a signal", prescribed),
-    ("speed_loop", "PI speed controller with a torque limit", speed_loop),
-    ("optimal_power", "generator: -min(coefficient*speed^2, limit) turning forward", optimal_power),
-    ("induction_circuit", "equivalent circuit of an induction motor", induction_circuit),
+    ("rating_plate", "Cage motor from its rating plate.", rating_plate),
+    ("induction", "Kloss's formula, right near synchronous speed.", induction),
+    ("curve", "Points of speed and torque at full voltage, read at the signed speed.", curve),
+    ("prescribed", "A torque as a signal.", prescribed),
+    ("speed_loop", "PI speed controller with a torque limit.", speed_loop),
+    (
+        "optimal_power",
+        "Generator: -min(coefficient*speed^2, limit) turning forward.",
+        optimal_power,
+    ),
+    ("induction_circuit", "Equivalent circuit of an induction motor.", induction_circuit),
 ];
 
 impl Motor {
     /// Reads the motor called `name`.
     pub fn read(name: &str, fields: &mut Fields<'_>) -> Self {
-        let body = fields.name("body", "the body it drives; the reaction goes to ground");
+        let body = fields.name("body", "The body it drives; the reaction goes to ground.");
         // The reference lists only what can be run.
         let laws =
             if fields.describing() { LAWS.split_last().map_or(&LAWS[..], |l| l.1) } else { &LAWS };
-        let law = fields.choice("law", true, "how its torque comes about", laws);
+        let law = fields.choice("law", true, "How its torque comes about.", laws);
         let scale = read_signal(
             fields,
             "scale",
             Dimension::One,
             false,
-            "factor on what the law delivers, after its limits",
+            "Factor on what the law delivers, after its limits.",
         );
-        let reversed = fields.flag("reversed", false, "mirrors the law: forward is negative");
-        let source = fields.text("source", "where its figures come from");
-        if let Some(Signal::Constant(value)) = scale {
-            if value < 0.0 && !matches!(law, Some(MotorLaw::Prescribed { .. }) | None) {
-                fields.fault_hint(
-                    "scale",
-                    "`scale` must not be negative",
-                    "`reversed: true` mirrors a motor",
-                );
-            }
-        }
+        let reversed = fields.flag("reversed", false, "Mirrors the law: forward is negative.");
+        let source = fields.source();
         // A law that is missing or faulty has been told; no torque stands in for it.
         let law = law.unwrap_or(MotorLaw::Prescribed { torque: Signal::Constant(0.0) });
         Self { name: name.to_owned(), body, law, scale, reversed, source }
@@ -52,7 +47,7 @@ impl Motor {
 
 fn voltage(fields: &mut Fields<'_>) -> Signal {
     let signal =
-        read_signal_or(fields, "voltage", Dimension::One, 1.0, "share of the rated voltage");
+        read_signal_or(fields, "voltage", Dimension::One, 1.0, "Share of the rated voltage.");
     if matches!(signal, Signal::Constant(value) if value < 0.0) {
         fields.fault("voltage", "`voltage` must not be negative");
     }
@@ -69,18 +64,18 @@ fn positive(
 }
 
 fn rating_plate(fields: &mut Fields<'_>) -> MotorLaw {
-    let power = positive(fields, "power", Dimension::Power, "rated power at the shaft");
-    let speed = fields.quantity("speed", Dimension::Speed, Range::NotZero, "rated speed");
+    let power = positive(fields, "power", Dimension::Power, "Rated power at the shaft.");
+    let speed = fields.quantity("speed", Dimension::Speed, Range::NotZero, "Rated speed.");
     let synchronous_speed = fields.quantity(
         "synchronous_speed",
         Dimension::Speed,
         Range::NotZero,
-        "speed without load, above the rated speed",
+        "Speed without load, above the rated speed.",
     );
     let mut share = |key, doc| positive(fields, key, Dimension::One, doc);
-    let starting = share("starting_torque", "torque at standstill over rated torque");
-    let pull_up = share("pull_up_torque", "lowest torque on the way up over rated torque");
-    let breakdown = share("breakdown_torque", "largest torque over rated torque");
+    let starting = share("starting_torque", "Torque at standstill over rated torque.");
+    let pull_up = share("pull_up_torque", "Lowest torque on the way up over rated torque.");
+    let breakdown = share("breakdown_torque", "Largest torque over rated torque.");
     let voltage = voltage(fields);
     if starting < pull_up {
         fields.fault("starting_torque", "`starting_torque` must not be below `pull_up_torque`");
@@ -128,19 +123,19 @@ fn induction(fields: &mut Fields<'_>) -> MotorLaw {
             "synchronous_speed",
             Dimension::Speed,
             Range::NotZero,
-            "speed without load; negative turns backward",
+            "Speed without load; negative turns backward.",
         ),
         breakdown_torque: positive(
             fields,
             "breakdown_torque",
             Dimension::Torque,
-            "largest torque at full voltage",
+            "Largest torque at full voltage.",
         ),
         breakdown_slip: positive(
             fields,
             "breakdown_slip",
             Dimension::One,
-            "slip at the breakdown torque",
+            "Slip at the breakdown torque.",
         ),
         voltage: voltage(fields),
     }
@@ -151,7 +146,7 @@ fn curve(fields: &mut Fields<'_>) -> MotorLaw {
         points: read_curve(
             fields,
             f64::NEG_INFINITY,
-            "rows of speed and torque, speeds rising; end values are held",
+            "Rows of speed and torque, speeds rising; end values are held.",
         ),
         voltage: voltage(fields),
     }
@@ -159,33 +154,33 @@ fn curve(fields: &mut Fields<'_>) -> MotorLaw {
 
 fn prescribed(fields: &mut Fields<'_>) -> MotorLaw {
     let torque =
-        read_signal(fields, "torque", Dimension::Torque, true, "torque, positive drives forward");
+        read_signal(fields, "torque", Dimension::Torque, true, "Torque, positive drives forward.");
     MotorLaw::Prescribed { torque: torque.unwrap_or(Signal::Constant(0.0)) }
 }
 
 fn speed_loop(fields: &mut Fields<'_>) -> MotorLaw {
-    let speed = read_signal(fields, "speed", Dimension::Speed, true, "speed asked for");
+    let speed = read_signal(fields, "speed", Dimension::Speed, true, "Speed asked for.");
     MotorLaw::SpeedLoop {
         speed: speed.unwrap_or(Signal::Constant(0.0)),
         torque_limit: positive(
             fields,
             "torque_limit",
             Dimension::Torque,
-            "the command stays within plus and minus this",
+            "The command stays within plus and minus this.",
         ),
         gain: positive(fields, "gain", Dimension::Damping, "torque per speed error"),
         integral_time: fields.quantity_optional(
             "integral_time",
             Dimension::Time,
             Range::Positive,
-            "time in which the integral part doubles the proportional one; absent: no integral",
+            "Time in which the integral part doubles the proportional one; absent: no integral.",
         ),
         lag: fields.quantity_or(
             "lag",
             Dimension::Time,
             Range::NotNegative,
             0.0,
-            "first-order lag of the torque behind the command",
+            "First-order lag of the torque behind the command.",
         ),
     }
 }
@@ -196,13 +191,13 @@ fn optimal_power(fields: &mut Fields<'_>) -> MotorLaw {
             fields,
             "coefficient",
             Dimension::TorquePerSpeedSquared,
-            "braking torque per speed squared",
+            "Braking torque per speed squared.",
         ),
         torque_limit: positive(
             fields,
             "torque_limit",
             Dimension::Torque,
-            "the braking torque stays below this",
+            "The braking torque stays below this.",
         ),
     }
 }

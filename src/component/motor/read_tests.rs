@@ -128,22 +128,6 @@ fn a_curve_needs_two_points_and_rising_speeds() {
 }
 
 #[test]
-fn a_negative_scale_is_for_prescribed_torques_only() {
-    let motor = |law: Node| {
-        let node = Node::Map(vec![
-            ("body".to_owned(), Node::Text("rotor".to_owned())),
-            ("law".to_owned(), law),
-            ("scale".to_owned(), Node::Number(-1.0)),
-        ]);
-        let faults = RefCell::new(Diagnostics::new());
-        Fields::read("motors.m", &node, &faults, |fields| Motor::read("m", fields));
-        faults.into_inner().len()
-    };
-    assert_eq!(motor(plate(&[])), 1);
-    assert_eq!(motor(nest("prescribed", map(&[("torque", "5 N*m")]))), 0);
-}
-
-#[test]
 fn the_reference_lists_only_laws_that_run() {
     let keys = Fields::describe(|fields| Motor::read("m", fields));
     let law = keys.iter().find(|field| field.key == "law").unwrap();
