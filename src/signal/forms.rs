@@ -1,9 +1,9 @@
 //! The signal forms that are maps of keys: step, ramp, pulse, sine, table, extreme gust.
 
-use super::read::Kind;
+use super::kind::Kind;
 use super::table::TableColumns;
 use super::{Signal, gust};
-use crate::quantity::{self, Dimension};
+use crate::quantity::{self, Dimension, format_number};
 use crate::tree::{Fields, Range, Shape};
 
 /// One form: its key, its documentation, how its map is read.
@@ -158,7 +158,7 @@ fn extreme_gust(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
             "hub_wind",
             format!(
                 "`hub_wind` must lie below the 1-year extreme wind of class {turbine_class}, {} m/s",
-                gust::extreme_one_year(turbine_class)
+                format_number(gust::extreme_one_year(turbine_class), 4)
             ),
         );
         return None;

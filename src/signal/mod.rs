@@ -4,6 +4,8 @@ pub mod check;
 pub mod course;
 mod forms;
 pub mod gust;
+mod kind;
+mod overrides;
 mod range;
 pub mod read;
 mod shape;
@@ -11,6 +13,9 @@ pub mod table;
 
 use crate::quantity::Dimension;
 use table::TableColumns;
+
+/// Reads a table: the path of its `file` key, the file as typed, its columns; the rows in SI.
+pub type TableLoader<'a> = dyn FnMut(&str, &str, &TableColumns) -> Vec<[f64; 2]> + 'a;
 
 /// A signal as typed, in SI.
 #[derive(Clone, Debug, PartialEq)]
@@ -120,11 +125,7 @@ impl Signal {
     }
 
     /// Hands every table inside this signal to `load`, with the path of its `file` key.
-    pub fn load_tables(
-        &mut self,
-        path: &str,
-        load: &mut dyn FnMut(&str, &str, &TableColumns) -> Vec<[f64; 2]>,
-    ) {
+    pub fn load_tables(&mut self, path: &str, load: &mut TableLoader<'_>) {
         match self {
             Self::Table { file, columns, rows } => {
                 *rows = load(&format!("{path}.table.file"), file, columns);
