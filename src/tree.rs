@@ -612,9 +612,7 @@ impl<'a> Fields<'a> {
         }
         self.asked.push(key);
         match self.lookup(key, false)? {
-            node @ Node::Map(_) => {
-                Some(Fields::read(self.path_of(key), node, self.faults, read))
-            }
+            node @ Node::Map(_) => Some(Fields::read(self.path_of(key), node, self.faults, read)),
             node => Some(plain(self.number(key, node, dimension, range))),
         }
     }

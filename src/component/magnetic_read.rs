@@ -236,12 +236,8 @@ fn read_cogging(fields: &mut Fields<'_>) -> Cogging {
 
 fn read_drag(fields: &mut Fields<'_>) -> Drag {
     let at = member(fields.one_of("at", &MEMBERS, true, "The member it brakes."));
-    let against = fields.one_of(
-        "against",
-        &["modulator", "ground"],
-        false,
-        "Whose speed counts as rest.",
-    );
+    let against =
+        fields.one_of("against", &["modulator", "ground"], false, "Whose speed counts as rest.");
     let constant = fields.quantity_or(
         "constant",
         Dimension::Torque,
@@ -258,10 +254,8 @@ fn read_drag(fields: &mut Fields<'_>) -> Drag {
     );
     let against_modulator = against == "modulator";
     if at == Member::Modulator && against_modulator && fields.has("at") {
-        fields.fault_here_hint(
-            "the modulator cannot drag against itself",
-            "write `against: ground`",
-        );
+        fields
+            .fault_here_hint("the modulator cannot drag against itself", "write `against: ground`");
     }
     Drag { at, against_modulator, constant, per_speed }
 }

@@ -34,7 +34,10 @@ impl PlanetaryGear {
             let sun = teeth.whole("sun", 1, MOST_TEETH, "Teeth of the sun.");
             let ring = teeth.whole("ring", 1, MOST_TEETH, "Teeth of the ring.");
             if teeth.has("sun") && teeth.has("ring") && ring <= sun {
-                teeth.fault("ring", format!("the ring ({ring} teeth) must have more teeth than the sun ({sun})"));
+                teeth.fault(
+                    "ring",
+                    format!("the ring ({ring} teeth) must have more teeth than the sun ({sun})"),
+                );
             }
             (sun as u32, ring as u32)
         });

@@ -74,9 +74,10 @@ pub struct Surroundings<'a> {
 impl Protection {
     /// Reads a protection.
     pub fn read(fields: &mut Fields<'_>, around: &Surroundings<'_>) -> Self {
-        let when = fields.group("when", "The condition: a time, or a channel and a limit.", |when| {
-            read_condition(when, around.channels)
-        });
+        let when =
+            fields.group("when", "The condition: a time, or a channel and a limit.", |when| {
+                read_condition(when, around.channels)
+            });
         let (when, hold) = when.unwrap_or((Condition::Time(f64::NAN), 0.0));
         let delay = fields.quantity_or(
             "delay",
@@ -144,9 +145,7 @@ fn read_condition(fields: &mut Fields<'_>, channels: &[Channel]) -> (Condition, 
     let condition = match (time, at_least, at_most) {
         (Some(time), ..) => Condition::Time(time),
         (None, Some(limit), _) => Condition::AtLeast { of, limit, signed },
-        (None, None, limit) => {
-            Condition::AtMost { of, limit: limit.unwrap_or(f64::NAN), signed }
-        }
+        (None, None, limit) => Condition::AtMost { of, limit: limit.unwrap_or(f64::NAN), signed },
     };
     (condition, hold)
 }

@@ -49,11 +49,8 @@ impl Requirement {
     pub fn read(fields: &mut Fields<'_>, channels: &[Channel]) -> Self {
         let of = fields.name("of", "The channel it looks at.");
         let dimension = channel_dimension(fields, &of, channels);
-        let signed = fields.flag(
-            "signed",
-            false,
-            "Compares the value itself instead of its magnitude.",
-        );
+        let signed =
+            fields.flag("signed", false, "Compares the value itself instead of its magnitude.");
         let limits = [
             ("at_most", "The largest value in the window is at most this."),
             ("at_least", "The smallest value in the window is at least this."),
@@ -173,11 +170,7 @@ fn time(fields: &mut Fields<'_>, key: &'static str, doc: &'static str) -> Option
 }
 
 /// The half-width of the band in the channel's unit: a share of the value, or a quantity like it.
-fn read_band(
-    fields: &mut Fields<'_>,
-    reached: f64,
-    dimension: Option<Dimension>,
-) -> Option<f64> {
+fn read_band(fields: &mut Fields<'_>, reached: f64, dimension: Option<Dimension>) -> Option<f64> {
     let node = fields.raw(
         "stays_within",
         Shape::OfChannel,
@@ -187,10 +180,9 @@ fn read_band(
     let path = fields.path_of("stays_within");
     let is_share = match node {
         Node::Number(_) => true,
-        Node::Text(text) => matches!(
-            quantity::parse_any(text),
-            Ok((_, None | Some(Dimension::One)))
-        ),
+        Node::Text(text) => {
+            matches!(quantity::parse_any(text), Ok((_, None | Some(Dimension::One))))
+        }
         _ => false,
     };
     let kind = if is_share { Dimension::One } else { dimension? };

@@ -75,7 +75,8 @@ impl Shaft {
         let torque = |fields: &mut Fields<'_>, key, doc| {
             fields.quantity_optional(key, Dimension::Torque, Range::Positive, doc)
         };
-        let rated_torque = torque(fields, "rated_torque", "Torque for utilisation in long running.");
+        let rated_torque =
+            torque(fields, "rated_torque", "Torque for utilisation in long running.");
         let peak_torque = torque(fields, "peak_torque", "Torque for utilisation at peaks.");
         if rigid {
             for key in ["stiffness", "damping", "damping_ratio", "backlash"] {

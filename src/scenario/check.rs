@@ -245,7 +245,11 @@ impl<'a> Check<'a> {
         if self.scenario.start != Start::Steady {
             return;
         }
-        let gears = self.scenario.magnetic_gears.iter().map(|gear| ("magnetic_gears", &gear.name, &gear.field));
+        let gears = self
+            .scenario
+            .magnetic_gears
+            .iter()
+            .map(|gear| ("magnetic_gears", &gear.name, &gear.field));
         let couplings = self
             .scenario
             .magnetic_couplings

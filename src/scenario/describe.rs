@@ -143,9 +143,9 @@ pub(super) fn signal_dimension_at(
 
 /// True when a signal at this path is a member of another one.
 fn is_inside_signal(tree: &Node, path: &str) -> bool {
-    path.rsplit_once('.').is_some_and(|(list, _)| {
-        list.ends_with(".sum") || list.ends_with(".product")
-    }) && find(tree, path).is_ok()
+    path.rsplit_once('.')
+        .is_some_and(|(list, _)| list.ends_with(".sum") || list.ends_with(".product"))
+        && find(tree, path).is_ok()
 }
 
 /// Takes the next step off a path; in free maps a key may hold dots itself.
@@ -183,9 +183,7 @@ impl<'n> At<'n, '_> {
             Kind::Choice(inside) => {
                 let present = self.node.and_then(|node| node.get(step));
                 match (inside.iter().find(|choice| choice.key == step), present) {
-                    (Some(choice), Some(node)) => {
-                        Ok(Found::there(Kind::from(&choice.shape), node))
-                    }
+                    (Some(choice), Some(node)) => Ok(Found::there(Kind::from(&choice.shape), node)),
                     _ => Err(self.other_choice(step)),
                 }
             }

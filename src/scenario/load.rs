@@ -87,10 +87,7 @@ fn load_source(mut source: Source, sets: &[(String, String)]) -> Result<Loaded, 
 }
 
 /// Reads a value tree: the scenario with its warnings, or all faults.
-pub fn read_node(
-    node: &Node,
-    tables: &mut Tables,
-) -> Result<(Scenario, Diagnostics), Diagnostics> {
+pub fn read_node(node: &Node, tables: &mut Tables) -> Result<(Scenario, Diagnostics), Diagnostics> {
     let faults = RefCell::new(Diagnostics::new());
     let mut scenario = Fields::read("", node, &faults, |root| sections::read(root, node));
     let mut faults = faults.into_inner();

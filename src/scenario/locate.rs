@@ -105,7 +105,11 @@ impl Scan<'_> {
         self.open.push(open);
         if self.open.len() > DEEPEST && !self.too_deep {
             self.too_deep = true;
-            self.fault(at, String::new(), format!("maps and lists are nested deeper than {DEEPEST}"));
+            self.fault(
+                at,
+                String::new(),
+                format!("maps and lists are nested deeper than {DEEPEST}"),
+            );
         }
     }
 
@@ -177,7 +181,8 @@ mod tests {
 
     #[test]
     fn paths_lead_to_lines_and_columns() {
-        let text = "title: x\nshafts:\n  main: { between: [a, rotr], stiffness: 2 }\nlist:\n- 3\n- k: 4\n";
+        let text =
+            "title: x\nshafts:\n  main: { between: [a, rotr], stiffness: 2 }\nlist:\n- 3\n- k: 4\n";
         let (places, faults) = places(text);
         assert!(faults.is_empty());
         for (path, place) in [

@@ -70,9 +70,7 @@ pub fn value_at(root: &Node, path: &str) -> Result<Value, PathFault> {
             .map(|(value, dimension)| (value, dimension.unwrap_or(Dimension::One))),
     };
     match read {
-        Ok((value, dimension)) => {
-            Ok(Value { design: Some(value), dimension, stated: true, whole })
-        }
+        Ok((value, dimension)) => Ok(Value { design: Some(value), dimension, stated: true, whole }),
         Err(_) if matches!(found.kind, Kind::Signal(_)) => Err((
             format!("`{path}` is the named signal `{text}`, not a number"),
             Some(format!("name a value of it, for example one below signals.{text}")),
@@ -108,11 +106,7 @@ pub(super) fn set_typed(root: &mut Node, path: &str, text: &str, faults: &mut Di
 /// Sets the value at a path, which must be one the file knows.
 pub fn set(root: &mut Node, path: &str, value: Node) -> Result<(), PathFault> {
     find(root, path)?;
-    if write(root, path, value) {
-        Ok(())
-    } else {
-        Err((format!("`{path}` cannot be set"), None))
-    }
+    if write(root, path, value) { Ok(()) } else { Err((format!("`{path}` cannot be set"), None)) }
 }
 
 /// Sets a number in SI at a path that [`value_at`] has found; false when it is not there.

@@ -57,8 +57,11 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
     let gear_pairs = fields.section("gear_pairs", "Rigid gear pairs.", GearPair::read);
     let planetary_gears =
         fields.section("planetary_gears", "Rigid planetary sets.", PlanetaryGear::read);
-    let motors = fields.section("motors", "Motors and generators.", Motor::read);
-    let loads = fields.section("loads", "Loads.", Load::read);
+    let motors = fields.section("motors", "Motors and generators.", |motor| {
+        Motor::read(&motor.own_name().to_owned(), motor)
+    });
+    let loads =
+        fields.section("loads", "Loads.", |load| Load::read(&load.own_name().to_owned(), load));
     let brakes = fields.section("brakes", "Brakes pressed by a signal.", Brake::read);
     let signals = read_signals(fields);
     let train = Train {
@@ -141,7 +144,8 @@ fn read_document(fields: &mut Fields<'_>) -> Vec<(String, String)> {
             })
             .collect(),
         Some(other) => {
-            fields.fault("document", format!("a map of texts is needed here, not {}", other.kind()));
+            fields
+                .fault("document", format!("a map of texts is needed here, not {}", other.kind()));
             Vec::new()
         }
     }
@@ -219,8 +223,7 @@ fn read_solver(fields: &mut Fields<'_>) -> Solver {
     );
     let max_step =
         fields.quantity_optional("max_step", Dimension::Time, Range::Positive, "Largest step.");
-    let step =
-        fields.quantity_optional("step", Dimension::Time, Range::Positive, "Step of rk4.");
+    let step = fields.quantity_optional("step", Dimension::Time, Range::Positive, "Step of rk4.");
     match (method, step) {
         ("rk4", None) if !fields.has("step") => {
             fields.fault_here_hint("`step` is missing", "rk4 has a fixed step: step: 0.1 ms");
@@ -253,10 +256,7 @@ fn read_signals(fields: &mut Fields<'_>) -> Vec<NamedSignal> {
             })
             .collect(),
         Some(other) => {
-            fields.fault(
-                "signals",
-                format!("a map of keys is needed here, not {}", other.kind()),
-            );
+            fields.fault("signals", format!("a map of keys is needed here, not {}", other.kind()));
             Vec::new()
         }
     }
@@ -267,10 +267,7 @@ fn read_studies(fields: &mut Fields<'_>) -> Vec<(String, Node)> {
         None | Some(Node::Null) => Vec::new(),
         Some(Node::Map(entries)) => entries.clone(),
         Some(other) => {
-            fields.fault(
-                "studies",
-                format!("a map of keys is needed here, not {}", other.kind()),
-            );
+            fields.fault("studies", format!("a map of keys is needed here, not {}", other.kind()));
             Vec::new()
         }
     }

@@ -79,7 +79,10 @@ fn check_values(scenario: &Scenario, uses: &[Use<'_>], faults: &mut Diagnostics)
                 let outside = if low < -ROUNDING { low } else { high };
                 faults.error(
                     place.path.as_str(),
-                    format!("the brake is applied from 0 to 1, but this reaches {}", shown(outside)),
+                    format!(
+                        "the brake is applied from 0 to 1, but this reaches {}",
+                        shown(outside)
+                    ),
                 );
             }
             _ => {}
@@ -247,10 +250,7 @@ fn load_signals<'a>(path: &str, law: &'a LoadLaw, uses: &mut Vec<Use<'a>>) {
 }
 
 /// Hands every signal that holds a table to `look`, with its path.
-pub(super) fn each_with_table(
-    scenario: &mut Scenario,
-    look: &mut dyn FnMut(&str, &mut Signal),
-) {
+pub(super) fn each_with_table(scenario: &mut Scenario, look: &mut dyn FnMut(&str, &mut Signal)) {
     let mut visit = |path: String, signal: &mut Signal| {
         let mut holds = false;
         signal.visit("", &mut |_, inside| holds |= matches!(inside, Signal::Table { .. }));

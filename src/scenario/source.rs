@@ -138,11 +138,8 @@ impl Source {
     }
 
     fn whereabouts(&self, place: Option<LineColumn>, entry: &Diagnostic) -> String {
-        let path = if entry.path.is_empty() {
-            String::new()
-        } else {
-            format!("  ({})", entry.path)
-        };
+        let path =
+            if entry.path.is_empty() { String::new() } else { format!("  ({})", entry.path) };
         if matches!(entry.spot, Spot::Value | Spot::Key)
             && let Some((set, value)) =
                 self.sets.iter().rev().find(|(set, _)| is_at_or_below(&entry.path, set))

@@ -32,15 +32,14 @@ impl Tables {
 
     /// Gives every table signal of a scenario its rows.
     pub(super) fn fill(&mut self, scenario: &mut Scenario, faults: &mut Diagnostics) {
-        let mut load = |path: &str, file: &str, columns: &TableColumns| match self
-            .rows(file, columns)
-        {
-            Ok(rows) => rows,
-            Err(message) => {
-                faults.error(path, message);
-                Vec::new()
-            }
-        };
+        let mut load =
+            |path: &str, file: &str, columns: &TableColumns| match self.rows(file, columns) {
+                Ok(rows) => rows,
+                Err(message) => {
+                    faults.error(path, message);
+                    Vec::new()
+                }
+            };
         let mut fill = |path: &str, signal: &mut Signal| signal.load_tables(path, &mut load);
         super::signals::each_with_table(scenario, &mut fill);
     }
@@ -57,7 +56,11 @@ impl Tables {
                 parse_table(&text, columns)
                     .map_err(|fault| format!("line {} of `{file}`: {}", fault.line, fault.message))
             });
-        self.read.push(Table { file: file.to_owned(), columns: columns.clone(), rows: rows.clone() });
+        self.read.push(Table {
+            file: file.to_owned(),
+            columns: columns.clone(),
+            rows: rows.clone(),
+        });
         rows
     }
 }
