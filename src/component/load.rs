@@ -3,6 +3,7 @@
 pub mod axial_rotor;
 pub mod curve;
 pub mod power_law;
+mod read;
 
 use crate::component::law::Law;
 use crate::signal::Signal;

@@ -11,6 +11,7 @@ pub mod magnetic_law;
 mod magnetic_read;
 pub mod motor;
 pub mod planetary;
+mod points;
 pub mod polyline;
 pub mod protection;
 pub mod requirement;

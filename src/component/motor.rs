@@ -4,6 +4,7 @@ pub mod curve;
 pub mod induction;
 pub mod optimal_power;
 pub mod rating_plate;
+mod read;
 
 use crate::component::law::Law;
 use crate::signal::Signal;
