@@ -181,7 +181,7 @@ impl IntoIterator for Diagnostics {
 
 /// The candidate nearest to a misspelt word, if one is near enough to be meant.
 pub fn closest<'a>(word: &str, candidates: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
-    let longest_guess = (word.chars().count() / 3).max(1);
+    let longest_guess = ((word.chars().count() + 1) / 3).max(1);
     candidates
         .into_iter()
         .map(|candidate| (strsim::damerau_levenshtein(word, candidate), candidate))

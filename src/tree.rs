@@ -67,7 +67,7 @@ pub enum Range {
 }
 
 impl Range {
-    fn fault(self, value: f64) -> Option<String> {
+    fn fault(self, value: f64, dimension: Dimension) -> Option<String> {
         let ok = match self {
             Self::Any => true,
             Self::Positive => value > 0.0,
@@ -79,7 +79,14 @@ impl Range {
             Self::Positive => "must be above zero".to_owned(),
             Self::NotNegative => "must not be negative".to_owned(),
             Self::NotZero => "must not be zero".to_owned(),
-            Self::Between(low, high) => format!("must lie between {low} and {high}"),
+            Self::Between(low, high) => {
+                let number = |value| quantity::format_number(value, 6);
+                let unit = match dimension.si_unit() {
+                    "1" => String::new(),
+                    unit => format!(" {unit}"),
+                };
+                format!("must lie between {} and {}{unit}", number(low), number(high))
+            }
             Self::Any => String::new(),
         })
     }
@@ -150,6 +157,8 @@ pub struct Fields<'a> {
     faults: &'a RefCell<Diagnostics>,
     /// Not a map at all: that is told once, and no key is missed.
     no_map: bool,
+    /// Required keys that are absent, with a hint.
+    missing: Vec<(&'static str, Option<String>)>,
     description: Option<Vec<FieldDescription>>,
 }
 
@@ -168,7 +177,15 @@ impl<'a> Fields<'a> {
                 (&[], true)
             }
         };
-        Self { path, entries, asked: Vec::new(), faults, no_map, description: None }
+        Self {
+            path,
+            entries,
+            asked: Vec::new(),
+            faults,
+            no_map,
+            missing: Vec::new(),
+            description: None,
+        }
     }
 
     /// Runs a reading function without a file and returns the keys it asks for.
@@ -180,6 +197,7 @@ impl<'a> Fields<'a> {
             asked: Vec::new(),
             faults: &faults,
             no_map: false,
+            missing: Vec::new(),
             description: Some(Vec::new()),
         };
         let _ = read(&mut fields);
@@ -293,12 +311,17 @@ impl<'a> Fields<'a> {
         self.lookup(key, required)
     }
 
-    fn lookup(&self, key: &'static str, required: bool) -> Option<&'a Node> {
+    fn lookup(&mut self, key: &'static str, required: bool) -> Option<&'a Node> {
         let found = self.entries.iter().find(|(name, _)| name == key).map(|(_, node)| node);
-        if found.is_none() && required && !self.no_map && !self.describing() {
-            self.faults.borrow_mut().error(self.path.as_str(), format!("`{key}` is missing"));
+        if found.is_none() && required {
+            self.missing.push((key, None));
         }
         found
+    }
+
+    /// Records that a key is missing which is required in this case only.
+    pub fn miss(&mut self, key: &'static str, hint: impl Into<String>) {
+        self.missing.push((key, Some(hint.into())));
     }
 
     /// A quantity that must be there; NaN stands in for a faulty one.
@@ -352,7 +375,7 @@ impl<'a> Fields<'a> {
     fn number(&self, key: &str, node: &Node, dimension: Dimension, range: Range) -> f64 {
         let path = self.path_of(key);
         let value = quantity::read(&path, node, dimension, &mut self.faults.borrow_mut());
-        if let Some(text) = value.is_finite().then(|| range.fault(value)).flatten() {
+        if let Some(text) = value.is_finite().then(|| range.fault(value, dimension)).flatten() {
             self.faults.borrow_mut().error(path, format!("`{key}` {text}"));
             return f64::NAN;
         }
@@ -710,23 +733,37 @@ impl<'a> Fields<'a> {
         }
     }
 
-    /// Reports every key that was never asked for.
+    /// Reports every key that was never asked for and every required one that is missing.
+    ///
+    /// A missing key is not told when a misspelt one stands in its place.
     pub fn finish(self) {
         if self.describing() {
             return;
         }
+        let mut misspelt = Vec::new();
         for (name, _) in self.entries {
             if self.asked.iter().any(|key| key == name) {
                 continue;
             }
-            let mut faults = self.faults.borrow_mut();
-            let path =
-                if self.path.is_empty() { name.clone() } else { format!("{}.{name}", self.path) };
             let hint = match closest(name, self.asked.iter().copied()) {
-                Some(near) => format!("did you mean `{near}`?"),
+                Some(near) => {
+                    misspelt.push(near);
+                    format!("did you mean `{near}`?")
+                }
                 None => format!("it takes {}", self.asked.join(", ")),
             };
-            faults.error_at_key(path, format!("`{name}` is not a key of this map"), Some(hint));
+            let message = format!("`{name}` is not a key of this map");
+            self.faults.borrow_mut().error_at_key(self.path_of(name), message, Some(hint));
+        }
+        if self.no_map {
+            return;
+        }
+        for (key, hint) in self.missing {
+            if !misspelt.contains(&key) {
+                let message = format!("`{key}` is missing");
+                let severity = crate::diagnostic::Severity::Error;
+                self.faults.borrow_mut().add(severity, self.path.as_str(), message, hint);
+            }
         }
     }
 }

@@ -92,10 +92,7 @@ impl Protection {
             .flatten()
             .collect();
         if !fields.has("then") {
-            fields.fault_here_hint(
-                "`then` is missing",
-                "for example then: [ { set: motors.NAME.scale, to: 0 } ]",
-            );
+            fields.miss("then", "for example then: [ { set: motors.NAME.scale, to: 0 } ]");
         }
         Self {
             name: fields.own_name().to_owned(),

@@ -85,8 +85,8 @@ impl Shaft {
                 }
             }
         } else if stiffness.is_none() && !fields.has("stiffness") {
-            fields.fault_here_hint(
-                "`stiffness` is missing",
+            fields.miss(
+                "stiffness",
                 "give stiffness, or `rigid: true` for two bodies that turn as one",
             );
         }

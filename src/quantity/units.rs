@@ -164,7 +164,7 @@ fn plain_spelling(text: &str) -> String {
             '²' => plain.push('2'),
             '³' => plain.push('3'),
             '°' => plain.push_str("deg"),
-            'Ω' | 'Ω' => plain.push_str("ohm"),
+            '\u{3a9}' | '\u{2126}' => plain.push_str("ohm"),
             _ => plain.push(letter),
         }
     }

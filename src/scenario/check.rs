@@ -96,10 +96,12 @@ fn near_name(text: &str) -> Option<String> {
 
 /// False when the section of bodies itself is at fault or its key misspelt.
 fn bodies_known(root: &Node, faults: &Diagnostics) -> bool {
-    let misspelt = |key: &str| closest(key, ["bodies"]).is_some() && key != "bodies";
     let Node::Map(entries) = root else { return false };
-    !(faults.iter().any(|fault| fault.path == "bodies")
-        || root.get("bodies").is_none() && entries.iter().any(|(key, _)| misspelt(key)))
+    let misspelt = || {
+        root.get("bodies").is_none()
+            && entries.iter().any(|(key, _)| closest(key, ["bodies"]).is_some())
+    };
+    !(faults.iter().any(|fault| fault.path == "bodies") || misspelt())
 }
 
 /// NaN and infinity in the parts that are kept as a tree.
@@ -215,17 +217,11 @@ impl<'a> Check<'a> {
             let path = format!("loads.{}", load.name);
             let mut members =
                 vec![member(&path, "body", &load.body, format!("load `{}` acts on", load.name))];
-            if let Some(against) = &load.against {
+            if let Some(against) = &load.against
+                && matches!(load.law, LoadLaw::Friction { .. } | LoadLaw::Viscous { .. })
+            {
                 let words = format!("load `{}` acts against", load.name);
                 members.push(member(&path, "against", against, words));
-                if !matches!(load.law, LoadLaw::Friction { .. } | LoadLaw::Viscous { .. }) {
-                    self.faults.error_hint(
-                        format!("{path}.against"),
-                        "`against` goes with friction and viscous loads only",
-                        "every other law acts against ground",
-                    );
-                    members.pop();
-                }
             }
             self.members(&path, &members, false);
         }

@@ -29,7 +29,7 @@ const USUAL_TOLERANCE: f64 = 1e-7;
 
 /// Reads a whole file; `root` is its tree, for questions that reach across sections.
 pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
-    fields.whole("lodeshaft", 1, 1, "Version of the file format: 1.");
+    read_version(fields);
     let title = fields.text("title", "Title of the case.").unwrap_or_default();
     let about = fields.text("about", "Free text that opens the report.").unwrap_or_default();
     let document = read_document(fields);
@@ -113,6 +113,20 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         requirements,
         studies,
         channels,
+    }
+}
+
+fn read_version(fields: &mut Fields<'_>) {
+    let version =
+        fields.raw("lodeshaft", Shape::Whole(1, 1), true, "Version of the file format: 1.");
+    match version {
+        None => {}
+        Some(Node::Number(1.0)) => {}
+        Some(Node::Number(other)) => fields.fault(
+            "lodeshaft",
+            format!("this program reads version 1 of the file format, not version {other}"),
+        ),
+        Some(_) => fields.fault("lodeshaft", "the version of the file format is a number: 1"),
     }
 }
 
@@ -226,7 +240,7 @@ fn read_solver(fields: &mut Fields<'_>) -> Solver {
     let step = fields.quantity_optional("step", Dimension::Time, Range::Positive, "Step of rk4.");
     match (method, step) {
         ("rk4", None) if !fields.has("step") => {
-            fields.fault_here_hint("`step` is missing", "rk4 has a fixed step: step: 0.1 ms");
+            fields.miss("step", "rk4 has a fixed step, for example step: 0.1 ms");
         }
         ("rk4", _) | (_, None) => {}
         (method, Some(_)) => fields.fault_hint(

@@ -59,6 +59,9 @@ fn check_values(scenario: &Scenario, uses: &[Use<'_>], faults: &mut Diagnostics)
     let mut bank: Option<SignalBank> = None;
     for place in uses.iter().filter(|place| place.bounds != Bounds::Free) {
         let (low, high) = if let Signal::Constant(value) = place.signal {
+            if place.bounds == Bounds::NotNegative {
+                continue; // Told when it was read.
+            }
             (*value, *value)
         } else {
             if !scenario.duration.is_finite() {

@@ -92,7 +92,12 @@ impl Source {
         let node = match yaml::parse(&self.text) {
             Ok(node) => node,
             Err(_) if is_blank(&self.text) => Node::Null,
-            Err(fault) => {
+            Err(mut fault) => {
+                if fault.spot == Spot::Value
+                    && let Some(line) = second_document(&self.text)
+                {
+                    fault.spot = Spot::Text { line, column: 1 };
+                }
                 faults.push(fault);
                 return None;
             }
@@ -161,6 +166,17 @@ fn is_blank(text: &str) -> bool {
     text.lines().all(|line| {
         let line = line.trim();
         line.is_empty() || line.starts_with('#') || line == "---" || line == "..."
+    })
+}
+
+/// The line on which a second document begins, from 1.
+fn second_document(text: &str) -> Option<usize> {
+    let mut content = false;
+    text.lines().enumerate().find_map(|(index, line)| {
+        let mark = line.trim_end() == "---" || line.starts_with("--- ");
+        let found = mark && content;
+        content |= !mark && !is_blank(line);
+        found.then_some(index + 1)
     })
 }
 

@@ -60,6 +60,8 @@ fn explain(text: &str) -> (String, Option<String>) {
             "this is not YAML: the block does not go on as it began",
             "entries of one block start in the same column; check the indentation",
         )
+    } else if text.contains("invalid type: enum") {
+        with("YAML tags (`!word`) are not used here", "put text that starts with `!` in quotes")
     } else if text.contains("repetition limit") {
         with("aliases repeat too much of the file", "write the values out")
     } else if text.contains("recursion limit") {
