@@ -14,7 +14,7 @@ use nalgebra::{DMatrix, DVector};
 const RANK_TOLERANCE: f64 = 1e-12;
 
 /// Balance that counts as closed, relative to the drive.
-const BALANCE_TOLERANCE: f64 = 1e-9;
+const BALANCE_TOLERANCE: f64 = 1e-12;
 
 /// What a set of elements at rest does.
 #[derive(Clone, Debug, PartialEq)]
@@ -86,7 +86,7 @@ pub fn hold(compliance: &DMatrix<f64>, drive: &[f64], limits: &[f64]) -> Holding
                 weakest = place;
             }
         }
-        let (_, _, first_weakest) = first.get_or_insert_with(|| (torque.clone(), worst, weakest));
+        first.get_or_insert_with(|| (torque.clone(), worst, weakest));
         if worst <= 1.0 {
             let closes = closes(compliance, drive, &torque);
             let clamped_any = clamped.contains(&true);
