@@ -163,7 +163,8 @@ fn no_module_climbs_above_its_floor() {
                 || FRIENDS.contains(&(name.as_str(), here.as_str()));
             match floor(&name) {
                 Some(other) if other > own && !friends => {
-                    faults.push(format!("{shown}:{line}: `{here}` uses `{name}`, which lies above"));
+                    faults
+                        .push(format!("{shown}:{line}: `{here}` uses `{name}`, which lies above"));
                 }
                 Some(_) => {}
                 None => faults.push(format!("{shown}:{line}: `crate::{name}` is no floor")),
@@ -202,7 +203,8 @@ fn each_trade_stays_in_its_room() {
 
 #[test]
 fn the_reader_of_uses_sees_what_it_should() {
-    let names = names_after("use crate::{tree::{Node, Fields}, quantity, signal::Signal};", "crate::");
+    let names =
+        names_after("use crate::{tree::{Node, Fields}, quantity, signal::Signal};", "crate::");
     assert_eq!(names, ["tree", "quantity", "signal"]);
     assert_eq!(names_after("let x = crate::model::build();", "crate::"), ["model"]);
     let text = "//! Head.\nuse crate::{\n    model::Model,\n    tree, // not crate::render\n};\n";
