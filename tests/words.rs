@@ -32,7 +32,7 @@ fn all_files() -> Vec<(String, String)> {
         .into_iter()
         .map(|file| {
             let shown = file.strip_prefix(package).unwrap_or(&file).display().to_string();
-            let text = fs::read_to_string(&file).unwrap();
+            let text = fs::read_to_string(&file).expect("a source file can be read");
             (shown, text)
         })
         .collect()

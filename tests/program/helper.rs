@@ -284,3 +284,11 @@ pub fn near(found: f64, expected: f64, absolute: f64) {
     let off = (found - expected).abs();
     assert!(off <= absolute, "found {found}, expected {expected}: off by {off:e}");
 }
+
+/// The head of a scenario: length of the run and step of the rows in s, tolerance of the default method.
+pub fn head(duration: f64, step: f64, tolerance: f64) -> String {
+    format!(
+        "lodeshaft: 1\ntitle: A case of the tests\nduration: {duration} s\noutput_step: {step} s\n\
+         solver: {{ tolerance: {tolerance} }}\n"
+    )
+}

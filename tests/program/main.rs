@@ -4,8 +4,25 @@
 //! independent integrations; the source stands beside each of them. Where it says "from
 //! memory" the value was not read again in the publication.
 
+// Helpers of tests may fail by panicking, and results of tests are compared as they are.
+#![allow(clippy::unwrap_used, clippy::cast_precision_loss)]
+
+mod commands;
+mod energy;
 mod equal_area;
+mod friction;
+mod gears;
 mod helper;
+mod likeness;
+mod oscillator;
+mod output;
 mod pendulum;
+mod protections;
 mod slipping;
+mod starts;
+mod steady;
+mod stops;
 mod swing;
+mod units;
+mod verdicts;
+mod wind;
