@@ -87,13 +87,11 @@ fn status_tells_a_fault_of_the_command() {
 fn status_tells_that_the_numerics_gave_up() {
     // Fixed steps of 0.1 s on a spring of 1000 rad/s: the classical method multiplies the
     // error by (w h)^4/24 = 4e6 a step, so that the numbers overflow within 5 s.
-    let scenario = format!(
-        "lodeshaft: 1\ntitle: Too coarse\nduration: 20 s\noutput_step: 0.5 s\nsolver: {{ method: rk4, step: 0.1 s }}\n\
-         bodies:\n  wheel: {{ inertia: 1 kg*m2, speed: 1 rad/s }}\n\
-         shafts:\n  spring: {{ between: [wheel, ground], stiffness: 1 MN*m/rad }}\n\
-         requirements:\n  slow: {{ of: wheel.speed, at_most: 6 rad/s }}\n",
-    );
-    let outcome = run(&scenario);
+    let scenario = "lodeshaft: 1\ntitle: Too coarse\nduration: 20 s\noutput_step: 0.5 s\nsolver: { method: rk4, step: 0.1 s }\n\
+         bodies:\n  wheel: { inertia: 1 kg*m2, speed: 1 rad/s }\n\
+         shafts:\n  spring: { between: [wheel, ground], stiffness: 1 MN*m/rad }\n\
+         requirements:\n  slow: { of: wheel.speed, at_most: 6 rad/s }\n";
+    let outcome = run(scenario);
     assert_eq!(outcome.status, Some(3), "{}", outcome.stderr);
     assert_eq!(outcome.at(&["completed"]).as_bool(), Some(false));
     let end = outcome.number(&["end_time"]);

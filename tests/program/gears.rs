@@ -1,8 +1,8 @@
 //! Magnetic gears: ratios, torque balance, natural frequency, critical steps, temperature.
 //!
 //! Field modulation (Atallah and Howe, IEEE Trans. Magn. 37 (2001) 2844, from memory): with
-//! pole pairs p_i and p_o and p_i + p_o pieces the synchronous speeds obey
-//! `p_i w_i + p_o w_o = (p_i + p_o) w_m` and the torques are as p_i : p_o : -(p_i + p_o).
+//! pole pairs `p_i`, `p_o` and as many pieces as both together the synchronous speeds obey
+//! `p_i w_i + p_o w_o = (p_i + p_o) w_m`, and the torques are as `p_i : p_o : -(p_i + p_o)`.
 
 use super::helper::{head, near, run_through, run_well, same};
 

@@ -137,7 +137,7 @@ impl Outcome {
         value.as_f64().unwrap_or_else(|| panic!("{keys:?} is {value}"))
     }
 
-    /// A figure of a channel: min, min_time, max, max_time or final.
+    /// A figure of a channel: `min`, `min_time`, `max`, `max_time` or `final`.
     pub fn channel(&self, name: &str, figure: &str) -> f64 {
         self.number(&["channels", name, figure])
     }

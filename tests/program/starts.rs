@@ -93,9 +93,9 @@ fn curve_through_zero_slip_ends_at_its_balance() {
         head(3.0, 0.5, 1e-10),
     );
     let series = run_well(&scenario).series();
-    for time in [0.5, 1.0, 3.0] {
-        same(series.at("rotor.speed", time), 50.0 * (1.0 - (-time as f64).exp()), 1e-8);
-        same(series.at("line.torque", time), 100.0 * (-time as f64).exp(), 1e-7);
+    for time in [0.5_f64, 1.0, 3.0] {
+        same(series.at("rotor.speed", time), 50.0 * (1.0 - (-time).exp()), 1e-8);
+        same(series.at("line.torque", time), 100.0 * (-time).exp(), 1e-7);
     }
 }
 

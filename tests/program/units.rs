@@ -104,9 +104,11 @@ fn stiffnesses_and_angles() {
         );
         same(run_well(&scenario).series().at("spring.twist", 0.0), 1.0 / expected, 1e-9);
     }
-    for (typed, expected) in
-        [("30 deg", 0.52359877559830), ("0.25 rev", 1.5707963267949), ("1 rad", 1.0)]
-    {
+    for (typed, expected) in [
+        ("36 deg", 0.1 * std::f64::consts::TAU),
+        ("0.25 rev", 0.25 * std::f64::consts::TAU),
+        ("1 rad", 1.0),
+    ] {
         let scenario = format!(
             "{}magnetic_couplings:\n  coupling: {{ between: [wheel, ground], pole_pairs: 1, pull_out: 1 N*m, initial_load_angle: {typed} }}\n",
             wheel("1 kg*m2", "0 rpm", "0 N*m")
