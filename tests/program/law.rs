@@ -87,7 +87,7 @@ fn damper_is_straight_or_fades() {
     near(outcome.series().at("coupling.loss", 0.0), 21.0 * 7.0, 1e-8);
     near(outcome.series().at("coupling.slip_speed", 0.0), 42.0, 1e-9);
     // In a gear: c x/(1 + (x/peak)^2) with x the slip speed seen at the named member.
-    for (speed, peak) in [(3.0, 12.0), (12.0, 12.0), (-40.0, 12.0)] {
+    for (speed, peak) in [(3.0_f64, 12.0), (12.0, 12.0), (-40.0, 12.0)] {
         let scenario = format!(
             "{}bodies:\n  outer: {{ inertia: 1 kg*m2, speed: {speed} rad/s }}\n\
              magnetic_gears:\n  gear:\n    inner: ground\n    modulator: ground\n    outer: outer\n    \
