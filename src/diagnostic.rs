@@ -1,8 +1,8 @@
 //! Faults and warnings as values: what is wrong, where in the file (by path), and a hint.
 //!
 //! Every stage collects them; only the command line prints them. A diagnostic knows
-//! the dotted path of the value it speaks of, never a line: the lines are looked up
-//! by `scenario::locate`, which alone has seen the text.
+//! the dotted path of the value it speaks of; lines are looked up by the reader of the
+//! scenario, which alone has seen the text (only its own syntax errors come with a line).
 
 use std::fmt;
 
@@ -15,6 +15,13 @@ pub enum Severity {
     Warning,
 }
 
+impl Severity {
+    /// True for an error.
+    pub fn is_error(self) -> bool {
+        self == Self::Error
+    }
+}
+
 impl fmt::Display for Severity {
     fn fmt(&self, formatter: &mut fmt::Formatter<'_>) -> fmt::Result {
         formatter.write_str(match self {
@@ -22,6 +29,23 @@ impl fmt::Display for Severity {
             Self::Warning => "warning",
         })
     }
+}
+
+/// Which spot of the text a fault or warning points at.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum Spot {
+    /// The value at the path.
+    #[default]
+    Value,
+    /// The key that ends the path: a misspelt one.
+    Key,
+    /// A line and a column: a fault of the text itself, such as a syntax error.
+    Text {
+        /// From 1.
+        line: usize,
+        /// From 1.
+        column: usize,
+    },
 }
 
 /// One fault or warning.
@@ -35,6 +59,8 @@ pub struct Diagnostic {
     pub message: String,
     /// What to type instead, where that can be said.
     pub hint: Option<String>,
+    /// Where to point.
+    pub spot: Spot,
 }
 
 /// A list of faults and warnings in the order in which they were found.
@@ -77,7 +103,31 @@ impl Diagnostics {
         message: impl Into<String>,
         hint: Option<String>,
     ) {
-        self.list.push(Diagnostic { severity, path: path.into(), message: message.into(), hint });
+        self.push(Diagnostic {
+            severity,
+            path: path.into(),
+            message: message.into(),
+            hint,
+            spot: Spot::Value,
+        });
+    }
+
+    /// Adds a finished diagnostic.
+    pub fn push(&mut self, diagnostic: Diagnostic) {
+        self.list.push(diagnostic);
+    }
+
+    /// Adds an error that points at the key which ends the path, not at its value.
+    pub fn error_at_key(
+        &mut self,
+        path: impl Into<String>,
+        message: impl Into<String>,
+        hint: Option<String>,
+    ) {
+        self.add(Severity::Error, path, message, hint);
+        if let Some(last) = self.list.last_mut() {
+            last.spot = Spot::Key;
+        }
     }
 
     /// True when at least one error is in the list.
@@ -131,7 +181,7 @@ impl IntoIterator for Diagnostics {
 
 /// The candidate nearest to a misspelt word, if one is near enough to be meant.
 pub fn closest<'a>(word: &str, candidates: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
-    let longest_guess = (word.chars().count() / 3).max(1);
+    let longest_guess = ((word.chars().count() + 1) / 3).max(1);
     candidates
         .into_iter()
         .map(|candidate| (strsim::damerau_levenshtein(word, candidate), candidate))

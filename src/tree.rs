@@ -67,7 +67,7 @@ pub enum Range {
 }
 
 impl Range {
-    fn fault(self, value: f64) -> Option<String> {
+    fn fault(self, value: f64, dimension: Dimension) -> Option<String> {
         let ok = match self {
             Self::Any => true,
             Self::Positive => value > 0.0,
@@ -79,7 +79,14 @@ impl Range {
             Self::Positive => "must be above zero".to_owned(),
             Self::NotNegative => "must not be negative".to_owned(),
             Self::NotZero => "must not be zero".to_owned(),
-            Self::Between(low, high) => format!("must lie between {low} and {high}"),
+            Self::Between(low, high) => {
+                let number = |value| quantity::format_number(value, 6);
+                let unit = match dimension.si_unit() {
+                    "1" => String::new(),
+                    unit => format!(" {unit}"),
+                };
+                format!("must lie between {} and {}{unit}", number(low), number(high))
+            }
             Self::Any => String::new(),
         })
     }
@@ -110,8 +117,16 @@ pub enum Shape {
     Group(Vec<FieldDescription>),
     /// A list of nested maps.
     List(Vec<FieldDescription>),
+    /// A map from names of the user's to nested maps: a section of the file.
+    Section(Vec<FieldDescription>),
     /// A one-key map: exactly one of these.
     Choice(Vec<FieldDescription>),
+    /// A quantity of a dimension within a range, or a nested map it is worked out from.
+    QuantityOrGroup(Dimension, Range, Vec<FieldDescription>),
+    /// A map from names of the user's to signals.
+    Signals,
+    /// A quantity of the dimension of the channel that `of` names.
+    OfChannel,
     /// Any value: read elsewhere.
     Free,
 }
@@ -125,6 +140,8 @@ pub struct FieldDescription {
     pub shape: Shape,
     /// Whether it must be there.
     pub required: bool,
+    /// What an absent number stands for, SI.
+    pub default: Option<f64>,
     /// One line of documentation.
     pub doc: &'static str,
 }
@@ -138,6 +155,10 @@ pub struct Fields<'a> {
     entries: &'a [(String, Node)],
     asked: Vec<&'static str>,
     faults: &'a RefCell<Diagnostics>,
+    /// Not a map at all: that is told once, and no key is missed.
+    no_map: bool,
+    /// Required keys that are absent, with a hint.
+    missing: Vec<(&'static str, Option<String>)>,
     description: Option<Vec<FieldDescription>>,
 }
 
@@ -145,18 +166,26 @@ impl<'a> Fields<'a> {
     /// A cursor over `node`, which stands at `path`; anything but a map is a fault.
     pub fn new(path: impl Into<String>, node: &'a Node, faults: &'a RefCell<Diagnostics>) -> Self {
         let path = path.into();
-        let entries: &[(String, Node)] = match node {
-            Node::Map(entries) => entries,
-            Node::Null => &[],
+        let (entries, no_map): (&[(String, Node)], bool) = match node {
+            Node::Map(entries) => (entries, false),
+            Node::Null => (&[], false),
             other => {
                 faults.borrow_mut().error(
                     path.as_str(),
                     format!("a map of keys is needed here, not {}", other.kind()),
                 );
-                &[]
+                (&[], true)
             }
         };
-        Self { path, entries, asked: Vec::new(), faults, description: None }
+        Self {
+            path,
+            entries,
+            asked: Vec::new(),
+            faults,
+            no_map,
+            missing: Vec::new(),
+            description: None,
+        }
     }
 
     /// Runs a reading function without a file and returns the keys it asks for.
@@ -167,6 +196,8 @@ impl<'a> Fields<'a> {
             entries: &[],
             asked: Vec::new(),
             faults: &faults,
+            no_map: false,
+            missing: Vec::new(),
             description: Some(Vec::new()),
         };
         let _ = read(&mut fields);
@@ -189,6 +220,21 @@ impl<'a> Fields<'a> {
     /// The path of this map.
     pub fn path(&self) -> &str {
         &self.path
+    }
+
+    /// The name of the thing this map describes: the last step of its path.
+    pub fn own_name(&self) -> &str {
+        self.path.rsplit('.').next().unwrap_or_default()
+    }
+
+    /// True when this map could not be read as a map, which has been told.
+    pub fn is_no_map(&self) -> bool {
+        self.no_map
+    }
+
+    /// The entries of this map in the order of the file.
+    pub fn entries(&self) -> &'a [(String, Node)] {
+        self.entries
     }
 
     /// The path of a key of this map.
@@ -234,6 +280,13 @@ impl<'a> Fields<'a> {
         }
     }
 
+    /// Records a fault with a hint at this map itself.
+    pub fn fault_here_hint(&self, message: impl Into<String>, hint: impl Into<String>) {
+        if !self.describing() {
+            self.faults.borrow_mut().error_hint(self.path.as_str(), message, hint);
+        }
+    }
+
     /// The list in which faults are collected, for reading code that goes its own way.
     pub fn faults(&self) -> &'a RefCell<Diagnostics> {
         self.faults
@@ -242,7 +295,7 @@ impl<'a> Fields<'a> {
     fn note(&mut self, key: &'static str, shape: Shape, required: bool, doc: &'static str) {
         self.asked.push(key);
         if let Some(list) = &mut self.description {
-            list.push(FieldDescription { key, shape, required, doc });
+            list.push(FieldDescription { key, shape, required, default: None, doc });
         }
     }
 
@@ -258,12 +311,17 @@ impl<'a> Fields<'a> {
         self.lookup(key, required)
     }
 
-    fn lookup(&self, key: &'static str, required: bool) -> Option<&'a Node> {
+    fn lookup(&mut self, key: &'static str, required: bool) -> Option<&'a Node> {
         let found = self.entries.iter().find(|(name, _)| name == key).map(|(_, node)| node);
-        if found.is_none() && required && !self.describing() {
-            self.faults.borrow_mut().error(self.path.as_str(), format!("`{key}` is missing"));
+        if found.is_none() && required {
+            self.missing.push((key, None));
         }
         found
+    }
+
+    /// Records that a key is missing which is required in this case only.
+    pub fn miss(&mut self, key: &'static str, hint: impl Into<String>) {
+        self.missing.push((key, Some(hint.into())));
     }
 
     /// A quantity that must be there; NaN stands in for a faulty one.
@@ -302,13 +360,22 @@ impl<'a> Fields<'a> {
         default: f64,
         doc: &'static str,
     ) -> f64 {
-        self.quantity_optional(key, dimension, range, doc).unwrap_or(default)
+        let typed = self.quantity_optional(key, dimension, range, doc);
+        self.note_default(default);
+        typed.unwrap_or(default)
+    }
+
+    /// In describing mode, records what the key asked for last stands for when it is absent.
+    pub fn note_default(&mut self, default: f64) {
+        if let Some(last) = self.description.as_mut().and_then(|list| list.last_mut()) {
+            last.default = Some(default);
+        }
     }
 
     fn number(&self, key: &str, node: &Node, dimension: Dimension, range: Range) -> f64 {
         let path = self.path_of(key);
         let value = quantity::read(&path, node, dimension, &mut self.faults.borrow_mut());
-        if let Some(text) = value.is_finite().then(|| range.fault(value)).flatten() {
+        if let Some(text) = value.is_finite().then(|| range.fault(value, dimension)).flatten() {
             self.faults.borrow_mut().error(path, format!("`{key}` {text}"));
             return f64::NAN;
         }
@@ -404,6 +471,17 @@ impl<'a> Fields<'a> {
                 String::new()
             }
         }
+    }
+
+    /// A list of two names; empty names stand in for faulty ones.
+    pub fn pair(&mut self, key: &'static str, doc: &'static str) -> [String; 2] {
+        let mut names = self.names(key, 2, doc).into_iter();
+        [names.next().unwrap_or_default(), names.next().unwrap_or_default()]
+    }
+
+    /// `source`, which every named thing may carry.
+    pub fn source(&mut self) -> Option<String> {
+        self.text("source", "Where the figures come from; printed in the report.")
     }
 
     /// Free text that may be absent; numbers and booleans are taken as typed.
@@ -541,15 +619,65 @@ impl<'a> Fields<'a> {
         Some(Fields::read(self.path_of(key), node, self.faults, read))
     }
 
+    /// A quantity, or a nested map in its place; `None` when absent or no map where one is needed.
+    pub fn quantity_or_group<T>(
+        &mut self,
+        key: &'static str,
+        (dimension, range): (Dimension, Range),
+        doc: &'static str,
+        plain: impl FnOnce(f64) -> T,
+        read: impl FnOnce(&mut Fields<'_>) -> T,
+    ) -> Option<T> {
+        if self.describing() {
+            let inside = Self::describe(read);
+            self.note(key, Shape::QuantityOrGroup(dimension, range, inside), false, doc);
+            return None;
+        }
+        self.asked.push(key);
+        match self.lookup(key, false)? {
+            node @ Node::Map(_) => Some(Fields::read(self.path_of(key), node, self.faults, read)),
+            node => Some(plain(self.number(key, node, dimension, range))),
+        }
+    }
+
+    /// A section: a map from names of the user's to maps, read in the order of the file.
+    ///
+    /// Names are checked by the caller. An entry that is no map is told and left out.
+    pub fn section<T>(
+        &mut self,
+        key: &'static str,
+        doc: &'static str,
+        read: impl Fn(&mut Fields<'_>) -> T,
+    ) -> Vec<T> {
+        if self.describing() {
+            let inside = Self::describe(&read);
+            self.note(key, Shape::Section(inside), false, doc);
+            return Vec::new();
+        }
+        self.asked.push(key);
+        let Some(node) = self.lookup(key, false) else { return Vec::new() };
+        let section = Fields::new(self.path_of(key), node, self.faults);
+        let mut things = Vec::with_capacity(section.entries.len());
+        for (name, inside) in section.entries {
+            let mut fields = Fields::new(section.path_of(name), inside, self.faults);
+            let thing = read(&mut fields);
+            if !fields.no_map {
+                things.push(thing);
+            }
+            fields.finish();
+        }
+        things
+    }
+
     /// A list of nested maps that may be absent.
     pub fn list<T>(
         &mut self,
         key: &'static str,
         doc: &'static str,
-        read: fn(&mut Fields<'_>) -> T,
+        read: impl Fn(&mut Fields<'_>) -> T,
     ) -> Vec<T> {
         if self.describing() {
-            let inside = Self::describe(read);
+            let inside = Self::describe(&read);
             self.note(key, Shape::List(inside), false, doc);
             return Vec::new();
         }
@@ -560,7 +688,7 @@ impl<'a> Fields<'a> {
                 .iter()
                 .enumerate()
                 .map(|(index, item)| {
-                    Fields::read(self.path_of(&format!("{key}.{index}")), item, self.faults, read)
+                    Fields::read(self.path_of(&format!("{key}.{index}")), item, self.faults, &read)
                 })
                 .collect(),
             Some(other) => {
@@ -585,6 +713,7 @@ impl<'a> Fields<'a> {
                     key: name,
                     shape: Shape::Group(Self::describe(read)),
                     required: true,
+                    default: None,
                     doc,
                 })
                 .collect();
@@ -604,24 +733,36 @@ impl<'a> Fields<'a> {
         }
     }
 
-    /// Reports every key that was never asked for.
+    /// Reports every key that was never asked for and every required one that is missing.
+    ///
+    /// A missing key is not told when a misspelt one stands in its place.
     pub fn finish(self) {
         if self.describing() {
             return;
         }
+        let mut misspelt = Vec::new();
         for (name, _) in self.entries {
             if self.asked.iter().any(|key| key == name) {
                 continue;
             }
-            let mut faults = self.faults.borrow_mut();
-            let path =
-                if self.path.is_empty() { name.clone() } else { format!("{}.{name}", self.path) };
-            let message = format!("`{name}` is not a key of this map");
-            match closest(name, self.asked.iter().copied()) {
-                Some(near) => faults.error_hint(path, message, format!("did you mean `{near}`?")),
-                None => {
-                    faults.error_hint(path, message, format!("it takes {}", self.asked.join(", ")))
+            let hint = match closest(name, self.asked.iter().copied()) {
+                Some(near) => {
+                    misspelt.push(near);
+                    format!("did you mean `{near}`?")
                 }
+                None => format!("it takes {}", self.asked.join(", ")),
+            };
+            let message = format!("`{name}` is not a key of this map");
+            self.faults.borrow_mut().error_at_key(self.path_of(name), message, Some(hint));
+        }
+        if self.no_map {
+            return;
+        }
+        for (key, hint) in self.missing {
+            if !misspelt.contains(&key) {
+                let message = format!("`{key}` is missing");
+                let severity = crate::diagnostic::Severity::Error;
+                self.faults.borrow_mut().add(severity, self.path.as_str(), message, hint);
             }
         }
     }
@@ -653,18 +794,11 @@ pub fn choose<T>(
     let Some((.., read)) = alternatives.iter().find(|(known, ..)| known == name) else {
         let list: Vec<_> = known().collect();
         let message = format!("`{name}` is not known here");
-        match closest(name, known()) {
-            Some(near) => faults.borrow_mut().error_hint(
-                inner_path,
-                message,
-                format!("did you mean `{near}`?"),
-            ),
-            None => faults.borrow_mut().error_hint(
-                inner_path,
-                message,
-                format!("it may be {}", list.join(", ")),
-            ),
-        }
+        let hint = match closest(name, known()) {
+            Some(near) => format!("did you mean `{near}`?"),
+            None => format!("it may be {}", list.join(", ")),
+        };
+        faults.borrow_mut().error_at_key(inner_path, message, Some(hint));
         return None;
     };
     Some(Fields::read(inner_path, inside, faults, read))

@@ -1,5 +1,13 @@
 //! Channels: every quantity of a train that can be asked for by name.
 
+use super::body::Body;
+use super::brake::Brake;
+use super::gear_pair::GearPair;
+use super::load::{Load, LoadLaw};
+use super::magnetic_gear::{MagneticCoupling, MagneticGear};
+use super::motor::Motor;
+use super::planetary::PlanetaryGear;
+use super::shaft::Shaft;
 use crate::quantity::Dimension;
 
 /// One channel.
@@ -77,4 +85,206 @@ pub enum MagneticChannel {
     TorqueSecond,
     /// Torque on the modulator (gears only).
     TorqueModulator,
+}
+
+/// The sections of a scenario that have channels.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Section {
+    /// `bodies`.
+    Bodies,
+    /// `shafts`.
+    Shafts,
+    /// `magnetic_gears`.
+    MagneticGears,
+    /// `magnetic_couplings`.
+    MagneticCouplings,
+    /// `gear_pairs`.
+    GearPairs,
+    /// `planetary_gears`.
+    PlanetaryGears,
+    /// `motors`.
+    Motors,
+    /// `loads`.
+    Loads,
+    /// `brakes`.
+    Brakes,
+}
+
+impl Section {
+    /// All of them in the order of the documentation.
+    pub const ALL: [Self; 9] = [
+        Self::Bodies,
+        Self::Shafts,
+        Self::MagneticGears,
+        Self::MagneticCouplings,
+        Self::GearPairs,
+        Self::PlanetaryGears,
+        Self::Motors,
+        Self::Loads,
+        Self::Brakes,
+    ];
+
+    /// Its key in the file.
+    pub fn key(self) -> &'static str {
+        match self {
+            Self::Bodies => "bodies",
+            Self::Shafts => "shafts",
+            Self::MagneticGears => "magnetic_gears",
+            Self::MagneticCouplings => "magnetic_couplings",
+            Self::GearPairs => "gear_pairs",
+            Self::PlanetaryGears => "planetary_gears",
+            Self::Motors => "motors",
+            Self::Loads => "loads",
+            Self::Brakes => "brakes",
+        }
+    }
+}
+
+/// The things of a train that have channels.
+#[derive(Clone, Copy, Debug)]
+pub struct Train<'a> {
+    /// Bodies.
+    pub bodies: &'a [Body],
+    /// Shafts.
+    pub shafts: &'a [Shaft],
+    /// Magnetic gears.
+    pub magnetic_gears: &'a [MagneticGear],
+    /// Magnetic couplings.
+    pub magnetic_couplings: &'a [MagneticCoupling],
+    /// Rigid gear pairs.
+    pub gear_pairs: &'a [GearPair],
+    /// Rigid planetary sets.
+    pub planetary_gears: &'a [PlanetaryGear],
+    /// Motors.
+    pub motors: &'a [Motor],
+    /// Loads.
+    pub loads: &'a [Load],
+    /// Brakes.
+    pub brakes: &'a [Brake],
+}
+
+/// Lists all channels of a train, sections in the order given, things in file order.
+pub fn list(train: &Train<'_>, order: &[Section]) -> Vec<Channel> {
+    let mut channels = Vec::new();
+    for section in order {
+        match section {
+            Section::Bodies => {
+                for (place, body) in train.bodies.iter().enumerate() {
+                    let mut add = adder(&mut channels, &body.name);
+                    add("speed", ChannelKind::BodySpeed(place), Dimension::Speed);
+                    add("angle", ChannelKind::BodyAngle(place), Dimension::Angle);
+                }
+            }
+            Section::Shafts => {
+                for (place, shaft) in train.shafts.iter().enumerate() {
+                    let mut add = adder(&mut channels, &shaft.name);
+                    add("torque", ChannelKind::ShaftTorque(place), Dimension::Torque);
+                    if !shaft.rigid {
+                        add("twist", ChannelKind::ShaftTwist(place), Dimension::Angle);
+                    }
+                }
+            }
+            Section::MagneticGears => {
+                for (place, gear) in train.magnetic_gears.iter().enumerate() {
+                    magnetic(&mut channels, &gear.name, place, false);
+                }
+            }
+            Section::MagneticCouplings => {
+                let gears = train.magnetic_gears.len();
+                for (place, coupling) in train.magnetic_couplings.iter().enumerate() {
+                    magnetic(&mut channels, &coupling.name, gears + place, true);
+                }
+            }
+            Section::GearPairs => {
+                for (place, pair) in train.gear_pairs.iter().enumerate() {
+                    let mut add = adder(&mut channels, &pair.name);
+                    for (member, channel) in ["torque_a", "torque_b"].into_iter().enumerate() {
+                        let kind = ChannelKind::GearPairTorque(place, member);
+                        add(channel, kind, Dimension::Torque);
+                    }
+                }
+            }
+            Section::PlanetaryGears => {
+                for (place, set) in train.planetary_gears.iter().enumerate() {
+                    let mut add = adder(&mut channels, &set.name);
+                    let members = ["torque_sun", "torque_carrier", "torque_ring"];
+                    for (member, channel) in members.into_iter().enumerate() {
+                        let kind = ChannelKind::PlanetaryTorque(place, member);
+                        add(channel, kind, Dimension::Torque);
+                    }
+                }
+            }
+            Section::Motors => {
+                for (place, motor) in train.motors.iter().enumerate() {
+                    let mut add = adder(&mut channels, &motor.name);
+                    add("torque", ChannelKind::MotorTorque(place), Dimension::Torque);
+                    add("power", ChannelKind::MotorPower(place), Dimension::Power);
+                }
+            }
+            Section::Loads => {
+                for (place, load) in train.loads.iter().enumerate() {
+                    load_channels(&mut channels, load, place);
+                }
+            }
+            Section::Brakes => {
+                for (place, brake) in train.brakes.iter().enumerate() {
+                    let mut add = adder(&mut channels, &brake.name);
+                    add("torque", ChannelKind::BrakeTorque(place), Dimension::Torque);
+                    add("power", ChannelKind::BrakePower(place), Dimension::Power);
+                }
+            }
+        }
+    }
+    channels
+}
+
+/// A closure that appends channels of one thing.
+fn adder<'a>(
+    channels: &'a mut Vec<Channel>,
+    thing: &'a str,
+) -> impl FnMut(&str, ChannelKind, Dimension) + 'a {
+    move |channel, kind, dimension| {
+        channels.push(Channel {
+            name: format!("{thing}.{channel}"),
+            kind,
+            dimension,
+            unit: dimension.si_unit(),
+        });
+    }
+}
+
+fn magnetic(channels: &mut Vec<Channel>, name: &str, place: usize, coupling: bool) {
+    use MagneticChannel as M;
+    let (first, second) =
+        if coupling { ("torque_a", "torque_b") } else { ("torque_inner", "torque_outer") };
+    let mut add = adder(channels, name);
+    for (channel, kind, dimension) in [
+        ("load_angle", M::LoadAngle, Dimension::Angle),
+        ("phase", M::Phase, Dimension::Angle),
+        ("slips", M::Slips, Dimension::One),
+        ("net_slips", M::NetSlips, Dimension::One),
+        ("pull_out_share", M::PullOutShare, Dimension::One),
+        ("short_of_peak", M::ShortOfPeak, Dimension::One),
+        ("slip_speed", M::SlipSpeed, Dimension::Speed),
+        ("loss", M::Loss, Dimension::Power),
+        (first, M::TorqueFirst, Dimension::Torque),
+        (second, M::TorqueSecond, Dimension::Torque),
+    ] {
+        add(channel, ChannelKind::Magnetic(place, kind), dimension);
+    }
+    if !coupling {
+        let kind = ChannelKind::Magnetic(place, M::TorqueModulator);
+        add("torque_modulator", kind, Dimension::Torque);
+    }
+}
+
+fn load_channels(channels: &mut Vec<Channel>, load: &Load, place: usize) {
+    let mut add = adder(channels, &load.name);
+    add("torque", ChannelKind::LoadTorque(place), Dimension::Torque);
+    add("power", ChannelKind::LoadPower(place), Dimension::Power);
+    if matches!(load.law, LoadLaw::AxialRotor { .. }) {
+        add("flow", ChannelKind::LoadFlow(place), Dimension::LinearSpeed);
+        add("tip_speed_ratio", ChannelKind::LoadTipSpeedRatio(place), Dimension::One);
+        add("power_coefficient", ChannelKind::LoadPowerCoefficient(place), Dimension::One);
+    }
 }

@@ -1,5 +1,11 @@
-//! Loads as typed.
+//! Loads as typed, and their laws.
 
+pub mod axial_rotor;
+pub mod curve;
+pub mod power_law;
+mod read;
+
+use crate::component::law::Law;
 use crate::signal::Signal;
 
 /// A load as typed.
@@ -66,4 +72,22 @@ pub enum LoadLaw {
         /// rad.
         pitch: Signal,
     },
+}
+
+impl LoadLaw {
+    /// The scalar law; none for friction and viscous loads, which are dry friction and a linear
+    /// part of the equations. A prescribed torque is the unit law times its signal.
+    pub fn scalar(&self) -> Option<Law> {
+        match self {
+            Self::PowerLaw { torque, speed, exponent } => {
+                Some(Law::PowerLaw(power_law::PowerLaw::new(*torque, *speed, *exponent)))
+            }
+            Self::Curve { points } => Some(Law::LoadCurve(curve::LoadCurve::new(points))),
+            Self::AxialRotor { radius, density, .. } => {
+                Some(Law::AxialRotor(axial_rotor::AxialRotor::new(*radius, *density)))
+            }
+            Self::Prescribed { .. } => Some(Law::Unit),
+            Self::Friction { .. } | Self::Viscous { .. } => None,
+        }
+    }
 }

@@ -1,5 +1,12 @@
-//! Motors and generators as typed.
+//! Motors and generators as typed, and their laws.
 
+pub mod curve;
+pub mod induction;
+pub mod optimal_power;
+pub mod rating_plate;
+mod read;
+
+use crate::component::law::Law;
 use crate::signal::Signal;
 
 /// A motor as typed.
@@ -82,4 +89,77 @@ pub enum MotorLaw {
         /// N*m.
         torque_limit: f64,
     },
+}
+
+/// The figures of a cage motor's rating plate, checked.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Plate {
+    /// Rated power, W.
+    pub power: f64,
+    /// Rated speed, rad/s.
+    pub speed: f64,
+    /// Synchronous speed, rad/s, of the same sense and above it.
+    pub synchronous_speed: f64,
+    /// Starting over rated torque.
+    pub starting: f64,
+    /// Pull-up over rated torque.
+    pub pull_up: f64,
+    /// Breakdown over rated torque, above 1.
+    pub breakdown: f64,
+}
+
+impl Plate {
+    /// Rated torque, N*m, without its sense.
+    pub fn rated_torque(&self) -> f64 {
+        self.power / self.speed.abs()
+    }
+
+    /// Slip at the rated speed.
+    pub fn rated_slip(&self) -> f64 {
+        1.0 - self.speed / self.synchronous_speed
+    }
+
+    /// Slip at the breakdown torque: Kloss's formula through the rated point.
+    pub fn breakdown_slip(&self) -> f64 {
+        self.rated_slip() * (self.breakdown + (self.breakdown * self.breakdown - 1.0).sqrt())
+    }
+}
+
+impl MotorLaw {
+    /// The scalar law at full voltage; none for a speed loop, which has states of its own.
+    /// A prescribed torque is the unit law times its signal.
+    pub fn scalar(&self) -> Option<Law> {
+        let law = match self {
+            Self::RatingPlate {
+                power,
+                speed,
+                synchronous_speed,
+                starting,
+                pull_up,
+                breakdown,
+                ..
+            } => Law::RatingPlate(rating_plate::RatingPlate::new(&Plate {
+                power: *power,
+                speed: *speed,
+                synchronous_speed: *synchronous_speed,
+                starting: *starting,
+                pull_up: *pull_up,
+                breakdown: *breakdown,
+            })),
+            Self::Induction { synchronous_speed, breakdown_torque, breakdown_slip, .. } => {
+                Law::Induction(induction::Induction::new(
+                    *synchronous_speed,
+                    *breakdown_torque,
+                    *breakdown_slip,
+                ))
+            }
+            Self::Curve { points, .. } => Law::MotorCurve(curve::MotorCurve::new(points)),
+            Self::Prescribed { .. } => Law::Unit,
+            Self::SpeedLoop { .. } => return None,
+            Self::OptimalPower { coefficient, torque_limit } => {
+                Law::OptimalPower(optimal_power::OptimalPower::new(*coefficient, *torque_limit))
+            }
+        };
+        Some(law)
+    }
 }

@@ -1,8 +1,28 @@
-//! The scenario as typed: sections of named things, values in SI, nothing resolved yet.
+//! The scenario as typed: sections of named things, values in SI, names checked.
+//!
+//! [`load`] reads a file with all its faults; [`read_node`] reads a patched tree again,
+//! quickly, for studies. The tree ([`crate::tree::Node`]) is the handle by which every
+//! value is reached with its dotted path ([`patch::set`], [`patch::value_at`]).
+
+mod check;
+pub mod describe;
+mod load;
+mod locate;
+pub mod patch;
+mod sections;
+mod signals;
+mod source;
+mod tables;
+mod yaml;
+
+pub use load::{Failure, Loaded, load, load_text, read_node};
+pub use source::Source;
+pub use tables::Tables;
 
 use crate::component::{
     body::Body,
     brake::Brake,
+    channel::Channel,
     gear_pair::GearPair,
     load::Load,
     magnetic_gear::{MagneticCoupling, MagneticGear},
@@ -13,6 +33,7 @@ use crate::component::{
     shaft::Shaft,
 };
 use crate::signal::NamedSignal;
+use crate::tree::Node;
 
 /// A whole scenario file, read and checked value by value.
 #[derive(Clone, Debug, PartialEq)]
@@ -57,6 +78,10 @@ pub struct Scenario {
     pub signals: Vec<NamedSignal>,
     /// Requirements.
     pub requirements: Vec<Requirement>,
+    /// Studies as they stand in the file: name and tree.
+    pub studies: Vec<(String, Node)>,
+    /// All channels of the train, in file order.
+    pub channels: Vec<Channel>,
 }
 
 /// Units of the summary, the charts and the report.

@@ -1,6 +1,21 @@
 //! Signals: quantities as functions of time, as typed and as evaluated.
 
+pub mod check;
+pub mod course;
+mod forms;
+pub mod gust;
+mod kind;
+mod overrides;
+mod range;
+pub mod read;
+mod shape;
+pub mod table;
+
 use crate::quantity::Dimension;
+use table::TableColumns;
+
+/// Reads a table: the path of its `file` key, the file as typed, its columns; the rows in SI.
+pub type TableLoader<'a> = dyn FnMut(&str, &str, &TableColumns) -> Vec<[f64; 2]> + 'a;
 
 /// A signal as typed, in SI.
 #[derive(Clone, Debug, PartialEq)]
@@ -10,23 +25,76 @@ pub enum Signal {
     /// The signal of this name in `signals`.
     Named(String),
     /// `from` before `at`, `to` from `at` on.
-    Step { at: f64, from: f64, to: f64 },
+    Step {
+        /// Time of the step, s.
+        at: f64,
+        /// Value before.
+        from: f64,
+        /// Value from then on.
+        to: f64,
+    },
     /// `from` until `start`, straight to `to` at `end`.
-    Ramp { start: f64, end: f64, from: f64, to: f64 },
+    Ramp {
+        /// First corner, s.
+        start: f64,
+        /// Second corner, s.
+        end: f64,
+        /// Value until the first corner.
+        from: f64,
+        /// Value from the second corner on.
+        to: f64,
+    },
     /// `peak` for start <= t < end, else `base`.
-    Pulse { start: f64, end: f64, base: f64, peak: f64 },
+    Pulse {
+        /// First jump, s.
+        start: f64,
+        /// Second jump, s.
+        end: f64,
+        /// Value outside.
+        base: f64,
+        /// Value inside.
+        peak: f64,
+    },
     /// Straight lines between `[time, value]`; end values held; two equal times are a jump.
     Points(Vec<[f64; 2]>),
     /// `mean + amplitude sin(2 pi frequency t + phase)`.
-    Sine { mean: f64, amplitude: f64, frequency: f64, phase: f64 },
-    /// Rows read from a CSV file, as points.
-    Table { file: String, rows: Vec<[f64; 2]> },
-    /// IEC 61400-1 extreme operating gust: hub wind, m/s; gust magnitude, m/s; 10.5 s from `start`.
-    ExtremeGust { start: f64, hub_wind: f64, magnitude: f64 },
+    Sine {
+        /// Mean value.
+        mean: f64,
+        /// Amplitude.
+        amplitude: f64,
+        /// Frequency, Hz.
+        frequency: f64,
+        /// Phase at time 0, rad.
+        phase: f64,
+    },
+    /// Rows of a CSV file, as points; empty until the file has been read.
+    Table {
+        /// Path of the file as typed, relative to the scenario.
+        file: String,
+        /// Which columns, in which units.
+        columns: TableColumns,
+        /// `[time, value]` in SI.
+        rows: Vec<[f64; 2]>,
+    },
+    /// IEC 61400-1 extreme operating gust, 10.5 s from `start`.
+    ExtremeGust {
+        /// Start, s.
+        start: f64,
+        /// Wind speed at the hub outside the gust, m/s.
+        hub_wind: f64,
+        /// Gust magnitude of the standard, m/s.
+        magnitude: f64,
+    },
     /// Sum of signals of one dimension.
     Sum(Vec<Signal>),
     /// Product, at most one member with a dimension.
-    Product(Vec<Signal>),
+    Product {
+        /// The factors.
+        members: Vec<Signal>,
+        /// The factor whose own units fix a dimension other than a plain number.
+        carrier: Option<usize>,
+    },
 }
 
 /// A named signal of the file.
@@ -38,4 +106,41 @@ pub struct NamedSignal {
     pub dimension: Option<Dimension>,
     /// Its course.
     pub signal: Signal,
+    /// Where its figures come from.
+    pub source: Option<String>,
+}
+
+impl Signal {
+    /// Visits every signal inside this one, this one first, with its path below `path`.
+    pub fn visit<'a>(&'a self, path: &str, look: &mut dyn FnMut(&str, &'a Signal)) {
+        look(path, self);
+        let (members, key) = match self {
+            Self::Sum(members) => (members, "sum"),
+            Self::Product { members, .. } => (members, "product"),
+            _ => return,
+        };
+        for (index, member) in members.iter().enumerate() {
+            member.visit(&format!("{path}.{key}.{index}"), look);
+        }
+    }
+
+    /// Hands every table inside this signal to `load`, with the path of its `file` key.
+    pub fn load_tables(&mut self, path: &str, load: &mut TableLoader<'_>) {
+        match self {
+            Self::Table { file, columns, rows } => {
+                *rows = load(&format!("{path}.table.file"), file, columns);
+            }
+            Self::Sum(members) => {
+                for (index, member) in members.iter_mut().enumerate() {
+                    member.load_tables(&format!("{path}.sum.{index}"), load);
+                }
+            }
+            Self::Product { members, .. } => {
+                for (index, member) in members.iter_mut().enumerate() {
+                    member.load_tables(&format!("{path}.product.{index}"), load);
+                }
+            }
+            _ => {}
+        }
+    }
 }

@@ -1,0 +1,107 @@
+//! What holds for every law: derivatives, pieces, smoothness beyond their ends.
+
+use super::*;
+use crate::component::magnetic_gear::Harmonic;
+use crate::component::motor::Plate;
+
+fn every_law() -> Vec<(&'static str, Law, [f64; 2], f64)> {
+    let harmonics = [Harmonic { order: 3, amplitude: 0.04, phase: 0.3 }];
+    let plate = Plate {
+        power: 22e3,
+        speed: 153.4,
+        synchronous_speed: 157.08,
+        starting: 2.2,
+        pull_up: 1.8,
+        breakdown: 2.9,
+    };
+    let backward = Plate { speed: -153.4, synchronous_speed: -157.08, ..plate };
+    let points = [[-10.0, 5.0], [0.0, 300.0], [140.0, 450.0], [157.0, 0.0]];
+    let load = [[0.0, 50.0], [10.0, 20.0], [40.0, 90.0]];
+    let none = [0.0, 0.0];
+    vec![
+        ("unit", Law::Unit, none, 10.0),
+        ("magnet", Law::Magnet(MagnetLaw::new(75.0, &[]).unwrap()), none, 4.0),
+        ("harmonic magnet", Law::Magnet(MagnetLaw::new(75.0, &harmonics).unwrap()), none, 4.0),
+        ("damper", Law::FadingDamper { coefficient: 24.2, peak_at: 12.0 }, none, 60.0),
+        ("cogging", Law::Cogging { order: 104.0, torque: 2.0, phase: 0.4 }, none, 0.5),
+        ("induction", Law::Induction(Induction::new(157.0, 450.0, 0.12)), none, 400.0),
+        ("plate", Law::RatingPlate(RatingPlate::new(&plate)), none, 400.0),
+        ("plate backward", Law::RatingPlate(RatingPlate::new(&backward)), none, 400.0),
+        ("motor curve", Law::MotorCurve(MotorCurve::new(&points)), none, 200.0),
+        ("generator", Law::OptimalPower(OptimalPower::new(0.12, 900.0)), none, 200.0),
+        ("square load", Law::PowerLaw(PowerLaw::new(700.0, 28.0, 2.0)), none, 60.0),
+        ("cubic load", Law::PowerLaw(PowerLaw::new(700.0, 28.0, 3.0)), none, 60.0),
+        ("odd load", Law::PowerLaw(PowerLaw::new(700.0, 28.0, 1.6)), none, 60.0),
+        ("load curve", Law::LoadCurve(LoadCurve::new(&load)), none, 60.0),
+        ("rotor", Law::AxialRotor(AxialRotor::new(40.0, 1.225)), [11.0, 0.05], 5.0),
+        ("saturation", Law::saturation(3.0), none, 9.0),
+    ]
+}
+
+// The derivative against a central difference, an independent computation.
+#[test]
+fn every_slope_is_the_derivative_of_its_value() {
+    for (name, law, p, reach) in every_law() {
+        for step in 0..401 {
+            let x = reach * (f64::from(step) - 200.3) / 200.0;
+            let piece = law.piece_at(x);
+            let h = 1e-6 * reach;
+            let difference = (law.value(x + h, p, piece) - law.value(x - h, p, piece)) / (2.0 * h);
+            let slope = law.slope(x, p, piece);
+            let size = (law.value(x, p, piece) / reach).abs() + slope.abs();
+            assert!(
+                (difference - slope).abs() < 1e-4 * size + 1e-9,
+                "{name} at {x}: {slope} {difference}"
+            );
+        }
+    }
+}
+
+#[test]
+fn boundaries_rise_and_each_belongs_to_the_piece_above_it() {
+    for (name, law, ..) in every_law() {
+        let boundaries = law.boundaries();
+        assert!(boundaries.windows(2).all(|pair| pair[0] < pair[1]), "{name}: {boundaries:?}");
+        for (index, boundary) in boundaries.iter().enumerate() {
+            assert_eq!(law.piece_at(*boundary), index + 1, "{name}");
+            assert_eq!(law.piece_at(boundary.next_down()), index, "{name}");
+        }
+    }
+}
+
+#[test]
+fn neighbouring_pieces_meet_except_where_a_load_sticks() {
+    for (name, law, p, _) in every_law() {
+        for (index, boundary) in law.boundaries().iter().enumerate() {
+            let (below, above) =
+                (law.value(*boundary, p, index), law.value(*boundary, p, index + 1));
+            if name == "load curve" && boundary.abs() < 1e-12 {
+                assert!((below - above - 100.0).abs() < 1e-9, "twice the torque at rest");
+            } else {
+                let size = below.abs().max(above.abs()).max(1.0);
+                assert!(
+                    (below - above).abs() < 1e-9 * size,
+                    "{name} at {boundary}: {below} {above}"
+                );
+            }
+        }
+    }
+}
+
+// Closed form: c x/(1 + (x/peak)^2) is largest at `peak`, and is c*peak/2 there.
+#[test]
+fn the_fading_damper_is_strongest_where_it_says() {
+    let damper = Law::FadingDamper { coefficient: 24.2, peak_at: 12.0 };
+    assert!((damper.value(12.0, [0.0; 2], 0) - 24.2 * 6.0).abs() < 1e-12);
+    assert!(damper.slope(12.0, [0.0; 2], 0).abs() < 1e-12);
+    assert!(damper.value(40.0, [0.0; 2], 0) < damper.value(12.0, [0.0; 2], 0));
+}
+
+#[test]
+fn only_laws_from_data_have_a_range_to_warn_of() {
+    for (name, law, ..) in every_law() {
+        let warned = matches!(name, "induction" | "motor curve" | "load curve");
+        assert_eq!(law.warn_range().is_some(), warned, "{name}");
+        assert_eq!(!law.warn_text().is_empty(), warned, "{name}");
+    }
+}

@@ -1,0 +1,182 @@
+//! How a load is written in a scenario.
+
+use super::{Load, LoadLaw};
+use crate::component::points::read_curve;
+use crate::quantity::Dimension;
+use crate::signal::Signal;
+use crate::signal::read::{read_signal, read_signal_or};
+use crate::tree::{Alternative, Fields, Range, Shape};
+
+/// The laws a load may have; the last [`NOT_YET`] are refused by name.
+const LAWS: [Alternative<LoadLaw>; 8] = [
+    ("power_law", "Torque*|w/speed|^exponent against the motion.", power_law),
+    ("friction", "Dry friction that sticks and slips.", friction),
+    ("viscous", "Torque in proportion to the speed.", viscous),
+    ("prescribed", "An external torque as a signal, positive drives forward.", prescribed),
+    ("curve", "Points of speed and torque against the motion, read at |speed|.", curve),
+    ("axial_rotor", "Wind or water rotor in a flow.", axial_rotor),
+    ("periodic", "Torque by the body's angle.", periodic),
+    ("propeller", "Ship's propeller.", propeller),
+];
+const NOT_YET: usize = 2;
+
+impl Load {
+    /// Reads the load called `name`.
+    pub fn read(name: &str, fields: &mut Fields<'_>) -> Self {
+        let body = fields.name("body", "The body it loads.");
+        // The reference lists only what can be run.
+        let hidden = if fields.describing() { NOT_YET } else { 0 };
+        let law = fields.choice(
+            "law",
+            true,
+            "How its torque comes about.",
+            LAWS.get(..LAWS.len() - hidden).unwrap_or(&LAWS),
+        );
+        let against = fields
+            .name_optional("against", "Other body (friction and viscous); ground when absent.");
+        let scale = read_signal(
+            fields,
+            "scale",
+            Dimension::One,
+            false,
+            "Factor on what the law delivers; friction: on sliding and breakaway alike.",
+        );
+        let reversed = fields.flag("reversed", false, "Mirrors the law.");
+        let source = fields.source();
+        let between =
+            matches!(law, Some(LoadLaw::Friction { .. } | LoadLaw::Viscous { .. }) | None);
+        if against.is_some() && !between {
+            fields.fault("against", "`against` is for friction and viscous loads only");
+        }
+        // `ground` typed out is the default.
+        let against = against.filter(|other| other != "ground");
+        // A law that is missing or faulty has been told; no torque stands in for it.
+        let law = law.unwrap_or(LoadLaw::Prescribed { torque: Signal::Constant(0.0) });
+        Self { name: name.to_owned(), body, against, law, scale, reversed, source }
+    }
+}
+
+fn power_law(fields: &mut Fields<'_>) -> LoadLaw {
+    let torque = fields.quantity_optional(
+        "torque",
+        Dimension::Torque,
+        Range::NotNegative,
+        "Torque at `speed`; or `power` instead.",
+    );
+    let power = fields.quantity_optional(
+        "power",
+        Dimension::Power,
+        Range::NotNegative,
+        "Power at `speed`, instead of `torque`.",
+    );
+    let speed = fields.quantity(
+        "speed",
+        Dimension::Speed,
+        Range::Positive,
+        "Speed at which torque or power is stated.",
+    );
+    let exponent =
+        fields.quantity("exponent", Dimension::One, Range::Positive, "2 for pumps and fans.");
+    let torque = match (torque, power) {
+        (Some(torque), None) => torque,
+        (None, Some(power)) => power / speed,
+        (Some(_), Some(_)) => {
+            fields.fault("power", "either `torque` or `power` is stated, not both");
+            f64::NAN
+        }
+        (None, None) => {
+            fields.fault_here("`torque` is missing (or `power` in its place)");
+            f64::NAN
+        }
+    };
+    LoadLaw::PowerLaw { torque, speed, exponent }
+}
+
+fn friction(fields: &mut Fields<'_>) -> LoadLaw {
+    let sliding = fields.quantity(
+        "sliding",
+        Dimension::Torque,
+        Range::NotNegative,
+        "Torque while it slides.",
+    );
+    let breakaway = fields.quantity_or(
+        "breakaway",
+        Dimension::Torque,
+        Range::NotNegative,
+        sliding,
+        "torque that breaks it away, `sliding` or more; default `sliding`",
+    );
+    if breakaway < sliding {
+        fields.fault("breakaway", "`breakaway` must not be below `sliding`");
+    }
+    LoadLaw::Friction { sliding, breakaway }
+}
+
+fn viscous(fields: &mut Fields<'_>) -> LoadLaw {
+    LoadLaw::Viscous {
+        coefficient: fields.quantity(
+            "coefficient",
+            Dimension::Damping,
+            Range::NotNegative,
+            "Torque per speed.",
+        ),
+    }
+}
+
+fn prescribed(fields: &mut Fields<'_>) -> LoadLaw {
+    let torque =
+        read_signal(fields, "torque", Dimension::Torque, true, "Torque, positive drives forward.");
+    LoadLaw::Prescribed { torque: torque.unwrap_or(Signal::Constant(0.0)) }
+}
+
+fn curve(fields: &mut Fields<'_>) -> LoadLaw {
+    let points = read_curve(
+        fields,
+        0.0,
+        "Rows of speed and torque, speeds rising from 0; end values are held; a torque at 0 sticks.",
+    );
+    if points.first().is_some_and(|point| point[1] < 0.0) {
+        fields.fault(
+            "points.0.1",
+            "the torque at standstill acts against the motion: it must not be negative",
+        );
+    }
+    LoadLaw::Curve { points }
+}
+
+fn axial_rotor(fields: &mut Fields<'_>) -> LoadLaw {
+    let radius =
+        fields.quantity("radius", Dimension::Length, Range::Positive, "Radius of the rotor.");
+    let density = fields.quantity(
+        "density",
+        Dimension::Density,
+        Range::Positive,
+        "Density of the fluid: air about 1.225 kg/m3, sea water 1025 kg/m3.",
+    );
+    let flow =
+        read_signal(fields, "flow", Dimension::LinearSpeed, true, "Speed of the wind or water.");
+    let pitch = read_signal_or(fields, "pitch", Dimension::Angle, 0.0, "Pitch of the blades.");
+    fields.later("power_coefficient");
+    let flow = flow.unwrap_or(Signal::Constant(0.0));
+    LoadLaw::AxialRotor { radius, density, flow, pitch }
+}
+
+fn periodic(fields: &mut Fields<'_>) -> LoadLaw {
+    fields.fault_here("`periodic` is not in this version of the program");
+    for key in ["mean", "harmonics"] {
+        fields.raw(key, Shape::Free, false, "");
+    }
+    LoadLaw::Prescribed { torque: Signal::Constant(0.0) }
+}
+
+fn propeller(fields: &mut Fields<'_>) -> LoadLaw {
+    fields.fault_here("`propeller` is not in this version of the program");
+    for key in ["diameter", "density", "advance", "points", "torque_coefficient"] {
+        fields.raw(key, Shape::Free, false, "");
+    }
+    LoadLaw::Prescribed { torque: Signal::Constant(0.0) }
+}
+
+#[cfg(test)]
+#[path = "read_tests.rs"]
+mod tests;

@@ -1,0 +1,230 @@
+//! How a motor is written in a scenario.
+
+use super::{Motor, MotorLaw, Plate};
+use crate::component::points::read_curve;
+use crate::quantity::{Dimension, format_number};
+use crate::signal::Signal;
+use crate::signal::read::{read_signal, read_signal_or};
+use crate::tree::{Alternative, Fields, Range, Shape};
+
+/// The laws a motor may have.
+const LAWS: [Alternative<MotorLaw>; 7] = [
+    ("rating_plate", "Cage motor from its rating plate.", rating_plate),
+    ("induction", "Kloss's formula, right near synchronous speed.", induction),
+    ("curve", "Points of speed and torque at full voltage, read at the signed speed.", curve),
+    ("prescribed", "A torque as a signal.", prescribed),
+    ("speed_loop", "PI speed controller with a torque limit.", speed_loop),
+    (
+        "optimal_power",
+        "Generator: -min(coefficient*speed^2, limit) turning forward.",
+        optimal_power,
+    ),
+    ("induction_circuit", "Equivalent circuit of an induction motor.", induction_circuit),
+];
+
+impl Motor {
+    /// Reads the motor called `name`.
+    pub fn read(name: &str, fields: &mut Fields<'_>) -> Self {
+        let body = fields.name("body", "The body it drives; the reaction goes to ground.");
+        // The reference lists only what can be run.
+        let laws =
+            if fields.describing() { LAWS.split_last().map_or(&LAWS[..], |l| l.1) } else { &LAWS };
+        let law = fields.choice("law", true, "How its torque comes about.", laws);
+        let scale = read_signal(
+            fields,
+            "scale",
+            Dimension::One,
+            false,
+            "Factor on what the law delivers, after its limits.",
+        );
+        let reversed = fields.flag("reversed", false, "Mirrors the law: forward is negative.");
+        let source = fields.source();
+        // A law that is missing or faulty has been told; no torque stands in for it.
+        let law = law.unwrap_or(MotorLaw::Prescribed { torque: Signal::Constant(0.0) });
+        Self { name: name.to_owned(), body, law, scale, reversed, source }
+    }
+}
+
+fn voltage(fields: &mut Fields<'_>) -> Signal {
+    let signal =
+        read_signal_or(fields, "voltage", Dimension::One, 1.0, "Share of the rated voltage.");
+    if matches!(signal, Signal::Constant(value) if value < 0.0) {
+        fields.fault("voltage", "`voltage` must not be negative");
+    }
+    signal
+}
+
+fn positive(
+    fields: &mut Fields<'_>,
+    key: &'static str,
+    dimension: Dimension,
+    doc: &'static str,
+) -> f64 {
+    fields.quantity(key, dimension, Range::Positive, doc)
+}
+
+fn rating_plate(fields: &mut Fields<'_>) -> MotorLaw {
+    let power = positive(fields, "power", Dimension::Power, "Rated power at the shaft.");
+    let speed = fields.quantity("speed", Dimension::Speed, Range::NotZero, "Rated speed.");
+    let synchronous_speed = fields.quantity(
+        "synchronous_speed",
+        Dimension::Speed,
+        Range::NotZero,
+        "Speed without load, above the rated speed.",
+    );
+    let mut share = |key, doc| positive(fields, key, Dimension::One, doc);
+    let starting = share("starting_torque", "Torque at standstill over rated torque.");
+    let pull_up = share("pull_up_torque", "Lowest torque on the way up over rated torque.");
+    let breakdown = share("breakdown_torque", "Largest torque over rated torque.");
+    let voltage = voltage(fields);
+    if starting < pull_up {
+        fields.fault("starting_torque", "`starting_torque` must not be below `pull_up_torque`");
+    }
+    if pull_up > breakdown {
+        fields.fault("pull_up_torque", "`pull_up_torque` must not exceed `breakdown_torque`");
+    }
+    if breakdown <= 1.0 {
+        fields.fault("breakdown_torque", "`breakdown_torque` must exceed the rated torque, 100 %");
+    }
+    let share = speed / synchronous_speed;
+    if share >= 1.0 {
+        fields.fault_hint(
+            "speed",
+            "the rated speed must lie below the synchronous speed",
+            "a cage motor slips by a few percent under load, for example 1465 rpm of 1500 rpm",
+        );
+    } else if share < 0.0 {
+        fields.fault_hint(
+            "speed",
+            "the rated speed must have the sign of the synchronous speed",
+            "`reversed: true` mirrors a motor",
+        );
+    } else if breakdown > 1.0 {
+        let plate = Plate { power, speed, synchronous_speed, starting, pull_up, breakdown };
+        let slip = plate.breakdown_slip();
+        if slip >= 1.0 {
+            fields.fault(
+                "breakdown_torque",
+                format!(
+                    "with a rated slip of {} % this breakdown torque would come at a slip of {} %, \
+                     beyond standstill",
+                    format_number(100.0 * plate.rated_slip(), 3),
+                    format_number(100.0 * slip, 3)
+                ),
+            );
+        }
+    }
+    MotorLaw::RatingPlate { power, speed, synchronous_speed, starting, pull_up, breakdown, voltage }
+}
+
+fn induction(fields: &mut Fields<'_>) -> MotorLaw {
+    MotorLaw::Induction {
+        synchronous_speed: fields.quantity(
+            "synchronous_speed",
+            Dimension::Speed,
+            Range::NotZero,
+            "Speed without load; negative turns backward.",
+        ),
+        breakdown_torque: positive(
+            fields,
+            "breakdown_torque",
+            Dimension::Torque,
+            "Largest torque at full voltage.",
+        ),
+        breakdown_slip: positive(
+            fields,
+            "breakdown_slip",
+            Dimension::One,
+            "Slip at the breakdown torque.",
+        ),
+        voltage: voltage(fields),
+    }
+}
+
+fn curve(fields: &mut Fields<'_>) -> MotorLaw {
+    MotorLaw::Curve {
+        points: read_curve(
+            fields,
+            f64::NEG_INFINITY,
+            "Rows of speed and torque, speeds rising; end values are held.",
+        ),
+        voltage: voltage(fields),
+    }
+}
+
+fn prescribed(fields: &mut Fields<'_>) -> MotorLaw {
+    let torque =
+        read_signal(fields, "torque", Dimension::Torque, true, "Torque, positive drives forward.");
+    MotorLaw::Prescribed { torque: torque.unwrap_or(Signal::Constant(0.0)) }
+}
+
+fn speed_loop(fields: &mut Fields<'_>) -> MotorLaw {
+    let speed = read_signal(fields, "speed", Dimension::Speed, true, "Speed asked for.");
+    MotorLaw::SpeedLoop {
+        speed: speed.unwrap_or(Signal::Constant(0.0)),
+        torque_limit: positive(
+            fields,
+            "torque_limit",
+            Dimension::Torque,
+            "The command stays within plus and minus this.",
+        ),
+        gain: positive(fields, "gain", Dimension::Damping, "torque per speed error"),
+        integral_time: fields.quantity_optional(
+            "integral_time",
+            Dimension::Time,
+            Range::Positive,
+            "Time in which the integral part doubles the proportional one; absent: no integral.",
+        ),
+        lag: fields.quantity_or(
+            "lag",
+            Dimension::Time,
+            Range::NotNegative,
+            0.0,
+            "First-order lag of the torque behind the command.",
+        ),
+    }
+}
+
+fn optimal_power(fields: &mut Fields<'_>) -> MotorLaw {
+    MotorLaw::OptimalPower {
+        coefficient: positive(
+            fields,
+            "coefficient",
+            Dimension::TorquePerSpeedSquared,
+            "Braking torque per speed squared.",
+        ),
+        torque_limit: positive(
+            fields,
+            "torque_limit",
+            Dimension::Torque,
+            "The braking torque stays below this.",
+        ),
+    }
+}
+
+/// Keys of a law that this version refuses by name.
+const CIRCUIT_KEYS: [&str; 11] = [
+    "line_voltage",
+    "frequency",
+    "pole_pairs",
+    "stator_resistance",
+    "stator_reactance",
+    "rotor_resistance",
+    "rotor_reactance",
+    "magnetising_reactance",
+    "voltage",
+    "connected",
+    "transient",
+];
+
+fn induction_circuit(fields: &mut Fields<'_>) -> MotorLaw {
+    fields.fault_here("`induction_circuit` is not in this version of the program");
+    for key in CIRCUIT_KEYS {
+        fields.raw(key, Shape::Free, false, "");
+    }
+    MotorLaw::Prescribed { torque: Signal::Constant(0.0) }
+}
+
+#[cfg(test)]
+#[path = "read_tests.rs"]
+mod tests;

@@ -1,0 +1,533 @@
+//! The equations of one mode over one stretch of time, ready to be evaluated.
+
+use super::channels::{self, ChannelForm};
+use super::mode::{Contact, FrictionMode, Mode};
+use super::{Equations, Factor, PowerKind, Shape, Sliding, StateRow, Target, dot};
+use crate::component::law::Law;
+use crate::model::BodyRow;
+use crate::signal::course::{Overrides, SlotId};
+use nalgebra::{DMatrix, DVector};
+
+/// Up to this many states the matrix is kept dense; beyond, only its entries.
+pub const DENSE_LIMIT: usize = 16;
+
+/// The matrix of the linear part.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Matrix {
+    /// Column by column.
+    Dense(Vec<f64>),
+    /// Row starts, columns and values of the entries.
+    Sparse {
+        /// Start of each row in the other two, and the end.
+        starts: Vec<usize>,
+        /// Column and value of each entry.
+        entries: Vec<(usize, f64)>,
+    },
+}
+
+/// A term that takes part in an evaluation.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Active {
+    /// Its place in the frame's law values.
+    pub place: usize,
+    /// How its value comes about.
+    pub function: Function,
+    /// Input as a form over the scaled state.
+    pub input: StateRow,
+    /// Added to the input.
+    pub offset: Option<(f64, SlotId)>,
+    /// Parameters of the law.
+    pub parameters: [Option<SlotId>; 2],
+    /// Factor on the value.
+    pub factor: Strength,
+    /// Column: entries of the scaled rates.
+    pub column: StateRow,
+    /// How its power counts.
+    pub power: PowerKind,
+    /// Speed of its power; `None`: the input.
+    pub speed: Option<StateRow>,
+    /// Heat of an induction motor's rotor: place in the list of heats and synchronous speed, rad/s.
+    pub heat: Option<(usize, f64)>,
+}
+
+/// The function of an active term.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Function {
+    /// A law in one of its pieces.
+    Law(Law, usize),
+    /// The input itself.
+    Linear,
+    /// Friction of constant size against this direction.
+    Friction(f64, f64),
+    /// Friction along a load curve against this direction.
+    FrictionCurve(Law, f64),
+}
+
+/// A factor over one stretch.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Strength {
+    /// The same all along.
+    Constant(f64),
+    /// Follows signals.
+    Varying(Factor),
+}
+
+/// Powers that follow from the state without a law.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct QuietPowers {
+    /// Lost: weight times the square of a state's scaled rate (deformation rates).
+    pub rate_losses: Vec<(usize, f64)>,
+    /// Lost: weight times the square of a form.
+    pub losses: Vec<(f64, StateRow)>,
+    /// Power of loads and motors that are linear: weight times the product of two forms.
+    pub drives: Vec<(f64, StateRow, StateRow)>,
+    /// Shafts whose flank has not caught up: twist state, rate state scale, stiffness, half play.
+    pub released: Vec<(usize, f64, f64, f64)>,
+}
+
+/// The equations of one mode over one stretch of time.
+#[derive(Clone, Debug)]
+pub struct Assembly {
+    /// Start of the stretch, s: signals are read on the branch that is live just after it.
+    pub start: f64,
+    /// Linear part of the scaled rates.
+    pub matrix: Matrix,
+    /// The same as a full matrix, for linearisation.
+    pub full: DMatrix<f64>,
+    /// Laws that take part.
+    pub active: Vec<Active>,
+    /// Linear terms that stand in the matrix; their values are still asked for by channels.
+    pub folded: Vec<Active>,
+    /// Powers of the linear part.
+    pub powers: QuietPowers,
+    /// Stuck friction elements by place.
+    pub stuck: Vec<usize>,
+    /// Rates along the stuck rows without the holding torques: forms over state and law values, rad/s2.
+    pub stuck_drive: Vec<(StateRow, Vec<(usize, f64)>)>,
+    /// `R M^-1 R'` of the stuck rows.
+    pub stuck_compliance: DMatrix<f64>,
+    /// Projects independent speeds (physical) onto the stuck rows.
+    pub projection: Option<DMatrix<f64>>,
+    /// How each channel follows from state and law values.
+    pub channels: Vec<ChannelForm>,
+    /// True when something in this stretch follows time.
+    pub varies: bool,
+    /// Number of law values in a frame: terms, frictions, and the constant 1 of contact offsets.
+    pub law_count: usize,
+}
+
+/// Assembles the equations of a mode from `start` to `end`.
+pub fn assemble(equations: &Equations, mode: &Mode, start: f64, end: f64, overrides: &Overrides) -> Assembly {
+    let parts = Parts::new(equations, mode);
+    let constant_place = equations.terms.len() + equations.frictions.len();
+    let mut state_rows = DMatrix::zeros(equations.size, equations.size);
+    let mut active = Vec::new();
+    let mut folded = Vec::new();
+    let mut powers = quiet_powers(equations, mode);
+    let mut varies = false;
+    let strength = |factor: &Factor, varies: &mut bool| {
+        let mut value = 1.0;
+        for &(slot, power) in &factor.slots {
+            match equations.bank.constant_on(slot, start, end, overrides) {
+                Some(part) => value *= part.powi(power),
+                None => {
+                    *varies = true;
+                    return Strength::Varying(factor.clone());
+                }
+            }
+        }
+        Strength::Constant(value)
+    };
+    for (place, term) in equations.terms.iter().enumerate() {
+        let held = equations.controllers.iter().zip(&mode.held).any(|(controller, held)| {
+            let off = controller
+                .scale
+                .and_then(|slot| equations.bank.constant_on(slot, start, end, overrides))
+                .is_some_and(|scale| scale == 0.0);
+            controller.integral == Some(place) && (*held || off)
+        });
+        if held {
+            continue;
+        }
+        let factor = strength(&term.factor, &mut varies);
+        if factor == Strength::Constant(0.0) {
+            continue;
+        }
+        let moving = term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
+        for slot in moving {
+            varies |= equations.bank.constant_on(slot, start, end, overrides).is_none();
+        }
+        let column = match &term.target {
+            Target::Torque(direction) => parts.column(direction),
+            Target::State(state, rate) => vec![(*state, rate / equations.scale[*state])],
+        };
+        if let (Shape::Linear, None, Strength::Constant(value)) = (&term.shape, term.offset, &factor) {
+            for &(row, share) in &column {
+                for &(state, weight) in &term.input {
+                    state_rows[(row, state)] += share * value * weight;
+                }
+            }
+            if term.power == PowerKind::Drive {
+                let speed = term.speed.clone().unwrap_or_else(|| term.input.clone());
+                powers.drives.push((*value, term.input.clone(), speed));
+            }
+            folded.push(Active::of_term(place, term, mode.pieces[place], factor, column));
+            continue;
+        }
+        active.push(Active::of_term(place, term, mode.pieces[place], factor, column));
+    }
+    for (index, friction) in equations.frictions.iter().enumerate() {
+        let direction = mode.frictions[index].direction();
+        let factor = strength(&friction.factor, &mut varies);
+        if direction == 0.0 || factor == Strength::Constant(0.0) {
+            continue;
+        }
+        active.push(Active {
+            place: equations.terms.len() + index,
+            function: match &friction.sliding {
+                Sliding::Constant(torque) => Function::Friction(*torque, direction),
+                Sliding::Curve(law) => Function::FrictionCurve(law.clone(), direction),
+            },
+            input: friction.speed.clone(),
+            offset: None,
+            parameters: [None; 2],
+            factor,
+            column: parts.column(&friction.row),
+            power: PowerKind::Lost,
+            speed: None,
+            heat: None,
+        });
+    }
+    if parts.has_constant {
+        active.push(Active {
+            place: constant_place,
+            function: Function::Law(Law::Unit, 0),
+            input: Vec::new(),
+            offset: None,
+            parameters: [None; 2],
+            factor: Strength::Constant(1.0),
+            column: parts.column(&parts.constant_row()),
+            power: PowerKind::None,
+            speed: None,
+            heat: None,
+        });
+    }
+    let linear = &parts.accelerate * &parts.force;
+    let mut full = state_rows;
+    for row in 0..equations.speeds {
+        for column in 0..equations.size {
+            full[(row, column)] += linear[(row, column)] * equations.scale[column] / equations.scale[row];
+        }
+    }
+    add_rates(equations, &mut full);
+    for controller in &equations.controllers {
+        if let Some(state) = controller.torque_state {
+            full[(state, state)] -= 1.0 / controller.lag;
+        }
+    }
+    let channels = channels::forms(equations, mode, &parts);
+    let (stuck_drive, stuck_compliance) = parts.stuck_forms(equations);
+    Assembly {
+        start,
+        matrix: pack(&full),
+        full,
+        active,
+        folded,
+        powers,
+        stuck: parts.stuck.clone(),
+        stuck_drive,
+        stuck_compliance,
+        projection: parts.projection.clone(),
+        channels,
+        varies,
+        law_count: constant_place + 1,
+    }
+}
+
+/// Deformations and angles change at a rate that is a form over the independent speeds.
+fn add_rates(equations: &Equations, full: &mut DMatrix<f64>) {
+    let mut add = |place: usize, row: BodyRow| {
+        for (state, value) in equations.speed_row(&row) {
+            full[(place, state)] += value / equations.scale[place];
+        }
+    };
+    for (shaft, place) in equations.model.shafts.iter().zip(&equations.twist_state) {
+        if let Some(place) = place {
+            add(*place, shaft.row());
+        }
+    }
+    for (magnet, place) in equations.model.magnets.iter().zip(&equations.phase_state) {
+        add(*place, magnet.row());
+    }
+    for (place, row) in &equations.angle_states {
+        add(*place, row.clone());
+    }
+}
+
+fn pack(full: &DMatrix<f64>) -> Matrix {
+    if full.nrows() <= DENSE_LIMIT {
+        return Matrix::Dense(full.as_slice().to_vec());
+    }
+    let mut starts = vec![0];
+    let mut entries = Vec::new();
+    for row in 0..full.nrows() {
+        for column in 0..full.ncols() {
+            if full[(row, column)] != 0.0 {
+                entries.push((column, full[(row, column)]));
+            }
+        }
+        starts.push(entries.len());
+    }
+    Matrix::Sparse { starts, entries }
+}
+
+fn quiet_powers(equations: &Equations, mode: &Mode) -> QuietPowers {
+    let mut powers = QuietPowers::default();
+    for (index, (shaft, place)) in equations.model.shafts.iter().zip(&equations.twist_state).enumerate() {
+        let Some(place) = *place else { continue };
+        let scale = equations.scale[place];
+        match mode.contacts[index] {
+            Contact::Gap => {
+                powers.released.push((place, scale, shaft.stiffness, shaft.backlash / 2.0));
+            }
+            _ if shaft.damping > 0.0 => powers.rate_losses.push((place, shaft.damping * scale * scale)),
+            _ => {}
+        }
+    }
+    for damper in &equations.dampers {
+        let row = equations.speed_row(&damper.row);
+        if let super::Owner::Magnet(index) = damper.owner {
+            if damper.row == equations.model.magnets[index].row() {
+                let place = equations.phase_state[index];
+                powers.rate_losses.push((place, damper.coefficient * equations.scale[place].powi(2)));
+                continue;
+            }
+        }
+        powers.losses.push((damper.coefficient, row));
+    }
+    powers
+}
+
+/// Pieces of an assembly that several of its parts need.
+pub struct Parts {
+    /// Generalised torque over the physical state, `speeds x size`.
+    pub force: DMatrix<f64>,
+    /// Torque on each body over the physical state, `bodies x size`.
+    pub body_force: DMatrix<f64>,
+    /// Constant torque on each body (contact offsets of free play).
+    pub body_constant: DVector<f64>,
+    /// From generalised torque to acceleration, projection included.
+    pub accelerate: DMatrix<f64>,
+    /// Stuck friction elements.
+    pub stuck: Vec<usize>,
+    /// Their rows over the independent speeds (physical), `stuck x speeds`.
+    pub rows: DMatrix<f64>,
+    /// Projection of speeds onto the stuck rows' kernel.
+    pub projection: Option<DMatrix<f64>>,
+    /// True when a contact offset acts.
+    has_constant: bool,
+    equations_scale: Vec<f64>,
+    dense_rows: Vec<Vec<(usize, f64)>>,
+    directions: Vec<(usize, BodyRow)>,
+}
+
+impl Parts {
+    fn new(equations: &Equations, mode: &Mode) -> Self {
+        let model = &equations.model;
+        let reduction = &model.reduction;
+        let bodies = model.scenario.bodies.len();
+        let mut body_force = DMatrix::zeros(bodies, equations.size);
+        let mut body_constant = DVector::zeros(bodies);
+        // Torque along a row: minus the row's transpose times (coefficient times a form).
+        let mut resist = |row: &BodyRow, form: &[(usize, f64)], constant: f64| {
+            for &(body, factor) in row {
+                for &(state, value) in form {
+                    body_force[(body, state)] -= factor * value;
+                }
+                body_constant[body] -= factor * constant;
+            }
+        };
+        let rate_form = |row: &BodyRow, coefficient: f64| -> StateRow {
+            let dense = reduction.dense(row);
+            dense
+                .iter()
+                .enumerate()
+                .filter(|(_, value)| **value != 0.0)
+                .map(|(place, value)| (place, value * coefficient))
+                .collect()
+        };
+        for (index, (shaft, place)) in model.shafts.iter().zip(&equations.twist_state).enumerate() {
+            let Some(place) = *place else { continue };
+            let offset = match mode.contacts[index] {
+                Contact::Gap => continue,
+                Contact::Always => 0.0,
+                Contact::Forward => -shaft.stiffness * shaft.backlash / 2.0,
+                Contact::Backward => shaft.stiffness * shaft.backlash / 2.0,
+            };
+            let row = shaft.row();
+            resist(&row, &[(place, shaft.stiffness)], offset);
+            if shaft.damping > 0.0 {
+                resist(&row, &rate_form(&row, shaft.damping), 0.0);
+            }
+        }
+        for damper in &equations.dampers {
+            resist(&damper.row, &rate_form(&damper.row, damper.coefficient), 0.0);
+        }
+        let transfer = transfer(equations);
+        let force = &transfer * &body_force;
+        let stuck: Vec<usize> = (0..mode.frictions.len())
+            .filter(|index| mode.frictions[*index] == FrictionMode::Stuck)
+            .collect();
+        let mut rows = DMatrix::zeros(stuck.len(), equations.speeds);
+        for (line, index) in stuck.iter().enumerate() {
+            rows.set_row(line, &reduction.dense(&equations.frictions[*index].row).transpose());
+        }
+        let inverse = &reduction.inverse_mass;
+        let (accelerate, projection) = if stuck.is_empty() {
+            (inverse.clone(), None)
+        } else {
+            let compliance = &rows * inverse * rows.transpose();
+            let pseudo = super::holding::pseudo_inverse(&compliance);
+            let keep = DMatrix::identity(equations.speeds, equations.speeds)
+                - inverse * rows.transpose() * pseudo * &rows;
+            (&keep * inverse, Some(keep))
+        };
+        let directions = equations
+            .terms
+            .iter()
+            .enumerate()
+            .filter_map(|(place, term)| match &term.target {
+                Target::Torque(direction) => Some((place, direction.clone())),
+                Target::State(..) => None,
+            })
+            .chain(
+                equations
+                    .frictions
+                    .iter()
+                    .enumerate()
+                    .map(|(index, friction)| (equations.terms.len() + index, friction.row.clone())),
+            )
+            .chain(std::iter::once((
+                equations.terms.len() + equations.frictions.len(),
+                body_constant.iter().copied().enumerate().filter(|(_, torque)| *torque != 0.0).collect(),
+            )))
+            .collect();
+        Self {
+            has_constant: body_constant.iter().any(|torque| *torque != 0.0),
+            force,
+            body_force,
+            body_constant,
+            accelerate,
+            stuck,
+            rows,
+            projection,
+            equations_scale: equations.scale.clone(),
+            dense_rows: reduction.speeds.clone(),
+            directions,
+        }
+    }
+
+    /// Acceleration (physical) from a unit torque along a form over bodies.
+    pub fn acceleration(&self, direction: &[(usize, f64)]) -> DVector<f64> {
+        let mut generalised = DVector::zeros(self.accelerate.ncols());
+        for &(body, factor) in direction {
+            for &(place, share) in &self.dense_rows[body] {
+                generalised[place] += factor * share;
+            }
+        }
+        &self.accelerate * generalised
+    }
+
+    /// The scaled column of a unit torque along a form over bodies.
+    fn column(&self, direction: &[(usize, f64)]) -> StateRow {
+        self.acceleration(direction)
+            .iter()
+            .enumerate()
+            .filter(|(_, value)| value.abs() > 1e-300)
+            .map(|(place, value)| (place, value / self.equations_scale[place]))
+            .collect()
+    }
+
+    fn constant_row(&self) -> BodyRow {
+        self.body_constant.iter().copied().enumerate().filter(|(_, torque)| *torque != 0.0).collect()
+    }
+
+    /// Torque directions of all laws by place in the frame: terms, then frictions.
+    pub fn directions(&self) -> &[(usize, BodyRow)] {
+        &self.directions
+    }
+
+    /// Accelerations along the stuck rows without holding torques, and their compliance.
+    fn stuck_forms(&self, equations: &Equations) -> (Vec<(StateRow, Vec<(usize, f64)>)>, DMatrix<f64>) {
+        let inverse = &equations.model.reduction.inverse_mass;
+        let free = inverse * &self.force;
+        let forms = (0..self.stuck.len())
+            .map(|line| {
+                let row = self.rows.row(line);
+                let over_state = row * &free;
+                let state = over_state
+                    .iter()
+                    .enumerate()
+                    .filter(|(_, value)| **value != 0.0)
+                    .map(|(place, value)| (place, value * equations.scale[place]))
+                    .collect();
+                let by_torque = row * inverse;
+                let laws = self
+                    .directions
+                    .iter()
+                    .filter(|(place, _)| {
+                        !self.stuck.iter().any(|index| equations.terms.len() + index == *place)
+                    })
+                    .map(|(place, direction)| {
+                        let dense = equations.model.reduction.dense(direction);
+                        (*place, (by_torque.clone() * dense)[0])
+                    })
+                    .filter(|(_, value)| *value != 0.0)
+                    .collect();
+                (state, laws)
+            })
+            .collect();
+        (forms, &self.rows * inverse * self.rows.transpose())
+    }
+}
+
+/// `G'`: from torques on bodies to generalised torques.
+fn transfer(equations: &Equations) -> DMatrix<f64> {
+    let reduction = &equations.model.reduction;
+    let mut matrix = DMatrix::zeros(equations.speeds, reduction.speeds.len());
+    for (body, form) in reduction.speeds.iter().enumerate() {
+        for &(place, share) in form {
+            matrix[(place, body)] += share;
+        }
+    }
+    matrix
+}
+
+impl Active {
+    fn of_term(place: usize, term: &super::Term, piece: usize, factor: Strength, column: StateRow) -> Self {
+        Self {
+            place,
+            function: match &term.shape {
+                Shape::Law(law) => Function::Law(law.clone(), piece),
+                Shape::Linear => Function::Linear,
+            },
+            input: term.input.clone(),
+            offset: term.offset,
+            parameters: term.parameters,
+            factor,
+            column,
+            power: term.power,
+            speed: term.speed.clone(),
+            heat: term.heat,
+        }
+    }
+
+    /// The input at a state.
+    #[inline]
+    pub fn input_at(&self, state: &[f64]) -> f64 {
+        match self.input.as_slice() {
+            [(place, factor)] => factor * state[*place],
+            many => dot(many, state),
+        }
+    }
+}

@@ -1,0 +1,442 @@
+//! From the model to states, terms, frictions and dampers.
+
+use super::{
+    Controller, Damper, Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, StateRow, Target, Term,
+    speed_row,
+};
+use crate::component::law::Law;
+use crate::component::load::{Load, LoadLaw};
+use crate::component::magnetic_gear::Member;
+use crate::component::motor::{Motor, MotorLaw};
+use crate::model::{BodyRow, Model, body_index, difference};
+use crate::signal::Signal;
+use crate::signal::course::{SignalBank, SlotId};
+
+/// Builds the equations of a model.
+pub fn build(model: &Model) -> Equations {
+    let mut scale: Vec<f64> =
+        model.reduction.independent.iter().map(|body| model.scales.body_speed[*body]).collect();
+    let speeds = scale.len();
+    let mut twist_state = Vec::new();
+    for (index, shaft) in model.shafts.iter().enumerate() {
+        twist_state.push((!shaft.rigid).then(|| {
+            scale.push(model.scales.twist[index]);
+            scale.len() - 1
+        }));
+    }
+    let phase_state = model
+        .magnets
+        .iter()
+        .map(|_| {
+            scale.push(1.0);
+            scale.len() - 1
+        })
+        .collect();
+    let mut equations = Equations {
+        model: model.clone(),
+        size: 0,
+        speeds,
+        scale,
+        twist_state,
+        phase_state,
+        angle_states: Vec::new(),
+        terms: Vec::new(),
+        frictions: Vec::new(),
+        dampers: Vec::new(),
+        controllers: Vec::new(),
+        heats: Vec::new(),
+        bank: SignalBank::new(&model.scenario.signals),
+        warnings: Vec::new(),
+    };
+    for index in 0..model.magnets.len() {
+        add_magnet(&mut equations, index);
+    }
+    let scenario = &model.scenario;
+    for (index, motor) in scenario.motors.iter().enumerate() {
+        add_motor(&mut equations, index, motor);
+    }
+    for (index, load) in scenario.loads.iter().enumerate() {
+        add_load(&mut equations, index, load);
+    }
+    for (index, brake) in scenario.brakes.iter().enumerate() {
+        let row = difference(
+            body_index(scenario, &brake.body),
+            brake.against.as_deref().and_then(|name| body_index(scenario, name)),
+        );
+        let slot = equations.bank.add(&format!("brakes.{}.applied", brake.name), &brake.applied);
+        let factor = Factor { slots: vec![(slot, 1)] };
+        add_friction(
+            &mut equations,
+            Owner::Brake(index),
+            &brake.name,
+            row,
+            Sliding::Constant(brake.torque),
+            brake.breakaway,
+            factor,
+        );
+    }
+    equations.size = equations.scale.len();
+    equations
+}
+
+fn add_magnet(equations: &mut Equations, index: usize) {
+    let magnet = equations.model.magnets[index].clone();
+    let row = magnet.row();
+    let against: BodyRow = row.iter().map(|(body, count)| (*body, -count)).collect();
+    let place = equations.phase_state[index];
+    equations.terms.push(Term {
+        owner: Owner::Magnet(index),
+        shape: Shape::Law(Law::Magnet(magnet.law.clone())),
+        input: vec![(place, equations.scale[place])],
+        offset: None,
+        parameters: [None; 2],
+        factor: Factor::default(),
+        target: Target::Torque(against),
+        power: PowerKind::None,
+        speed: None,
+        input_size: 1.0,
+            heat: None,
+    });
+    if let Some(fading) = magnet.fading {
+        let scaled: BodyRow = row.iter().map(|(body, count)| (*body, count / fading.count)).collect();
+        let input = speed_row(&equations.model, &equations.scale, &scaled);
+        equations.terms.push(Term {
+            owner: Owner::Magnet(index),
+            shape: Shape::Law(Law::FadingDamper { coefficient: fading.coefficient, peak_at: fading.peak_at }),
+            input,
+            offset: None,
+            parameters: [None; 2],
+            factor: Factor::default(),
+            target: Target::Torque(scaled.iter().map(|(body, factor)| (*body, -factor)).collect()),
+            power: PowerKind::Lost,
+            speed: None,
+            input_size: fading.peak_at,
+            heat: None,
+        });
+    }
+    if magnet.damping > 0.0 {
+        let (owner, coefficient) = (Owner::Magnet(index), magnet.damping);
+        equations.dampers.push(Damper { owner, row, coefficient, is_load: false });
+    }
+    add_cogging_and_drag(equations, index);
+}
+
+fn add_cogging_and_drag(equations: &mut Equations, index: usize) {
+    let Some(gear) = equations.model.scenario.magnetic_gears.get(index).cloned() else { return };
+    let members = equations.model.magnets[index].members.clone();
+    let body_of = |member: Member| match member {
+        Member::Inner => members[0].body,
+        Member::Modulator => members[1].body,
+        Member::Outer => members[2].body,
+    };
+    for cogging in &gear.cogging {
+        let row = difference(body_of(cogging.at), members[1].body);
+        let place = angle_state(equations, row.clone());
+        equations.terms.push(Term {
+            owner: Owner::Magnet(index),
+            shape: Shape::Law(Law::Cogging {
+                order: f64::from(cogging.order),
+                torque: cogging.torque,
+                phase: cogging.phase,
+            }),
+            input: vec![(place, equations.scale[place])],
+            offset: None,
+            parameters: [None; 2],
+            factor: Factor::default(),
+            target: Target::Torque(row),
+            power: PowerKind::None,
+            speed: None,
+            input_size: 1.0,
+            heat: None,
+        });
+    }
+    for (number, drag) in gear.drag.iter().enumerate() {
+        let against = if drag.against_modulator { members[1].body } else { None };
+        let row = difference(body_of(drag.at), against);
+        if row.is_empty() {
+            continue;
+        }
+        if drag.per_speed > 0.0 {
+            equations.dampers.push(Damper {
+                owner: Owner::Magnet(index),
+                row: row.clone(),
+                coefficient: drag.per_speed,
+                is_load: false,
+            });
+        }
+        if drag.constant > 0.0 {
+            let name = format!("{}.drag.{number}", gear.name);
+            let sliding = Sliding::Constant(drag.constant);
+            let owner = Owner::Magnet(index);
+            add_friction(equations, owner, &name, row, sliding, drag.constant, Factor::default());
+        }
+    }
+}
+
+/// The state of an angle that a law needs, made once for each row.
+fn angle_state(equations: &mut Equations, row: BodyRow) -> usize {
+    if let Some((place, _)) = equations.angle_states.iter().find(|(_, known)| *known == row) {
+        return *place;
+    }
+    equations.scale.push(1.0);
+    let place = equations.scale.len() - 1;
+    equations.angle_states.push((place, row));
+    place
+}
+
+fn slot(equations: &mut Equations, path: String, signal: &Signal) -> SlotId {
+    equations.bank.add(&path, signal)
+}
+
+/// A factor of a signal to a power; a plain 1 in the file still gets its slot, since a protection may set it.
+fn factor_of(equations: &mut Equations, section: &str, name: &str, scale: &Option<Signal>) -> Factor {
+    let signal = scale.clone().unwrap_or(Signal::Constant(1.0));
+    Factor { slots: vec![(slot(equations, format!("{section}.{name}.scale"), &signal), 1)] }
+}
+
+fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) {
+    let Some(body) = body_index(&equations.model.scenario, &motor.body) else { return };
+    let sign = if motor.reversed { -1.0 } else { 1.0 };
+    let direction: BodyRow = vec![(body, sign)];
+    let speed = speed_row(&equations.model, &equations.scale, &direction);
+    let mut factor = factor_of(equations, "motors", &motor.name, &motor.scale);
+    let law_path = |law: &str, key: &str| format!("motors.{}.law.{law}.{key}", motor.name);
+    let size = equations.model.scales.body_speed[body];
+    let mut with_voltage = |equations: &mut Equations, law: &str, voltage: &Signal| {
+        let place = slot(equations, law_path(law, "voltage"), voltage);
+        factor.slots.push((place, 2));
+    };
+    let law = match &motor.law {
+        MotorLaw::RatingPlate { voltage, .. } => {
+            with_voltage(equations, "rating_plate", voltage);
+            motor.law.scalar()
+        }
+        MotorLaw::Induction { voltage, .. } => {
+            with_voltage(equations, "induction", voltage);
+            motor.law.scalar()
+        }
+        MotorLaw::Curve { voltage, .. } => {
+            with_voltage(equations, "curve", voltage);
+            motor.law.scalar()
+        }
+        MotorLaw::OptimalPower { .. } => motor.law.scalar(),
+        MotorLaw::Prescribed { torque } => {
+            let place = slot(equations, law_path("prescribed", "torque"), torque);
+            factor.slots.push((place, 1));
+            Some(Law::Unit)
+        }
+        MotorLaw::SpeedLoop { .. } => {
+            add_speed_loop(equations, index, motor, body, sign, factor);
+            return;
+        }
+    };
+    let Some(law) = law else { return };
+    let synchronous_speed = match &motor.law {
+        MotorLaw::RatingPlate { synchronous_speed, .. } | MotorLaw::Induction { synchronous_speed, .. } => {
+            Some(*synchronous_speed)
+        }
+        _ => None,
+    };
+    let heat = synchronous_speed.map(|speed| {
+        equations.heats.push((index, speed));
+        (equations.heats.len() - 1, speed)
+    });
+    equations.terms.push(Term {
+        owner: Owner::Motor(index),
+        speed: matches!(law, Law::Unit).then(|| speed.clone()),
+        input: if matches!(law, Law::Unit) { Vec::new() } else { speed },
+        shape: Shape::Law(law),
+        offset: None,
+        parameters: [None; 2],
+        factor,
+        target: Target::Torque(direction),
+        power: PowerKind::Drive,
+        input_size: size,
+        heat,
+    });
+}
+
+/// Command, integral and lag of a speed loop, as three terms at the most.
+///
+/// ```text
+/// e = ref - w;  command = clamp(gain*e + I);  dI/dt = gain*e/Ti unless held;  lag*dT/dt = command - T
+/// ```
+fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: usize, sign: f64, factor: Factor) {
+    let MotorLaw::SpeedLoop { speed, torque_limit, gain, integral_time, lag } = &motor.law else { return };
+    let direction: BodyRow = vec![(body, sign)];
+    let own_speed = speed_row(&equations.model, &equations.scale, &direction);
+    let reference = slot(equations, format!("motors.{}.law.speed_loop.speed", motor.name), speed);
+    let mut new_state = |equations: &mut Equations| {
+        equations.scale.push(*torque_limit);
+        equations.scale.len() - 1
+    };
+    let integral_state = integral_time.map(|_| new_state(equations));
+    let torque_state = (*lag > 0.0).then(|| new_state(equations));
+    let error: StateRow = own_speed.iter().map(|(place, value)| (*place, -value)).collect();
+    let mut input: StateRow = error.iter().map(|(place, value)| (*place, gain * value)).collect();
+    if let Some(place) = integral_state {
+        input.push((place, *torque_limit));
+    }
+    let command = equations.terms.len();
+    let owner = Owner::Motor(index);
+    let size = equations.model.scales.body_speed[body];
+    equations.terms.push(Term {
+        owner,
+        shape: Shape::Law(Law::saturation(*torque_limit)),
+        input,
+        offset: Some((*gain, reference)),
+        parameters: [None; 2],
+        factor: if torque_state.is_none() { factor.clone() } else { Factor::default() },
+        target: match torque_state {
+            Some(place) => Target::State(place, 1.0 / lag),
+            None => Target::Torque(direction.clone()),
+        },
+        power: if torque_state.is_none() { PowerKind::Drive } else { PowerKind::None },
+        speed: Some(own_speed.clone()),
+        input_size: *torque_limit,
+            heat: None,
+    });
+    let integral = integral_state.zip(*integral_time).map(|(place, time)| {
+        equations.terms.push(Term {
+            owner,
+            shape: Shape::Linear,
+            input: error,
+            offset: Some((1.0, reference)),
+            parameters: [None; 2],
+            factor: Factor::default(),
+            target: Target::State(place, gain / time),
+            power: PowerKind::None,
+            speed: None,
+            input_size: size,
+            heat: None,
+        });
+        equations.terms.len() - 1
+    });
+    let scale = factor.slots.first().map(|(slot, _)| *slot);
+    if let Some(place) = torque_state {
+        equations.terms.push(Term {
+            owner,
+            shape: Shape::Linear,
+            input: vec![(place, *torque_limit)],
+            offset: None,
+            parameters: [None; 2],
+            factor,
+            target: Target::Torque(direction),
+            power: PowerKind::Drive,
+            speed: Some(own_speed),
+            input_size: *torque_limit,
+            heat: None,
+        });
+    }
+    equations.controllers.push(Controller {
+        motor: index,
+        command,
+        integral,
+        integral_state,
+        torque_state,
+        scale,
+        limit: *torque_limit,
+        gain: *gain,
+        lag: *lag,
+    });
+}
+
+fn add_load(equations: &mut Equations, index: usize, load: &Load) {
+    let scenario = &equations.model.scenario;
+    let Some(body) = body_index(scenario, &load.body) else { return };
+    let against = load.against.as_deref().and_then(|name| body_index(scenario, name));
+    let sign = if load.reversed { -1.0 } else { 1.0 };
+    let direction: BodyRow =
+        difference(Some(body), against).into_iter().map(|(place, factor)| (place, sign * factor)).collect();
+    let speed = speed_row(&equations.model, &equations.scale, &direction);
+    let size = equations.model.scales.body_speed[body];
+    let owner = Owner::Load(index);
+    let mut factor = factor_of(equations, "loads", &load.name, &load.scale);
+    let mut parameters = [None; 2];
+    let mut own_speed = None;
+    let mut input = speed.clone();
+    let (shape, target) = match &load.law {
+        LoadLaw::Friction { sliding, breakaway } => {
+            let sliding = Sliding::Constant(*sliding);
+            add_friction(equations, owner, &load.name, direction, sliding, *breakaway, factor);
+            return;
+        }
+        LoadLaw::Viscous { coefficient } => {
+            let against: BodyRow = direction.iter().map(|(place, share)| (*place, -share * coefficient)).collect();
+            (Shape::Linear, against)
+        }
+        LoadLaw::Prescribed { torque } => {
+            let place = slot(equations, format!("loads.{}.law.prescribed.torque", load.name), torque);
+            factor.slots.push((place, 1));
+            own_speed = Some(std::mem::take(&mut input));
+            (Shape::Law(Law::Unit), direction.clone())
+        }
+        LoadLaw::AxialRotor { flow, pitch, .. } => {
+            let path = |key: &str| format!("loads.{}.law.axial_rotor.{key}", load.name);
+            parameters = [
+                Some(slot(equations, path("flow"), flow)),
+                Some(slot(equations, path("pitch"), pitch)),
+            ];
+            let Some(law) = load.law.scalar() else { return };
+            (Shape::Law(law), direction.clone())
+        }
+        LoadLaw::PowerLaw { .. } | LoadLaw::Curve { .. } => {
+            let Some(law) = load.law.scalar() else { return };
+            if let Law::LoadCurve(curve) = &law {
+                let breakaway = curve.breakaway();
+                if breakaway > 0.0 {
+                    add_friction(equations, owner, &load.name, direction, Sliding::Curve(law), breakaway, factor);
+                    return;
+                }
+            }
+            (Shape::Law(law), direction.clone())
+        }
+    };
+    if matches!(load.law, LoadLaw::Viscous { .. }) {
+        own_speed = Some(speed.iter().map(|(place, value)| (*place, -value * viscous(&load.law))).collect());
+    }
+    equations.terms.push(Term {
+        owner,
+        shape,
+        input,
+        offset: None,
+        parameters,
+        factor,
+        target: Target::Torque(target),
+        power: PowerKind::Drive,
+        speed: own_speed,
+        input_size: size,
+            heat: None,
+    });
+}
+
+fn viscous(law: &LoadLaw) -> f64 {
+    match law {
+        LoadLaw::Viscous { coefficient } => *coefficient,
+        _ => 0.0,
+    }
+}
+
+fn add_friction(
+    equations: &mut Equations,
+    owner: Owner,
+    name: &str,
+    row: BodyRow,
+    sliding: Sliding,
+    breakaway: f64,
+    factor: Factor,
+) {
+    let speed = speed_row(&equations.model, &equations.scale, &row);
+    let sizes = &equations.model.scales.body_speed;
+    let speed_size = row.iter().map(|(body, share)| sizes[*body] * share.abs()).fold(0.0, f64::max);
+    equations.frictions.push(Friction {
+        owner,
+        name: name.to_owned(),
+        row,
+        speed,
+        sliding,
+        breakaway,
+        factor,
+        speed_size: if speed_size > 0.0 { speed_size } else { 1.0 },
+    });
+}

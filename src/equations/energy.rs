@@ -1,0 +1,41 @@
+//! Stored energy, and the powers that the audit sums.
+//!
+//! ```text
+//! stored = 1/2 u' M u + sum 1/2 k e^2 + sum K * integral of law       (zero at each magnet's stable point)
+//! ```
+
+use super::Equations;
+use crate::component::law::Law;
+use super::Shape;
+
+/// Kinetic, elastic and magnetic energy of a state, J.
+pub fn stored(equations: &Equations, state: &[f64]) -> f64 {
+    let reduction = &equations.model.reduction;
+    let speeds: Vec<f64> = (0..equations.speeds).map(|place| state[place] * equations.scale[place]).collect();
+    let mut energy = 0.0;
+    for row in 0..equations.speeds {
+        for column in 0..equations.speeds {
+            energy += 0.5 * speeds[row] * reduction.mass[(row, column)] * speeds[column];
+        }
+    }
+    for (shaft, place) in equations.model.shafts.iter().zip(&equations.twist_state) {
+        if let Some(place) = place {
+            let twist = state[*place] * equations.scale[*place];
+            let beyond = (twist.abs() - shaft.backlash / 2.0).max(0.0);
+            energy += 0.5 * shaft.stiffness * beyond * beyond;
+        }
+    }
+    for term in &equations.terms {
+        let Shape::Law(law) = &term.shape else { continue };
+        let input = super::dot(&term.input, state);
+        match law {
+            Law::Magnet(magnet) => energy += magnet.energy(input),
+            // Torque -T sin(n x + phase) on the rotor: energy -(T/n) cos(n x + phase).
+            Law::Cogging { order, torque, phase } => {
+                energy -= torque / order * ((order * input + phase).cos() - phase.cos());
+            }
+            _ => {}
+        }
+    }
+    energy
+}

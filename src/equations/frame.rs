@@ -1,0 +1,263 @@
+//! The values of all laws and channels at one instant.
+
+use super::assembly::{Active, Assembly, Function, Strength};
+use super::channels::{ChannelForm, LinearForm, RotorChannel};
+use super::holding::{Holding, hold};
+use super::{Equations, Factor, Owner, Shape, Sliding, dot};
+use crate::component::channel::MagneticChannel;
+use crate::component::law::Law;
+use crate::component::load::LoadLaw;
+use crate::signal::course::Overrides;
+use std::f64::consts::{PI, TAU};
+
+/// Counts and sums that are not part of the state.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Counters {
+    /// Whole electrical turns taken out of each phase state.
+    pub wells: Vec<i64>,
+    /// Slips of each magnet.
+    pub slips: Vec<u32>,
+    /// Forward minus backward slips.
+    pub net_slips: Vec<i32>,
+    /// Sum of each independent speed over time, rad (physical).
+    pub angles: Vec<f64>,
+}
+
+/// Values at one instant.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Frame {
+    /// The instant, s.
+    pub time: f64,
+    /// Law values by place: terms, frictions (torque along their row), the constant 1.
+    pub laws: Vec<f64>,
+    /// Inputs of the laws by place.
+    pub inputs: Vec<f64>,
+    /// What the stuck elements do.
+    pub holding: Option<Holding>,
+    /// Channel values, SI; only those asked for are up to date.
+    pub channels: Vec<f64>,
+}
+
+/// Evaluates laws and channels of one mode.
+#[derive(Clone, Copy)]
+pub struct Evaluator<'a> {
+    /// The equations.
+    pub equations: &'a Equations,
+    /// Their mode.
+    pub assembly: &'a Assembly,
+    /// Signals that protections have taken over.
+    pub overrides: &'a Overrides,
+}
+
+impl Evaluator<'_> {
+    /// The value of a factor, on the branch of the stretch.
+    #[inline]
+    pub fn strength(&self, strength: &Strength, time: f64) -> f64 {
+        match strength {
+            Strength::Constant(value) => *value,
+            Strength::Varying(factor) => self.factor(factor, time),
+        }
+    }
+
+    /// The value of a factor that follows signals.
+    pub fn factor(&self, factor: &Factor, time: f64) -> f64 {
+        factor.slots.iter().fold(1.0, |value, &(slot, power)| {
+            value * self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides).powi(power)
+        })
+    }
+
+    /// Input and value of an active term.
+    #[inline]
+    pub fn law(&self, active: &Active, time: f64, state: &[f64]) -> (f64, f64) {
+        let signal = |slot| self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
+        let mut input = active.input_at(state);
+        if let Some((factor, slot)) = active.offset {
+            input += factor * signal(slot);
+        }
+        let value = match &active.function {
+            Function::Law(law, piece) => {
+                let parameters = match active.parameters {
+                    [None, None] => [0.0; 2],
+                    [first, second] => [first.map_or(0.0, signal), second.map_or(0.0, signal)],
+                };
+                law.value(input, parameters, *piece)
+            }
+            Function::Linear => input,
+            Function::Friction(torque, direction) => -direction * torque,
+            Function::FrictionCurve(law, direction) => {
+                -direction * sliding_of(law, input * direction)
+            }
+        };
+        (input, self.strength(&active.factor, time) * value)
+    }
+
+    /// Breakaway limit of a friction element at a time, N*m.
+    pub fn limit(&self, friction: usize, time: f64) -> f64 {
+        let friction = &self.equations.frictions[friction];
+        friction.breakaway * self.factor(&friction.factor, time)
+    }
+
+    /// Sliding torque of a friction element at a time and speed of magnitude `speed`, N*m.
+    pub fn sliding(&self, friction: usize, time: f64, speed: f64) -> f64 {
+        let friction = &self.equations.frictions[friction];
+        let torque = match &friction.sliding {
+            Sliding::Constant(torque) => *torque,
+            Sliding::Curve(law) => sliding_of(law, speed),
+        };
+        torque * self.factor(&friction.factor, time)
+    }
+
+    /// Law values and holding torques.
+    pub fn laws(&self, time: f64, state: &[f64], frame: &mut Frame) {
+        let assembly = self.assembly;
+        frame.time = time;
+        frame.laws.clear();
+        frame.laws.resize(assembly.law_count, 0.0);
+        frame.inputs.clear();
+        frame.inputs.resize(assembly.law_count, 0.0);
+        for active in assembly.active.iter().chain(&assembly.folded) {
+            let (input, value) = self.law(active, time, state);
+            frame.inputs[active.place] = input;
+            frame.laws[active.place] = value;
+        }
+        frame.holding = None;
+        if !assembly.stuck.is_empty() {
+            let drive: Vec<f64> = assembly
+                .stuck_drive
+                .iter()
+                .map(|(row, laws)| {
+                    dot(row, state) + laws.iter().map(|&(place, factor)| factor * frame.laws[place]).sum::<f64>()
+                })
+                .collect();
+            let limits: Vec<f64> = assembly.stuck.iter().map(|index| self.limit(*index, time)).collect();
+            let holding = hold(&assembly.stuck_compliance, &drive, &limits);
+            for (index, torque) in assembly.stuck.iter().zip(&holding.torque) {
+                frame.laws[self.equations.terms.len() + index] = *torque;
+            }
+            frame.holding = Some(holding);
+        }
+    }
+
+    /// Law values and the channels in `wanted` (all when it is `None`).
+    pub fn evaluate(
+        &self,
+        time: f64,
+        state: &[f64],
+        counters: &Counters,
+        wanted: Option<&[usize]>,
+        frame: &mut Frame,
+    ) {
+        self.laws(time, state, frame);
+        let mut channels = std::mem::take(&mut frame.channels);
+        channels.resize(self.assembly.channels.len(), 0.0);
+        match wanted {
+            None => {
+                for (value, form) in channels.iter_mut().zip(&self.assembly.channels) {
+                    *value = self.channel(form, time, state, counters, frame);
+                }
+            }
+            Some(wanted) => {
+                for &index in wanted {
+                    channels[index] = self.channel(&self.assembly.channels[index], time, state, counters, frame);
+                }
+            }
+        }
+        frame.channels = channels;
+    }
+
+    fn channel(&self, form: &ChannelForm, time: f64, state: &[f64], counters: &Counters, frame: &Frame) -> f64 {
+        match form {
+            ChannelForm::Linear(form) => linear(form, state, frame),
+            ChannelForm::Power(torque, speed) => linear(torque, state, frame) * dot(speed, state),
+            ChannelForm::Angle(row) => row.iter().map(|&(place, share)| share * counters.angles[place]).sum(),
+            ChannelForm::Magnet(index, what) => self.magnet(*index, *what, state, counters, frame),
+            ChannelForm::Loss(squares, laws) => {
+                let damping: f64 = squares.iter().map(|(weight, row)| weight * dot(row, state).powi(2)).sum();
+                let others: f64 = laws.iter().map(|place| self.lost(*place, state, frame)).sum();
+                damping + others
+            }
+            ChannelForm::Rotor(term, what) => self.rotor(*term, *what, time, state),
+        }
+    }
+
+    fn lost(&self, place: usize, state: &[f64], frame: &Frame) -> f64 {
+        let speed = match place.checked_sub(self.equations.terms.len()) {
+            Some(friction) => dot(&self.equations.frictions[friction].speed, state),
+            None => frame.inputs[place],
+        };
+        (frame.laws[place] * speed).abs()
+    }
+
+    fn magnet(&self, index: usize, what: MagneticChannel, state: &[f64], counters: &Counters, frame: &Frame) -> f64 {
+        let place = self.equations.phase_state[index];
+        let phase = state[place] * self.equations.scale[place];
+        let magnet = &self.equations.model.magnets[index];
+        match what {
+            MagneticChannel::Phase => phase + TAU * counters.wells[index] as f64,
+            MagneticChannel::LoadAngle => load_angle(phase),
+            MagneticChannel::Slips => f64::from(counters.slips[index]),
+            MagneticChannel::NetSlips => f64::from(counters.net_slips[index]),
+            MagneticChannel::ShortOfPeak => {
+                let [low, high] = magnet.law.peaks();
+                f64::from(u8::from((low..=high).contains(&load_angle(phase))))
+            }
+            MagneticChannel::PullOutShare => {
+                let term = self.equations.terms.iter().position(|term| {
+                    term.owner == Owner::Magnet(index) && matches!(term.shape, Shape::Law(Law::Magnet(_)))
+                });
+                let torque = term.map_or(0.0, |place| frame.laws[place]);
+                let [low, high] = magnet.law.peak_values();
+                let peak = if torque >= 0.0 { high } else { low };
+                (torque / (magnet.amplitude * peak)).clamp(0.0, 1.0)
+            }
+            _ => 0.0,
+        }
+    }
+
+    fn rotor(&self, place: usize, what: RotorChannel, time: f64, state: &[f64]) -> f64 {
+        let term = &self.equations.terms[place];
+        let signal = |slot| self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
+        let [Some(flow), Some(pitch)] = term.parameters else { return 0.0 };
+        let (flow, pitch) = (signal(flow), signal(pitch));
+        let Owner::Load(load) = term.owner else { return 0.0 };
+        let LoadLaw::AxialRotor { radius, density, .. } = &self.equations.model.scenario.loads[load].law else {
+            return 0.0;
+        };
+        if what == RotorChannel::Flow {
+            return flow;
+        }
+        if flow <= 0.0 {
+            return 0.0;
+        }
+        let speed = dot(&term.input, state);
+        if what == RotorChannel::TipSpeedRatio {
+            return speed * radius / flow;
+        }
+        let Shape::Law(law) = &term.shape else { return 0.0 };
+        let torque = law.value(speed, [flow, pitch], 0);
+        let flow_power = 0.5 * density * PI * radius * radius * flow.powi(3);
+        torque * speed / flow_power
+    }
+}
+
+#[inline]
+fn linear(form: &LinearForm, state: &[f64], frame: &Frame) -> f64 {
+    let laws: f64 = form.laws.iter().map(|&(place, factor)| factor * frame.laws[place]).sum();
+    dot(&form.state, state) + laws + form.constant
+}
+
+/// Sliding torque of a load curve at a speed's magnitude.
+#[inline]
+pub fn sliding_of(law: &Law, speed: f64) -> f64 {
+    match law {
+        Law::LoadCurve(curve) => curve.sliding(speed.max(0.0)),
+        _ => 0.0,
+    }
+}
+
+/// A phase taken into (-pi, pi].
+#[inline]
+pub fn load_angle(phase: f64) -> f64 {
+    let wrapped = phase - TAU * (phase / TAU).round();
+    if wrapped <= -PI { wrapped + TAU } else { wrapped }
+}

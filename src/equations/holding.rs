@@ -1,0 +1,173 @@
+//! Holding torques of friction elements at rest, and which of them must give way.
+//!
+//! ```text
+//! (R M^-1 R') lambda = -R M^-1 Q
+//! ```
+//! The system is singular when elements hold the same member. Of all solutions the one is taken
+//! in which each element carries in proportion to its breakaway torque: `lambda = S (S A S)^+ S b`
+//! with `S = sqrt(breakaway)`. Elements over their limit are then held at it as applied torques
+//! and the rest is shared again; the set holds when the balance still closes.
+
+use nalgebra::{DMatrix, DVector};
+
+/// Share of the largest eigenvalue below which a direction counts as redundant.
+const RANK_TOLERANCE: f64 = 1e-12;
+
+/// Balance that counts as closed, relative to the drive.
+const BALANCE_TOLERANCE: f64 = 1e-9;
+
+/// What a set of elements at rest does.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Holding {
+    /// Torque of each element along its row, N*m.
+    pub torque: Vec<f64>,
+    /// Whether all of them hold.
+    pub holds: bool,
+    /// Smallest margin, relative to the limits: negative when some element must give way.
+    pub margin: f64,
+    /// The element that is loaded most, relative to its limit.
+    pub weakest: Option<usize>,
+}
+
+/// The pseudo-inverse of a symmetric positive semidefinite matrix.
+pub fn pseudo_inverse(matrix: &DMatrix<f64>) -> DMatrix<f64> {
+    let size = matrix.nrows();
+    if size == 1 {
+        let value = matrix[(0, 0)];
+        return DMatrix::from_element(1, 1, if value > 0.0 { 1.0 / value } else { 0.0 });
+    }
+    // Rows of very different inertia make a badly scaled matrix: judge the rank on unit diagonals.
+    let root: Vec<f64> = (0..size).map(|place| matrix[(place, place)].max(0.0).sqrt()).collect();
+    let unit = DMatrix::from_fn(size, size, |row, column| {
+        let scale = root[row] * root[column];
+        if scale > 0.0 { matrix[(row, column)] / scale } else { 0.0 }
+    });
+    let eigen = unit.symmetric_eigen();
+    let largest = eigen.eigenvalues.amax();
+    let mut inverse = DMatrix::zeros(size, size);
+    for (place, value) in eigen.eigenvalues.iter().enumerate() {
+        if *value > RANK_TOLERANCE * largest {
+            let vector = eigen.eigenvectors.column(place);
+            inverse += vector * vector.transpose() / *value;
+        }
+    }
+    DMatrix::from_fn(size, size, |row, column| {
+        let scale = root[row] * root[column];
+        if scale > 0.0 { inverse[(row, column)] / scale } else { 0.0 }
+    })
+}
+
+/// Holding torques for accelerations `drive` along the rows, with limits of the moment.
+pub fn hold(compliance: &DMatrix<f64>, drive: &[f64], limits: &[f64]) -> Holding {
+    let count = drive.len();
+    if count == 0 {
+        return Holding { torque: Vec::new(), holds: true, margin: f64::INFINITY, weakest: None };
+    }
+    let mut torque = vec![0.0; count];
+    let mut clamped = vec![false; count];
+    let mut first: Option<(Vec<f64>, f64, usize)> = None;
+    for _ in 0..=count {
+        let open: Vec<usize> = (0..count).filter(|place| !clamped[*place]).collect();
+        let applied: Vec<f64> = (0..count)
+            .map(|row| {
+                -drive[row]
+                    - (0..count)
+                        .filter(|column| clamped[*column])
+                        .map(|column| compliance[(row, column)] * torque[column])
+                        .sum::<f64>()
+            })
+            .collect();
+        share(compliance, &applied, limits, &open, &mut torque);
+        let (mut worst, mut weakest) = (0.0, 0);
+        for &place in &open {
+            let use_of_limit = use_of(torque[place], limits[place]);
+            if use_of_limit > worst {
+                worst = use_of_limit;
+                weakest = place;
+            }
+        }
+        let (_, _, first_weakest) = first.get_or_insert_with(|| (torque.clone(), worst, weakest));
+        if worst <= 1.0 {
+            let closes = closes(compliance, drive, &torque);
+            let clamped_any = clamped.contains(&true);
+            if closes {
+                let margin = if clamped_any { f64::min(1.0 - worst, 1.0) } else { 1.0 - worst };
+                return Holding { torque, holds: true, margin: margin.max(0.0), weakest: Some(weakest) };
+            }
+            let _ = first_weakest;
+            break;
+        }
+        for &place in &open {
+            if use_of(torque[place], limits[place]) > 1.0 {
+                clamped[place] = true;
+                torque[place] = limits[place].copysign(torque[place]);
+            }
+        }
+    }
+    let (torque, worst, weakest) = first.unwrap_or((torque, f64::INFINITY, 0));
+    let margin = if worst.is_finite() { 1.0 - worst } else { -1.0 };
+    Holding { torque, holds: false, margin: margin.min(-f64::MIN_POSITIVE), weakest: Some(weakest) }
+}
+
+fn use_of(torque: f64, limit: f64) -> f64 {
+    if torque == 0.0 {
+        0.0
+    } else if limit > 0.0 {
+        torque.abs() / limit
+    } else {
+        f64::INFINITY
+    }
+}
+
+/// Least-norm share among `open`, in proportion to the limits.
+fn share(compliance: &DMatrix<f64>, applied: &[f64], limits: &[f64], open: &[usize], torque: &mut [f64]) {
+    if open.is_empty() {
+        return;
+    }
+    let root = |place: usize| limits[place].max(f64::MIN_POSITIVE).sqrt();
+    let largest = open.iter().map(|place| root(*place)).fold(0.0, f64::max);
+    let weight: Vec<f64> = open.iter().map(|place| (root(*place) / largest).max(1e-6)).collect();
+    let matrix = DMatrix::from_fn(open.len(), open.len(), |row, column| {
+        weight[row] * compliance[(open[row], open[column])] * weight[column]
+    });
+    let right = DVector::from_fn(open.len(), |row, _| weight[row] * applied[open[row]]);
+    let solution = pseudo_inverse(&matrix) * right;
+    for (line, &place) in open.iter().enumerate() {
+        torque[place] = weight[line] * solution[line];
+    }
+}
+
+fn closes(compliance: &DMatrix<f64>, drive: &[f64], torque: &[f64]) -> bool {
+    (0..drive.len()).all(|row| {
+        let terms = (0..torque.len()).map(|column| compliance[(row, column)] * torque[column]);
+        let size = terms.clone().map(f64::abs).sum::<f64>().max(drive[row].abs());
+        (terms.sum::<f64>() + drive[row]).abs() <= BALANCE_TOLERANCE * size
+    })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn two_brakes_on_one_body_carry_in_proportion_to_their_breakaway() {
+        // Closed form: 60 + 20 hold 80; at 40 they carry 30 and 10.
+        let compliance = DMatrix::from_element(2, 2, 0.5);
+        let held = hold(&compliance, &[-20.0, -20.0], &[60.0, 20.0]);
+        assert!(held.holds);
+        assert!((held.torque[0] - 30.0).abs() < 1e-9 && (held.torque[1] - 10.0).abs() < 1e-9);
+        assert!(hold(&compliance, &[-39.999, -39.999], &[60.0, 20.0]).holds);
+        assert!(!hold(&compliance, &[-40.001, -40.001], &[60.0, 20.0]).holds);
+    }
+
+    #[test]
+    fn a_loop_holds_up_to_the_sum_that_statics_allows() {
+        // Brakes of 50 on A and of 50 on B, a clutch of 50 between them; torque on A alone:
+        // statics allows 50 (brake A) + 50 (through the clutch to brake B) = 100.
+        let rows = DMatrix::from_row_slice(3, 2, &[1.0, 0.0, 0.0, 1.0, 1.0, -1.0]);
+        let compliance = &rows * rows.transpose();
+        let drive = |torque: f64| [torque, 0.0, torque];
+        assert!(hold(&compliance, &drive(99.9), &[50.0, 50.0, 50.0]).holds);
+        assert!(!hold(&compliance, &drive(100.1), &[50.0, 50.0, 50.0]).holds);
+    }
+}

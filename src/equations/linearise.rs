@@ -1,0 +1,53 @@
+//! The exact linearisation `A + sum D_j q_j' row_j` of one mode at a state.
+
+use super::assembly::{Assembly, Function};
+use super::frame::Evaluator;
+use nalgebra::DMatrix;
+use nalgebra::linalg::Schur;
+
+/// Which slope a magnet's law takes.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum MagnetSlope {
+    /// At the state itself.
+    AtState,
+    /// The steepest that the law has: bounds the fastest mode.
+    Steepest,
+}
+
+/// Rates of change of the scaled state with respect to itself.
+pub fn jacobian(evaluator: &Evaluator<'_>, time: f64, state: &[f64], magnets: MagnetSlope) -> DMatrix<f64> {
+    let assembly: &Assembly = evaluator.assembly;
+    let mut matrix = assembly.full.clone();
+    for active in &assembly.active {
+        let (input, _) = evaluator.law(active, time, state);
+        let signal = |slot| evaluator.equations.bank.value_in(slot, time, assembly.start, evaluator.overrides);
+        let slope = match &active.function {
+            Function::Law(crate::component::law::Law::Magnet(magnet), _) if magnets == MagnetSlope::Steepest => {
+                magnet.steepest()
+            }
+            Function::Law(law, piece) => {
+                let [first, second] = active.parameters;
+                law.slope(input, [first.map_or(0.0, signal), second.map_or(0.0, signal)], *piece)
+            }
+            Function::Linear => 1.0,
+            // Sliding friction adds nothing: its torque does not follow small changes of speed.
+            Function::Friction(..) | Function::FrictionCurve(..) => 0.0,
+        };
+        let slope = slope * evaluator.strength(&active.factor, time);
+        for &(row, share) in &active.column {
+            for &(column, weight) in &active.input {
+                matrix[(row, column)] += share * slope * weight;
+            }
+        }
+    }
+    matrix
+}
+
+/// Eigenvalues of a real matrix as (real, imaginary); `None` when the iteration does not converge.
+pub fn eigenvalues(matrix: &DMatrix<f64>) -> Option<Vec<(f64, f64)>> {
+    if matrix.iter().any(|value| !value.is_finite()) {
+        return None;
+    }
+    let schur = Schur::try_new(matrix.clone(), f64::EPSILON, 10_000)?;
+    Some(schur.complex_eigenvalues().iter().map(|value| (value.re, value.im)).collect())
+}

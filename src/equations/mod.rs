@@ -1,0 +1,235 @@
+//! The train as an ordinary differential equation: `dy = A y + sum D_j q_j(t, y)`.
+//!
+//! ```text
+//! y = [ independent speeds | twists of elastic shafts, magnetic phases | controllers | angles ]
+//! ```
+//! Everything linear is one matrix `A`, rebuilt when the mode changes; each nonlinear law is a
+//! scalar `q_j` of one input row and enters through one column `D_j`. States are scaled by
+//! their working sizes, so that one tolerance means the same for all of them.
+
+pub mod assembly;
+pub mod build;
+pub mod channels;
+pub mod energy;
+pub mod frame;
+pub mod holding;
+pub mod linearise;
+pub mod mode;
+
+use crate::component::law::Law;
+use crate::model::{BodyRow, Model};
+use crate::signal::course::{SignalBank, SlotId};
+
+/// A sparse form over the scaled state.
+pub type StateRow = Vec<(usize, f64)>;
+
+/// The equations of one model, before any mode is chosen.
+#[derive(Clone, Debug)]
+pub struct Equations {
+    /// The model they come from.
+    pub model: Model,
+    /// Number of states.
+    pub size: usize,
+    /// Number of independent speeds, which come first.
+    pub speeds: usize,
+    /// Physical value of a state of 1.
+    pub scale: Vec<f64>,
+    /// State of each shaft's twist; `None` for rigid ones.
+    pub twist_state: Vec<Option<usize>>,
+    /// State of each magnet's phase.
+    pub phase_state: Vec<usize>,
+    /// Angles that some law needs: state and rate row over bodies.
+    pub angle_states: Vec<(usize, BodyRow)>,
+    /// Scalar laws.
+    pub terms: Vec<Term>,
+    /// Dry friction elements.
+    pub frictions: Vec<Friction>,
+    /// Viscous torques without a factor: they stand in the matrix.
+    pub dampers: Vec<Damper>,
+    /// Speed controllers.
+    pub controllers: Vec<Controller>,
+    /// Motors with a synchronous speed: motor by place and that speed (mirrored with the law), rad/s.
+    pub heats: Vec<(usize, f64)>,
+    /// Everything that follows time.
+    pub bank: SignalBank,
+    /// What a reader of the results must know.
+    pub warnings: Vec<(String, String)>,
+}
+
+/// The thing of the file that a torque belongs to.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Owner {
+    /// A motor by place.
+    Motor(usize),
+    /// A load by place.
+    Load(usize),
+    /// A brake by place.
+    Brake(usize),
+    /// A magnet by place.
+    Magnet(usize),
+}
+
+/// What the value of a term acts on.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Target {
+    /// A torque along a form over bodies.
+    Torque(BodyRow),
+    /// The rate of one state: place and physical factor.
+    State(usize, f64),
+}
+
+/// What the power of a term counts as.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum PowerKind {
+    /// Supplied when positive, absorbed when negative.
+    Drive,
+    /// Lost.
+    Lost,
+    /// Stored, or no power at all.
+    None,
+}
+
+/// A function of one input.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Shape {
+    /// A law of the library.
+    Law(Law),
+    /// The input itself.
+    Linear,
+}
+
+/// A factor that follows signals: the product of slots to whole powers.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Factor {
+    /// Slots and powers; empty for 1.
+    pub slots: Vec<(SlotId, i32)>,
+}
+
+/// One scalar law in the equations.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Term {
+    /// What it belongs to.
+    pub owner: Owner,
+    /// The function.
+    pub shape: Shape,
+    /// The input as a form over the scaled state.
+    pub input: StateRow,
+    /// Added to the input: factor times a signal.
+    pub offset: Option<(f64, SlotId)>,
+    /// Signals that the law reads as parameters.
+    pub parameters: [Option<SlotId>; 2],
+    /// Factor on the value.
+    pub factor: Factor,
+    /// Where the value goes.
+    pub target: Target,
+    /// How its power counts.
+    pub power: PowerKind,
+    /// The speed that makes its power; `None`: the input itself.
+    pub speed: Option<StateRow>,
+    /// Typical size of the input, for event tolerances.
+    pub input_size: f64,
+    /// Heat of an induction motor's rotor: place in the list of heats and synchronous speed, rad/s.
+    pub heat: Option<(usize, f64)>,
+}
+
+/// How a friction element's sliding torque depends on speed.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Sliding {
+    /// The same at every speed, N*m.
+    Constant(f64),
+    /// A load curve read at the magnitude of the speed.
+    Curve(Law),
+}
+
+/// One dry friction element.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Friction {
+    /// What it belongs to.
+    pub owner: Owner,
+    /// Its name in messages and events.
+    pub name: String,
+    /// Relative speed as a form over bodies.
+    pub row: BodyRow,
+    /// The same over the scaled state.
+    pub speed: StateRow,
+    /// Torque while sliding.
+    pub sliding: Sliding,
+    /// Torque that breaks it away, N*m.
+    pub breakaway: f64,
+    /// Factor on both.
+    pub factor: Factor,
+    /// Typical speed, rad/s, for tolerances.
+    pub speed_size: f64,
+}
+
+/// A torque proportional to a relative speed.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Damper {
+    /// What it belongs to.
+    pub owner: Owner,
+    /// Relative speed as a form over bodies.
+    pub row: BodyRow,
+    /// N*m*s/rad.
+    pub coefficient: f64,
+    /// True when its power counts as absorbed by a load, else it is lost.
+    pub is_load: bool,
+}
+
+/// A speed controller's states and terms.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Controller {
+    /// The motor by place.
+    pub motor: usize,
+    /// Term of the limited command.
+    pub command: usize,
+    /// Term that feeds the integral, if there is one.
+    pub integral: Option<usize>,
+    /// State of the integral.
+    pub integral_state: Option<usize>,
+    /// State of the lagging torque.
+    pub torque_state: Option<usize>,
+    /// Scale slot, when the motor has one.
+    pub scale: Option<SlotId>,
+    /// Limit of the command, N*m.
+    pub limit: f64,
+    /// N*m*s/rad.
+    pub gain: f64,
+    /// Lag, s.
+    pub lag: f64,
+}
+
+impl Equations {
+    /// A form over bodies as a form over the scaled state.
+    pub fn speed_row(&self, row: &[(usize, f64)]) -> StateRow {
+        speed_row(&self.model, &self.scale, row)
+    }
+
+    /// The starting state (scaled) with shafts unloaded and controllers at rest.
+    pub fn start_state(&self) -> Vec<f64> {
+        let mut state = vec![0.0; self.size];
+        for (place, body) in self.model.reduction.independent.iter().enumerate() {
+            state[place] = self.model.start_speeds[*body] / self.scale[place];
+        }
+        for (magnet, place) in self.model.magnets.iter().zip(&self.phase_state) {
+            state[*place] = magnet.start_phase / self.scale[*place];
+        }
+        state
+    }
+}
+
+/// A form over bodies as a sparse form over the scaled state.
+pub fn speed_row(model: &Model, scale: &[f64], row: &[(usize, f64)]) -> StateRow {
+    let dense = model.reduction.dense(row);
+    dense
+        .iter()
+        .enumerate()
+        .filter(|(_, value)| **value != 0.0)
+        .map(|(place, value)| (place, value * scale[place]))
+        .collect()
+}
+
+/// The value of a sparse form.
+#[inline]
+pub fn dot(row: &[(usize, f64)], state: &[f64]) -> f64 {
+    row.iter().map(|&(place, factor)| factor * state[place]).sum()
+}
