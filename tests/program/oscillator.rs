@@ -97,7 +97,7 @@ fn solid_shafts_have_the_stiffness_of_their_section() {
         ("diameter: 100 mm, bore: 60 mm, length: 1 m, shear_modulus: 80 GPa", 683610.56142114),
     ] {
         let scenario = oscillator(0.1, "steady", 0.0, 0.0, "1 kN*m")
-            .replace("stiffness: 4 N*m/rad, damping: 0 N*m*s/rad", solid)
+            .replace("4 N*m/rad, damping: 0 N*m*s/rad", &format!("{{ {solid} }}"))
             .replace("output_step: 0.5 s", "output_step: 0.05 s");
         let outcome = run_well(&scenario);
         same(outcome.series().at("spring.twist", 0.0), 1000.0 / stiffness, 1e-9);
