@@ -7,6 +7,7 @@
 // Helpers of tests may fail by panicking, and results of tests are compared as they are.
 #![allow(clippy::unwrap_used, clippy::cast_precision_loss)]
 
+mod checking;
 mod commands;
 mod energy;
 mod equal_area;
