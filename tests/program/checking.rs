@@ -1,7 +1,7 @@
 //! What `check` says of a train without running it: ratio, pull-out torques, zero-load frequency.
 //!
 //! Closed forms: field modulation (Atallah and Howe 2001, from memory), and the frequency
-//! sqrt(K/J_e)/2 pi with K the pull-out torque of a member over its count and
+//! `sqrt(K/J_e)/2 pi` with K the pull-out torque of a member over its count and
 //! `1/J_e` = the sum of count^2/inertia over the members that turn.
 
 use super::helper::{check, head};
