@@ -1,8 +1,8 @@
 //! From the model to states, terms, frictions and dampers.
 
 use super::{
-    Controller, Damper, Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, StateRow, Target, Term,
-    speed_row,
+    Controller, Damper, Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, StateRow,
+    Target, Term, speed_row,
 };
 use crate::component::law::Law;
 use crate::component::load::{Load, LoadLaw};
@@ -95,14 +95,18 @@ fn add_magnet(equations: &mut Equations, index: usize) {
         power: PowerKind::None,
         speed: None,
         input_size: 1.0,
-            heat: None,
+        heat: None,
     });
     if let Some(fading) = magnet.fading {
-        let scaled: BodyRow = row.iter().map(|(body, count)| (*body, count / fading.count)).collect();
+        let scaled: BodyRow =
+            row.iter().map(|(body, count)| (*body, count / fading.count)).collect();
         let input = speed_row(&equations.model, &equations.scale, &scaled);
         equations.terms.push(Term {
             owner: Owner::Magnet(index),
-            shape: Shape::Law(Law::FadingDamper { coefficient: fading.coefficient, peak_at: fading.peak_at }),
+            shape: Shape::Law(Law::FadingDamper {
+                coefficient: fading.coefficient,
+                peak_at: fading.peak_at,
+            }),
             input,
             offset: None,
             parameters: [None; 2],
@@ -189,7 +193,12 @@ fn slot(equations: &mut Equations, path: String, signal: &Signal) -> SlotId {
 }
 
 /// A factor of a signal to a power; a plain 1 in the file still gets its slot, since a protection may set it.
-fn factor_of(equations: &mut Equations, section: &str, name: &str, scale: &Option<Signal>) -> Factor {
+fn factor_of(
+    equations: &mut Equations,
+    section: &str,
+    name: &str,
+    scale: &Option<Signal>,
+) -> Factor {
     let signal = scale.clone().unwrap_or(Signal::Constant(1.0));
     Factor { slots: vec![(slot(equations, format!("{section}.{name}.scale"), &signal), 1)] }
 }
@@ -232,9 +241,8 @@ fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) {
     };
     let Some(law) = law else { return };
     let synchronous_speed = match &motor.law {
-        MotorLaw::RatingPlate { synchronous_speed, .. } | MotorLaw::Induction { synchronous_speed, .. } => {
-            Some(*synchronous_speed)
-        }
+        MotorLaw::RatingPlate { synchronous_speed, .. }
+        | MotorLaw::Induction { synchronous_speed, .. } => Some(*synchronous_speed),
         _ => None,
     };
     let heat = synchronous_speed.map(|speed| {
@@ -261,12 +269,21 @@ fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) {
 /// ```text
 /// e = ref - w;  command = clamp(gain*e + I);  dI/dt = gain*e/Ti unless held;  lag*dT/dt = command - T
 /// ```
-fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: usize, sign: f64, factor: Factor) {
-    let MotorLaw::SpeedLoop { speed, torque_limit, gain, integral_time, lag } = &motor.law else { return };
+fn add_speed_loop(
+    equations: &mut Equations,
+    index: usize,
+    motor: &Motor,
+    body: usize,
+    sign: f64,
+    factor: Factor,
+) {
+    let MotorLaw::SpeedLoop { speed, torque_limit, gain, integral_time, lag } = &motor.law else {
+        return;
+    };
     let direction: BodyRow = vec![(body, sign)];
     let own_speed = speed_row(&equations.model, &equations.scale, &direction);
     let reference = slot(equations, format!("motors.{}.law.speed_loop.speed", motor.name), speed);
-    let mut new_state = |equations: &mut Equations| {
+    let new_state = |equations: &mut Equations| {
         equations.scale.push(*torque_limit);
         equations.scale.len() - 1
     };
@@ -294,7 +311,7 @@ fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: 
         power: if torque_state.is_none() { PowerKind::Drive } else { PowerKind::None },
         speed: Some(own_speed.clone()),
         input_size: *torque_limit,
-            heat: None,
+        heat: None,
     });
     let integral = integral_state.zip(*integral_time).map(|(place, time)| {
         equations.terms.push(Term {
@@ -346,8 +363,10 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
     let Some(body) = body_index(scenario, &load.body) else { return };
     let against = load.against.as_deref().and_then(|name| body_index(scenario, name));
     let sign = if load.reversed { -1.0 } else { 1.0 };
-    let direction: BodyRow =
-        difference(Some(body), against).into_iter().map(|(place, factor)| (place, sign * factor)).collect();
+    let direction: BodyRow = difference(Some(body), against)
+        .into_iter()
+        .map(|(place, factor)| (place, sign * factor))
+        .collect();
     let speed = speed_row(&equations.model, &equations.scale, &direction);
     let size = equations.model.scales.body_speed[body];
     let owner = Owner::Load(index);
@@ -362,11 +381,13 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
             return;
         }
         LoadLaw::Viscous { coefficient } => {
-            let against: BodyRow = direction.iter().map(|(place, share)| (*place, -share * coefficient)).collect();
+            let against: BodyRow =
+                direction.iter().map(|(place, share)| (*place, -share * coefficient)).collect();
             (Shape::Linear, against)
         }
         LoadLaw::Prescribed { torque } => {
-            let place = slot(equations, format!("loads.{}.law.prescribed.torque", load.name), torque);
+            let place =
+                slot(equations, format!("loads.{}.law.prescribed.torque", load.name), torque);
             factor.slots.push((place, 1));
             own_speed = Some(std::mem::take(&mut input));
             (Shape::Law(Law::Unit), direction.clone())
@@ -385,7 +406,15 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
             if let Law::LoadCurve(curve) = &law {
                 let breakaway = curve.breakaway();
                 if breakaway > 0.0 {
-                    add_friction(equations, owner, &load.name, direction, Sliding::Curve(law), breakaway, factor);
+                    add_friction(
+                        equations,
+                        owner,
+                        &load.name,
+                        direction,
+                        Sliding::Curve(law),
+                        breakaway,
+                        factor,
+                    );
                     return;
                 }
             }
@@ -393,7 +422,9 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
         }
     };
     if matches!(load.law, LoadLaw::Viscous { .. }) {
-        own_speed = Some(speed.iter().map(|(place, value)| (*place, -value * viscous(&load.law))).collect());
+        own_speed = Some(
+            speed.iter().map(|(place, value)| (*place, -value * viscous(&load.law))).collect(),
+        );
     }
     equations.terms.push(Term {
         owner,
@@ -406,7 +437,7 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
         power: PowerKind::Drive,
         speed: own_speed,
         input_size: size,
-            heat: None,
+        heat: None,
     });
 }
 

@@ -58,7 +58,14 @@ impl Calm {
 
     /// True when the whole step lies inside the region.
     #[inline]
-    pub fn inside(&self, h: f64, first: &[f64], first_rate: &[f64], last: &[f64], last_rate: &[f64]) -> bool {
+    pub fn inside(
+        &self,
+        h: f64,
+        first: &[f64],
+        first_rate: &[f64],
+        last: &[f64],
+        last_rate: &[f64],
+    ) -> bool {
         if !self.active {
             return false;
         }
@@ -108,7 +115,15 @@ impl Calm {
         if self.wait < PATIENCE {
             return;
         }
-        let probe = Probe { evaluator, observer, mode, conditions, guards, time, tolerance: self.tolerance };
+        let probe = Probe {
+            evaluator,
+            observer,
+            mode,
+            conditions,
+            guards,
+            time,
+            tolerance: self.tolerance,
+        };
         let mut frame = Frame::default();
         let (mut centre, mut slack) = (Vec::new(), Vec::new());
         probe.values(state, &mut frame, &mut centre, Some(&mut slack));
@@ -135,7 +150,8 @@ impl Calm {
             let used = slopes[index].iter().filter(|slope| **slope > 0.0).count();
             for place in 0..size {
                 if slopes[index][place] > 0.0 {
-                    width[place] = f64::min(width[place], slack / (2.0 * used as f64 * slopes[index][place]));
+                    width[place] =
+                        f64::min(width[place], slack / (2.0 * used as f64 * slopes[index][place]));
                 }
             }
             reach[index] = *slack;
@@ -164,7 +180,13 @@ struct Probe<'p, 'a> {
 
 impl Probe<'_, '_> {
     /// Everything that must not move too far, and by how much it may.
-    fn values(&self, state: &[f64], frame: &mut Frame, values: &mut Vec<f64>, slack: Option<&mut Vec<f64>>) {
+    fn values(
+        &self,
+        state: &[f64],
+        frame: &mut Frame,
+        values: &mut Vec<f64>,
+        slack: Option<&mut Vec<f64>>,
+    ) {
         let counters: &Counters = &self.observer.counters;
         self.evaluator.evaluate(self.time, state, counters, Some(&self.observer.wanted), frame);
         values.clear();
@@ -201,7 +223,9 @@ impl Probe<'_, '_> {
             values.push(phase);
             room.push(nearest);
         }
-        for window in self.observer.windows.iter().filter(|window| window.active && !window.settled()) {
+        for window in
+            self.observer.windows.iter().filter(|window| window.active && !window.settled())
+        {
             let value = window.value(frame.channels[window.channel]);
             for mark in window.marks() {
                 values.push(value);
@@ -214,7 +238,8 @@ impl Probe<'_, '_> {
             }
         }
         for guard in self.guards {
-            let value = guards::value(*guard, self.evaluator, self.mode, self.conditions, state, frame);
+            let value =
+                guards::value(*guard, self.evaluator, self.mode, self.conditions, state, frame);
             values.push(value);
             room.push(value.max(0.0));
         }

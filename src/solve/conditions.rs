@@ -59,12 +59,17 @@ impl Conditions {
         let size = list
             .iter()
             .map(|protection| match &protection.when {
-                Condition::AtLeast { limit, .. } | Condition::AtMost { limit, .. } if *limit != 0.0 => limit.abs(),
+                Condition::AtLeast { limit, .. } | Condition::AtMost { limit, .. }
+                    if *limit != 0.0 =>
+                {
+                    limit.abs()
+                }
                 _ => 1.0,
             })
             .collect();
         let mut slip_watched = Vec::new();
-        for (magnet, name) in equations.model.magnets.iter().map(|magnet| &magnet.name).enumerate() {
+        for (magnet, name) in equations.model.magnets.iter().map(|magnet| &magnet.name).enumerate()
+        {
             let watched = list.iter().any(|protection| match &protection.when {
                 Condition::AtLeast { of, .. } | Condition::AtMost { of, .. } => {
                     of.strip_prefix(name.as_str()).is_some_and(|rest| {

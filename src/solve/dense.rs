@@ -50,7 +50,8 @@ impl DenseStep {
         let h = self.length;
         let difference: Vec<f64> = (0..size).map(|i| self.last[i] - self.first[i]).collect();
         let bend: Vec<f64> = (0..size).map(|i| h * self.first_rate[i] - difference[i]).collect();
-        let close: Vec<f64> = (0..size).map(|i| difference[i] - h * self.last_rate[i] - bend[i]).collect();
+        let close: Vec<f64> =
+            (0..size).map(|i| difference[i] - h * self.last_rate[i] - bend[i]).collect();
         self.coefficients.clear();
         self.coefficients.extend([difference, bend, close]);
         match method {
@@ -59,7 +60,8 @@ impl DenseStep {
                 self.kind = Kind::Quartic;
                 let quartic = (0..size)
                     .map(|i| {
-                        let inner: f64 = stages.iter().zip(&dopri5::D).map(|(stage, d)| d * stage[i]).sum();
+                        let inner: f64 =
+                            stages.iter().zip(&dopri5::D).map(|(stage, d)| d * stage[i]).sum();
                         h * (inner + dopri5::D[6] * self.last_rate[i])
                     })
                     .collect();
@@ -71,9 +73,14 @@ impl DenseStep {
                 for weights in &dop853::D {
                     let row = (0..size)
                         .map(|i| {
-                            let own: f64 = stages.iter().zip(weights).map(|(stage, d)| d * stage[i]).sum();
+                            let own: f64 =
+                                stages.iter().zip(weights).map(|(stage, d)| d * stage[i]).sum();
                             let end = weights[12] * self.last_rate[i];
-                            let extra: f64 = more.iter().zip(&weights[13..]).map(|(stage, d)| d * stage[i]).sum();
+                            let extra: f64 = more
+                                .iter()
+                                .zip(&weights[13..])
+                                .map(|(stage, d)| d * stage[i])
+                                .sum();
                             h * (own + end + extra)
                         })
                         .collect();
@@ -83,7 +90,11 @@ impl DenseStep {
         }
     }
 
-    fn more_stages(&self, stages: &[&[f64]], rates: &mut dyn FnMut(f64, &[f64], &mut [f64])) -> Vec<Vec<f64>> {
+    fn more_stages(
+        &self,
+        stages: &[&[f64]],
+        rates: &mut dyn FnMut(f64, &[f64], &mut [f64]),
+    ) -> Vec<Vec<f64>> {
         let size = self.first.len();
         let mut more: Vec<Vec<f64>> = Vec::with_capacity(3);
         for (row, node) in dop853::A_DENSE.iter().zip(dop853::C_DENSE) {
@@ -91,7 +102,8 @@ impl DenseStep {
                 .map(|i| {
                     let own: f64 = stages.iter().zip(*row).map(|(stage, a)| a * stage[i]).sum();
                     let end = row[12] * self.last_rate[i];
-                    let extra: f64 = more.iter().zip(&row[13..]).map(|(stage, a)| a * stage[i]).sum();
+                    let extra: f64 =
+                        more.iter().zip(&row[13..]).map(|(stage, a)| a * stage[i]).sum();
                     self.first[i] + self.length * (own + end + extra)
                 })
                 .collect();
@@ -151,10 +163,18 @@ impl DenseStep {
 }
 
 /// Adds the sum of the independent speeds over one step, by the method's own weights.
-pub fn add_sums(method: Method, length: f64, first: &[f64], stages: &[&[f64]], weights: &[f64], sums: &mut [f64]) {
+pub fn add_sums(
+    method: Method,
+    length: f64,
+    first: &[f64],
+    stages: &[&[f64]],
+    weights: &[f64],
+    sums: &mut [f64],
+) {
     debug_assert_eq!(weights.len(), tableau::of(method).stages());
     for (place, sum) in sums.iter_mut().enumerate() {
-        let inner: f64 = stages.iter().zip(weights).map(|(stage, weight)| weight * stage[place]).sum();
+        let inner: f64 =
+            stages.iter().zip(weights).map(|(stage, weight)| weight * stage[place]).sum();
         *sum += length * (first[place] + length * inner);
     }
 }

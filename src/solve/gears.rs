@@ -69,7 +69,11 @@ impl GearTrack {
     /// Notes a crossing.
     pub fn note(&mut self, crossing: &GearCrossing, time: f64) {
         if crossing.is_slip {
-            self.slips.push(SlipEvent { time, direction: crossing.direction, slip_speed: crossing.slip_speed });
+            self.slips.push(SlipEvent {
+                time,
+                direction: crossing.direction,
+                slip_speed: crossing.slip_speed,
+            });
             self.note_angle(PI * f64::from(crossing.direction), time);
             if self.peak_angle.abs() < PI {
                 self.peak_angle = PI * f64::from(crossing.direction);
@@ -94,7 +98,8 @@ impl GearTrack {
             [.., before, last] => Some(last.time - before.time),
             _ => None,
         };
-        let since = if self.past { None } else { self.last_return.filter(|time| *time >= last.time) };
+        let since =
+            if self.past { None } else { self.last_return.filter(|time| *time >= last.time) };
         let period = if period.is_finite() { period } else { 0.0 };
         let needed = (2.0 * period).max(2.0 * interval.unwrap_or(0.0));
         if let Some(since) = since {
@@ -121,7 +126,9 @@ impl GearTrack {
 pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec<GearCrossing> {
     let mut found = Vec::new();
     let mut state = Vec::new();
-    for (index, (magnet, &place)) in equations.model.magnets.iter().zip(&equations.phase_state).enumerate() {
+    for (index, (magnet, &place)) in
+        equations.model.magnets.iter().zip(&equations.phase_state).enumerate()
+    {
         let scale = equations.scale[place];
         let row = equations.speed_row(&magnet.row());
         let mut knots: Vec<(f64, f64)> = Vec::with_capacity(shares.len() + 2);
@@ -168,7 +175,11 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
             }
             for (target, is_slip, short) in targets {
                 // The load angle lies in (-pi, pi]: the target itself belongs to the side below it.
-                let crossed = if direction > 0 { low <= target && target < high } else { high <= target && target < low };
+                let crossed = if direction > 0 {
+                    low <= target && target < high
+                } else {
+                    high <= target && target < low
+                };
                 if !crossed {
                     continue;
                 }
@@ -184,7 +195,14 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
                 );
                 step.state(share, &mut state);
                 let slip_speed = dot(&row, &state);
-                found.push(GearCrossing { share, magnet: index, direction, is_slip, short, slip_speed });
+                found.push(GearCrossing {
+                    share,
+                    magnet: index,
+                    direction,
+                    is_slip,
+                    short,
+                    slip_speed,
+                });
             }
         }
     }

@@ -36,7 +36,12 @@ pub enum Guard {
 }
 
 /// The guards in force in a mode.
-pub fn list(evaluator: &Evaluator<'_>, mode: &Mode, conditions: &Conditions, state: &[f64]) -> Vec<Guard> {
+pub fn list(
+    evaluator: &Evaluator<'_>,
+    mode: &Mode,
+    conditions: &Conditions,
+    state: &[f64],
+) -> Vec<Guard> {
     let equations = evaluator.equations;
     let mut guards = Vec::new();
     for active in &evaluator.assembly.active {
@@ -147,7 +152,13 @@ fn frame_error(evaluator: &Evaluator<'_>, integral: usize, state: &[f64], frame:
     let term = &evaluator.equations.terms[integral];
     let time = frame.time;
     let offset = term.offset.map_or(0.0, |(factor, slot)| {
-        factor * evaluator.equations.bank.value_in(slot, time, evaluator.assembly.start, evaluator.overrides)
+        factor
+            * evaluator.equations.bank.value_in(
+                slot,
+                time,
+                evaluator.assembly.start,
+                evaluator.overrides,
+            )
     });
     dot(&term.input, state) + offset
 }

@@ -83,7 +83,12 @@ pub fn run(window: &Window, rhs: &Rhs<'_>, state: &[f64], watch: &mut dyn Watch)
     by_length!(1 2 3 4 5 6 7 8 9 10 11 12 13 14 15 16 17 18 19 20 21 22 23 24 25 26 27 28 29 30 31 32)
 }
 
-fn library<D: Dim>(window: &Window, rhs: &Rhs<'_>, state: OVector<f64, D>, watch: &mut dyn Watch) -> Stop
+fn library<D: Dim>(
+    window: &Window,
+    rhs: &Rhs<'_>,
+    state: OVector<f64, D>,
+    watch: &mut dyn Watch,
+) -> Stop
 where
     DefaultAllocator: Allocator<D>,
 {
@@ -93,21 +98,49 @@ where
     let tolerance = window.tolerance;
     let outcome = match window.method {
         Method::Dop853 => Dop853::from_param(
-            bridge, window.start, window.end, window.end - window.start, state, tolerance, tolerance, 0.9, 0.0,
-            0.333, 6.0, window.step_cap, first, WINDOW, u32::MAX, OutputType::Sparse,
+            bridge,
+            window.start,
+            window.end,
+            window.end - window.start,
+            state,
+            tolerance,
+            tolerance,
+            0.9,
+            0.0,
+            0.333,
+            6.0,
+            window.step_cap,
+            first,
+            WINDOW,
+            u32::MAX,
+            OutputType::Sparse,
         )
         .integrate(),
         _ => Dopri5::from_param(
-            bridge, window.start, window.end, window.end - window.start, state, tolerance, tolerance, 0.9,
-            CONTROLLER_BETA, 0.2, 10.0, window.step_cap, first, WINDOW, u32::MAX, OutputType::Sparse,
+            bridge,
+            window.start,
+            window.end,
+            window.end - window.start,
+            state,
+            tolerance,
+            tolerance,
+            0.9,
+            CONTROLLER_BETA,
+            0.2,
+            10.0,
+            window.step_cap,
+            first,
+            WINDOW,
+            u32::MAX,
+            OutputType::Sparse,
         )
         .integrate(),
     };
     match outcome {
         Ok(_) | Err(IntegrationError::MaxNumStepReached { .. }) => Stop::Fine,
-        Err(IntegrationError::StepSizeUnderflow { x } | IntegrationError::StiffnessDetected { x }) => {
-            Stop::StepTooSmall(x)
-        }
+        Err(
+            IntegrationError::StepSizeUnderflow { x } | IntegrationError::StiffnessDetected { x },
+        ) => Stop::StepTooSmall(x),
     }
 }
 
@@ -125,7 +158,11 @@ fn fixed(window: &Window, rhs: &Rhs<'_>, state: &[f64], watch: &mut dyn Watch) -
     rhs.system(window.start, &now, &mut first);
     for index in 0..(count as u64).min(u64::from(WINDOW)) {
         let time = window.start + index as f64 * length;
-        let end = if index + 1 == count as u64 { window.end } else { window.start + (index + 1) as f64 * length };
+        let end = if index + 1 == count as u64 {
+            window.end
+        } else {
+            window.start + (index + 1) as f64 * length
+        };
         k[0].copy_from_slice(&first);
         for (stage, node) in [(1, 0.5), (2, 0.5), (3, 1.0)] {
             for place in 0..size {
@@ -135,7 +172,8 @@ fn fixed(window: &Window, rhs: &Rhs<'_>, state: &[f64], watch: &mut dyn Watch) -
             rhs.system(time + node * length, &trial, &mut rest[0]);
         }
         for place in 0..size {
-            now[place] += length / 6.0 * (k[0][place] + 2.0 * k[1][place] + 2.0 * k[2][place] + k[3][place]);
+            now[place] +=
+                length / 6.0 * (k[0][place] + 2.0 * k[1][place] + 2.0 * k[2][place] + k[3][place]);
         }
         rhs.system(end, &now, &mut first);
         if rhs.fault().is_some() {

@@ -83,10 +83,18 @@ pub fn maximum(low: f64, high: f64, mut function: impl FnMut(f64) -> f64) -> (f6
         let u = if step.abs() >= tolerance { x + step } else { x + tolerance.copysign(step) };
         let fu = -function(u);
         if fu <= fx {
-            if u >= x { a = x } else { b = x }
+            if u >= x {
+                a = x
+            } else {
+                b = x
+            }
             (v, fv, w, fw, x, fx) = (w, fw, x, fx, u, fu);
         } else {
-            if u < x { a = u } else { b = u }
+            if u < x {
+                a = u
+            } else {
+                b = u
+            }
             if fu <= fw || w == x {
                 (v, fv, w, fw) = (w, fw, u, fu);
             } else if fu <= fv || v == x || v == w {

@@ -55,7 +55,14 @@ pub struct RunOptions<'a> {
 
 impl Default for RunOptions<'_> {
     fn default() -> Self {
-        Self { rows: None, wanted: Wanted::All, traces: None, interrupt: None, progress: None, tolerance: None }
+        Self {
+            rows: None,
+            wanted: Wanted::All,
+            traces: None,
+            interrupt: None,
+            progress: None,
+            tolerance: None,
+        }
     }
 }
 

@@ -31,8 +31,13 @@ pub struct Extreme {
 
 impl Extreme {
     /// Nothing seen yet.
-    pub const NONE: Self =
-        Self { min: f64::INFINITY, min_time: 0.0, max: f64::NEG_INFINITY, max_time: 0.0, last: 0.0 };
+    pub const NONE: Self = Self {
+        min: f64::INFINITY,
+        min_time: 0.0,
+        max: f64::NEG_INFINITY,
+        max_time: 0.0,
+        last: 0.0,
+    };
 
     /// Takes a value at an instant.
     pub fn note(&mut self, value: f64, time: f64) {
@@ -106,6 +111,7 @@ impl<'a> Observer<'a> {
                     after: None,
                     before: None,
                     text: String::new(),
+                    source: None,
                 };
                 windows.push(Window::new(None, &watch, channel));
             }
@@ -131,13 +137,16 @@ impl<'a> Observer<'a> {
             .magnets
             .iter()
             .zip(&equations.phase_state)
-            .map(|(magnet, place)| GearTrack::new(start[*place] * equations.scale[*place], magnet.law.peaks()))
+            .map(|(magnet, place)| {
+                GearTrack::new(start[*place] * equations.scale[*place], magnet.law.peaks())
+            })
             .collect();
         let is = |kind: ChannelKind, test: &[MagneticChannel]| match kind {
             ChannelKind::Magnetic(_, what) => test.contains(&what),
             _ => false,
         };
-        let counts = [MagneticChannel::Slips, MagneticChannel::NetSlips, MagneticChannel::ShortOfPeak];
+        let counts =
+            [MagneticChannel::Slips, MagneticChannel::NetSlips, MagneticChannel::ShortOfPeak];
         Self {
             wanted,
             extremes: vec![Extreme::NONE; model.channels.len()],
@@ -159,10 +168,18 @@ impl<'a> Observer<'a> {
             output_step: scenario.output_step,
             duration: scenario.duration,
             discrete: model.channels.iter().map(|channel| is(channel.kind, &counts)).collect(),
-            wraps: model.channels.iter().map(|channel| is(channel.kind, &[MagneticChannel::LoadAngle])).collect(),
+            wraps: model
+                .channels
+                .iter()
+                .map(|channel| is(channel.kind, &[MagneticChannel::LoadAngle]))
+                .collect(),
             samples: Vec::new(),
             scratch: Sample::default(),
-            names: scenario.requirements.iter().map(|requirement| requirement.name.clone()).collect(),
+            names: scenario
+                .requirements
+                .iter()
+                .map(|requirement| requirement.name.clone())
+                .collect(),
         }
     }
 
@@ -197,7 +214,8 @@ impl<'a> Observer<'a> {
         let mut scratch = std::mem::take(&mut self.scratch);
         evaluator.evaluate(time, state, &self.counters, Some(&self.wanted), &mut scratch.frame);
         self.note_all(time, &scratch.frame.channels);
-        for window in self.windows.iter_mut().filter(|window| window.active || window.touches(time)) {
+        for window in self.windows.iter_mut().filter(|window| window.active || window.touches(time))
+        {
             window.note(time, scratch.frame.channels[window.channel]);
         }
         self.scratch = scratch;
@@ -236,7 +254,8 @@ impl<'a> Observer<'a> {
         let found = crossings(evaluator.equations, step, &shares);
         let scale = self.speed_scale.clone();
         let counters = self.counters.clone();
-        let view = StepView { step, evaluator, counters: &counters, crossings: found, scale: &scale };
+        let view =
+            StepView { step, evaluator, counters: &counters, crossings: found, scale: &scale };
         let mut samples = std::mem::take(&mut self.samples);
         samples.resize_with(shares.len(), Sample::default);
         for (share, sample) in shares.iter().zip(&mut samples) {
@@ -291,7 +310,8 @@ impl<'a> Observer<'a> {
             self.events.push(gear_event(equations, crossing, time));
             if crossing.is_slip {
                 for (place, channel) in equations.model.channels.iter().enumerate() {
-                    if channel.kind == ChannelKind::Magnetic(crossing.magnet, MagneticChannel::LoadAngle)
+                    if channel.kind
+                        == ChannelKind::Magnetic(crossing.magnet, MagneticChannel::LoadAngle)
                         && self.wanted.binary_search(&place).is_ok()
                     {
                         let side = std::f64::consts::PI * f64::from(crossing.direction);
@@ -303,7 +323,8 @@ impl<'a> Observer<'a> {
                 }
             } else {
                 for (place, channel) in equations.model.channels.iter().enumerate() {
-                    if channel.kind == ChannelKind::Magnetic(crossing.magnet, MagneticChannel::ShortOfPeak)
+                    if channel.kind
+                        == ChannelKind::Magnetic(crossing.magnet, MagneticChannel::ShortOfPeak)
                         && self.wanted.binary_search(&place).is_ok()
                     {
                         let last = self.extremes[place].last;
@@ -311,7 +332,8 @@ impl<'a> Observer<'a> {
                         self.extremes[place].last = last;
                     }
                     // A crossing of a peak is where the torque stands at its full pull-out value.
-                    if channel.kind == ChannelKind::Magnetic(crossing.magnet, MagneticChannel::PullOutShare)
+                    if channel.kind
+                        == ChannelKind::Magnetic(crossing.magnet, MagneticChannel::PullOutShare)
                         && self.wanted.binary_search(&place).is_ok()
                     {
                         let last = self.extremes[place].last;
@@ -378,7 +400,10 @@ fn refine(
     for triple in samples.windows(3) {
         let places = [triple[0].share, triple[1].share, triple[2].share];
         let values = [0, 1, 2].map(|index: usize| triple[index].frame.channels[channel]);
-        if wraps && (values[1] - values[0]).abs().max((values[2] - values[1]).abs()) > std::f64::consts::PI {
+        if wraps
+            && (values[1] - values[0]).abs().max((values[2] - values[1]).abs())
+                > std::f64::consts::PI
+        {
             continue;
         }
         let Some((_, value)) = locate::vertex(places, values) else { continue };
@@ -389,8 +414,9 @@ fn refine(
         } else {
             continue;
         };
-        let (share, best) =
-            locate::maximum(places[0], places[2], |share| sign * view.channel(channel, share, scratch));
+        let (share, best) = locate::maximum(places[0], places[2], |share| {
+            sign * view.channel(channel, share, scratch)
+        });
         let last = extreme.last;
         extreme.note(sign * best, view.step.time(share));
         extreme.last = last;
@@ -402,9 +428,19 @@ fn gear_event(equations: &Equations, crossing: &GearCrossing, time: f64) -> Even
     let name = &equations.model.magnets[crossing.magnet].name;
     let (kind, value, unit, text) = if crossing.is_slip {
         let sense = if crossing.direction > 0 { "forward" } else { "backward" };
-        (EventKind::Slip, f64::from(crossing.direction), "1", format!("`{name}` slips one pole {sense}"))
+        (
+            EventKind::Slip,
+            f64::from(crossing.direction),
+            "1",
+            format!("`{name}` slips one pole {sense}"),
+        )
     } else if crossing.short {
-        (EventKind::ShortOfPeak, crossing.slip_speed, "rad/s", format!("`{name}` is short of the peak again"))
+        (
+            EventKind::ShortOfPeak,
+            crossing.slip_speed,
+            "rad/s",
+            format!("`{name}` is short of the peak again"),
+        )
     } else {
         (EventKind::PastPeak, crossing.slip_speed, "rad/s", format!("`{name}` is past the peak"))
     };

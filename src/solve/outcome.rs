@@ -4,7 +4,8 @@ use super::run::Run;
 use crate::equations::frame::load_angle;
 use crate::equations::{Equations, Owner, Shape, energy};
 use crate::results::{
-    ChannelResult, Energy, Event, EventKind, GearResult, GearState, MemberResult, MotorResult, RunResult, Warning,
+    ChannelResult, Energy, Event, EventKind, GearResult, GearState, MemberResult, MotorResult,
+    RunResult, Warning,
 };
 use crate::scenario::Method;
 use std::f64::consts::TAU;
@@ -43,8 +44,9 @@ pub fn collect(mut run: Run<'_, '_>, stored: f64) -> RunResult {
     for event in &mut run.observer.events {
         if event.kind == EventKind::Requirement {
             let of = scenario.requirements.iter().find(|requirement| requirement.name == event.of);
-            let channel =
-                of.and_then(|of| equations.model.channels.iter().find(|channel| channel.name == of.of));
+            let channel = of.and_then(|of| {
+                equations.model.channels.iter().find(|channel| channel.name == of.of)
+            });
             event.unit = channel.map_or("", |channel| channel.unit);
         }
     }
@@ -56,7 +58,9 @@ pub fn collect(mut run: Run<'_, '_>, stored: f64) -> RunResult {
         .warnings()
         .map(|warning| Warning { path: warning.path.clone(), text: warning.message.clone() })
         .collect();
-    warnings.extend(run.warnings.iter().map(|(path, text)| Warning { path: path.clone(), text: text.clone() }));
+    warnings.extend(
+        run.warnings.iter().map(|(path, text)| Warning { path: path.clone(), text: text.clone() }),
+    );
     let stages = match scenario.solver.method {
         Method::Dopri5 => Some((6, 0)),
         Method::Dop853 => Some((12, 1)),
@@ -142,15 +146,17 @@ fn gears(run: &Run<'_, '_>) -> Vec<GearResult> {
                     .iter()
                     .map(|member| MemberResult {
                         member: member.name,
-                        body: member
-                            .body
-                            .map_or_else(|| "ground".to_owned(), |body| model.scenario.bodies[body].name.clone()),
+                        body: member.body.map_or_else(
+                            || "ground".to_owned(),
+                            |body| model.scenario.bodies[body].name.clone(),
+                        ),
                         count: member.count,
                         pull_out_torque: magnet.pull_out_at(member.count),
                     })
                     .collect(),
                 natural_period: period,
-                time_past_peak: track.time_past + if track.past { run.time - track.past_since } else { 0.0 },
+                time_past_peak: track.time_past
+                    + if track.past { run.time - track.past_since } else { 0.0 },
                 slip_events: track.slips.clone(),
             }
         })
@@ -167,7 +173,8 @@ fn motors(run: &Run<'_, '_>) -> Vec<MotorResult> {
         .enumerate()
         .filter_map(|(index, motor)| {
             let heat = equations.heats.iter().position(|(motor, _)| *motor == index)?;
-            let watch = run.observer.windows.iter().filter(|window| window.requirement.is_none()).nth(heat);
+            let watch =
+                run.observer.windows.iter().filter(|window| window.requirement.is_none()).nth(heat);
             Some(MotorResult {
                 name: motor.name.clone(),
                 run_up_time: watch.and_then(super::windows::Window::reached),
@@ -210,12 +217,16 @@ fn warn_of_ranges(run: &mut Run<'_, '_>) {
             _ => continue,
         };
         let name = format!("{body}.speed");
-        let Some(place) = equations.model.channels.iter().position(|channel| channel.name == name) else { continue };
+        let Some(place) = equations.model.channels.iter().position(|channel| channel.name == name)
+        else {
+            continue;
+        };
         let extreme = run.observer.extremes[place];
         if extreme.max < extreme.min {
             continue;
         }
-        let (from, to) = if reversed { (-extreme.max, -extreme.min) } else { (extreme.min, extreme.max) };
+        let (from, to) =
+            if reversed { (-extreme.max, -extreme.min) } else { (extreme.min, extreme.max) };
         let room = 1e-9 * (high - low).abs();
         if from < low - room || to > high + room {
             run.warnings.push((path, law.warn_text().to_owned()));

@@ -16,17 +16,25 @@ use crate::signal::course::Overrides;
 const RESIDUE: f64 = 1e-6;
 
 /// Marks elements whose limit is zero all along as absent, and brings back those that act again.
-pub fn presence(equations: &Equations, mode: &mut Mode, time: f64, end: f64, state: &[f64], overrides: &Overrides) {
+pub fn presence(
+    equations: &Equations,
+    mode: &mut Mode,
+    time: f64,
+    end: f64,
+    state: &[f64],
+    overrides: &Overrides,
+) {
     for (index, friction) in equations.frictions.iter().enumerate() {
-        let absent = friction
-            .factor
-            .slots
-            .iter()
-            .any(|(slot, _)| equations.bank.constant_on(*slot, time, end, overrides) == Some(0.0));
+        let absent =
+            friction.factor.slots.iter().any(|(slot, _)| {
+                equations.bank.constant_on(*slot, time, end, overrides) == Some(0.0)
+            });
         let speed = dot(&friction.speed, state);
         mode.frictions[index] = match (absent, mode.frictions[index]) {
             (true, _) => FrictionMode::Absent,
-            (false, FrictionMode::Absent) if speed.abs() > REST * friction.speed_size => FrictionMode::sliding(speed),
+            (false, FrictionMode::Absent) if speed.abs() > REST * friction.speed_size => {
+                FrictionMode::sliding(speed)
+            }
             (false, FrictionMode::Absent) => FrictionMode::Stuck,
             (false, other) => other,
         };
@@ -69,7 +77,10 @@ pub fn resolve(
             project(equations, &assembly.projection, state);
             break;
         }
-        let Some(line) = weakest(&evaluator, time, &assembly.stuck, &holding.torque, &refused) else { break };
+        let Some(line) = weakest(&evaluator, time, &assembly.stuck, &holding.torque, &refused)
+        else {
+            break;
+        };
         let index = assembly.stuck[line];
         let mut released = false;
         for torque in [holding.torque[line], -holding.torque[line]] {
@@ -89,7 +100,13 @@ pub fn resolve(
     }
 }
 
-fn weakest(evaluator: &Evaluator<'_>, time: f64, stuck: &[usize], torque: &[f64], refused: &[usize]) -> Option<usize> {
+fn weakest(
+    evaluator: &Evaluator<'_>,
+    time: f64,
+    stuck: &[usize],
+    torque: &[f64],
+    refused: &[usize],
+) -> Option<usize> {
     let mut best: Option<(usize, f64)> = None;
     for (line, index) in stuck.iter().enumerate() {
         if refused.contains(index) {
@@ -127,7 +144,9 @@ fn accelerates(
 /// Takes the tiny residual speeds along stuck rows out of the state.
 fn project(equations: &Equations, projection: &Option<nalgebra::DMatrix<f64>>, state: &mut [f64]) {
     let Some(keep) = projection else { return };
-    let speeds = nalgebra::DVector::from_fn(equations.speeds, |place, _| state[place] * equations.scale[place]);
+    let speeds = nalgebra::DVector::from_fn(equations.speeds, |place, _| {
+        state[place] * equations.scale[place]
+    });
     let kept = keep * &speeds;
     for place in 0..equations.speeds {
         let scaled = kept[place] / equations.scale[place];
@@ -137,7 +156,13 @@ fn project(equations: &Equations, projection: &Option<nalgebra::DMatrix<f64>>, s
     }
 }
 
-fn tell(equations: &Equations, before: &[FrictionMode], mode: &Mode, time: f64, events: &mut Vec<Event>) {
+fn tell(
+    equations: &Equations,
+    before: &[FrictionMode],
+    mode: &Mode,
+    time: f64,
+    events: &mut Vec<Event>,
+) {
     for (index, (old, new)) in before.iter().zip(&mode.frictions).enumerate() {
         let name = &equations.frictions[index].name;
         let (kind, text) = match (old, new) {
@@ -147,11 +172,19 @@ fn tell(equations: &Equations, before: &[FrictionMode], mode: &Mode, time: f64, 
             (FrictionMode::Forward | FrictionMode::Backward, FrictionMode::Stuck) => {
                 (EventKind::Stuck, format!("`{name}` sticks"))
             }
-            (FrictionMode::Forward, FrictionMode::Backward) | (FrictionMode::Backward, FrictionMode::Forward) => {
+            (FrictionMode::Forward, FrictionMode::Backward)
+            | (FrictionMode::Backward, FrictionMode::Forward) => {
                 (EventKind::Sliding, format!("`{name}` slides the other way"))
             }
             _ => continue,
         };
-        events.push(Event { time, kind, of: name.clone(), value: new.direction(), unit: "1", text });
+        events.push(Event {
+            time,
+            kind,
+            of: name.clone(),
+            value: new.direction(),
+            unit: "1",
+            text,
+        });
     }
 }

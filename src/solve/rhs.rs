@@ -93,7 +93,8 @@ impl<'a> Rhs<'a> {
     /// The right-hand side of an evaluator's assembly.
     pub fn new(evaluator: Evaluator<'a>) -> Self {
         let constant = !evaluator.assembly.varies;
-        let ring = RefCell::new(Ring::new(evaluator.equations.size, evaluator.equations.heats.len()));
+        let ring =
+            RefCell::new(Ring::new(evaluator.equations.size, evaluator.equations.heats.len()));
         Self { evaluator, constant, ring, fault: Cell::new(None) }
     }
 
@@ -149,7 +150,11 @@ impl<'a> Rhs<'a> {
         let mut powers = Powers::default();
         heats.fill(0.0);
         for active in &assembly.active {
-            let (input, value) = if self.constant { steady(active, state) } else { self.evaluator.law(active, time, state) };
+            let (input, value) = if self.constant {
+                steady(active, state)
+            } else {
+                self.evaluator.law(active, time, state)
+            };
             for &(place, factor) in &active.column {
                 rates[place] += factor * value;
             }

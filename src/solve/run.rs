@@ -88,7 +88,10 @@ pub fn run(equations: &Equations, mut options: RunOptions<'_>) -> Result<RunResu
         overrides,
         conditions,
         observer,
-        work: SolverWork { method: method_name(equations.model.scenario.solver.method), ..SolverWork::default() },
+        work: SolverWork {
+            method: method_name(equations.model.scenario.solver.method),
+            ..SolverWork::default()
+        },
         failure: None,
         warnings: equations.warnings.clone(),
         last_steps: [0.0; 2],
@@ -133,18 +136,36 @@ impl Run<'_, '_> {
             if self.changed || self.any_at_rest() {
                 let events = if first { None } else { Some(&mut self.observer.events) };
                 rest::resolve(
-                    equations, &mut self.mode, self.time, end, &mut self.state, &self.overrides, false, events,
+                    equations,
+                    &mut self.mode,
+                    self.time,
+                    end,
+                    &mut self.state,
+                    &self.overrides,
+                    false,
+                    events,
                 );
             }
             let assembly = assemble(equations, &self.mode, self.time, end, &self.overrides);
             let acted = {
-                let evaluator = Evaluator { equations, assembly: &assembly, overrides: &self.overrides };
+                let evaluator =
+                    Evaluator { equations, assembly: &assembly, overrides: &self.overrides };
                 let mut frame = Frame::default();
                 let wanted = self.conditions.channels.clone();
-                evaluator.evaluate(self.time, &self.state, &self.observer.counters, Some(&wanted), &mut frame);
+                evaluator.evaluate(
+                    self.time,
+                    &self.state,
+                    &self.observer.counters,
+                    Some(&wanted),
+                    &mut frame,
+                );
                 let mut overrides = self.overrides.clone();
                 let acted = self.conditions.update(
-                    self.time, &frame, equations, &mut overrides, &mut self.observer.events,
+                    self.time,
+                    &frame,
+                    equations,
+                    &mut overrides,
+                    &mut self.observer.events,
                 );
                 self.overrides = overrides;
                 acted
@@ -153,7 +174,8 @@ impl Run<'_, '_> {
                 self.work.events += 1;
             }
             if acted.end_run || self.time >= duration {
-                let evaluator = Evaluator { equations, assembly: &assembly, overrides: &self.overrides };
+                let evaluator =
+                    Evaluator { equations, assembly: &assembly, overrides: &self.overrides };
                 self.observer.end(&evaluator, self.time, &self.state);
                 self.observer.final_row(&evaluator, self.time, &self.state);
                 return;
@@ -210,17 +232,32 @@ impl Run<'_, '_> {
     }
 
     fn tripped_at_start(&self, assembly: &Assembly) -> Option<Guard> {
-        let evaluator = Evaluator { equations: self.equations, assembly, overrides: &self.overrides };
+        let evaluator =
+            Evaluator { equations: self.equations, assembly, overrides: &self.overrides };
         let list = guards::list(&evaluator, &self.mode, &self.conditions, &self.state);
         if list.is_empty() {
             return None;
         }
         let mut frame = Frame::default();
         let wanted = self.conditions.channels.clone();
-        evaluator.evaluate(self.time, &self.state, &self.observer.counters, Some(&wanted), &mut frame);
+        evaluator.evaluate(
+            self.time,
+            &self.state,
+            &self.observer.counters,
+            Some(&wanted),
+            &mut frame,
+        );
         list.into_iter().find(|guard| {
-            let value = guards::value(*guard, &evaluator, &self.mode, &self.conditions, &self.state, &frame);
-            value < -1.5 * TRIP && !matches!(guard, Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..))
+            let value = guards::value(
+                *guard,
+                &evaluator,
+                &self.mode,
+                &self.conditions,
+                &self.state,
+                &frame,
+            );
+            value < -1.5 * TRIP
+                && !matches!(guard, Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..))
         })
     }
 
@@ -239,8 +276,16 @@ impl Run<'_, '_> {
         let cap = self.step_cap(&evaluator, end);
         let rhs = Rhs::new(evaluator);
         let mut watcher = Watcher::new(
-            &mut self.observer, &rhs, &self.mode, &self.conditions, solver.method, tolerance, self.time, &self.state,
-            options.interrupt, options.progress.as_mut().map(|progress| &mut **progress as &mut dyn FnMut(f64)),
+            &mut self.observer,
+            &rhs,
+            &self.mode,
+            &self.conditions,
+            solver.method,
+            tolerance,
+            self.time,
+            &self.state,
+            options.interrupt,
+            options.progress.as_mut().map(|progress| &mut **progress as &mut dyn FnMut(f64)),
         );
         let largest = self.last_steps[0].max(self.last_steps[1]);
         let mut first_step = if self.changed { 0.0 } else { largest };
@@ -252,7 +297,11 @@ impl Run<'_, '_> {
                 end,
                 first_step,
                 step_cap: cap,
-                tolerance: if solver.method == Method::Rk4 { solver.step.unwrap_or(1e-3) } else { tolerance },
+                tolerance: if solver.method == Method::Rk4 {
+                    solver.step.unwrap_or(1e-3)
+                } else {
+                    tolerance
+                },
             };
             let state = watcher.state.clone();
             let stop = integrate::run(&window, &rhs, &state, &mut watcher);
@@ -315,7 +364,8 @@ impl Run<'_, '_> {
         // Laws over an angle: a sixth of a period at the working speed.
         for term in &self.equations.terms {
             if let Shape::Law(Law::Cogging { order, .. }) = &term.shape {
-                let fastest = self.equations.model.scales.body_speed.iter().fold(0.0_f64, |a, b| a.max(*b));
+                let fastest =
+                    self.equations.model.scales.body_speed.iter().fold(0.0_f64, |a, b| a.max(*b));
                 cap = cap.min(TAU / (6.0 * order * fastest));
             }
         }
@@ -339,7 +389,13 @@ impl Run<'_, '_> {
             Guard::Slide(_) | Guard::Hold => {
                 let tripped = guard == Guard::Hold;
                 rest::resolve(
-                    equations, &mut self.mode, self.time, end, &mut self.state, &self.overrides, tripped,
+                    equations,
+                    &mut self.mode,
+                    self.time,
+                    end,
+                    &mut self.state,
+                    &self.overrides,
+                    tripped,
                     Some(&mut self.observer.events),
                 );
             }
@@ -350,7 +406,8 @@ impl Run<'_, '_> {
             Guard::Close(shaft) => {
                 let place = equations.twist_state[shaft];
                 let twist = place.map_or(0.0, |place| self.state[place]);
-                self.mode.contacts[shaft] = if twist >= 0.0 { Contact::Forward } else { Contact::Backward };
+                self.mode.contacts[shaft] =
+                    if twist >= 0.0 { Contact::Forward } else { Contact::Backward };
                 self.contact_event(shaft, EventKind::Contact);
             }
             Guard::Windup(index) => self.mode.held[index] = !self.mode.held[index],
@@ -366,19 +423,28 @@ impl Run<'_, '_> {
         };
         let value = self.equations.twist_state[shaft]
             .map_or(0.0, |place| self.state[place] * self.equations.scale[place]);
-        self.observer.events.push(Event { time: self.time, kind, of: name, value, unit: "rad", text });
+        self.observer.events.push(Event {
+            time: self.time,
+            kind,
+            of: name,
+            value,
+            unit: "rad",
+            text,
+        });
     }
 
     fn warn_of_jolt(&mut self, assembly: &Assembly) {
         if self.equations.model.scenario.start == Start::Steady {
             return;
         }
-        let evaluator = Evaluator { equations: self.equations, assembly, overrides: &self.overrides };
+        let evaluator =
+            Evaluator { equations: self.equations, assembly, overrides: &self.overrides };
         let rhs = Rhs::new(evaluator);
         let mut rates = vec![0.0; self.equations.size];
         rhs.system(0.0, &self.state, &mut rates);
         // Time in which the first accelerations would bring a body to its working speed.
-        let fastest = rates[..self.equations.speeds].iter().fold(0.0_f64, |a, rate| a.max(rate.abs()));
+        let fastest =
+            rates[..self.equations.speeds].iter().fold(0.0_f64, |a, rate| a.max(rate.abs()));
         if fastest * self.equations.model.scenario.duration > 1e-3 {
             self.warnings.push((
                 "start".to_owned(),
@@ -421,7 +487,9 @@ impl Run<'_, '_> {
         if let Some(body) = self.equations.model.reduction.independent.get(place) {
             return format!("the speed of `{}`", scenario.bodies[*body].name);
         }
-        if let Some(shaft) = self.equations.twist_state.iter().position(|state| *state == Some(place)) {
+        if let Some(shaft) =
+            self.equations.twist_state.iter().position(|state| *state == Some(place))
+        {
             return format!("the twist of `{}`", scenario.shafts[shaft].name);
         }
         if let Some(magnet) = self.equations.phase_state.iter().position(|state| *state == place) {

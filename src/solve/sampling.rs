@@ -35,7 +35,9 @@ impl StepView<'_> {
     /// Counts and angle sums at a share of the step.
     pub fn counters_at(&self, share: f64) -> Counters {
         let mut counters = self.counters.clone();
-        for crossing in self.crossings.iter().filter(|crossing| crossing.is_slip && crossing.share <= share) {
+        for crossing in
+            self.crossings.iter().filter(|crossing| crossing.is_slip && crossing.share <= share)
+        {
             counters.slips[crossing.magnet] += 1;
             counters.net_slips[crossing.magnet] += crossing.direction;
         }

@@ -20,6 +20,10 @@ pub struct SteadyError {
 }
 
 /// Finds it.
-pub fn find(_equations: &Equations, _time: f64, _overrides: &Overrides) -> Result<SteadyPoint, SteadyError> {
+pub fn find(
+    _equations: &Equations,
+    _time: f64,
+    _overrides: &Overrides,
+) -> Result<SteadyPoint, SteadyError> {
     Err(SteadyError { message: String::new() })
 }

@@ -109,7 +109,10 @@ impl Tracer {
 
 fn widen(column: &mut Option<Column>, value: f64) {
     match column {
-        None => *column = Some(Column { first: value, min: value, max: value, last: value, min_first: true }),
+        None => {
+            *column =
+                Some(Column { first: value, min: value, max: value, last: value, min_first: true })
+        }
         Some(column) => {
             column.last = value;
             if value < column.min {

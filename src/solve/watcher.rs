@@ -72,7 +72,10 @@ pub struct Watcher<'w, 'a> {
 
 impl<'w, 'a> Watcher<'w, 'a> {
     /// A watch that starts at a time and state.
-    #[expect(clippy::too_many_arguments, reason = "the pieces of one segment, each borrowed from the run")]
+    #[expect(
+        clippy::too_many_arguments,
+        reason = "the pieces of one segment, each borrowed from the run"
+    )]
     pub fn new(
         observer: &'w mut Observer<'a>,
         rhs: &Rhs<'_>,
@@ -175,15 +178,26 @@ impl<'w, 'a> Watcher<'w, 'a> {
         step.last_rate.extend_from_slice(rates);
         step.first_sum.clear();
         let scale = &self.observer.speed_scale;
-        step.first_sum.extend(self.observer.counters.angles.iter().zip(scale).map(|(sum, scale)| sum / scale));
+        step.first_sum.extend(
+            self.observer.counters.angles.iter().zip(scale).map(|(sum, scale)| sum / scale),
+        );
         step.last_sum.clone_from(&step.first_sum);
         let stages: Vec<&[f64]> = self.stages.iter().map(Vec::as_slice).collect();
-        add_sums(self.method, length, &step.first[..speeds], &stages, &self.state_weights, &mut step.last_sum);
+        add_sums(
+            self.method,
+            length,
+            &step.first[..speeds],
+            &stages,
+            &self.state_weights,
+            &mut step.last_sum,
+        );
     }
 
     fn prepare(&mut self, rhs: &Rhs<'_>) {
         let stages: Vec<&[f64]> = self.stages.iter().map(Vec::as_slice).collect();
-        self.step.prepare(self.method, &stages, &mut |time, state, rates| rhs.system(time, state, rates));
+        self.step.prepare(self.method, &stages, &mut |time, state, rates| {
+            rhs.system(time, state, rates)
+        });
     }
 
     /// Moves on to the end of the loaded step.
@@ -209,7 +223,13 @@ impl<'w, 'a> Watcher<'w, 'a> {
         let shares = self.observer.shares(&self.step, self.inner());
         let counters = self.observer.counters.clone();
         let scale = self.observer.speed_scale.clone();
-        let view = StepView { step: &self.step, evaluator, counters: &counters, crossings: Vec::new(), scale: &scale };
+        let view = StepView {
+            step: &self.step,
+            evaluator,
+            counters: &counters,
+            crossings: Vec::new(),
+            scale: &scale,
+        };
         let wanted = self.conditions.channels.clone();
         let mut scratch = std::mem::take(&mut self.scratch);
         let mut values: Vec<Vec<f64>> = Vec::with_capacity(shares.len());
@@ -219,18 +239,36 @@ impl<'w, 'a> Watcher<'w, 'a> {
                 self.guards
                     .iter()
                     .map(|guard| {
-                        guards::value(*guard, &evaluator, self.mode, self.conditions, &scratch.state, &scratch.frame)
+                        guards::value(
+                            *guard,
+                            &evaluator,
+                            self.mode,
+                            self.conditions,
+                            &scratch.state,
+                            &scratch.frame,
+                        )
                     })
                     .collect(),
             );
         }
         let mut first: Option<Cut> = None;
         for (index, guard) in self.guards.iter().enumerate() {
-            let mut at = |share: f64, scratch: &mut Sample| {
+            let at = |share: f64, scratch: &mut Sample| {
                 view.sample(share, Some(&wanted), scratch);
-                guards::value(*guard, &evaluator, self.mode, self.conditions, &scratch.state, &scratch.frame)
+                guards::value(
+                    *guard,
+                    &evaluator,
+                    self.mode,
+                    self.conditions,
+                    &scratch.state,
+                    &scratch.frame,
+                )
             };
-            let Some((low, high)) = bracket(&shares, &values, index, |share| at(share, &mut scratch)) else { continue };
+            let Some((low, high)) =
+                bracket(&shares, &values, index, |share| at(share, &mut scratch))
+            else {
+                continue;
+            };
             if first.is_some_and(|cut| cut.share <= low) {
                 continue;
             }
@@ -253,7 +291,8 @@ impl<'w, 'a> Watcher<'w, 'a> {
         }
         let mut stages = vec![self.rate.clone()];
         for _ in 0..4 {
-            let mut rates = |time: f64, state: &[f64], rates: &mut [f64]| rhs.system(time, state, rates);
+            let mut rates =
+                |time: f64, state: &[f64], rates: &mut [f64]| rhs.system(time, state, rates);
             let end = self.tableau.step(&mut rates, start, length, &first, &mut stages);
             let mut rate = vec![0.0; end.len()];
             rhs.system(start + length, &end, &mut rate);
@@ -265,7 +304,13 @@ impl<'w, 'a> Watcher<'w, 'a> {
                 let mut state = Vec::new();
                 self.step.state(share, &mut state);
                 let time = self.step.time(share);
-                rhs.evaluator.evaluate(time, &state, &counters, Some(&self.conditions.channels), &mut frame);
+                rhs.evaluator.evaluate(
+                    time,
+                    &state,
+                    &counters,
+                    Some(&self.conditions.channels),
+                    &mut frame,
+                );
                 guards::value(cut.guard, &rhs.evaluator, self.mode, self.conditions, &state, &frame)
             };
             let (here, before) = (value(1.0), value(1.0 - 1e-3));
@@ -318,7 +363,8 @@ fn bracket(
             if let Some((place, low)) = locate::vertex(places, heights) {
                 let near = low < 0.1 * heights[0].min(heights[2]);
                 if near && low < heights[1].min(heights[0]).min(heights[2]) && heights[2] >= -TRIP {
-                    let (place_low, depth) = locate::maximum(places[0], places[2], |share| -at(share));
+                    let (place_low, depth) =
+                        locate::maximum(places[0], places[2], |share| -at(share));
                     if -depth < -TRIP {
                         return Some((places[0], place_low));
                     }
@@ -347,7 +393,17 @@ impl Watch for Watcher<'_, '_> {
         }
         self.observer.step(rhs.evaluator, &self.step, self.inner());
         self.advance();
-        self.calm.settle(&rhs.evaluator, self.observer, self.mode, self.conditions, &self.guards, self.time, &self.state, &self.rate, self.step.length);
+        self.calm.settle(
+            &rhs.evaluator,
+            self.observer,
+            self.mode,
+            self.conditions,
+            &self.guards,
+            self.time,
+            &self.state,
+            &self.rate,
+            self.step.length,
+        );
         self.look_around() || full
     }
 }

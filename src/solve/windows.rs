@@ -144,7 +144,8 @@ impl Window {
     fn reach(&mut self, time: f64, value: f64, target: f64, band: Option<f64>) {
         match band {
             None => {
-                let passed = self.last.is_some_and(|(_, last)| (last - target) * (value - target) <= 0.0);
+                let passed =
+                    self.last.is_some_and(|(_, last)| (last - target) * (value - target) <= 0.0);
                 if self.reached.is_none() && (passed || value == target) {
                     self.reached = Some(time);
                 }
@@ -160,7 +161,14 @@ impl Window {
     }
 
     /// Takes a step's samples, refining crossings and extremes between them.
-    pub fn step(&mut self, view: &StepView<'_>, samples: &[Sample], scratch: &mut Sample, events: &mut Vec<Event>, name: &str) {
+    pub fn step(
+        &mut self,
+        view: &StepView<'_>,
+        samples: &[Sample],
+        scratch: &mut Sample,
+        events: &mut Vec<Event>,
+        name: &str,
+    ) {
         let channel = self.channel;
         for (index, sample) in samples.iter().enumerate().skip(1) {
             let value = self.value(sample.frame.channels[channel]);
@@ -230,7 +238,13 @@ impl Window {
     }
 
     /// Looks for an extreme between samples when the parabola through three of them promises one.
-    fn refine(&mut self, view: &StepView<'_>, samples: &[Sample], index: usize, scratch: &mut Sample) {
+    fn refine(
+        &mut self,
+        view: &StepView<'_>,
+        samples: &[Sample],
+        index: usize,
+        scratch: &mut Sample,
+    ) {
         if self.counts || samples.len() < 3 {
             return;
         }
@@ -246,21 +260,26 @@ impl Window {
             let (a, b) = (low.frame.channels[self.channel], high.frame.channels[self.channel]);
             if a * b < 0.0 && extreme > 0.0 {
                 let sign = b.signum();
-                let share =
-                    locate::root(low.share, high.share, |share| -sign * view.channel(self.channel, share, scratch), 1e-14);
+                let share = locate::root(
+                    low.share,
+                    high.share,
+                    |share| -sign * view.channel(self.channel, share, scratch),
+                    1e-14,
+                );
                 self.smaller(0.0, view.step.time(share));
                 return;
             }
         }
         let Some((place, value)) = locate::vertex(places, values) else { return };
-        if place <= samples[index - 1].share || place > samples[index].share || value <= sign * extreme {
+        if place <= samples[index - 1].share
+            || place > samples[index].share
+            || value <= sign * extreme
+        {
             return;
         }
-        let (share, value) = locate::maximum(
-            places[0],
-            places[2],
-            |share| sign * self.value(view.channel(self.channel, share, scratch)),
-        );
+        let (share, value) = locate::maximum(places[0], places[2], |share| {
+            sign * self.value(view.channel(self.channel, share, scratch))
+        });
         if value > sign * extreme {
             let time = view.step.time(share);
             if larger { self.larger(value, time) } else { self.smaller(-value, time) }
@@ -325,18 +344,32 @@ impl Window {
     }
 
     /// The verdict at the end of the run.
-    pub fn verdict(&self, requirement: &Requirement, unit: &'static str, end: f64, completed: bool) -> RequirementResult {
+    pub fn verdict(
+        &self,
+        requirement: &Requirement,
+        unit: &'static str,
+        end: f64,
+        completed: bool,
+    ) -> RequirementResult {
         let judged = completed
             && self.seen
             && self.after <= end
             && (!self.stated_before || self.before <= end * (1.0 + 1e-12));
         let (value, limit, time, ok, unit) = match self.test {
-            Test::AtMost(limit) => {
-                (Some(self.extreme), Some(limit), Some(self.extreme_time), self.extreme <= limit, unit)
-            }
-            Test::AtLeast(limit) => {
-                (Some(self.extreme), Some(limit), Some(self.extreme_time), self.extreme >= limit, unit)
-            }
+            Test::AtMost(limit) => (
+                Some(self.extreme),
+                Some(limit),
+                Some(self.extreme_time),
+                self.extreme <= limit,
+                unit,
+            ),
+            Test::AtLeast(limit) => (
+                Some(self.extreme),
+                Some(limit),
+                Some(self.extreme_time),
+                self.extreme >= limit,
+                unit,
+            ),
             Test::Reaches { within, .. } => {
                 let limit = within.map(|within| self.after + within);
                 let ok = self.reached.is_some_and(|time| limit.is_none_or(|limit| time <= limit));

@@ -85,7 +85,8 @@ impl Tableau {
 
     /// The growth `|R(z)|` of the linear test equation over one step.
     pub fn growth(&self, re: f64, im: f64) -> f64 {
-        let multiply = |a: (f64, f64), b: (f64, f64)| (a.0 * b.0 - a.1 * b.1, a.0 * b.1 + a.1 * b.0);
+        let multiply =
+            |a: (f64, f64), b: (f64, f64)| (a.0 * b.0 - a.1 * b.1, a.0 * b.1 + a.1 * b.0);
         let z = (re, im);
         // Stage values k_i/lambda of y' = lambda y from y = 1.
         let mut stages: Vec<(f64, f64)> = vec![(1.0, 0.0)];
