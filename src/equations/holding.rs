@@ -89,9 +89,9 @@ pub fn hold(compliance: &DMatrix<f64>, drive: &[f64], limits: &[f64]) -> Holding
         let (_, _, first_weakest) = first.get_or_insert_with(|| (torque.clone(), worst, weakest));
         if worst <= 1.0 {
             let closes = closes(compliance, drive, &torque);
-            let clamped_any = clamped.contains(&true);
             if closes {
-                let margin = if clamped_any { f64::min(1.0 - worst, 1.0) } else { 1.0 - worst };
+                // With every element at its limit there is nothing left to spare.
+                let margin = if open.is_empty() { 0.0 } else { 1.0 - worst };
                 return Holding {
                     torque,
                     holds: true,
