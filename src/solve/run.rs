@@ -47,6 +47,7 @@ pub struct Run<'e, 'a> {
     last_steps: [f64; 2],
     caps: BTreeMap<Mode, f64>,
     changed: bool,
+    judged: bool,
 }
 
 /// Why no run took place.
@@ -97,6 +98,7 @@ pub fn run(equations: &Equations, mut options: RunOptions<'_>) -> Result<RunResu
         last_steps: [0.0; 2],
         caps: BTreeMap::new(),
         changed: true,
+        judged: false,
     };
     run.go(&mut options);
     Ok(outcome::collect(run, stored))
@@ -133,7 +135,9 @@ impl Run<'_, '_> {
             let end = self.next_stop(duration);
             self.wrap_phases();
             rest::presence(equations, &mut self.mode, self.time, end, &self.state, &self.overrides);
-            if self.changed || self.any_at_rest() {
+            // What a guard has just let go of must not be caught again at the same instant.
+            let judged = std::mem::take(&mut self.judged);
+            if !judged && (self.changed || self.any_at_rest()) {
                 let events = if first { None } else { Some(&mut self.observer.events) };
                 rest::resolve(
                     equations,
@@ -184,6 +188,8 @@ impl Run<'_, '_> {
                 self.changed = true;
                 continue;
             }
+            // A protection that has begun to wait may be due before the next kink.
+            let end = end.min(self.next_stop(duration));
             if let Some(guard) = self.tripped_at_start(&assembly) {
                 self.apply(guard, end);
                 continue;
@@ -388,6 +394,7 @@ impl Run<'_, '_> {
             }
             Guard::Slide(_) | Guard::Hold => {
                 let tripped = guard == Guard::Hold;
+                self.judged = true;
                 rest::resolve(
                     equations,
                     &mut self.mode,
