@@ -110,8 +110,14 @@ fn staying_counts_from_the_last_entry() {
 
 #[test]
 fn a_window_beyond_the_end_cannot_be_judged() {
-    expect(HILL, "at_most: 8 N*m, before: 11 s", None, None);
-    expect(HILL, "at_most: 8 N*m, after: 12 s", None, None);
+    for words in [
+        "at_most: 8 N*m, before: 11 s",
+        "at_most: 8 N*m, after: 12 s",
+        "reaches: 6 N*m, before: 11 s",
+    ] {
+        let (_, met, _) = judge(HILL, words);
+        assert_eq!(met, None, "{words}");
+    }
     expect(HILL, "at_most: 8 N*m, before: 10 s", Some(true), Some(8.0));
     // The end as it turned out: a run told to end at 3 s has seen 6 N*m only.
     let requirements = "  asked: { of: push.torque, at_most: 6 N*m }\n  later: { of: push.torque, at_most: 9 N*m, before: 5 s }\n\
