@@ -188,6 +188,8 @@ impl Run<'_, '_> {
                 self.judge_rest = true;
                 continue;
             }
+            // A protection that has begun to wait may be due before the next kink.
+            let end = end.min(self.next_stop(duration));
             if let Some(guard) = self.tripped_at_start(&assembly) {
                 self.apply(guard, end);
                 continue;
