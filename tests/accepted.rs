@@ -19,19 +19,23 @@ fn every_file_of_the_folder_is_accepted() {
     }
 }
 
+fn near(value: f64, wanted: f64) -> bool {
+    (value - wanted).abs() <= 1e-12 * wanted.abs()
+}
+
 #[test]
 fn values_of_the_first_file_arrive_in_si() {
     let loaded = load(Path::new("tests/accepted/contract.yaml"), &[]).unwrap();
     let scenario = &loaded.scenario;
-    assert_eq!(scenario.duration, 3.0);
-    assert!((scenario.output_step - 2e-3).abs() < 1e-15);
-    assert_eq!(scenario.bodies[0].inertia, 0.25);
+    assert!(near(scenario.duration, 3.0));
+    assert!(near(scenario.output_step, 2e-3));
+    assert!(near(scenario.bodies[0].inertia, 0.25));
     assert_eq!(scenario.bodies[1].speed, None);
-    assert_eq!(scenario.shafts[1].stiffness, 50e3);
+    assert!(near(scenario.shafts[1].stiffness, 50e3));
     let gear = &scenario.magnetic_gears[0];
     assert_eq!((gear.inner_pole_pairs, gear.outer_pole_pairs), (4, 22));
     assert_eq!(gear.modulator, "ground");
-    assert_eq!(gear.damping.unwrap().coefficient, 24.2);
+    assert!(near(gear.damping.unwrap().coefficient, 24.2));
     let names: Vec<_> = scenario.requirements.iter().map(|one| one.text.as_str()).collect();
     assert_eq!(
         names,

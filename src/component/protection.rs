@@ -68,8 +68,14 @@ pub struct Surroundings<'a> {
     /// All channels of the train.
     pub channels: &'a [Channel],
     /// The dimension of the signal at a path (`None`: any), or the fault and a hint.
-    pub signal_at: &'a dyn Fn(&str) -> Result<Option<Dimension>, (String, Option<String>)>,
+    pub signal_at: &'a SignalAt<'a>,
 }
+
+/// Finds the dimension of the signal at a path.
+pub type SignalAt<'a> = dyn Fn(&str) -> Result<Option<Dimension>, PathFault> + 'a;
+
+/// A fault at a path: what is wrong, and what to type instead.
+pub type PathFault = (String, Option<String>);
 
 impl Protection {
     /// Reads a protection.

@@ -41,7 +41,10 @@ impl Failure {
 pub fn load(path: &Path, sets: &[(String, String)]) -> Result<Loaded, Failure> {
     match Source::open(path) {
         Ok(source) => load_source(source, sets),
-        Err((source, diagnostics)) => Err(Failure { diagnostics, source: Box::new(source) }),
+        Err(unread) => {
+            let (source, diagnostics) = *unread;
+            Err(Failure { diagnostics, source: Box::new(source) })
+        }
     }
 }
 

@@ -1,6 +1,7 @@
 //! Values by dotted path: read for studies, set from the command line and by studies.
 
 use super::describe::{Found, Kind, PathFault, find};
+use super::locate::Places;
 use super::yaml;
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::quantity::{self, Dimension};
@@ -98,7 +99,20 @@ fn default_of(root: &Node, path: &str, found: &Found<'_>) -> Option<f64> {
 
 /// Sets a value as typed on the command line; a path that leads nowhere is a fault.
 pub(super) fn set_typed(root: &mut Node, path: &str, text: &str, faults: &mut Diagnostics) {
-    if let Err((message, hint)) = set(root, path, yaml::parse_value(text)) {
+    let mut told = Diagnostics::new();
+    let value = match yaml::parse_value(text) {
+        Ok(value) => {
+            Places::scan(text, &mut told);
+            value
+        }
+        Err(fault) => {
+            told.push(fault);
+            Node::Null
+        }
+    };
+    if let Some(fault) = told.into_iter().next() {
+        faults.add(Severity::Error, path, fault.message, fault.hint);
+    } else if let Err((message, hint)) = set(root, path, value) {
         faults.add(Severity::Error, path, message, hint);
     }
 }
@@ -167,3 +181,7 @@ fn write(node: &mut Node, path: &str, value: Node) -> bool {
         _ => false,
     }
 }
+
+#[cfg(test)]
+#[path = "patch_tests.rs"]
+mod tests;

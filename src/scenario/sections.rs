@@ -17,6 +17,7 @@ use crate::quantity::{self, Dimension};
 use crate::signal::NamedSignal;
 use crate::signal::read::read_named_signal;
 use crate::tree::{Fields, Node, Range, Shape};
+use std::cell::OnceCell;
 
 /// Rows of the series beyond this are a mistake.
 const MOST_ROWS: f64 = 1e7;
@@ -58,10 +59,13 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
     let planetary_gears =
         fields.section("planetary_gears", "Rigid planetary sets.", PlanetaryGear::read);
     let motors = fields.section("motors", "Motors and generators.", |motor| {
-        Motor::read(&motor.own_name().to_owned(), motor)
+        let name = motor.own_name().to_owned();
+        Motor::read(&name, motor)
     });
-    let loads =
-        fields.section("loads", "Loads.", |load| Load::read(&load.own_name().to_owned(), load));
+    let loads = fields.section("loads", "Loads.", |load| {
+        let name = load.own_name().to_owned();
+        Load::read(&name, load)
+    });
     let brakes = fields.section("brakes", "Brakes pressed by a signal.", Brake::read);
     let signals = read_signals(fields);
     let train = Train {
@@ -77,9 +81,13 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
     };
     let channels = channel::list(&train, &section_order(fields));
     let protections = {
+        let description = OnceCell::new();
         let around = Surroundings {
             channels: &channels,
-            signal_at: &|path| signal_dimension_at(root, &signals, path),
+            signal_at: &|path| {
+                let description = description.get_or_init(super::describe::root);
+                signal_dimension_at(description, root, &signals, path)
+            },
         };
         fields.section("protections", "Logic that acts once during the run.", |protection| {
             Protection::read(protection, &around)

@@ -30,7 +30,7 @@ pub struct Source {
 
 impl Source {
     /// Reads a file, or standard input for `-`.
-    pub fn open(path: &Path) -> Result<Self, (Self, Diagnostics)> {
+    pub fn open(path: &Path) -> Result<Self, Box<(Self, Diagnostics)>> {
         let standard_input = path == Path::new("-");
         let mut source = Self {
             name: if standard_input {
@@ -74,7 +74,7 @@ impl Source {
         };
         let mut faults = Diagnostics::new();
         faults.error("", fault);
-        Err((source, faults))
+        Err(Box::new((source, faults)))
     }
 
     /// A source from a text in memory.
