@@ -332,3 +332,7 @@ fn signal_form(form: &str, dimension: Option<Dimension>) -> Kind {
         _ => Kind::InSignal(dimension),
     }
 }
+
+#[cfg(test)]
+#[path = "describe_tests.rs"]
+mod tests;

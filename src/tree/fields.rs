@@ -240,3 +240,7 @@ impl<'a> Fields<'a> {
         }
     }
 }
+
+#[cfg(test)]
+#[path = "fields_tests.rs"]
+mod tests;
