@@ -1,13 +1,16 @@
 //! Lodeshaft: how close a drivetrain with magnetic gears comes to slipping.
 //!
 //! The floors, from the ground up; a module uses only modules below it:
-//! `diagnostic < tree < quantity < signal < component < scenario < model < equations <
-//! solve < results < analysis < render < cli`.
+//! `diagnostic < tree < quantity < results < signal < component < scenario < model <
+//! equations < solve < analysis < render < cli`.
 
 pub mod component;
 pub mod diagnostic;
+pub mod equations;
+pub mod model;
 pub mod quantity;
 pub mod results;
 pub mod scenario;
 pub mod signal;
+pub mod solve;
 pub mod tree;

@@ -46,6 +46,8 @@ pub struct Active {
     pub power: PowerKind,
     /// Speed of its power; `None`: the input.
     pub speed: Option<StateRow>,
+    /// Heat of an induction motor's rotor: place in the list of heats and synchronous speed, rad/s.
+    pub heat: Option<(usize, f64)>,
 }
 
 /// The function of an active term.
@@ -115,7 +117,13 @@ pub struct Assembly {
 }
 
 /// Assembles the equations of a mode from `start` to `end`.
-pub fn assemble(equations: &Equations, mode: &Mode, start: f64, end: f64, overrides: &Overrides) -> Assembly {
+pub fn assemble(
+    equations: &Equations,
+    mode: &Mode,
+    start: f64,
+    end: f64,
+    overrides: &Overrides,
+) -> Assembly {
     let parts = Parts::new(equations, mode);
     let constant_place = equations.terms.len() + equations.frictions.len();
     let mut state_rows = DMatrix::zeros(equations.size, equations.size);
@@ -151,7 +159,8 @@ pub fn assemble(equations: &Equations, mode: &Mode, start: f64, end: f64, overri
         if factor == Strength::Constant(0.0) {
             continue;
         }
-        let moving = term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
+        let moving =
+            term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
         for slot in moving {
             varies |= equations.bank.constant_on(slot, start, end, overrides).is_none();
         }
@@ -159,7 +168,9 @@ pub fn assemble(equations: &Equations, mode: &Mode, start: f64, end: f64, overri
             Target::Torque(direction) => parts.column(direction),
             Target::State(state, rate) => vec![(*state, rate / equations.scale[*state])],
         };
-        if let (Shape::Linear, None, Strength::Constant(value)) = (&term.shape, term.offset, &factor) {
+        if let (Shape::Linear, None, Strength::Constant(value)) =
+            (&term.shape, term.offset, &factor)
+        {
             for &(row, share) in &column {
                 for &(state, weight) in &term.input {
                     state_rows[(row, state)] += share * value * weight;
@@ -193,6 +204,7 @@ pub fn assemble(equations: &Equations, mode: &Mode, start: f64, end: f64, overri
             column: parts.column(&friction.row),
             power: PowerKind::Lost,
             speed: None,
+            heat: None,
         });
     }
     if parts.has_constant {
@@ -206,13 +218,15 @@ pub fn assemble(equations: &Equations, mode: &Mode, start: f64, end: f64, overri
             column: parts.column(&parts.constant_row()),
             power: PowerKind::None,
             speed: None,
+            heat: None,
         });
     }
     let linear = &parts.accelerate * &parts.force;
     let mut full = state_rows;
     for row in 0..equations.speeds {
         for column in 0..equations.size {
-            full[(row, column)] += linear[(row, column)] * equations.scale[column] / equations.scale[row];
+            full[(row, column)] +=
+                linear[(row, column)] * equations.scale[column] / equations.scale[row];
         }
     }
     add_rates(equations, &mut full);
@@ -221,7 +235,7 @@ pub fn assemble(equations: &Equations, mode: &Mode, start: f64, end: f64, overri
             full[(state, state)] -= 1.0 / controller.lag;
         }
     }
-    let channels = channels::forms(equations, mode, &parts, &full);
+    let channels = channels::forms(equations, mode, &parts);
     let (stuck_drive, stuck_compliance) = parts.stuck_forms(equations);
     Assembly {
         start,
@@ -279,14 +293,18 @@ fn pack(full: &DMatrix<f64>) -> Matrix {
 
 fn quiet_powers(equations: &Equations, mode: &Mode) -> QuietPowers {
     let mut powers = QuietPowers::default();
-    for (index, (shaft, place)) in equations.model.shafts.iter().zip(&equations.twist_state).enumerate() {
+    for (index, (shaft, place)) in
+        equations.model.shafts.iter().zip(&equations.twist_state).enumerate()
+    {
         let Some(place) = *place else { continue };
         let scale = equations.scale[place];
         match mode.contacts[index] {
             Contact::Gap => {
                 powers.released.push((place, scale, shaft.stiffness, shaft.backlash / 2.0));
             }
-            _ if shaft.damping > 0.0 => powers.rate_losses.push((place, shaft.damping * scale * scale)),
+            _ if shaft.damping > 0.0 => {
+                powers.rate_losses.push((place, shaft.damping * scale * scale))
+            }
             _ => {}
         }
     }
@@ -295,7 +313,9 @@ fn quiet_powers(equations: &Equations, mode: &Mode) -> QuietPowers {
         if let super::Owner::Magnet(index) = damper.owner {
             if damper.row == equations.model.magnets[index].row() {
                 let place = equations.phase_state[index];
-                powers.rate_losses.push((place, damper.coefficient * equations.scale[place].powi(2)));
+                powers
+                    .rate_losses
+                    .push((place, damper.coefficient * equations.scale[place].powi(2)));
                 continue;
             }
         }
@@ -388,26 +408,30 @@ impl Parts {
                 - inverse * rows.transpose() * pseudo * &rows;
             (&keep * inverse, Some(keep))
         };
-        let directions = equations
-            .terms
-            .iter()
-            .enumerate()
-            .filter_map(|(place, term)| match &term.target {
-                Target::Torque(direction) => Some((place, direction.clone())),
-                Target::State(..) => None,
-            })
-            .chain(
-                equations
-                    .frictions
-                    .iter()
-                    .enumerate()
-                    .map(|(index, friction)| (equations.terms.len() + index, friction.row.clone())),
-            )
-            .chain(std::iter::once((
-                equations.terms.len() + equations.frictions.len(),
-                body_constant.iter().copied().enumerate().filter(|(_, torque)| *torque != 0.0).collect(),
-            )))
-            .collect();
+        let directions =
+            equations
+                .terms
+                .iter()
+                .enumerate()
+                .filter_map(|(place, term)| match &term.target {
+                    Target::Torque(direction) => Some((place, direction.clone())),
+                    Target::State(..) => None,
+                })
+                .chain(
+                    equations.frictions.iter().enumerate().map(|(index, friction)| {
+                        (equations.terms.len() + index, friction.row.clone())
+                    }),
+                )
+                .chain(std::iter::once((
+                    equations.terms.len() + equations.frictions.len(),
+                    body_constant
+                        .iter()
+                        .copied()
+                        .enumerate()
+                        .filter(|(_, torque)| *torque != 0.0)
+                        .collect(),
+                )))
+                .collect();
         Self {
             has_constant: body_constant.iter().any(|torque| *torque != 0.0),
             force,
@@ -445,7 +469,12 @@ impl Parts {
     }
 
     fn constant_row(&self) -> BodyRow {
-        self.body_constant.iter().copied().enumerate().filter(|(_, torque)| *torque != 0.0).collect()
+        self.body_constant
+            .iter()
+            .copied()
+            .enumerate()
+            .filter(|(_, torque)| *torque != 0.0)
+            .collect()
     }
 
     /// Torque directions of all laws by place in the frame: terms, then frictions.
@@ -454,7 +483,10 @@ impl Parts {
     }
 
     /// Accelerations along the stuck rows without holding torques, and their compliance.
-    fn stuck_forms(&self, equations: &Equations) -> (Vec<(StateRow, Vec<(usize, f64)>)>, DMatrix<f64>) {
+    fn stuck_forms(
+        &self,
+        equations: &Equations,
+    ) -> (Vec<(StateRow, Vec<(usize, f64)>)>, DMatrix<f64>) {
         let inverse = &equations.model.reduction.inverse_mass;
         let free = inverse * &self.force;
         let forms = (0..self.stuck.len())
@@ -500,7 +532,13 @@ fn transfer(equations: &Equations) -> DMatrix<f64> {
 }
 
 impl Active {
-    fn of_term(place: usize, term: &super::Term, piece: usize, factor: Strength, column: StateRow) -> Self {
+    fn of_term(
+        place: usize,
+        term: &super::Term,
+        piece: usize,
+        factor: Strength,
+        column: StateRow,
+    ) -> Self {
         Self {
             place,
             function: match &term.shape {
@@ -514,6 +552,7 @@ impl Active {
             column,
             power: term.power,
             speed: term.speed.clone(),
+            heat: term.heat,
         }
     }
 

@@ -1,8 +1,8 @@
 //! From the model to states, terms, frictions and dampers.
 
 use super::{
-    Controller, Damper, Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, StateRow, Target, Term,
-    speed_row,
+    Controller, Damper, Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, StateRow,
+    Target, Term, speed_row,
 };
 use crate::component::law::Law;
 use crate::component::load::{Load, LoadLaw};
@@ -44,6 +44,7 @@ pub fn build(model: &Model) -> Equations {
         frictions: Vec::new(),
         dampers: Vec::new(),
         controllers: Vec::new(),
+        heats: Vec::new(),
         bank: SignalBank::new(&model.scenario.signals),
         warnings: Vec::new(),
     };
@@ -94,13 +95,18 @@ fn add_magnet(equations: &mut Equations, index: usize) {
         power: PowerKind::None,
         speed: None,
         input_size: 1.0,
+        heat: None,
     });
     if let Some(fading) = magnet.fading {
-        let scaled: BodyRow = row.iter().map(|(body, count)| (*body, count / fading.count)).collect();
+        let scaled: BodyRow =
+            row.iter().map(|(body, count)| (*body, count / fading.count)).collect();
         let input = speed_row(&equations.model, &equations.scale, &scaled);
         equations.terms.push(Term {
             owner: Owner::Magnet(index),
-            shape: Shape::Law(Law::FadingDamper { coefficient: fading.coefficient, peak_at: fading.peak_at }),
+            shape: Shape::Law(Law::FadingDamper {
+                coefficient: fading.coefficient,
+                peak_at: fading.peak_at,
+            }),
             input,
             offset: None,
             parameters: [None; 2],
@@ -109,6 +115,7 @@ fn add_magnet(equations: &mut Equations, index: usize) {
             power: PowerKind::Lost,
             speed: None,
             input_size: fading.peak_at,
+            heat: None,
         });
     }
     if magnet.damping > 0.0 {
@@ -144,6 +151,7 @@ fn add_cogging_and_drag(equations: &mut Equations, index: usize) {
             power: PowerKind::None,
             speed: None,
             input_size: 1.0,
+            heat: None,
         });
     }
     for (number, drag) in gear.drag.iter().enumerate() {
@@ -185,7 +193,12 @@ fn slot(equations: &mut Equations, path: String, signal: &Signal) -> SlotId {
 }
 
 /// A factor of a signal to a power; a plain 1 in the file still gets its slot, since a protection may set it.
-fn factor_of(equations: &mut Equations, section: &str, name: &str, scale: &Option<Signal>) -> Factor {
+fn factor_of(
+    equations: &mut Equations,
+    section: &str,
+    name: &str,
+    scale: &Option<Signal>,
+) -> Factor {
     let signal = scale.clone().unwrap_or(Signal::Constant(1.0));
     Factor { slots: vec![(slot(equations, format!("{section}.{name}.scale"), &signal), 1)] }
 }
@@ -227,6 +240,15 @@ fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) {
         }
     };
     let Some(law) = law else { return };
+    let synchronous_speed = match &motor.law {
+        MotorLaw::RatingPlate { synchronous_speed, .. }
+        | MotorLaw::Induction { synchronous_speed, .. } => Some(*synchronous_speed),
+        _ => None,
+    };
+    let heat = synchronous_speed.map(|speed| {
+        equations.heats.push((index, speed));
+        (equations.heats.len() - 1, speed)
+    });
     equations.terms.push(Term {
         owner: Owner::Motor(index),
         speed: matches!(law, Law::Unit).then(|| speed.clone()),
@@ -238,6 +260,7 @@ fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) {
         target: Target::Torque(direction),
         power: PowerKind::Drive,
         input_size: size,
+        heat,
     });
 }
 
@@ -246,12 +269,21 @@ fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) {
 /// ```text
 /// e = ref - w;  command = clamp(gain*e + I);  dI/dt = gain*e/Ti unless held;  lag*dT/dt = command - T
 /// ```
-fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: usize, sign: f64, factor: Factor) {
-    let MotorLaw::SpeedLoop { speed, torque_limit, gain, integral_time, lag } = &motor.law else { return };
+fn add_speed_loop(
+    equations: &mut Equations,
+    index: usize,
+    motor: &Motor,
+    body: usize,
+    sign: f64,
+    factor: Factor,
+) {
+    let MotorLaw::SpeedLoop { speed, torque_limit, gain, integral_time, lag } = &motor.law else {
+        return;
+    };
     let direction: BodyRow = vec![(body, sign)];
     let own_speed = speed_row(&equations.model, &equations.scale, &direction);
     let reference = slot(equations, format!("motors.{}.law.speed_loop.speed", motor.name), speed);
-    let mut new_state = |equations: &mut Equations| {
+    let new_state = |equations: &mut Equations| {
         equations.scale.push(*torque_limit);
         equations.scale.len() - 1
     };
@@ -267,7 +299,7 @@ fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: 
     let size = equations.model.scales.body_speed[body];
     equations.terms.push(Term {
         owner,
-        shape: Shape::Law(Law::Saturation { limit: *torque_limit }),
+        shape: Shape::Law(Law::saturation(*torque_limit)),
         input,
         offset: Some((*gain, reference)),
         parameters: [None; 2],
@@ -279,6 +311,7 @@ fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: 
         power: if torque_state.is_none() { PowerKind::Drive } else { PowerKind::None },
         speed: Some(own_speed.clone()),
         input_size: *torque_limit,
+        heat: None,
     });
     let integral = integral_state.zip(*integral_time).map(|(place, time)| {
         equations.terms.push(Term {
@@ -292,6 +325,7 @@ fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: 
             power: PowerKind::None,
             speed: None,
             input_size: size,
+            heat: None,
         });
         equations.terms.len() - 1
     });
@@ -308,6 +342,7 @@ fn add_speed_loop(equations: &mut Equations, index: usize, motor: &Motor, body: 
             power: PowerKind::Drive,
             speed: Some(own_speed),
             input_size: *torque_limit,
+            heat: None,
         });
     }
     equations.controllers.push(Controller {
@@ -328,8 +363,10 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
     let Some(body) = body_index(scenario, &load.body) else { return };
     let against = load.against.as_deref().and_then(|name| body_index(scenario, name));
     let sign = if load.reversed { -1.0 } else { 1.0 };
-    let direction: BodyRow =
-        difference(Some(body), against).into_iter().map(|(place, factor)| (place, sign * factor)).collect();
+    let direction: BodyRow = difference(Some(body), against)
+        .into_iter()
+        .map(|(place, factor)| (place, sign * factor))
+        .collect();
     let speed = speed_row(&equations.model, &equations.scale, &direction);
     let size = equations.model.scales.body_speed[body];
     let owner = Owner::Load(index);
@@ -344,11 +381,13 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
             return;
         }
         LoadLaw::Viscous { coefficient } => {
-            let against: BodyRow = direction.iter().map(|(place, share)| (*place, -share * coefficient)).collect();
+            let against: BodyRow =
+                direction.iter().map(|(place, share)| (*place, -share * coefficient)).collect();
             (Shape::Linear, against)
         }
         LoadLaw::Prescribed { torque } => {
-            let place = slot(equations, format!("loads.{}.law.prescribed.torque", load.name), torque);
+            let place =
+                slot(equations, format!("loads.{}.law.prescribed.torque", load.name), torque);
             factor.slots.push((place, 1));
             own_speed = Some(std::mem::take(&mut input));
             (Shape::Law(Law::Unit), direction.clone())
@@ -367,7 +406,15 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
             if let Law::LoadCurve(curve) = &law {
                 let breakaway = curve.breakaway();
                 if breakaway > 0.0 {
-                    add_friction(equations, owner, &load.name, direction, Sliding::Curve(law), breakaway, factor);
+                    add_friction(
+                        equations,
+                        owner,
+                        &load.name,
+                        direction,
+                        Sliding::Curve(law),
+                        breakaway,
+                        factor,
+                    );
                     return;
                 }
             }
@@ -375,7 +422,9 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
         }
     };
     if matches!(load.law, LoadLaw::Viscous { .. }) {
-        own_speed = Some(speed.iter().map(|(place, value)| (*place, -value * viscous(&load.law))).collect());
+        own_speed = Some(
+            speed.iter().map(|(place, value)| (*place, -value * viscous(&load.law))).collect(),
+        );
     }
     equations.terms.push(Term {
         owner,
@@ -388,6 +437,7 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
         power: PowerKind::Drive,
         speed: own_speed,
         input_size: size,
+        heat: None,
     });
 }
 

@@ -48,8 +48,8 @@ pub enum RotorChannel {
 }
 
 /// The forms of all channels in one mode.
-pub fn forms(equations: &Equations, mode: &Mode, parts: &Parts, full: &DMatrix<f64>) -> Vec<ChannelForm> {
-    let constraint = constraint_forms(equations, parts, full);
+pub fn forms(equations: &Equations, mode: &Mode, parts: &Parts) -> Vec<ChannelForm> {
+    let constraint = constraint_forms(equations, parts);
     equations
         .model
         .channels
@@ -58,14 +58,22 @@ pub fn forms(equations: &Equations, mode: &Mode, parts: &Parts, full: &DMatrix<f
         .collect()
 }
 
-fn form(equations: &Equations, mode: &Mode, constraint: &[LinearForm], kind: ChannelKind) -> ChannelForm {
+fn form(
+    equations: &Equations,
+    mode: &Mode,
+    constraint: &[LinearForm],
+    kind: ChannelKind,
+) -> ChannelForm {
     let model = &equations.model;
     match kind {
         ChannelKind::BodySpeed(body) => linear(equations.speed_row(&[(body, 1.0)])),
         ChannelKind::BodyAngle(body) => ChannelForm::Angle(model.reduction.speeds[body].clone()),
-        ChannelKind::ShaftTwist(shaft) => {
-            linear(equations.twist_state[shaft].map(|place| (place, equations.scale[place])).into_iter().collect())
-        }
+        ChannelKind::ShaftTwist(shaft) => linear(
+            equations.twist_state[shaft]
+                .map(|place| (place, equations.scale[place]))
+                .into_iter()
+                .collect(),
+        ),
         ChannelKind::ShaftTorque(shaft) => shaft_torque(equations, mode, constraint, shaft),
         ChannelKind::Magnetic(magnet, what) => magnetic(equations, magnet, what),
         ChannelKind::GearPairTorque(pair, member) => {
@@ -78,15 +86,25 @@ fn form(equations: &Equations, mode: &Mode, constraint: &[LinearForm], kind: Cha
             let factor = [sun, -(sun + ring), ring][member.min(2)];
             ChannelForm::Linear(scaled(&constraint[model.scenario.gear_pairs.len() + set], factor))
         }
-        ChannelKind::MotorTorque(index) => ChannelForm::Linear(torque_of(equations, Owner::Motor(index))),
-        ChannelKind::LoadTorque(index) => ChannelForm::Linear(torque_of(equations, Owner::Load(index))),
-        ChannelKind::BrakeTorque(index) => ChannelForm::Linear(torque_of(equations, Owner::Brake(index))),
+        ChannelKind::MotorTorque(index) => {
+            ChannelForm::Linear(torque_of(equations, Owner::Motor(index)))
+        }
+        ChannelKind::LoadTorque(index) => {
+            ChannelForm::Linear(torque_of(equations, Owner::Load(index)))
+        }
+        ChannelKind::BrakeTorque(index) => {
+            ChannelForm::Linear(torque_of(equations, Owner::Brake(index)))
+        }
         ChannelKind::MotorPower(index) => power_of(equations, Owner::Motor(index)),
         ChannelKind::LoadPower(index) => power_of(equations, Owner::Load(index)),
         ChannelKind::BrakePower(index) => power_of(equations, Owner::Brake(index)),
         ChannelKind::LoadFlow(index) => rotor(equations, index, RotorChannel::Flow),
-        ChannelKind::LoadTipSpeedRatio(index) => rotor(equations, index, RotorChannel::TipSpeedRatio),
-        ChannelKind::LoadPowerCoefficient(index) => rotor(equations, index, RotorChannel::PowerCoefficient),
+        ChannelKind::LoadTipSpeedRatio(index) => {
+            rotor(equations, index, RotorChannel::TipSpeedRatio)
+        }
+        ChannelKind::LoadPowerCoefficient(index) => {
+            rotor(equations, index, RotorChannel::PowerCoefficient)
+        }
     }
 }
 
@@ -109,7 +127,12 @@ fn rotor(equations: &Equations, load: usize, what: RotorChannel) -> ChannelForm 
     }
 }
 
-fn shaft_torque(equations: &Equations, mode: &Mode, constraint: &[LinearForm], index: usize) -> ChannelForm {
+fn shaft_torque(
+    equations: &Equations,
+    mode: &Mode,
+    constraint: &[LinearForm],
+    index: usize,
+) -> ChannelForm {
     let model = &equations.model;
     let shaft = &model.shafts[index];
     let Some(place) = equations.twist_state[index] else {
@@ -142,8 +165,13 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
                 continue;
             }
             match (&term.shape, magnet.fading) {
-                (super::Shape::Law(crate::component::law::Law::Magnet(_)), _) => form.laws.push((place, -count)),
-                (super::Shape::Law(crate::component::law::Law::FadingDamper { .. }), Some(fading)) => {
+                (super::Shape::Law(crate::component::law::Law::Magnet(_)), _) => {
+                    form.laws.push((place, -count))
+                }
+                (
+                    super::Shape::Law(crate::component::law::Law::FadingDamper { .. }),
+                    Some(fading),
+                ) => {
                     form.laws.push((place, -count / fading.count));
                 }
                 _ => {}
@@ -151,7 +179,10 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
         }
         if magnet.damping > 0.0 {
             let rate = equations.speed_row(&magnet.row());
-            form.state = rate.iter().map(|(place, value)| (*place, -count * magnet.damping * value)).collect();
+            form.state = rate
+                .iter()
+                .map(|(place, value)| (*place, -count * magnet.damping * value))
+                .collect();
         }
         ChannelForm::Linear(form)
     };
@@ -171,7 +202,9 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
                 .terms
                 .iter()
                 .enumerate()
-                .filter(|(_, term)| term.owner == Owner::Magnet(index) && term.power == super::PowerKind::Lost)
+                .filter(|(_, term)| {
+                    term.owner == Owner::Magnet(index) && term.power == super::PowerKind::Lost
+                })
                 .map(|(place, _)| place);
             let drag = equations
                 .frictions
@@ -188,7 +221,8 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
 /// The bodies that a motor, load or brake acts on: its own, and the one it acts against.
 pub fn ends_of(equations: &Equations, owner: Owner) -> (Option<usize>, Option<usize>) {
     let scenario = &equations.model.scenario;
-    let against = |name: &Option<String>| name.as_deref().and_then(|name| body_index(scenario, name));
+    let against =
+        |name: &Option<String>| name.as_deref().and_then(|name| body_index(scenario, name));
     match owner {
         Owner::Motor(index) => (body_index(scenario, &scenario.motors[index].body), None),
         Owner::Load(index) => {
@@ -232,7 +266,7 @@ fn power_of(equations: &Equations, owner: Owner) -> ChannelForm {
 /// ```text
 /// J w' = tau + C' mu   =>   mu = (C C')^+ C (J G u' - tau)
 /// ```
-fn constraint_forms(equations: &Equations, parts: &Parts, full: &DMatrix<f64>) -> Vec<LinearForm> {
+fn constraint_forms(equations: &Equations, parts: &Parts) -> Vec<LinearForm> {
     let model = &equations.model;
     let count = model.constraints.len();
     if count == 0 {
@@ -247,19 +281,20 @@ fn constraint_forms(equations: &Equations, parts: &Parts, full: &DMatrix<f64>) -
     }
     let solve = pseudo_inverse(&(&rows * rows.transpose())) * &rows;
     let inertia = |body: usize| model.scenario.bodies[body].inertia;
-    // Over the scaled state: inertia times acceleration minus torque, body by body.
+    // Over the scaled state: inertia times acceleration minus torque, body by body. Linear terms
+    // that stand in the matrix are left to the law values, like all other terms.
+    let own = &parts.accelerate * &parts.force;
     let mut over_state = DMatrix::zeros(bodies, equations.size);
     for body in 0..bodies {
         for state in 0..equations.size {
             let acceleration: f64 = model.reduction.speeds[body]
                 .iter()
-                .map(|&(place, share)| share * full[(place, state)] * equations.scale[place])
+                .map(|&(place, share)| share * own[(place, state)] * equations.scale[state])
                 .sum();
             let torque = parts.body_force[(body, state)] * equations.scale[state];
             over_state[(body, state)] = inertia(body) * acceleration - torque;
         }
     }
-    // Terms that the matrix already holds would count twice through `full`: take them out again below.
     let state_forms = &solve * over_state;
     let mut forms: Vec<LinearForm> = (0..count)
         .map(|line| LinearForm {
@@ -275,11 +310,15 @@ fn constraint_forms(equations: &Equations, parts: &Parts, full: &DMatrix<f64>) -
         let stuck = parts.stuck.iter().any(|index| equations.terms.len() + index == *place);
         let acceleration = parts.acceleration(direction);
         let residual = nalgebra::DVector::from_fn(bodies, |body, _| {
-            let torque: f64 = direction.iter().filter(|(b, _)| *b == body).map(|(_, factor)| factor).sum();
+            let torque: f64 =
+                direction.iter().filter(|(b, _)| *b == body).map(|(_, factor)| factor).sum();
             let moved: f64 = if stuck {
                 0.0
             } else {
-                model.reduction.speeds[body].iter().map(|&(speed, share)| share * acceleration[speed]).sum()
+                model.reduction.speeds[body]
+                    .iter()
+                    .map(|&(speed, share)| share * acceleration[speed])
+                    .sum()
             };
             inertia(body) * moved - torque
         });

@@ -5,13 +5,14 @@
 //! ```
 
 use super::Equations;
-use crate::component::law::Law;
 use super::Shape;
+use crate::component::law::Law;
 
 /// Kinetic, elastic and magnetic energy of a state, J.
 pub fn stored(equations: &Equations, state: &[f64]) -> f64 {
     let reduction = &equations.model.reduction;
-    let speeds: Vec<f64> = (0..equations.speeds).map(|place| state[place] * equations.scale[place]).collect();
+    let speeds: Vec<f64> =
+        (0..equations.speeds).map(|place| state[place] * equations.scale[place]).collect();
     let mut energy = 0.0;
     for row in 0..equations.speeds {
         for column in 0..equations.speeds {

@@ -26,6 +26,8 @@ pub struct Counters {
 /// Values at one instant.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Frame {
+    /// The instant, s.
+    pub time: f64,
     /// Law values by place: terms, frictions (torque along their row), the constant 1.
     pub laws: Vec<f64>,
     /// Inputs of the laws by place.
@@ -60,14 +62,20 @@ impl Evaluator<'_> {
     /// The value of a factor that follows signals.
     pub fn factor(&self, factor: &Factor, time: f64) -> f64 {
         factor.slots.iter().fold(1.0, |value, &(slot, power)| {
-            value * self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides).powi(power)
+            value
+                * self
+                    .equations
+                    .bank
+                    .value_in(slot, time, self.assembly.start, self.overrides)
+                    .powi(power)
         })
     }
 
     /// Input and value of an active term.
     #[inline]
     pub fn law(&self, active: &Active, time: f64, state: &[f64]) -> (f64, f64) {
-        let signal = |slot| self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
+        let signal =
+            |slot| self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
         let mut input = active.input_at(state);
         if let Some((factor, slot)) = active.offset {
             input += factor * signal(slot);
@@ -108,6 +116,7 @@ impl Evaluator<'_> {
     /// Law values and holding torques.
     pub fn laws(&self, time: f64, state: &[f64], frame: &mut Frame) {
         let assembly = self.assembly;
+        frame.time = time;
         frame.laws.clear();
         frame.laws.resize(assembly.law_count, 0.0);
         frame.inputs.clear();
@@ -123,10 +132,15 @@ impl Evaluator<'_> {
                 .stuck_drive
                 .iter()
                 .map(|(row, laws)| {
-                    dot(row, state) + laws.iter().map(|&(place, factor)| factor * frame.laws[place]).sum::<f64>()
+                    dot(row, state)
+                        + laws
+                            .iter()
+                            .map(|&(place, factor)| factor * frame.laws[place])
+                            .sum::<f64>()
                 })
                 .collect();
-            let limits: Vec<f64> = assembly.stuck.iter().map(|index| self.limit(*index, time)).collect();
+            let limits: Vec<f64> =
+                assembly.stuck.iter().map(|index| self.limit(*index, time)).collect();
             let holding = hold(&assembly.stuck_compliance, &drive, &limits);
             for (index, torque) in assembly.stuck.iter().zip(&holding.torque) {
                 frame.laws[self.equations.terms.len() + index] = *torque;
@@ -155,21 +169,32 @@ impl Evaluator<'_> {
             }
             Some(wanted) => {
                 for &index in wanted {
-                    channels[index] = self.channel(&self.assembly.channels[index], time, state, counters, frame);
+                    channels[index] =
+                        self.channel(&self.assembly.channels[index], time, state, counters, frame);
                 }
             }
         }
         frame.channels = channels;
     }
 
-    fn channel(&self, form: &ChannelForm, time: f64, state: &[f64], counters: &Counters, frame: &Frame) -> f64 {
+    fn channel(
+        &self,
+        form: &ChannelForm,
+        time: f64,
+        state: &[f64],
+        counters: &Counters,
+        frame: &Frame,
+    ) -> f64 {
         match form {
             ChannelForm::Linear(form) => linear(form, state, frame),
             ChannelForm::Power(torque, speed) => linear(torque, state, frame) * dot(speed, state),
-            ChannelForm::Angle(row) => row.iter().map(|&(place, share)| share * counters.angles[place]).sum(),
+            ChannelForm::Angle(row) => {
+                row.iter().map(|&(place, share)| share * counters.angles[place]).sum()
+            }
             ChannelForm::Magnet(index, what) => self.magnet(*index, *what, state, counters, frame),
             ChannelForm::Loss(squares, laws) => {
-                let damping: f64 = squares.iter().map(|(weight, row)| weight * dot(row, state).powi(2)).sum();
+                let damping: f64 =
+                    squares.iter().map(|(weight, row)| weight * dot(row, state).powi(2)).sum();
                 let others: f64 = laws.iter().map(|place| self.lost(*place, state, frame)).sum();
                 damping + others
             }
@@ -185,7 +210,14 @@ impl Evaluator<'_> {
         (frame.laws[place] * speed).abs()
     }
 
-    fn magnet(&self, index: usize, what: MagneticChannel, state: &[f64], counters: &Counters, frame: &Frame) -> f64 {
+    fn magnet(
+        &self,
+        index: usize,
+        what: MagneticChannel,
+        state: &[f64],
+        counters: &Counters,
+        frame: &Frame,
+    ) -> f64 {
         let place = self.equations.phase_state[index];
         let phase = state[place] * self.equations.scale[place];
         let magnet = &self.equations.model.magnets[index];
@@ -200,7 +232,8 @@ impl Evaluator<'_> {
             }
             MagneticChannel::PullOutShare => {
                 let term = self.equations.terms.iter().position(|term| {
-                    term.owner == Owner::Magnet(index) && matches!(term.shape, Shape::Law(Law::Magnet(_)))
+                    term.owner == Owner::Magnet(index)
+                        && matches!(term.shape, Shape::Law(Law::Magnet(_)))
                 });
                 let torque = term.map_or(0.0, |place| frame.laws[place]);
                 let [low, high] = magnet.law.peak_values();
@@ -213,11 +246,14 @@ impl Evaluator<'_> {
 
     fn rotor(&self, place: usize, what: RotorChannel, time: f64, state: &[f64]) -> f64 {
         let term = &self.equations.terms[place];
-        let signal = |slot| self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
+        let signal =
+            |slot| self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
         let [Some(flow), Some(pitch)] = term.parameters else { return 0.0 };
         let (flow, pitch) = (signal(flow), signal(pitch));
         let Owner::Load(load) = term.owner else { return 0.0 };
-        let LoadLaw::AxialRotor { radius, density, .. } = &self.equations.model.scenario.loads[load].law else {
+        let LoadLaw::AxialRotor { radius, density, .. } =
+            &self.equations.model.scenario.loads[load].law
+        else {
             return 0.0;
         };
         if what == RotorChannel::Flow {

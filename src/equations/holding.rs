@@ -92,7 +92,12 @@ pub fn hold(compliance: &DMatrix<f64>, drive: &[f64], limits: &[f64]) -> Holding
             let clamped_any = clamped.contains(&true);
             if closes {
                 let margin = if clamped_any { f64::min(1.0 - worst, 1.0) } else { 1.0 - worst };
-                return Holding { torque, holds: true, margin: margin.max(0.0), weakest: Some(weakest) };
+                return Holding {
+                    torque,
+                    holds: true,
+                    margin: margin.max(0.0),
+                    weakest: Some(weakest),
+                };
             }
             let _ = first_weakest;
             break;
@@ -120,7 +125,13 @@ fn use_of(torque: f64, limit: f64) -> f64 {
 }
 
 /// Least-norm share among `open`, in proportion to the limits.
-fn share(compliance: &DMatrix<f64>, applied: &[f64], limits: &[f64], open: &[usize], torque: &mut [f64]) {
+fn share(
+    compliance: &DMatrix<f64>,
+    applied: &[f64],
+    limits: &[f64],
+    open: &[usize],
+    torque: &mut [f64],
+) {
     if open.is_empty() {
         return;
     }

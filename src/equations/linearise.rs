@@ -15,14 +15,23 @@ pub enum MagnetSlope {
 }
 
 /// Rates of change of the scaled state with respect to itself.
-pub fn jacobian(evaluator: &Evaluator<'_>, time: f64, state: &[f64], magnets: MagnetSlope) -> DMatrix<f64> {
+pub fn jacobian(
+    evaluator: &Evaluator<'_>,
+    time: f64,
+    state: &[f64],
+    magnets: MagnetSlope,
+) -> DMatrix<f64> {
     let assembly: &Assembly = evaluator.assembly;
     let mut matrix = assembly.full.clone();
     for active in &assembly.active {
         let (input, _) = evaluator.law(active, time, state);
-        let signal = |slot| evaluator.equations.bank.value_in(slot, time, assembly.start, evaluator.overrides);
+        let signal = |slot| {
+            evaluator.equations.bank.value_in(slot, time, assembly.start, evaluator.overrides)
+        };
         let slope = match &active.function {
-            Function::Law(crate::component::law::Law::Magnet(magnet), _) if magnets == MagnetSlope::Steepest => {
+            Function::Law(crate::component::law::Law::Magnet(magnet), _)
+                if magnets == MagnetSlope::Steepest =>
+            {
                 magnet.steepest()
             }
             Function::Law(law, piece) => {

@@ -48,6 +48,8 @@ pub struct Equations {
     pub dampers: Vec<Damper>,
     /// Speed controllers.
     pub controllers: Vec<Controller>,
+    /// Motors with a synchronous speed: motor by place and that speed (mirrored with the law), rad/s.
+    pub heats: Vec<(usize, f64)>,
     /// Everything that follows time.
     pub bank: SignalBank,
     /// What a reader of the results must know.
@@ -126,6 +128,8 @@ pub struct Term {
     pub speed: Option<StateRow>,
     /// Typical size of the input, for event tolerances.
     pub input_size: f64,
+    /// Heat of an induction motor's rotor: place in the list of heats and synchronous speed, rad/s.
+    pub heat: Option<(usize, f64)>,
 }
 
 /// How a friction element's sliding torque depends on speed.

@@ -64,7 +64,12 @@ impl Mode {
     /// The mode of a state: pieces and contacts as the state has them, moving friction sliding,
     /// friction at rest stuck (to be judged by the holding torques), integrals held where the
     /// limit acts.
-    pub fn of_state(equations: &Equations, time: f64, state: &[f64], overrides: &Overrides) -> Self {
+    pub fn of_state(
+        equations: &Equations,
+        time: f64,
+        state: &[f64],
+        overrides: &Overrides,
+    ) -> Self {
         let mut mode = Self {
             frictions: equations
                 .frictions
@@ -139,6 +144,8 @@ pub fn input(
     state: &[f64],
     overrides: &Overrides,
 ) -> f64 {
-    let offset = term.offset.map_or(0.0, |(factor, slot)| factor * equations.bank.value(slot, time, overrides));
+    let offset = term
+        .offset
+        .map_or(0.0, |(factor, slot)| factor * equations.bank.value(slot, time, overrides));
     dot(&term.input, state) + offset
 }

@@ -67,7 +67,11 @@ impl Reduction {
 /// The rigid joints of a scenario in file order: gear pairs, planetary sets, rigid shafts.
 pub fn constraints(scenario: &Scenario, shafts: &[ShaftModel]) -> Vec<Constraint> {
     let mut list = Vec::new();
-    let add = |list: &mut Vec<Constraint>, section: &str, kind: &str, name: &str, members: &[(&str, f64)]| {
+    let add = |list: &mut Vec<Constraint>,
+               section: &str,
+               kind: &str,
+               name: &str,
+               members: &[(&str, f64)]| {
         let row = members
             .iter()
             .filter_map(|(body, factor)| body_index(scenario, body).map(|place| (place, *factor)))
@@ -84,8 +88,11 @@ pub fn constraints(scenario: &Scenario, shafts: &[ShaftModel]) -> Vec<Constraint
     }
     for set in &scenario.planetary_gears {
         let (sun, ring) = (f64::from(set.teeth_sun), f64::from(set.teeth_ring));
-        let members =
-            [(set.sun.as_str(), sun), (set.carrier.as_str(), -(sun + ring)), (set.ring.as_str(), ring)];
+        let members = [
+            (set.sun.as_str(), sun),
+            (set.carrier.as_str(), -(sun + ring)),
+            (set.ring.as_str(), ring),
+        ];
         add(&mut list, "planetary_gears", "planetary set", &set.name, &members);
     }
     for (shaft, typed) in shafts.iter().zip(&scenario.shafts) {
@@ -167,7 +174,11 @@ pub fn reduce_quietly(constraints: &[Constraint], inertias: &[f64]) -> Reduction
     with_mass(independent, speeds, inertias)
 }
 
-fn with_mass(independent: Vec<usize>, speeds: Vec<Vec<(usize, f64)>>, inertias: &[f64]) -> Reduction {
+fn with_mass(
+    independent: Vec<usize>,
+    speeds: Vec<Vec<(usize, f64)>>,
+    inertias: &[f64],
+) -> Reduction {
     let count = independent.len();
     let mut mass = DMatrix::zeros(count, count);
     for (form, inertia) in speeds.iter().zip(inertias) {
@@ -184,7 +195,8 @@ fn with_mass(independent: Vec<usize>, speeds: Vec<Vec<(usize, f64)>>, inertias: 
 /// Inverts a mass matrix; a diagonal one (no rigid joints across bodies) exactly and in linear time.
 fn invert(mass: &DMatrix<f64>) -> DMatrix<f64> {
     let count = mass.nrows();
-    let diagonal = (0..count).all(|row| (0..count).all(|column| row == column || mass[(row, column)] == 0.0));
+    let diagonal =
+        (0..count).all(|row| (0..count).all(|column| row == column || mass[(row, column)] == 0.0));
     if diagonal {
         return DMatrix::from_diagonal(&mass.diagonal().map(|value| 1.0 / value));
     }
@@ -205,7 +217,7 @@ fn eliminate(bodies: usize, constraints: &[Constraint]) -> Elimination {
     let mut pivots: Vec<usize> = Vec::new();
     let mut redundant = Vec::new();
     for (index, constraint) in constraints.iter().enumerate() {
-        let mut dense = DVector::zeros(bodies);
+        let mut dense: DVector<f64> = DVector::zeros(bodies);
         for &(body, factor) in &constraint.row {
             dense[body] += factor;
         }
@@ -243,7 +255,12 @@ fn eliminate(bodies: usize, constraints: &[Constraint]) -> Elimination {
     let independent: Vec<usize> = (0..bodies).filter(|body| !pivots.contains(body)).collect();
     let speeds = (0..bodies)
         .map(|body| match pivots.iter().position(|pivot| *pivot == body) {
-            None => independent.iter().position(|free| *free == body).map(|place| (place, 1.0)).into_iter().collect(),
+            None => independent
+                .iter()
+                .position(|free| *free == body)
+                .map(|place| (place, 1.0))
+                .into_iter()
+                .collect(),
             Some(row) => independent
                 .iter()
                 .enumerate()
@@ -273,8 +290,10 @@ mod tests {
 
     #[test]
     fn contradicting_ratios_lock_both_bodies() {
-        let reduction =
-            reduce_quietly(&[joint(&[(0, 1.0), (1, -4.0)]), joint(&[(0, 1.0), (1, -5.0)])], &[1.0, 1.0]);
+        let reduction = reduce_quietly(
+            &[joint(&[(0, 1.0), (1, -4.0)]), joint(&[(0, 1.0), (1, -5.0)])],
+            &[1.0, 1.0],
+        );
         assert!(reduction.independent.is_empty());
     }
 }

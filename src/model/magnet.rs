@@ -63,7 +63,10 @@ pub struct FadingDamping {
 impl Magnet {
     /// The phase rate as a form over body speeds.
     pub fn row(&self) -> BodyRow {
-        self.members.iter().filter_map(|member| member.body.map(|body| (body, member.count))).collect()
+        self.members
+            .iter()
+            .filter_map(|member| member.body.map(|body| (body, member.count)))
+            .collect()
     }
 
     /// Pull-out torque at a member, N*m.
@@ -82,8 +85,12 @@ impl Magnet {
         if self.coupling {
             return Some(1.0);
         }
-        let turning: Vec<f64> =
-            self.members.iter().filter(|member| member.body.is_some()).map(|member| member.count).collect();
+        let turning: Vec<f64> = self
+            .members
+            .iter()
+            .filter(|member| member.body.is_some())
+            .map(|member| member.count)
+            .collect();
         match turning.as_slice() {
             [first, second] => {
                 let ratio = -second / first;
@@ -118,7 +125,8 @@ pub fn build(
             Member::Modulator => pieces,
             Member::Outer => outer,
         };
-        let amplitude = gear.pull_out_torque / count_of(gear.pull_out_at) * gear.field.temperature_factor;
+        let amplitude =
+            gear.pull_out_torque / count_of(gear.pull_out_at) * gear.field.temperature_factor;
         let path = format!("magnetic_gears.{}", gear.name);
         let Some(law) = law(&path, amplitude, &gear.field.harmonics, found) else { continue };
         let linear = gear.damping.filter(|damping| damping.peak_at.is_none());
@@ -127,13 +135,26 @@ pub fn build(
             path,
             coupling: false,
             members: vec![
-                MagnetMember { name: "inner", body: body_index(scenario, &gear.inner), count: inner },
-                MagnetMember { name: "modulator", body: body_index(scenario, &gear.modulator), count: -pieces },
-                MagnetMember { name: "outer", body: body_index(scenario, &gear.outer), count: outer },
+                MagnetMember {
+                    name: "inner",
+                    body: body_index(scenario, &gear.inner),
+                    count: inner,
+                },
+                MagnetMember {
+                    name: "modulator",
+                    body: body_index(scenario, &gear.modulator),
+                    count: -pieces,
+                },
+                MagnetMember {
+                    name: "outer",
+                    body: body_index(scenario, &gear.outer),
+                    count: outer,
+                },
             ],
             law,
             amplitude,
-            damping: linear.map_or(0.0, |damping| damping.coefficient / count_of(damping.at).powi(2)),
+            damping: linear
+                .map_or(0.0, |damping| damping.coefficient / count_of(damping.at).powi(2)),
             fading: gear.damping.and_then(|damping| {
                 damping.peak_at.map(|peak_at| FadingDamping {
                     count: count_of(damping.at),
@@ -156,11 +177,19 @@ pub fn build(
             coupling: true,
             members: vec![
                 MagnetMember { name: "a", body: body_index(scenario, &coupling.between[0]), count },
-                MagnetMember { name: "b", body: body_index(scenario, &coupling.between[1]), count: -count },
+                MagnetMember {
+                    name: "b",
+                    body: body_index(scenario, &coupling.between[1]),
+                    count: -count,
+                },
             ],
             law,
             amplitude,
-            damping: if coupling.damping_peak_at.is_none() { coupling.damping / (count * count) } else { 0.0 },
+            damping: if coupling.damping_peak_at.is_none() {
+                coupling.damping / (count * count)
+            } else {
+                0.0
+            },
             fading: coupling.damping_peak_at.map(|peak_at| FadingDamping {
                 count,
                 coefficient: coupling.damping,

@@ -7,7 +7,7 @@ pub mod magnet;
 pub mod scales;
 pub mod starting_speeds;
 
-use crate::component::channel::{self, Channel};
+use crate::component::channel::Channel;
 use crate::component::shaft::ShaftDamping;
 use crate::diagnostic::Diagnostics;
 use crate::scenario::Scenario;
@@ -121,7 +121,7 @@ pub fn build(scenario: &Scenario) -> Result<Model, Diagnostics> {
         return Err(found);
     }
     let scales = scales::find(scenario, &shafts, &magnets, &constraints, &reduction, &start_speeds);
-    let channels = channel::list(scenario);
+    let channels = scenario.channels.clone();
     Ok(Model {
         scenario: scenario.clone(),
         channels,
@@ -139,20 +139,31 @@ pub fn build(scenario: &Scenario) -> Result<Model, Diagnostics> {
 fn warn_of_idle_bodies(scenario: &Scenario, found: &mut Diagnostics) {
     for body in &scenario.bodies {
         let name = body.name.as_str();
-        let touched = scenario.shafts.iter().any(|shaft| shaft.between.iter().any(|end| end == name))
+        let touched = scenario
+            .shafts
+            .iter()
+            .any(|shaft| shaft.between.iter().any(|end| end == name))
+            || scenario.magnetic_gears.iter().any(|gear| {
+                [&gear.inner, &gear.modulator, &gear.outer].iter().any(|end| *end == name)
+            })
             || scenario
-                .magnetic_gears
+                .magnetic_couplings
                 .iter()
-                .any(|gear| [&gear.inner, &gear.modulator, &gear.outer].iter().any(|end| *end == name))
-            || scenario.magnetic_couplings.iter().any(|it| it.between.iter().any(|end| end == name))
+                .any(|it| it.between.iter().any(|end| end == name))
             || scenario.gear_pairs.iter().any(|pair| pair.between.iter().any(|end| end == name))
             || scenario
                 .planetary_gears
                 .iter()
                 .any(|set| [&set.sun, &set.carrier, &set.ring].iter().any(|end| *end == name))
             || scenario.motors.iter().any(|motor| motor.body == name)
-            || scenario.loads.iter().any(|load| load.body == name || load.against.as_deref() == Some(name))
-            || scenario.brakes.iter().any(|brake| brake.body == name || brake.against.as_deref() == Some(name));
+            || scenario
+                .loads
+                .iter()
+                .any(|load| load.body == name || load.against.as_deref() == Some(name))
+            || scenario
+                .brakes
+                .iter()
+                .any(|brake| brake.body == name || brake.against.as_deref() == Some(name));
         if !touched {
             found.warning(
                 format!("bodies.{name}"),

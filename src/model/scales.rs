@@ -81,11 +81,21 @@ pub fn find(
     let twist = shafts
         .iter()
         .map(|shaft| {
-            let known = shaft.ends.iter().flatten().filter_map(|body| torque[*body]).fold(0.0_f64, f64::max);
+            let known = shaft
+                .ends
+                .iter()
+                .flatten()
+                .filter_map(|body| torque[*body])
+                .fold(0.0_f64, f64::max);
             let by_torque = sized(known / shaft.stiffness);
             by_torque.unwrap_or_else(|| {
                 let inertia = reduction.inertia_along(&shaft.row());
-                let fastest = shaft.ends.iter().flatten().map(|body| body_speed[*body]).fold(0.0_f64, f64::max);
+                let fastest = shaft
+                    .ends
+                    .iter()
+                    .flatten()
+                    .map(|body| body_speed[*body])
+                    .fold(0.0_f64, f64::max);
                 sized(fastest * (inertia / shaft.stiffness).sqrt()).unwrap_or(1.0)
             })
         })
@@ -104,7 +114,12 @@ fn raise(slot: &mut Option<f64>, value: f64) {
 }
 
 /// Passes known sizes across joints in synchronism, where two members turn.
-fn spread(speed: &mut [Option<f64>], shafts: &[ShaftModel], magnets: &[Magnet], constraints: &[Constraint]) {
+fn spread(
+    speed: &mut [Option<f64>],
+    shafts: &[ShaftModel],
+    magnets: &[Magnet],
+    constraints: &[Constraint],
+) {
     let rows: Vec<BodyRow> = constraints
         .iter()
         .map(|joint| joint.row.clone())
@@ -143,11 +158,15 @@ fn motor_size(law: &MotorLaw) -> (f64, f64) {
         MotorLaw::RatingPlate { power, speed, synchronous_speed, breakdown, .. } => {
             (*synchronous_speed, breakdown * power / speed)
         }
-        MotorLaw::Induction { synchronous_speed, breakdown_torque, .. } => (*synchronous_speed, *breakdown_torque),
+        MotorLaw::Induction { synchronous_speed, breakdown_torque, .. } => {
+            (*synchronous_speed, *breakdown_torque)
+        }
         MotorLaw::Curve { points, .. } => curve_size(points),
         MotorLaw::Prescribed { torque } => (0.0, signal_size(torque)),
         MotorLaw::SpeedLoop { speed, torque_limit, .. } => (signal_size(speed), *torque_limit),
-        MotorLaw::OptimalPower { coefficient, torque_limit } => ((torque_limit / coefficient).sqrt(), *torque_limit),
+        MotorLaw::OptimalPower { coefficient, torque_limit } => {
+            ((torque_limit / coefficient).sqrt(), *torque_limit)
+        }
     }
 }
 
@@ -163,5 +182,7 @@ fn load_size(law: &LoadLaw) -> (f64, f64) {
 }
 
 fn curve_size(points: &[[f64; 2]]) -> (f64, f64) {
-    points.iter().fold((0.0, 0.0), |(speed, torque), row| (f64::max(speed, row[0].abs()), f64::max(torque, row[1].abs())))
+    points.iter().fold((0.0, 0.0), |(speed, torque), row| {
+        (f64::max(speed, row[0].abs()), f64::max(torque, row[1].abs()))
+    })
 }

@@ -41,19 +41,29 @@ pub fn find(
 fn follow<'a>(speeds: &mut [Option<f64>], rows: impl Iterator<Item = &'a BodyRow>) -> bool {
     let mut changed = false;
     for row in rows {
-        let mut unknown = row.iter().filter(|(body, factor)| speeds[*body].is_none() && *factor != 0.0);
+        let mut unknown =
+            row.iter().filter(|(body, factor)| speeds[*body].is_none() && *factor != 0.0);
         let (Some(&(body, factor)), None) = (unknown.next(), unknown.next()) else { continue };
-        let known: f64 = row.iter().filter_map(|(other, share)| speeds[*other].map(|speed| share * speed)).sum();
+        let known: f64 =
+            row.iter().filter_map(|(other, share)| speeds[*other].map(|speed| share * speed)).sum();
         speeds[body] = Some(if known == 0.0 { 0.0 } else { -known / factor });
         changed = true;
     }
     changed
 }
 
-fn check(scenario: &Scenario, constraints: &[Constraint], speeds: &[Option<f64>], found: &mut Diagnostics) {
+fn check(
+    scenario: &Scenario,
+    constraints: &[Constraint],
+    speeds: &[Option<f64>],
+    found: &mut Diagnostics,
+) {
     for joint in constraints {
-        let terms: Option<Vec<f64>> =
-            joint.row.iter().map(|(body, factor)| speeds[*body].map(|speed| factor * speed)).collect();
+        let terms: Option<Vec<f64>> = joint
+            .row
+            .iter()
+            .map(|(body, factor)| speeds[*body].map(|speed| factor * speed))
+            .collect();
         let Some(terms) = terms else { continue };
         let gap: f64 = terms.iter().sum();
         let size = terms.iter().fold(0.0_f64, |size, term| size.max(term.abs()));

@@ -1,0 +1,181 @@
+//! Functions whose sign change stops the run: the equations change there.
+
+use super::conditions::Conditions;
+use crate::component::law::Law;
+use crate::equations::frame::{Evaluator, Frame};
+use crate::equations::mode::{Contact, FrictionMode, Mode};
+use crate::equations::{Shape, dot};
+use std::f64::consts::{PI, TAU};
+
+/// A guard trips when it falls below minus this; guards are scaled to working values of about 1.
+pub const TRIP: f64 = 1e-12;
+
+/// One guard.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Guard {
+    /// A law's input falls below the lower end of its piece.
+    Lower(usize),
+    /// A law's input rises above the upper end of its piece.
+    Upper(usize),
+    /// A sliding element comes to rest.
+    Slide(usize),
+    /// The stuck set can hold no longer.
+    Hold,
+    /// A shaft's flank opens.
+    Open(usize),
+    /// A shaft's flank closes.
+    Close(usize),
+    /// A controller's error changes sign while the limit acts.
+    Windup(usize),
+    /// A protection's condition becomes true.
+    Condition(usize),
+    /// A protection's condition ceases before its time.
+    ConditionLost(usize),
+    /// A magnet slips while a protection counts slips: the well it is in.
+    Slip(usize, i64),
+}
+
+/// The guards in force in a mode.
+pub fn list(
+    evaluator: &Evaluator<'_>,
+    mode: &Mode,
+    conditions: &Conditions,
+    state: &[f64],
+) -> Vec<Guard> {
+    let equations = evaluator.equations;
+    let mut guards = Vec::new();
+    for active in &evaluator.assembly.active {
+        let Some(term) = equations.terms.get(active.place) else { continue };
+        let Shape::Law(law) = &term.shape else { continue };
+        let (piece, count) = (mode.pieces[active.place], law.boundaries().len());
+        if piece > 0 {
+            guards.push(Guard::Lower(active.place));
+        }
+        if piece < count {
+            guards.push(Guard::Upper(active.place));
+        }
+    }
+    for (index, friction) in mode.frictions.iter().enumerate() {
+        if matches!(friction, FrictionMode::Forward | FrictionMode::Backward) {
+            guards.push(Guard::Slide(index));
+        }
+    }
+    if !evaluator.assembly.stuck.is_empty() {
+        guards.push(Guard::Hold);
+    }
+    for (index, contact) in mode.contacts.iter().enumerate() {
+        match contact {
+            Contact::Always => {}
+            Contact::Gap => guards.push(Guard::Close(index)),
+            Contact::Forward | Contact::Backward => guards.push(Guard::Open(index)),
+        }
+    }
+    for (index, controller) in equations.controllers.iter().enumerate() {
+        if controller.integral.is_some() && mode.pieces[controller.command] != 1 {
+            guards.push(Guard::Windup(index));
+        }
+    }
+    conditions.guards(&mut guards);
+    for &magnet in &conditions.slip_watched {
+        let place = equations.phase_state[magnet];
+        let phase = state[place] * equations.scale[place];
+        // The load angle lies in (-pi, pi].
+        let well = ((phase - PI) / TAU).ceil() as i64;
+        guards.push(Guard::Slip(magnet, well));
+    }
+    guards
+}
+
+/// The value of a guard; at or above zero while nothing happens.
+pub fn value(
+    guard: Guard,
+    evaluator: &Evaluator<'_>,
+    mode: &Mode,
+    conditions: &Conditions,
+    state: &[f64],
+    frame: &Frame,
+) -> f64 {
+    let equations = evaluator.equations;
+    let boundary = |term: usize, place: usize| -> f64 {
+        match &equations.terms[term].shape {
+            Shape::Law(law) => law.boundaries().get(place).copied().unwrap_or(0.0),
+            Shape::Linear => 0.0,
+        }
+    };
+    match guard {
+        Guard::Lower(term) => {
+            let edge = boundary(term, mode.pieces[term] - 1);
+            (frame.inputs[term] - edge) / equations.terms[term].input_size
+        }
+        Guard::Upper(term) => {
+            let edge = boundary(term, mode.pieces[term]);
+            (edge - frame.inputs[term]) / equations.terms[term].input_size
+        }
+        Guard::Slide(index) => {
+            let friction = &equations.frictions[index];
+            mode.frictions[index].direction() * dot(&friction.speed, state) / friction.speed_size
+        }
+        Guard::Hold => frame.holding.as_ref().map_or(1.0, |holding| {
+            if holding.holds { holding.margin.max(0.0) } else { holding.margin.min(-2.0 * TRIP) }
+        }),
+        Guard::Open(shaft) => match mode.contacts[shaft] {
+            Contact::Backward => flank(evaluator, shaft, state, -1.0),
+            _ => flank(evaluator, shaft, state, 1.0),
+        },
+        Guard::Close(shaft) => {
+            -flank(evaluator, shaft, state, 1.0).max(flank(evaluator, shaft, state, -1.0))
+        }
+        Guard::Windup(index) => {
+            let controller = &equations.controllers[index];
+            let Some(integral) = controller.integral else { return 1.0 };
+            let term = &equations.terms[integral];
+            let error = frame_error(evaluator, integral, state, frame);
+            let outwards = if mode.pieces[controller.command] == 2 { error } else { -error };
+            let sign = if mode.held[index] { 1.0 } else { -1.0 };
+            sign * outwards / term.input_size
+        }
+        Guard::Condition(index) => conditions.guard(index, frame, false),
+        Guard::ConditionLost(index) => conditions.guard(index, frame, true),
+        Guard::Slip(magnet, well) => {
+            let place = equations.phase_state[magnet];
+            let phase = state[place] * equations.scale[place] - TAU * well as f64;
+            PI - phase.abs()
+        }
+    }
+}
+
+/// Error of a controller; its integral term may be left out of the equations while it is held.
+fn frame_error(evaluator: &Evaluator<'_>, integral: usize, state: &[f64], frame: &Frame) -> f64 {
+    if evaluator.assembly.active.iter().any(|active| active.place == integral) {
+        return frame.inputs[integral];
+    }
+    let term = &evaluator.equations.terms[integral];
+    let time = frame.time;
+    let offset = term.offset.map_or(0.0, |(factor, slot)| {
+        factor
+            * evaluator.equations.bank.value_in(
+                slot,
+                time,
+                evaluator.assembly.start,
+                evaluator.overrides,
+            )
+    });
+    dot(&term.input, state) + offset
+}
+
+/// How far a flank is closed on one side: both the overlap and the torque must be positive.
+pub fn flank(evaluator: &Evaluator<'_>, shaft: usize, state: &[f64], side: f64) -> f64 {
+    let equations = evaluator.equations;
+    let Some(place) = equations.twist_state[shaft] else { return -1.0 };
+    let model = &equations.model.shafts[shaft];
+    let scale = equations.scale[place];
+    let overlap = side * state[place] * scale - model.backlash / 2.0;
+    let row = equations.speed_row(&model.row());
+    let torque = model.stiffness * overlap + model.damping * side * dot(&row, state);
+    (overlap / scale).min(torque / (model.stiffness * scale))
+}
+
+/// True when a law is the torque of a magnet.
+pub fn is_magnet(shape: &Shape) -> bool {
+    matches!(shape, Shape::Law(Law::Magnet(_)))
+}

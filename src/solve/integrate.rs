@@ -1,0 +1,187 @@
+//! One window of steps by the library, or by the fixed-step method, under a watch.
+
+use super::rhs::Rhs;
+use crate::scenario::Method;
+use nalgebra::allocator::Allocator;
+use nalgebra::{Const, DVector, DefaultAllocator, Dim, OVector};
+use ode_solvers::dop_shared::{IntegrationError, OutputType, System};
+use ode_solvers::{Dop853, Dopri5};
+
+/// Steps of one call of the library: it keeps every step's state, so this bounds the memory.
+pub const WINDOW: u32 = 4000;
+
+/// The step controller's damping. In steady running the step sits at the stability limit, and the
+/// usual 0.04 lets it bounce: twelve percent of the steps are then rejected, with 0.08 hardly any.
+const CONTROLLER_BETA: f64 = 0.08;
+
+/// Sees every accepted step.
+pub trait Watch {
+    /// Time, state and rate at the end of the step; true stops the window.
+    fn accept(&mut self, rhs: &Rhs<'_>, time: f64, state: &[f64], rates: &[f64]) -> bool;
+}
+
+/// What to integrate.
+#[derive(Clone, Copy, Debug)]
+pub struct Window {
+    /// Method.
+    pub method: Method,
+    /// Start, s.
+    pub start: f64,
+    /// End, s.
+    pub end: f64,
+    /// First step, s; 0 lets the library choose.
+    pub first_step: f64,
+    /// Largest step, s.
+    pub step_cap: f64,
+    /// Tolerance on the scaled state, or the fixed step of `rk4`.
+    pub tolerance: f64,
+}
+
+/// Why a window ended.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Stop {
+    /// At its end, or because the watch asked for it, or after [`WINDOW`] steps.
+    Fine,
+    /// The step became too small to go on at this time.
+    StepTooSmall(f64),
+}
+
+struct Bridge<'a, 'b> {
+    rhs: &'a Rhs<'b>,
+    watch: &'a mut dyn Watch,
+}
+
+impl<D: Dim> System<f64, OVector<f64, D>> for Bridge<'_, '_>
+where
+    DefaultAllocator: Allocator<D>,
+{
+    fn system(&self, time: f64, state: &OVector<f64, D>, rates: &mut OVector<f64, D>) {
+        self.rhs.system(time, state.as_slice(), rates.as_mut_slice());
+    }
+
+    fn solout(&mut self, time: f64, state: &OVector<f64, D>, rates: &OVector<f64, D>) -> bool {
+        self.watch.accept(self.rhs, time, state.as_slice(), rates.as_slice())
+    }
+}
+
+/// Integrates one window.
+pub fn run(window: &Window, rhs: &Rhs<'_>, state: &[f64], watch: &mut dyn Watch) -> Stop {
+    if window.method == Method::Rk4 {
+        return fixed(window, rhs, state, watch);
+    }
+    macro_rules! by_length {
+        ($($length:literal)*) => {
+            match state.len() {
+                $($length => library::<Const<$length>>(
+                    window, rhs, OVector::<f64, Const<$length>>::from_column_slice(state), watch),)*
+                _ => library::<nalgebra::Dyn>(window, rhs, DVector::from_column_slice(state), watch),
+            }
+        };
+    }
+    // A state of a length known at compile time costs what a hand-written loop costs; a heap vector
+    // costs four to five times as much.
+    by_length!(1 2 3 4 5 6 7 8 9 10 11 12 13 14 15 16 17 18 19 20 21 22 23 24 25 26 27 28 29 30 31 32)
+}
+
+fn library<D: Dim>(
+    window: &Window,
+    rhs: &Rhs<'_>,
+    state: OVector<f64, D>,
+    watch: &mut dyn Watch,
+) -> Stop
+where
+    DefaultAllocator: Allocator<D>,
+{
+    let bridge = Bridge { rhs, watch };
+    // The library does not cap its first step, and its stiffness test stops ordinary trains: off.
+    let first = window.first_step.min(window.step_cap);
+    let tolerance = window.tolerance;
+    let outcome = match window.method {
+        Method::Dop853 => Dop853::from_param(
+            bridge,
+            window.start,
+            window.end,
+            window.end - window.start,
+            state,
+            tolerance,
+            tolerance,
+            0.9,
+            0.0,
+            0.333,
+            6.0,
+            window.step_cap,
+            first,
+            WINDOW,
+            u32::MAX,
+            OutputType::Sparse,
+        )
+        .integrate(),
+        _ => Dopri5::from_param(
+            bridge,
+            window.start,
+            window.end,
+            window.end - window.start,
+            state,
+            tolerance,
+            tolerance,
+            0.9,
+            CONTROLLER_BETA,
+            0.2,
+            10.0,
+            window.step_cap,
+            first,
+            WINDOW,
+            u32::MAX,
+            OutputType::Sparse,
+        )
+        .integrate(),
+    };
+    match outcome {
+        Ok(_) | Err(IntegrationError::MaxNumStepReached { .. }) => Stop::Fine,
+        Err(
+            IntegrationError::StepSizeUnderflow { x } | IntegrationError::StiffnessDetected { x },
+        ) => Stop::StepTooSmall(x),
+    }
+}
+
+/// Classical Runge-Kutta: equal steps that end exactly at the window's end.
+fn fixed(window: &Window, rhs: &Rhs<'_>, state: &[f64], watch: &mut dyn Watch) -> Stop {
+    let span = window.end - window.start;
+    let step = window.tolerance.min(window.step_cap);
+    let count = (span / step * (1.0 - 1e-12)).ceil().max(1.0);
+    let length = span / count;
+    let size = state.len();
+    let mut now = state.to_vec();
+    let mut k = vec![vec![0.0; size]; 4];
+    let mut trial = vec![0.0; size];
+    let mut first = vec![0.0; size];
+    rhs.system(window.start, &now, &mut first);
+    for index in 0..(count as u64).min(u64::from(WINDOW)) {
+        let time = window.start + index as f64 * length;
+        let end = if index + 1 == count as u64 {
+            window.end
+        } else {
+            window.start + (index + 1) as f64 * length
+        };
+        k[0].copy_from_slice(&first);
+        for (stage, node) in [(1, 0.5), (2, 0.5), (3, 1.0)] {
+            for place in 0..size {
+                trial[place] = now[place] + node * length * k[stage - 1][place];
+            }
+            let (_, rest) = k.split_at_mut(stage);
+            rhs.system(time + node * length, &trial, &mut rest[0]);
+        }
+        for place in 0..size {
+            now[place] +=
+                length / 6.0 * (k[0][place] + 2.0 * k[1][place] + 2.0 * k[2][place] + k[3][place]);
+        }
+        rhs.system(end, &now, &mut first);
+        if rhs.fault().is_some() {
+            return Stop::StepTooSmall(end);
+        }
+        if watch.accept(rhs, end, &now, &first) {
+            return Stop::Fine;
+        }
+    }
+    Stop::Fine
+}

@@ -1,0 +1,448 @@
+//! The one observer of a run: extremes, verdicts, slips, rows and traces from the continuous solution.
+
+use super::dense::DenseStep;
+use super::gears::{GearCrossing, GearTrack, crossings};
+use super::locate;
+use super::rhs::Powers;
+use super::sampling::{Sample, StepView};
+use super::traces::Tracer;
+use super::windows::Window;
+use super::{RowSink, RunOptions, Wanted};
+use crate::component::channel::{ChannelKind, MagneticChannel};
+use crate::component::requirement::{Requirement, Test};
+use crate::equations::Equations;
+use crate::equations::frame::{Counters, Evaluator, load_angle};
+use crate::results::{Event, EventKind};
+
+/// Extremes of one channel so far.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Extreme {
+    /// Smallest value.
+    pub min: f64,
+    /// When, s.
+    pub min_time: f64,
+    /// Largest value.
+    pub max: f64,
+    /// When, s.
+    pub max_time: f64,
+    /// Latest value.
+    pub last: f64,
+}
+
+impl Extreme {
+    /// Nothing seen yet.
+    pub const NONE: Self = Self {
+        min: f64::INFINITY,
+        min_time: 0.0,
+        max: f64::NEG_INFINITY,
+        max_time: 0.0,
+        last: 0.0,
+    };
+
+    /// Takes a value at an instant.
+    pub fn note(&mut self, value: f64, time: f64) {
+        if value < self.min {
+            self.min = value;
+            self.min_time = time;
+        }
+        if value > self.max {
+            self.max = value;
+            self.max_time = time;
+        }
+        self.last = value;
+    }
+}
+
+/// Everything that is recorded while the run goes on.
+pub struct Observer<'a> {
+    /// Channels followed, by place, rising.
+    pub wanted: Vec<usize>,
+    /// Extremes by channel; only those of `wanted` are kept.
+    pub extremes: Vec<Extreme>,
+    /// Requirements, and the program's own watches behind them.
+    pub windows: Vec<Window>,
+    /// One track a magnet.
+    pub gears: Vec<GearTrack>,
+    /// Events in order of time.
+    pub events: Vec<Event>,
+    /// Counts and sums at the time reached.
+    pub counters: Counters,
+    /// Traces for charts.
+    pub tracer: Option<Tracer>,
+    /// Energies so far, J.
+    pub energy: Powers,
+    /// Rotor heats so far, J.
+    pub heats: Vec<f64>,
+    /// Scale of each independent speed, for the summed angles.
+    pub speed_scale: Vec<f64>,
+    rows: Option<&'a mut dyn RowSink>,
+    next_row: u64,
+    output_step: f64,
+    duration: f64,
+    discrete: Vec<bool>,
+    wraps: Vec<bool>,
+    samples: Vec<Sample>,
+    scratch: Sample,
+    names: Vec<String>,
+}
+
+impl<'a> Observer<'a> {
+    /// An observer of a run that starts at a state.
+    pub fn new(equations: &Equations, options: &mut RunOptions<'a>, start: &[f64]) -> Self {
+        let model = &equations.model;
+        let scenario = &model.scenario;
+        let place = |name: &str| model.channels.iter().position(|channel| channel.name == name);
+        let mut windows: Vec<Window> = scenario
+            .requirements
+            .iter()
+            .enumerate()
+            .filter_map(|(index, requirement)| {
+                place(&requirement.of).map(|channel| Window::new(Some(index), requirement, channel))
+            })
+            .collect();
+        for &(motor, speed) in &equations.heats {
+            let of = format!("{}.speed", scenario.motors[motor].body);
+            if let Some(channel) = place(&of) {
+                let watch = Requirement {
+                    name: String::new(),
+                    of,
+                    test: Test::Reaches { value: 0.95 * speed.abs(), within: None, band: None },
+                    signed: false,
+                    after: None,
+                    before: None,
+                    text: String::new(),
+                    source: None,
+                };
+                windows.push(Window::new(None, &watch, channel));
+            }
+        }
+        let mut wanted: Vec<usize> = match &options.wanted {
+            Wanted::All => (0..model.channels.len()).collect(),
+            Wanted::Asked(channels) => {
+                let shares = model.channels.iter().enumerate().filter(|(_, channel)| {
+                    matches!(channel.kind, ChannelKind::Magnetic(_, MagneticChannel::PullOutShare))
+                });
+                let mut list: Vec<usize> = channels.clone();
+                list.extend(windows.iter().map(|window| window.channel));
+                list.extend(shares.map(|(place, _)| place));
+                list
+            }
+        };
+        if let Some(request) = &options.traces {
+            wanted.extend(&request.channels);
+        }
+        wanted.sort_unstable();
+        wanted.dedup();
+        let gears = model
+            .magnets
+            .iter()
+            .zip(&equations.phase_state)
+            .map(|(magnet, place)| {
+                GearTrack::new(start[*place] * equations.scale[*place], magnet.law.peaks())
+            })
+            .collect();
+        let is = |kind: ChannelKind, test: &[MagneticChannel]| match kind {
+            ChannelKind::Magnetic(_, what) => test.contains(&what),
+            _ => false,
+        };
+        let counts =
+            [MagneticChannel::Slips, MagneticChannel::NetSlips, MagneticChannel::ShortOfPeak];
+        Self {
+            wanted,
+            extremes: vec![Extreme::NONE; model.channels.len()],
+            windows,
+            gears,
+            events: Vec::new(),
+            counters: Counters {
+                wells: vec![0; model.magnets.len()],
+                slips: vec![0; model.magnets.len()],
+                net_slips: vec![0; model.magnets.len()],
+                angles: vec![0.0; equations.speeds],
+            },
+            tracer: options.traces.take().map(|request| Tracer::new(request, model.magnets.len())),
+            energy: Powers::default(),
+            heats: vec![0.0; equations.heats.len()],
+            speed_scale: equations.scale[..equations.speeds].to_vec(),
+            rows: options.rows.take(),
+            next_row: 0,
+            output_step: scenario.output_step,
+            duration: scenario.duration,
+            discrete: model.channels.iter().map(|channel| is(channel.kind, &counts)).collect(),
+            wraps: model
+                .channels
+                .iter()
+                .map(|channel| is(channel.kind, &[MagneticChannel::LoadAngle]))
+                .collect(),
+            samples: Vec::new(),
+            scratch: Sample::default(),
+            names: scenario
+                .requirements
+                .iter()
+                .map(|requirement| requirement.name.clone())
+                .collect(),
+        }
+    }
+
+    /// Time of the next row, s; rows stand at whole multiples of the output step.
+    pub fn next_row_time(&self) -> f64 {
+        if self.rows.is_none() { f64::INFINITY } else { self.next_row as f64 * self.output_step }
+    }
+
+    /// Takes the values at the start of a segment, from the right; returns the time of the next window border.
+    pub fn begin(&mut self, evaluator: &Evaluator<'_>, time: f64, state: &[f64]) {
+        let mut scratch = std::mem::take(&mut self.scratch);
+        evaluator.evaluate(time, state, &self.counters, Some(&self.wanted), &mut scratch.frame);
+        self.note_all(time, &scratch.frame.channels);
+        for window in &mut self.windows {
+            let value = scratch.frame.channels[window.channel];
+            if window.begin(time, value) {
+                window.note(time, value);
+            }
+        }
+        if let Some(tracer) = &mut self.tracer {
+            tracer.note(time, &scratch.frame.channels);
+        }
+        for (index, track) in self.gears.iter_mut().enumerate() {
+            let place = evaluator.equations.phase_state[index];
+            track.note_angle(load_angle(state[place] * evaluator.equations.scale[place]), time);
+        }
+        self.scratch = scratch;
+    }
+
+    /// Takes the values at the end of a segment, from the left.
+    pub fn end(&mut self, evaluator: &Evaluator<'_>, time: f64, state: &[f64]) {
+        let mut scratch = std::mem::take(&mut self.scratch);
+        evaluator.evaluate(time, state, &self.counters, Some(&self.wanted), &mut scratch.frame);
+        self.note_all(time, &scratch.frame.channels);
+        for window in self.windows.iter_mut().filter(|window| window.active || window.touches(time))
+        {
+            window.note(time, scratch.frame.channels[window.channel]);
+        }
+        self.scratch = scratch;
+    }
+
+    fn note_all(&mut self, time: f64, channels: &[f64]) {
+        for &channel in &self.wanted {
+            self.extremes[channel].note(channels[channel], time);
+        }
+    }
+
+    /// Rows up to an instant that is not part of a step (the very start of a run's last instant).
+    pub fn final_row(&mut self, evaluator: &Evaluator<'_>, time: f64, state: &[f64]) {
+        let Some(rows) = &mut self.rows else { return };
+        let mut scratch = std::mem::take(&mut self.scratch);
+        evaluator.evaluate(time, state, &self.counters, None, &mut scratch.frame);
+        rows.row(time, &scratch.frame.channels);
+        self.scratch = scratch;
+    }
+
+    /// Shares of a step at which it is looked at.
+    pub fn shares(&self, step: &DenseStep, inner: usize) -> Vec<f64> {
+        let mut count = inner + 1;
+        if let Some(tracer) = &self.tracer {
+            if tracer.touches(step.start, step.start + step.length) {
+                let columns = (step.length / tracer.column_width()).ceil();
+                count = count.max((columns as usize).clamp(1, 400));
+            }
+        }
+        (0..=count).map(|index| index as f64 / count as f64).collect()
+    }
+
+    /// Takes one step of the continuous solution.
+    pub fn step(&mut self, evaluator: Evaluator<'_>, step: &DenseStep, inner: usize) {
+        let shares = self.shares(step, inner);
+        let found = crossings(evaluator.equations, step, &shares);
+        let scale = self.speed_scale.clone();
+        let counters = self.counters.clone();
+        let view =
+            StepView { step, evaluator, counters: &counters, crossings: found, scale: &scale };
+        let mut samples = std::mem::take(&mut self.samples);
+        samples.resize_with(shares.len(), Sample::default);
+        for (share, sample) in shares.iter().zip(&mut samples) {
+            view.sample(*share, Some(&self.wanted), sample);
+        }
+        let mut scratch = std::mem::take(&mut self.scratch);
+        for sample in &samples {
+            self.note_all(sample.time, &sample.frame.channels);
+        }
+        for (position, &channel) in self.wanted.iter().enumerate() {
+            let _ = position;
+            if !self.discrete[channel] {
+                let wraps = self.wraps[channel];
+                refine(&mut self.extremes[channel], &view, &samples, channel, wraps, &mut scratch);
+            }
+        }
+        self.gear_events(&view);
+        for sample in &samples {
+            self.trace(&view, sample);
+        }
+        for window in self.windows.iter_mut().filter(|window| window.active) {
+            let name = window.requirement.map_or("", |place| self.names[place].as_str());
+            window.step(&view, &samples, &mut scratch, &mut self.events, name);
+        }
+        self.rows_in(&view, &mut scratch);
+        self.counters = view.counters_at(1.0);
+        self.samples = samples;
+        self.scratch = scratch;
+    }
+
+    fn trace(&mut self, view: &StepView<'_>, sample: &Sample) {
+        let Some(tracer) = &mut self.tracer else { return };
+        tracer.note(sample.time, &sample.frame.channels);
+        let equations = view.evaluator.equations;
+        let wells = &self.counters.wells;
+        tracer.swing(&|magnet| {
+            let place = equations.phase_state[magnet];
+            let phase = sample.state[place] * equations.scale[place];
+            let rate = crate::equations::dot(
+                &equations.speed_row(&equations.model.magnets[magnet].row()),
+                &sample.state,
+            );
+            [sample.time, phase + std::f64::consts::TAU * wells[magnet] as f64, rate]
+        });
+    }
+
+    fn gear_events(&mut self, view: &StepView<'_>) {
+        let equations = view.evaluator.equations;
+        for crossing in &view.crossings {
+            let time = view.step.time(crossing.share);
+            self.gears[crossing.magnet].note(crossing, time);
+            self.events.push(gear_event(equations, crossing, time));
+            if crossing.is_slip {
+                for (place, channel) in equations.model.channels.iter().enumerate() {
+                    if channel.kind
+                        == ChannelKind::Magnetic(crossing.magnet, MagneticChannel::LoadAngle)
+                        && self.wanted.binary_search(&place).is_ok()
+                    {
+                        let side = std::f64::consts::PI * f64::from(crossing.direction);
+                        let last = self.extremes[place].last;
+                        self.extremes[place].note(side, time);
+                        self.extremes[place].note(-side, time);
+                        self.extremes[place].last = last;
+                    }
+                }
+            } else {
+                for (place, channel) in equations.model.channels.iter().enumerate() {
+                    if channel.kind
+                        == ChannelKind::Magnetic(crossing.magnet, MagneticChannel::ShortOfPeak)
+                        && self.wanted.binary_search(&place).is_ok()
+                    {
+                        let last = self.extremes[place].last;
+                        self.extremes[place].note(f64::from(u8::from(crossing.short)), time);
+                        self.extremes[place].last = last;
+                    }
+                    // A crossing of a peak is where the torque stands at its full pull-out value.
+                    if channel.kind
+                        == ChannelKind::Magnetic(crossing.magnet, MagneticChannel::PullOutShare)
+                        && self.wanted.binary_search(&place).is_ok()
+                    {
+                        let last = self.extremes[place].last;
+                        self.extremes[place].note(1.0, time);
+                        self.extremes[place].last = last;
+                    }
+                }
+            }
+        }
+        for (index, track) in self.gears.iter_mut().enumerate() {
+            let place = equations.phase_state[index];
+            let scale = equations.scale[place];
+            let mut turning = Vec::new();
+            for sample in &self.samples {
+                turning.push((sample.time, load_angle(sample.state[place] * scale)));
+            }
+            for (time, angle) in turning {
+                track.note_angle(angle, time);
+            }
+        }
+    }
+
+    fn rows_in(&mut self, view: &StepView<'_>, scratch: &mut Sample) {
+        let end = view.step.start + view.step.length;
+        while self.rows.is_some() {
+            let time = self.next_row as f64 * self.output_step;
+            // The end itself belongs to the next segment (samples at a jump are from the right) or to the final row.
+            if time >= end || time >= self.duration {
+                break;
+            }
+            let share = ((time - view.step.start) / view.step.length).clamp(0.0, 1.0);
+            view.sample(share, None, scratch);
+            if let Some(rows) = &mut self.rows {
+                rows.row(time, &scratch.frame.channels);
+            }
+            self.next_row += 1;
+        }
+    }
+
+    /// Notes the turning points of load angles found while refining extremes.
+    pub fn settle_peak_angles(&mut self, equations: &Equations) {
+        for (place, channel) in equations.model.channels.iter().enumerate() {
+            if let ChannelKind::Magnetic(magnet, MagneticChannel::LoadAngle) = channel.kind {
+                let extreme = self.extremes[place];
+                if extreme.max >= extreme.min {
+                    let track = &mut self.gears[magnet];
+                    track.note_angle(extreme.min, extreme.min_time);
+                    track.note_angle(extreme.max, extreme.max_time);
+                }
+            }
+        }
+    }
+}
+
+/// Refines a channel's extremes where a parabola through three samples promises more than is known.
+fn refine(
+    extreme: &mut Extreme,
+    view: &StepView<'_>,
+    samples: &[Sample],
+    channel: usize,
+    wraps: bool,
+    scratch: &mut Sample,
+) {
+    for triple in samples.windows(3) {
+        let places = [triple[0].share, triple[1].share, triple[2].share];
+        let values = [0, 1, 2].map(|index: usize| triple[index].frame.channels[channel]);
+        if wraps
+            && (values[1] - values[0]).abs().max((values[2] - values[1]).abs())
+                > std::f64::consts::PI
+        {
+            continue;
+        }
+        let Some((_, value)) = locate::vertex(places, values) else { continue };
+        let sign = if value > extreme.max {
+            1.0
+        } else if value < extreme.min {
+            -1.0
+        } else {
+            continue;
+        };
+        let (share, best) = locate::maximum(places[0], places[2], |share| {
+            sign * view.channel(channel, share, scratch)
+        });
+        let last = extreme.last;
+        extreme.note(sign * best, view.step.time(share));
+        extreme.last = last;
+    }
+}
+
+/// The event of a crossing, in words.
+fn gear_event(equations: &Equations, crossing: &GearCrossing, time: f64) -> Event {
+    let name = &equations.model.magnets[crossing.magnet].name;
+    let (kind, value, unit, text) = if crossing.is_slip {
+        let sense = if crossing.direction > 0 { "forward" } else { "backward" };
+        (
+            EventKind::Slip,
+            f64::from(crossing.direction),
+            "1",
+            format!("`{name}` slips one pole {sense}"),
+        )
+    } else if crossing.short {
+        (
+            EventKind::ShortOfPeak,
+            crossing.slip_speed,
+            "rad/s",
+            format!("`{name}` is short of the peak again"),
+        )
+    } else {
+        (EventKind::PastPeak, crossing.slip_speed, "rad/s", format!("`{name}` is past the peak"))
+    };
+    Event { time, kind, of: name.clone(), value, unit, text }
+}

@@ -1,0 +1,235 @@
+//! From the recorder of a finished run to its results.
+
+use super::run::Run;
+use crate::equations::frame::load_angle;
+use crate::equations::{Equations, Owner, Shape, energy};
+use crate::results::{
+    ChannelResult, Energy, Event, EventKind, GearResult, GearState, MemberResult, MotorResult,
+    RunResult, Warning,
+};
+use crate::scenario::Method;
+use std::f64::consts::TAU;
+
+/// Collects the results; `stored` is the energy at the start, J.
+pub fn collect(mut run: Run<'_, '_>, stored: f64) -> RunResult {
+    let equations = run.equations;
+    let completed = run.failure.is_none();
+    run.observer.settle_peak_angles(equations);
+    let gears = gears(&run);
+    for gear in &gears {
+        if let Some(time) = gear.resynchronised_at {
+            run.observer.events.push(Event {
+                time,
+                kind: EventKind::Resynchronised,
+                of: gear.name.clone(),
+                value: f64::from(gear.slips),
+                unit: "1",
+                text: format!("`{}` is in step again", gear.name),
+            });
+        }
+    }
+    run.observer.events.sort_by(|a, b| a.time.total_cmp(&b.time));
+    let channels = channels(&run);
+    let scenario = &equations.model.scenario;
+    let requirements = run
+        .observer
+        .windows
+        .iter()
+        .filter_map(|window| {
+            let place = window.requirement?;
+            let unit = equations.model.channels[window.channel].unit;
+            Some(window.verdict(&scenario.requirements[place], unit, run.time, completed))
+        })
+        .collect();
+    for event in &mut run.observer.events {
+        if event.kind == EventKind::Requirement {
+            let of = scenario.requirements.iter().find(|requirement| requirement.name == event.of);
+            let channel = of.and_then(|of| {
+                equations.model.channels.iter().find(|channel| channel.name == of.of)
+            });
+            event.unit = channel.map_or("", |channel| channel.unit);
+        }
+    }
+    let audit = audit(equations, &run, stored);
+    warn_of_ranges(&mut run);
+    let mut warnings: Vec<Warning> = equations
+        .model
+        .warnings
+        .warnings()
+        .map(|warning| Warning { path: warning.path.clone(), text: warning.message.clone() })
+        .collect();
+    warnings.extend(
+        run.warnings.iter().map(|(path, text)| Warning { path: path.clone(), text: text.clone() }),
+    );
+    let stages = match scenario.solver.method {
+        Method::Dopri5 => Some((6, 0)),
+        Method::Dop853 => Some((12, 1)),
+        Method::Rk4 => None,
+    };
+    let mut work = run.work.clone();
+    // The library miscounts rejections; they follow from the calls, but for those of restarts and cuts.
+    if let Some((calls, _)) = stages {
+        work.rejected = (work.evaluations / calls).saturating_sub(work.steps + 2 * work.events + 2);
+    }
+    RunResult {
+        title: scenario.title.clone(),
+        completed,
+        failure: run.failure.clone(),
+        end_time: run.time,
+        gears,
+        channels,
+        requirements,
+        energy: audit,
+        motors: motors(&run),
+        warnings,
+        solver: work,
+        events: std::mem::take(&mut run.observer.events),
+        traces: run.observer.tracer.take().map(|tracer| tracer.finish(equations)),
+    }
+}
+
+fn channels(run: &Run<'_, '_>) -> Vec<ChannelResult> {
+    run.observer
+        .wanted
+        .iter()
+        .map(|&place| {
+            let channel = &run.equations.model.channels[place];
+            let extreme = run.observer.extremes[place];
+            ChannelResult {
+                name: channel.name.clone(),
+                unit: channel.unit,
+                min: extreme.min,
+                min_time: extreme.min_time,
+                max: extreme.max,
+                max_time: extreme.max_time,
+                last: extreme.last,
+            }
+        })
+        .collect()
+}
+
+fn gears(run: &Run<'_, '_>) -> Vec<GearResult> {
+    let equations = run.equations;
+    let model = &equations.model;
+    model
+        .magnets
+        .iter()
+        .enumerate()
+        .map(|(index, magnet)| {
+            let track = &run.observer.gears[index];
+            let frequency = magnet.natural_frequency();
+            let period = if frequency > 0.0 { TAU / frequency } else { f64::INFINITY };
+            let (state, resynchronised_at, run_longer) = track.judge(run.time, period);
+            let place = equations.phase_state[index];
+            let share = model
+                .channels
+                .iter()
+                .position(|channel| channel.name == format!("{}.pull_out_share", magnet.name))
+                .map(|channel| run.observer.extremes[channel]);
+            GearResult {
+                name: magnet.name.clone(),
+                coupling: magnet.coupling,
+                slips: run.observer.counters.slips[index],
+                net_slips: run.observer.counters.net_slips[index],
+                state_at_end: state,
+                run_longer: run_longer.filter(|_| state == GearState::Undecided),
+                resynchronised_at,
+                peak_pull_out_share: share.map_or(0.0, |share| share.max.clamp(0.0, 1.0)),
+                peak_pull_out_share_time: share.map_or(0.0, |share| share.max_time),
+                peak_load_angle: track.peak_angle,
+                peak_load_angle_time: track.peak_angle_time,
+                final_load_angle: load_angle(run.state[place] * equations.scale[place]),
+                ratio: magnet.ratio(),
+                law_peaks: magnet.law.peaks(),
+                members: magnet
+                    .members
+                    .iter()
+                    .map(|member| MemberResult {
+                        member: member.name,
+                        body: member.body.map_or_else(
+                            || "ground".to_owned(),
+                            |body| model.scenario.bodies[body].name.clone(),
+                        ),
+                        count: member.count,
+                        pull_out_torque: magnet.pull_out_at(member.count),
+                    })
+                    .collect(),
+                natural_period: period,
+                time_past_peak: track.time_past
+                    + if track.past { run.time - track.past_since } else { 0.0 },
+                slip_events: track.slips.clone(),
+            }
+        })
+        .collect()
+}
+
+fn motors(run: &Run<'_, '_>) -> Vec<MotorResult> {
+    let equations = run.equations;
+    equations
+        .model
+        .scenario
+        .motors
+        .iter()
+        .enumerate()
+        .filter_map(|(index, motor)| {
+            let heat = equations.heats.iter().position(|(motor, _)| *motor == index)?;
+            let watch =
+                run.observer.windows.iter().filter(|window| window.requirement.is_none()).nth(heat);
+            Some(MotorResult {
+                name: motor.name.clone(),
+                run_up_time: watch.and_then(super::windows::Window::reached),
+                rotor_heat: Some(run.observer.heats[heat]),
+            })
+        })
+        .collect()
+}
+
+fn audit(equations: &Equations, run: &Run<'_, '_>, stored: f64) -> Energy {
+    let sums = run.observer.energy;
+    let stored_change = energy::stored(equations, &run.state) - stored;
+    let residual = sums.supplied - sums.absorbed - sums.lost - stored_change;
+    let turned_over = sums.supplied + sums.absorbed + sums.lost;
+    Energy {
+        supplied: sums.supplied,
+        absorbed: sums.absorbed,
+        lost: sums.lost,
+        stored_change,
+        residual_share: if turned_over > 0.0 { residual.abs() / turned_over } else { 0.0 },
+    }
+}
+
+/// Warns of laws that were read beyond the data they stand on.
+fn warn_of_ranges(run: &mut Run<'_, '_>) {
+    let equations = run.equations;
+    let scenario = &equations.model.scenario;
+    for term in &equations.terms {
+        let Shape::Law(law) = &term.shape else { continue };
+        let Some([low, high]) = law.warn_range() else { continue };
+        let (path, body, reversed) = match term.owner {
+            Owner::Motor(index) => {
+                let motor = &scenario.motors[index];
+                (format!("motors.{}.law", motor.name), &motor.body, motor.reversed)
+            }
+            Owner::Load(index) => {
+                let load = &scenario.loads[index];
+                (format!("loads.{}.law", load.name), &load.body, load.reversed)
+            }
+            _ => continue,
+        };
+        let name = format!("{body}.speed");
+        let Some(place) = equations.model.channels.iter().position(|channel| channel.name == name)
+        else {
+            continue;
+        };
+        let extreme = run.observer.extremes[place];
+        if extreme.max < extreme.min {
+            continue;
+        }
+        let (from, to) =
+            if reversed { (-extreme.max, -extreme.min) } else { (extreme.min, extreme.max) };
+        let room = 1e-9 * (high - low).abs();
+        if from < low - room || to > high + room {
+            run.warnings.push((path, law.warn_text().to_owned()));
+        }
+    }
+}

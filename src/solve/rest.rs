@@ -1,0 +1,190 @@
+//! Friction elements at rest: which hold and which give way.
+//!
+//! All elements whose members stand still to each other are tried as stuck together. When the
+//! set cannot hold, the one loaded most in relation to its limit gives way (ties by order in the
+//! file): its sliding torque keeps the sense of its holding torque, so it slides the other way.
+//! It must then accelerate the way it slides.
+
+use crate::equations::assembly::assemble;
+use crate::equations::frame::{Evaluator, Frame};
+use crate::equations::mode::{FrictionMode, Mode, REST};
+use crate::equations::{Equations, dot};
+use crate::results::{Event, EventKind};
+use crate::signal::course::Overrides;
+
+/// Residual speeds up to this share of the working speed are taken out when elements stick.
+const RESIDUE: f64 = 1e-6;
+
+/// Marks elements whose limit is zero all along as absent, and brings back those that act again.
+pub fn presence(
+    equations: &Equations,
+    mode: &mut Mode,
+    time: f64,
+    end: f64,
+    state: &[f64],
+    overrides: &Overrides,
+) {
+    for (index, friction) in equations.frictions.iter().enumerate() {
+        let absent =
+            friction.factor.slots.iter().any(|(slot, _)| {
+                equations.bank.constant_on(*slot, time, end, overrides) == Some(0.0)
+            });
+        let speed = dot(&friction.speed, state);
+        mode.frictions[index] = match (absent, mode.frictions[index]) {
+            (true, _) => FrictionMode::Absent,
+            (false, FrictionMode::Absent) if speed.abs() > REST * friction.speed_size => {
+                FrictionMode::sliding(speed)
+            }
+            (false, FrictionMode::Absent) => FrictionMode::Stuck,
+            (false, other) => other,
+        };
+    }
+}
+
+/// Decides what the elements at rest do; the state's residual speeds along stuck rows are taken out.
+///
+/// `tripped` says that the holding guard has just tripped: at least one element gives way.
+pub fn resolve(
+    equations: &Equations,
+    mode: &mut Mode,
+    time: f64,
+    end: f64,
+    state: &mut [f64],
+    overrides: &Overrides,
+    tripped: bool,
+    events: Option<&mut Vec<Event>>,
+) {
+    let before = mode.frictions.clone();
+    for (index, friction) in equations.frictions.iter().enumerate() {
+        if mode.frictions[index] != FrictionMode::Absent {
+            let speed = dot(&friction.speed, state);
+            mode.frictions[index] = if speed.abs() <= REST * friction.speed_size {
+                FrictionMode::Stuck
+            } else {
+                FrictionMode::sliding(speed)
+            };
+        }
+    }
+    let mut refused: Vec<usize> = Vec::new();
+    let mut frame = Frame::default();
+    for round in 0..=2 * equations.frictions.len() {
+        let assembly = assemble(equations, mode, time, end, overrides);
+        let evaluator = Evaluator { equations, assembly: &assembly, overrides };
+        evaluator.laws(time, state, &mut frame);
+        let Some(holding) = frame.holding.clone() else { break };
+        // A guard that has just tripped stands within rounding of the limit: it counts as passed.
+        if holding.holds && !(tripped && round == 0 && holding.margin < 1e-8) {
+            project(equations, &assembly.projection, state);
+            break;
+        }
+        let Some(line) = weakest(&evaluator, time, &assembly.stuck, &holding.torque, &refused)
+        else {
+            break;
+        };
+        let index = assembly.stuck[line];
+        let mut released = false;
+        for torque in [holding.torque[line], -holding.torque[line]] {
+            mode.frictions[index] = FrictionMode::sliding(-torque);
+            if accelerates(equations, mode, index, time, end, state, overrides) {
+                released = true;
+                break;
+            }
+        }
+        if !released {
+            mode.frictions[index] = FrictionMode::Stuck;
+            refused.push(index);
+        }
+    }
+    if let Some(events) = events {
+        tell(equations, &before, mode, time, events);
+    }
+}
+
+fn weakest(
+    evaluator: &Evaluator<'_>,
+    time: f64,
+    stuck: &[usize],
+    torque: &[f64],
+    refused: &[usize],
+) -> Option<usize> {
+    let mut best: Option<(usize, f64)> = None;
+    for (line, index) in stuck.iter().enumerate() {
+        if refused.contains(index) {
+            continue;
+        }
+        let limit = evaluator.limit(*index, time);
+        let share = if torque[line] == 0.0 { 0.0 } else { torque[line].abs() / limit.max(0.0) };
+        // Ties go to the first in the file: a later one must be clearly larger.
+        if best.is_none_or(|(_, largest)| share > largest * (1.0 + 1e-12)) {
+            best = Some((line, share));
+        }
+    }
+    best.map(|(line, _)| line)
+}
+
+/// True when an element released in its mode's direction speeds up that way.
+fn accelerates(
+    equations: &Equations,
+    mode: &Mode,
+    index: usize,
+    time: f64,
+    end: f64,
+    state: &[f64],
+    overrides: &Overrides,
+) -> bool {
+    let assembly = assemble(equations, mode, time, end, overrides);
+    let evaluator = Evaluator { equations, assembly: &assembly, overrides };
+    let rhs = super::rhs::Rhs::new(evaluator);
+    let mut rates = vec![0.0; equations.size];
+    rhs.system(time, state, &mut rates);
+    let acceleration = dot(&equations.frictions[index].speed, &rates);
+    acceleration * mode.frictions[index].direction() >= 0.0
+}
+
+/// Takes the tiny residual speeds along stuck rows out of the state.
+fn project(equations: &Equations, projection: &Option<nalgebra::DMatrix<f64>>, state: &mut [f64]) {
+    let Some(keep) = projection else { return };
+    let speeds = nalgebra::DVector::from_fn(equations.speeds, |place, _| {
+        state[place] * equations.scale[place]
+    });
+    let kept = keep * &speeds;
+    for place in 0..equations.speeds {
+        let scaled = kept[place] / equations.scale[place];
+        if (scaled - state[place]).abs() <= RESIDUE {
+            state[place] = scaled;
+        }
+    }
+}
+
+fn tell(
+    equations: &Equations,
+    before: &[FrictionMode],
+    mode: &Mode,
+    time: f64,
+    events: &mut Vec<Event>,
+) {
+    for (index, (old, new)) in before.iter().zip(&mode.frictions).enumerate() {
+        let name = &equations.frictions[index].name;
+        let (kind, text) = match (old, new) {
+            (FrictionMode::Stuck, FrictionMode::Forward | FrictionMode::Backward) => {
+                (EventKind::Sliding, format!("`{name}` begins to slide"))
+            }
+            (FrictionMode::Forward | FrictionMode::Backward, FrictionMode::Stuck) => {
+                (EventKind::Stuck, format!("`{name}` sticks"))
+            }
+            (FrictionMode::Forward, FrictionMode::Backward)
+            | (FrictionMode::Backward, FrictionMode::Forward) => {
+                (EventKind::Sliding, format!("`{name}` slides the other way"))
+            }
+            _ => continue,
+        };
+        events.push(Event {
+            time,
+            kind,
+            of: name.clone(),
+            value: new.direction(),
+            unit: "1",
+            text,
+        });
+    }
+}

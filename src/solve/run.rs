@@ -1,0 +1,500 @@
+//! The run: cut into segments at kinks of signals and at events that change the equations.
+
+use super::conditions::Conditions;
+use super::guards::{self, Guard, TRIP};
+use super::integrate::{self, Stop, Window};
+use super::observer::Observer;
+use super::rhs::Rhs;
+use super::steady::{self, SteadyError};
+use super::watcher::Watcher;
+use super::{RunOptions, outcome, rest, step_cap};
+use crate::component::law::Law;
+use crate::equations::assembly::{Assembly, assemble};
+use crate::equations::frame::{Evaluator, Frame};
+use crate::equations::mode::{Contact, FrictionMode, Mode};
+use crate::equations::{Equations, Shape, energy};
+use crate::results::{Event, EventKind, RunResult, SolverWork};
+use crate::scenario::{Method, Start};
+use crate::signal::course::Overrides;
+use std::collections::BTreeMap;
+use std::f64::consts::{PI, TAU};
+
+/// Changes of the equations at one instant before the run is given up.
+const CHATTER_LIMIT: u32 = 40;
+
+/// Where a run stands.
+pub struct Run<'e, 'a> {
+    /// The equations.
+    pub equations: &'e Equations,
+    /// Time reached, s.
+    pub time: f64,
+    /// State reached.
+    pub state: Vec<f64>,
+    /// Mode in force.
+    pub mode: Mode,
+    /// Signals taken over by protections.
+    pub overrides: Overrides,
+    /// Protections.
+    pub conditions: Conditions,
+    /// The recorder.
+    pub observer: Observer<'a>,
+    /// Work so far.
+    pub work: SolverWork,
+    /// Why the run ended early, if it did.
+    pub failure: Option<String>,
+    /// Warnings of the run.
+    pub warnings: Vec<(String, String)>,
+    last_steps: [f64; 2],
+    caps: BTreeMap<Mode, f64>,
+    changed: bool,
+}
+
+/// Why no run took place.
+#[derive(Clone, Debug, PartialEq)]
+pub enum RunError {
+    /// There is no steady start.
+    Steady(SteadyError),
+}
+
+/// Runs a train from its start to the end of its duration.
+///
+/// # Errors
+/// [`RunError::Steady`] when a steady start is asked for and there is none. Trouble of the
+/// numerics is no error here: the result then says `completed: false` and why.
+pub fn run(equations: &Equations, mut options: RunOptions<'_>) -> Result<RunResult, RunError> {
+    let overrides = equations.bank.no_overrides();
+    let (state, mode) = match equations.model.scenario.start {
+        Start::AsGiven => {
+            let state = equations.start_state();
+            let mode = Mode::of_state(equations, 0.0, &state, &overrides);
+            (state, mode)
+        }
+        Start::Steady => {
+            let point = steady::find(equations, 0.0, &overrides).map_err(RunError::Steady)?;
+            (point.state, point.mode)
+        }
+    };
+    let conditions = Conditions::new(equations);
+    let mut observer = Observer::new(equations, &mut options, &state);
+    observer.wanted.extend(&conditions.channels);
+    observer.wanted.sort_unstable();
+    observer.wanted.dedup();
+    let stored = energy::stored(equations, &state);
+    let mut run = Run {
+        equations,
+        time: 0.0,
+        state,
+        mode,
+        overrides,
+        conditions,
+        observer,
+        work: SolverWork {
+            method: method_name(equations.model.scenario.solver.method),
+            ..SolverWork::default()
+        },
+        failure: None,
+        warnings: equations.warnings.clone(),
+        last_steps: [0.0; 2],
+        caps: BTreeMap::new(),
+        changed: true,
+    };
+    run.go(&mut options);
+    Ok(outcome::collect(run, stored))
+}
+
+/// The name of a method as written in files.
+pub fn method_name(method: Method) -> &'static str {
+    match method {
+        Method::Dopri5 => "dopri5",
+        Method::Dop853 => "dop853",
+        Method::Rk4 => "rk4",
+    }
+}
+
+impl Run<'_, '_> {
+    fn go(&mut self, options: &mut RunOptions<'_>) {
+        let duration = self.equations.model.scenario.duration;
+        let equations = self.equations;
+        let mut at_instant = 0;
+        let mut instant = -1.0;
+        let mut first = true;
+        let mut finished = false;
+        while !finished {
+            if (self.time - instant).abs() <= 1e-12 * self.time.abs().max(1.0) {
+                at_instant += 1;
+                if at_instant > CHATTER_LIMIT {
+                    self.give_up_chatter();
+                    return;
+                }
+            } else {
+                instant = self.time;
+                at_instant = 0;
+            }
+            let end = self.next_stop(duration);
+            self.wrap_phases();
+            rest::presence(equations, &mut self.mode, self.time, end, &self.state, &self.overrides);
+            if self.changed || self.any_at_rest() {
+                let events = if first { None } else { Some(&mut self.observer.events) };
+                rest::resolve(
+                    equations,
+                    &mut self.mode,
+                    self.time,
+                    end,
+                    &mut self.state,
+                    &self.overrides,
+                    false,
+                    events,
+                );
+            }
+            let assembly = assemble(equations, &self.mode, self.time, end, &self.overrides);
+            let acted = {
+                let evaluator =
+                    Evaluator { equations, assembly: &assembly, overrides: &self.overrides };
+                let mut frame = Frame::default();
+                let wanted = self.conditions.channels.clone();
+                evaluator.evaluate(
+                    self.time,
+                    &self.state,
+                    &self.observer.counters,
+                    Some(&wanted),
+                    &mut frame,
+                );
+                let mut overrides = self.overrides.clone();
+                let acted = self.conditions.update(
+                    self.time,
+                    &frame,
+                    equations,
+                    &mut overrides,
+                    &mut self.observer.events,
+                );
+                self.overrides = overrides;
+                acted
+            };
+            if acted.signals || acted.end_run {
+                self.work.events += 1;
+            }
+            if acted.end_run || self.time >= duration {
+                let evaluator =
+                    Evaluator { equations, assembly: &assembly, overrides: &self.overrides };
+                self.observer.end(&evaluator, self.time, &self.state);
+                self.observer.final_row(&evaluator, self.time, &self.state);
+                return;
+            }
+            if acted.signals {
+                self.changed = true;
+                continue;
+            }
+            if let Some(guard) = self.tripped_at_start(&assembly) {
+                self.apply(guard, end);
+                continue;
+            }
+            if first {
+                self.warn_of_jolt(&assembly);
+                first = false;
+            }
+            finished = self.segment(&assembly, end, options);
+        }
+    }
+
+    /// The next time at which the run must stop by itself.
+    fn next_stop(&self, duration: f64) -> f64 {
+        let kink = self.equations.bank.next_kink(self.time, &self.overrides);
+        let due = self.conditions.next_time(self.time);
+        let borders = self.observer.windows.iter().flat_map(super::windows::Window::borders);
+        let mut end = duration;
+        for time in kink.into_iter().chain(due).chain(borders) {
+            // Two stops closer than rounding are one.
+            if time > self.time * (1.0 + 1e-14) + 1e-300 && time < end {
+                end = time;
+            }
+        }
+        end
+    }
+
+    /// Brings phases and angles near their wells; whole turns are counted apart.
+    fn wrap_phases(&mut self) {
+        for (index, &place) in self.equations.phase_state.iter().enumerate() {
+            let scale = self.equations.scale[place];
+            let wells = ((self.state[place] * scale - PI) / TAU).ceil();
+            if wells != 0.0 {
+                self.state[place] -= TAU * wells / scale;
+                self.observer.counters.wells[index] += wells as i64;
+            }
+        }
+        for (place, _) in &self.equations.angle_states {
+            let scale = self.equations.scale[*place];
+            self.state[*place] -= TAU * (self.state[*place] * scale / TAU).round() / scale;
+        }
+    }
+
+    fn any_at_rest(&self) -> bool {
+        self.mode.frictions.contains(&FrictionMode::Stuck)
+    }
+
+    fn tripped_at_start(&self, assembly: &Assembly) -> Option<Guard> {
+        let evaluator =
+            Evaluator { equations: self.equations, assembly, overrides: &self.overrides };
+        let list = guards::list(&evaluator, &self.mode, &self.conditions, &self.state);
+        if list.is_empty() {
+            return None;
+        }
+        let mut frame = Frame::default();
+        let wanted = self.conditions.channels.clone();
+        evaluator.evaluate(
+            self.time,
+            &self.state,
+            &self.observer.counters,
+            Some(&wanted),
+            &mut frame,
+        );
+        list.into_iter().find(|guard| {
+            let value = guards::value(
+                *guard,
+                &evaluator,
+                &self.mode,
+                &self.conditions,
+                &self.state,
+                &frame,
+            );
+            value < -1.5 * TRIP
+                && !matches!(guard, Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..))
+        })
+    }
+
+    /// Integrates one segment; true when the run is over.
+    fn segment(&mut self, assembly: &Assembly, end: f64, options: &mut RunOptions<'_>) -> bool {
+        let equations = self.equations;
+        let solver = equations.model.scenario.solver;
+        let overrides = self.overrides.clone();
+        let evaluator = Evaluator { equations, assembly, overrides: &overrides };
+        self.observer.begin(&evaluator, self.time, &self.state);
+        if end - self.time <= 1e-13 * self.time.abs().max(1.0) {
+            self.time = end;
+            return false;
+        }
+        let tolerance = options.tolerance.unwrap_or(solver.tolerance);
+        let cap = self.step_cap(&evaluator, end);
+        let rhs = Rhs::new(evaluator);
+        let mut watcher = Watcher::new(
+            &mut self.observer,
+            &rhs,
+            &self.mode,
+            &self.conditions,
+            solver.method,
+            tolerance,
+            self.time,
+            &self.state,
+            options.interrupt,
+            options.progress.as_mut().map(|progress| &mut **progress as &mut dyn FnMut(f64)),
+        );
+        let largest = self.last_steps[0].max(self.last_steps[1]);
+        let mut first_step = if self.changed { 0.0 } else { largest };
+        let mut failure = None;
+        loop {
+            let window = Window {
+                method: solver.method,
+                start: watcher.time,
+                end,
+                first_step,
+                step_cap: cap,
+                tolerance: if solver.method == Method::Rk4 {
+                    solver.step.unwrap_or(1e-3)
+                } else {
+                    tolerance
+                },
+            };
+            let state = watcher.state.clone();
+            let stop = integrate::run(&window, &rhs, &state, &mut watcher);
+            if let Stop::StepTooSmall(time) = stop {
+                failure = Some((time, rhs.fault()));
+                break;
+            }
+            if let Some(cut) = watcher.cut {
+                watcher.take_cut(&rhs, cut);
+                break;
+            }
+            if watcher.interrupted || end - watcher.time <= 1e-13 * end.abs().max(1.0) {
+                break;
+            }
+            first_step = watcher.last_steps[0].max(watcher.last_steps[1]);
+            watcher.next_window(&rhs);
+        }
+        let (time, state, last_steps) = (watcher.time, watcher.state.clone(), watcher.last_steps);
+        let (steps, cut, interrupted) = (watcher.steps, watcher.cut, watcher.interrupted);
+        self.work.steps += steps;
+        self.work.evaluations += rhs.ring().calls;
+        self.state = state;
+        self.time = if cut.is_none() && failure.is_none() && !interrupted { end } else { time };
+        if last_steps[1] > 0.0 {
+            self.last_steps = last_steps;
+        }
+        self.changed = false;
+        self.observer.end(&evaluator, self.time, &self.state);
+        if let Some((time, fault)) = failure {
+            self.give_up(time, fault);
+            return true;
+        }
+        if interrupted {
+            self.failure = Some(format!("interrupted at {} s", self.time));
+            return true;
+        }
+        if let Some(cut) = cut {
+            self.apply(cut.guard, end);
+        }
+        false
+    }
+
+    fn step_cap(&mut self, evaluator: &Evaluator<'_>, end: f64) -> f64 {
+        let solver = self.equations.model.scenario.solver;
+        let (time, state) = (self.time, &self.state);
+        let stable = *self
+            .caps
+            .entry(self.mode.clone())
+            .or_insert_with(|| step_cap::stable_step(evaluator, solver.method, time, state));
+        let mut cap = stable.min(end - self.time);
+        if let Some(limit) = self.equations.bank.step_cap(self.time, end, &self.overrides) {
+            cap = cap.min(limit);
+        }
+        if let Some(limit) = solver.max_step {
+            cap = cap.min(limit);
+        }
+        if self.any_at_rest() {
+            cap = cap.min(self.equations.model.scenario.output_step);
+        }
+        // Laws over an angle: a sixth of a period at the working speed.
+        for term in &self.equations.terms {
+            if let Shape::Law(Law::Cogging { order, .. }) = &term.shape {
+                let fastest =
+                    self.equations.model.scales.body_speed.iter().fold(0.0_f64, |a, b| a.max(*b));
+                cap = cap.min(TAU / (6.0 * order * fastest));
+            }
+        }
+        cap
+    }
+
+    /// Changes the mode after a guard has tripped.
+    fn apply(&mut self, guard: Guard, end: f64) {
+        self.work.events += 1;
+        self.changed = true;
+        let equations = self.equations;
+        match guard {
+            Guard::Lower(term) => {
+                self.mode.pieces[term] -= 1;
+                self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
+            }
+            Guard::Upper(term) => {
+                self.mode.pieces[term] += 1;
+                self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
+            }
+            Guard::Slide(_) | Guard::Hold => {
+                let tripped = guard == Guard::Hold;
+                rest::resolve(
+                    equations,
+                    &mut self.mode,
+                    self.time,
+                    end,
+                    &mut self.state,
+                    &self.overrides,
+                    tripped,
+                    Some(&mut self.observer.events),
+                );
+            }
+            Guard::Open(shaft) => {
+                self.mode.contacts[shaft] = Contact::Gap;
+                self.contact_event(shaft, EventKind::Gap);
+            }
+            Guard::Close(shaft) => {
+                let place = equations.twist_state[shaft];
+                let twist = place.map_or(0.0, |place| self.state[place]);
+                self.mode.contacts[shaft] =
+                    if twist >= 0.0 { Contact::Forward } else { Contact::Backward };
+                self.contact_event(shaft, EventKind::Contact);
+            }
+            Guard::Windup(index) => self.mode.held[index] = !self.mode.held[index],
+            Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..) => {}
+        }
+    }
+
+    fn contact_event(&mut self, shaft: usize, kind: EventKind) {
+        let name = self.equations.model.scenario.shafts[shaft].name.clone();
+        let text = match kind {
+            EventKind::Contact => format!("the free play of `{name}` closes"),
+            _ => format!("the free play of `{name}` opens"),
+        };
+        let value = self.equations.twist_state[shaft]
+            .map_or(0.0, |place| self.state[place] * self.equations.scale[place]);
+        self.observer.events.push(Event {
+            time: self.time,
+            kind,
+            of: name,
+            value,
+            unit: "rad",
+            text,
+        });
+    }
+
+    fn warn_of_jolt(&mut self, assembly: &Assembly) {
+        if self.equations.model.scenario.start == Start::Steady {
+            return;
+        }
+        let evaluator =
+            Evaluator { equations: self.equations, assembly, overrides: &self.overrides };
+        let rhs = Rhs::new(evaluator);
+        let mut rates = vec![0.0; self.equations.size];
+        rhs.system(0.0, &self.state, &mut rates);
+        // Time in which the first accelerations would bring a body to its working speed.
+        let fastest =
+            rates[..self.equations.speeds].iter().fold(0.0_f64, |a, rate| a.max(rate.abs()));
+        if fastest * self.equations.model.scenario.duration > 1e-3 {
+            self.warnings.push((
+                "start".to_owned(),
+                "begins with a jolt: at 0 s the train is not in balance (`start: steady` begins at an operating point)"
+                    .to_owned(),
+            ));
+        }
+    }
+
+    fn give_up_chatter(&mut self) {
+        let names: Vec<&str> = self
+            .equations
+            .frictions
+            .iter()
+            .zip(&self.mode.frictions)
+            .filter(|(_, mode)| **mode != FrictionMode::Absent)
+            .map(|(friction, _)| friction.name.as_str())
+            .collect();
+        self.failure = Some(format!(
+            "the equations change without end at {} s (friction at work: {}); give the elements different limits, or a shaft between them",
+            self.time,
+            if names.is_empty() { "none".to_owned() } else { names.join(", ") }
+        ));
+    }
+
+    fn give_up(&mut self, time: f64, fault: Option<(f64, usize)>) {
+        self.failure = Some(match fault {
+            Some((at, place)) => format!(
+                "the rate of {} is not a number at {at} s; a law or a signal leaves its range there",
+                self.state_name(place)
+            ),
+            None => format!(
+                "the step became too small at {time} s; a larger tolerance, `max_step`, or less stiffness may help"
+            ),
+        });
+    }
+
+    fn state_name(&self, place: usize) -> String {
+        let scenario = &self.equations.model.scenario;
+        if let Some(body) = self.equations.model.reduction.independent.get(place) {
+            return format!("the speed of `{}`", scenario.bodies[*body].name);
+        }
+        if let Some(shaft) =
+            self.equations.twist_state.iter().position(|state| *state == Some(place))
+        {
+            return format!("the twist of `{}`", scenario.shafts[shaft].name);
+        }
+        if let Some(magnet) = self.equations.phase_state.iter().position(|state| *state == place) {
+            return format!("the phase of `{}`", self.equations.model.magnets[magnet].name);
+        }
+        "a controller".to_owned()
+    }
+}

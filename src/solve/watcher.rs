@@ -1,0 +1,463 @@
+//! Watches the accepted steps of one segment: guards first, then the observer and the audit.
+
+use super::calm::Calm;
+use super::conditions::Conditions;
+use super::dense::{DenseStep, add_sums};
+use super::guards::{self, Guard, TRIP};
+use super::integrate::{WINDOW, Watch};
+use super::locate;
+use super::observer::Observer;
+use super::rhs::{Powers, Rhs};
+use super::sampling::{Sample, StepView};
+use super::tableau::{self, Tableau};
+use crate::equations::frame::{Counters, Evaluator, Frame};
+use crate::equations::mode::Mode;
+use crate::scenario::Method;
+use std::sync::atomic::{AtomicBool, Ordering};
+
+/// Steps between two looks at the outside world.
+const LOOK_AROUND: u64 = 256;
+
+/// Where a step was cut by a guard.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Cut {
+    /// The guard that tripped first.
+    pub guard: Guard,
+    /// Share of the step, as located on the interpolant.
+    pub share: f64,
+}
+
+/// The watch of one segment.
+pub struct Watcher<'w, 'a> {
+    /// Records everything.
+    pub observer: &'w mut Observer<'a>,
+    /// The mode in force.
+    pub mode: &'w Mode,
+    /// Protections.
+    pub conditions: &'w Conditions,
+    /// Guards in force.
+    pub guards: Vec<Guard>,
+    /// Method.
+    pub method: Method,
+    /// Time reached, s.
+    pub time: f64,
+    /// State reached.
+    pub state: Vec<f64>,
+    /// Rate there.
+    pub rate: Vec<f64>,
+    /// The last two accepted step lengths, s.
+    pub last_steps: [f64; 2],
+    /// Accepted steps.
+    pub steps: u64,
+    /// Set when a guard cut a step; the step is not taken.
+    pub cut: Option<Cut>,
+    /// Set when the outside asked to end.
+    pub interrupted: bool,
+    interrupt: Option<&'w AtomicBool>,
+    progress: Option<&'w mut dyn FnMut(f64)>,
+    window_steps: u32,
+    power: Powers,
+    heats: Vec<f64>,
+    tableau: Tableau,
+    state_weights: Vec<f64>,
+    step: DenseStep,
+    stages: Vec<Vec<f64>>,
+    new_power: Powers,
+    step_power: Powers,
+    step_heats: Vec<f64>,
+    new_heats: Vec<f64>,
+    calm: Calm,
+    scratch: Sample,
+}
+
+impl<'w, 'a> Watcher<'w, 'a> {
+    /// A watch that starts at a time and state.
+    #[expect(
+        clippy::too_many_arguments,
+        reason = "the pieces of one segment, each borrowed from the run"
+    )]
+    pub fn new(
+        observer: &'w mut Observer<'a>,
+        rhs: &Rhs<'_>,
+        mode: &'w Mode,
+        conditions: &'w Conditions,
+        method: Method,
+        tolerance: f64,
+        time: f64,
+        state: &[f64],
+        interrupt: Option<&'w AtomicBool>,
+        progress: Option<&'w mut dyn FnMut(f64)>,
+    ) -> Self {
+        let mut rate = vec![0.0; state.len()];
+        rhs.system(time, state, &mut rate);
+        let ring = rhs.ring();
+        let (power, heats) = (*ring.powers(0), ring.heats(0).to_vec());
+        let tableau = tableau::of(method);
+        let guards = guards::list(&rhs.evaluator, mode, conditions, state);
+        Self {
+            calm: Calm::new(&rhs.evaluator, observer.tracer.is_some(), tolerance),
+            observer,
+            mode,
+            conditions,
+            guards,
+            method,
+            time,
+            state: state.to_vec(),
+            rate,
+            last_steps: [0.0; 2],
+            steps: 0,
+            cut: None,
+            interrupted: false,
+            interrupt,
+            progress,
+            window_steps: 0,
+            power,
+            new_heats: heats.clone(),
+            step_heats: heats.clone(),
+            heats,
+            state_weights: tableau.state_weights(),
+            tableau,
+            step: DenseStep::default(),
+            stages: Vec::new(),
+            new_power: power,
+            step_power: Powers::default(),
+            scratch: Sample::default(),
+        }
+    }
+
+    /// Begins another window of the same segment.
+    pub fn next_window(&mut self, rhs: &Rhs<'_>) {
+        self.window_steps = 0;
+        self.guards = guards::list(&rhs.evaluator, self.mode, self.conditions, &self.state);
+        self.calm.forget();
+    }
+
+    fn inner(&self) -> usize {
+        match self.method {
+            Method::Dopri5 => 4,
+            Method::Dop853 => 9,
+            Method::Rk4 => 2,
+        }
+    }
+
+    /// Reads the stages of the step that the last calls made, and sums the audit by the method's weights.
+    fn load(&mut self, rhs: &Rhs<'_>, time: f64, state: &[f64], rates: &[f64]) {
+        let length = time - self.time;
+        let count = self.tableau.stages();
+        let ring = rhs.ring();
+        self.stages.resize(count, Vec::new());
+        self.stages[0].clone_from(&self.rate);
+        let b = self.tableau.b;
+        self.step_power = Powers::default();
+        self.step_power.add(length * b[0], &self.power);
+        for (sum, heat) in self.step_heats.iter_mut().zip(&self.heats) {
+            *sum = length * b[0] * heat;
+        }
+        for stage in 1..count {
+            let back = count - stage;
+            self.stages[stage].clear();
+            self.stages[stage].extend_from_slice(ring.rates(back));
+            self.step_power.add(length * b[stage], ring.powers(back));
+            for (sum, heat) in self.step_heats.iter_mut().zip(ring.heats(back)) {
+                *sum += length * b[stage] * heat;
+            }
+        }
+        self.new_power = *ring.powers(0);
+        self.new_heats.clear();
+        self.new_heats.extend_from_slice(ring.heats(0));
+        drop(ring);
+        let speeds = self.observer.counters.angles.len();
+        let step = &mut self.step;
+        step.start = self.time;
+        step.length = length;
+        step.first.clone_from(&self.state);
+        step.first_rate.clone_from(&self.rate);
+        step.last.clear();
+        step.last.extend_from_slice(state);
+        step.last_rate.clear();
+        step.last_rate.extend_from_slice(rates);
+        step.first_sum.clear();
+        let scale = &self.observer.speed_scale;
+        step.first_sum.extend(
+            self.observer.counters.angles.iter().zip(scale).map(|(sum, scale)| sum / scale),
+        );
+        step.last_sum.clone_from(&step.first_sum);
+        let stages: Vec<&[f64]> = self.stages.iter().map(Vec::as_slice).collect();
+        add_sums(
+            self.method,
+            length,
+            &step.first[..speeds],
+            &stages,
+            &self.state_weights,
+            &mut step.last_sum,
+        );
+    }
+
+    fn prepare(&mut self, rhs: &Rhs<'_>) {
+        let stages: Vec<&[f64]> = self.stages.iter().map(Vec::as_slice).collect();
+        self.step.prepare(self.method, &stages, &mut |time, state, rates| {
+            rhs.system(time, state, rates)
+        });
+    }
+
+    /// Moves on to the end of the loaded step.
+    fn advance(&mut self) {
+        self.observer.energy.add(1.0, &self.step_power);
+        for (sum, heat) in self.observer.heats.iter_mut().zip(&self.step_heats) {
+            *sum += heat;
+        }
+        self.power = self.new_power;
+        std::mem::swap(&mut self.heats, &mut self.new_heats);
+        self.time = self.step.start + self.step.length;
+        std::mem::swap(&mut self.state, &mut self.step.last);
+        std::mem::swap(&mut self.rate, &mut self.step.last_rate);
+        self.last_steps = [self.last_steps[1], self.step.length];
+        self.steps += 1;
+    }
+
+    /// The earliest guard that trips within the prepared step.
+    fn first_trip(&mut self, evaluator: Evaluator<'_>) -> Option<Cut> {
+        if self.guards.is_empty() {
+            return None;
+        }
+        let shares = self.observer.shares(&self.step, self.inner());
+        let counters = self.observer.counters.clone();
+        let scale = self.observer.speed_scale.clone();
+        let view = StepView {
+            step: &self.step,
+            evaluator,
+            counters: &counters,
+            crossings: Vec::new(),
+            scale: &scale,
+        };
+        let wanted = self.conditions.channels.clone();
+        let mut scratch = std::mem::take(&mut self.scratch);
+        let mut values: Vec<Vec<f64>> = Vec::with_capacity(shares.len());
+        for &share in &shares {
+            view.sample(share, Some(&wanted), &mut scratch);
+            values.push(
+                self.guards
+                    .iter()
+                    .map(|guard| {
+                        guards::value(
+                            *guard,
+                            &evaluator,
+                            self.mode,
+                            self.conditions,
+                            &scratch.state,
+                            &scratch.frame,
+                        )
+                    })
+                    .collect(),
+            );
+        }
+        let mut first: Option<Cut> = None;
+        for (index, guard) in self.guards.iter().enumerate() {
+            let at = |share: f64, scratch: &mut Sample| {
+                view.sample(share, Some(&wanted), scratch);
+                guards::value(
+                    *guard,
+                    &evaluator,
+                    self.mode,
+                    self.conditions,
+                    &scratch.state,
+                    &scratch.frame,
+                )
+            };
+            let Some((low, high)) =
+                bracket(&shares, &values, index, |share| at(share, &mut scratch))
+            else {
+                continue;
+            };
+            if first.is_some_and(|cut| cut.share <= low) {
+                continue;
+            }
+            let share = locate::root(low, high, |share| at(share, &mut scratch) + TRIP, 1e-15);
+            if first.is_none_or(|cut| share < cut.share) {
+                first = Some(Cut { guard: *guard, share });
+            }
+        }
+        self.scratch = scratch;
+        first
+    }
+
+    /// Takes the cut step up to the guard: integrated again from its start, never interpolated.
+    pub fn take_cut(&mut self, rhs: &Rhs<'_>, cut: Cut) {
+        let (start, first, full) = (self.time, self.state.clone(), self.step.length);
+        let mut length = cut.share * full;
+        let smallest = 1e-14 * start.abs().max(1.0);
+        if length <= smallest {
+            return;
+        }
+        let mut stages = vec![self.rate.clone()];
+        for _ in 0..4 {
+            let mut rates =
+                |time: f64, state: &[f64], rates: &mut [f64]| rhs.system(time, state, rates);
+            let end = self.tableau.step(&mut rates, start, length, &first, &mut stages);
+            let mut rate = vec![0.0; end.len()];
+            rhs.system(start + length, &end, &mut rate);
+            self.load(rhs, start + length, &end, &rate);
+            self.prepare(rhs);
+            let mut frame = Frame::default();
+            let counters = self.observer.counters.clone();
+            let mut value = |share: f64| {
+                let mut state = Vec::new();
+                self.step.state(share, &mut state);
+                let time = self.step.time(share);
+                rhs.evaluator.evaluate(
+                    time,
+                    &state,
+                    &counters,
+                    Some(&self.conditions.channels),
+                    &mut frame,
+                );
+                guards::value(cut.guard, &rhs.evaluator, self.mode, self.conditions, &state, &frame)
+            };
+            let (here, before) = (value(1.0), value(1.0 - 1e-3));
+            let slope = (here - before) / (1e-3 * length);
+            if (-1e-9..=-0.5 * TRIP).contains(&here) || slope >= 0.0 {
+                break;
+            }
+            let change = (-(here + 2.0 * TRIP) / slope).clamp(-0.1 * length, 0.1 * length);
+            if change.abs() <= smallest {
+                break;
+            }
+            length += change;
+        }
+        self.observer.step(rhs.evaluator, &self.step, self.inner());
+        self.advance();
+    }
+
+    fn look_around(&mut self) -> bool {
+        if self.steps % LOOK_AROUND == 0 {
+            if let Some(progress) = &mut self.progress {
+                progress(self.time);
+            }
+            if self.interrupt.is_some_and(|flag| flag.load(Ordering::Relaxed)) {
+                self.interrupted = true;
+                return true;
+            }
+        }
+        false
+    }
+}
+
+/// The first pair of shares between which a guard trips; a dip between samples is looked into.
+fn bracket(
+    shares: &[f64],
+    values: &[Vec<f64>],
+    guard: usize,
+    mut at: impl FnMut(f64) -> f64,
+) -> Option<(f64, f64)> {
+    let value = |index: usize| values[index][guard];
+    if value(0) < -TRIP {
+        return Some((0.0, 0.0));
+    }
+    for index in 1..shares.len() {
+        if value(index) < -TRIP {
+            return Some((shares[index - 1], shares[index]));
+        }
+        if index + 1 < shares.len() {
+            let places = [shares[index - 1], shares[index], shares[index + 1]];
+            let heights = [value(index - 1), value(index), value(index + 1)];
+            if let Some((place, low)) = locate::vertex(places, heights) {
+                let near = low < 0.1 * heights[0].min(heights[2]);
+                if near && low < heights[1].min(heights[0]).min(heights[2]) && heights[2] >= -TRIP {
+                    let (place_low, depth) =
+                        locate::maximum(places[0], places[2], |share| -at(share));
+                    if -depth < -TRIP {
+                        return Some((places[0], place_low));
+                    }
+                    let _ = place;
+                }
+            }
+        }
+    }
+    None
+}
+
+impl Watch for Watcher<'_, '_> {
+    fn accept(&mut self, rhs: &Rhs<'_>, time: f64, state: &[f64], rates: &[f64]) -> bool {
+        let row_due = self.observer.next_row_time() < time;
+        self.window_steps += 1;
+        let full = self.window_steps >= WINDOW;
+        if !row_due && self.calm.inside(time - self.time, &self.state, &self.rate, state, rates) {
+            self.load_calm(rhs, time, state, rates);
+            return self.look_around() || full;
+        }
+        self.load(rhs, time, state, rates);
+        self.prepare(rhs);
+        if let Some(cut) = self.first_trip(rhs.evaluator) {
+            self.cut = Some(cut);
+            return true;
+        }
+        self.observer.step(rhs.evaluator, &self.step, self.inner());
+        self.advance();
+        self.calm.settle(
+            &rhs.evaluator,
+            self.observer,
+            self.mode,
+            self.conditions,
+            &self.guards,
+            self.time,
+            &self.state,
+            &self.rate,
+            self.step.length,
+        );
+        self.look_around() || full
+    }
+}
+
+impl Watcher<'_, '_> {
+    /// The short way for a step in which nothing can happen: audit and angles only.
+    fn load_calm(&mut self, rhs: &Rhs<'_>, time: f64, state: &[f64], rates: &[f64]) {
+        let length = time - self.time;
+        let count = self.tableau.stages();
+        let ring = rhs.ring();
+        let b = self.tableau.b;
+        let mut sum = Powers::default();
+        sum.add(b[0], &self.power);
+        for stage in 1..count {
+            sum.add(b[stage], ring.powers(count - stage));
+        }
+        self.observer.energy.add(length, &sum);
+        self.power = *ring.powers(0);
+        if !self.heats.is_empty() {
+            for place in 0..self.heats.len() {
+                let mut heat = b[0] * self.heats[place];
+                for stage in 1..count {
+                    heat += b[stage] * ring.heats(count - stage)[place];
+                }
+                self.observer.heats[place] += length * heat;
+                self.heats[place] = ring.heats(0)[place];
+            }
+        }
+        let scale = &self.observer.speed_scale;
+        for (place, sum) in self.observer.counters.angles.iter_mut().enumerate() {
+            let mut inner = self.state_weights[0] * self.rate[place];
+            for stage in 1..count {
+                inner += self.state_weights[stage] * ring.rates(count - stage)[place];
+            }
+            *sum += scale[place] * length * (self.state[place] + length * inner);
+        }
+        drop(ring);
+        if let Some(tracer) = &mut self.observer.tracer {
+            self.calm.trace(tracer, self.time, time);
+        }
+        self.time = time;
+        self.state.copy_from_slice(state);
+        self.rate.copy_from_slice(rates);
+        self.last_steps = [self.last_steps[1], length];
+        self.steps += 1;
+    }
+}
+
+/// Counts without slips, for evaluations that ask for none.
+pub fn no_counters(magnets: usize, speeds: usize) -> Counters {
+    Counters {
+        wells: vec![0; magnets],
+        slips: vec![0; magnets],
+        net_slips: vec![0; magnets],
+        angles: vec![0.0; speeds],
+    }
+}
