@@ -42,7 +42,7 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         "start",
         &["as_given", "steady"],
         false,
-        "as_given: speeds as given, shafts unloaded; steady: the operating point nearest to them.",
+        "Speeds as given and shafts unloaded (as_given), or the operating point near them (steady).",
     );
     let solver = fields.group_optional("solver", "The integrator.", read_solver);
 
@@ -234,7 +234,7 @@ fn read_solver(fields: &mut Fields<'_>) -> Solver {
         "method",
         &["dopri5", "dop853", "rk4"],
         false,
-        "dopri5 (default), dop853, or rk4 with a fixed step.",
+        "Method: dopri5, dop853, or rk4 with a fixed step.",
     );
     let tolerance = fields.quantity_or(
         "tolerance",
