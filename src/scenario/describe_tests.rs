@@ -68,3 +68,14 @@ fn every_key_is_described_once_in_one_plain_line() {
     check_documentation(&root(), "", &mut count);
     assert!(count > 120, "only {count} keys");
 }
+
+#[test]
+fn the_name_of_a_channel_tells_its_dimension() {
+    use crate::component::channel::dimension_of;
+    let loaded = load(Path::new("tests/accepted/every_part.yaml"), &[]).unwrap();
+    assert!(loaded.scenario.channels.len() > 60);
+    for channel in &loaded.scenario.channels {
+        assert_eq!(dimension_of(&channel.name), Some(channel.dimension), "{}", channel.name);
+    }
+    assert_eq!(dimension_of("rotor.colour"), None);
+}

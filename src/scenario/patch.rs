@@ -3,6 +3,7 @@
 use super::describe::{Found, Kind, PathFault, find};
 use super::locate::Places;
 use super::yaml;
+use crate::component::channel::dimension_of;
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::quantity::{self, Dimension};
 use crate::tree::Node;
@@ -38,6 +39,7 @@ pub fn value_at(root: &Node, path: &str) -> Result<Value, PathFault> {
         }
         _ => return not_a_number("a map"),
     };
+    let dimension = dimension.or_else(|| dimension_beside(root, path, &found));
     let Some(node) = found.node.filter(|node| **node != Node::Null) else {
         let design = found.default.or_else(|| default_of(root, path, &found));
         return Ok(Value {
@@ -78,6 +80,26 @@ pub fn value_at(root: &Node, path: &str) -> Result<Value, PathFault> {
         )),
         Err(_) if matches!(found.kind, Kind::Free) => not_a_number("text"),
         Err(fault) => Err((fault.message, fault.hint)),
+    }
+}
+
+/// The dimension of a bare number that something beside it tells.
+fn dimension_beside(root: &Node, path: &str, found: &Found<'_>) -> Option<Dimension> {
+    let Some(Node::Number(_)) = found.node else { return None };
+    let (parent, key) = path.rsplit_once('.')?;
+    let beside = |key: &str| match find(root, parent).ok()?.node?.get(key)? {
+        Node::Text(text) => Some(text),
+        _ => None,
+    };
+    match (&found.kind, key) {
+        // A bare share of the value.
+        (Kind::OfChannel, "stays_within") => None,
+        (Kind::OfChannel, _) => dimension_of(beside("of")?),
+        (Kind::Free, "to") => match find(root, beside("set")?).ok()?.kind {
+            Kind::Signal(dimension) => dimension,
+            _ => None,
+        },
+        _ => None,
     }
 }
 

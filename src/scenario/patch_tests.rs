@@ -23,6 +23,9 @@ signals:
   demand: { points: [[0 s, 0 rpm], [1 s, 30 rpm], [5 s, 60 rpm]] }
 requirements:
   share: { of: hub.pull_out_share, at_most: 85 % }
+  torque: { of: hub.torque_a, at_most: 60 }
+protections:
+  stop: { when: { time: 1 s }, then: [{ set: motors.other.law.prescribed.torque, to: 3 }] }
 studies:
   map: { sweep: { vary: { bodies.rotor.inertia: { from: 1, to: 2, count: 5 } } } }
 ";
@@ -48,6 +51,8 @@ fn stated_values_come_in_si_with_their_dimension() {
         ("signals.demand.points.2.1", turn, Dimension::Speed),
         ("motors.other.law.prescribed.torque.sine.amplitude", 2.0, Dimension::Torque),
         ("requirements.share.at_most", 0.85, Dimension::One),
+        ("requirements.torque.at_most", 60.0, Dimension::Torque),
+        ("protections.stop.then.0.to", 3.0, Dimension::Torque),
         ("duration", 2.0, Dimension::Time),
         ("studies.map.sweep.vary.bodies.rotor.inertia.to", 2.0, Dimension::One),
     ] {
@@ -106,7 +111,7 @@ fn a_path_that_leads_nowhere_says_where_it_ends() {
         assert!(message.contains(words), "{path}: {message}");
         match hint {
             Some(hint) => {
-                assert!(said.clone().unwrap_or_default().contains(hint), "{path}: {said:?}")
+                assert!(said.clone().unwrap_or_default().contains(hint), "{path}: {said:?}");
             }
             None => assert_eq!(said, None, "{path}"),
         }

@@ -4,7 +4,7 @@ use super::describe::signal_dimension_at;
 use super::{Display, Method, Scenario, Solver, Start};
 use crate::component::body::Body;
 use crate::component::brake::Brake;
-use crate::component::channel::{self, Section, Train};
+use crate::component::channel::{self, Known, Section, Train};
 use crate::component::gear_pair::GearPair;
 use crate::component::load::Load;
 use crate::component::magnetic_gear::{MagneticCoupling, MagneticGear};
@@ -80,10 +80,15 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         brakes: &brakes,
     };
     let channels = channel::list(&train, &section_order(fields));
+    let sound = !fields.faults().borrow().has_errors();
+    let known = Known {
+        channels: &channels,
+        complete: sound && !fields.has_unknown(&["protections", "requirements", "studies"]),
+    };
     let protections = {
         let description = OnceCell::new();
         let around = Surroundings {
-            channels: &channels,
+            channels: known,
             signal_at: &|path| {
                 let description = description.get_or_init(super::describe::root);
                 signal_dimension_at(description, root, &signals, path)
@@ -95,7 +100,7 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
     };
     let requirements =
         fields.section("requirements", "What the run is judged by.", |requirement| {
-            Requirement::read(requirement, &channels)
+            Requirement::read(requirement, known)
         });
     let studies = read_studies(fields);
     Scenario {

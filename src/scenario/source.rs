@@ -87,6 +87,13 @@ impl Source {
         }
     }
 
+    /// The name of the file without its folder and ending: the title of a case that has none.
+    pub fn stem(&self) -> String {
+        Path::new(&self.name)
+            .file_stem()
+            .map_or_else(|| self.name.clone(), |stem| stem.to_string_lossy().into_owned())
+    }
+
     /// Reads the text into the value tree; places are known from then on.
     pub fn parse(&mut self, faults: &mut Diagnostics) -> Option<Node> {
         let node = match yaml::parse(&self.text) {

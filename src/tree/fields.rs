@@ -107,6 +107,11 @@ impl<'a> Fields<'a> {
         self.entries.iter().any(|(name, _)| name == key)
     }
 
+    /// True when a key stands here that was not asked for so far and is not among `later`.
+    pub fn has_unknown(&self, later: &[&str]) -> bool {
+        self.entries.iter().any(|(name, _)| !self.asked.iter().chain(later).any(|key| key == name))
+    }
+
     /// Records a fault at a key of this map.
     pub fn fault(&self, key: &str, message: impl Into<String>) {
         if !self.describing() {
