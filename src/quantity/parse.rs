@@ -129,7 +129,9 @@ fn known_unit(
     dimension: Option<Dimension>,
 ) -> Result<&'static Unit, QuantityFault> {
     find_unit(symbol).ok_or_else(|| {
-        if symbol.starts_with([',', '\'']) || symbol.starts_with(|c: char| c.is_ascii_digit()) {
+        if symbol.starts_with([',', '\'', '_', '.'])
+            || symbol.starts_with(|c: char| c.is_ascii_digit())
+        {
             return QuantityFault::with_hint(
                 format!("`{}` is not a number with a unit", text.trim()),
                 "write a decimal point and no thousands mark, for example 1500.5",

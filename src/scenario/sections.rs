@@ -13,11 +13,12 @@ use crate::component::planetary::PlanetaryGear;
 use crate::component::protection::{Protection, Surroundings};
 use crate::component::requirement::Requirement;
 use crate::component::shaft::Shaft;
+use crate::diagnostic::Diagnostics;
 use crate::quantity::{self, Dimension};
 use crate::signal::NamedSignal;
 use crate::signal::read::read_named_signal;
 use crate::tree::{Fields, Node, Range, Shape};
-use std::cell::OnceCell;
+use std::cell::{OnceCell, RefCell};
 
 /// Rows of the series beyond this are a mistake.
 const MOST_ROWS: f64 = 1e7;
@@ -85,11 +86,16 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         channels: &channels,
         complete: sound && !fields.has_unknown(&["protections", "requirements", "studies"]),
     };
+    let faults = fields.faults();
     let protections = {
         let description = OnceCell::new();
         let around = Surroundings {
             channels: known,
             signal_at: &|path| {
+                // What could not be read is not missed here as well.
+                if !known.complete && !is_readable(path, root, faults) {
+                    return Ok(None);
+                }
                 let description = description.get_or_init(super::describe::root);
                 signal_dimension_at(description, root, &signals, path)
             },
@@ -141,6 +147,17 @@ fn read_version(fields: &mut Fields<'_>) {
         ),
         Some(_) => fields.fault("lodeshaft", "the version of the file format is a number: 1"),
     }
+}
+
+/// True when the section of a path stands in the file and its thing has no fault.
+fn is_readable(path: &str, root: &Node, faults: &RefCell<Diagnostics>) -> bool {
+    let mut steps = path.split('.');
+    let (section, thing) = (steps.next().unwrap_or_default(), steps.next());
+    root.get(section).is_some()
+        && !faults.borrow().iter().any(|fault| {
+            let mut steps = fault.path.split('.');
+            fault.severity.is_error() && steps.next() == Some(section) && steps.next() == thing
+        })
 }
 
 /// The sections with channels as they follow each other in the file.
