@@ -4,11 +4,14 @@
 //! `diagnostic < tree < quantity < results < signal < component < scenario < model <
 //! equations < solve < analysis < render < cli`.
 
+pub mod analysis;
+pub mod cli;
 pub mod component;
 pub mod diagnostic;
 pub mod equations;
 pub mod model;
 pub mod quantity;
+pub mod render;
 pub mod results;
 pub mod scenario;
 pub mod signal;

@@ -47,7 +47,7 @@ pub struct Run<'e, 'a> {
     last_steps: [f64; 2],
     caps: BTreeMap<Mode, f64>,
     changed: bool,
-    judged: bool,
+    judge_rest: bool,
 }
 
 /// Why no run took place.
@@ -98,7 +98,7 @@ pub fn run(equations: &Equations, mut options: RunOptions<'_>) -> Result<RunResu
         last_steps: [0.0; 2],
         caps: BTreeMap::new(),
         changed: true,
-        judged: false,
+        judge_rest: true,
     };
     run.go(&mut options);
     Ok(outcome::collect(run, stored))
@@ -135,9 +135,8 @@ impl Run<'_, '_> {
             let end = self.next_stop(duration);
             self.wrap_phases();
             rest::presence(equations, &mut self.mode, self.time, end, &self.state, &self.overrides);
-            // What a guard has just let go of must not be caught again at the same instant.
-            let judged = std::mem::take(&mut self.judged);
-            if !judged && (self.changed || self.any_at_rest()) {
+            // An event has already judged its elements: judging them again could stick what has just let go.
+            if std::mem::take(&mut self.judge_rest) {
                 let events = if first { None } else { Some(&mut self.observer.events) };
                 rest::resolve(
                     equations,
@@ -186,6 +185,7 @@ impl Run<'_, '_> {
             }
             if acted.signals {
                 self.changed = true;
+                self.judge_rest = true;
                 continue;
             }
             // A protection that has begun to wait may be due before the next kink.
@@ -344,8 +344,9 @@ impl Run<'_, '_> {
             self.failure = Some(format!("interrupted at {} s", self.time));
             return true;
         }
-        if let Some(cut) = cut {
-            self.apply(cut.guard, end);
+        match cut {
+            Some(cut) => self.apply(cut.guard, end),
+            None => self.judge_rest = true,
         }
         false
     }
@@ -394,7 +395,6 @@ impl Run<'_, '_> {
             }
             Guard::Slide(_) | Guard::Hold => {
                 let tripped = guard == Guard::Hold;
-                self.judged = true;
                 rest::resolve(
                     equations,
                     &mut self.mode,

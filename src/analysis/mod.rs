@@ -1,0 +1,3 @@
+//! What is asked of a train: one run in time, and the studies built on it.
+
+pub mod transient;

@@ -1,0 +1,84 @@
+//! The command line: what was typed, and the commands that do it.
+
+mod interrupt;
+mod progress;
+mod run;
+mod status;
+mod streams;
+
+use clap::{Args, Parser, Subcommand, ValueEnum};
+use status::Status;
+use std::path::PathBuf;
+use std::process::ExitCode;
+
+/// Simulates drivetrains with magnetic gears and couplings: how close they come to slipping.
+///
+/// Exit status: 0 done and every requirement met, 1 a requirement or limit not met, 2 the file or
+/// the command is at fault, 3 the numerics gave up, 4 results could not be written, 130 interrupted.
+#[derive(Debug, Parser)]
+#[command(name = "lodeshaft", version, max_term_width = 100)]
+pub struct CommandLine {
+    /// What to do.
+    #[command(subcommand)]
+    pub command: Command,
+    /// Options that every command takes.
+    #[command(flatten)]
+    pub common: Common,
+}
+
+/// The commands.
+#[derive(Debug, Subcommand)]
+pub enum Command {
+    /// Runs a scenario in time: series, events, summary, charts and verdicts.
+    Run(run::RunArguments),
+}
+
+/// Options that every command takes, as far as they mean something to it.
+#[derive(Clone, Debug, Args)]
+pub struct Common {
+    /// Folder of the results [default: output/<the file's stem>].
+    #[arg(long, global = true, value_name = "DIR")]
+    pub out: Option<PathBuf>,
+    /// Sets a value of the file by its dotted path, for example bodies.rotor.inertia="2 kg*m2".
+    #[arg(long = "set", global = true, value_name = "PATH=VALUE", value_parser = path_and_value)]
+    pub sets: Vec<(String, String)>,
+    /// What is printed on standard output.
+    #[arg(long, global = true, value_enum, default_value_t = Format::Text)]
+    pub format: Format,
+    /// No text summary and no progress; warnings and errors stay.
+    #[arg(long, global = true)]
+    pub quiet: bool,
+    /// Draws no charts.
+    #[arg(long, global = true)]
+    pub no_charts: bool,
+    /// Number of threads for studies [default: one a processor].
+    #[arg(long, global = true, value_name = "N", value_parser = clap::value_parser!(u16).range(1..))]
+    pub threads: Option<u16>,
+}
+
+/// What is printed on standard output.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub enum Format {
+    /// For people.
+    Text,
+    /// For machines: nothing but JSON.
+    Json,
+}
+
+fn path_and_value(text: &str) -> Result<(String, String), String> {
+    match text.split_once('=') {
+        Some((path, value)) if !path.trim().is_empty() => {
+            Ok((path.trim().to_owned(), value.trim().to_owned()))
+        }
+        _ => Err("it takes a dotted path, `=` and a value".to_owned()),
+    }
+}
+
+/// Reads the command line, does what it says and tells how it ended.
+pub fn main() -> ExitCode {
+    let CommandLine { command, common } = CommandLine::parse();
+    let status: Status = match command {
+        Command::Run(arguments) => run::run(&arguments, &common),
+    };
+    status.into()
+}

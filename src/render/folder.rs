@@ -1,0 +1,252 @@
+//! The folder of results: written beside its place, then put there as a whole.
+//!
+//! Nobody ever sees half a result: all files are written into a hidden folder beside the
+//! target, which then takes the target's name. A folder that holds a result of ours is
+//! replaced as a whole; any other folder with something in it is refused.
+
+use super::leftovers::{self, MARKER, MARKER_FILE};
+use std::fs::{self, File};
+use std::io::{self, BufWriter};
+use std::path::{Path, PathBuf};
+
+/// How often the swap of folders is tried when another run does the same.
+const ATTEMPTS: u32 = 50;
+
+/// Why results could not be written.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct FolderFault {
+    /// One sentence, lower case at the start, without a full stop.
+    pub message: String,
+    /// What to do about it.
+    pub hint: Option<String>,
+}
+
+impl FolderFault {
+    fn refused(target: &Path, what: &str) -> Self {
+        Self {
+            message: format!("`{}` {what}", target.display()),
+            hint: Some("name another folder with --out".to_owned()),
+        }
+    }
+
+    /// A fault of the disk while `what` was done.
+    pub fn disk(what: &str, error: &io::Error) -> Self {
+        let told = match error.kind() {
+            io::ErrorKind::StorageFull => "the disk is full".to_owned(),
+            io::ErrorKind::PermissionDenied => "permission denied".to_owned(),
+            io::ErrorKind::ReadOnlyFilesystem => "the disk is read-only".to_owned(),
+            io::ErrorKind::QuotaExceeded => "the disk quota is used up".to_owned(),
+            io::ErrorKind::NotADirectory => "a part of the path is a file".to_owned(),
+            _ => error.to_string(),
+        };
+        Self { message: format!("cannot write {what}: {told}"), hint: None }
+    }
+}
+
+/// What stands at the place of the results.
+enum Place {
+    Free,
+    EmptyFolder,
+    Ours,
+    Foreign(&'static str),
+}
+
+/// A folder of results in the making; it vanishes unless it is committed.
+#[derive(Debug)]
+pub struct Folder {
+    /// As the user named it, for messages.
+    shown: PathBuf,
+    target: PathBuf,
+    temporary: PathBuf,
+    /// Parents that were made for it and go again when nothing comes of it.
+    made: Vec<PathBuf>,
+    committed: bool,
+}
+
+impl Folder {
+    /// Opens a folder of results beside its place.
+    ///
+    /// # Errors
+    /// A place that is taken by something else, or a fault of the disk.
+    pub fn open(shown: &Path) -> Result<Self, FolderFault> {
+        let target = resolve(shown)?;
+        let parent = target.parent().map(Path::to_path_buf).unwrap_or_default();
+        let name = leftovers::file_name(&target);
+        if let Place::Foreign(what) = look(&target) {
+            return Err(FolderFault::refused(shown, what));
+        }
+        let told = |error: io::Error| {
+            FolderFault::disk(&format!("the folder `{}`", shown.display()), &error)
+        };
+        let mut made = Vec::new();
+        make_parents(&parent, &mut made).map_err(told)?;
+        leftovers::clean(&target);
+        let mut folder =
+            Self { shown: shown.to_path_buf(), target, temporary: parent, made, committed: false };
+        let beside = std::mem::take(&mut folder.temporary);
+        for count in 0_u32.. {
+            let temporary = beside.join(leftovers::hidden_name(&name, count));
+            match fs::create_dir(&temporary) {
+                Ok(()) => {
+                    folder.temporary = temporary;
+                    break;
+                }
+                Err(error) if error.kind() == io::ErrorKind::AlreadyExists => {}
+                Err(error) => return Err(told(error)),
+            }
+        }
+        let marker = format!("{MARKER}\n{}\n", leftovers::own_identity());
+        fs::write(folder.temporary.join(MARKER_FILE), marker).map_err(told)?;
+        Ok(folder)
+    }
+
+    /// The folder as the user named it.
+    pub fn shown(&self) -> &Path {
+        &self.shown
+    }
+
+    /// Where the files are written until the folder is committed.
+    pub fn path(&self) -> &Path {
+        &self.temporary
+    }
+
+    /// Creates a file in it.
+    ///
+    /// # Errors
+    /// The fault of the disk.
+    pub fn create(&self, name: &str) -> Result<BufWriter<File>, FolderFault> {
+        File::create(self.temporary.join(name))
+            .map(|file| BufWriter::with_capacity(1 << 16, file))
+            .map_err(|error| FolderFault::disk(&format!("`{name}`"), &error))
+    }
+
+    /// Writes a whole file into it.
+    ///
+    /// # Errors
+    /// The fault of the disk.
+    pub fn write(&self, name: &str, content: &[u8]) -> Result<(), FolderFault> {
+        fs::write(self.temporary.join(name), content)
+            .map_err(|error| FolderFault::disk(&format!("`{name}`"), &error))
+    }
+
+    /// Puts the folder in its place.
+    ///
+    /// # Errors
+    /// A fault of the disk, or a place that has meanwhile been taken by something else.
+    pub fn commit(mut self) -> Result<(), FolderFault> {
+        let told = |error: &io::Error, shown: &Path| {
+            FolderFault::disk(&format!("the folder `{}`", shown.display()), error)
+        };
+        for attempt in 0..ATTEMPTS {
+            match look(&self.target) {
+                Place::Foreign(what) => return Err(FolderFault::refused(&self.shown, what)),
+                Place::Ours => {
+                    if let Err(error) = leftovers::set_aside(&self.target)
+                        && error.kind() != io::ErrorKind::NotFound
+                    {
+                        return Err(told(&error, &self.shown));
+                    }
+                }
+                Place::EmptyFolder => {
+                    // Some systems do not rename onto an empty folder.
+                    let _ = fs::remove_dir(&self.target);
+                }
+                Place::Free => {}
+            }
+            match fs::rename(&self.temporary, &self.target) {
+                Ok(()) => {
+                    self.committed = true;
+                    // The process is of no interest any more; the same run gives the same bytes.
+                    let _ = fs::write(self.target.join(MARKER_FILE), format!("{MARKER}\n"));
+                    leftovers::clean_own(&self.target);
+                    return Ok(());
+                }
+                Err(error) if attempt + 1 == ATTEMPTS => return Err(told(&error, &self.shown)),
+                Err(error) => match error.kind() {
+                    // Another run was faster: its result is replaced in turn.
+                    io::ErrorKind::AlreadyExists
+                    | io::ErrorKind::DirectoryNotEmpty
+                    | io::ErrorKind::NotADirectory => {}
+                    _ => {
+                        leftovers::restore(&self.target);
+                        return Err(told(&error, &self.shown));
+                    }
+                },
+            }
+        }
+        Err(FolderFault::refused(&self.shown, "is being written by other runs"))
+    }
+}
+
+impl Drop for Folder {
+    fn drop(&mut self) {
+        if self.committed {
+            return;
+        }
+        if !self.temporary.as_os_str().is_empty() {
+            let _ = fs::remove_dir_all(&self.temporary);
+        }
+        for parent in self.made.iter().rev() {
+            // Stays when something else has come into it.
+            let _ = fs::remove_dir(parent);
+        }
+    }
+}
+
+/// The place that a path means, links followed and `.` and `..` resolved.
+fn resolve(shown: &Path) -> Result<PathBuf, FolderFault> {
+    if shown.as_os_str().is_empty() {
+        return Err(FolderFault::refused(shown, "is no name of a folder"));
+    }
+    let told =
+        |error: io::Error| FolderFault::disk(&format!("the folder `{}`", shown.display()), &error);
+    match fs::canonicalize(shown) {
+        Ok(target) if target.parent().is_none() => {
+            Err(FolderFault::refused(shown, "is the root of the disk"))
+        }
+        Ok(target) => Ok(target),
+        Err(error) if error.kind() == io::ErrorKind::NotFound => {
+            if shown.file_name().is_none() || fs::symlink_metadata(shown).is_ok() {
+                return Err(FolderFault::refused(shown, "leads nowhere"));
+            }
+            std::path::absolute(shown).map_err(told)
+        }
+        Err(error) => Err(told(error)),
+    }
+}
+
+fn look(target: &Path) -> Place {
+    if !target.exists() {
+        return Place::Free;
+    }
+    if !target.is_dir() {
+        return Place::Foreign("is a file, not a folder");
+    }
+    match fs::read_dir(target) {
+        Err(_) => Place::Foreign("cannot be read"),
+        Ok(mut entries) => {
+            if entries.next().is_none() {
+                Place::EmptyFolder
+            } else if leftovers::is_ours(target) {
+                Place::Ours
+            } else {
+                Place::Foreign("holds files that are no results of this program; it is left alone")
+            }
+        }
+    }
+}
+
+fn make_parents(parent: &Path, made: &mut Vec<PathBuf>) -> io::Result<()> {
+    if parent.as_os_str().is_empty() || parent.is_dir() {
+        return Ok(());
+    }
+    if let Some(above) = parent.parent() {
+        make_parents(above, made)?;
+    }
+    match fs::create_dir(parent) {
+        Ok(()) => made.push(parent.to_path_buf()),
+        Err(error) if error.kind() == io::ErrorKind::AlreadyExists && parent.is_dir() => {}
+        Err(error) => return Err(error),
+    }
+    Ok(())
+}

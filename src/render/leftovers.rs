@@ -1,0 +1,168 @@
+//! Hidden folders beside a result: the one being written, and the one being replaced.
+//!
+//! They are named after their result (`.pump.lodeshaft-4711-0`) and say which process made
+//! them, so that those of a killed run are told from those of a living one and cleaned.
+
+use std::fs;
+use std::io;
+use std::path::{Path, PathBuf};
+use std::time::{Duration, SystemTime};
+
+/// The file by which a folder of results is known.
+pub const MARKER_FILE: &str = ".lodeshaft";
+
+/// First line of that file.
+pub const MARKER: &str =
+    "results of lodeshaft: the next run into this folder replaces it as a whole";
+
+/// A hidden folder of a process that cannot be asked is given up after this time.
+const GIVEN_UP: Duration = Duration::from_secs(24 * 3600);
+
+/// The last part of a path as text.
+pub fn file_name(target: &Path) -> String {
+    target.file_name().map_or_else(String::new, |name| name.to_string_lossy().into_owned())
+}
+
+/// The name of a hidden folder of this process.
+pub fn hidden_name(name: &str, count: u32) -> String {
+    format!("{}{}-{count}", prefix(name), std::process::id())
+}
+
+fn prefix(name: &str) -> String {
+    format!(".{name}.lodeshaft-")
+}
+
+/// True when a folder holds a result of this program.
+pub fn is_ours(folder: &Path) -> bool {
+    fs::read_to_string(folder.join(MARKER_FILE)).is_ok_and(|text| text.starts_with(MARKER))
+}
+
+/// Moves the result at the target out of the way.
+pub fn set_aside(target: &Path) -> io::Result<()> {
+    let name = file_name(target);
+    for count in 0_u32.. {
+        let aside = target.with_file_name(format!("{}-old", hidden_name(&name, count)));
+        if aside.exists() {
+            continue;
+        }
+        let marker = format!("{MARKER}\n{}\n", own_identity());
+        let _ = fs::write(target.join(MARKER_FILE), marker);
+        return fs::rename(target, aside);
+    }
+    Ok(())
+}
+
+/// Puts back a result that this process had set aside.
+pub fn restore(target: &Path) {
+    for folder in hidden(target) {
+        if is_old(&folder) && is_own(&folder) && fs::rename(&folder, target).is_ok() {
+            let _ = fs::write(target.join(MARKER_FILE), format!("{MARKER}\n"));
+            return;
+        }
+    }
+}
+
+/// Removes what this process had set aside.
+pub fn clean_own(target: &Path) {
+    for folder in hidden(target) {
+        if is_old(&folder) && is_own(&folder) {
+            let _ = fs::remove_dir_all(folder);
+        }
+    }
+}
+
+/// Removes what killed runs left beside a target; a result set aside whose successor never
+/// came is put back.
+pub fn clean(target: &Path) {
+    for folder in hidden(target) {
+        if !is_abandoned(&folder) {
+            continue;
+        }
+        if is_old(&folder) && !target.exists() {
+            let _ = fs::rename(&folder, target);
+        } else {
+            let _ = fs::remove_dir_all(folder);
+        }
+    }
+}
+
+fn hidden(target: &Path) -> Vec<PathBuf> {
+    let prefix = prefix(&file_name(target));
+    let Some(entries) = target.parent().and_then(|parent| fs::read_dir(parent).ok()) else {
+        return Vec::new();
+    };
+    let mut folders: Vec<PathBuf> = entries
+        .flatten()
+        .filter(|entry| entry.file_name().to_string_lossy().starts_with(&prefix))
+        .filter(|entry| entry.file_type().is_ok_and(|kind| kind.is_dir()))
+        .map(|entry| entry.path())
+        .collect();
+    folders.sort();
+    folders
+}
+
+fn is_old(folder: &Path) -> bool {
+    file_name(folder).ends_with("-old")
+}
+
+fn is_own(folder: &Path) -> bool {
+    maker(folder).is_some_and(|maker| maker == own_identity())
+}
+
+/// Second line of the marker: who made the folder.
+fn maker(folder: &Path) -> Option<String> {
+    let text = fs::read_to_string(folder.join(MARKER_FILE)).ok()?;
+    let mut lines = text.lines();
+    (lines.next() == Some(MARKER)).then(|| lines.next().unwrap_or_default().to_owned())
+}
+
+fn is_abandoned(folder: &Path) -> bool {
+    match maker(folder).as_deref().and_then(parse) {
+        Some((process, started, machine)) if machine == own_machine() && machine != "-" => {
+            started_at(process) != Some(started.to_owned())
+        }
+        // Another machine, or a folder whose marker was not written yet: only time can tell.
+        _ => newest(folder).is_some_and(|time| time.elapsed().is_ok_and(|age| age > GIVEN_UP)),
+    }
+}
+
+fn newest(folder: &Path) -> Option<SystemTime> {
+    let inside = fs::read_dir(folder).ok()?.flatten().filter_map(|entry| entry.metadata().ok());
+    let itself = fs::metadata(folder).ok();
+    inside.chain(itself).filter_map(|data| data.modified().ok()).max()
+}
+
+/// Process, its start and its machine as one line.
+pub fn own_identity() -> String {
+    let process = std::process::id();
+    let started = started_at(process).unwrap_or_else(|| "-".to_owned());
+    format!("process {process} started {started} on {}", own_machine())
+}
+
+fn parse(identity: &str) -> Option<(u32, &str, &str)> {
+    let mut words = identity.split(' ');
+    let (Some("process"), Some(process)) = (words.next(), words.next()) else { return None };
+    let (Some("started"), Some(started)) = (words.next(), words.next()) else { return None };
+    let (Some("on"), Some(machine)) = (words.next(), words.next()) else { return None };
+    Some((process.parse().ok()?, started, machine))
+}
+
+/// When a living process was started, in ticks since the machine was; `None`: no such process.
+///
+/// The start tells a process from a later one of the same number (Linux: proc(5), field 22 of
+/// `stat`, counted from behind the name in brackets, which may hold anything).
+fn started_at(process: u32) -> Option<String> {
+    let text = fs::read_to_string(format!("/proc/{process}/stat")).ok()?;
+    let (_, behind_name) = text.rsplit_once(')')?;
+    behind_name.split_whitespace().nth(19).map(str::to_owned)
+}
+
+/// The machine since its last start, containers told apart; `-` where that cannot be told.
+fn own_machine() -> String {
+    let boot = fs::read_to_string("/proc/sys/kernel/random/boot_id");
+    let space = fs::read_link("/proc/self/ns/pid");
+    match (boot, space) {
+        (Ok(boot), Ok(space)) => format!("{}/{}", boot.trim(), space.display()),
+        _ => "-".to_owned(),
+    }
+}

@@ -1,0 +1,1 @@
+//! The summary of a run for people.
