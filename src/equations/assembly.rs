@@ -161,9 +161,11 @@ pub fn assemble(
         if factor == Strength::Constant(0.0) {
             continue;
         }
-        // A term that takes its offset or a parameter from a signal is evaluated with it, even
-        // where the signal does not change.
-        varies |= term.offset.is_some() || term.parameters.iter().any(Option::is_some);
+        let moving =
+            term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
+        for slot in moving {
+            varies |= equations.bank.constant_on(slot, start, end, overrides).is_none();
+        }
         let column = match &term.target {
             Target::Torque(direction) => parts.column(direction),
             Target::State(state, rate) => vec![(*state, rate / equations.scale[*state])],
