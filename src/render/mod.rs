@@ -7,4 +7,7 @@ pub mod json;
 mod leftovers;
 pub mod number;
 pub mod series;
+pub mod shown;
+pub mod story;
+pub mod table;
 pub mod text;
