@@ -1,6 +1,8 @@
 //! The command line: what was typed, and the commands that do it.
 
+mod check;
 mod interrupt;
+mod poles;
 mod progress;
 mod run;
 mod status;
@@ -31,6 +33,10 @@ pub struct CommandLine {
 pub enum Command {
     /// Runs a scenario in time: series, events, summary, charts and verdicts.
     Run(run::RunArguments),
+    /// Reads and checks scenarios and shows their trains; runs nothing.
+    Check(check::CheckArguments),
+    /// Lists pole-pair choices for a ratio: pieces, the six ratios, ripple orders.
+    Poles(poles::PolesArguments),
 }
 
 /// Options that every command takes, as far as they mean something to it.
@@ -79,6 +85,8 @@ pub fn main() -> ExitCode {
     let CommandLine { command, common } = CommandLine::parse();
     let status: Status = match command {
         Command::Run(arguments) => run::run(&arguments, &common),
+        Command::Check(arguments) => check::run(&arguments, &common),
+        Command::Poles(arguments) => poles::run(&arguments, &common),
     };
     status.into()
 }
