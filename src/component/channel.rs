@@ -87,6 +87,37 @@ pub enum MagneticChannel {
     TorqueModulator,
 }
 
+/// The channels of a train as the reader of limits knows them.
+#[derive(Clone, Copy, Debug)]
+pub struct Known<'a> {
+    /// All that could be listed.
+    pub channels: &'a [Channel],
+    /// False when a part of the train could not be read, so that a channel may be missing for that reason.
+    pub complete: bool,
+}
+
+impl<'a> Known<'a> {
+    /// The channels of a train that was read without fault.
+    pub fn all(channels: &'a [Channel]) -> Self {
+        Self { channels, complete: true }
+    }
+}
+
+/// The dimension of a channel by the part of its name after the dot.
+pub fn dimension_of(channel: &str) -> Option<Dimension> {
+    let quantity = channel.split_once('.')?.1;
+    Some(match quantity {
+        "speed" | "slip_speed" => Dimension::Speed,
+        "angle" | "twist" | "load_angle" | "phase" => Dimension::Angle,
+        "power" | "loss" => Dimension::Power,
+        "flow" => Dimension::LinearSpeed,
+        "slips" | "net_slips" | "pull_out_share" | "short_of_peak" | "tip_speed_ratio"
+        | "power_coefficient" => Dimension::One,
+        _ if quantity.starts_with("torque") => Dimension::Torque,
+        _ => return None,
+    })
+}
+
 /// The sections of a scenario that have channels.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Section {

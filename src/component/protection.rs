@@ -1,6 +1,6 @@
 //! Protections: logic that acts once during the run.
 
-use super::channel::Channel;
+use super::channel::Known;
 use super::requirement::{channel_dimension, limit};
 use crate::quantity::{self, Dimension};
 use crate::tree::{Fields, Range, Shape};
@@ -66,10 +66,16 @@ pub enum Action {
 /// What the reader of protections asks about the rest of the file.
 pub struct Surroundings<'a> {
     /// All channels of the train.
-    pub channels: &'a [Channel],
+    pub channels: Known<'a>,
     /// The dimension of the signal at a path (`None`: any), or the fault and a hint.
-    pub signal_at: &'a dyn Fn(&str) -> Result<Option<Dimension>, (String, Option<String>)>,
+    pub signal_at: &'a SignalAt<'a>,
 }
+
+/// Finds the dimension of the signal at a path.
+pub type SignalAt<'a> = dyn Fn(&str) -> Result<Option<Dimension>, PathFault> + 'a;
+
+/// A fault at a path: what is wrong, and what to type instead.
+pub type PathFault = (String, Option<String>);
 
 impl Protection {
     /// Reads a protection.
@@ -105,7 +111,7 @@ impl Protection {
     }
 }
 
-fn read_condition(fields: &mut Fields<'_>, channels: &[Channel]) -> (Condition, f64) {
+fn read_condition(fields: &mut Fields<'_>, channels: Known<'_>) -> (Condition, f64) {
     let time = fields.quantity_optional(
         "time",
         Dimension::Time,

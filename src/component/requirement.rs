@@ -1,6 +1,6 @@
 //! Requirements: one channel, one comparison, one window.
 
-use super::channel::Channel;
+use super::channel::Known;
 use crate::diagnostic::closest;
 use crate::quantity::{self, Dimension};
 use crate::tree::{Fields, Node, Range, Shape};
@@ -46,9 +46,9 @@ pub enum Test {
 
 impl Requirement {
     /// Reads a requirement; its limits are quantities of the channel's dimension.
-    pub fn read(fields: &mut Fields<'_>, channels: &[Channel]) -> Self {
+    pub fn read(fields: &mut Fields<'_>, known: Known<'_>) -> Self {
         let of = fields.name("of", "The channel it looks at.");
-        let dimension = channel_dimension(fields, &of, channels);
+        let dimension = channel_dimension(fields, &of, known);
         let signed =
             fields.flag("signed", false, "Compares the value itself instead of its magnitude.");
         let limits = [
@@ -112,36 +112,41 @@ impl Requirement {
 pub(super) fn channel_dimension(
     fields: &Fields<'_>,
     of: &str,
-    channels: &[Channel],
+    known: Known<'_>,
 ) -> Option<Dimension> {
-    if let Some(channel) = channels.iter().find(|channel| channel.name == of) {
+    if let Some(channel) = known.channels.iter().find(|channel| channel.name == of) {
         return Some(channel.dimension);
     }
-    if of.is_empty() {
-        return None;
-    }
-    let message = format!("no channel is named `{of}`");
     let thing = of.split_once('.').map_or(of, |(thing, _)| thing);
-    let of_thing: Vec<&str> = channels
+    let of_thing: Vec<&str> = known
+        .channels
         .iter()
         .filter_map(|channel| channel.name.split_once('.'))
         .filter(|(name, _)| *name == thing)
         .map(|(_, channel)| channel)
         .collect();
-    match closest(of, channels.iter().map(|channel| channel.name.as_str())) {
-        Some(near) => fields.fault_hint("of", message, format!("did you mean `{near}`?")),
-        None if of_thing.is_empty() => fields.fault_hint(
-            "of",
-            message,
-            "a channel is a thing of the train, a dot and one of its quantities, for example rotor.speed",
-        ),
-        None => fields.fault_hint(
-            "of",
-            message,
-            format!("`{thing}` has {}", of_thing.join(", ")),
-        ),
+    let near = closest(of, known.channels.iter().map(|channel| channel.name.as_str()));
+    if of.is_empty() || !known.complete && (of_thing.is_empty() || is_at_fault(fields, thing)) {
+        return None;
     }
+    let hint = match near {
+        Some(near) => format!("did you mean `{near}`?"),
+        None if of_thing.is_empty() => "a channel is a thing of the train, a dot and one of its \
+            quantities, for example rotor.speed"
+            .to_owned(),
+        None => format!("`{thing}` has {}", of_thing.join(", ")),
+    };
+    fields.fault_hint("of", format!("no channel is named `{of}`"), hint);
     None
+}
+
+/// True when something of this name could not be read.
+fn is_at_fault(fields: &Fields<'_>, thing: &str) -> bool {
+    fields
+        .faults()
+        .borrow()
+        .iter()
+        .any(|fault| fault.severity.is_error() && fault.path.split('.').nth(1) == Some(thing))
 }
 
 /// A limit in the channel's dimension; nothing is read when the channel is unknown.

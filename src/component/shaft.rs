@@ -143,8 +143,8 @@ mod tests {
     use crate::tree::Node;
     use std::cell::RefCell;
 
-    /// Round bar in torsion: k = G J / L with J = pi D^4 / 32. For D = 60 mm, L = 0.8 m and G = 80 GPa
-    /// J = 1.272345e-6 m4, worked by hand, so k = 127.2345 kN*m/rad.
+    /// Round bar in torsion: `k = G J / L` with `J = pi D^4 / 32`. For 60 mm, 0.8 m and 80 `GPa`
+    /// `J = 1.272345e-6 m4`, worked by hand, so `k = 127.2345 kN*m/rad`.
     #[test]
     fn a_round_bar_has_the_stiffness_of_the_handbook() {
         let text = |value: &str| Node::Text(value.to_owned());

@@ -14,7 +14,7 @@ use nalgebra::{DMatrix, DVector};
 const RANK_TOLERANCE: f64 = 1e-12;
 
 /// Balance that counts as closed, relative to the drive.
-const BALANCE_TOLERANCE: f64 = 1e-9;
+const BALANCE_TOLERANCE: f64 = 1e-12;
 
 /// What a set of elements at rest does.
 #[derive(Clone, Debug, PartialEq)]
@@ -86,20 +86,14 @@ pub fn hold(compliance: &DMatrix<f64>, drive: &[f64], limits: &[f64]) -> Holding
                 weakest = place;
             }
         }
-        let (_, _, first_weakest) = first.get_or_insert_with(|| (torque.clone(), worst, weakest));
+        first.get_or_insert_with(|| (torque.clone(), worst, weakest));
         if worst <= 1.0 {
-            let closes = closes(compliance, drive, &torque);
-            let clamped_any = clamped.contains(&true);
-            if closes {
-                let margin = if clamped_any { f64::min(1.0 - worst, 1.0) } else { 1.0 - worst };
-                return Holding {
-                    torque,
-                    holds: true,
-                    margin: margin.max(0.0),
-                    weakest: Some(weakest),
-                };
+            // Without a clamped element the least-norm solution closes by itself.
+            if !clamped.contains(&true) || closes(compliance, drive, &torque) {
+                // With every element at its limit there is nothing left to spare.
+                let margin = if open.is_empty() { 0.0 } else { 1.0 - worst };
+                return Holding { torque, holds: true, margin, weakest: Some(weakest) };
             }
-            let _ = first_weakest;
             break;
         }
         for &place in &open {

@@ -32,11 +32,14 @@ const NAMED_SECTIONS: [&str; 13] = [
 /// Checks what no single value shows.
 pub(super) fn check(scenario: &Scenario, node: &Node, faults: &mut Diagnostics) {
     let names = check_names(node, faults);
-    let mut check = Check { scenario, names, bodies_known: bodies_known(node, faults), faults };
+    let bodies_known = is_known("bodies", node, faults);
+    let mut check = Check { scenario, names, bodies_known, faults };
     check.train();
     check.acting();
     check.start();
-    signals::check(scenario, faults);
+    if is_known("signals", node, faults) {
+        signals::check(scenario, faults);
+    }
     refuse_not_finite(node, faults);
 }
 
@@ -94,14 +97,14 @@ fn near_name(text: &str) -> Option<String> {
     (is_name(near) && near != GROUND).then(|| near.to_owned())
 }
 
-/// False when the section of bodies itself is at fault or its key misspelt.
-fn bodies_known(root: &Node, faults: &Diagnostics) -> bool {
+/// False when a section itself is at fault or its key misspelt: then nobody misses its entries.
+fn is_known(section: &str, root: &Node, faults: &Diagnostics) -> bool {
     let Node::Map(entries) = root else { return false };
     let misspelt = || {
-        root.get("bodies").is_none()
-            && entries.iter().any(|(key, _)| closest(key, ["bodies"]).is_some())
+        root.get(section).is_none()
+            && entries.iter().any(|(key, _)| closest(key, [section]).is_some())
     };
-    !(faults.iter().any(|fault| fault.path == "bodies") || misspelt())
+    !(faults.iter().any(|fault| fault.severity.is_error() && fault.path == section) || misspelt())
 }
 
 /// NaN and infinity in the parts that are kept as a tree.

@@ -8,8 +8,7 @@ use crate::quantity::Dimension;
 use crate::signal::NamedSignal;
 use crate::tree::{FieldDescription, Fields, Node, Shape};
 
-/// A fault at a path: what is wrong, and what to type instead.
-pub type PathFault = (String, Option<String>);
+pub use crate::component::protection::PathFault;
 
 /// What a path leads to.
 #[derive(Clone, Debug, PartialEq)]
@@ -98,11 +97,20 @@ pub fn root() -> Vec<FieldDescription> {
 /// Looks a path up in a tree and in the description of the file.
 ///
 /// Named things, list entries and choices must be there; an optional key may be absent.
-pub fn find<'n>(root: &'n Node, path: &str) -> Result<Found<'n>, PathFault> {
+pub fn find<'n>(tree: &'n Node, path: &str) -> Result<Found<'n>, PathFault> {
+    find_in(&root(), tree, path)
+}
+
+/// As [`find`], with the description at hand.
+fn find_in<'n>(
+    description: &[FieldDescription],
+    tree: &'n Node,
+    path: &str,
+) -> Result<Found<'n>, PathFault> {
     if path.is_empty() {
         return Err(("the path is empty".to_owned(), None));
     }
-    let mut here = Found::there(Kind::Map(self::root()), root);
+    let mut here = Found::there(Kind::Map(description.to_vec()), tree);
     let mut walked = String::new();
     let mut rest = path;
     while !rest.is_empty() {
@@ -119,6 +127,7 @@ pub fn find<'n>(root: &'n Node, path: &str) -> Result<Found<'n>, PathFault> {
 
 /// The dimension of the signal at a path, as a protection may set it; `None` means any.
 pub(super) fn signal_dimension_at(
+    description: &[FieldDescription],
     tree: &Node,
     signals: &[NamedSignal],
     path: &str,
@@ -128,8 +137,8 @@ pub(super) fn signal_dimension_at(
     {
         return Ok(signal.dimension);
     }
-    match find(tree, path)?.kind {
-        Kind::Signal(dimension) if !is_inside_signal(tree, path) => Ok(dimension),
+    match find_in(description, tree, path)?.kind {
+        Kind::Signal(dimension) if !is_inside_signal(path) => Ok(dimension),
         Kind::Signal(_) => Err((
             format!("`{path}` is a part of a signal"),
             Some("name the whole signal".to_owned()),
@@ -142,10 +151,9 @@ pub(super) fn signal_dimension_at(
 }
 
 /// True when a signal at this path is a member of another one.
-fn is_inside_signal(tree: &Node, path: &str) -> bool {
+fn is_inside_signal(path: &str) -> bool {
     path.rsplit_once('.')
         .is_some_and(|(list, _)| list.ends_with(".sum") || list.ends_with(".product"))
-        && find(tree, path).is_ok()
 }
 
 /// Takes the next step off a path; in free maps a key may hold dots itself.
@@ -324,3 +332,7 @@ fn signal_form(form: &str, dimension: Option<Dimension>) -> Kind {
         _ => Kind::InSignal(dimension),
     }
 }
+
+#[cfg(test)]
+#[path = "describe_tests.rs"]
+mod tests;

@@ -41,7 +41,10 @@ impl Failure {
 pub fn load(path: &Path, sets: &[(String, String)]) -> Result<Loaded, Failure> {
     match Source::open(path) {
         Ok(source) => load_source(source, sets),
-        Err((source, diagnostics)) => Err(Failure { diagnostics, source: Box::new(source) }),
+        Err(unread) => {
+            let (source, diagnostics) = *unread;
+            Err(Failure { diagnostics, source: Box::new(source) })
+        }
     }
 }
 
@@ -75,7 +78,10 @@ fn load_source(mut source: Source, sets: &[(String, String)]) -> Result<Loaded, 
     }
     let mut tables = Tables::new(&source.base);
     match read_node(&node, &mut tables) {
-        Ok((scenario, warnings)) => {
+        Ok((mut scenario, warnings)) => {
+            if scenario.title.is_empty() {
+                scenario.title = source.stem();
+            }
             diagnostics.extend(warnings);
             Ok(Loaded { scenario, node, warnings: diagnostics, source, tables })
         }

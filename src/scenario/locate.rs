@@ -79,10 +79,8 @@ impl Scan<'_> {
                     self.take_value(at, false);
                 }
             }
-            Event::Alias(_) => {
-                if !self.take_key("*", at) {
-                    self.take_value(at, false);
-                }
+            Event::Alias(_) if !self.take_key("*", at) => {
+                self.take_value(at, false);
             }
             Event::MappingStart(_, tag) => {
                 self.refuse_tag(tag.is_some(), at);

@@ -1,6 +1,6 @@
 //! The scenario as typed: sections of named things, values in SI, names checked.
 //!
-//! [`load`] reads a file with all its faults; [`read_node`] reads a patched tree again,
+//! [`load()`] reads a file with all its faults; [`read_node`] reads a patched tree again,
 //! quickly, for studies. The tree ([`crate::tree::Node`]) is the handle by which every
 //! value is reached with its dotted path ([`patch::set`], [`patch::value_at`]).
 

@@ -1,7 +1,9 @@
 //! Values by dotted path: read for studies, set from the command line and by studies.
 
 use super::describe::{Found, Kind, PathFault, find};
+use super::locate::Places;
 use super::yaml;
+use crate::component::channel::dimension_of;
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::quantity::{self, Dimension};
 use crate::tree::Node;
@@ -37,6 +39,7 @@ pub fn value_at(root: &Node, path: &str) -> Result<Value, PathFault> {
         }
         _ => return not_a_number("a map"),
     };
+    let dimension = dimension.or_else(|| dimension_beside(root, path, &found));
     let Some(node) = found.node.filter(|node| **node != Node::Null) else {
         let design = found.default.or_else(|| default_of(root, path, &found));
         return Ok(Value {
@@ -80,6 +83,26 @@ pub fn value_at(root: &Node, path: &str) -> Result<Value, PathFault> {
     }
 }
 
+/// The dimension of a bare number that something beside it tells.
+fn dimension_beside(root: &Node, path: &str, found: &Found<'_>) -> Option<Dimension> {
+    let Some(Node::Number(_)) = found.node else { return None };
+    let (parent, key) = path.rsplit_once('.')?;
+    let beside = |key: &str| match find(root, parent).ok()?.node?.get(key)? {
+        Node::Text(text) => Some(text),
+        _ => None,
+    };
+    match (&found.kind, key) {
+        // A bare share of the value.
+        (Kind::OfChannel, "stays_within") => None,
+        (Kind::OfChannel, _) => dimension_of(beside("of")?),
+        (Kind::Free, "to") => match find(root, beside("set")?).ok()?.kind {
+            Kind::Signal(dimension) => dimension,
+            _ => None,
+        },
+        _ => None,
+    }
+}
+
 /// Defaults that depend on other values.
 fn default_of(root: &Node, path: &str, found: &Found<'_>) -> Option<f64> {
     let (parent, key) = path.rsplit_once('.').unwrap_or(("", path));
@@ -98,7 +121,20 @@ fn default_of(root: &Node, path: &str, found: &Found<'_>) -> Option<f64> {
 
 /// Sets a value as typed on the command line; a path that leads nowhere is a fault.
 pub(super) fn set_typed(root: &mut Node, path: &str, text: &str, faults: &mut Diagnostics) {
-    if let Err((message, hint)) = set(root, path, yaml::parse_value(text)) {
+    let mut told = Diagnostics::new();
+    let value = match yaml::parse_value(text) {
+        Ok(value) => {
+            Places::scan(text, &mut told);
+            value
+        }
+        Err(fault) => {
+            told.push(fault);
+            Node::Null
+        }
+    };
+    if let Some(fault) = told.into_iter().next() {
+        faults.add(Severity::Error, path, fault.message, fault.hint);
+    } else if let Err((message, hint)) = set(root, path, value) {
         faults.add(Severity::Error, path, message, hint);
     }
 }
@@ -167,3 +203,7 @@ fn write(node: &mut Node, path: &str, value: Node) -> bool {
         _ => false,
     }
 }
+
+#[cfg(test)]
+#[path = "patch_tests.rs"]
+mod tests;

@@ -4,7 +4,7 @@ use super::describe::signal_dimension_at;
 use super::{Display, Method, Scenario, Solver, Start};
 use crate::component::body::Body;
 use crate::component::brake::Brake;
-use crate::component::channel::{self, Section, Train};
+use crate::component::channel::{self, Known, Section, Train};
 use crate::component::gear_pair::GearPair;
 use crate::component::load::Load;
 use crate::component::magnetic_gear::{MagneticCoupling, MagneticGear};
@@ -13,10 +13,12 @@ use crate::component::planetary::PlanetaryGear;
 use crate::component::protection::{Protection, Surroundings};
 use crate::component::requirement::Requirement;
 use crate::component::shaft::Shaft;
+use crate::diagnostic::Diagnostics;
 use crate::quantity::{self, Dimension};
 use crate::signal::NamedSignal;
 use crate::signal::read::read_named_signal;
 use crate::tree::{Fields, Node, Range, Shape};
+use std::cell::{OnceCell, RefCell};
 
 /// Rows of the series beyond this are a mistake.
 const MOST_ROWS: f64 = 1e7;
@@ -41,7 +43,7 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         "start",
         &["as_given", "steady"],
         false,
-        "as_given: speeds as given, shafts unloaded; steady: the operating point nearest to them.",
+        "Speeds as given and shafts unloaded (as_given), or the operating point near them (steady).",
     );
     let solver = fields.group_optional("solver", "The integrator.", read_solver);
 
@@ -58,10 +60,13 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
     let planetary_gears =
         fields.section("planetary_gears", "Rigid planetary sets.", PlanetaryGear::read);
     let motors = fields.section("motors", "Motors and generators.", |motor| {
-        Motor::read(&motor.own_name().to_owned(), motor)
+        let name = motor.own_name().to_owned();
+        Motor::read(&name, motor)
     });
-    let loads =
-        fields.section("loads", "Loads.", |load| Load::read(&load.own_name().to_owned(), load));
+    let loads = fields.section("loads", "Loads.", |load| {
+        let name = load.own_name().to_owned();
+        Load::read(&name, load)
+    });
     let brakes = fields.section("brakes", "Brakes pressed by a signal.", Brake::read);
     let signals = read_signals(fields);
     let train = Train {
@@ -76,10 +81,24 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         brakes: &brakes,
     };
     let channels = channel::list(&train, &section_order(fields));
+    let sound = !fields.faults().borrow().has_errors();
+    let known = Known {
+        channels: &channels,
+        complete: sound && !fields.has_unknown(&["protections", "requirements", "studies"]),
+    };
+    let faults = fields.faults();
     let protections = {
+        let description = OnceCell::new();
         let around = Surroundings {
-            channels: &channels,
-            signal_at: &|path| signal_dimension_at(root, &signals, path),
+            channels: known,
+            signal_at: &|path| {
+                // What could not be read is not missed here as well.
+                if !known.complete && !is_readable(path, root, faults) {
+                    return Ok(None);
+                }
+                let description = description.get_or_init(super::describe::root);
+                signal_dimension_at(description, root, &signals, path)
+            },
         };
         fields.section("protections", "Logic that acts once during the run.", |protection| {
             Protection::read(protection, &around)
@@ -87,7 +106,7 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
     };
     let requirements =
         fields.section("requirements", "What the run is judged by.", |requirement| {
-            Requirement::read(requirement, &channels)
+            Requirement::read(requirement, known)
         });
     let studies = read_studies(fields);
     Scenario {
@@ -128,6 +147,17 @@ fn read_version(fields: &mut Fields<'_>) {
         ),
         Some(_) => fields.fault("lodeshaft", "the version of the file format is a number: 1"),
     }
+}
+
+/// True when the section of a path stands in the file and its thing has no fault.
+fn is_readable(path: &str, root: &Node, faults: &RefCell<Diagnostics>) -> bool {
+    let mut steps = path.split('.');
+    let (section, thing) = (steps.next().unwrap_or_default(), steps.next());
+    root.get(section).is_some()
+        && !faults.borrow().iter().any(|fault| {
+            let mut steps = fault.path.split('.');
+            fault.severity.is_error() && steps.next() == Some(section) && steps.next() == thing
+        })
 }
 
 /// The sections with channels as they follow each other in the file.
@@ -226,7 +256,7 @@ fn read_solver(fields: &mut Fields<'_>) -> Solver {
         "method",
         &["dopri5", "dop853", "rk4"],
         false,
-        "dopri5 (default), dop853, or rk4 with a fixed step.",
+        "Method: dopri5, dop853, or rk4 with a fixed step.",
     );
     let tolerance = fields.quantity_or(
         "tolerance",

@@ -30,7 +30,7 @@ pub struct Source {
 
 impl Source {
     /// Reads a file, or standard input for `-`.
-    pub fn open(path: &Path) -> Result<Self, (Self, Diagnostics)> {
+    pub fn open(path: &Path) -> Result<Self, Box<(Self, Diagnostics)>> {
         let standard_input = path == Path::new("-");
         let mut source = Self {
             name: if standard_input {
@@ -74,7 +74,7 @@ impl Source {
         };
         let mut faults = Diagnostics::new();
         faults.error("", fault);
-        Err((source, faults))
+        Err(Box::new((source, faults)))
     }
 
     /// A source from a text in memory.
@@ -85,6 +85,13 @@ impl Source {
             text: text.strip_prefix('\u{feff}').unwrap_or(text).to_owned(),
             ..Self::default()
         }
+    }
+
+    /// The name of the file without its folder and ending: the title of a case that has none.
+    pub fn stem(&self) -> String {
+        Path::new(&self.name)
+            .file_stem()
+            .map_or_else(|| self.name.clone(), |stem| stem.to_string_lossy().into_owned())
     }
 
     /// Reads the text into the value tree; places are known from then on.

@@ -18,9 +18,14 @@ pub fn parse(text: &str) -> Result<Node, Diagnostic> {
     }
 }
 
-/// Reads a value typed on the command line; a text that is no YAML is taken as plain text.
-pub fn parse_value(text: &str) -> Node {
-    parse(text).unwrap_or_else(|_| Node::Text(text.to_owned()))
+/// Reads a value typed on the command line: a map or list in brackets, else a number or a text.
+pub fn parse_value(text: &str) -> Result<Node, Diagnostic> {
+    let bracketed = text.trim_start().starts_with(['{', '[']);
+    match parse(text) {
+        Err(fault) if bracketed => Err(fault),
+        Ok(Node::Map(_) | Node::List(_)) | Err(_) if !bracketed => Ok(Node::Text(text.to_owned())),
+        other => other,
+    }
 }
 
 fn fault(error: &serde_yaml::Error) -> Diagnostic {

@@ -47,6 +47,7 @@ pub struct Run<'e, 'a> {
     last_steps: [f64; 2],
     caps: BTreeMap<Mode, f64>,
     changed: bool,
+    judge_rest: bool,
 }
 
 /// Why no run took place.
@@ -97,6 +98,7 @@ pub fn run(equations: &Equations, mut options: RunOptions<'_>) -> Result<RunResu
         last_steps: [0.0; 2],
         caps: BTreeMap::new(),
         changed: true,
+        judge_rest: true,
     };
     run.go(&mut options);
     Ok(outcome::collect(run, stored))
@@ -133,7 +135,8 @@ impl Run<'_, '_> {
             let end = self.next_stop(duration);
             self.wrap_phases();
             rest::presence(equations, &mut self.mode, self.time, end, &self.state, &self.overrides);
-            if self.changed || self.any_at_rest() {
+            // An event has already judged its elements: judging them again could stick what has just let go.
+            if std::mem::take(&mut self.judge_rest) {
                 let events = if first { None } else { Some(&mut self.observer.events) };
                 rest::resolve(
                     equations,
@@ -182,8 +185,11 @@ impl Run<'_, '_> {
             }
             if acted.signals {
                 self.changed = true;
+                self.judge_rest = true;
                 continue;
             }
+            // A protection that has begun to wait may be due before the next kink.
+            let end = end.min(self.next_stop(duration));
             if let Some(guard) = self.tripped_at_start(&assembly) {
                 self.apply(guard, end);
                 continue;
@@ -338,8 +344,9 @@ impl Run<'_, '_> {
             self.failure = Some(format!("interrupted at {} s", self.time));
             return true;
         }
-        if let Some(cut) = cut {
-            self.apply(cut.guard, end);
+        match cut {
+            Some(cut) => self.apply(cut.guard, end),
+            None => self.judge_rest = true,
         }
         false
     }

@@ -104,7 +104,7 @@ fn friction(fields: &mut Fields<'_>) -> LoadLaw {
         Dimension::Torque,
         Range::NotNegative,
         sliding,
-        "torque that breaks it away, `sliding` or more; default `sliding`",
+        "Torque that breaks it away, `sliding` or more; default `sliding`.",
     );
     if breakaway < sliding {
         fields.fault("breakaway", "`breakaway` must not be below `sliding`");

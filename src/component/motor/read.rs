@@ -168,7 +168,7 @@ fn speed_loop(fields: &mut Fields<'_>) -> MotorLaw {
             Dimension::Torque,
             "The command stays within plus and minus this.",
         ),
-        gain: positive(fields, "gain", Dimension::Damping, "torque per speed error"),
+        gain: positive(fields, "gain", Dimension::Damping, "Torque per speed error."),
         integral_time: fields.quantity_optional(
             "integral_time",
             Dimension::Time,

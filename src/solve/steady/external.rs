@@ -1,0 +1,164 @@
+//! Torques on the bodies of a train that turns as one, at given speeds.
+
+use crate::component::law::Law;
+use crate::equations::mode::REST;
+use crate::equations::{Equations, Friction, Owner, Shape, Sliding, Target, Term};
+use crate::equations::frame::sliding_of;
+use crate::signal::course::Overrides;
+use nalgebra::DVector;
+
+/// Evaluates the external torques at one instant.
+pub struct External<'a> {
+    /// The equations.
+    pub equations: &'a Equations,
+    /// Instant at which signals are read, s.
+    pub time: f64,
+    /// Signals taken over.
+    pub overrides: &'a Overrides,
+}
+
+/// How a controller's command is fixed while a balance is sought.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Command {
+    /// By its law; with an integral part it stands at the limit on the side of its error.
+    ByLaw,
+    /// At this torque, N*m.
+    Fixed(f64),
+}
+
+impl External<'_> {
+    /// Generalised torque on the independent speeds, and the sum of magnitudes at work.
+    pub fn torque(&self, speeds: &DVector<f64>, commands: &[Command]) -> (DVector<f64>, f64) {
+        let mut sum = DVector::zeros(speeds.len());
+        let mut at_work = 0.0;
+        let mut apply = |row: &[(usize, f64)], value: f64| {
+            let dense = self.equations.model.reduction.dense(row);
+            at_work += value.abs() * dense.amax();
+            sum.axpy(value, &dense, 1.0);
+        };
+        let state = self.scaled(speeds);
+        for (index, term) in self.equations.terms.iter().enumerate() {
+            let Target::Torque(direction) = &term.target else { continue };
+            if let Owner::Magnet(_) = term.owner {
+                continue;
+            }
+            let controller =
+                self.equations.controllers.iter().position(|controller| self.drives(controller, index));
+            let value = match controller {
+                Some(controller) => self.command(controller, speeds, commands[controller]),
+                None => self.law(term, &state),
+            };
+            apply(direction, value * self.factor(term));
+        }
+        for damper in &self.equations.dampers {
+            let speed = self.equations.model.reduction.dense(&damper.row).dot(speeds);
+            apply(&damper.row, -damper.coefficient * speed);
+        }
+        for friction in &self.equations.frictions {
+            let speed = self.relative(friction, speeds);
+            if speed.abs() > REST * friction.speed_size {
+                apply(&friction.row, -speed.signum() * self.sliding(friction, speed.abs()));
+            }
+        }
+        (sum, at_work)
+    }
+
+    /// The term that puts a controller's torque on the train.
+    fn drives(&self, controller: &crate::equations::Controller, term: usize) -> bool {
+        match controller.torque_state {
+            None => controller.command == term,
+            Some(state) => {
+                let term = &self.equations.terms[term];
+                term.shape == Shape::Linear
+                    && term.owner == Owner::Motor(controller.motor)
+                    && term.input.iter().any(|(place, _)| *place == state)
+            }
+        }
+    }
+
+    /// The torque that a controller asks for, before its scale.
+    pub fn command(&self, index: usize, speeds: &DVector<f64>, command: Command) -> f64 {
+        let controller = &self.equations.controllers[index];
+        match command {
+            Command::Fixed(torque) => torque,
+            Command::ByLaw => {
+                let error = self.error(index, speeds);
+                if controller.integral.is_some() {
+                    if error == 0.0 { 0.0 } else { controller.limit.copysign(error) }
+                } else {
+                    (controller.gain * error).clamp(-controller.limit, controller.limit)
+                }
+            }
+        }
+    }
+
+    /// Speed asked for minus speed, in the controller's own sense, rad/s.
+    pub fn error(&self, index: usize, speeds: &DVector<f64>) -> f64 {
+        let controller = &self.equations.controllers[index];
+        let command = &self.equations.terms[controller.command];
+        let state = self.scaled(speeds);
+        // The command's input is gain*(ref - w) + I with I at zero here.
+        self.input(command, &state) / controller.gain
+    }
+
+    /// The scale on a controller's torque.
+    pub fn scale(&self, index: usize) -> f64 {
+        self.equations.controllers[index].scale.map_or(1.0, |slot| self.signal(slot))
+    }
+
+    /// Relative speed of a friction element, rad/s.
+    pub fn relative(&self, friction: &Friction, speeds: &DVector<f64>) -> f64 {
+        self.equations.model.reduction.dense(&friction.row).dot(speeds)
+    }
+
+    /// Breakaway torque of a friction element, N*m.
+    pub fn breakaway(&self, friction: &Friction) -> f64 {
+        friction.breakaway * self.slots(&friction.factor.slots)
+    }
+
+    fn sliding(&self, friction: &Friction, speed: f64) -> f64 {
+        let torque = match &friction.sliding {
+            Sliding::Constant(torque) => *torque,
+            Sliding::Curve(law) => sliding_of(law, speed),
+        };
+        torque * self.slots(&friction.factor.slots)
+    }
+
+    fn scaled(&self, speeds: &DVector<f64>) -> Vec<f64> {
+        let mut state = vec![0.0; self.equations.size];
+        for place in 0..self.equations.speeds {
+            state[place] = speeds[place] / self.equations.scale[place];
+        }
+        state
+    }
+
+    fn law(&self, term: &Term, state: &[f64]) -> f64 {
+        let input = self.input(term, state);
+        match &term.shape {
+            Shape::Linear => input,
+            // Torques over an angle count by their mean over a turn, which is zero.
+            Shape::Law(Law::Cogging { .. } | Law::Magnet(_)) => 0.0,
+            Shape::Law(law) => {
+                let parameters = term.parameters.map(|slot| slot.map_or(0.0, |slot| self.signal(slot)));
+                law.value(input, parameters, law.piece_at(input))
+            }
+        }
+    }
+
+    fn input(&self, term: &Term, state: &[f64]) -> f64 {
+        let offset = term.offset.map_or(0.0, |(factor, slot)| factor * self.signal(slot));
+        crate::equations::dot(&term.input, state) + offset
+    }
+
+    fn factor(&self, term: &Term) -> f64 {
+        self.slots(&term.factor.slots)
+    }
+
+    fn slots(&self, slots: &[(crate::signal::course::SlotId, i32)]) -> f64 {
+        slots.iter().fold(1.0, |value, &(slot, power)| value * self.signal(slot).powi(power))
+    }
+
+    fn signal(&self, slot: crate::signal::course::SlotId) -> f64 {
+        self.equations.bank.value(slot, self.time, self.overrides)
+    }
+}

@@ -1,0 +1,138 @@
+//! The extreme gust and the axial rotor.
+//!
+//! Gust: IEC 61400-1 edition 3, extreme operating gust (formulas from memory):
+//!
+//! ```text
+//! sigma = I (0.75 V + 5.6),  I = 0.16, 0.14, 0.12 for classes A, B, C
+//! Vgust = min(1.35 (0.8 * 1.4 Vref - V), 3.3 sigma/(1 + 0.1 D/L)),  L = 0.7 z up to 60 m, else 42 m
+//! V(t)  = V - 0.37 Vgust sin(3 pi t/T)(1 - cos(2 pi t/T)),  T = 10.5 s
+//! ```
+
+use super::helper::{head, near, run_well, same};
+use std::f64::consts::PI;
+
+/// A rotor too heavy to change its speed in a flow.
+fn rotor(duration: f64, step: f64, speed: f64, radius: f64, flow: &str, pitch: &str) -> String {
+    format!(
+        "{}bodies:\n  hub: {{ inertia: 1e15 kg*m2, speed: {speed} rad/s }}\n\
+         loads:\n  blades: {{ body: hub, law: {{ axial_rotor: {{ radius: {radius} m, density: 1.225 kg/m3, \
+         flow: {flow}, pitch: {pitch} }} }} }}\n",
+        head(duration, step, 1e-8),
+    )
+}
+
+/// A gust that starts at 1 s.
+fn gust(hub_wind: f64, diameter: f64, height: f64, turbine: &str, turbulence: &str) -> String {
+    format!(
+        "{{ extreme_gust: {{ start: 1 s, hub_wind: {hub_wind} m/s, rotor_diameter: {diameter} m, \
+         hub_height: {height} m, turbine_class: {turbine}, turbulence_class: {turbulence} }} }}"
+    )
+}
+
+/// Turbine class, turbulence class, wind at the hub and magnitude of the gust for D = z = 80 m.
+const GUSTS: [(&str, &str, f64, f64); 7] = [
+    ("I", "A", 12.0, 6.475392),
+    ("II", "A", 10.0, 5.810112),
+    ("II", "A", 12.0, 6.475392),
+    ("II", "A", 14.0, 7.140672),
+    ("II", "A", 25.0, 10.799712),
+    ("II", "B", 12.0, 5.665968),
+    ("III", "C", 12.0, 4.856544),
+];
+
+#[test]
+fn extreme_gust_has_the_magnitude_of_each_class() {
+    for (turbine, turbulence, wind, magnitude) in GUSTS {
+        let scenario =
+            rotor(13.0, 0.25, 1.5, 40.0, &gust(wind, 80.0, 80.0, turbine, turbulence), "0 deg");
+        let series = run_well(&scenario).series();
+        same(series.at("blades.flow", 6.25), wind + 0.74 * magnitude, 1e-12);
+    }
+    // The other branch, 1.35 (Ve1 - V), counts only near the extreme wind (artificial case).
+    let scenario = rotor(13.0, 0.25, 1.5, 15.0, &gust(40.0, 30.0, 40.0, "III", "A"), "0 deg");
+    same(run_well(&scenario).series().at("blades.flow", 6.25), 40.0 + 0.74 * 2.7, 1e-12);
+}
+
+#[test]
+fn extreme_gust_has_the_shape_of_the_standard() {
+    let scenario = rotor(13.0, 0.25, 1.5, 40.0, &gust(12.0, 80.0, 80.0, "II", "A"), "0 deg");
+    let outcome = run_well(&scenario);
+    let series = outcome.series();
+    for (time, speed) in [
+        (2.0, 10.517547730511),
+        (3.0, 10.729140712415),
+        (4.0, 13.801576566917),
+        (6.0, 15.560868594782),
+        (8.0, 10.2667972069),
+    ] {
+        same(series.at("blades.flow", 1.0 + time), speed, 1e-12);
+    }
+    for calm in [0.0, 0.5, 1.0, 11.5, 12.0, 13.0] {
+        same(series.at("blades.flow", calm), 12.0, 1e-12);
+    }
+    // Extremes of the continuous signal: dip 0.268059829143 Vgust at T acos(sqrt 0.55)/pi.
+    same(outcome.channel("blades.flow", "min"), 10.264207526848, 1e-9);
+    same(outcome.channel("blades.flow", "max"), 16.79179008, 1e-9);
+    near(outcome.channel("blades.flow", "max_time"), 1.0 + 5.25, 1e-4);
+    let dip = outcome.channel("blades.flow", "min_time") - 1.0;
+    let dip = dip.min(10.5 - dip);
+    near(dip, 2.4576075277464, 1e-4);
+}
+
+/// Slootweg, Polinder and Kling, IEEE Trans. Power Systems 18(1) (2003) 144 (coefficients read
+/// in a published code that cites it), worked out independently: tip speed ratio, pitch in
+/// degrees, power coefficient.
+const COEFFICIENTS: [(f64, f64, f64); 5] = [
+    (6.907744908695644, 0.0, 0.4411993813370081),
+    (8.0, 0.0, 0.40388290806087),
+    (6.0, 5.0, 0.30442211986914),
+    (4.0, 0.0, 0.18685480764346),
+    (10.0, 10.0, -0.43198069042885),
+];
+
+#[test]
+fn rotor_delivers_the_published_power_coefficient() {
+    for (ratio, pitch, coefficient) in COEFFICIENTS {
+        // Radius 10 m in 10 m/s: the tip speed ratio is the speed in rad/s.
+        let scenario = rotor(1.0, 0.5, ratio, 10.0, "10 m/s", &format!("{pitch} deg"));
+        let series = run_well(&scenario).series();
+        same(series.at("blades.tip_speed_ratio", 0.0), ratio, 1e-12);
+        same(series.at("blades.power_coefficient", 0.0), coefficient, 1e-12);
+        // Torque = density pi R^3 V^2 Cp/(2 lambda), power = torque * speed.
+        let power = 0.5 * 1.225 * PI * 100.0 * 1000.0 * coefficient;
+        same(series.at("blades.torque", 0.0), power / ratio, 1e-12);
+        same(series.at("blades.power", 0.0), power, 1e-12);
+    }
+}
+
+#[test]
+fn rotor_without_flow_gives_nothing() {
+    for flow in ["0 m/s", "-3 m/s"] {
+        let outcome = run_well(&rotor(1.0, 0.5, 2.0, 10.0, flow, "0 deg"));
+        let series = outcome.series();
+        for channel in ["blades.torque", "blades.tip_speed_ratio", "blades.power_coefficient"] {
+            assert!(series.column(channel).iter().all(|value| value.abs() < 1e-300), "{channel}");
+        }
+        assert!(!outcome.at(&["warnings"]).as_array().unwrap().is_empty(), "no warning");
+    }
+}
+
+#[test]
+fn optimal_power_generator_takes_the_square_of_the_speed() {
+    // k = density pi R^5 Cp/(2 lambda^3) holds the rotor at its best tip speed ratio: steady at
+    // lambda 6.9077449087 in any wind (closed form).
+    let (ratio, coefficient) = (6.907744908695644_f64, 0.4411993813370081);
+    let k = 0.5 * 1.225 * PI * 10.0_f64.powi(5) * coefficient / ratio.powi(3);
+    let scenario = format!(
+        "{}start: steady\nbodies:\n  hub: {{ inertia: 5000 kg*m2, speed: 5 rad/s }}\n\
+         motors:\n  generator: {{ body: hub, law: {{ optimal_power: {{ coefficient: {k} N*m*s2/rad2, torque_limit: 100 kN*m }} }} }}\n\
+         loads:\n  blades: {{ body: hub, law: {{ axial_rotor: {{ radius: 10 m, density: 1.225 kg/m3, flow: 8 m/s, pitch: 0 deg }} }} }}\n",
+        head(1.0, 0.5, 1e-10),
+    );
+    let series = run_well(&scenario).series();
+    for time in [0.0, 1.0] {
+        same(series.at("blades.tip_speed_ratio", time), ratio, 1e-7);
+        same(series.at("blades.power_coefficient", time), coefficient, 1e-9);
+        same(series.at("generator.torque", time), -k * (0.8 * ratio).powi(2), 1e-7);
+    }
+}
