@@ -164,7 +164,8 @@ pub fn assemble(
         let moving =
             term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
         for slot in moving {
-            varies |= equations.bank.constant_on(slot, start, end, overrides).is_none();
+            // The steady path leaves offsets and parameters out: right only where they are zero.
+            varies |= equations.bank.constant_on(slot, start, end, overrides) != Some(0.0);
         }
         let column = match &term.target {
             Target::Torque(direction) => parts.column(direction),
