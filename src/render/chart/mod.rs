@@ -1,0 +1,30 @@
+//! Charts: plain data becomes drawings, drawings become SVG and PNG.
+//!
+//! ```text
+//! input structs -> run / torque_speed / swing / map / ... -> Drawing -> svg, png
+//! ```
+//!
+//! plotters is the canvas for both formats; axes, marks and labels are our own (`pen`, `axes`,
+//! `marks`, `labels`). Colour tells the side of the gear and lost grip, nothing else (`palette`).
+
+pub mod axes;
+pub mod clip;
+pub mod curve;
+pub mod drawing;
+pub mod font;
+pub mod labels;
+pub mod marks;
+pub mod number;
+pub mod palette;
+pub mod pen;
+pub mod pick;
+pub mod pick_rows;
+pub mod png;
+mod raster;
+pub mod run;
+pub mod run_input;
+pub mod strip;
+pub mod svg;
+pub mod ticks;
+pub mod train;
+pub mod units;

@@ -1,0 +1,9 @@
+//! Charts drawn on synthetic data: their structure is checked, and with `CHART_GALLERY=DIR` set
+//! every picture is written there to be looked at.
+
+#[cfg(test)]
+mod gallery;
+#[cfg(test)]
+mod pendulum;
+#[cfg(test)]
+mod run;
