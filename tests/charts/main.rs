@@ -6,4 +6,6 @@ mod gallery;
 #[cfg(test)]
 mod pendulum;
 #[cfg(test)]
+mod planes;
+#[cfg(test)]
 mod run;

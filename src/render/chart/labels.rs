@@ -42,7 +42,8 @@ impl EndLabel {
 pub fn spread(wishes: &[f64], low: f64, high: f64) -> Vec<f64> {
     let mut order: Vec<usize> = (0..wishes.len()).collect();
     let wish = |place: usize| wishes.get(place).copied().unwrap_or(0.0);
-    order.sort_by(|one, two| wish(*one).total_cmp(&wish(*two)));
+    // Ends that nearly coincide keep the order in which they were named.
+    order.sort_by(|one, two| (wish(*one) / 2.0).round().total_cmp(&(wish(*two) / 2.0).round()));
     // Blocks of labels that touch: the sum of their shifted wishes, and how many they are.
     let mut blocks: Vec<(f64, usize)> = Vec::new();
     let start = |(sum, count): (f64, usize)| {
@@ -123,7 +124,9 @@ mod tests {
 
     #[test]
     fn order_of_the_wishes_is_kept() {
-        let heights = spread(&[51.0, 50.0], 0.0, 100.0);
+        let heights = spread(&[55.0, 50.0], 0.0, 100.0);
         assert!(heights[1] < heights[0]);
+        let heights = spread(&[50.2, 50.0], 0.0, 100.0);
+        assert!(heights[0] < heights[1], "what nearly coincides keeps the order of naming");
     }
 }

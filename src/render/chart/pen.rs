@@ -137,6 +137,12 @@ impl Pen {
         self.text(at, text, style);
     }
 
+    /// Adds all marks of another pen.
+    pub fn append(&mut self, other: Self) {
+        self.marks.extend(other.marks);
+        self.open += other.open;
+    }
+
     /// Hands the finished drawing over.
     pub fn finish(mut self, id: &str, title: &str, width: f64, height: f64) -> Drawing {
         while self.open > 0 {

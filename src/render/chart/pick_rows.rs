@@ -60,13 +60,12 @@ fn gear_rows(result: &RunResult, gear: &GearResult, several: bool, window: [f64;
     };
     let slips = slips(gear);
     let seen = slips.iter().any(|slip| inside(slip.0, window));
-    let whole = window[0] <= 0.0 && window[1] >= result.end_time;
-    if seen || (whole && !slips.is_empty()) {
+    if seen {
         rows.push(Row::Slips {
             label: named("Slips"),
             slips,
             in_step: gear.resynchronised_at,
-            note: note(gear, window, whole),
+            notes: notes(gear, window),
         });
     }
     let bars = spans(result, &gear.name, EventKind::PastPeak, EventKind::ShortOfPeak);
@@ -76,17 +75,11 @@ fn gear_rows(result: &RunResult, gear: &GearResult, several: bool, window: [f64;
     rows
 }
 
-/// One sentence for all slips: how many, which way, and how it ended.
-fn note(gear: &GearResult, window: [f64; 2], whole: bool) -> String {
-    let ending = match (gear.resynchronised_at, gear.state_at_end) {
-        (Some(time), _) if whole => format!("in step again at {}", time_words(time, window)),
-        (Some(time), _) if inside(time, window) => {
-            return format!("in step {}", time_words(time, window));
-        }
-        (Some(_), _) => return String::new(),
-        (None, GearState::Slipping) => "still slipping at the end".to_owned(),
-        (None, _) => "not decided at the end".to_owned(),
-    };
+/// How many slips, which way, and how it ended; shorter words follow for want of room.
+///
+/// A window that does not hold all slips tells only what it shows.
+fn notes(gear: &GearResult, window: [f64; 2]) -> Vec<String> {
+    let all = gear.slip_events.iter().all(|slip| inside(slip.time, window));
     let forward = (i64::from(gear.slips) + i64::from(gear.net_slips)) / 2;
     let backward = i64::from(gear.slips) - forward;
     let word = if gear.slips == 1 { "slip" } else { "slips" };
@@ -95,7 +88,18 @@ fn note(gear: &GearResult, window: [f64; 2], whole: bool) -> String {
         (0, _) => format!("{backward} {word} backward"),
         _ => format!("{forward} {word} forward and {backward} back"),
     };
-    if whole { format!("{ways}, {ending}") } else { ending }
+    let (ending, short) = match (gear.resynchronised_at, gear.state_at_end) {
+        (Some(time), _) if inside(time, window) => {
+            let time = time_words(time, window);
+            (format!("in step again at {time}"), format!("in step {time}"))
+        }
+        (Some(_), _) => return if all { vec![ways] } else { Vec::new() },
+        (None, GearState::Slipping) => {
+            ("still slipping at the end".to_owned(), "still slipping".to_owned())
+        }
+        (None, _) => ("not decided at the end".to_owned(), "not decided".to_owned()),
+    };
+    if all { vec![format!("{ways}, {ending}"), ways, short] } else { vec![short] }
 }
 
 /// Spans between two kinds of events of one thing; an open one lasts to the end of the run.

@@ -222,7 +222,8 @@ fn encode(
     let mut encoder = png::Encoder::new(&mut bytes, width as u32, height as u32);
     encoder.set_color(png::ColorType::Rgb);
     encoder.set_depth(png::BitDepth::Eight);
-    encoder.set_filter(png::FilterType::Up);
+    encoder.set_compression(png::Compression::Default);
+    encoder.set_filter(png::FilterType::NoFilter);
     // 96 CSS pixels to the inch of 0.0254 m: text programs lay it out at its true size.
     let per_metre = (96.0 * scale / 0.0254).round() as u32;
     encoder.set_pixel_dims(Some(png::PixelDimensions {

@@ -23,12 +23,12 @@ pub fn run_chart(input: &RunChart) -> Drawing {
     let mut pen = Pen::new();
     let mut top = TOP;
     for (panel, axes) in input.panels.iter().zip(&layout.axes) {
-        let frame = Frame { left: axes::LEFT, top, width: layout.width, height: layout.panel };
+        let frame = Frame { left: layout.left, top, width: layout.width, height: layout.panel };
         let axes = Axes { frame, ..*axes };
         draw_panel(&mut pen, input, panel, &axes, &clock, layout.margin);
         top += layout.panel + GAP;
     }
-    let frame = Frame { left: axes::LEFT, top, width: layout.width, height: layout.strip };
+    let frame = Frame { left: layout.left, top, width: layout.width, height: layout.strip };
     let axes = Axes { frame, across: clock.window, up: [0.0, 1.0] };
     pen.open(Group::class("x"));
     axes.upright_grid(&mut pen, &clock.ticks);
@@ -39,7 +39,7 @@ pub fn run_chart(input: &RunChart) -> Drawing {
     pen.open(Group::class("x").id("time"));
     clock.numbers(&mut pen, &axes);
     pen.close();
-    let height = top + layout.strip + FOOT;
+    let height = (top + layout.strip + FOOT).ceil();
     pen.finish(&input.id, &input.title, input.sheet.width, height)
 }
 
@@ -73,6 +73,7 @@ impl Clock {
 }
 
 struct Layout {
+    left: f64,
     width: f64,
     margin: f64,
     panel: f64,
@@ -92,14 +93,15 @@ impl Layout {
         };
         let labels: Vec<EndLabel> = input.panels.iter().flat_map(all_labels).collect();
         let margin = labels::margin(labels.iter(), axes::RIGHT, sheet.width);
-        let width = sheet.width - axes::LEFT - margin;
-        let frame = Frame { left: axes::LEFT, top: 0.0, width, height: panel };
+        let left = strip::margin(&input.rows);
+        let width = sheet.width - left - margin;
+        let frame = Frame { left, top: 0.0, width, height: panel };
         let axes = input
             .panels
             .iter()
             .map(|each| Axes { frame, across: input.window, up: range(each, panel).0 })
             .collect();
-        Self { width, margin, panel, strip, axes }
+        Self { left, width, margin, panel, strip, axes }
     }
 }
 

@@ -144,8 +144,8 @@ pub enum Row {
         slips: Vec<(f64, i32)>,
         /// Time of falling into step for good, s.
         in_step: Option<f64>,
-        /// Words right of the last mark.
-        note: String,
+        /// Words beside the marks, longest first; the first that has room is set.
+        notes: Vec<String>,
     },
     /// Spans of time.
     Bars {

@@ -20,6 +20,17 @@ pub fn height(rows: &[Row]) -> f64 {
     (PITCH * rows.len() as f64 + 5.0).max(LEAST.min(PITCH * 2.0 + 5.0))
 }
 
+/// Left margin that the names of the rows need, up to a fifth of the usual sheet.
+pub fn margin(rows: &[Row]) -> f64 {
+    rows.iter()
+        .map(|row| match row {
+            Row::Slips { label, .. } | Row::Bars { label, .. } | Row::Flags { label, .. } => label,
+        })
+        .map(|label| 9.0 + 1.03 * font::width(label, pen::SMALL, false))
+        .fold(axes::LEFT, f64::max)
+        .min(144.0)
+}
+
 /// Draws heading and rows; the frame is that of the strip.
 pub fn draw(pen: &mut Pen, axes: &Axes, rows: &[Row]) {
     let frame = axes.frame;
@@ -32,9 +43,9 @@ pub fn draw(pen: &mut Pen, axes: &Axes, rows: &[Row]) {
     for (place, row) in rows.iter().enumerate() {
         let middle = frame.top + 2.0 + PITCH * (place as f64 + 0.5);
         match row {
-            Row::Slips { label, slips, in_step, note } => {
+            Row::Slips { label, slips, in_step, notes } => {
                 name(pen, &frame, middle, label);
-                draw_slips(pen, axes, middle, slips, *in_step, note);
+                draw_slips(pen, axes, middle, slips, *in_step, notes);
             }
             Row::Bars { label, kind, bars } => {
                 name(pen, &frame, middle, label);
@@ -85,7 +96,7 @@ fn draw_slips(
     middle: f64,
     slips: &[(f64, i32)],
     in_step: Option<f64>,
-    note: &str,
+    notes: &[String],
 ) {
     slip_marks(pen, axes, slips, |_| middle);
     let last =
@@ -100,39 +111,26 @@ fn draw_slips(
         pen.close();
         end = x + 4.0;
     }
-    if note.is_empty() {
-        return;
-    }
     let time = in_step.unwrap_or(last);
     pen.open(Group::class("m").with("t", time.to_string()).with("kind", "note"));
-    let wide = font::width(note, pen::LABEL, false);
-    let style = pen::label(Ink::Ink, Anchor::Start);
-    if end + 5.0 + wide <= axes.frame.right() {
-        pen.text_on_plate([end + 5.0, middle + 3.9], note, style);
-    } else {
-        let first = slips.iter().map(|slip| slip.0).find(|time| seen(axes, *time));
-        let x = first.map_or(axes.frame.right(), |time| axes.x(time) - 7.0);
-        if x - wide >= axes.frame.left {
-            let style = TextStyle { anchor: Anchor::End, ..style };
-            pen.text_on_plate([x, middle + 3.9], note, style);
+    let first = slips.iter().map(|slip| slip.0).find(|time| seen(axes, *time));
+    let start = first.map_or(axes.frame.left, |time| axes.x(time) - 7.0);
+    for note in notes {
+        let wide = font::width(note, pen::LABEL, false);
+        let (x, anchor) = if end + 5.0 + wide <= axes.frame.right() {
+            (end + 5.0, Anchor::Start)
+        } else if start - wide >= axes.frame.left {
+            (start, Anchor::End)
+        } else if Some(note) == notes.last() {
+            // No room beside the marks: in the margin.
+            (axes.frame.right() + 9.0, Anchor::Start)
         } else {
-            // No room beside the marks: in the margin, on two lines at most.
-            margin_note(pen, axes, middle, note);
-        }
+            continue;
+        };
+        pen.text_on_plate([x, middle + 3.9], note, pen::label(Ink::Ink, anchor));
+        break;
     }
     pen.close();
-}
-
-fn margin_note(pen: &mut Pen, axes: &Axes, middle: f64, note: &str) {
-    let at = [axes.frame.right() + 9.0, middle + 3.9];
-    let style = pen::label(Ink::Ink, Anchor::Start);
-    match note.split_once(", ") {
-        Some((head, rest)) => {
-            pen.text([at[0], at[1] - 6.5], &format!("{head},"), style);
-            pen.text([at[0], at[1] + 6.5], rest, style);
-        }
-        None => pen.text(at, note, style),
-    }
 }
 
 fn draw_bar(pen: &mut Pen, axes: &Axes, middle: f64, kind: BarKind, bar: &SignalBar) {
