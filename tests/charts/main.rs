@@ -9,3 +9,5 @@ mod pendulum;
 mod planes;
 #[cfg(test)]
 mod run;
+#[cfg(test)]
+mod studies;

@@ -47,10 +47,11 @@ impl Room {
             width: wide + 6.0,
             height: style.size + 5.0,
         };
+        let count = candidates.len().max(1) as f64;
         let best = candidates
             .iter()
             .enumerate()
-            .map(|(order, place)| (self.cost(&box_at(*place)) + 0.02 * order as f64, *place))
+            .map(|(order, place)| (self.cost(&box_at(*place)) + 0.9 * order as f64 / count, *place))
             .min_by(|one, two| one.0.total_cmp(&two.0))?;
         let place = best.1;
         let style = TextStyle { anchor: Anchor::Start, ..style };

@@ -121,18 +121,23 @@ fn range(panel: &Panel, height: f64) -> ([f64; 2], Ticks) {
         .fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), value| {
             (low.min(value), high.max(value))
         });
-    let (low, high) = near_zero(low, high);
+    let (low, high) = seen_in_proportion(low, high);
     let most = ((height / 21.0) as usize).clamp(2, 6);
     let (low, high, ticks) = ticks::outward(low, high, most);
     ([low, high], ticks)
 }
 
-/// Takes zero in where the data come near it, so that small wiggles stay small.
-fn near_zero(low: f64, high: f64) -> (f64, f64) {
+/// Takes zero in where the data come near it, and keeps wiggles of a nearly constant value small:
+/// less than a twentieth of the value never fills a panel.
+fn seen_in_proportion(low: f64, high: f64) -> (f64, f64) {
+    let least = 0.05 * low.abs().max(high.abs());
     if low > 0.0 && low < 0.6 * high {
         (0.0, high)
     } else if high < 0.0 && high > 0.6 * low {
         (low, 0.0)
+    } else if high - low < least {
+        let middle = (low + high) / 2.0;
+        (middle - least / 2.0, middle + least / 2.0)
     } else {
         (low, high)
     }

@@ -71,6 +71,7 @@ pub fn swing_chart(input: &SwingChart) -> Drawing {
     let angles = ticks::at_step(-180.0, 180.0, 90.0);
     axes.upright_grid(&mut pen, &angles);
     axes.base_lines(&mut pen);
+    room.avoid(&[vec![axes.at([-180.0, 0.0]), axes.at([180.0, 0.0])]]);
     for peak in input.peaks {
         let x = axes.x(peak * DEGREES);
         pen.line([x, frame.top], [x, frame.bottom()], Ink::Slip, 0.9);
