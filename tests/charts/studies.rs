@@ -57,7 +57,7 @@ fn a_map_has_a_number_in_every_cell_up_to_fifteen_by_twelve() {
     let svg = drawing.to_inline_svg("map");
     assert_eq!(svg.matches("class=\"c\"").count(), 13 * 11);
     assert_eq!(svg.matches("data-kind=\"design\"").count(), 1);
-    assert!(drawing.texts().contains(&"still slipping at end"));
+    assert!(drawing.texts().contains(&"still slipping at the end"));
     let large = map_chart(&map_of(40, 30));
     show(&large, "map-large");
     assert!(large.texts().len() < 80, "no numbers in cells");

@@ -40,7 +40,7 @@ pub struct CaseBar {
 
 const TOP: f64 = 26.0;
 const FOOT: f64 = 30.0;
-const PITCH: f64 = 30.0;
+const PITCH: f64 = 36.0;
 /// Uses beyond this are cut with a break, 1 is the limit.
 const LONGEST: f64 = 1.6;
 
@@ -67,12 +67,12 @@ pub fn load_cases_chart(input: &LoadCases) -> Drawing {
         let at = x(f64::from(percent) / 100.0);
         pen.line([at, frame.top], [at, frame.bottom()], Ink::Grid, pen::HAIR);
     }
+    pen.line([frame.left, frame.top], [frame.left, frame.bottom()], Ink::Axis, pen::SECOND);
+    marks::upright_limit(&mut pen, x(1.0), [frame.top, frame.bottom()], Forbidden::Above);
     for (place, case) in input.cases.iter().enumerate() {
         let middle = frame.top + PITCH * (place as f64 + 0.5);
         draw_case(&mut pen, &frame, middle, case, &x);
     }
-    pen.line([frame.left, frame.top], [frame.left, frame.bottom()], Ink::Axis, pen::SECOND);
-    marks::upright_limit(&mut pen, x(1.0), [frame.top, frame.bottom()], Forbidden::Above);
     for percent in [0, 50, 100, 150] {
         let at = [x(f64::from(percent) / 100.0), frame.bottom() + 15.0];
         pen.text(at, &percent.to_string(), pen::label(Ink::Sub, Anchor::Middle));
@@ -90,19 +90,18 @@ fn draw_case(pen: &mut Pen, frame: &Frame, middle: f64, case: &CaseBar, x: &dyn 
     let name = font::fit(&case.name, pen::LABEL, true, frame.left - 10.0);
     pen.text([frame.left - 8.0, middle + 3.9], &name, pen::bold(Ink::Ink, Anchor::End));
     let used = case.use_of_limit.filter(|used| used.is_finite()).map(|used| used.max(0.0));
-    let mut end = frame.left;
     if let Some(used) = used {
-        end = x(used.min(LONGEST));
-        pen.rectangle([frame.left, middle - 6.0], [end - frame.left, 12.0], Ink::Ink, 1.0);
+        let end = x(used.min(LONGEST));
+        pen.rectangle([frame.left, middle - 11.0], [end - frame.left, 9.0], Ink::Ink, 1.0);
         if used > LONGEST {
             // Two slanted cuts: the bar goes on.
             for shift in [14.0, 20.0] {
                 let at = end - shift;
-                pen.line([at - 2.5, middle + 8.0], [at + 2.5, middle - 8.0], Ink::Paper, 2.0);
+                pen.line([at - 2.0, middle], [at + 2.0, middle - 13.0], Ink::Paper, 2.0);
             }
         }
     }
-    words(pen, frame, middle, case, used, end);
+    words(pen, frame, middle, case, used);
     let right = frame.right() + 12.0;
     let at = [right + 5.0, middle];
     match case.met {
@@ -119,8 +118,8 @@ fn draw_case(pen: &mut Pen, frame: &Frame, middle: f64, case: &CaseBar, x: &dyn 
     pen.close();
 }
 
-/// Words right of the bar, or on it where it leaves no room; the wall is kept clear.
-fn words(pen: &mut Pen, frame: &Frame, middle: f64, case: &CaseBar, used: Option<f64>, end: f64) {
+/// Words below the bar.
+fn words(pen: &mut Pen, frame: &Frame, middle: f64, case: &CaseBar, used: Option<f64>) {
     let mut text = case.text.clone();
     if case.slips > 0 {
         let word = if case.slips == 1 { "slip" } else { "slips" };
@@ -129,14 +128,9 @@ fn words(pen: &mut Pen, frame: &Frame, middle: f64, case: &CaseBar, used: Option
     } else if text.is_empty() {
         text = used.map_or_else(String::new, |used| format!("{}{NBSP}%", fixed(100.0 * used, 0)));
     }
-    let wide = font::width(&text, pen::LABEL, false);
-    let style = pen::label(Ink::Ink, Anchor::Start);
-    if end + 10.0 + wide <= frame.right() + 4.0 {
-        pen.text_on_plate([end + 10.0, middle + 3.9], &text, style);
-    } else {
-        let room = end - frame.left - 34.0;
-        let text = font::fit(&text, pen::LABEL, false, room);
-        let style = pen::label(Ink::Paper, Anchor::Start);
-        pen.text([frame.left + 8.0, middle + 3.9], &text, style);
+    if !text.is_empty() {
+        let text = font::fit(&text, pen::LABEL, false, frame.width - 8.0);
+        let at = [frame.left + 5.0, middle + 11.0];
+        pen.text_on_plate(at, &text, pen::label(Ink::Sub, Anchor::Start));
     }
 }

@@ -5,7 +5,7 @@ use super::clip::Frame;
 use super::drawing::{Anchor, Dash, Drawing, Group};
 use super::font;
 use super::marks;
-use super::number::{fixed, number};
+use super::number::{alike, fixed};
 use super::palette::Ink;
 use super::pen::{self, Pen};
 
@@ -98,9 +98,9 @@ impl Look {
             Self::Met => "met".to_owned(),
             Self::Near => format!("met, share above {}", super::number::percent(near)),
             Self::OtherFault => "not met, no slip".to_owned(),
-            Self::Few => "not met: slips, 1 to 5".to_owned(),
-            Self::Some => "6 to 20 slips".to_owned(),
-            Self::Many => "more than 20".to_owned(),
+            Self::Few => "not met: 1 to 5 slips".to_owned(),
+            Self::Some => "not met: 6 to 20 slips".to_owned(),
+            Self::Many => "not met: more than 20".to_owned(),
             Self::Unknown => "cannot be told".to_owned(),
         }
     }
@@ -108,7 +108,7 @@ impl Look {
 
 const TOP: f64 = 40.0;
 const FOOT: f64 = 38.0;
-const KEY: f64 = 150.0;
+const KEY: f64 = 156.0;
 
 /// Draws the chart.
 pub fn map_chart(input: &MapChart) -> Drawing {
@@ -186,9 +186,14 @@ impl Grid {
     ) {
         let look = Look::of(cell, near);
         let ([x, y], [w, h]) = (self.corner(column, row), self.size());
-        let gap = if numbers { 1.0 } else { 0.0 };
-        let corner = [x + gap, y + gap];
-        let size = [w - 2.0 * gap, h - 2.0 * gap];
+        // Cells without numbers touch; each reaches a little under the next, or a seam would show.
+        let (corner, size) = if numbers {
+            ([x + 1.0, y + 1.0], [w - 2.0, h - 2.0])
+        } else {
+            let right = if column + 1 < self.columns { 0.5 } else { 0.0 };
+            let above = if row + 1 < self.rows { 0.5 } else { 0.0 };
+            ([x, y - above], [w + right, h + above])
+        };
         pen.open(Group::class("c").with("column", column.to_string()).with("row", row.to_string()));
         pen.rectangle(corner, size, look.ink(), 1.0);
         if cell.still_slipping {
@@ -254,25 +259,22 @@ fn border(pen: &mut Pen, grid: &Grid, cells: &[Cell]) {
 fn numbers_left(pen: &mut Pen, grid: &Grid, parameter: &Parameter) {
     let [_, h] = grid.size();
     let every = (13.0 / h).ceil().max(1.0) as usize;
-    for (row, value) in parameter.values.iter().enumerate().step_by(every) {
+    for (row, text) in alike(&parameter.values).iter().enumerate().step_by(every) {
         let [x, y] = grid.corner(0, row);
         let place = [x - 8.0, y + h / 2.0 + 3.9];
-        pen.text(place, &number(*value, 4), pen::label(Ink::Sub, Anchor::End));
+        pen.text(place, text, pen::label(Ink::Sub, Anchor::End));
     }
 }
 
 fn numbers_below(pen: &mut Pen, grid: &Grid, parameter: &Parameter) {
     let [w, _] = grid.size();
-    let widest = parameter
-        .values
-        .iter()
-        .map(|value| font::width(&number(*value, 4), pen::LABEL, false))
-        .fold(1.0, f64::max);
+    let texts = alike(&parameter.values);
+    let widest = texts.iter().map(|text| font::width(text, pen::LABEL, false)).fold(1.0, f64::max);
     let every = ((widest + 8.0) / w).ceil().max(1.0) as usize;
-    for (column, value) in parameter.values.iter().enumerate().step_by(every) {
+    for (column, text) in texts.iter().enumerate().step_by(every) {
         let x = grid.corner(column, 0)[0] + w / 2.0;
         let place = [x, grid.frame.bottom() + 15.0];
-        pen.text(place, &number(*value, 4), pen::label(Ink::Sub, Anchor::Middle));
+        pen.text(place, text, pen::label(Ink::Sub, Anchor::Middle));
     }
     let place = [grid.frame.right(), grid.frame.bottom() + 30.0];
     pen.text(place, &named(parameter), pen::label(Ink::Sub, Anchor::End));
@@ -294,7 +296,7 @@ fn key(pen: &mut Pen, input: &MapChart, left: f64, shares: bool) {
         });
     }
     if input.cells.iter().any(|cell| cell.still_slipping) {
-        line(pen, "still slipping at end", &|pen, [x, y]| {
+        line(pen, "still slipping at the end", &|pen, [x, y]| {
             pen.rectangle([x, y], [13.0, 12.0], Ink::ManySlips, 1.0);
             marks::hatch(pen, &Frame { left: x, top: y, width: 13.0, height: 12.0 }, Ink::Paper);
         });

@@ -218,7 +218,7 @@ fn bracket(pen: &mut Pen, room: &mut Room, [design, found]: [f64; 2], frame: &Fr
     let middle = (design + found) / 2.0 - wide / 2.0;
     let right = design.max(found) + 8.0;
     let candidates = if apart > wide + 30.0 {
-        vec![[middle, y + 4.0]]
+        vec![[middle, y - 6.0]]
     } else {
         vec![[middle, y - 8.0], [right, y + 4.0], [right, y - 10.0]]
     };

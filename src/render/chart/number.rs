@@ -71,6 +71,26 @@ fn decimals_of_step(step: f64) -> usize {
     (places + extra).min(9)
 }
 
+/// Labels for values that stand in a row: as few decimals as tell them apart to a thirtieth of
+/// their smallest distance, the same for all.
+pub fn alike(values: &[f64]) -> Vec<String> {
+    let mut sorted: Vec<f64> = values.iter().copied().filter(|value| value.is_finite()).collect();
+    sorted.sort_by(f64::total_cmp);
+    let step = sorted
+        .windows(2)
+        .map(|pair| pair[1] - pair[0])
+        .filter(|step| *step > 0.0)
+        .fold(f64::INFINITY, f64::min);
+    if !step.is_finite() {
+        return values.iter().map(|value| number(*value, 4)).collect();
+    }
+    let decimals = (0..9).find(|decimals| {
+        let power = 10_f64.powi(*decimals);
+        sorted.iter().all(|value| ((value * power).round() / power - value).abs() <= step / 30.0)
+    });
+    values.iter().map(|value| fixed(*value, decimals.unwrap_or(9) as usize)).collect()
+}
+
 /// A number and its unit, held together by a no-break space.
 pub fn with_unit(value: f64, digits: usize, unit: &str) -> String {
     if unit.is_empty() {
@@ -141,6 +161,13 @@ mod tests {
         assert_eq!(number(0.038_25, 2), "0.038");
         assert_eq!(number(272.727, 4), "272.7");
         assert_eq!(number(f64::NAN, 4), "–");
+    }
+
+    #[test]
+    fn values_in_a_row_have_the_same_decimals() {
+        assert_eq!(alike(&[0.5, 0.75, 1.0]), ["0.50", "0.75", "1.00"]);
+        assert_eq!(alike(&[300.0, 334.48, 368.97]), ["300", "334", "369"]);
+        assert_eq!(alike(&[2.0]), ["2"]);
     }
 
     #[test]
