@@ -10,4 +10,6 @@ mod planes;
 #[cfg(test)]
 mod run;
 #[cfg(test)]
+mod schematics;
+#[cfg(test)]
 mod studies;

@@ -29,6 +29,7 @@ pub mod rainflow;
 mod raster;
 pub mod run;
 pub mod run_input;
+pub mod schematic;
 pub mod strip;
 pub mod svg;
 pub mod swing;
