@@ -2,6 +2,8 @@
 //! every picture is written there to be looked at.
 
 #[cfg(test)]
+mod formats;
+#[cfg(test)]
 mod gallery;
 #[cfg(test)]
 mod pendulum;

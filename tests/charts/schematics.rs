@@ -13,7 +13,7 @@ fn body(name: &str, side: Side, inertia: f64, referred: &str, speed: &str) -> Bo
         name: name.to_owned(),
         side,
         inertia,
-        inertia_text: format!("{inertia} kg·m²"),
+        inertia_text: format!("{} kg·m²", lodeshaft::render::chart::number::number(inertia, 3)),
         referred_text: referred.to_owned(),
         speed: (!speed.is_empty())
             .then(|| (speed.trim_start_matches('-').to_owned(), !speed.starts_with('-'))),

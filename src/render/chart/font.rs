@@ -1,10 +1,7 @@
-//! The face of the charts: registered with the canvas, measured here.
+//! The face of the charts: measured and outlined here, so that both formats set the same widths.
 
-use super::palette::Rgb;
-use plotters::style::text_anchor::{HPos, Pos, VPos};
-use plotters::style::{FontDesc, FontFamily, FontStyle, TextStyle, register_font};
-use plotters_backend::BackendColor;
-use std::sync::Once;
+use ab_glyph::{Font, FontRef, OutlinedGlyph, PxScale, point};
+use std::sync::LazyLock;
 
 /// Family name in files.
 pub const FAMILY: &str = "Chart Sans";
@@ -18,42 +15,43 @@ pub const REGULAR_WOFF2: &[u8] = include_bytes!("../fonts/ChartSans-Regular.woff
 /// The bold weight for style sheets.
 pub const BOLD_WOFF2: &[u8] = include_bytes!("../fonts/ChartSans-SemiBold.woff2");
 
-const REGULAR: &[u8] = include_bytes!("../fonts/ChartSans-Regular.ttf");
-const BOLD: &[u8] = include_bytes!("../fonts/ChartSans-SemiBold.ttf");
+/// Regular and bold; a face that cannot be read would leave charts without text, and a test holds
+/// that both can.
+static FACES: LazyLock<[Option<FontRef<'static>>; 2]> = LazyLock::new(|| {
+    [
+        FontRef::try_from_slice(include_bytes!("../fonts/ChartSans-Regular.ttf")).ok(),
+        FontRef::try_from_slice(include_bytes!("../fonts/ChartSans-SemiBold.ttf")).ok(),
+    ]
+});
 
-static REGISTERED: Once = Once::new();
-
-/// Makes the face known to the canvas; later calls cost nothing.
-pub fn register() {
-    REGISTERED.call_once(|| {
-        // A face that cannot be read leaves charts without text; a test holds that it can.
-        let _ = register_font(FAMILY, FontStyle::Normal, REGULAR);
-        let _ = register_font(FAMILY, FontStyle::Bold, BOLD);
-    });
+fn face(bold: bool) -> Option<&'static FontRef<'static>> {
+    let [regular, heavy] = &*FACES;
+    if bold { heavy.as_ref() } else { regular.as_ref() }
 }
 
-/// The face at `size` canvas units to the em.
-fn face(size: f64, bold: bool) -> FontDesc<'static> {
-    let style = if bold { FontStyle::Bold } else { FontStyle::Normal };
-    FontDesc::new(FontFamily::Name(FAMILY), size * LINE, style)
+/// Advance of a letter over the em.
+fn advance(face: &FontRef<'static>, letter: char) -> f64 {
+    let units = face.units_per_em().unwrap_or(1000.0);
+    f64::from(face.h_advance_unscaled(face.glyph_id(letter)) / units)
 }
 
-/// What the canvas needs to set a text at `size` units to the em by its upper end.
-pub fn canvas_style(size: f64, bold: bool, rgb: Rgb, side: HPos) -> TextStyle<'static> {
-    register();
-    TextStyle {
-        font: face(size, bold),
-        color: BackendColor { alpha: 1.0, rgb },
-        pos: Pos::new(side, VPos::Top),
-    }
-}
-
-/// Width of a text of `size` CSS pixels, px.
+/// Width of a text of `size` CSS pixels, px; without kerning, as the files are written.
 pub fn width(text: &str, size: f64, bold: bool) -> f64 {
-    // The canvas measures in whole units, so it is asked at 1000 units to the em.
-    const EM: f64 = 1000.0;
-    register();
-    face(EM, bold).box_size(text).map_or(0.0, |(units, _)| f64::from(units) * size / EM)
+    face(bold).map_or(0.0, |face| text.chars().map(|letter| size * advance(face, letter)).sum())
+}
+
+/// The outlines of a text whose em is `size` canvas units, from a point on the baseline on.
+pub fn outlines(text: &str, size: f64, bold: bool, [x, y]: [f64; 2]) -> Vec<OutlinedGlyph> {
+    let Some(face) = face(bold) else { return Vec::new() };
+    let mut along = x;
+    text.chars()
+        .filter_map(|letter| {
+            let place = point(along as f32, y as f32);
+            along += size * advance(face, letter);
+            let scale = PxScale::from((size * LINE) as f32);
+            face.outline_glyph(face.glyph_id(letter).with_scale_and_position(scale, place))
+        })
+        .collect()
 }
 
 /// The text, cut and closed with an ellipsis where it is wider than `room` px.

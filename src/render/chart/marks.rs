@@ -117,7 +117,7 @@ pub fn ground(pen: &mut Pen, from: Point, to: Point, normal: Point) {
         return;
     }
     let (ux, uy) = (dx / length, dy / length);
-    let count = (length / 5.0).floor().max(1.0) as usize;
+    let count = (length / 4.5).ceil().max(2.0) as usize;
     for place in 0..=count {
         let along = length * place as f64 / count as f64;
         let foot = [from[0] + along * ux, from[1] + along * uy];

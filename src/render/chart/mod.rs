@@ -9,6 +9,7 @@
 
 pub mod axes;
 pub mod clip;
+pub mod compare;
 pub mod curve;
 pub mod drawing;
 pub mod font;
@@ -28,6 +29,7 @@ pub mod png;
 pub mod rainflow;
 mod raster;
 pub mod run;
+pub mod run_data;
 pub mod run_input;
 pub mod schematic;
 pub mod strip;

@@ -5,7 +5,6 @@ use super::font;
 use super::palette::{Ink, Theme};
 use super::raster::Filler;
 use plotters::prelude::BitMapBackend;
-use plotters::style::text_anchor::HPos;
 use plotters_backend::{BackendColor, DrawingBackend};
 
 /// Why no picture could be made.
@@ -136,12 +135,17 @@ impl Bitmap<'_> {
             Anchor::Middle => at[0] - wide / 2.0,
             Anchor::End => at[0] - wide,
         };
-        // The canvas sets the baseline half a line height below the top.
-        let top = at[1] - style.size * font::LINE / 2.0;
         let size = style.size * self.unit;
-        let face = font::canvas_style(size, style.bold, style.ink.rgb(self.theme), HPos::Left);
-        let place = ((left * self.unit).round() as i32, (top * self.unit).round() as i32);
-        let _ = self.backend.draw_text(text, &face, place);
+        let start = [left * self.unit, at[1] * self.unit];
+        let rgb = style.ink.rgb(self.theme);
+        for glyph in font::outlines(text, size, style.bold, start) {
+            let corner = glyph.px_bounds().min;
+            glyph.draw(|x, y, cover| {
+                let place = (corner.x as i32 + x as i32, corner.y as i32 + y as i32);
+                let colour = BackendColor { alpha: f64::from(cover.clamp(0.0, 1.0)), rgb };
+                let _ = self.backend.draw_pixel(place, colour);
+            });
+        }
     }
 }
 

@@ -6,9 +6,9 @@ use super::drawing::{Dash, Drawing, Group};
 use super::labels::{self, EndLabel};
 use super::marks;
 use super::number;
-use super::palette::Ink;
+use super::palette::{Ink, Side};
 use super::pen::{self, Pen};
-use super::run_input::{Curve, Panel, PanelKind, RunChart, Weight};
+use super::run_input::{Curve, Hue, Panel, PanelKind, RunChart, Weight};
 use super::strip;
 use super::ticks::{self, Ticks};
 
@@ -21,13 +21,10 @@ pub fn run_chart(input: &RunChart) -> Drawing {
     let layout = Layout::of(input);
     let clock = Clock::of(input.window, layout.width);
     let mut pen = Pen::new();
-    let mut top = TOP;
     for (panel, axes) in input.panels.iter().zip(&layout.axes) {
-        let frame = Frame { left: layout.left, top, width: layout.width, height: layout.panel };
-        let axes = Axes { frame, ..*axes };
-        draw_panel(&mut pen, input, panel, &axes, &clock, layout.margin);
-        top += layout.panel + GAP;
+        draw_panel(&mut pen, input, panel, axes, &clock, layout.margin);
     }
+    let top = layout.top(input.panels.len());
     let frame = Frame { left: layout.left, top, width: layout.width, height: layout.strip };
     let axes = Axes { frame, across: clock.window, up: [0.0, 1.0] };
     pen.open(Group::class("x"));
@@ -41,6 +38,20 @@ pub fn run_chart(input: &RunChart) -> Drawing {
     pen.close();
     let height = (top + layout.strip + FOOT).ceil();
     pen.finish(&input.id, &input.title, input.sheet.width, height)
+}
+
+/// The axes of each panel, as drawn.
+pub fn panel_axes(input: &RunChart) -> Vec<Axes> {
+    Layout::of(input).axes
+}
+
+/// Width of a curve's stroke, px.
+pub fn stroke(curve: &Curve) -> f64 {
+    match curve.weight {
+        Weight::Main if curve.hue == Hue::Side(Side::Modulator) => pen::MAIN - 0.4,
+        Weight::Main => pen::MAIN,
+        Weight::Second => pen::SECOND,
+    }
 }
 
 /// The time axis: seconds, or milliseconds where the window is short.
@@ -95,13 +106,24 @@ impl Layout {
         let margin = labels::margin(labels.iter(), axes::RIGHT, sheet.width);
         let left = strip::margin(&input.rows);
         let width = sheet.width - left - margin;
-        let frame = Frame { left, top: 0.0, width, height: panel };
         let axes = input
             .panels
             .iter()
-            .map(|each| Axes { frame, across: input.window, up: range(each, panel).0 })
+            .enumerate()
+            .map(|(place, each)| {
+                let top = TOP + (panel + GAP) * place as f64;
+                let frame = Frame { left, top, width, height: panel };
+                Axes { frame, across: input.window, up: range(each, panel).0 }
+            })
             .collect();
         Self { left, width, margin, panel, strip, axes }
+    }
+}
+
+impl Layout {
+    /// Upper edge of the panel in a place; the strip comes after the last one.
+    fn top(&self, place: usize) -> f64 {
+        TOP + (self.panel + GAP) * place as f64
     }
 }
 
@@ -182,10 +204,7 @@ fn draw_panel(
 }
 
 fn draw_curve(pen: &mut Pen, axes: &Axes, curve: &Curve) {
-    let width = match curve.weight {
-        Weight::Main => pen::MAIN,
-        Weight::Second => pen::SECOND,
-    };
+    let width = stroke(curve);
     pen.open(
         Group::class("s")
             .with("channel", curve.channel.clone())

@@ -7,7 +7,8 @@ use super::drawing::{Anchor, Drawing, Group, Mark, Point, TextStyle};
 use super::font;
 use super::palette::Ink;
 use plotters::prelude::SVGBackend;
-use plotters::style::text_anchor::HPos;
+use plotters::style::text_anchor::{HPos, Pos, VPos};
+use plotters::style::{FontDesc, FontFamily, FontStyle};
 use plotters_backend::{BackendColor, BackendStyle, DrawingBackend};
 use std::fmt::Write as _;
 
@@ -113,7 +114,16 @@ fn draw_text(backend: &mut SVGBackend<'_>, at: Point, text: &str, style: TextSty
         Anchor::Middle => HPos::Center,
         Anchor::End => HPos::Right,
     };
-    let face = font::canvas_style(style.size * UNITS, style.bold, colour(style.ink, 1.0).rgb, side);
+    let weight = if style.bold { FontStyle::Bold } else { FontStyle::Normal };
+    let face = plotters::style::TextStyle {
+        font: FontDesc::new(
+            FontFamily::Name(font::FAMILY),
+            style.size * UNITS * font::LINE,
+            weight,
+        ),
+        color: colour(style.ink, 1.0),
+        pos: Pos::new(side, VPos::Top),
+    };
     backend.draw_text(text, &face, place(at))
 }
 

@@ -1,6 +1,6 @@
 //! Layout: lines of the train become rows on the sheet, with a place for every thing.
 
-use super::order::{Node, Order};
+use super::order::{Line, Node, Order};
 use super::parts;
 use super::view::{Link, Schematic};
 use super::words;
@@ -13,6 +13,10 @@ pub const DEVICE: f64 = 61.0;
 const DISC_HALF: f64 = 12.0;
 /// Free margin left and right, px.
 const MARGIN: f64 = 14.0;
+/// From the axis to the first baseline below, px.
+pub const BELOW: f64 = DEVICE + 20.0;
+/// Room that a connector to the next row takes at the side, px.
+const FOLD: f64 = 18.0;
 /// Room above a device for its motors and loads, px.
 const ACTORS: f64 = 44.0;
 
@@ -81,6 +85,7 @@ struct Row {
     edges: Vec<usize>,
     entry: Option<usize>,
     branch: bool,
+    folds: bool,
     to_the_right: bool,
 }
 
@@ -89,10 +94,8 @@ pub fn lay_out(train: &Schematic, order: &Order, width: f64) -> Layout {
     let desk = Desk { train, order, width };
     let mut layout = Layout::default();
     let mut top = 8.0;
-    for line in &order.lines {
-        for row in desk.rows(line) {
-            top = desk.place(&mut layout, &row, top);
-        }
+    for line in order.lines.iter().filter(|line| line.root.is_none()) {
+        top = desk.place_line(&mut layout, line, top);
     }
     layout.height = top;
     layout
@@ -135,32 +138,41 @@ impl Desk<'_> {
     }
 
     /// A line as one row, or as several where it is too long.
-    fn rows(&self, line: &super::order::Line) -> Vec<Row> {
+    fn rows(&self, line: &Line) -> Vec<Row> {
         let pitches: Vec<f64> = line
             .nodes
             .windows(2)
             .zip(&line.edges)
             .map(|(pair, edge)| self.pitch(pair[0], pair[1], *edge))
             .collect();
+        // Rows of about equal length, none longer than the sheet.
+        let whole: f64 = pitches.iter().sum();
         let ends = [line.nodes.first(), line.nodes.last()];
         let margins: f64 = ends.iter().flatten().map(|node| self.margin(**node)).sum();
-        let whole = pitches.iter().sum::<f64>() + margins;
-        let count = (whole / self.width).ceil().max(1.0);
-        let share = whole / count;
+        let room = (self.width - margins - 2.0 * FOLD).max(1.0);
+        let one = whole + margins <= self.width;
+        let share = if one { whole } else { whole / (whole / room).ceil() };
         let mut rows = Vec::new();
         let mut row = Row {
             nodes: line.nodes.first().copied().into_iter().collect(),
             edges: Vec::new(),
             entry: line.root,
             branch: line.root.is_some(),
+            folds: false,
             to_the_right: true,
         };
         let mut length = 0.0;
         let followers = line.nodes.iter().skip(1);
         for ((node, edge), pitch) in followers.zip(&line.edges).zip(&pitches) {
             length += pitch;
-            if length > share && row.nodes.len() > 1 || length + 2.0 * MARGIN > self.width {
+            let full = row.nodes.first().map_or(0.0, |first| self.margin(*first))
+                + length
+                + self.margin(*node)
+                + 2.0 * FOLD
+                > self.width;
+            if !one && row.nodes.len() > 1 && (length > share + 1e-9 || full) {
                 let to_the_right = !row.to_the_right;
+                row.folds = true;
                 let full = std::mem::replace(
                     &mut row,
                     Row {
@@ -168,6 +180,7 @@ impl Desk<'_> {
                         edges: Vec::new(),
                         entry: Some(*edge),
                         branch: false,
+                        folds: false,
                         to_the_right,
                     },
                 );
@@ -180,6 +193,23 @@ impl Desk<'_> {
         }
         rows.push(row);
         rows
+    }
+
+    /// Places the rows of a line, each followed by the branches that hang on it.
+    fn place_line(&self, layout: &mut Layout, line: &Line, top: f64) -> f64 {
+        let mut top = top;
+        for row in self.rows(line) {
+            top = self.place(layout, &row, top);
+            for branch in &self.order.lines {
+                let (Some(root), Some(first)) = (branch.root, branch.nodes.first()) else {
+                    continue;
+                };
+                if row.nodes.contains(&self.order.other(root, *first)) {
+                    top = self.place_line(layout, branch, top);
+                }
+            }
+        }
+        top
     }
 
     /// Gives a row its place below `top`; returns where the next one begins.
@@ -205,7 +235,11 @@ impl Desk<'_> {
             .zip(&row.edges)
             .map(|(pair, edge)| self.pitch(pair[0], pair[1], *edge))
             .collect();
-        let needed = start + lead + pitches.iter().sum::<f64>() + self.margin(last);
+        let needed = start
+            + lead
+            + pitches.iter().sum::<f64>()
+            + self.margin(last)
+            + if row.folds || row.branch { FOLD } else { 0.0 };
         let stretches = pitches.len() as f64 + if entry.is_some() { 1.0 } else { 0.0 };
         // A branch does not spread over the sheet for its own sake.
         let most = if row.branch { 40.0 } else { 400.0 };
@@ -273,7 +307,7 @@ impl Desk<'_> {
             });
             layout.folds.push(Fold { edge: entry.edge, points: entry.points });
         }
-        y + DEVICE + 16.0 + self.lines_below(row) * words::PITCH + 4.0
+        y + BELOW + self.lines_below(row) * words::PITCH + 4.0
     }
 
     fn room_above(&self, row: &Row) -> f64 {
@@ -309,7 +343,7 @@ impl Desk<'_> {
         let spot = layout.spots.get_mut(place)?;
         if !row.branch {
             // A fold: out to the side, down, and back.
-            let x = if row.to_the_right { MARGIN } else { self.width - MARGIN };
+            let x = if row.to_the_right { 8.0 } else { self.width - 8.0 };
             let side = if row.to_the_right { spot.x - spot.half } else { spot.x + spot.half };
             if row.to_the_right {
                 spot.left = Some(edge);

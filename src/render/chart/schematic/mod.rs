@@ -11,10 +11,10 @@ use super::axes::Sheet;
 use super::drawing::{Anchor, Dash, Drawing, Group};
 use super::palette::Ink;
 use super::pen::{self, Pen};
-use layout::{DEVICE, Layout, Spot};
+use layout::{BELOW, DEVICE, Layout, Spot};
 use order::{Node, Order, is_member_only};
 use parts::SHAFT;
-use view::{Port, Schematic};
+use view::{Link, Port, Schematic};
 
 /// Draws a train on a sheet 720 px wide.
 pub fn schematic(train: &Schematic) -> Drawing {
@@ -22,7 +22,7 @@ pub fn schematic(train: &Schematic) -> Drawing {
     let order = order::order(train);
     let layout = layout::lay_out(train, &order, width);
     let mut pen = Pen::new();
-    loops(&mut pen, &order, &layout);
+    loops(&mut pen, train, &order, &layout);
     for fold in &layout.folds {
         let body = order.edges.get(fold.edge).and_then(|edge| edge.bodies[0]);
         let ink = body.map_or(Ink::Sub, |body| parts::side_of(train, body).ink());
@@ -34,7 +34,7 @@ pub fn schematic(train: &Schematic) -> Drawing {
         pen.close();
     }
     for spot in &layout.spots {
-        draw_spot(&mut pen, train, &order, spot, width);
+        draw_spot(&mut pen, train, &order, spot, connector(&layout, spot));
     }
     if layout.spots.is_empty() {
         pen.text([width / 2.0, 30.0], "no bodies", pen::label(Ink::Sub, Anchor::Middle));
@@ -42,7 +42,14 @@ pub fn schematic(train: &Schematic) -> Drawing {
     pen.finish(&train.id, &train.title, width, layout.height.max(48.0).ceil())
 }
 
-fn draw_spot(pen: &mut Pen, train: &Schematic, order: &Order, spot: &Spot, width: f64) {
+/// Where a branch runs down from a thing.
+fn connector(layout: &Layout, spot: &Spot) -> Option<f64> {
+    let fold = layout.folds.iter().find(|fold| spot.down.contains(&fold.edge))?;
+    fold.points.first().map(|point| point[0])
+}
+
+fn draw_spot(pen: &mut Pen, train: &Schematic, order: &Order, spot: &Spot, clear: Option<f64>) {
+    let width = Sheet::PAGE.width;
     let Some(node) = order.nodes.get(spot.node).copied() else { return };
     let name = match node {
         Node::Disc(body) => train.bodies.get(body).map_or("", |body| body.name.as_str()),
@@ -65,7 +72,7 @@ fn draw_spot(pen: &mut Pen, train: &Schematic, order: &Order, spot: &Spot, width
         }
     }
     let lines = words::lines(train, node);
-    words::draw(pen, &lines, spot.x, spot.y + DEVICE + 16.0, !spot.down.is_empty(), width);
+    words::draw(pen, &lines, spot.x, spot.y + BELOW, clear, width);
     pen.close();
 }
 
@@ -125,7 +132,7 @@ fn member_actors(
 }
 
 /// Edges that close a loop: thin lines below the things they join.
-fn loops(pen: &mut Pen, order: &Order, layout: &Layout) {
+fn loops(pen: &mut Pen, train: &Schematic, order: &Order, layout: &Layout) {
     for (place, edge) in order.loops.iter().enumerate() {
         let Some(edge) = order.edges.get(*edge) else { continue };
         let find = |node: usize| layout.spots.iter().find(|spot| spot.node == node);
@@ -135,5 +142,10 @@ fn loops(pen: &mut Pen, order: &Order, layout: &Layout) {
         let points =
             [[a.x + shift, a.y], [a.x + shift, level], [b.x - shift, level], [b.x - shift, b.y]];
         pen.path(&points, Ink::Axis, 2.0, Dash::Solid);
+        if let Some(Link::Shaft { name, .. }) = edge.shaft.and_then(|shaft| train.links.get(shaft))
+        {
+            let at = [(a.x + b.x) / 2.0, level + 3.9];
+            pen.text_on_plate(at, name, pen::label(Ink::Ink, Anchor::Middle));
+        }
     }
 }

@@ -60,10 +60,10 @@ pub fn order(train: &Schematic) -> Order {
     let mut seen = vec![false; order.nodes.len()];
     let mut used = vec![false; order.edges.len()];
     while let Some(start) = (0..order.nodes.len()).find(|node| !is_set(&seen, *node)) {
-        let main = order.main_line(train, start);
+        let main = order.main_line(train, start, &seen);
         order.take(main, &mut seen, &mut used);
         // Branches of what stands already, the longest first from each place.
-        while let Some(branch) = order.next_branch(&seen, &used) {
+        while let Some(branch) = order.next_branch(train, &seen, &used) {
             order.take(branch, &mut seen, &mut used);
         }
     }
@@ -162,14 +162,14 @@ impl Order {
     }
 
     /// The longest line from a node over unused edges to unseen nodes.
-    fn reach(&self, from: usize, seen: &[bool], used: &[bool]) -> Line {
+    fn reach(&self, train: &Schematic, from: usize, seen: &[bool], used: &[bool]) -> Line {
         let mut best = Line { nodes: vec![from], ..Line::default() };
         let mut stack = vec![best.clone()];
         // Trees have one way to each node; loops are cut where a way meets itself.
         let mut budget = 2000;
         while let Some(way) = stack.pop() {
             budget -= 1;
-            if way.nodes.len() > best.nodes.len() {
+            if self.worth(train, &way) > self.worth(train, &best) {
                 best = way.clone();
             }
             let Some(end) = way.nodes.last().copied().filter(|_| budget > 0) else { continue };
@@ -188,11 +188,17 @@ impl Order {
     }
 
     /// The longest line through the part of the train that holds a node, motors to the left.
-    fn main_line(&self, train: &Schematic, start: usize) -> Line {
-        let none = vec![false; self.nodes.len()];
+    fn main_line(&self, train: &Schematic, start: usize, seen: &[bool]) -> Line {
         let unused = vec![false; self.edges.len()];
-        let end = self.reach(start, &none, &unused).nodes.last().copied().unwrap_or(start);
-        let mut line = self.reach(end, &none, &unused);
+        let mut line = Line { nodes: vec![start], ..Line::default() };
+        let starts = (0..self.nodes.len()).filter(|node| !is_set(seen, *node));
+        let part = self.part(start);
+        for from in starts.filter(|node| part.contains(node)) {
+            let next = self.reach(train, from, seen, &unused);
+            if self.worth(train, &next) > self.worth(train, &line) {
+                line = next;
+            }
+        }
         let half = line.nodes.len() / 2;
         let driven = |nodes: &[usize]| {
             nodes.iter().any(|node| match self.nodes.get(*node) {
@@ -210,7 +216,40 @@ impl Order {
         line
     }
 
-    fn next_branch(&self, seen: &[bool], used: &[bool]) -> Option<Line> {
+    /// Nodes that hang together with a node.
+    fn part(&self, start: usize) -> Vec<usize> {
+        let mut part = vec![start];
+        let mut place = 0;
+        while let Some(node) = part.get(place).copied() {
+            place += 1;
+            for edge in self.around(node) {
+                let next = self.other(edge, node);
+                if !part.contains(&next) {
+                    part.push(next);
+                }
+            }
+        }
+        part
+    }
+
+    /// Length of a line; one that passes a gear by its inner member is worth some nodes more, for
+    /// an inner member has no way out below.
+    fn worth(&self, train: &Schematic, line: &Line) -> usize {
+        const DETOUR: usize = 6;
+        let by_inner = line.edges.iter().filter_map(|edge| self.edges.get(*edge)).filter(|edge| {
+            edge.nodes.iter().zip(&edge.ports).any(|(node, port)| {
+                let gear = match self.nodes.get(*node) {
+                    Some(Node::Device(link)) => train.links.get(*link),
+                    _ => None,
+                };
+                matches!(gear, Some(Link::MagneticGear { .. } | Link::Planetary { .. }))
+                    && *port == Some(0)
+            })
+        });
+        line.nodes.len() + DETOUR * by_inner.count()
+    }
+
+    fn next_branch(&self, train: &Schematic, seen: &[bool], used: &[bool]) -> Option<Line> {
         let mut best: Option<Line> = None;
         for (place, edge) in self.edges.iter().enumerate() {
             let inside = edge.nodes.map(|node| is_set(seen, node));
@@ -218,7 +257,7 @@ impl Order {
                 continue;
             }
             let start = if inside[0] { edge.nodes[1] } else { edge.nodes[0] };
-            let mut line = self.reach(start, seen, used);
+            let mut line = self.reach(train, start, seen, used);
             line.root = Some(place);
             if best.as_ref().is_none_or(|best| line.nodes.len() > best.nodes.len()) {
                 best = Some(line);

@@ -54,12 +54,13 @@ fn device(train: &Schematic, link: &Link) -> Vec<Words> {
         | Link::Planetary { name, text, .. } => vec![strong(name), grey(text)],
         Link::Shaft { .. } => Vec::new(),
     };
-    for port in link.ports() {
-        let Port::Body(body) = port else { continue };
-        if let Some(view) = train.bodies.get(*body).filter(|_| is_member_only(train, *body)) {
-            lines.push(grey(&format!("{} {}", view.name, view.inertia_text)));
-        }
-    }
+    let members = link.ports().iter().filter_map(|port| match port {
+        Port::Body(body) if is_member_only(train, *body) => train.bodies.get(*body),
+        _ => None,
+    });
+    let grey = pen::label(Ink::Sub, Anchor::Start);
+    lines
+        .push(members.map(|body| (format!("{} {}", body.name, body.inertia_text), grey)).collect());
     lines
 }
 
@@ -77,11 +78,17 @@ pub fn width(train: &Schematic, node: Node) -> f64 {
     lines(train, node).iter().map(line_width).fold(0.0, f64::max)
 }
 
-/// Sets lines one below another, centred at `x` or, as `beside`, ending left of it.
-pub fn draw(pen: &mut Pen, lines: &[Words], x: f64, top: f64, beside: bool, sheet: f64) {
+/// Sets lines one below another, centred at `x`; a connector that runs down at `clear` is left
+/// free.
+pub fn draw(pen: &mut Pen, lines: &[Words], x: f64, top: f64, clear: Option<f64>, sheet: f64) {
+    let widest = lines.iter().map(line_width).fold(0.0, f64::max);
     for (place, line) in lines.iter().enumerate() {
         let wide = line_width(line);
-        let left = if beside { x - 9.0 - wide } else { x - wide / 2.0 };
+        let left = match clear {
+            Some(clear) if clear < x - 1.0 => (clear + 9.0).max(x - widest / 2.0),
+            Some(clear) => (clear - 9.0 - wide).min(x + widest / 2.0 - wide),
+            None => x - wide / 2.0,
+        };
         let left = left.min(sheet - 4.0 - wide).max(4.0);
         let runs: Vec<(&str, TextStyle)> =
             line.iter().map(|(text, style)| (text.as_str(), *style)).collect();
