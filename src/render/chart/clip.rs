@@ -40,21 +40,28 @@ pub fn line(points: &[Point], frame: &Frame) -> Vec<Vec<Point>> {
     let mut pieces: Vec<Vec<Point>> = Vec::new();
     let mut open = false;
     for pair in points.windows(2) {
-        let Some((from, to)) = segment(pair[0], pair[1], frame) else {
+        let Some(kept) = segment(pair[0], pair[1], frame) else {
             open = false;
             continue;
         };
-        let joined = open && pieces.last().and_then(|piece| piece.last()) == Some(&from);
         match pieces.last_mut() {
-            Some(piece) if joined => piece.push(to),
-            _ => pieces.push(vec![from, to]),
+            Some(piece) if open && !kept.enters => piece.push(kept.to),
+            _ => pieces.push(vec![kept.from, kept.to]),
         }
-        open = to == pair[1];
+        open = !kept.leaves;
     }
     pieces
 }
 
-fn segment(from: Point, to: Point, frame: &Frame) -> Option<(Point, Point)> {
+/// The part of a segment within a frame, and whether it crosses the border on its way.
+struct Kept {
+    from: Point,
+    to: Point,
+    enters: bool,
+    leaves: bool,
+}
+
+fn segment(from: Point, to: Point, frame: &Frame) -> Option<Kept> {
     if ![from, to].iter().flatten().all(|part| part.is_finite()) {
         return None;
     }
@@ -81,9 +88,13 @@ fn segment(from: Point, to: Point, frame: &Frame) -> Option<(Point, Point)> {
         return None;
     }
     let at = |share: f64| [from[0] + share * dx, from[1] + share * dy];
-    let start = if enter > 0.0 { at(enter) } else { from };
-    let end = if leave < 1.0 { at(leave) } else { to };
-    Some((start, end))
+    let (enters, leaves) = (enter > 0.0, leave < 1.0);
+    Some(Kept {
+        from: if enters { at(enter) } else { from },
+        to: if leaves { at(leave) } else { to },
+        enters,
+        leaves,
+    })
 }
 
 /// The part of an area within the frame (Sutherland and Hodgman 1974).

@@ -76,7 +76,7 @@ fn name_all(chart: &mut RunChart, name: &str, dash: Dash) {
     for row in &mut chart.rows {
         match row {
             Row::Slips { label, .. } | Row::Flags { label, .. } => {
-                *label = format!("{label}, {name}")
+                *label = format!("{label}, {name}");
             }
             Row::Bars { label, kind, .. } if *kind != super::run_input::BarKind::Signal => {
                 *label = format!("{label}, {name}");

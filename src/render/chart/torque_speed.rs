@@ -264,8 +264,8 @@ fn accelerating(motor: &[[f64; 2]], load: &[[f64; 2]]) -> Vec<Vec<[f64; 2]>> {
     let mut stops: Vec<f64> = motor.iter().chain(load).map(|point| point[0]).collect();
     stops.sort_by(f64::total_cmp);
     stops.dedup();
-    let (mut areas, mut upper, mut lower): (Vec<Vec<[f64; 2]>>, Vec<[f64; 2]>, Vec<[f64; 2]>) =
-        (Vec::new(), Vec::new(), Vec::new());
+    let mut areas: Vec<Vec<[f64; 2]>> = Vec::new();
+    let (mut upper, mut lower) = (Vec::new(), Vec::new());
     let mut close = |upper: &mut Vec<[f64; 2]>, lower: &mut Vec<[f64; 2]>| {
         if upper.len() > 1 {
             areas.push(upper.iter().copied().chain(lower.iter().rev().copied()).collect());

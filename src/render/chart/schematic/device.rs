@@ -94,7 +94,7 @@ pub fn draw(pen: &mut Pen, train: &Schematic, order: &Order, spot: &Spot) {
             gear(pen, &Section { spot, inks, ways: ways(order, spot, members), magnetic: false });
         }
         Some(Link::Coupling { between, .. }) => {
-            coupling(pen, spot, &halves(train, order, spot, between))
+            coupling(pen, spot, &halves(train, order, spot, between));
         }
         Some(Link::GearPair { between, ratio, .. }) => {
             let halves = halves(train, order, spot, between);

@@ -274,7 +274,7 @@ pub fn actors(pen: &mut Pen, train: &Schematic, body: usize, foot: [f64; 2], y: 
             pen.text([at, y + 11.5], &actor.text, grey);
         }
         several => {
-            let top = y + 3.5 - 6.5 * (several.len().min(4).max(1) - 1) as f64;
+            let top = y + 3.5 - 6.5 * (several.len().clamp(1, 4) - 1) as f64;
             for (place, actor) in several.iter().take(4).enumerate() {
                 let at_line = top + 13.0 * place as f64;
                 if right {
