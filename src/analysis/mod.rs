@@ -1,5 +1,10 @@
 //! What is asked of a train: one run in time, and the studies built on it.
 
+pub mod linear_point;
+pub mod modes;
 pub mod poles;
+pub mod rainflow;
+#[cfg(test)]
+mod testing;
 pub mod train;
 pub mod transient;

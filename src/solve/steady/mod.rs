@@ -101,6 +101,12 @@ pub fn find(
     Ok(SteadyPoint { state, mode })
 }
 
+/// Motions of the train in synchronism, in which no shaft twists and no magnet slips: one column
+/// of independent speeds for each.
+pub fn motions(equations: &Equations) -> DMatrix<f64> {
+    kernel(&deformation_rates(equations), equations)
+}
+
 /// Rate rows of all deformations over the independent speeds, and their states.
 fn deformation_rates(equations: &Equations) -> Vec<(usize, DVector<f64>)> {
     let reduction = &equations.model.reduction;
