@@ -1,5 +1,6 @@
 //! What is asked of a train: one run in time, and the studies built on it.
 
+pub mod estimates;
 pub mod linear_point;
 pub mod modes;
 pub mod poles;

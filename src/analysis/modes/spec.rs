@@ -1,7 +1,7 @@
 //! The study `modes` as typed.
 
 use crate::analysis::linear_point::Point;
-use crate::component::channel::Channel;
+use crate::component::channel::{ChannelKind, Known};
 use crate::quantity::{self, Dimension};
 use crate::tree::{Fields, Node, Range, Shape};
 
@@ -55,8 +55,8 @@ pub enum Follows {
 }
 
 impl ModesSpec {
-    /// Reads the inside of `modes:`; `channels` are those of the scenario.
-    pub fn read(fields: &mut Fields<'_>, channels: &[Channel]) -> Self {
+    /// Reads the inside of `modes:`.
+    pub fn read(fields: &mut Fields<'_>, known: Known<'_>) -> Self {
         let point = Point::read(fields);
         let separation = fields.quantity_optional(
             "separation",
@@ -80,10 +80,10 @@ impl ModesSpec {
         let excitations = fields.section(
             "excitations",
             "Excitations beside those that the train has by itself.",
-            |inside| read_excitation(inside, channels),
+            |inside| read_excitation(inside, known),
         );
         if let Some(of) = &of {
-            known_body(fields, "of", of, channels);
+            known_body(fields, "of", of, known);
         }
         let range = match (speeds, of) {
             (Some(speeds), Some(of)) => Some(SpeedRange { of, speeds, operating }),
@@ -109,7 +109,7 @@ impl ModesSpec {
     }
 }
 
-fn read_excitation(fields: &mut Fields<'_>, channels: &[Channel]) -> ExcitationSpec {
+fn read_excitation(fields: &mut Fields<'_>, known: Known<'_>) -> ExcitationSpec {
     let name = fields.own_name().to_owned();
     let body = fields.name_optional("body", "The body whose turns it follows.");
     let against =
@@ -128,7 +128,7 @@ fn read_excitation(fields: &mut Fields<'_>, channels: &[Channel]) -> ExcitationS
     );
     for (key, name) in [("body", &body), ("against", &against)] {
         if let Some(name) = name {
-            known_body(fields, key, name, channels);
+            known_body(fields, key, name, known);
         }
     }
     let follows = match (body, order, frequency) {
@@ -148,15 +148,14 @@ fn read_excitation(fields: &mut Fields<'_>, channels: &[Channel]) -> ExcitationS
 }
 
 /// Tells a body that the file does not have.
-fn known_body(fields: &Fields<'_>, key: &'static str, name: &str, channels: &[Channel]) {
-    let bodies: Vec<&str> = channels
+fn known_body(fields: &Fields<'_>, key: &'static str, name: &str, known: Known<'_>) {
+    let bodies: Vec<&str> = known
+        .channels
         .iter()
-        .filter(|channel| {
-            matches!(channel.kind, crate::component::channel::ChannelKind::BodySpeed(_))
-        })
+        .filter(|channel| matches!(channel.kind, ChannelKind::BodySpeed(_)))
         .filter_map(|channel| channel.name.strip_suffix(".speed"))
         .collect();
-    if name.is_empty() || bodies.contains(&name) {
+    if name.is_empty() || bodies.contains(&name) || !known.complete {
         return;
     }
     let message = format!("no body is named `{name}`");

@@ -1,6 +1,6 @@
 //! The study `rainflow` as typed.
 
-use crate::component::channel::Channel;
+use crate::component::channel::Known;
 use crate::component::requirement::{channel_dimension, limit};
 use crate::quantity::{self, Dimension};
 use crate::tree::{Fields, Range, Shape};
@@ -30,11 +30,11 @@ pub struct RainflowSpec {
 }
 
 impl RainflowSpec {
-    /// Reads the inside of `rainflow:`; `channels` are those of the scenario.
-    pub fn read(fields: &mut Fields<'_>, channels: &[Channel]) -> Self {
+    /// Reads the inside of `rainflow:`.
+    pub fn read(fields: &mut Fields<'_>, known: Known<'_>) -> Self {
         let of = fields.name("of", "The channel whose cycles are counted.");
         let dimension =
-            if fields.describing() { None } else { channel_dimension(fields, &of, channels) };
+            if fields.describing() { None } else { channel_dimension(fields, &of, known) };
         let slope = fields.quantity(
             "slope",
             Dimension::One,

@@ -3,14 +3,15 @@
 use super::*;
 use crate::analysis::testing::{equations, node};
 use crate::diagnostic::Diagnostics;
+use crate::component::channel::Known;
 use crate::tree::Fields;
 use std::cell::RefCell;
 
 fn study(yaml: &str, equations: &Equations) -> (RainflowSpec, String) {
     let node = node(yaml);
     let faults = RefCell::new(Diagnostics::new());
-    let channels = &equations.model.channels;
-    let read = |fields: &mut Fields<'_>| RainflowSpec::read(fields, channels);
+    let known = Known::all(&equations.model.channels);
+    let read = |fields: &mut Fields<'_>| RainflowSpec::read(fields, known);
     let spec = Fields::read("studies.c.rainflow", &node, &faults, read);
     let told: Vec<String> =
         faults.borrow().iter().map(|fault| format!("{}: {}", fault.path, fault.message)).collect();
