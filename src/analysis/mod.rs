@@ -3,6 +3,7 @@
 pub mod estimates;
 pub mod linear_point;
 pub mod modes;
+pub mod operating_point;
 pub mod poles;
 pub mod rainflow;
 #[cfg(test)]
