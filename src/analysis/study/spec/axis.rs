@@ -45,6 +45,7 @@ impl Axis {
                     fields.fault_here(format!("the range is empty: both ends are {both}"));
                     return None;
                 }
+                let count = usize::try_from(count).unwrap_or(2);
                 Self { values: steps(from, to, count, &varied), varied }
             }
             _ => {
@@ -73,8 +74,8 @@ pub fn path_in<'f>(fields: &'f Fields<'_>, section: &str) -> &'f str {
 }
 
 /// `count` values in even steps, both ends included; whole numbers once each.
-pub fn steps(from: f64, to: f64, count: i64, varied: &Varied) -> Vec<f64> {
-    let last = (count - 1).max(1) as f64;
+pub fn steps(from: f64, to: f64, count: usize, varied: &Varied) -> Vec<f64> {
+    let last = count.saturating_sub(1).max(1) as f64;
     let mut values: Vec<f64> = (0..count)
         .map(|step| {
             let share = step as f64 / last;

@@ -10,7 +10,7 @@ mod spread;
 mod sweep;
 mod varied;
 
-pub use axis::Axis;
+pub use axis::{Axis, steps as axis_steps};
 pub use context::{Context, without_studies};
 pub use load_cases::{Case, LoadCases};
 pub use margin::Margin;
