@@ -2,9 +2,11 @@
 
 mod check;
 mod interrupt;
+mod new;
 mod poles;
 mod progress;
 mod run;
+mod schema;
 mod status;
 mod streams;
 
@@ -37,6 +39,10 @@ pub enum Command {
     Check(check::CheckArguments),
     /// Lists pole-pair choices for a ratio: pieces, the six ratios, ripple orders.
     Poles(poles::PolesArguments),
+    /// Prints a commented file to start from.
+    New(new::NewArguments),
+    /// Prints the JSON Schema of the scenario file, for editors.
+    Schema,
 }
 
 /// Options that every command takes, as far as they mean something to it.
@@ -87,6 +93,8 @@ pub fn main() -> ExitCode {
         Command::Run(arguments) => run::run(&arguments, &common),
         Command::Check(arguments) => check::run(&arguments, &common),
         Command::Poles(arguments) => poles::run(&arguments, &common),
+        Command::New(arguments) => new::run(&arguments),
+        Command::Schema => schema::run(),
     };
     status.into()
 }

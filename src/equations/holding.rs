@@ -36,13 +36,7 @@ pub fn pseudo_inverse(matrix: &DMatrix<f64>) -> DMatrix<f64> {
         let value = matrix[(0, 0)];
         return DMatrix::from_element(1, 1, if value > 0.0 { 1.0 / value } else { 0.0 });
     }
-    // Rows of very different inertia make a badly scaled matrix: judge the rank on unit diagonals.
-    let root: Vec<f64> = (0..size).map(|place| matrix[(place, place)].max(0.0).sqrt()).collect();
-    let unit = DMatrix::from_fn(size, size, |row, column| {
-        let scale = root[row] * root[column];
-        if scale > 0.0 { matrix[(row, column)] / scale } else { 0.0 }
-    });
-    let eigen = unit.symmetric_eigen();
+    let eigen = matrix.clone().symmetric_eigen();
     let largest = eigen.eigenvalues.amax();
     let mut inverse = DMatrix::zeros(size, size);
     for (place, value) in eigen.eigenvalues.iter().enumerate() {
@@ -51,10 +45,7 @@ pub fn pseudo_inverse(matrix: &DMatrix<f64>) -> DMatrix<f64> {
             inverse += vector * vector.transpose() / *value;
         }
     }
-    DMatrix::from_fn(size, size, |row, column| {
-        let scale = root[row] * root[column];
-        if scale > 0.0 { inverse[(row, column)] / scale } else { 0.0 }
-    })
+    inverse
 }
 
 /// Holding torques for accelerations `drive` along the rows, with limits of the moment.

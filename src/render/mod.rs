@@ -7,6 +7,7 @@ pub mod json;
 mod leftovers;
 pub mod number;
 pub mod poles;
+pub mod schema;
 pub mod series;
 pub mod shown;
 pub mod story;

@@ -50,11 +50,9 @@ impl Balance {
         let given = if motions.ncols() == 0 {
             DVector::zeros(0)
         } else {
-            motions
-                .clone()
-                .svd(true, true)
-                .solve(start, 1e-12)
-                .map_err(|_| SteadyError { message: "the given speeds cannot be taken apart".to_owned() })?
+            motions.clone().svd(true, true).solve(start, 1e-12).map_err(|_| SteadyError {
+                message: "the given speeds cannot be taken apart".to_owned(),
+            })?
         };
         match motions.ncols() {
             0 => search.settled(&given),
@@ -70,7 +68,11 @@ impl Search<'_> {
     }
 
     fn speeds(&self, motion: &DVector<f64>) -> DVector<f64> {
-        if self.motions.ncols() == 0 { DVector::zeros(self.equations().speeds) } else { self.motions * motion }
+        if self.motions.ncols() == 0 {
+            DVector::zeros(self.equations().speeds)
+        } else {
+            self.motions * motion
+        }
     }
 
     fn by_law(&self) -> Vec<Command> {
@@ -130,7 +132,8 @@ impl Search<'_> {
                 found.push(knot);
             }
         }
-        let nearest = found.into_iter().min_by(|a, b| (a - given).abs().total_cmp(&(b - given).abs()));
+        let nearest =
+            found.into_iter().min_by(|a, b| (a - given).abs().total_cmp(&(b - given).abs()));
         match nearest {
             Some(value) => self.settled(&at(value)),
             None if unstable.is_some() => Err(SteadyError {
@@ -208,7 +211,9 @@ impl Search<'_> {
                 return self.settled_with(&motion, &commands);
             }
         }
-        Err(SteadyError { message: "no torque balance within the limits of the controllers".to_owned() })
+        Err(SteadyError {
+            message: "no torque balance within the limits of the controllers".to_owned(),
+        })
     }
 
     /// Solves the balance with the commands of integrating controllers as unknowns.
@@ -218,8 +223,9 @@ impl Search<'_> {
         commands: &mut [Command],
         count: usize,
     ) -> Result<DVector<f64>, SteadyError> {
-        let open: Vec<usize> =
-            (0..commands.len()).filter(|index| matches!(commands[*index], Command::Fixed(_))).collect();
+        let open: Vec<usize> = (0..commands.len())
+            .filter(|index| matches!(commands[*index], Command::Fixed(_)))
+            .collect();
         // Members that are given at rest and held by friction stay at rest while a balance is sought.
         let held: Vec<DVector<f64>> = self
             .equations()
@@ -230,7 +236,8 @@ impl Search<'_> {
                 speed.abs() <= REST * friction.speed_size && self.external.breakaway(friction) > 0.0
             })
             .map(|friction| {
-                (self.equations().model.reduction.dense(&friction.row).transpose() * self.motions).transpose()
+                (self.equations().model.reduction.dense(&friction.row).transpose() * self.motions)
+                    .transpose()
             })
             .filter(|row| row.amax() > 1e-12)
             .collect();
@@ -271,7 +278,8 @@ impl Search<'_> {
             }
             let mut slope = DMatrix::zeros(total, total);
             for column in 0..total {
-                let width = if column < count { 1e-7 * scale[column].min(1e9) } else { 1e-6 * size };
+                let width =
+                    if column < count { 1e-7 * scale[column].min(1e9) } else { 1e-6 * size };
                 let mut moved = unknown.clone();
                 moved[column] += width;
                 let (there, _) = residual(&moved, commands);
@@ -288,7 +296,9 @@ impl Search<'_> {
         }
         let (now, at_work) = residual(&unknown, commands);
         let motion = unknown.rows(0, count).into_owned();
-        if now.rows(0, count).amax() > 1e-9 * at_work.max(f64::MIN_POSITIVE) || !now.iter().all(|v| v.is_finite()) {
+        if now.rows(0, count).amax() > 1e-9 * at_work.max(f64::MIN_POSITIVE)
+            || !now.iter().all(|v| v.is_finite())
+        {
             let worst = now.rows(0, count).icamax();
             return Err(self.missing(now[worst], &motion));
         }
@@ -300,7 +310,11 @@ impl Search<'_> {
     }
 
     /// Completes a balance: what controllers and resting friction must carry to close it.
-    fn settled_with(&self, motion: &DVector<f64>, commands: &[Command]) -> Result<Balance, SteadyError> {
+    fn settled_with(
+        &self,
+        motion: &DVector<f64>,
+        commands: &[Command],
+    ) -> Result<Balance, SteadyError> {
         let equations = self.equations();
         let speeds = self.speeds(motion);
         let mut commands = commands.to_vec();
@@ -330,10 +344,14 @@ impl Search<'_> {
         }
         let at_rest = self.hold_at_rest(&speeds, &mut torque, &mut at_work)?;
         let left = self.motions.transpose() * &torque;
-        if left.len() > 0 && left.amax() > 1e-8 * at_work.max(f64::MIN_POSITIVE) * self.motions.amax() {
+        if left.len() > 0
+            && left.amax() > 1e-8 * at_work.max(f64::MIN_POSITIVE) * self.motions.amax()
+        {
             return Err(self.missing(left[left.icamax()], motion));
         }
-        let command = (0..commands.len()).map(|index| self.external.command(index, &speeds, commands[index])).collect();
+        let command = (0..commands.len())
+            .map(|index| self.external.command(index, &speeds, commands[index]))
+            .collect();
         Ok(Balance { speeds, torque, at_work, command, at_rest })
     }
 
@@ -355,23 +373,35 @@ impl Search<'_> {
         if resting.is_empty() {
             return Ok(at_rest);
         }
-        let dense: Vec<DVector<f64>> =
-            resting.iter().map(|index| equations.model.reduction.dense(&equations.frictions[*index].row)).collect();
+        let dense: Vec<DVector<f64>> = resting
+            .iter()
+            .map(|index| equations.model.reduction.dense(&equations.frictions[*index].row))
+            .collect();
         for index in &resting {
             at_rest[*index] = Some(0.0);
         }
         if self.motions.ncols() == 0 {
             return Ok(at_rest);
         }
-        let inverse = self.mass.clone().try_inverse().unwrap_or_else(|| DMatrix::identity(self.mass.nrows(), self.mass.nrows()));
+        let inverse = self
+            .mass
+            .clone()
+            .try_inverse()
+            .unwrap_or_else(|| DMatrix::identity(self.mass.nrows(), self.mass.nrows()));
         let rows = DMatrix::from_fn(resting.len(), self.motions.ncols(), |line, column| {
             dense[line].dot(&self.motions.column(column))
         });
         let compliance = &rows * &inverse * rows.transpose();
         let drive = &rows * &inverse * (self.motions.transpose() * &*torque);
-        let limits: Vec<f64> = resting.iter().map(|index| self.external.breakaway(&equations.frictions[*index])).collect();
+        let limits: Vec<f64> = resting
+            .iter()
+            .map(|index| self.external.breakaway(&equations.frictions[*index]))
+            .collect();
         let size = *at_work * inverse.amax() * rows.amax();
-        let drive: Vec<f64> = drive.iter().map(|value| if value.abs() <= 1e-12 * size { 0.0 } else { *value }).collect();
+        let drive: Vec<f64> = drive
+            .iter()
+            .map(|value| if value.abs() <= 1e-12 * size { 0.0 } else { *value })
+            .collect();
         let holding = hold(&compliance, &drive, &limits);
         if !holding.holds {
             let line = holding.weakest.unwrap_or(0);

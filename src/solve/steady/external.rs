@@ -1,9 +1,9 @@
 //! Torques on the bodies of a train that turns as one, at given speeds.
 
 use crate::component::law::Law;
+use crate::equations::frame::sliding_of;
 use crate::equations::mode::REST;
 use crate::equations::{Equations, Friction, Owner, Shape, Sliding, Target, Term};
-use crate::equations::frame::sliding_of;
 use crate::signal::course::Overrides;
 use nalgebra::DVector;
 
@@ -42,8 +42,11 @@ impl External<'_> {
             if let Owner::Magnet(_) = term.owner {
                 continue;
             }
-            let controller =
-                self.equations.controllers.iter().position(|controller| self.drives(controller, index));
+            let controller = self
+                .equations
+                .controllers
+                .iter()
+                .position(|controller| self.drives(controller, index));
             let value = match controller {
                 Some(controller) => self.command(controller, speeds, commands[controller]),
                 None => self.law(term, &state),
@@ -139,7 +142,8 @@ impl External<'_> {
             // Torques over an angle count by their mean over a turn, which is zero.
             Shape::Law(Law::Cogging { .. } | Law::Magnet(_)) => 0.0,
             Shape::Law(law) => {
-                let parameters = term.parameters.map(|slot| slot.map_or(0.0, |slot| self.signal(slot)));
+                let parameters =
+                    term.parameters.map(|slot| slot.map_or(0.0, |slot| self.signal(slot)));
                 law.value(input, parameters, law.piece_at(input))
             }
         }

@@ -55,12 +55,21 @@ impl SteadyError {
 /// # Errors
 /// Names the reason: no torque balance (which member, how much is missing), more than a
 /// magnet's pull-out needed, or an unstable point with its growth rate.
-pub fn find(equations: &Equations, time: f64, overrides: &Overrides) -> Result<SteadyPoint, SteadyError> {
+pub fn find(
+    equations: &Equations,
+    time: f64,
+    overrides: &Overrides,
+) -> Result<SteadyPoint, SteadyError> {
     let rates = deformation_rates(equations);
     let motions = kernel(&rates, equations);
     let start = DVector::from_iterator(
         equations.speeds,
-        equations.model.reduction.independent.iter().map(|body| equations.model.start_speeds[*body]),
+        equations
+            .model
+            .reduction
+            .independent
+            .iter()
+            .map(|body| equations.model.start_speeds[*body]),
     );
     let balance = Balance::find(equations, &motions, &start, time, overrides)?;
     let deformations = deform(equations, &rates, &balance)?;
@@ -96,7 +105,8 @@ pub fn find(equations: &Equations, time: f64, overrides: &Overrides) -> Result<S
 fn deformation_rates(equations: &Equations) -> Vec<(usize, DVector<f64>)> {
     let reduction = &equations.model.reduction;
     let shafts = equations.model.shafts.iter().zip(&equations.twist_state);
-    let twists = shafts.filter_map(|(shaft, place)| place.map(|place| (place, reduction.dense(&shaft.row()))));
+    let twists = shafts
+        .filter_map(|(shaft, place)| place.map(|place| (place, reduction.dense(&shaft.row()))));
     let magnets = equations.model.magnets.iter().zip(&equations.phase_state);
     let phases = magnets.map(|(magnet, place)| (*place, reduction.dense(&magnet.row())));
     twists.chain(phases).collect()
@@ -138,7 +148,8 @@ fn deform(
     if rates.is_empty() {
         return Ok(Vec::new());
     }
-    let matrix = DMatrix::from_fn(equations.speeds, rates.len(), |row, column| rates[column].1[row]);
+    let matrix =
+        DMatrix::from_fn(equations.speeds, rates.len(), |row, column| rates[column].1[row]);
     let svd = matrix.clone().svd(true, true);
     let torque = svd
         .solve(&balance.torque, 1e-12)
@@ -161,13 +172,19 @@ fn undeform(equations: &Equations, place: usize, torque: f64) -> Result<f64, Ste
         let play = if torque == 0.0 { 0.0 } else { shaft.backlash / 2.0 * torque.signum() };
         return Ok(torque / shaft.stiffness + play);
     }
-    let Some(index) = equations.phase_state.iter().position(|state| *state == place) else { return Ok(0.0) };
+    let Some(index) = equations.phase_state.iter().position(|state| *state == place) else {
+        return Ok(0.0);
+    };
     let magnet = &equations.model.magnets[index];
     let share = torque / magnet.amplitude;
     let [low, high] = magnet.law.peak_values();
     magnet.law.stable_angle_for(share).ok_or_else(|| {
         let of_peak = if share >= 0.0 { share / high } else { share / low };
-        SteadyError::new(format!("needs {:.3} % of the pull-out of `{}`", 100.0 * of_peak, magnet.name))
+        SteadyError::new(format!(
+            "needs {:.3} % of the pull-out of `{}`",
+            100.0 * of_peak,
+            magnet.name
+        ))
     })
 }
 
