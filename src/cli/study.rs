@@ -157,7 +157,15 @@ fn one(
         Kind::Sweep(_) | Kind::MonteCarlo(_) => None,
     };
     let columns = Columns::new(study::varied(study), study::layout(loaded, study), label);
-    let mut begun = folder.begin(&study.name, &work, &columns, resume)?;
+    let Some(mut begun) = folder.begin(&study.name, &work, &columns, resume)? else {
+        let message = format!(
+            "`{}` cannot go on: the scenario, its tables, the study or the program has changed since its runs were made",
+            study.name
+        );
+        let hint = "without --resume it begins anew";
+        streams::complain(Severity::Error, message, Some(hint));
+        return Ok(Ended::Stopped(Status::Fault, 0));
+    };
     if begun.restarted {
         let message = format!("`{}` was stopped before and begins anew", study.name);
         streams::complain(Severity::Warning, message, Some("--resume goes on with it"));

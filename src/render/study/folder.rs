@@ -63,21 +63,23 @@ impl StudyFolder {
 
     /// Begins a study, or goes on with what was left of it.
     ///
+    /// `None`: it is to go on, but what was left is other work.
+    ///
     /// # Errors
-    /// Runs of other work when it is to go on, or a fault of the disk.
+    /// The fault of the disk.
     pub fn begin(
         &self,
         name: &str,
         mark: &str,
         columns: &Columns,
         resume: bool,
-    ) -> Result<Begun, FolderFault> {
+    ) -> Result<Option<Begun>, FolderFault> {
         let path = self.journal(name);
         let found = journal::read(&path, mark, columns)?;
         let restarted = !resume && !matches!(found, Found::Nothing);
         if !resume {
             let journal = Journal::begin(&path, name, mark, columns.clone())?;
-            return Ok(Begun { known: BTreeMap::new(), journal, restarted });
+            return Ok(Some(Begun { known: BTreeMap::new(), journal, restarted }));
         }
         let (mut known, same) = self.finished(name, mark, columns)?;
         let journal = match found {
@@ -85,11 +87,11 @@ impl StudyFolder {
                 known.extend(runs);
                 Journal::go_on(&path, name, length, columns.clone())?
             }
-            Found::Other => return Err(changed(name)),
-            Found::Nothing if !same => return Err(changed(name)),
+            Found::Other => return Ok(None),
+            Found::Nothing if !same => return Ok(None),
             Found::Nothing => Journal::begin(&path, name, mark, columns.clone())?,
         };
-        Ok(Begun { known, journal, restarted })
+        Ok(Some(Begun { known, journal, restarted }))
     }
 
     /// The runs of a finished study of this work, and false when it is of other work.
@@ -141,14 +143,5 @@ impl StudyFolder {
             Err(error) if error.kind() != std::io::ErrorKind::NotFound => Err(told(error)),
             _ => Ok(()),
         }
-    }
-}
-
-fn changed(name: &str) -> FolderFault {
-    FolderFault {
-        message: format!(
-            "`{name}` cannot go on: the scenario, its tables, the study or the program has changed since its runs were made"
-        ),
-        hint: Some("without --resume it begins anew".to_owned()),
     }
 }
