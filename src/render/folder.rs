@@ -8,9 +8,13 @@ use super::leftovers::{self, MARKER, MARKER_FILE};
 use std::fs::{self, File};
 use std::io::{self, BufWriter};
 use std::path::{Path, PathBuf};
+use std::time::Duration;
 
 /// How often the swap of folders is tried when another run does the same.
 const ATTEMPTS: u32 = 50;
+
+/// How often a place that looks like another's is looked at.
+const LOOKS: u32 = 5;
 
 /// Why results could not be written.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -102,8 +106,8 @@ impl Folder {
                 Err(error) => return Err(told(error)),
             }
         }
-        let marker = format!("{MARKER}\n{}\n", leftovers::own_identity());
-        fs::write(folder.temporary.join(MARKER_FILE), marker).map_err(told)?;
+        leftovers::sign(&folder.temporary);
+        fs::write(folder.temporary.join(MARKER_FILE), format!("{MARKER}\n")).map_err(told)?;
         Ok(folder)
     }
 
@@ -161,8 +165,7 @@ impl Folder {
             match fs::rename(&self.temporary, &self.target) {
                 Ok(()) => {
                     self.committed = true;
-                    // The process is of no interest any more; the same run gives the same bytes.
-                    let _ = fs::write(self.target.join(MARKER_FILE), format!("{MARKER}\n"));
+                    leftovers::unsign(&self.target);
                     return Ok(());
                 }
                 Err(error) if attempt + 1 == ATTEMPTS => return Err(told(&error, &self.shown)),
@@ -224,7 +227,18 @@ fn resolve(shown: &Path) -> Result<PathBuf, FolderFault> {
     }
 }
 
+/// What stands at the target; a look while another run swaps folders is taken again.
 fn look(target: &Path) -> Place {
+    for _ in 0..LOOKS {
+        match look_once(target) {
+            Place::Foreign(_) => std::thread::sleep(Duration::from_millis(2)),
+            place => return place,
+        }
+    }
+    look_once(target)
+}
+
+fn look_once(target: &Path) -> Place {
     if !target.exists() {
         return Place::Free;
     }

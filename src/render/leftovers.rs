@@ -15,6 +15,9 @@ pub const MARKER_FILE: &str = ".lodeshaft";
 pub const MARKER: &str =
     "results of lodeshaft: the next run into this folder replaces it as a whole";
 
+/// The file of a hidden folder that says who made it.
+const MAKER_FILE: &str = ".lodeshaft-process";
+
 /// A hidden folder of a process that cannot be asked is given up after this time.
 const GIVEN_UP: Duration = Duration::from_secs(24 * 3600);
 
@@ -44,8 +47,7 @@ pub fn set_aside(target: &Path) -> io::Result<PathBuf> {
     loop {
         let aside = target.with_file_name(format!("{}-old", hidden_name(&name, count)));
         if !aside.exists() {
-            let marker = format!("{MARKER}\n{}\n", own_identity());
-            let _ = fs::write(target.join(MARKER_FILE), marker);
+            sign(target);
             fs::rename(target, &aside)?;
             return Ok(aside);
         }
@@ -56,7 +58,7 @@ pub fn set_aside(target: &Path) -> io::Result<PathBuf> {
 /// Puts back a result that was set aside.
 pub fn restore(aside: &Path, target: &Path) {
     if fs::rename(aside, target).is_ok() {
-        let _ = fs::write(target.join(MARKER_FILE), format!("{MARKER}\n"));
+        unsign(target);
     }
 }
 
@@ -68,7 +70,7 @@ pub fn clean(target: &Path) {
             continue;
         }
         if is_old(&folder) && !target.exists() {
-            let _ = fs::rename(&folder, target);
+            restore(&folder, target);
         } else {
             let _ = fs::remove_dir_all(folder);
         }
@@ -94,11 +96,18 @@ fn is_old(folder: &Path) -> bool {
     file_name(folder).ends_with("-old")
 }
 
-/// Second line of the marker: who made the folder.
+/// Notes in a folder that this process has it in hand.
+pub fn sign(folder: &Path) {
+    let _ = fs::write(folder.join(MAKER_FILE), own_identity());
+}
+
+/// Takes the note away: the folder stands in its place, and the same run gives the same bytes.
+pub fn unsign(folder: &Path) {
+    let _ = fs::remove_file(folder.join(MAKER_FILE));
+}
+
 fn maker(folder: &Path) -> Option<String> {
-    let text = fs::read_to_string(folder.join(MARKER_FILE)).ok()?;
-    let mut lines = text.lines();
-    (lines.next() == Some(MARKER)).then(|| lines.next().unwrap_or_default().to_owned())
+    fs::read_to_string(folder.join(MAKER_FILE)).ok()
 }
 
 fn is_abandoned(folder: &Path) -> bool {
@@ -118,7 +127,7 @@ fn newest(folder: &Path) -> Option<SystemTime> {
 }
 
 /// Process, its start and its machine as one line.
-pub fn own_identity() -> String {
+fn own_identity() -> String {
     let process = std::process::id();
     let started = started_at(process).unwrap_or_else(|| "-".to_owned());
     format!("process {process} started {started} on {}", own_machine())
@@ -166,7 +175,8 @@ mod tests {
     fn hide(target: &Path, name: &str, identity: &str) -> PathBuf {
         let folder = target.with_file_name(format!(".result.lodeshaft-{name}"));
         fs::create_dir(&folder).unwrap();
-        fs::write(folder.join(MARKER_FILE), format!("{MARKER}\n{identity}\n")).unwrap();
+        fs::write(folder.join(MARKER_FILE), format!("{MARKER}\n")).unwrap();
+        fs::write(folder.join(MAKER_FILE), identity).unwrap();
         folder
     }
 
