@@ -1,5 +1,6 @@
 //! From results to files and text. Only this floor writes files.
 
+pub mod chart;
 pub mod charts;
 pub mod events;
 pub mod folder;
