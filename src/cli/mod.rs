@@ -48,9 +48,6 @@ pub enum Command {
     New(new::NewArguments),
     /// Prints the JSON Schema of the scenario file, for editors.
     Schema,
-    /// Runs the studies of a scenario (not in this version).
-    #[command(hide = true)]
-    Study(later::LaterArguments),
     /// Writes a report (not in this version).
     #[command(hide = true)]
     Report(later::LaterArguments),
@@ -110,7 +107,6 @@ pub fn main() -> ExitCode {
         Command::Poles(arguments) => poles::run(&arguments, &common),
         Command::New(arguments) => new::run(&arguments),
         Command::Schema => schema::run(),
-        Command::Study(_) => later::refuse("study"),
         Command::Report(_) => later::refuse("report"),
         Command::Compare(_) => later::refuse("compare"),
     };
