@@ -2,7 +2,8 @@
 
 pub mod answer;
 pub mod folder;
-pub mod json;
 pub mod journal;
+pub mod json;
+pub mod of_one_run;
 pub mod rows;
 pub mod text;
