@@ -76,6 +76,15 @@ pub enum Mark {
         /// How they look.
         style: TextStyle,
     },
+    /// Texts of different looks one after another on a line; they stay apart in any font.
+    Runs {
+        /// Where the baseline begins.
+        at: Point,
+        /// Gap between two of them.
+        gap: f64,
+        /// Words and looks.
+        runs: Vec<(String, TextStyle)>,
+    },
 }
 
 /// How a line of text looks.
@@ -163,9 +172,10 @@ impl Drawing {
     pub fn texts(&self) -> Vec<&str> {
         self.marks
             .iter()
-            .filter_map(|mark| match mark {
-                Mark::Text { text, .. } => Some(text.as_str()),
-                _ => None,
+            .flat_map(|mark| match mark {
+                Mark::Text { text, .. } => vec![text.as_str()],
+                Mark::Runs { runs, .. } => runs.iter().map(|run| run.0.as_str()).collect(),
+                _ => Vec::new(),
             })
             .collect()
     }

@@ -104,24 +104,20 @@ impl Pen {
     /// A line of text by its baseline.
     pub fn text(&mut self, at: Point, text: &str, style: TextStyle) {
         if !text.is_empty() && at.iter().all(|part| part.is_finite()) {
-            // Control characters have no place in SVG text; U+E000 is the writer's own sentinel.
-            let text =
-                text.replace(|letter: char| letter.is_control() || letter == '\u{E000}', " ");
-            self.marks.push(Mark::Text { at, text, style });
+            self.marks.push(Mark::Text { at, text: clean(text), style });
         }
     }
 
-    /// Texts one after another from a point on; returns where they end.
-    pub fn run_of_text(&mut self, at: Point, gap: f64, parts: &[(&str, TextStyle)]) -> f64 {
-        let mut x = at[0];
-        for (text, style) in parts {
-            if text.is_empty() {
-                continue;
-            }
-            self.text([x, at[1]], text, TextStyle { anchor: Anchor::Start, ..*style });
-            x += font::width(text, style.size, style.bold) + gap;
+    /// Texts one after another from a point on.
+    pub fn run_of_text(&mut self, at: Point, gap: f64, parts: &[(&str, TextStyle)]) {
+        let runs: Vec<(String, TextStyle)> = parts
+            .iter()
+            .filter(|part| !part.0.is_empty())
+            .map(|(text, style)| (clean(text), TextStyle { anchor: Anchor::Start, ..*style }))
+            .collect();
+        if !runs.is_empty() && at.iter().all(|part| part.is_finite()) {
+            self.marks.push(Mark::Runs { at, gap, runs });
         }
-        x - gap
     }
 
     /// A text on a plate of paper, for labels that must cross a line.
@@ -150,4 +146,9 @@ impl Pen {
         }
         Drawing { id: id.to_owned(), title: title.to_owned(), width, height, marks: self.marks }
     }
+}
+
+/// Control characters have no place in SVG text; U+E000 is the writer's own sentinel.
+fn clean(text: &str) -> String {
+    text.replace(|letter: char| letter.is_control() || letter == '\u{E000}', " ")
 }

@@ -82,6 +82,13 @@ impl Bitmap<'_> {
             }
             Mark::Disc { centre, radius, ink } => self.disc(*centre, *radius, *ink),
             Mark::Text { at, text, style } => self.text(*at, text, *style),
+            Mark::Runs { at, gap, runs } => {
+                let mut x = at[0];
+                for (text, style) in runs {
+                    self.text([x, at[1]], text, *style);
+                    x += font::width(text, style.size, style.bold) + gap;
+                }
+            }
         }
     }
 
