@@ -160,6 +160,11 @@ impl Group {
         self
     }
 
+    /// The same with a number as attribute; what is not finite is left out.
+    pub fn number(self, name: &'static str, value: f64) -> Self {
+        if value.is_finite() { self.with(name, value.to_string()) } else { self }
+    }
+
     /// The same with one more `data-` attribute.
     pub fn with(mut self, name: &'static str, value: impl Into<String>) -> Self {
         self.data.push((name, value.into()));
