@@ -66,27 +66,43 @@ impl Hand {
             h = f64::min(h, end - t);
             let k2 = self.rates(&add(&y, h, &[(0.2, &k1)]));
             let k3 = self.rates(&add(&y, h, &[(3.0 / 40.0, &k1), (9.0 / 40.0, &k2)]));
-            let k4 = self.rates(&add(&y, h, &[(44.0 / 45.0, &k1), (-56.0 / 15.0, &k2), (32.0 / 9.0, &k3)]));
-            let k5 = self.rates(&add(&y, h, &[
-                (19372.0 / 6561.0, &k1),
-                (-25360.0 / 2187.0, &k2),
-                (64448.0 / 6561.0, &k3),
-                (-212.0 / 729.0, &k4),
-            ]));
-            let k6 = self.rates(&add(&y, h, &[
-                (9017.0 / 3168.0, &k1),
-                (-355.0 / 33.0, &k2),
-                (46732.0 / 5247.0, &k3),
-                (49.0 / 176.0, &k4),
-                (-5103.0 / 18656.0, &k5),
-            ]));
-            let next = add(&y, h, &[
-                (35.0 / 384.0, &k1),
-                (500.0 / 1113.0, &k3),
-                (125.0 / 192.0, &k4),
-                (-2187.0 / 6784.0, &k5),
-                (11.0 / 84.0, &k6),
-            ]);
+            let k4 = self.rates(&add(
+                &y,
+                h,
+                &[(44.0 / 45.0, &k1), (-56.0 / 15.0, &k2), (32.0 / 9.0, &k3)],
+            ));
+            let k5 = self.rates(&add(
+                &y,
+                h,
+                &[
+                    (19372.0 / 6561.0, &k1),
+                    (-25360.0 / 2187.0, &k2),
+                    (64448.0 / 6561.0, &k3),
+                    (-212.0 / 729.0, &k4),
+                ],
+            ));
+            let k6 = self.rates(&add(
+                &y,
+                h,
+                &[
+                    (9017.0 / 3168.0, &k1),
+                    (-355.0 / 33.0, &k2),
+                    (46732.0 / 5247.0, &k3),
+                    (49.0 / 176.0, &k4),
+                    (-5103.0 / 18656.0, &k5),
+                ],
+            ));
+            let next = add(
+                &y,
+                h,
+                &[
+                    (35.0 / 384.0, &k1),
+                    (500.0 / 1113.0, &k3),
+                    (125.0 / 192.0, &k4),
+                    (-2187.0 / 6784.0, &k5),
+                    (11.0 / 84.0, &k6),
+                ],
+            );
             let k7 = self.rates(&next);
             let mut error = 0.0;
             for i in 0..STATES {
@@ -155,7 +171,8 @@ fn main() {
     let mut ratios: Vec<f64> = (0..7)
         .map(|_| {
             let by_hand = seconds(|| hand.run(610.0, 1e-8)) - seconds(|| hand.run(10.0, 1e-8));
-            let by_engine = seconds(|| engine(&equations, 610.0)) - seconds(|| engine(&equations, 10.0));
+            let by_engine =
+                seconds(|| engine(&equations, 610.0)) - seconds(|| engine(&equations, 10.0));
             by_engine / by_hand
         })
         .collect();

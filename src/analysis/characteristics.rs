@@ -45,14 +45,17 @@ pub fn find(equations: &Equations, train: &Train, result: &RunResult) -> Option<
     };
     let top = if top.abs() > 0.0 { top } else { speed.max };
     let sense = top.signum();
-    let value = |speed: f64| sense * sign * law.value(sign * speed, [0.0; 2], law.piece_at(sign * speed));
+    let value =
+        |speed: f64| sense * sign * law.value(sign * speed, [0.0; 2], law.piece_at(sign * speed));
     let grid = |place: usize| top * place as f64 / (POINTS - 1) as f64;
     let drive = (0..POINTS).map(|place| [sense * grid(place), value(grid(place))]).collect();
     let own = train.bodies.iter().find(|body| body.name == motor.body)?.ratio?;
     let mut load = vec![0.0; POINTS];
     let mut any = false;
     for (place, typed) in scenario.loads.iter().enumerate() {
-        let Some(ratio) = train.bodies.iter().find(|body| body.name == typed.body).and_then(|body| body.ratio) else {
+        let Some(ratio) =
+            train.bodies.iter().find(|body| body.name == typed.body).and_then(|body| body.ratio)
+        else {
             continue;
         };
         if typed.against.is_some() {
@@ -60,28 +63,52 @@ pub fn find(equations: &Equations, train: &Train, result: &RunResult) -> Option<
         }
         let referred = ratio / own;
         for (slot, sum) in load.iter_mut().enumerate() {
-            if let Some(torque) = torque_at(equations, place, typed.law.clone(), grid(slot) * referred, typed.reversed) {
+            if let Some(torque) = torque_at(
+                equations,
+                place,
+                typed.law.clone(),
+                grid(slot) * referred,
+                typed.reversed,
+            ) {
                 *sum -= sense * torque * referred;
                 any = true;
             }
         }
     }
-    let load = any.then(|| load.iter().enumerate().map(|(place, torque)| [sense * grid(place), *torque]).collect());
+    let load = any.then(|| {
+        load.iter().enumerate().map(|(place, torque)| [sense * grid(place), *torque]).collect()
+    });
     let torque = channel(format!("{}.torque", motor.name))?;
-    let settled = result.gears.iter().all(|gear| gear.state_at_end == crate::results::GearState::Synchronous);
-    let operating_point = (settled && result.completed).then_some([sense * speed.last, sense * torque.last]);
-    Some(Characteristics { motor: motor.name.clone(), body: motor.body.clone(), drive, load, operating_point })
+    let settled =
+        result.gears.iter().all(|gear| gear.state_at_end == crate::results::GearState::Synchronous);
+    let operating_point =
+        (settled && result.completed).then_some([sense * speed.last, sense * torque.last]);
+    Some(Characteristics {
+        motor: motor.name.clone(),
+        body: motor.body.clone(),
+        drive,
+        load,
+        operating_point,
+    })
 }
 
 /// Torque of a load on its body at a speed of it; `None` for loads that follow time.
-fn torque_at(equations: &Equations, place: usize, law: LoadLaw, speed: f64, reversed: bool) -> Option<f64> {
+fn torque_at(
+    equations: &Equations,
+    place: usize,
+    law: LoadLaw,
+    speed: f64,
+    reversed: bool,
+) -> Option<f64> {
     let sign = if reversed { -1.0 } else { 1.0 };
     match law {
-        LoadLaw::Friction { sliding, .. } => Some(if speed == 0.0 { 0.0 } else { -sliding.copysign(speed) }),
+        LoadLaw::Friction { sliding, .. } => {
+            Some(if speed == 0.0 { 0.0 } else { -sliding.copysign(speed) })
+        }
         LoadLaw::Viscous { coefficient } => Some(-coefficient * speed),
-        LoadLaw::PowerLaw { .. } => law.scalar().map(|law| {
-            sign * law.value(sign * speed, [0.0; 2], law.piece_at(sign * speed))
-        }),
+        LoadLaw::PowerLaw { .. } => law
+            .scalar()
+            .map(|law| sign * law.value(sign * speed, [0.0; 2], law.piece_at(sign * speed))),
         LoadLaw::Curve { .. } => {
             let _ = (equations, place);
             match law.scalar()? {

@@ -8,8 +8,8 @@
 //! `dw/dphi = (T - D w - damper(w) - K law(phi)) / (J_e w)`.
 
 use crate::equations::Equations;
-use crate::equations::channels::ends_of;
 use crate::equations::Owner;
+use crate::equations::channels::ends_of;
 use crate::model::elimination::{self, Constraint};
 use crate::model::magnet::Magnet;
 use crate::results::{RunResult, Separatrix};
@@ -37,7 +37,13 @@ pub fn find(equations: &Equations, result: &RunResult, magnet: usize) -> Option<
         return None;
     }
     let shown = if ahead <= PI { ahead } else { behind };
-    Some(Separatrix { load: "load at the end of the run".to_owned(), saddle: shown, rest, upper, lower })
+    Some(Separatrix {
+        load: "load at the end of the run".to_owned(),
+        saddle: shown,
+        rest,
+        upper,
+        lower,
+    })
 }
 
 /// Torque along the phase from everything outside the magnet, at the end of a run, N*m per electrical rad.
@@ -53,7 +59,9 @@ fn end_load(equations: &Equations, result: &RunResult, magnet: &Magnet) -> Optio
     let inertias: Vec<f64> = scenario.bodies.iter().map(|body| body.inertia).collect();
     let rigid = elimination::reduce_quietly(&stiff, &inertias);
     let along = rigid.dense(&magnet.row()).transpose() * &rigid.inverse_mass;
-    let value = |name: &str| result.channels.iter().find(|channel| channel.name == name).map(|channel| channel.last);
+    let value = |name: &str| {
+        result.channels.iter().find(|channel| channel.name == name).map(|channel| channel.last)
+    };
     let mut sum = 0.0;
     let mut add = |owner: Owner, name: &str| {
         let (body, against) = ends_of(equations, owner);
@@ -89,7 +97,8 @@ fn border(magnet: &Magnet, load: f64, saddle: f64, side: f64, limit: f64) -> Vec
     let damping = damper(1e-9) / 1e-9;
     let slope = magnet.law.slope(saddle);
     // Stable direction of the saddle: J x^2 + D x + K law' = 0, the negative root.
-    let root = (-damping - (damping * damping - 4.0 * inertia * slope).max(0.0).sqrt()) / (2.0 * inertia);
+    let root =
+        (-damping - (damping * damping - 4.0 * inertia * slope).max(0.0).sqrt()) / (2.0 * inertia);
     let rate = |phi: f64, w: f64| (load - damper(w) - magnet.law.value(phi)) / (inertia * w);
     let step = side * TAU / STEPS as f64;
     let mut phi = saddle + step;

@@ -6,11 +6,12 @@ use super::chart::palette::Side;
 use super::chart::swing::{SwingChart, swing_chart};
 use super::chart::torque_speed::{Characteristic, TorqueSpeed, torque_speed_chart};
 use super::chart::train::{SignalBar, SignalBars, Train, TrainBody, TrainGear, TrainShaft};
-use super::chart::units::Display;
-use super::chart::{pick, run};
+use super::chart::units::{Display, Unit};
+use super::chart::{number, pick, pick_rows, run};
 use crate::analysis::train::{self, Train as Figures};
 use crate::analysis::{characteristics, separatrix};
 use crate::equations::Equations;
+use crate::quantity::{self, Dimension};
 use crate::results::{GearResult, RunResult, Traces};
 use crate::scenario::Scenario;
 use crate::signal::Signal;
@@ -59,7 +60,7 @@ pub fn drawings(
     let scenario = &equations.model.scenario;
     let figures = train::figures(&equations.model);
     let train = describe(equations, &figures);
-    let display = Display::new(&scenario.display.speed, &scenario.display.torque, &scenario.display.angle);
+    let display = display(scenario);
     let mut list = vec![run::run_chart(&pick::run(result, traces, &train, &display, "run"))];
     for (number, [start, end]) in clusters(result).into_iter().enumerate() {
         if let Some(zoomed) = again(window(equations, start, end, false)) {
@@ -101,35 +102,32 @@ pub fn write(folder: &Path, drawings: &[Drawing]) -> io::Result<Vec<String>> {
     Ok(names)
 }
 
-/// Windows around clusters of slips: three periods before the first until rest, three clusters at most.
+/// Clusters of slips worth a picture of their own: three at most, none that is most of the run.
 fn clusters(result: &RunResult) -> Vec<[f64; 2]> {
-    let mut windows: Vec<[f64; 2]> = Vec::new();
-    for gear in &result.gears {
-        let period = if gear.natural_period.is_finite() { gear.natural_period } else { 0.02 * result.end_time };
-        let mut open: Option<[f64; 2]> = None;
-        for slip in &gear.slip_events {
-            open = match open {
-                Some([start, last]) if slip.time - last <= 6.0 * period => Some([start, slip.time]),
-                Some(closed) => {
-                    windows.push(around(closed, period, result.end_time));
-                    Some([slip.time, slip.time])
-                }
-                None => Some([slip.time, slip.time]),
-            };
+    let mut windows = pick_rows::zoom_windows(result);
+    for window in &mut windows {
+        // A long slide is shown at its beginning: forty periods of it tell the story.
+        let period = result.gears.iter().map(|gear| gear.natural_period).fold(0.0, f64::max);
+        if period.is_finite() && period > 0.0 {
+            window[1] = window[1].min(window[0] + 40.0 * period);
         }
-        windows.extend(open.map(|cluster| around(cluster, period, result.end_time)));
     }
     windows.retain(|[start, end]| end > start && end - start < 0.8 * result.end_time);
-    windows.sort_by(|a, b| a[0].total_cmp(&b[0]));
-    windows.dedup_by(|later, earlier| later[0] < earlier[1]);
     windows.truncate(3);
     windows
 }
 
-/// A long slide is shown at its beginning: forty periods of it tell the story.
-fn around([first, last]: [f64; 2], period: f64, end: f64) -> [f64; 2] {
-    let last = last.min(first + 40.0 * period);
-    [(first - 3.0 * period).max(0.0), (last + 8.0 * period).min(end)]
+/// The units that a scenario asks for, as charts write them.
+pub fn display(scenario: &Scenario) -> Display {
+    let unit = |text: &str, dimension: Dimension| {
+        let per_si = quantity::to_unit(1.0, dimension, text).unwrap_or(1.0);
+        Unit::new(&number::unit_text(text), per_si)
+    };
+    Display {
+        speed: unit(&scenario.display.speed, Dimension::Speed),
+        torque: unit(&scenario.display.torque, Dimension::Torque),
+        angle: unit(&scenario.display.angle, Dimension::Angle),
+    }
 }
 
 /// Which member each body turns with: the first magnet reached over shafts and rigid joints.
@@ -152,11 +150,15 @@ fn sides(equations: &Equations) -> Vec<Side> {
         .shafts
         .iter()
         .map(|shaft| shaft.ends.iter().flatten().copied().collect())
-        .chain(model.constraints.iter().map(|joint| joint.row.iter().map(|(body, _)| *body).collect()))
+        .chain(
+            model.constraints.iter().map(|joint| joint.row.iter().map(|(body, _)| *body).collect()),
+        )
         .collect();
     for _ in 0..sides.len() {
         for joint in &joints {
-            if let Some(known) = joint.iter().map(|body| sides[*body]).find(|side| *side != Side::Other) {
+            if let Some(known) =
+                joint.iter().map(|body| sides[*body]).find(|side| *side != Side::Other)
+            {
                 for &body in joint {
                     if sides[body] == Side::Other {
                         sides[body] = known;
@@ -174,7 +176,8 @@ pub fn describe(equations: &Equations, figures: &Figures) -> Train {
     let scenario = &model.scenario;
     let sides = sides(equations);
     let acted = |name: &str| {
-        scenario.motors.iter().any(|motor| motor.body == name) || scenario.loads.iter().any(|load| load.body == name)
+        scenario.motors.iter().any(|motor| motor.body == name)
+            || scenario.loads.iter().any(|load| load.body == name)
     };
     let bodies = figures
         .bodies
@@ -193,7 +196,13 @@ pub fn describe(equations: &Equations, figures: &Figures) -> Train {
         .zip(&model.shafts)
         .map(|(typed, shaft)| TrainShaft {
             name: typed.name.clone(),
-            side: shaft.ends.iter().flatten().map(|body| sides[*body]).next().unwrap_or(Side::Other),
+            side: shaft
+                .ends
+                .iter()
+                .flatten()
+                .map(|body| sides[*body])
+                .next()
+                .unwrap_or(Side::Other),
             rated_torque: typed.rated_torque,
             peak_torque: typed.peak_torque,
         })
@@ -209,7 +218,9 @@ pub fn describe(equations: &Equations, figures: &Figures) -> Train {
             let (name, body, side) = match shown {
                 Some(member) => (
                     member.name,
-                    member.body.map_or_else(String::new, |body| scenario.bodies[body].name.replace('_', " ")),
+                    member.body.map_or_else(String::new, |body| {
+                        scenario.bodies[body].name.replace('_', " ")
+                    }),
                     match member.name {
                         "inner" | "a" => Side::Inner,
                         "modulator" => Side::Modulator,
@@ -226,13 +237,30 @@ pub fn describe(equations: &Equations, figures: &Figures) -> Train {
                 }
             };
             let harmonics = field.map_or_else(Vec::new, |field| {
-                field.harmonics.iter().map(|one| [f64::from(one.order), one.amplitude, one.phase]).collect()
+                field
+                    .harmonics
+                    .iter()
+                    .map(|one| [f64::from(one.order), one.amplitude, one.phase])
+                    .collect()
             });
-            TrainGear { name: magnet.name.clone(), shown_member: name, shown_body: body, side, harmonics }
+            TrainGear {
+                name: magnet.name.clone(),
+                shown_member: name,
+                shown_body: body,
+                side,
+                harmonics,
+            }
         })
         .collect();
     let (signals, signal_steps) = bars(scenario, equations);
-    Train { bodies, shafts, gears, reference: figures.reference.replace('_', " "), signals, signal_steps }
+    Train {
+        bodies,
+        shafts,
+        gears,
+        reference: figures.reference.replace('_', " "),
+        signals,
+        signal_steps,
+    }
 }
 
 /// Pulses and steps of prescribed torques and brakes as bars; kinks of all signals as dotted lines.
@@ -251,8 +279,8 @@ fn bars(scenario: &Scenario, equations: &Equations) -> (Vec<SignalBars>, Vec<f64
             rows.push(SignalBars { label: name.replace('_', " "), bars });
         }
     };
-    let torque = |value: f64| super::chart::number::number(value) + "\u{a0}N·m";
-    let share = |value: f64| super::chart::number::number(100.0 * value) + "\u{a0}%";
+    let torque = |value: f64| super::chart::number::number(value, 4) + "\u{a0}N·m";
+    let share = |value: f64| super::chart::number::number(100.0 * value, 3) + "\u{a0}%";
     for motor in &scenario.motors {
         if let crate::component::motor::MotorLaw::Prescribed { torque: signal } = &motor.law {
             add(&motor.name, signal, &torque);
@@ -304,13 +332,16 @@ fn torque_speed(
     // The gear on the motor's side: its member and what it stands for at the motor shaft.
     let near = equations.model.magnets.iter().find_map(|magnet| {
         let member = magnet.members.iter().find(|member| {
-            member.body.is_some_and(|body| train.bodies[body].side == own.side && own.side != Side::Other)
+            member
+                .body
+                .is_some_and(|body| train.bodies[body].side == own.side && own.side != Side::Other)
         })?;
         let body = member.body?;
         let referral = train.bodies[body].referral?;
         Some((magnet, member, referral / own.referral?))
     });
-    let pull_out = near.map(|(magnet, member, referral)| magnet.pull_out_at(member.count) / referral.abs());
+    let pull_out =
+        near.map(|(magnet, member, referral)| magnet.pull_out_at(member.count) / referral.abs());
     let path = near.and_then(|(magnet, member, referral)| {
         let torque = format!("{}.torque_{}", magnet.name, member.name);
         let speed = format!("{}.speed", found.body);
@@ -321,7 +352,9 @@ fn torque_speed(
             .columns
             .iter()
             .zip(&torque.columns)
-            .filter_map(|(speed, torque)| Some([sense * speed.as_ref()?.last, -sense * torque.as_ref()?.last / referral]))
+            .filter_map(|(speed, torque)| {
+                Some([sense * speed.as_ref()?.last, -sense * torque.as_ref()?.last / referral])
+            })
             .collect();
         let slips = result.gears.iter().any(|gear| gear.slips > 0);
         (!slips && points.len() > 2).then(|| Characteristic {
@@ -340,7 +373,11 @@ fn torque_speed(
         title: format!("{}: torque over speed at {}", result.title, found.body.replace('_', " ")),
         at: found.body.replace('_', " "),
         motor: Characteristic { label: "Motor".to_owned(), side: own.side, points: found.drive },
-        load: found.load.map(|points| Characteristic { label: "Load".to_owned(), side: load_side, points }),
+        load: found.load.map(|points| Characteristic {
+            label: "Load".to_owned(),
+            side: load_side,
+            points,
+        }),
         pull_out,
         operating_point: found.operating_point,
         path,
