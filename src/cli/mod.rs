@@ -2,6 +2,7 @@
 
 mod check;
 mod interrupt;
+mod later;
 mod new;
 mod poles;
 mod progress;
@@ -43,6 +44,15 @@ pub enum Command {
     New(new::NewArguments),
     /// Prints the JSON Schema of the scenario file, for editors.
     Schema,
+    /// Runs the studies of a scenario (not in this version).
+    #[command(hide = true)]
+    Study(later::LaterArguments),
+    /// Writes a report (not in this version).
+    #[command(hide = true)]
+    Report(later::LaterArguments),
+    /// Compares scenarios or results (not in this version).
+    #[command(hide = true)]
+    Compare(later::LaterArguments),
 }
 
 /// Options that every command takes, as far as they mean something to it.
@@ -95,6 +105,9 @@ pub fn main() -> ExitCode {
         Command::Poles(arguments) => poles::run(&arguments, &common),
         Command::New(arguments) => new::run(&arguments),
         Command::Schema => schema::run(),
+        Command::Study(_) => later::refuse("study"),
+        Command::Report(_) => later::refuse("report"),
+        Command::Compare(_) => later::refuse("compare"),
     };
     status.into()
 }
