@@ -179,7 +179,10 @@ impl Run<'_, '_> {
             if acted.end_run || self.time >= duration {
                 let evaluator =
                     Evaluator { equations, assembly: &assembly, overrides: &self.overrides };
-                self.observer.end(&evaluator, self.time, &self.state);
+                // The segment before has told the end from the left, which is the final value.
+                if self.time <= 0.0 {
+                    self.observer.end(&evaluator, self.time, &self.state);
+                }
                 self.observer.final_row(&evaluator, self.time, &self.state);
                 return;
             }
