@@ -70,13 +70,13 @@ pub fn resolve(
     }
     let mut refused: Vec<usize> = Vec::new();
     let mut frame = Frame::default();
-    for round in 0..=2 * equations.frictions.len() {
+    for _ in 0..=2 * equations.frictions.len() {
         let assembly = assemble(equations, mode, time, end, overrides);
         let evaluator = Evaluator { equations, assembly: &assembly, overrides };
         evaluator.laws(time, state, &mut frame);
         let Some(holding) = frame.holding.clone() else { break };
         // A guard that has just tripped stands within rounding of the limit: it counts as passed.
-        if holding.holds && !(tripped && round == 0 && holding.margin < 1e-8) {
+        if holding.holds && !(tripped && holding.margin < 1e-8) {
             project(equations, &assembly.projection, state);
             break;
         }
