@@ -3,5 +3,6 @@
 pub mod characteristics;
 pub mod poles;
 pub mod separatrix;
+pub mod study;
 pub mod train;
 pub mod transient;
