@@ -1,3 +1,5 @@
 //! What is asked of a train: one run in time, and the studies built on it.
 
+pub mod poles;
+pub mod train;
 pub mod transient;

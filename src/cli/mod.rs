@@ -1,8 +1,12 @@
 //! The command line: what was typed, and the commands that do it.
 
+mod check;
 mod interrupt;
+mod new;
+mod poles;
 mod progress;
 mod run;
+mod schema;
 mod status;
 mod streams;
 
@@ -31,6 +35,14 @@ pub struct CommandLine {
 pub enum Command {
     /// Runs a scenario in time: series, events, summary, charts and verdicts.
     Run(run::RunArguments),
+    /// Reads and checks scenarios and shows their trains; runs nothing.
+    Check(check::CheckArguments),
+    /// Lists pole-pair choices for a ratio: pieces, the six ratios, ripple orders.
+    Poles(poles::PolesArguments),
+    /// Prints a commented file to start from.
+    New(new::NewArguments),
+    /// Prints the JSON Schema of the scenario file, for editors.
+    Schema,
 }
 
 /// Options that every command takes, as far as they mean something to it.
@@ -79,6 +91,10 @@ pub fn main() -> ExitCode {
     let CommandLine { command, common } = CommandLine::parse();
     let status: Status = match command {
         Command::Run(arguments) => run::run(&arguments, &common),
+        Command::Check(arguments) => check::run(&arguments, &common),
+        Command::Poles(arguments) => poles::run(&arguments, &common),
+        Command::New(arguments) => new::run(&arguments),
+        Command::Schema => schema::run(),
     };
     status.into()
 }

@@ -8,7 +8,7 @@ use crate::analysis::transient::{prepare, run_prepared};
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::render::folder::{Folder, FolderFault};
 use crate::render::series::SeriesWriter;
-use crate::render::{charts, events, json};
+use crate::render::{charts, events, json, text};
 use crate::results::{RunResult, Warning};
 use crate::scenario::{Loaded, Source, load};
 use crate::solve::RunOptions;
@@ -42,7 +42,7 @@ pub fn run(arguments: &RunArguments, common: &Common) -> Status {
     };
     let shown = output_folder(&arguments.file, common);
     let written = write_run(&loaded, &shown, &arguments.file, common, &interrupt);
-    let (result, summary) = match written {
+    let Written { result, summary, files } = match written {
         Ok(written) => written,
         Err(Trouble::File) => return Status::Fault,
         Err(Trouble::Writing(fault)) => {
@@ -56,7 +56,14 @@ pub fn run(arguments: &RunArguments, common: &Common) -> Status {
     match common.format {
         Format::Json => streams::print(&summary, status),
         Format::Text if common.quiet => status,
-        Format::Text => streams::print(&summary, status),
+        Format::Text => {
+            let telling = text::Telling {
+                file: &loaded.source.name,
+                output_folder: &shown.display().to_string(),
+                files: &files,
+            };
+            streams::print(&text::summary(&loaded.scenario, &result, &telling), status)
+        }
     }
 }
 
@@ -68,14 +75,23 @@ pub fn output_folder(file: &Path, common: &Common) -> PathBuf {
     })
 }
 
-/// Runs a scenario and writes its folder; returns the result and the text of `summary.json`.
+/// What a run left behind.
+struct Written {
+    result: RunResult,
+    /// The text of `summary.json`.
+    summary: String,
+    /// The files in the folder.
+    files: Vec<String>,
+}
+
+/// Runs a scenario and writes its folder.
 fn write_run(
     loaded: &Loaded,
     shown: &Path,
     file: &Path,
     common: &Common,
     interrupt: &Interrupt,
-) -> Result<(RunResult, String), Trouble> {
+) -> Result<Written, Trouble> {
     let scenario = &loaded.scenario;
     let at_fault = |found: Diagnostics| {
         let mut all = loaded.warnings.clone();
@@ -115,11 +131,12 @@ fn write_run(
     };
     let summary = json::pretty(&json::summary(&result, &origin));
     folder.write("summary.json", summary.as_bytes()).map_err(Trouble::Writing)?;
+    let mut files = ["summary.json", "series.csv", "events.csv"].map(str::to_owned).to_vec();
     if !common.no_charts {
-        charts::write(folder.path(), scenario, &result).map_err(of("the charts"))?;
+        files.extend(charts::write(folder.path(), scenario, &result).map_err(of("the charts"))?);
     }
     folder.commit().map_err(Trouble::Writing)?;
-    Ok((result, summary))
+    Ok(Written { result, summary, files })
 }
 
 fn tell_warnings(source: &Source, warnings: &[Warning]) {

@@ -38,6 +38,8 @@ pub struct Active {
     pub offset: Option<(f64, SlotId)>,
     /// Parameters of the law.
     pub parameters: [Option<SlotId>; 2],
+    /// Offset and parameters where nothing of them follows time.
+    pub fixed: (f64, [f64; 2]),
     /// Factor on the value.
     pub factor: Strength,
     /// Column: entries of the scaled rates.
@@ -162,7 +164,8 @@ pub fn assemble(
         let moving =
             term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
         for slot in moving {
-            varies |= equations.bank.constant_on(slot, start, end, overrides).is_none();
+            // The steady path leaves offsets and parameters out: right only where they are zero.
+            varies |= equations.bank.constant_on(slot, start, end, overrides) != Some(0.0);
         }
         let column = match &term.target {
             Target::Torque(direction) => parts.column(direction),
@@ -183,7 +186,13 @@ pub fn assemble(
             folded.push(Active::of_term(place, term, mode.pieces[place], factor, column));
             continue;
         }
-        active.push(Active::of_term(place, term, mode.pieces[place], factor, column));
+        let mut entry = Active::of_term(place, term, mode.pieces[place], factor, column);
+        let constant = |slot| equations.bank.constant_on(slot, start, end, overrides).unwrap_or(0.0);
+        entry.fixed = (
+            term.offset.map_or(0.0, |(gain, slot)| gain * constant(slot)),
+            term.parameters.map(|slot| slot.map_or(0.0, constant)),
+        );
+        active.push(entry);
     }
     for (index, friction) in equations.frictions.iter().enumerate() {
         let direction = mode.frictions[index].direction();
@@ -200,6 +209,7 @@ pub fn assemble(
             input: friction.speed.clone(),
             offset: None,
             parameters: [None; 2],
+            fixed: (0.0, [0.0; 2]),
             factor,
             column: parts.column(&friction.row),
             power: PowerKind::Lost,
@@ -214,6 +224,7 @@ pub fn assemble(
             input: Vec::new(),
             offset: None,
             parameters: [None; 2],
+            fixed: (0.0, [0.0; 2]),
             factor: Strength::Constant(1.0),
             column: parts.column(&parts.constant_row()),
             power: PowerKind::None,
@@ -548,6 +559,7 @@ impl Active {
             input: term.input.clone(),
             offset: term.offset,
             parameters: term.parameters,
+            fixed: (0.0, [0.0; 2]),
             factor,
             column,
             power: term.power,

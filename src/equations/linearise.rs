@@ -32,7 +32,7 @@ pub fn jacobian(
             Function::Law(crate::component::law::Law::Magnet(magnet), _)
                 if magnets == MagnetSlope::Steepest =>
             {
-                magnet.steepest()
+                magnet.amplitude() * magnet.steepest()
             }
             Function::Law(law, piece) => {
                 let [first, second] = active.parameters;

@@ -1,10 +1,17 @@
 //! From results to files and text. Only this floor writes files.
 
+pub mod chart;
 pub mod charts;
 pub mod events;
 pub mod folder;
 pub mod json;
 mod leftovers;
 pub mod number;
+pub mod poles;
+pub mod schema;
 pub mod series;
+pub mod shown;
+pub mod story;
+pub mod table;
 pub mod text;
+pub mod train;

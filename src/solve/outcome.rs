@@ -52,6 +52,7 @@ pub fn collect(mut run: Run<'_, '_>, stored: f64) -> RunResult {
     }
     let audit = audit(equations, &run, stored);
     warn_of_ranges(&mut run);
+    warn_of_rotors(&mut run);
     let mut warnings: Vec<Warning> = equations
         .model
         .warnings
@@ -195,6 +196,34 @@ fn audit(equations: &Equations, run: &Run<'_, '_>, stored: f64) -> Energy {
         lost: sums.lost,
         stored_change,
         residual_share: if turned_over > 0.0 { residual.abs() / turned_over } else { 0.0 },
+    }
+}
+
+/// Warns of rotors without flow, at standstill or in reverse, or driven by the train.
+fn warn_of_rotors(run: &mut Run<'_, '_>) {
+    let equations = run.equations;
+    for load in &equations.model.scenario.loads {
+        if !matches!(load.law, crate::component::load::LoadLaw::AxialRotor { .. }) {
+            continue;
+        }
+        let extreme = |what: &str| {
+            let name = format!("{}.{what}", load.name);
+            let place = equations.model.channels.iter().position(|channel| channel.name == name)?;
+            let extreme = run.observer.extremes[place];
+            (extreme.max >= extreme.min).then_some(extreme)
+        };
+        let mut texts = Vec::new();
+        if extreme("flow").is_some_and(|flow| flow.min <= 0.0) {
+            texts.push("the flow is not positive at times: the rotor then gives no torque");
+        }
+        if extreme("tip_speed_ratio").is_some_and(|ratio| ratio.min < 1e-6) {
+            texts.push("the rotor stands still or turns backwards at times: its torque near standstill is used there");
+        }
+        if extreme("power_coefficient").is_some_and(|power| power.min < 0.0) {
+            texts.push("the power coefficient is negative at times: the train drives the rotor");
+        }
+        let path = format!("loads.{}.law.axial_rotor", load.name);
+        run.warnings.extend(texts.into_iter().map(|text| (path.clone(), text.to_owned())));
     }
 }
 

@@ -15,6 +15,9 @@ use crate::signal::course::Overrides;
 /// Residual speeds up to this share of the working speed are taken out when elements stick.
 const RESIDUE: f64 = 1e-6;
 
+/// Accelerations up to this share of what the limit could cause are rounding.
+const ROUNDING: f64 = 1e-9;
+
 /// Marks elements whose limit is zero all along as absent, and brings back those that act again.
 pub fn presence(
     equations: &Equations,
@@ -67,13 +70,13 @@ pub fn resolve(
     }
     let mut refused: Vec<usize> = Vec::new();
     let mut frame = Frame::default();
-    for round in 0..=2 * equations.frictions.len() {
+    for _ in 0..=2 * equations.frictions.len() {
         let assembly = assemble(equations, mode, time, end, overrides);
         let evaluator = Evaluator { equations, assembly: &assembly, overrides };
         evaluator.laws(time, state, &mut frame);
         let Some(holding) = frame.holding.clone() else { break };
         // A guard that has just tripped stands within rounding of the limit: it counts as passed.
-        if holding.holds && !(tripped && round == 0 && holding.margin < 1e-8) {
+        if holding.holds && !(tripped && holding.margin < 1e-8) {
             project(equations, &assembly.projection, state);
             break;
         }
@@ -82,10 +85,12 @@ pub fn resolve(
             break;
         };
         let index = assembly.stuck[line];
+        // What the element's own limit could do to its members: the size of a real acceleration.
+        let size = assembly.stuck_compliance[(line, line)] * evaluator.limit(index, time);
         let mut released = false;
         for torque in [holding.torque[line], -holding.torque[line]] {
             mode.frictions[index] = FrictionMode::sliding(-torque);
-            if accelerates(equations, mode, index, time, end, state, overrides) {
+            if accelerates(equations, mode, index, size, time, end, state, overrides) {
                 released = true;
                 break;
             }
@@ -127,6 +132,7 @@ fn accelerates(
     equations: &Equations,
     mode: &Mode,
     index: usize,
+    size: f64,
     time: f64,
     end: f64,
     state: &[f64],
@@ -138,7 +144,8 @@ fn accelerates(
     let mut rates = vec![0.0; equations.size];
     rhs.system(time, state, &mut rates);
     let acceleration = dot(&equations.frictions[index].speed, &rates);
-    acceleration * mode.frictions[index].direction() >= 0.0
+    // Others may still hold its members: then the acceleration is nothing but rounding.
+    acceleration * mode.frictions[index].direction() >= -ROUNDING * size
 }
 
 /// Takes the tiny residual speeds along stuck rows out of the state.

@@ -209,13 +209,14 @@ fn lost_sign(active: &Active) -> f64 {
 /// Input and value of a term that follows no signal.
 #[inline(always)]
 fn steady(active: &Active, state: &[f64]) -> (f64, f64) {
-    let input = active.input_at(state);
+    let (offset, parameters) = active.fixed;
+    let input = active.input_at(state) + offset;
     let factor = match active.factor {
         Strength::Constant(value) => value,
         Strength::Varying(_) => 1.0,
     };
     let value = match &active.function {
-        Function::Law(law, piece) => law.value(input, [0.0; 2], *piece),
+        Function::Law(law, piece) => law.value(input, parameters, *piece),
         Function::Linear => input,
         Function::Friction(torque, direction) => -direction * torque,
         Function::FrictionCurve(law, direction) => {

@@ -179,7 +179,10 @@ impl Run<'_, '_> {
             if acted.end_run || self.time >= duration {
                 let evaluator =
                     Evaluator { equations, assembly: &assembly, overrides: &self.overrides };
-                self.observer.end(&evaluator, self.time, &self.state);
+                // A segment has already taken its end from the left: `final` is that value.
+                if self.work.steps == 0 {
+                    self.observer.end(&evaluator, self.time, &self.state);
+                }
                 self.observer.final_row(&evaluator, self.time, &self.state);
                 return;
             }
@@ -338,6 +341,10 @@ impl Run<'_, '_> {
         self.observer.end(&evaluator, self.time, &self.state);
         if let Some((time, fault)) = failure {
             self.give_up(time, fault);
+            return true;
+        }
+        if cut.is_none() && self.time >= equations.model.scenario.duration {
+            self.observer.final_row(&evaluator, self.time, &self.state);
             return true;
         }
         if interrupted {

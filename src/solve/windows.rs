@@ -99,6 +99,10 @@ impl Window {
     /// Opens or closes the window at a segment's start; `channel` is the value from the right.
     pub fn begin(&mut self, time: f64, channel: f64) -> bool {
         if time >= self.before {
+            // At a jump both sides count, at the window's end too.
+            if self.active && time <= self.before {
+                self.note(time, channel);
+            }
             self.active = false;
             self.ended = true;
         } else if !self.active && time >= self.after {

@@ -181,8 +181,8 @@ fn undeform(equations: &Equations, place: usize, torque: f64) -> Result<f64, Ste
     magnet.law.stable_angle_for(share).ok_or_else(|| {
         let of_peak = if share >= 0.0 { share / high } else { share / low };
         SteadyError::new(format!(
-            "needs {:.3} % of the pull-out of `{}`",
-            100.0 * of_peak,
+            "needs {} % of the pull-out of `{}`",
+            crate::quantity::format_number(100.0 * of_peak, 4),
             magnet.name
         ))
     })
