@@ -92,13 +92,7 @@ pub struct Rhs<'a> {
 impl<'a> Rhs<'a> {
     /// The right-hand side of an evaluator's assembly.
     pub fn new(evaluator: Evaluator<'a>) -> Self {
-        // The short path knows no signals at all, not even constant ones beside a law's input.
-        let constant = !evaluator.assembly.varies
-            && evaluator
-                .assembly
-                .active
-                .iter()
-                .all(|active| active.offset.is_none() && active.parameters == [None; 2]);
+        let constant = !evaluator.assembly.varies;
         let ring =
             RefCell::new(Ring::new(evaluator.equations.size, evaluator.equations.heats.len()));
         Self { evaluator, constant, ring, fault: Cell::new(None) }
