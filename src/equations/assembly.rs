@@ -187,7 +187,8 @@ pub fn assemble(
             continue;
         }
         let mut entry = Active::of_term(place, term, mode.pieces[place], factor, column);
-        let constant = |slot| equations.bank.constant_on(slot, start, end, overrides).unwrap_or(0.0);
+        let constant =
+            |slot| equations.bank.constant_on(slot, start, end, overrides).unwrap_or(0.0);
         entry.fixed = (
             term.offset.map_or(0.0, |(gain, slot)| gain * constant(slot)),
             term.parameters.map(|slot| slot.map_or(0.0, constant)),
