@@ -289,7 +289,11 @@ impl<'w, 'a> Watcher<'w, 'a> {
         let mut length = cut.share * full;
         let smallest = 1e-14 * start.abs().max(1.0);
         if length <= smallest {
-            return;
+            // A slip changes no equation: short of the crossing the guard would trip again for ever.
+            if !matches!(cut.guard, guards::Guard::Slip(..)) {
+                return;
+            }
+            length = 2.0 * smallest;
         }
         let mut stages = vec![self.rate.clone()];
         for _ in 0..4 {
@@ -317,11 +321,13 @@ impl<'w, 'a> Watcher<'w, 'a> {
             };
             let (here, before) = (value(1.0), value(1.0 - 1e-3));
             let slope = (here - before) / (1e-3 * length);
-            if (-1e-9..=-0.5 * TRIP).contains(&here) || slope >= 0.0 {
+            // Beyond the guard by more than rounding of the time can take back.
+            let beyond = 2.0 * TRIP - 2.0 * smallest * slope.min(0.0);
+            if (-1e-9 - 2.0 * beyond..=-0.5 * TRIP).contains(&here) || slope >= 0.0 {
                 break;
             }
-            let change = (-(here + 2.0 * TRIP) / slope).clamp(-0.1 * length, 0.1 * length);
-            if change.abs() <= smallest {
+            let change = (-(here + beyond) / slope).clamp(-0.1 * length, 0.1 * length);
+            if change.abs() <= 0.5 * smallest {
                 break;
             }
             length += change;
