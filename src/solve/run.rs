@@ -62,7 +62,31 @@ pub enum RunError {
 /// # Errors
 /// [`RunError::Steady`] when a steady start is asked for and there is none. Trouble of the
 /// numerics is no error here: the result then says `completed: false` and why.
-pub fn run(equations: &Equations, mut options: RunOptions<'_>) -> Result<RunResult, RunError> {
+pub fn run(equations: &Equations, options: RunOptions<'_>) -> Result<RunResult, RunError> {
+    run_to_end(equations, options).map(|(result, _)| result)
+}
+
+/// Where a run stands at its end: what linearisation needs.
+#[derive(Clone, Debug)]
+pub struct Reached {
+    /// s.
+    pub time: f64,
+    /// Scaled state.
+    pub state: Vec<f64>,
+    /// Mode in force from there on.
+    pub mode: Mode,
+    /// Signals taken over by protections.
+    pub overrides: Overrides,
+}
+
+/// Runs a train as [`run`] does and also returns where it stands at the end.
+///
+/// # Errors
+/// As [`run`].
+pub fn run_to_end(
+    equations: &Equations,
+    mut options: RunOptions<'_>,
+) -> Result<(RunResult, Reached), RunError> {
     let overrides = equations.bank.no_overrides();
     let (state, mode) = match equations.model.scenario.start {
         Start::AsGiven => {
@@ -101,7 +125,16 @@ pub fn run(equations: &Equations, mut options: RunOptions<'_>) -> Result<RunResu
         judge_rest: true,
     };
     run.go(&mut options);
-    Ok(outcome::collect(run, stored))
+    if let Some(turning) = &mut run.observer.turning {
+        turning.finish();
+    }
+    let reached = Reached {
+        time: run.time,
+        state: run.state.clone(),
+        mode: run.mode.clone(),
+        overrides: run.overrides.clone(),
+    };
+    Ok((outcome::collect(run, stored), reached))
 }
 
 /// The name of a method as written in files.
