@@ -21,8 +21,7 @@ pub struct Curve {
 /// Follows `dv/dx = rate(x, v)` to `end`; steps shrink with the distance from `saddle`.
 pub fn march(start: Curve, end: f64, saddle: f64, rate: &dyn Fn(f64, f64) -> f64) -> Curve {
     let tableau = tableau::of(Method::Dop853);
-    let mut rates =
-        |x: f64, state: &[f64], rates: &mut [f64]| rates[0] = rate(x, state[0]);
+    let mut rates = |x: f64, state: &[f64], rates: &mut [f64]| rates[0] = rate(x, state[0]);
     let mut here = start;
     let mut stages: Vec<Vec<f64>> = Vec::new();
     for _ in 0..100_000 {
