@@ -1,5 +1,6 @@
 //! The program as its users meet it: statuses, messages, folders, streams.
 
+#[cfg(test)]
 mod cli {
     mod bench;
     mod folders;

@@ -189,8 +189,11 @@ fn one(
     let result = match ended {
         Ok(result) => result,
         Err(Stop::Interrupted) => {
-            let message =
-                format!("`{}` was interrupted; {} finished runs are kept", study.name, progress.done());
+            let message = format!(
+                "`{}` was interrupted; {} finished runs are kept",
+                study.name,
+                progress.done()
+            );
             streams::complain(Severity::Warning, message, Some("--resume goes on with it"));
             let told = study_json::unfinished(progress.done(), "interrupted");
             return Ok(Ended::Stopped(Status::Interrupted, told));

@@ -2,8 +2,10 @@
 //!
 //! Nobody ever sees half a result: all files are written into a hidden folder beside the
 //! target, which then takes the target's name. A folder that holds a result of ours is
-//! replaced as a whole; any other folder with something in it is refused.
+//! replaced as a whole; any other folder with something in it is refused. A folder that cannot
+//! be swapped (a disk of its own, a parent that may not be written) is filled in place.
 
+use super::in_place;
 use super::leftovers::{self, MARKER, MARKER_FILE};
 use std::fs::{self, File};
 use std::io::{self, BufWriter};
@@ -58,6 +60,8 @@ enum Place {
 /// A folder of results in the making; it vanishes unless it is committed.
 #[derive(Debug)]
 pub struct Folder {
+    /// The target cannot be swapped, so its content is.
+    in_place: bool,
     /// As the user named it, for messages.
     shown: PathBuf,
     target: PathBuf,
@@ -87,7 +91,15 @@ impl Folder {
         let mut made = Vec::new();
         make_parents(&parent, &mut made).map_err(told)?;
         leftovers::clean(&target);
+        let in_place = in_place::is_needed(&target, &parent);
+        let (beside, name) = if in_place {
+            leftovers::clean_inside(&target);
+            (target.clone(), leftovers::INSIDE.to_owned())
+        } else {
+            (parent, name)
+        };
         let mut folder = Self {
+            in_place,
             shown: shown.to_path_buf(),
             target,
             temporary: PathBuf::new(),
@@ -96,7 +108,7 @@ impl Folder {
             committed: false,
         };
         for count in 0_u32.. {
-            let temporary = parent.join(leftovers::hidden_name(&name, count));
+            let temporary = beside.join(leftovers::hidden_name(&name, count));
             match fs::create_dir(&temporary) {
                 Ok(()) => {
                     folder.temporary = temporary;
@@ -145,6 +157,13 @@ impl Folder {
     /// # Errors
     /// A fault of the disk, or a place that has meanwhile been taken by something else.
     pub fn commit(mut self) -> Result<(), FolderFault> {
+        if self.in_place {
+            in_place::fill(&self.target, &self.temporary).map_err(|error| {
+                FolderFault::disk(&format!("the folder `{}`", self.shown.display()), &error)
+            })?;
+            self.committed = true;
+            return Ok(());
+        }
         let told = |error: &io::Error, shown: &Path| {
             FolderFault::disk(&format!("the folder `{}`", shown.display()), error)
         };
@@ -265,7 +284,10 @@ fn look_once(target: &Path) -> Place {
     }
     match fs::read_dir(target) {
         Err(_) => Place::Foreign("cannot be read"),
-        Ok(mut entries) => {
+        Ok(entries) => {
+            let mut entries = entries
+                .flatten()
+                .filter(|entry| !leftovers::is_hidden_inside(&entry.file_name().to_string_lossy()));
             if entries.next().is_none() {
                 Place::EmptyFolder
             } else if leftovers::is_ours(target) {

@@ -41,8 +41,9 @@ fn each_fault_of_a_study_is_told_in_the_words_beside_it() {
 
 #[test]
 fn a_margin_without_requirements() {
-    let scenario = train(60.0, 100.0, "  it: { margin: { vary: bodies.rotor.inertia, between: [1, 2] } }\n")
-        .replace("  no_slip: { of: coupling.slips, at_most: 0 }\n", "");
+    let scenario =
+        train(60.0, 100.0, "  it: { margin: { vary: bodies.rotor.inertia, between: [1, 2] } }\n")
+            .replace("  no_slip: { of: coupling.slips, at_most: 0 }\n", "");
     assert_eq!(
         told_of(&scenario),
         concat!(
@@ -55,8 +56,12 @@ fn a_margin_without_requirements() {
 
 #[test]
 fn faults_of_the_file_and_its_studies_are_told_together() {
-    let scenario = train(60.0, 100.0, "  it: { margin: { vary: bodies.rotor.inertia, between: [1 kg*m2, 1 kg*m2] } }\n")
-        .replace("pole_pairs: 4", "pole_pairs: 0");
+    let scenario = train(
+        60.0,
+        100.0,
+        "  it: { margin: { vary: bodies.rotor.inertia, between: [1 kg*m2, 1 kg*m2] } }\n",
+    )
+    .replace("pole_pairs: 4", "pole_pairs: 0");
     assert_eq!(
         told_of(&scenario),
         concat!(
@@ -97,5 +102,7 @@ fn unknown_studies_and_files_without_studies_are_told() {
     let folder = Folder::new(&train(60.0, 100.0, ""));
     let output = folder.call(&["study", "case.yaml"]);
     assert_eq!(output.status.code(), Some(2));
-    assert!(String::from_utf8_lossy(&output.stderr).starts_with("error: `case.yaml` has no studies\n"));
+    assert!(
+        String::from_utf8_lossy(&output.stderr).starts_with("error: `case.yaml` has no studies\n")
+    );
 }

@@ -33,8 +33,7 @@ pub struct Field<'f> {
 pub fn march(start: Curve, end: f64, saddle: f64, field: &Field<'_>) -> Curve {
     let rate = field.rate;
     let tableau = tableau::of(Method::Dop853);
-    let mut rates =
-        |x: f64, state: &[f64], rates: &mut [f64]| rates[0] = rate(x, state[0]);
+    let mut rates = |x: f64, state: &[f64], rates: &mut [f64]| rates[0] = rate(x, state[0]);
     let mut here = start;
     let mut stages: Vec<Vec<f64>> = Vec::new();
     for _ in 0..1_000_000 {

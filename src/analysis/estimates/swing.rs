@@ -126,9 +126,7 @@ impl<'a> Swing<'a> {
     fn ahead_of(self, load: f64, from: f64) -> Option<f64> {
         let (saddle, rest) = (self.saddle(load)?, self.rest(load)?);
         if self.beta == 0.0 {
-            let missing = |x: f64| {
-                self.energy(saddle) - self.energy(x) - load * (saddle - x)
-            };
+            let missing = |x: f64| self.energy(saddle) - self.energy(x) - load * (saddle - x);
             // Energy that is missing at `from`, as a distance: the drive there is never zero.
             let here = missing(from);
             if here > 0.0 {

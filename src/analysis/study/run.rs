@@ -64,11 +64,7 @@ pub fn layout(loaded: &Loaded, study: &Study) -> Layout {
 ///
 /// # Errors
 /// [`Stop`] when not all its runs could be made.
-pub fn run(
-    loaded: &Loaded,
-    study: &Study,
-    options: StudyOptions<'_>,
-) -> Result<StudyResult, Stop> {
+pub fn run(loaded: &Loaded, study: &Study, options: StudyOptions<'_>) -> Result<StudyResult, Stop> {
     let base = without_studies(&loaded.node);
     let mut setting = Setting {
         base: &base,
@@ -115,18 +111,14 @@ fn of_one_run(loaded: &Loaded, study: &Study, interrupt: &AtomicBool) -> Result<
         Stop::NoAnswer(first.map_or_else(String::new, |fault| fault.message.clone()))
     };
     let stopped = |reason: String| {
-        if interrupt.load(Ordering::Relaxed) {
-            Stop::Interrupted
-        } else {
-            Stop::NoAnswer(reason)
-        }
+        if interrupt.load(Ordering::Relaxed) { Stop::Interrupted } else { Stop::NoAnswer(reason) }
     };
     let equations: Equations = transient::prepare(&loaded.scenario).map_err(at_fault)?;
     match &study.kind {
         Kind::Modes(spec) => modes::run(spec, &equations).map(Answer::Modes).map_err(stopped),
-        Kind::Rainflow(spec) => rainflow::run(spec, &equations, Some(interrupt))
-            .map(Answer::Rainflow)
-            .map_err(stopped),
+        Kind::Rainflow(spec) => {
+            rainflow::run(spec, &equations, Some(interrupt)).map(Answer::Rainflow).map_err(stopped)
+        }
         Kind::Estimates(spec) => {
             let options = RunOptions { interrupt: Some(interrupt), ..RunOptions::default() };
             let found = transient::run_prepared(&equations, options).map_err(at_fault)?;

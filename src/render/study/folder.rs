@@ -124,7 +124,8 @@ impl StudyFolder {
         rows: &[Row],
         answer: &str,
     ) -> Result<(), FolderFault> {
-        let told = |error: std::io::Error| FolderFault::disk(&format!("the study `{name}`"), &error);
+        let told =
+            |error: std::io::Error| FolderFault::disk(&format!("the study `{name}`"), &error);
         self.replace(&self.table(name), |out| {
             out.write_all(journal::line(&columns.head()).as_bytes())?;
             for (number, row) in rows.iter().enumerate() {
@@ -144,12 +145,7 @@ impl StudyFolder {
     ///
     /// # Errors
     /// The fault of the disk.
-    pub fn write(
-        &self,
-        name: &str,
-        table: Option<&str>,
-        answer: &str,
-    ) -> Result<(), FolderFault> {
+    pub fn write(&self, name: &str, table: Option<&str>, answer: &str) -> Result<(), FolderFault> {
         let write = |path: PathBuf, text: &str| {
             self.replace(&path, |out| out.write_all(text.as_bytes()))
                 .map_err(|error| FolderFault::disk(&format!("the study `{name}`"), &error))

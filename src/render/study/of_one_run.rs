@@ -17,7 +17,8 @@ pub fn table(result: &StudyResult) -> Option<String> {
         Answer::Modes(answer) => Some(modes_table(answer)),
         Answer::Rainflow(answer) => {
             let unit = answer.unit;
-            let head = [format!("range [{unit}]"), format!("mean [{unit}]"), "count [1]".to_owned()];
+            let head =
+                [format!("range [{unit}]"), format!("mean [{unit}]"), "count [1]".to_owned()];
             let mut text = line(&head);
             for cycle in &answer.cycles {
                 text.push_str(&line(&[cycle.range, cycle.mean, cycle.count].map(plain)));
@@ -29,8 +30,9 @@ pub fn table(result: &StudyResult) -> Option<String> {
 }
 
 fn modes_table(answer: &ModesResult) -> String {
-    let mut head =
-        ["mode", "frequency_hz [Hz]", "damped_hz [Hz]", "damping_ratio [1]"].map(str::to_owned).to_vec();
+    let mut head = ["mode", "frequency_hz [Hz]", "damped_hz [Hz]", "damping_ratio [1]"]
+        .map(str::to_owned)
+        .to_vec();
     let bodies = answer.modes.first().map_or(&[][..], |mode| &mode.shape.amplitude);
     head.extend(bodies.iter().map(|(body, _)| format!("{body} [1]")));
     let mut text = line(&head);
@@ -92,7 +94,8 @@ pub fn modes(answer: &ModesResult) -> Entries {
         ("met", truth(answer.met)),
         (
             "speed_range",
-            diagram.map_or(Value::Null, |diagram| diagram.speeds.iter().map(|it| json(*it)).collect()),
+            diagram
+                .map_or(Value::Null, |diagram| diagram.speeds.iter().map(|it| json(*it)).collect()),
         ),
         ("crossings", crossings.collect()),
     ]
@@ -163,7 +166,8 @@ pub fn estimates(answer: &EstimatesResult) -> Entries {
 }
 
 fn gear(gear: &GearEstimate) -> Value {
-    let given = |figure: fn(&Variant) -> f64| gear.given().map_or(Value::Null, |it| json(figure(it)));
+    let given =
+        |figure: fn(&Variant) -> f64| gear.given().map_or(Value::Null, |it| json(figure(it)));
     let members = gear.members.iter().map(|member| {
         let figures = named([
             ("body", Value::from(member.body.as_str())),
@@ -197,10 +201,7 @@ fn gear(gear: &GearEstimate) -> Value {
 
 fn variant(variant: &Variant) -> Value {
     let pulses = variant.pulses.iter().map(|pulse| {
-        named([
-            ("overload", json(pulse.overload)),
-            ("duration", json_optional(pulse.duration)),
-        ])
+        named([("overload", json(pulse.overload)), ("duration", json_optional(pulse.duration))])
     });
     named([
         ("damping_ratio", json(variant.damping_ratio)),

@@ -65,10 +65,7 @@ impl Kind {
 
     /// True when the answer stands on many runs, each a row of a table.
     pub fn has_runs(&self) -> bool {
-        matches!(
-            self,
-            Self::Margin(_) | Self::LoadCases(_) | Self::Sweep(_) | Self::MonteCarlo(_)
-        )
+        matches!(self, Self::Margin(_) | Self::LoadCases(_) | Self::Sweep(_) | Self::MonteCarlo(_))
     }
 }
 
