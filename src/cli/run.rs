@@ -4,14 +4,15 @@ use super::interrupt::Interrupt;
 use super::progress::Progress;
 use super::status::Status;
 use super::{Common, Format, streams};
+use crate::analysis::study;
 use crate::analysis::transient::{prepare, run_prepared};
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::render::folder::{Folder, FolderFault};
 use crate::render::series::SeriesWriter;
 use crate::render::{charts, events, json, text};
 use crate::results::{RunResult, Warning};
-use crate::scenario::{Loaded, Source, load};
-use crate::solve::RunOptions;
+use crate::scenario::{Loaded, Source};
+use crate::solve::{RunOptions, Wanted};
 use clap::Args;
 use std::path::{Path, PathBuf};
 
@@ -33,8 +34,8 @@ pub enum Trouble {
 /// Runs the command.
 pub fn run(arguments: &RunArguments, common: &Common) -> Status {
     let interrupt = Interrupt::listen();
-    let loaded = match load(&arguments.file, &common.sets) {
-        Ok(loaded) => loaded,
+    let loaded = match study::load(&arguments.file, &common.sets) {
+        Ok(plan) => plan.loaded,
         Err(failure) => {
             streams::tell(&failure.render());
             return Status::Fault;
@@ -107,7 +108,7 @@ fn write_run(
     let mut show = |time: f64| progress.at(time);
     let options = RunOptions {
         rows: Some(&mut rows),
-        traces: if common.no_charts { None } else { charts::request(scenario) },
+        traces: (!common.no_charts).then(|| charts::request(&equations)),
         interrupt: Some(interrupt.flag()),
         progress: Some(&mut show),
         ..RunOptions::default()
@@ -133,7 +134,17 @@ fn write_run(
     folder.write("summary.json", summary.as_bytes()).map_err(Trouble::Writing)?;
     let mut files = ["summary.json", "series.csv", "events.csv"].map(str::to_owned).to_vec();
     if !common.no_charts {
-        files.extend(charts::write(folder.path(), scenario, &result).map_err(of("the charts"))?);
+        let mut again = |request| {
+            let options = RunOptions {
+                traces: Some(request),
+                wanted: Wanted::Asked(Vec::new()),
+                interrupt: Some(interrupt.flag()),
+                ..RunOptions::default()
+            };
+            run_prepared(&equations, options).ok()?.traces
+        };
+        let drawings = charts::drawings(&equations, &result, &mut again);
+        files.extend(charts::write(folder.path(), &drawings).map_err(of("the charts"))?);
     }
     folder.commit().map_err(Trouble::Writing)?;
     Ok(Written { result, summary, files })

@@ -48,10 +48,12 @@ pub enum Stop {
     StepTooSmall(f64),
 }
 
-struct Bridge<'a, 'b> {
+/// The library's view of the equations; `PADDED` when the vector is longer than the state.
+struct Bridge<'a, 'b, const PADDED: bool> {
     rhs: &'a Rhs<'b>,
     watch: &'a mut dyn Watch,
     clock: Option<Clock>,
+    size: usize,
 }
 
 /// Mends the time of the twelfth stage of `dop853`.
@@ -90,20 +92,29 @@ impl Clock {
     }
 }
 
-impl<D: Dim> System<f64, OVector<f64, D>> for Bridge<'_, '_>
+impl<D: Dim, const PADDED: bool> System<f64, OVector<f64, D>> for Bridge<'_, '_, PADDED>
 where
     DefaultAllocator: Allocator<D>,
 {
+    // One copy for each length: the library calls it from many places.
+    #[inline(never)]
     fn system(&self, time: f64, state: &OVector<f64, D>, rates: &mut OVector<f64, D>) {
         let time = self.clock.as_ref().map_or(time, |clock| clock.mend(time));
-        self.rhs.system(time, state.as_slice(), rates.as_mut_slice());
+        if PADDED {
+            let (state, rates) = (state.as_slice(), rates.as_mut_slice());
+            self.rhs.system(time, &state[..self.size], &mut rates[..self.size]);
+        } else {
+            self.rhs.system(time, state.as_slice(), rates.as_mut_slice());
+        }
     }
 
+    #[inline(never)]
     fn solout(&mut self, time: f64, state: &OVector<f64, D>, rates: &OVector<f64, D>) -> bool {
         if let Some(clock) = &self.clock {
             clock.accepted();
         }
-        self.watch.accept(self.rhs, time, state.as_slice(), rates.as_slice())
+        let size = if PADDED { self.size } else { state.len() };
+        self.watch.accept(self.rhs, time, &state.as_slice()[..size], &rates.as_slice()[..size])
     }
 }
 
@@ -112,23 +123,38 @@ pub fn run(window: &Window, rhs: &Rhs<'_>, state: &[f64], watch: &mut dyn Watch)
     if window.method == Method::Rk4 {
         return fixed(window, rhs, state, watch);
     }
+    // A state of a length known at compile time costs what a hand-written loop costs; a heap vector
+    // costs four to five times as much. Longer states are padded with zeros to the next length.
     macro_rules! by_length {
-        ($($length:literal)*) => {
+        ($($length:literal)* ; $($padded:literal)*) => {
             match state.len() {
-                $($length => library::<Const<$length>>(
-                    window, rhs, OVector::<f64, Const<$length>>::from_column_slice(state), watch),)*
-                _ => library::<nalgebra::Dyn>(window, rhs, DVector::from_column_slice(state), watch),
+                $($length => library::<Const<$length>, false>(
+                    window, rhs, state.len(), OVector::<f64, Const<$length>>::from_column_slice(state), watch),)*
+                $(size if size <= $padded => {
+                    let mut long = OVector::<f64, Const<$padded>>::zeros();
+                    long.as_mut_slice()[..size].copy_from_slice(state);
+                    library::<Const<$padded>, true>(window, rhs, size, long, watch)
+                })*
+                size => library::<nalgebra::Dyn, false>(
+                    window, rhs, size, DVector::from_column_slice(state), watch),
             }
         };
     }
-    // A state of a length known at compile time costs what a hand-written loop costs; a heap vector
-    // costs four to five times as much.
-    by_length!(1 2 3 4 5 6 7 8 9 10 11 12 13 14 15 16 17 18 19 20 21 22 23 24 25 26 27 28 29 30 31 32)
+    // A build for debugging goes without: each length costs seconds of compiling.
+    #[cfg(debug_assertions)]
+    {
+        by_length!(7 ; 32)
+    }
+    #[cfg(not(debug_assertions))]
+    {
+        by_length!(1 2 3 4 5 6 7 8 9 10 11 12 13 14 15 16 ; 20 24 28 32)
+    }
 }
 
-fn library<D: Dim>(
+fn library<D: Dim, const PADDED: bool>(
     window: &Window,
     rhs: &Rhs<'_>,
+    size: usize,
     state: OVector<f64, D>,
     watch: &mut dyn Watch,
 ) -> Stop
@@ -138,8 +164,9 @@ where
     // The library does not cap its first step, and its stiffness test stops ordinary trains: off.
     let first = window.first_step.min(window.step_cap);
     let clock = (window.method == Method::Dop853).then(|| Clock::new(first));
-    let bridge = Bridge { rhs, watch, clock };
-    let tolerance = window.tolerance;
+    // The library's norm divides by the vector's length: the padding must not loosen the tolerance.
+    let tolerance = window.tolerance * (size as f64 / state.len() as f64).sqrt();
+    let bridge = Bridge::<'_, '_, PADDED> { rhs, watch, clock, size };
     let outcome = match window.method {
         Method::Dop853 => Dop853::from_param(
             bridge,

@@ -104,7 +104,7 @@ pub fn run_to_end(
     observer.wanted.extend(&conditions.channels);
     observer.wanted.sort_unstable();
     observer.wanted.dedup();
-    let stored = energy::stored(equations, &state);
+    let stored = energy::stored(equations, &mode.contacts, &state);
     let mut run = Run {
         equations,
         time: 0.0,
@@ -447,10 +447,13 @@ impl Run<'_, '_> {
                 );
             }
             Guard::Open(shaft) => {
+                // What the flank still holds is not given back.
+                self.observer.energy.lost += energy::elastic(equations, shaft, &self.state);
                 self.mode.contacts[shaft] = Contact::Gap;
                 self.contact_event(shaft, EventKind::Gap);
             }
             Guard::Close(shaft) => {
+                self.observer.energy.lost -= energy::elastic(equations, shaft, &self.state);
                 let place = equations.twist_state[shaft];
                 let twist = place.map_or(0.0, |place| self.state[place]);
                 self.mode.contacts[shaft] =
