@@ -18,3 +18,4 @@ mod messages;
 mod resume;
 mod scatter;
 mod sweep;
+mod vibration;

@@ -6,6 +6,7 @@ use super::rigid::RigidTrain;
 use super::swing::Swing;
 use crate::equations::Equations;
 use crate::model::magnet::Magnet;
+use crate::quantity::format_number;
 use crate::results::{GearState, RunResult};
 use std::f64::consts::TAU;
 
@@ -340,26 +341,26 @@ fn variant(
 
 /// What the figures mean for this gear.
 fn tell(basis: &Basis<'_>, variants: &[Variant], notes: &mut Vec<String>) {
-    let name = &basis.magnet.name;
     let given = variants.iter().find(|variant| variant.damping == "given");
     let Some(given) = given else { return };
     if given.damping_ratio == 0.0 {
-        notes.push(format!(
-            "no damping is stated for `{name}`: steps and jams are on the safe side, and once slipping it never falls into step by itself"
-        ));
+        notes.push(
+            "no damping is stated: steps and jams are on the safe side, and once slipping it never falls into step by itself"
+                .to_owned(),
+        );
     } else if let Some(preload) = basis.preload
         && preload.abs() > given.resynchronisation_share
     {
         notes.push(format!(
-            "once slipping, `{name}` does not fall into step at its running load: {:.1} % of the pull-out against {:.1} %",
+            "once slipping, it does not fall into step at its running load: {:.1} % of the pull-out against {:.1} %",
             100.0 * preload.abs(),
             100.0 * given.resynchronisation_share
         ));
     }
     if let (Some(_), Some(fading)) = (basis.preload, basis.magnet.fading) {
         notes.push(format!(
-            "the damper of `{name}` is strongest at {:.4} rad/s and fades beyond: double damping doubles it at every speed",
-            fading.peak_at
+            "its damper is strongest at {} rad/s of slip and fades beyond; double damping doubles it at every speed",
+            format_number(fading.peak_at, 4)
         ));
     }
 }

@@ -12,6 +12,7 @@ use super::excitation::{self, Excitation};
 use super::spec::{ModesSpec, SpeedRange};
 use crate::analysis::linear_point::LinearPoint;
 use crate::equations::{Equations, dot};
+use crate::quantity::format_number;
 
 /// Amplification below which a mode needs no separation.
 const CRITICALLY_DAMPED: f64 = 2.5;
@@ -65,6 +66,27 @@ impl Crossing {
 }
 
 impl Interference {
+    /// The crossing that counts and comes nearest at the operating speeds, if there is one.
+    pub fn nearest(&self) -> Option<&Crossing> {
+        let counted = self.crossings.iter().filter(|crossing| crossing.counts());
+        counted.filter(|crossing| crossing.separation.is_some()).min_by(|a, b| {
+            let share = |crossing: &Crossing| crossing.separation.unwrap_or(f64::INFINITY);
+            share(a).total_cmp(&share(b))
+        })
+    }
+
+    /// That crossing in words.
+    pub fn nearest_words(&self) -> Option<String> {
+        let nearest = self.nearest()?;
+        Some(format!(
+            "nearest at the operating speed: {} stands {} % from {} at {} Hz",
+            nearest.order,
+            format_number(100.0 * nearest.separation?, 3),
+            nearest.label,
+            format_number(nearest.frequency_hz, 4)
+        ))
+    }
+
     /// Whether every crossing that counts keeps the separation; `None` when it cannot be told.
     pub fn verdict(&self, limit: f64) -> Option<bool> {
         self.operating?;

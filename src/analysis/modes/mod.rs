@@ -105,6 +105,7 @@ pub fn run(spec: &ModesSpec, equations: &Equations) -> Result<ModesResult, Strin
     if let Some(range) = &spec.range {
         let diagram = interference::draw(equations, &point, spec, range, &result.modes)?;
         result.met = spec.separation.and_then(|limit| diagram.verdict(limit));
+        result.notes.extend(diagram.nearest_words());
         result.notes.extend(diagram.notes.iter().cloned());
         result.interference = Some(diagram);
     }
@@ -158,7 +159,10 @@ pub fn at_point(equations: &Equations, point: &LinearPoint) -> Result<ModesResul
         notes.push(format!("`{}` grows: its damping ratio is negative", mode.label));
     }
     if overdamped.iter().any(|root| root.rate > 0.0) {
-        notes.push("a deviation grows without oscillation: the point is unstable".to_owned());
+        notes.push(
+            "a deviation grows without oscillation, as on the rising part of a motor's curve: the point is unstable"
+                .to_owned(),
+        );
     }
     Ok(ModesResult {
         point: String::new(),

@@ -3,6 +3,7 @@
 use super::{answer, json, steady};
 use crate::analysis::estimates::EstimatesResult;
 use crate::analysis::modes::ModesResult;
+use crate::analysis::modes::interference::Crossing;
 use crate::analysis::rainflow::RainflowResult;
 use crate::analysis::study::results::{
     Answer, LoadCasesAnswer, MonteCarloAnswer, SHARES, StudyResult, SweepAnswer,
@@ -15,6 +16,9 @@ use crate::scenario::Scenario;
 
 /// Rows of a sweep that are shown; the table on disk has all.
 const MOST_ROWS: usize = 30;
+
+/// Crossings of a diagram that are shown; the answer on disk has all.
+const MOST_CROSSINGS: usize = 12;
 
 /// Numbers of one list of strongest inputs.
 const MOST_INPUTS: usize = 5;
@@ -195,7 +199,13 @@ fn crossings(answer: &ModesResult, shown: Shown<'_>) -> Table {
     let mut table = Table::new("<<>>>");
     table.row(["excitation", "mode", "frequency", "at", "separation"]);
     let all = answer.interference.as_ref().map_or(&[][..], |diagram| &diagram.crossings);
-    for crossing in all.iter().filter(|crossing| crossing.in_range) {
+    // The nearest first; what lies far off needs no line of its own here.
+    let mut list: Vec<_> = all.iter().collect();
+    list.sort_by(|a, b| {
+        let share = |it: &Crossing| it.separation.unwrap_or(f64::INFINITY);
+        share(a).total_cmp(&share(b))
+    });
+    for crossing in list.into_iter().take(MOST_CROSSINGS) {
         table.row([
             &crossing.order,
             &crossing.label,
