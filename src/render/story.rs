@@ -97,3 +97,78 @@ pub fn pull_out(gear: &GearResult, shown: Shown<'_>) -> String {
         .collect();
     list.join(", ")
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::results::SlipEvent;
+    use crate::scenario::Display;
+
+    fn gear(slips: &[(f64, i32)], state: GearState) -> GearResult {
+        let slip_events: Vec<SlipEvent> = slips
+            .iter()
+            .map(|&(time, direction)| SlipEvent { time, direction, slip_speed: 10.0 })
+            .collect();
+        let member = |member, body: &str, count| MemberResult {
+            member,
+            body: body.to_owned(),
+            count,
+            pull_out_torque: 100.0,
+        };
+        GearResult {
+            name: "gear".to_owned(),
+            coupling: false,
+            slips: slip_events.len() as u32,
+            net_slips: slips.iter().map(|slip| slip.1).sum(),
+            state_at_end: state,
+            run_longer: None,
+            resynchronised_at: None,
+            peak_pull_out_share: 0.5,
+            peak_pull_out_share_time: 2.0,
+            peak_load_angle: 0.5,
+            peak_load_angle_time: 2.0,
+            final_load_angle: 0.1,
+            ratio: Some(-5.5),
+            law_peaks: [-1.5, 1.5],
+            members: vec![
+                member("inner", "fast", 4.0),
+                member("modulator", "ground", -26.0),
+                member("outer", "slow", 22.0),
+            ],
+            natural_period: 0.05,
+            time_past_peak: 0.0,
+            slip_events,
+        }
+    }
+
+    fn words(gear: &GearResult) -> String {
+        let display = Display { speed: "rpm".into(), torque: "N*m".into(), angle: "deg".into() };
+        told(gear, Shown::new(&display))
+    }
+
+    #[test]
+    fn a_gear_in_step_tells_its_share() {
+        let text = words(&gear(&[], GearState::Synchronous));
+        assert!(text.contains("stayed in step: at most 50 % of its pull-out torque, at 2 s"));
+    }
+
+    #[test]
+    fn slips_are_told_with_sense_and_end() {
+        let mut slipped = gear(&[(1.0, 1), (1.5, 1), (1.7, -1)], GearState::Synchronous);
+        slipped.resynchronised_at = Some(1.8);
+        let text = words(&slipped);
+        assert!(text.contains("slipped 3 times, 2 forward and 1 backward, from 1 s to 1.7 s"));
+        assert!(text.contains("in step again from 1.8 s on"), "{text}");
+        let text = words(&gear(&[(1.0, -1)], GearState::Slipping));
+        assert!(text.contains("slipped once, backward, at 1 s; it is still slipping"), "{text}");
+        let mut open = gear(&[(1.0, 1)], GearState::Undecided);
+        open.run_longer = Some(0.25);
+        assert!(words(&open).contains("run at least 0.25 s longer"));
+    }
+
+    #[test]
+    fn the_faster_member_is_named_first() {
+        let text = ratio(&gear(&[], GearState::Synchronous)).unwrap();
+        assert_eq!(text, "`fast` turns 5.5 times as fast as `slow`, the other way round");
+    }
+}

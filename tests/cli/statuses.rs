@@ -123,3 +123,62 @@ fn check_ends_with_the_worst_of_all_files() {
     assert!(told.out.contains("Magnetic coupling `coupling`"), "the good one is shown");
     assert!(!bench.path("output").exists(), "runs nothing");
 }
+
+/// Keys that a summary must hold, in this order; more may stand between them.
+#[test]
+fn a_summary_holds_the_promised_keys_in_order() {
+    let bench = Bench::new("keys");
+    let summary = json(&bench.run(&["run", "small.yaml", "--format", "json"]).out);
+    let in_order = |value: &serde_json::Value, promised: &[&str]| {
+        let keys: Vec<&String> = value.as_object().unwrap().keys().collect();
+        let places: Vec<Option<usize>> =
+            promised.iter().map(|key| keys.iter().position(|known| known == key)).collect();
+        assert!(places.iter().all(Option::is_some), "{promised:?} {keys:?}");
+        assert!(places.is_sorted(), "{promised:?} {keys:?}");
+    };
+    in_order(
+        &summary,
+        &[
+            "title",
+            "completed",
+            "end_time",
+            "gears",
+            "channels",
+            "requirements",
+            "energy",
+            "motors",
+            "warnings",
+            "solver",
+        ],
+    );
+    in_order(
+        &summary["gears"]["coupling"],
+        &[
+            "slips",
+            "net_slips",
+            "state_at_end",
+            "resynchronised_at",
+            "peak_pull_out_share",
+            "peak_pull_out_share_time",
+            "peak_load_angle",
+            "peak_load_angle_time",
+            "final_load_angle",
+            "ratio",
+            "slip_events",
+        ],
+    );
+    in_order(
+        &summary["channels"]["driver.speed"],
+        &["unit", "min", "min_time", "max", "max_time", "final"],
+    );
+    in_order(
+        &summary["requirements"]["no_slip"],
+        &["text", "met", "value", "limit", "unit", "time"],
+    );
+    in_order(
+        &summary["energy"],
+        &["supplied", "absorbed", "lost", "stored_change", "residual_share"],
+    );
+    in_order(&summary["solver"], &["method", "steps", "rejected", "evaluations", "events"]);
+    in_order(&summary["warnings"][0], &["path", "text"]);
+}

@@ -3,6 +3,9 @@
 use super::outcome::{Layout, Outcome};
 use super::spec::{Axis, Spread, Varied};
 use super::work::{Cost, Row};
+use crate::analysis::estimates::EstimatesResult;
+use crate::analysis::modes::ModesResult;
+use crate::analysis::rainflow::RainflowResult;
 use crate::results::RequirementResult;
 
 /// A finished study.
@@ -33,6 +36,12 @@ pub enum Answer {
     Sweep(SweepAnswer),
     /// What scatter does.
     MonteCarlo(MonteCarloAnswer),
+    /// Natural frequencies and what may excite them.
+    Modes(ModesResult),
+    /// Cycles of a channel.
+    Rainflow(RainflowResult),
+    /// Figures by hand beside the run.
+    Estimates(EstimatesResult),
 }
 
 impl Answer {
@@ -43,8 +52,10 @@ impl Answer {
         match self {
             Self::Margin(answer) => answer.at_least.map(|_| answer.met),
             Self::LoadCases(answer) => Some(Some(answer.met)),
-            Self::Sweep(_) => None,
+            Self::Sweep(_) | Self::Estimates(_) => None,
             Self::MonteCarlo(answer) => answer.slipping_at_most.map(|_| answer.met),
+            Self::Modes(answer) => answer.separation.map(|_| answer.met),
+            Self::Rainflow(answer) => answer.limit.map(|_| answer.met),
         }
     }
 }

@@ -4,5 +4,6 @@ pub mod answer;
 pub mod folder;
 pub mod journal;
 pub mod json;
+pub mod of_one_run;
 pub mod rows;
 pub mod text;
