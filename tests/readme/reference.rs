@@ -40,7 +40,9 @@ impl Rows {
                 format!("{path}.{}", field.key)
             };
             let holds = self::holds(field, counted);
-            let _ = writeln!(self.text, "| `{key}` | {holds} | {} |", field.doc);
+            // A bar would end the cell.
+            let doc = field.doc.replace('|', "\\|");
+            let _ = writeln!(self.text, "| `{key}` | {holds} | {doc} |");
             match &field.shape {
                 Shape::Group(inside) | Shape::QuantityOrGroup(_, _, inside) => {
                     self.add(&key, inside, true);
@@ -55,7 +57,11 @@ impl Rows {
 
 /// What a key holds, in a few words.
 fn holds(field: &FieldDescription, counted: bool) -> String {
-    let mut words = shape(&field.shape);
+    let mut words = match (field.key, &field.shape) {
+        ("sum" | "product", Shape::Free) => "list of SIGNALs".to_owned(),
+        ("document", Shape::Free) => "map of text".to_owned(),
+        (_, other) => shape(other),
+    };
     if !counted {
         return words;
     }
@@ -103,7 +109,7 @@ fn shape(shape: &Shape) -> String {
         }
         Shape::Signals => "map of named signals".to_owned(),
         Shape::OfChannel => "quantity like the channel's".to_owned(),
-        Shape::Free => "see above".to_owned(),
+        Shape::Free => "see its own section".to_owned(),
     }
 }
 
