@@ -2,6 +2,7 @@
 
 mod check;
 mod interrupt;
+mod later;
 mod new;
 mod poles;
 mod progress;
@@ -9,6 +10,8 @@ mod run;
 mod schema;
 mod status;
 mod streams;
+mod study;
+mod study_progress;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use status::Status;
@@ -35,6 +38,8 @@ pub struct CommandLine {
 pub enum Command {
     /// Runs a scenario in time: series, events, summary, charts and verdicts.
     Run(run::RunArguments),
+    /// Runs the studies of a scenario: margins, load cases, sweeps, tolerances.
+    Study(study::StudyArguments),
     /// Reads and checks scenarios and shows their trains; runs nothing.
     Check(check::CheckArguments),
     /// Lists pole-pair choices for a ratio: pieces, the six ratios, ripple orders.
@@ -43,6 +48,12 @@ pub enum Command {
     New(new::NewArguments),
     /// Prints the JSON Schema of the scenario file, for editors.
     Schema,
+    /// Writes a report (not in this version).
+    #[command(hide = true)]
+    Report(later::LaterArguments),
+    /// Compares scenarios or results (not in this version).
+    #[command(hide = true)]
+    Compare(later::LaterArguments),
 }
 
 /// Options that every command takes, as far as they mean something to it.
@@ -91,10 +102,13 @@ pub fn main() -> ExitCode {
     let CommandLine { command, common } = CommandLine::parse();
     let status: Status = match command {
         Command::Run(arguments) => run::run(&arguments, &common),
+        Command::Study(arguments) => study::run(&arguments, &common),
         Command::Check(arguments) => check::run(&arguments, &common),
         Command::Poles(arguments) => poles::run(&arguments, &common),
         Command::New(arguments) => new::run(&arguments),
         Command::Schema => schema::run(),
+        Command::Report(_) => later::refuse("report"),
+        Command::Compare(_) => later::refuse("compare"),
     };
     status.into()
 }

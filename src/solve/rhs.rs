@@ -190,13 +190,6 @@ impl<'a> Rhs<'a> {
         for (weight, torque, speed) in &quiet.drives {
             powers.drive(weight * dot(torque, state) * dot(speed, state));
         }
-        for &(place, scale, stiffness, half_play) in &quiet.released {
-            let twist = state[place] * scale;
-            let beyond = twist - half_play.copysign(twist);
-            if twist.abs() > half_play {
-                powers.lost -= stiffness * beyond * rates[place] * scale;
-            }
-        }
         powers
     }
 }

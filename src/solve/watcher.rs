@@ -95,8 +95,12 @@ impl<'w, 'a> Watcher<'w, 'a> {
         let (power, heats) = (*ring.powers(0), ring.heats(0).to_vec());
         let tableau = tableau::of(method);
         let guards = guards::list(&rhs.evaluator, mode, conditions, state);
+        let mut calm = Calm::new(&rhs.evaluator, observer.tracer.is_some(), tolerance);
+        if observer.turning.is_some() {
+            calm.switch_off();
+        }
         Self {
-            calm: Calm::new(&rhs.evaluator, observer.tracer.is_some(), tolerance),
+            calm,
             observer,
             mode,
             conditions,
