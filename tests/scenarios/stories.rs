@@ -9,7 +9,7 @@ const RPM: f64 = PI / 30.0;
 
 #[test]
 fn pump_start_ends_at_the_load_angle_of_statics() {
-    let found = run("pump_start", &[]);
+    let found = run("pump_start", &["duration=3 s"]);
     // Closed form: sin(load angle) = torque over pull-out torque; the motor shaft's friction
     // does not pass the gear.
     let torque = found.last("pump.torque") + found.last("gland.torque");
@@ -36,10 +36,10 @@ fn tripped_gear_catches_because_the_motor_torque_is_gone() {
     let tripped = run("pump_start_trip", &[]);
     let caught = tripped.number("gears/gear/resynchronised_at");
     assert!(caught < 1.5, "{caught}");
-    // Without the trip it goes on to the end, with no motor torque to speak of needed.
+    // Without the trip it goes on to the end, though the motor hardly pulls any more.
     let waiting = run("pump_start_trip", &["protections.trip.delay=100 s"]);
     assert_eq!(waiting.state("gear"), "slipping");
-    assert!(waiting.slips("gear") > 10 * tripped.slips("gear"));
+    assert!(waiting.slips("gear") > 3 * tripped.slips("gear"));
 }
 
 #[test]
