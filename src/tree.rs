@@ -13,6 +13,6 @@ mod shape;
 mod values;
 
 pub use fields::Fields;
-pub use nested::{Alternative, choose};
+pub use nested::{Alternative, choose, chosen};
 pub use node::Node;
 pub use shape::{FieldDescription, Range, Shape};

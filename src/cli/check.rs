@@ -2,10 +2,10 @@
 
 use super::status::Status;
 use super::{Common, Format, streams};
-use crate::analysis::{train, transient};
+use crate::analysis::{study, train, transient};
 use crate::diagnostic::Diagnostics;
 use crate::render::{self, json};
-use crate::scenario::{Source, load};
+use crate::scenario::Source;
 use clap::Args;
 use serde_json::Value;
 use std::path::{Path, PathBuf};
@@ -39,8 +39,8 @@ pub fn run(arguments: &CheckArguments, common: &Common) -> Status {
 }
 
 fn check(file: &Path, common: &Common) -> (Status, String, Value) {
-    let loaded = match load(file, &common.sets) {
-        Ok(loaded) => loaded,
+    let loaded = match study::load(file, &common.sets) {
+        Ok(plan) => plan.loaded,
         Err(failure) => return at_fault(&failure.source, &failure.diagnostics),
     };
     let mut found = loaded.warnings.clone();

@@ -9,6 +9,8 @@ mod run;
 mod schema;
 mod status;
 mod streams;
+mod study;
+mod study_progress;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use status::Status;
@@ -35,6 +37,8 @@ pub struct CommandLine {
 pub enum Command {
     /// Runs a scenario in time: series, events, summary, charts and verdicts.
     Run(run::RunArguments),
+    /// Runs the studies of a scenario: margins, load cases, sweeps, tolerances.
+    Study(study::StudyArguments),
     /// Reads and checks scenarios and shows their trains; runs nothing.
     Check(check::CheckArguments),
     /// Lists pole-pair choices for a ratio: pieces, the six ratios, ripple orders.
@@ -91,6 +95,7 @@ pub fn main() -> ExitCode {
     let CommandLine { command, common } = CommandLine::parse();
     let status: Status = match command {
         Command::Run(arguments) => run::run(&arguments, &common),
+        Command::Study(arguments) => study::run(&arguments, &common),
         Command::Check(arguments) => check::run(&arguments, &common),
         Command::Poles(arguments) => poles::run(&arguments, &common),
         Command::New(arguments) => new::run(&arguments),

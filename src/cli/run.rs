@@ -4,13 +4,14 @@ use super::interrupt::Interrupt;
 use super::progress::Progress;
 use super::status::Status;
 use super::{Common, Format, streams};
+use crate::analysis::study;
 use crate::analysis::transient::{prepare, run_prepared};
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::render::folder::{Folder, FolderFault};
 use crate::render::series::SeriesWriter;
 use crate::render::{charts, events, json, text};
 use crate::results::{RunResult, Warning};
-use crate::scenario::{Loaded, Source, load};
+use crate::scenario::{Loaded, Source};
 use crate::solve::RunOptions;
 use clap::Args;
 use std::path::{Path, PathBuf};
@@ -33,8 +34,8 @@ pub enum Trouble {
 /// Runs the command.
 pub fn run(arguments: &RunArguments, common: &Common) -> Status {
     let interrupt = Interrupt::listen();
-    let loaded = match load(&arguments.file, &common.sets) {
-        Ok(loaded) => loaded,
+    let loaded = match study::load(&arguments.file, &common.sets) {
+        Ok(plan) => plan.loaded,
         Err(failure) => {
             streams::tell(&failure.render());
             return Status::Fault;

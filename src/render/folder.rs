@@ -193,6 +193,24 @@ impl Drop for Folder {
     }
 }
 
+/// Makes sure that a place is a folder of results to which files can be added, and returns it.
+///
+/// # Errors
+/// A place that is taken by something else, or a fault of the disk.
+pub fn settle(shown: &Path) -> Result<PathBuf, FolderFault> {
+    let target = resolve(shown)?;
+    let told =
+        |error: io::Error| FolderFault::disk(&format!("the folder `{}`", shown.display()), &error);
+    match look(&target) {
+        Place::Foreign(what) => return Err(FolderFault::refused(shown, what)),
+        Place::Ours => return Ok(target),
+        Place::Free | Place::EmptyFolder => {}
+    }
+    fs::create_dir_all(&target).map_err(told)?;
+    fs::write(target.join(MARKER_FILE), format!("{MARKER}\n")).map_err(told)?;
+    Ok(target)
+}
+
 /// The place that a path means, links followed and `.` and `..` resolved.
 fn resolve(shown: &Path) -> Result<PathBuf, FolderFault> {
     if shown.as_os_str().is_empty() {

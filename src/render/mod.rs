@@ -12,6 +12,7 @@ pub mod schema;
 pub mod series;
 pub mod shown;
 pub mod story;
+pub mod study;
 pub mod table;
 pub mod text;
 pub mod train;

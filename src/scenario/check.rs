@@ -81,7 +81,8 @@ fn check_names<'n>(root: &'n Node, faults: &mut Diagnostics) -> BTreeMap<&'n str
     names
 }
 
-fn is_name(text: &str) -> bool {
+/// True for a name as things of the file may have: a small letter, then small letters, digits and `_`.
+pub fn is_name(text: &str) -> bool {
     text.starts_with(|letter: char| letter.is_ascii_lowercase())
         && text.chars().all(|c| c.is_ascii_lowercase() || c.is_ascii_digit() || c == '_')
 }

@@ -28,6 +28,8 @@ pub struct Failure {
     pub diagnostics: Diagnostics,
     /// The text, for places; without text when the file could not be read.
     pub source: Box<Source>,
+    /// The value tree, when the text could be read at all.
+    pub node: Option<Box<Node>>,
 }
 
 impl Failure {
@@ -43,7 +45,7 @@ pub fn load(path: &Path, sets: &[(String, String)]) -> Result<Loaded, Failure> {
         Ok(source) => load_source(source, sets),
         Err(unread) => {
             let (source, diagnostics) = *unread;
-            Err(Failure { diagnostics, source: Box::new(source) })
+            Err(Failure { diagnostics, source: Box::new(source), node: None })
         }
     }
 }
@@ -60,9 +62,11 @@ pub fn load_text(
 
 fn load_source(mut source: Source, sets: &[(String, String)]) -> Result<Loaded, Failure> {
     let mut diagnostics = Diagnostics::new();
-    let fail = |diagnostics, source| Err(Failure { diagnostics, source: Box::new(source) });
+    let fail = |diagnostics, source, node| {
+        Err(Failure { diagnostics, source: Box::new(source), node: Some(Box::new(node)) })
+    };
     let Some(mut node) = source.parse(&mut diagnostics) else {
-        return fail(diagnostics, source);
+        return Err(Failure { diagnostics, source: Box::new(source), node: None });
     };
     for (path, value) in sets {
         source.sets.push((path.clone(), value.clone()));
@@ -74,7 +78,7 @@ fn load_source(mut source: Source, sets: &[(String, String)]) -> Result<Loaded, 
         if let Err(more) = read_node(&node, &mut tables) {
             diagnostics.extend(more);
         }
-        return fail(diagnostics, source);
+        return fail(diagnostics, source, node);
     }
     let mut tables = Tables::new(&source.base);
     match read_node(&node, &mut tables) {
@@ -87,7 +91,7 @@ fn load_source(mut source: Source, sets: &[(String, String)]) -> Result<Loaded, 
         }
         Err(faults) => {
             diagnostics.extend(faults);
-            fail(diagnostics, source)
+            fail(diagnostics, source, node)
         }
     }
 }

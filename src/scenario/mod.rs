@@ -15,6 +15,7 @@ mod source;
 mod tables;
 mod yaml;
 
+pub use check::is_name;
 pub use load::{Failure, Loaded, load, load_text, read_node};
 pub use source::Source;
 pub use tables::Tables;
@@ -93,6 +94,12 @@ pub struct Display {
     pub torque: String,
     /// Unit of angles.
     pub angle: String,
+}
+
+impl Default for Display {
+    fn default() -> Self {
+        Self { speed: "rpm".to_owned(), torque: "N*m".to_owned(), angle: "deg".to_owned() }
+    }
 }
 
 /// How the run starts.

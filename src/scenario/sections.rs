@@ -113,7 +113,7 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         title,
         about,
         document,
-        display: display.unwrap_or_else(usual_display),
+        display: display.unwrap_or_default(),
         duration,
         output_step,
         start: if start == "steady" { Start::Steady } else { Start::AsGiven },
@@ -195,12 +195,8 @@ fn read_document(fields: &mut Fields<'_>) -> Vec<(String, String)> {
     }
 }
 
-fn usual_display() -> Display {
-    Display { speed: "rpm".to_owned(), torque: "N*m".to_owned(), angle: "deg".to_owned() }
-}
-
 fn read_display(fields: &mut Fields<'_>) -> Display {
-    let usual = usual_display();
+    let usual = Display::default();
     let mut unit = |key, dimension: Dimension, usual: String, doc| {
         let Some(text) = fields.text(key, doc) else { return usual };
         match quantity::find_unit(&text).filter(|unit| unit.dimension == dimension) {

@@ -44,6 +44,13 @@ impl Tables {
         super::signals::each_with_table(scenario, &mut fill);
     }
 
+    /// Shows every row read so far.
+    pub fn each_row(&self, take: &mut dyn FnMut(&[f64; 2])) {
+        for row in self.read.iter().filter_map(|table| table.rows.as_ref().ok()).flatten() {
+            take(row);
+        }
+    }
+
     fn rows(&mut self, file: &str, columns: &TableColumns) -> Result<Vec<[f64; 2]>, String> {
         if let Some(known) =
             self.read.iter().find(|table| table.file == file && table.columns == *columns)

@@ -203,12 +203,24 @@ pub fn choose<T>(
     faults: &RefCell<Diagnostics>,
     alternatives: &[Alternative<T>],
 ) -> Option<T> {
-    let known = || alternatives.iter().map(|(name, ..)| *name);
+    let known: Vec<&'static str> = alternatives.iter().map(|(name, ..)| *name).collect();
+    let (name, inside) = chosen(path, node, faults, &known)?;
+    let (.., read) = alternatives.iter().find(|(known, ..)| *known == name)?;
+    Some(Fields::read(format!("{path}.{name}"), inside, faults, read))
+}
+
+/// The key of a one-key map at `path`, which must be one of the known ones, and what stands
+/// under it; anything else is a fault.
+pub fn chosen<'n>(
+    path: &str,
+    node: &'n Node,
+    faults: &RefCell<Diagnostics>,
+    known: &[&'static str],
+) -> Option<(&'static str, &'n Node)> {
     let Node::Map(entries) = node else {
-        let list: Vec<_> = known().collect();
         faults.borrow_mut().error(
             path,
-            format!("a one-key map is needed here ({}), not {}", list.join(", "), node.kind()),
+            format!("a one-key map is needed here ({}), not {}", known.join(", "), node.kind()),
         );
         return None;
     };
@@ -218,16 +230,14 @@ pub fn choose<T>(
             .error(path, format!("exactly one key is needed here, not {}", entries.len()));
         return None;
     };
-    let inner_path = format!("{path}.{name}");
-    let Some((.., read)) = alternatives.iter().find(|(known, ..)| known == name) else {
-        let list: Vec<_> = known().collect();
+    let Some(found) = known.iter().find(|known| *known == name) else {
         let message = format!("`{name}` is not known here");
-        let hint = match closest(name, known()) {
+        let hint = match closest(name, known.iter().copied()) {
             Some(near) => format!("did you mean `{near}`?"),
-            None => format!("it may be {}", list.join(", ")),
+            None => format!("it may be {}", known.join(", ")),
         };
-        faults.borrow_mut().error_at_key(inner_path, message, Some(hint));
+        faults.borrow_mut().error_at_key(format!("{path}.{name}"), message, Some(hint));
         return None;
     };
-    Some(Fields::read(inner_path, inside, faults, read))
+    Some((found, inside))
 }

@@ -1,0 +1,241 @@
+//! `lodeshaft study`: the studies of a scenario, each with its table and its answer.
+
+use super::interrupt::Interrupt;
+use super::run::output_folder;
+use super::status::Status;
+use super::study_progress::StudyProgress;
+use super::{Common, Format, streams};
+use crate::analysis::study::results::StudyResult;
+use crate::analysis::study::work::{Cost, Stop};
+use crate::analysis::study::{self, Kind, Plan, Study, StudyOptions};
+use crate::analysis::transient;
+use crate::diagnostic::{Severity, closest};
+use crate::render::folder::FolderFault;
+use crate::render::json;
+use crate::render::study::folder::StudyFolder;
+use crate::render::study::rows::Columns;
+use crate::render::study::{json as study_json, text};
+use clap::Args;
+use serde_json::{Map, Value};
+use std::path::PathBuf;
+
+/// What `study` takes.
+#[derive(Debug, Args)]
+pub struct StudyArguments {
+    /// The scenario; `-` reads standard input.
+    pub file: PathBuf,
+    /// The studies to run [default: all of the file].
+    pub names: Vec<String>,
+    /// Goes on with studies that were stopped; no finished run is lost or repeated.
+    #[arg(long)]
+    pub resume: bool,
+}
+
+/// How a study ended.
+enum Ended {
+    Done(Box<StudyResult>, Value),
+    Stopped(Status, usize),
+}
+
+/// Runs the command.
+pub fn run(arguments: &StudyArguments, common: &Common) -> Status {
+    let interrupt = Interrupt::listen();
+    let plan = match study::load(&arguments.file, &common.sets) {
+        Ok(plan) => plan,
+        Err(failure) => {
+            streams::tell(&failure.render());
+            return Status::Fault;
+        }
+    };
+    let mut found = plan.loaded.warnings.clone();
+    let prepared = transient::prepare(&plan.loaded.scenario);
+    let fault = prepared.is_err();
+    match prepared {
+        Ok(equations) => found.extend(equations.model.warnings.clone()),
+        Err(faults) => found.extend(faults),
+    }
+    streams::tell(&plan.loaded.source.render(&found));
+    if fault {
+        return Status::Fault;
+    }
+    let chosen = match choose(&plan, &arguments.names) {
+        Ok(chosen) => chosen,
+        Err(status) => return status,
+    };
+    let shown = output_folder(&arguments.file, common);
+    let folder = match StudyFolder::open(&shown) {
+        Ok(folder) => folder,
+        Err(fault) => return not_written(&fault),
+    };
+    let mut status = Status::Done;
+    let mut answers = Map::new();
+    for (index, study) in chosen.iter().enumerate() {
+        let ended = match one(&plan, study, &folder, arguments.resume, common, &interrupt) {
+            Ok(ended) => ended,
+            Err(fault) => return status.max(not_written(&fault)),
+        };
+        match ended {
+            Ended::Done(result, answer) => {
+                status = status.max(judge(&result));
+                answers.insert(study.name.clone(), answer);
+                if common.format == Format::Text && !common.quiet {
+                    let gap = if index > 0 { "\n" } else { "" };
+                    let summary = text::summary(&result, &plan.loaded.scenario);
+                    status = streams::print(&format!("{gap}{summary}"), status);
+                }
+            }
+            Ended::Stopped(how, runs) => {
+                status = status.max(how);
+                answers.insert(study.name.clone(), study_json::unfinished(runs));
+                break;
+            }
+        }
+    }
+    match common.format {
+        Format::Json => {
+            let all = json::named([("studies", Value::Object(answers))]);
+            streams::print(&json::pretty(&all), status)
+        }
+        Format::Text if common.quiet => status,
+        Format::Text => {
+            let place = shown.join(crate::render::study::folder::NAME);
+            streams::print(&format!("\nTables and answers in {}\n", place.display()), status)
+        }
+    }
+}
+
+/// The studies asked for, in the order asked; all of the file when none is named.
+fn choose<'p>(plan: &'p Plan, names: &[String]) -> Result<Vec<&'p Study>, Status> {
+    let known = || plan.studies.iter().map(|study| study.name.as_str());
+    if plan.studies.is_empty() {
+        streams::complain(
+            Severity::Error,
+            format!("`{}` has no studies", plan.loaded.source.name),
+            Some("for example studies: { hot: { margin: { vary: ..., between: [..., ...] } } }"),
+        );
+        return Err(Status::Fault);
+    }
+    if names.is_empty() {
+        return Ok(plan.studies.iter().collect());
+    }
+    let mut chosen: Vec<&Study> = Vec::new();
+    let mut sound = true;
+    for name in names {
+        match plan.studies.iter().find(|study| study.name == *name) {
+            Some(study) if chosen.iter().any(|known| known.name == *name) => {
+                let _ = study;
+            }
+            Some(study) => chosen.push(study),
+            None => {
+                sound = false;
+                let hint = match closest(name, known()) {
+                    Some(near) => format!("did you mean `{near}`?"),
+                    None => format!("it has {}", known().collect::<Vec<_>>().join(", ")),
+                };
+                let message = format!("`{}` has no study `{name}`", plan.loaded.source.name);
+                streams::complain(Severity::Error, message, Some(&hint));
+            }
+        }
+    }
+    if sound { Ok(chosen) } else { Err(Status::Fault) }
+}
+
+/// Runs one study and writes its files.
+fn one(
+    plan: &Plan,
+    study: &Study,
+    folder: &StudyFolder,
+    resume: bool,
+    common: &Common,
+    interrupt: &Interrupt,
+) -> Result<Ended, FolderFault> {
+    let loaded = &plan.loaded;
+    let work = study::mark(loaded, study);
+    let label = match study.kind {
+        Kind::Margin(_) => Some("part"),
+        Kind::LoadCases(_) => Some("case"),
+        Kind::Sweep(_) | Kind::MonteCarlo(_) => None,
+    };
+    let columns = Columns::new(study::varied(study), study::layout(loaded, study), label);
+    let Some(mut begun) = folder.begin(&study.name, &work, &columns, resume)? else {
+        let message = format!(
+            "`{}` cannot go on: the scenario, its tables, the study or the program has changed since its runs were made",
+            study.name
+        );
+        let hint = "without --resume it begins anew";
+        streams::complain(Severity::Error, message, Some(hint));
+        return Ok(Ended::Stopped(Status::Fault, 0));
+    };
+    if begun.restarted {
+        let message = format!("`{}` was stopped before and begins anew", study.name);
+        streams::complain(Severity::Warning, message, Some("--resume goes on with it"));
+    }
+    let mut progress = StudyProgress::new(&study.name, common.quiet);
+    let ended = study::run(
+        loaded,
+        study,
+        StudyOptions {
+            threads: common.threads.map(usize::from),
+            interrupt: interrupt.flag(),
+            known: std::mem::take(&mut begun.known),
+            keep: &mut begun.journal,
+            watch: &mut progress,
+        },
+    );
+    progress.end();
+    let result = match ended {
+        Ok(result) => result,
+        Err(Stop::Interrupted) => {
+            let message =
+                format!("`{}` was interrupted; {} finished runs are kept", study.name, progress.done());
+            streams::complain(Severity::Warning, message, Some("--resume goes on with it"));
+            return Ok(Ended::Stopped(Status::Interrupted, progress.done()));
+        }
+        Err(Stop::NotKept(reason)) => {
+            streams::complain(Severity::Error, reason, Some("--resume goes on from the last run kept"));
+            return Ok(Ended::Stopped(Status::NotWritten, progress.done()));
+        }
+    };
+    if !common.quiet {
+        tell_cost(&study.name, &result.cost);
+    }
+    let answer = study_json::study(&result, &work);
+    folder.finish(&study.name, &columns, &result.rows, &json::pretty(&answer))?;
+    Ok(Ended::Done(Box::new(result), answer))
+}
+
+/// What a study cost, on standard error: it differs from run to run.
+fn tell_cost(name: &str, cost: &Cost) {
+    let elapsed = cost.elapsed.as_secs_f64();
+    if cost.runs == 0 || elapsed <= 0.0 {
+        return;
+    }
+    let threads = if cost.threads == 1 { "1 thread" } else { &format!("{} threads", cost.threads) };
+    let rate = cost.runs as f64 / elapsed;
+    // Everything that is not integrating, as a share of the threads' time.
+    let busy = cost.integrating.as_secs_f64() / (elapsed * cost.threads as f64);
+    streams::tell(&format!(
+        "{name}: {} runs in {elapsed:.1} s on {threads}, {rate:.1} a second, {:.0} % of the time integrating\n",
+        cost.runs,
+        100.0 * busy.min(1.0)
+    ));
+}
+
+fn judge(result: &StudyResult) -> Status {
+    if !result.rows.is_empty() && result.outcomes().all(|outcome| outcome.failure.is_some()) {
+        let reason = result.outcomes().find_map(|outcome| outcome.failure.as_deref());
+        let message =
+            format!("no run of `{}` came to a result: {}", result.name, reason.unwrap_or_default());
+        streams::complain(Severity::Error, message, None);
+        return Status::GaveUp;
+    }
+    match result.answer.verdict() {
+        None | Some(Some(true)) => Status::Done,
+        Some(_) => Status::NotMet,
+    }
+}
+
+fn not_written(fault: &FolderFault) -> Status {
+    streams::complain(Severity::Error, &fault.message, fault.hint.as_deref());
+    Status::NotWritten
+}

@@ -1,0 +1,8 @@
+//! Studies as files and text: one row a run, one map an answer, one sentence at its head.
+
+pub mod answer;
+pub mod folder;
+pub mod json;
+pub mod journal;
+pub mod rows;
+pub mod text;

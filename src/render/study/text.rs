@@ -1,0 +1,158 @@
+//! Studies for people: the answer in one sentence, then what it stands on.
+
+use super::{answer, json};
+use crate::analysis::study::results::{
+    Answer, LoadCasesAnswer, MonteCarloAnswer, SHARES, StudyResult, SweepAnswer,
+};
+use crate::quantity::format_number;
+use crate::render::shown::{Shown, percent};
+use crate::render::table::{Table, wrap};
+use crate::render::text::WIDTH;
+use crate::scenario::Scenario;
+
+/// Rows of a sweep that are shown; the table on disk has all.
+const MOST_ROWS: usize = 30;
+
+/// Numbers of one list of strongest inputs.
+const MOST_INPUTS: usize = 5;
+
+/// The summary of a study.
+pub fn summary(result: &StudyResult, scenario: &Scenario) -> String {
+    let shown = Shown::new(&scenario.display);
+    let mut text = format!("{} ({})\n", result.name, json::kind(&result.answer));
+    text.push_str(&wrap("  ", &answer::sentence(result), WIDTH));
+    if let Some(verdict) = answer::verdict(&result.answer) {
+        text.push_str(&wrap("  ", &verdict, WIDTH));
+    }
+    let table = match &result.answer {
+        Answer::Margin(_) => Table::new("<"),
+        Answer::LoadCases(cases) => load_cases(cases, result, shown),
+        Answer::Sweep(sweep) => sweep_rows(sweep, result),
+        Answer::MonteCarlo(monte_carlo) => quantiles(monte_carlo, scenario, shown),
+    };
+    if table.len() > 1 {
+        text.push('\n');
+        text.push_str(&table.text(2));
+    }
+    if let Answer::MonteCarlo(monte_carlo) = &result.answer {
+        let table = sensitivities(monte_carlo);
+        if table.len() > 1 {
+            text.push('\n');
+            text.push_str(&table.text(2));
+        }
+    }
+    let notes = answer::notes(result);
+    if !notes.is_empty() {
+        text.push('\n');
+    }
+    for note in notes {
+        text.push_str(&wrap("  - ", &note, WIDTH));
+    }
+    text
+}
+
+/// A channel's name as far as its unit for people depends on it.
+fn channel_of(requirement: &str, scenario: &Scenario) -> String {
+    if requirement.ends_with(".peak_pull_out_share") {
+        return "gear.pull_out_share".to_owned();
+    }
+    let found = scenario.requirements.iter().find(|one| one.name == requirement);
+    found.map_or_else(String::new, |one| one.of.clone())
+}
+
+fn load_cases(answer: &LoadCasesAnswer, result: &StudyResult, shown: Shown<'_>) -> Table {
+    let mut table = Table::new("<<<>>>>");
+    table.row(["case", "verdict", "closest requirement", "found", "limit", "use", "slips"]);
+    for (case, row) in answer.cases.iter().zip(&result.rows) {
+        let verdict = match case.met {
+            Some(true) => "met",
+            Some(false) => "NOT MET",
+            None => "no result",
+        };
+        if let Some(reason) = &row.outcome.failure {
+            table.row([case.name.as_str(), verdict, reason.as_str(), "", "", "", ""]);
+            continue;
+        }
+        // What is not met comes first; else what comes closest to its limit.
+        let failing = case.requirements.iter().find(|one| one.met != Some(true));
+        let closest = case
+            .use_of_limit
+            .as_ref()
+            .and_then(|(_, name)| case.requirements.iter().find(|one| one.name == *name));
+        let told = failing.or(closest).or(case.requirements.first());
+        let (name, found, limit) = match told {
+            Some(one) => {
+                let figure = |value: Option<f64>| {
+                    value.map_or_else(|| "-".to_owned(), |it| shown.value(&one.of, one.unit, it))
+                };
+                (one.name.clone(), figure(one.value), figure(one.limit))
+            }
+            None => (String::new(), String::new(), String::new()),
+        };
+        let used = told
+            .zip(case.use_of_limit.as_ref())
+            .filter(|(one, (_, name))| one.name == *name)
+            .map_or_else(String::new, |(_, (share, _))| percent(*share));
+        let slips = row.outcome.slips().to_string();
+        table.row([&case.name, verdict, &name, &found, &limit, &used, &slips]);
+    }
+    table
+}
+
+fn sweep_rows(answer: &SweepAnswer, result: &StudyResult) -> Table {
+    let mut table = Table::new(">><>>");
+    if result.rows.len() > MOST_ROWS {
+        return table;
+    }
+    let path = |place: usize| answer.axes.get(place).map_or("", |axis| axis.varied.path.as_str());
+    table.row([path(0), path(1), "verdict", "peak share", "slips"]);
+    for row in &result.rows {
+        let value = |place: usize| {
+            let axis = answer.axes.get(place);
+            axis.zip(row.values.get(place))
+                .map_or_else(String::new, |(axis, value)| axis.varied.shown(*value))
+        };
+        let verdict = match (row.outcome.met(), &row.outcome.failure) {
+            (_, Some(_)) => "no result",
+            (Some(true), None) => "met",
+            (Some(false), None) => "NOT MET",
+            (None, None) => "",
+        };
+        let share = row.outcome.peak_share().map_or_else(String::new, percent);
+        table.row([&value(0), &value(1), verdict, &share, &row.outcome.slips().to_string()]);
+    }
+    table
+}
+
+fn quantiles(answer: &MonteCarloAnswer, scenario: &Scenario, shown: Shown<'_>) -> Table {
+    let mut table = Table::new("<>>>>>");
+    table.row(["value", "smallest", "5 %", "median", "95 %", "largest"]);
+    for scatter in &answer.quantiles {
+        let of = channel_of(&scatter.of, scenario);
+        let figure = |value: f64| {
+            if value.is_finite() { shown.value(&of, scatter.unit, value) } else { "never".to_owned() }
+        };
+        let at = |share: f64| {
+            let place = SHARES.iter().position(|known| *known == share);
+            place.and_then(|place| scatter.values.get(place)).map_or("-".to_owned(), |it| figure(*it))
+        };
+        let end = |value: Option<f64>| value.map_or_else(|| "never".to_owned(), figure);
+        let largest = if scatter.never > 0 { "never".to_owned() } else { end(scatter.max) };
+        table.row([&scatter.of, &end(scatter.min), &at(0.05), &at(0.5), &at(0.95), &largest]);
+    }
+    table
+}
+
+fn sensitivities(answer: &MonteCarloAnswer) -> Table {
+    let mut table = Table::new("<<>");
+    table.row(["value", "goes most with", "rank correlation"]);
+    for found in &answer.sensitivity {
+        let strongest =
+            found.correlations.iter().filter_map(|(path, it)| Some((path, (*it)?))).take(MOST_INPUTS);
+        for (place, (path, correlation)) in strongest.enumerate() {
+            let of = if place == 0 { found.of.as_str() } else { "" };
+            table.row([of, path.as_str(), &format_number(correlation, 2)]);
+        }
+    }
+    table
+}
