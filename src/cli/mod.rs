@@ -5,6 +5,8 @@ mod interrupt;
 mod new;
 mod poles;
 mod progress;
+mod report;
+mod report_studies;
 mod run;
 mod schema;
 mod status;
@@ -39,6 +41,8 @@ pub enum Command {
     Run(run::RunArguments),
     /// Runs the studies of a scenario: margins, load cases, sweeps, tolerances.
     Study(study::StudyArguments),
+    /// Runs a scenario and all its studies and writes them as one page.
+    Report(report::ReportArguments),
     /// Reads and checks scenarios and shows their trains; runs nothing.
     Check(check::CheckArguments),
     /// Lists pole-pair choices for a ratio: pieces, the six ratios, ripple orders.
@@ -96,6 +100,7 @@ pub fn main() -> ExitCode {
     let status: Status = match command {
         Command::Run(arguments) => run::run(&arguments, &common),
         Command::Study(arguments) => study::run(&arguments, &common),
+        Command::Report(arguments) => report::run(&arguments, &common),
         Command::Check(arguments) => check::run(&arguments, &common),
         Command::Poles(arguments) => poles::run(&arguments, &common),
         Command::New(arguments) => new::run(&arguments),
