@@ -121,7 +121,7 @@ mod tests {
 
     const GEAR: PolePairs = PolePairs { inner: 4, outer: 22 };
 
-    /// Synchronism with one member at rest, by hand: 4 w_i + 22 w_o = 26 w_m.
+    /// Synchronism with one member at rest, by hand: `4 w_i + 22 w_o = 26 w_m`.
     #[test]
     fn ratios_follow_from_synchronism() {
         assert_eq!(GEAR.pieces(), 26);
@@ -140,7 +140,7 @@ mod tests {
         assert_eq!((best.cogging_factor(), best.symmetry()), (1, 1));
     }
 
-    /// The identity behind one factor for both rotors: p_o = n - p_i.
+    /// The identity behind one factor for both rotors: `p_o = n - p_i`.
     #[test]
     fn both_rotors_share_one_cogging_factor() {
         for inner in 1..20_u32 {

@@ -2,6 +2,7 @@
 
 mod check;
 mod interrupt;
+mod later;
 mod new;
 mod poles;
 mod progress;
@@ -51,6 +52,12 @@ pub enum Command {
     New(new::NewArguments),
     /// Prints the JSON Schema of the scenario file, for editors.
     Schema,
+    /// Writes a report (not in this version).
+    #[command(hide = true)]
+    Report(later::LaterArguments),
+    /// Compares scenarios or results (not in this version).
+    #[command(hide = true)]
+    Compare(later::LaterArguments),
 }
 
 /// Options that every command takes, as far as they mean something to it.
@@ -105,6 +112,8 @@ pub fn main() -> ExitCode {
         Command::Poles(arguments) => poles::run(&arguments, &common),
         Command::New(arguments) => new::run(&arguments),
         Command::Schema => schema::run(),
+        Command::Report(_) => later::refuse("report"),
+        Command::Compare(_) => later::refuse("compare"),
     };
     status.into()
 }

@@ -12,7 +12,7 @@ use crate::render::series::SeriesWriter;
 use crate::render::{charts, events, json, text};
 use crate::results::{RunResult, Warning};
 use crate::scenario::{Loaded, Source};
-use crate::solve::RunOptions;
+use crate::solve::{RunOptions, Wanted};
 use clap::Args;
 use std::path::{Path, PathBuf};
 
@@ -108,7 +108,7 @@ fn write_run(
     let mut show = |time: f64| progress.at(time);
     let options = RunOptions {
         rows: Some(&mut rows),
-        traces: if common.no_charts { None } else { charts::request(scenario) },
+        traces: (!common.no_charts).then(|| charts::request(&equations)),
         interrupt: Some(interrupt.flag()),
         progress: Some(&mut show),
         ..RunOptions::default()
@@ -134,7 +134,17 @@ fn write_run(
     folder.write("summary.json", summary.as_bytes()).map_err(Trouble::Writing)?;
     let mut files = ["summary.json", "series.csv", "events.csv"].map(str::to_owned).to_vec();
     if !common.no_charts {
-        files.extend(charts::write(folder.path(), scenario, &result).map_err(of("the charts"))?);
+        let mut again = |request| {
+            let options = RunOptions {
+                traces: Some(request),
+                wanted: Wanted::Asked(Vec::new()),
+                interrupt: Some(interrupt.flag()),
+                ..RunOptions::default()
+            };
+            run_prepared(&equations, options).ok()?.traces
+        };
+        let drawings = charts::drawings(&equations, &result, &mut again);
+        files.extend(charts::write(folder.path(), &drawings).map_err(of("the charts"))?);
     }
     folder.commit().map_err(Trouble::Writing)?;
     Ok(Written { result, summary, files })

@@ -109,7 +109,7 @@ impl Requirement {
 }
 
 /// The dimension of a channel by its name; an unknown one is a fault at `of`.
-pub(super) fn channel_dimension(
+pub fn channel_dimension(
     fields: &Fields<'_>,
     of: &str,
     known: Known<'_>,
@@ -150,7 +150,7 @@ fn is_at_fault(fields: &Fields<'_>, thing: &str) -> bool {
 }
 
 /// A limit in the channel's dimension; nothing is read when the channel is unknown.
-pub(super) fn limit(
+pub fn limit(
     fields: &mut Fields<'_>,
     key: &'static str,
     dimension: Option<Dimension>,

@@ -83,8 +83,6 @@ pub struct QuietPowers {
     pub losses: Vec<(f64, StateRow)>,
     /// Power of loads and motors that are linear: weight times the product of two forms.
     pub drives: Vec<(f64, StateRow, StateRow)>,
-    /// Shafts whose flank has not caught up: twist state, rate state scale, stiffness, half play.
-    pub released: Vec<(usize, f64, f64, f64)>,
 }
 
 /// The equations of one mode over one stretch of time.
@@ -187,7 +185,8 @@ pub fn assemble(
             continue;
         }
         let mut entry = Active::of_term(place, term, mode.pieces[place], factor, column);
-        let constant = |slot| equations.bank.constant_on(slot, start, end, overrides).unwrap_or(0.0);
+        let constant =
+            |slot| equations.bank.constant_on(slot, start, end, overrides).unwrap_or(0.0);
         entry.fixed = (
             term.offset.map_or(0.0, |(gain, slot)| gain * constant(slot)),
             term.parameters.map(|slot| slot.map_or(0.0, constant)),
@@ -310,9 +309,7 @@ fn quiet_powers(equations: &Equations, mode: &Mode) -> QuietPowers {
         let Some(place) = *place else { continue };
         let scale = equations.scale[place];
         match mode.contacts[index] {
-            Contact::Gap => {
-                powers.released.push((place, scale, shaft.stiffness, shaft.backlash / 2.0));
-            }
+            Contact::Gap => {}
             _ if shaft.damping > 0.0 => {
                 powers.rate_losses.push((place, shaft.damping * scale * scale))
             }

@@ -2,15 +2,21 @@
 //!
 //! Nobody ever sees half a result: all files are written into a hidden folder beside the
 //! target, which then takes the target's name. A folder that holds a result of ours is
-//! replaced as a whole; any other folder with something in it is refused.
+//! replaced as a whole; any other folder with something in it is refused. A folder that cannot
+//! be swapped (a disk of its own, a parent that may not be written) is filled in place.
 
+use super::in_place;
 use super::leftovers::{self, MARKER, MARKER_FILE};
 use std::fs::{self, File};
 use std::io::{self, BufWriter};
 use std::path::{Path, PathBuf};
+use std::time::Duration;
 
 /// How often the swap of folders is tried when another run does the same.
 const ATTEMPTS: u32 = 50;
+
+/// How often a place that looks like another's is looked at.
+const LOOKS: u32 = 5;
 
 /// Why results could not be written.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -54,12 +60,16 @@ enum Place {
 /// A folder of results in the making; it vanishes unless it is committed.
 #[derive(Debug)]
 pub struct Folder {
+    /// The target cannot be swapped, so its content is.
+    in_place: bool,
     /// As the user named it, for messages.
     shown: PathBuf,
     target: PathBuf,
     temporary: PathBuf,
     /// Parents that were made for it and go again when nothing comes of it.
     made: Vec<PathBuf>,
+    /// Results that were moved out of the way for it.
+    aside: Vec<PathBuf>,
     committed: bool,
 }
 
@@ -81,9 +91,22 @@ impl Folder {
         let mut made = Vec::new();
         make_parents(&parent, &mut made).map_err(told)?;
         leftovers::clean(&target);
-        let mut folder =
-            Self { shown: shown.to_path_buf(), target, temporary: parent, made, committed: false };
-        let beside = std::mem::take(&mut folder.temporary);
+        let in_place = in_place::is_needed(&target, &parent);
+        let (beside, name) = if in_place {
+            leftovers::clean_inside(&target);
+            (target.clone(), leftovers::INSIDE.to_owned())
+        } else {
+            (parent, name)
+        };
+        let mut folder = Self {
+            in_place,
+            shown: shown.to_path_buf(),
+            target,
+            temporary: PathBuf::new(),
+            made,
+            aside: Vec::new(),
+            committed: false,
+        };
         for count in 0_u32.. {
             let temporary = beside.join(leftovers::hidden_name(&name, count));
             match fs::create_dir(&temporary) {
@@ -95,8 +118,8 @@ impl Folder {
                 Err(error) => return Err(told(error)),
             }
         }
-        let marker = format!("{MARKER}\n{}\n", leftovers::own_identity());
-        fs::write(folder.temporary.join(MARKER_FILE), marker).map_err(told)?;
+        leftovers::sign(&folder.temporary);
+        fs::write(folder.temporary.join(MARKER_FILE), format!("{MARKER}\n")).map_err(told)?;
         Ok(folder)
     }
 
@@ -134,19 +157,24 @@ impl Folder {
     /// # Errors
     /// A fault of the disk, or a place that has meanwhile been taken by something else.
     pub fn commit(mut self) -> Result<(), FolderFault> {
+        if self.in_place {
+            in_place::fill(&self.target, &self.temporary).map_err(|error| {
+                FolderFault::disk(&format!("the folder `{}`", self.shown.display()), &error)
+            })?;
+            self.committed = true;
+            return Ok(());
+        }
         let told = |error: &io::Error, shown: &Path| {
             FolderFault::disk(&format!("the folder `{}`", shown.display()), error)
         };
         for attempt in 0..ATTEMPTS {
             match look(&self.target) {
                 Place::Foreign(what) => return Err(FolderFault::refused(&self.shown, what)),
-                Place::Ours => {
-                    if let Err(error) = leftovers::set_aside(&self.target)
-                        && error.kind() != io::ErrorKind::NotFound
-                    {
-                        return Err(told(&error, &self.shown));
-                    }
-                }
+                Place::Ours => match leftovers::set_aside(&self.target) {
+                    Ok(aside) => self.aside.push(aside),
+                    Err(error) if error.kind() == io::ErrorKind::NotFound => {}
+                    Err(error) => return Err(told(&error, &self.shown)),
+                },
                 Place::EmptyFolder => {
                     // Some systems do not rename onto an empty folder.
                     let _ = fs::remove_dir(&self.target);
@@ -156,9 +184,7 @@ impl Folder {
             match fs::rename(&self.temporary, &self.target) {
                 Ok(()) => {
                     self.committed = true;
-                    // The process is of no interest any more; the same run gives the same bytes.
-                    let _ = fs::write(self.target.join(MARKER_FILE), format!("{MARKER}\n"));
-                    leftovers::clean_own(&self.target);
+                    leftovers::unsign(&self.target);
                     return Ok(());
                 }
                 Err(error) if attempt + 1 == ATTEMPTS => return Err(told(&error, &self.shown)),
@@ -167,10 +193,7 @@ impl Folder {
                     io::ErrorKind::AlreadyExists
                     | io::ErrorKind::DirectoryNotEmpty
                     | io::ErrorKind::NotADirectory => {}
-                    _ => {
-                        leftovers::restore(&self.target);
-                        return Err(told(&error, &self.shown));
-                    }
+                    _ => return Err(told(&error, &self.shown)),
                 },
             }
         }
@@ -180,6 +203,14 @@ impl Folder {
 
 impl Drop for Folder {
     fn drop(&mut self) {
+        if !self.committed
+            && let Some(aside) = self.aside.pop()
+        {
+            leftovers::restore(&aside, &self.target);
+        }
+        for aside in &self.aside {
+            let _ = fs::remove_dir_all(aside);
+        }
         if self.committed {
             return;
         }
@@ -233,7 +264,18 @@ fn resolve(shown: &Path) -> Result<PathBuf, FolderFault> {
     }
 }
 
+/// What stands at the target; a look while another run swaps folders is taken again.
 fn look(target: &Path) -> Place {
+    for _ in 0..LOOKS {
+        match look_once(target) {
+            Place::Foreign(_) => std::thread::sleep(Duration::from_millis(2)),
+            place => return place,
+        }
+    }
+    look_once(target)
+}
+
+fn look_once(target: &Path) -> Place {
     if !target.exists() {
         return Place::Free;
     }
@@ -242,7 +284,10 @@ fn look(target: &Path) -> Place {
     }
     match fs::read_dir(target) {
         Err(_) => Place::Foreign("cannot be read"),
-        Ok(mut entries) => {
+        Ok(entries) => {
+            let mut entries = entries
+                .flatten()
+                .filter(|entry| !leftovers::is_hidden_inside(&entry.file_name().to_string_lossy()));
             if entries.next().is_none() {
                 Place::EmptyFolder
             } else if leftovers::is_ours(target) {

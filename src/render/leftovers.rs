@@ -15,6 +15,12 @@ pub const MARKER_FILE: &str = ".lodeshaft";
 pub const MARKER: &str =
     "results of lodeshaft: the next run into this folder replaces it as a whole";
 
+/// What hidden folders inside a result are named after.
+pub const INSIDE: &str = "result";
+
+/// The file of a hidden folder that says who made it.
+const MAKER_FILE: &str = ".lodeshaft-process";
+
 /// A hidden folder of a process that cannot be asked is given up after this time.
 const GIVEN_UP: Duration = Duration::from_secs(24 * 3600);
 
@@ -37,37 +43,25 @@ pub fn is_ours(folder: &Path) -> bool {
     fs::read_to_string(folder.join(MARKER_FILE)).is_ok_and(|text| text.starts_with(MARKER))
 }
 
-/// Moves the result at the target out of the way.
-pub fn set_aside(target: &Path) -> io::Result<()> {
+/// Moves the result at the target out of the way and returns where it went.
+pub fn set_aside(target: &Path) -> io::Result<PathBuf> {
     let name = file_name(target);
-    for count in 0_u32.. {
+    let mut count = 0_u32;
+    loop {
         let aside = target.with_file_name(format!("{}-old", hidden_name(&name, count)));
-        if aside.exists() {
-            continue;
+        if !aside.exists() {
+            sign(target);
+            fs::rename(target, &aside)?;
+            return Ok(aside);
         }
-        let marker = format!("{MARKER}\n{}\n", own_identity());
-        let _ = fs::write(target.join(MARKER_FILE), marker);
-        return fs::rename(target, aside);
-    }
-    Ok(())
-}
-
-/// Puts back a result that this process had set aside.
-pub fn restore(target: &Path) {
-    for folder in hidden(target) {
-        if is_old(&folder) && is_own(&folder) && fs::rename(&folder, target).is_ok() {
-            let _ = fs::write(target.join(MARKER_FILE), format!("{MARKER}\n"));
-            return;
-        }
+        count += 1;
     }
 }
 
-/// Removes what this process had set aside.
-pub fn clean_own(target: &Path) {
-    for folder in hidden(target) {
-        if is_old(&folder) && is_own(&folder) {
-            let _ = fs::remove_dir_all(folder);
-        }
+/// Puts back a result that was set aside.
+pub fn restore(aside: &Path, target: &Path) {
+    if fs::rename(aside, target).is_ok() {
+        unsign(target);
     }
 }
 
@@ -79,18 +73,35 @@ pub fn clean(target: &Path) {
             continue;
         }
         if is_old(&folder) && !target.exists() {
-            let _ = fs::rename(&folder, target);
+            restore(&folder, target);
         } else {
             let _ = fs::remove_dir_all(folder);
         }
     }
 }
 
+/// Removes what killed runs left in a folder that is written in place.
+pub fn clean_inside(target: &Path) {
+    for folder in hidden_in(target, INSIDE) {
+        if is_abandoned(&folder) {
+            let _ = fs::remove_dir_all(folder);
+        }
+    }
+}
+
+/// True for the name of a hidden folder of a result that is written in place.
+pub fn is_hidden_inside(name: &str) -> bool {
+    name.starts_with(&prefix(INSIDE))
+}
+
 fn hidden(target: &Path) -> Vec<PathBuf> {
-    let prefix = prefix(&file_name(target));
-    let Some(entries) = target.parent().and_then(|parent| fs::read_dir(parent).ok()) else {
-        return Vec::new();
-    };
+    target.parent().map_or_else(Vec::new, |parent| hidden_in(parent, &file_name(target)))
+}
+
+/// The hidden folders of a result that stand in `place`.
+fn hidden_in(place: &Path, name: &str) -> Vec<PathBuf> {
+    let prefix = prefix(name);
+    let Ok(entries) = fs::read_dir(place) else { return Vec::new() };
     let mut folders: Vec<PathBuf> = entries
         .flatten()
         .filter(|entry| entry.file_name().to_string_lossy().starts_with(&prefix))
@@ -105,15 +116,18 @@ fn is_old(folder: &Path) -> bool {
     file_name(folder).ends_with("-old")
 }
 
-fn is_own(folder: &Path) -> bool {
-    maker(folder).is_some_and(|maker| maker == own_identity())
+/// Notes in a folder that this process has it in hand.
+pub fn sign(folder: &Path) {
+    let _ = fs::write(folder.join(MAKER_FILE), own_identity());
 }
 
-/// Second line of the marker: who made the folder.
+/// Takes the note away: the folder stands in its place, and the same run gives the same bytes.
+pub fn unsign(folder: &Path) {
+    let _ = fs::remove_file(folder.join(MAKER_FILE));
+}
+
 fn maker(folder: &Path) -> Option<String> {
-    let text = fs::read_to_string(folder.join(MARKER_FILE)).ok()?;
-    let mut lines = text.lines();
-    (lines.next() == Some(MARKER)).then(|| lines.next().unwrap_or_default().to_owned())
+    fs::read_to_string(folder.join(MAKER_FILE)).ok()
 }
 
 fn is_abandoned(folder: &Path) -> bool {
@@ -133,7 +147,7 @@ fn newest(folder: &Path) -> Option<SystemTime> {
 }
 
 /// Process, its start and its machine as one line.
-pub fn own_identity() -> String {
+fn own_identity() -> String {
     let process = std::process::id();
     let started = started_at(process).unwrap_or_else(|| "-".to_owned());
     format!("process {process} started {started} on {}", own_machine())
@@ -164,5 +178,60 @@ fn own_machine() -> String {
     match (boot, space) {
         (Ok(boot), Ok(space)) => format!("{}/{}", boot.trim(), space.display()),
         _ => "-".to_owned(),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn bench(name: &str) -> PathBuf {
+        let folder = std::env::temp_dir().join(format!("lodeshaft-{name}-{}", std::process::id()));
+        let _ = fs::remove_dir_all(&folder);
+        fs::create_dir_all(&folder).unwrap();
+        folder
+    }
+
+    fn hide(target: &Path, name: &str, identity: &str) -> PathBuf {
+        let folder = target.with_file_name(format!(".result.lodeshaft-{name}"));
+        fs::create_dir(&folder).unwrap();
+        fs::write(folder.join(MARKER_FILE), format!("{MARKER}\n")).unwrap();
+        fs::write(folder.join(MAKER_FILE), identity).unwrap();
+        folder
+    }
+
+    #[test]
+    fn a_living_run_is_left_alone_and_a_dead_one_is_cleaned() {
+        if own_machine() == "-" {
+            return; // Processes can be asked on Linux only.
+        }
+        let bench = bench("leftovers");
+        let target = bench.join("result");
+        fs::create_dir(&target).unwrap();
+        let living = hide(&target, "1-0", &own_identity());
+        // No process has this number: Linux numbers end at 2^22.
+        let dead = hide(&target, "2-0", &format!("process 4194305 started 1 on {}", own_machine()));
+        // This number lives, but started at another time.
+        let reused = format!("process {} started 1 on {}", std::process::id(), own_machine());
+        let reused = hide(&target, "3-0", &reused);
+        let elsewhere = hide(&target, "4-0", "process 1 started 1 on another/machine");
+        clean(&target);
+        assert!(living.exists() && elsewhere.exists());
+        assert!(!dead.exists() && !reused.exists());
+        fs::remove_dir_all(bench).unwrap();
+    }
+
+    #[test]
+    fn a_result_whose_successor_never_came_is_put_back() {
+        if own_machine() == "-" {
+            return;
+        }
+        let bench = bench("put_back");
+        let target = bench.join("result");
+        let identity = format!("process 4194305 started 1 on {}", own_machine());
+        let aside = hide(&target, "2-0-old", &identity);
+        clean(&target);
+        assert!(!aside.exists() && is_ours(&target));
+        fs::remove_dir_all(bench).unwrap();
     }
 }

@@ -4,6 +4,7 @@ pub mod chart;
 pub mod charts;
 pub mod events;
 pub mod folder;
+mod in_place;
 pub mod json;
 mod leftovers;
 pub mod number;

@@ -74,11 +74,11 @@ pub fn ratio(gear: &GearResult) -> Option<String> {
 /// `a` turns so many times as fast as `b`, in which sense.
 pub fn turning_words(fast: &str, slow: &str, ratio: f64) -> String {
     let sense = if ratio < 0.0 { ", the other way round" } else { ", the same way round" };
-    let size = ratio.abs();
-    if size == 1.0 {
+    let size = format_number(ratio.abs(), 6);
+    if size == "1" {
         return format!("`{fast}` turns as fast as `{slow}`{sense}");
     }
-    format!("`{fast}` turns {} times as fast as `{slow}`{sense}", format_number(size, 6))
+    format!("`{fast}` turns {size} times as fast as `{slow}`{sense}")
 }
 
 /// The pull-out torque at each member.

@@ -51,6 +51,12 @@ impl Calm {
         }
     }
 
+    /// Never looks for a region: every step is looked at.
+    pub fn switch_off(&mut self) {
+        self.possible = false;
+        self.active = false;
+    }
+
     /// Drops the region.
     pub fn forget(&mut self) {
         self.active = false;

@@ -140,7 +140,15 @@ pub fn run(window: &Window, rhs: &Rhs<'_>, state: &[f64], watch: &mut dyn Watch)
             }
         };
     }
-    by_length!(1 2 3 4 5 6 7 8 9 10 11 12 13 14 15 16 ; 20 24 28 32)
+    // A build for debugging goes without: each length costs seconds of compiling.
+    #[cfg(debug_assertions)]
+    {
+        by_length!(7 ; 32)
+    }
+    #[cfg(not(debug_assertions))]
+    {
+        by_length!(1 2 3 4 5 6 7 8 9 10 11 12 13 14 15 16 ; 20 24 28 32)
+    }
 }
 
 fn library<D: Dim, const PADDED: bool>(

@@ -17,6 +17,7 @@ pub mod steady;
 pub mod step_cap;
 pub mod tableau;
 pub mod traces;
+pub mod turning;
 pub mod watcher;
 pub mod windows;
 
@@ -51,6 +52,8 @@ pub struct RunOptions<'a> {
     pub progress: Option<&'a mut dyn FnMut(f64)>,
     /// Overrides the scenario's tolerance.
     pub tolerance: Option<f64>,
+    /// Told the turning points of one channel.
+    pub turning: Option<turning::TurningRequest<'a>>,
 }
 
 impl Default for RunOptions<'_> {
@@ -62,6 +65,7 @@ impl Default for RunOptions<'_> {
             interrupt: None,
             progress: None,
             tolerance: None,
+            turning: None,
         }
     }
 }

@@ -6,6 +6,7 @@ use super::locate;
 use super::rhs::Powers;
 use super::sampling::{Sample, StepView};
 use super::traces::Tracer;
+use super::turning::TurningWatch;
 use super::windows::Window;
 use super::{RowSink, RunOptions, Wanted};
 use crate::component::channel::{ChannelKind, MagneticChannel};
@@ -69,6 +70,8 @@ pub struct Observer<'a> {
     pub counters: Counters,
     /// Traces for charts.
     pub tracer: Option<Tracer>,
+    /// Turning points of one channel.
+    pub turning: Option<TurningWatch<'a>>,
     /// Energies so far, J.
     pub energy: Powers,
     /// Rotor heats so far, J.
@@ -131,6 +134,9 @@ impl<'a> Observer<'a> {
         if let Some(request) = &options.traces {
             wanted.extend(&request.channels);
         }
+        if let Some(request) = &options.turning {
+            wanted.push(request.channel);
+        }
         wanted.sort_unstable();
         wanted.dedup();
         let gears = model
@@ -160,6 +166,7 @@ impl<'a> Observer<'a> {
                 angles: vec![0.0; equations.speeds],
             },
             tracer: options.traces.take().map(|request| Tracer::new(request, model.magnets.len())),
+            turning: options.turning.take().map(TurningWatch::new),
             energy: Powers::default(),
             heats: vec![0.0; equations.heats.len()],
             speed_scale: equations.scale[..equations.speeds].to_vec(),
@@ -202,6 +209,9 @@ impl<'a> Observer<'a> {
         if let Some(tracer) = &mut self.tracer {
             tracer.note(time, &scratch.frame.channels);
         }
+        if let Some(turning) = &mut self.turning {
+            turning.note(time, &scratch.frame.channels);
+        }
         for (index, track) in self.gears.iter_mut().enumerate() {
             let place = evaluator.equations.phase_state[index];
             track.note_angle(load_angle(state[place] * evaluator.equations.scale[place]), time);
@@ -214,6 +224,9 @@ impl<'a> Observer<'a> {
         let mut scratch = std::mem::take(&mut self.scratch);
         evaluator.evaluate(time, state, &self.counters, Some(&self.wanted), &mut scratch.frame);
         self.note_all(time, &scratch.frame.channels);
+        if let Some(turning) = &mut self.turning {
+            turning.note(time, &scratch.frame.channels);
+        }
         for window in self.windows.iter_mut().filter(|window| window.active || window.touches(time))
         {
             window.note(time, scratch.frame.channels[window.channel]);
@@ -273,6 +286,9 @@ impl<'a> Observer<'a> {
             }
         }
         self.gear_events(&view);
+        if let Some(turning) = &mut self.turning {
+            turning.step(&view, &samples, &mut scratch);
+        }
         for sample in &samples {
             self.trace(&view, sample);
         }

@@ -187,7 +187,7 @@ fn motors(run: &Run<'_, '_>) -> Vec<MotorResult> {
 
 fn audit(equations: &Equations, run: &Run<'_, '_>, stored: f64) -> Energy {
     let sums = run.observer.energy;
-    let stored_change = energy::stored(equations, &run.state) - stored;
+    let stored_change = energy::stored(equations, &run.mode.contacts, &run.state) - stored;
     let residual = sums.supplied - sums.absorbed - sums.lost - stored_change;
     let turned_over = sums.supplied + sums.absorbed + sums.lost;
     Energy {

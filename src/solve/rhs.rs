@@ -134,10 +134,17 @@ impl<'a> Rhs<'a> {
         let assembly: &Assembly = self.evaluator.assembly;
         match &assembly.matrix {
             Matrix::Dense(columns) => {
+                // Plain counted loops: with a length known to the compiler they unroll, and the
+                // rates stay in registers.
+                let size = rates.len();
+                let columns = &columns[..size * size];
+                let state = &state[..size];
                 rates.fill(0.0);
-                for (column, value) in columns.chunks_exact(state.len()).zip(state) {
-                    for (rate, factor) in rates.iter_mut().zip(column) {
-                        *rate += factor * value;
+                for place in 0..size {
+                    let value = state[place];
+                    let column = &columns[place * size..(place + 1) * size];
+                    for row in 0..size {
+                        rates[row] += column[row] * value;
                     }
                 }
             }
@@ -182,13 +189,6 @@ impl<'a> Rhs<'a> {
         }
         for (weight, torque, speed) in &quiet.drives {
             powers.drive(weight * dot(torque, state) * dot(speed, state));
-        }
-        for &(place, scale, stiffness, half_play) in &quiet.released {
-            let twist = state[place] * scale;
-            let beyond = twist - half_play.copysign(twist);
-            if twist.abs() > half_play {
-                powers.lost -= stiffness * beyond * rates[place] * scale;
-            }
         }
         powers
     }

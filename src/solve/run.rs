@@ -62,7 +62,31 @@ pub enum RunError {
 /// # Errors
 /// [`RunError::Steady`] when a steady start is asked for and there is none. Trouble of the
 /// numerics is no error here: the result then says `completed: false` and why.
-pub fn run(equations: &Equations, mut options: RunOptions<'_>) -> Result<RunResult, RunError> {
+pub fn run(equations: &Equations, options: RunOptions<'_>) -> Result<RunResult, RunError> {
+    run_to_end(equations, options).map(|(result, _)| result)
+}
+
+/// Where a run stands at its end: what linearisation needs.
+#[derive(Clone, Debug)]
+pub struct Reached {
+    /// s.
+    pub time: f64,
+    /// Scaled state.
+    pub state: Vec<f64>,
+    /// Mode in force from there on.
+    pub mode: Mode,
+    /// Signals taken over by protections.
+    pub overrides: Overrides,
+}
+
+/// Runs a train as [`run`] does and also returns where it stands at the end.
+///
+/// # Errors
+/// As [`run`].
+pub fn run_to_end(
+    equations: &Equations,
+    mut options: RunOptions<'_>,
+) -> Result<(RunResult, Reached), RunError> {
     let overrides = equations.bank.no_overrides();
     let (state, mode) = match equations.model.scenario.start {
         Start::AsGiven => {
@@ -80,7 +104,7 @@ pub fn run(equations: &Equations, mut options: RunOptions<'_>) -> Result<RunResu
     observer.wanted.extend(&conditions.channels);
     observer.wanted.sort_unstable();
     observer.wanted.dedup();
-    let stored = energy::stored(equations, &state);
+    let stored = energy::stored(equations, &mode.contacts, &state);
     let mut run = Run {
         equations,
         time: 0.0,
@@ -101,7 +125,16 @@ pub fn run(equations: &Equations, mut options: RunOptions<'_>) -> Result<RunResu
         judge_rest: true,
     };
     run.go(&mut options);
-    Ok(outcome::collect(run, stored))
+    if let Some(turning) = &mut run.observer.turning {
+        turning.finish();
+    }
+    let reached = Reached {
+        time: run.time,
+        state: run.state.clone(),
+        mode: run.mode.clone(),
+        overrides: run.overrides.clone(),
+    };
+    Ok((outcome::collect(run, stored), reached))
 }
 
 /// The name of a method as written in files.
@@ -414,10 +447,13 @@ impl Run<'_, '_> {
                 );
             }
             Guard::Open(shaft) => {
+                // What the flank still holds is not given back.
+                self.observer.energy.lost += energy::elastic(equations, shaft, &self.state);
                 self.mode.contacts[shaft] = Contact::Gap;
                 self.contact_event(shaft, EventKind::Gap);
             }
             Guard::Close(shaft) => {
+                self.observer.energy.lost -= energy::elastic(equations, shaft, &self.state);
                 let place = equations.twist_state[shaft];
                 let twist = place.map_or(0.0, |place| self.state[place]);
                 self.mode.contacts[shaft] =

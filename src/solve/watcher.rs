@@ -61,6 +61,7 @@ pub struct Watcher<'w, 'a> {
     tableau: Tableau,
     state_weights: Vec<f64>,
     step: DenseStep,
+    inner_sums: Vec<f64>,
     stages: Vec<Vec<f64>>,
     new_power: Powers,
     step_power: Powers,
@@ -94,8 +95,12 @@ impl<'w, 'a> Watcher<'w, 'a> {
         let (power, heats) = (*ring.powers(0), ring.heats(0).to_vec());
         let tableau = tableau::of(method);
         let guards = guards::list(&rhs.evaluator, mode, conditions, state);
+        let mut calm = Calm::new(&rhs.evaluator, observer.tracer.is_some(), tolerance);
+        if observer.turning.is_some() {
+            calm.switch_off();
+        }
         Self {
-            calm: Calm::new(&rhs.evaluator, observer.tracer.is_some(), tolerance),
+            calm,
             observer,
             mode,
             conditions,
@@ -118,6 +123,7 @@ impl<'w, 'a> Watcher<'w, 'a> {
             state_weights: tableau.state_weights(),
             tableau,
             step: DenseStep::default(),
+            inner_sums: Vec::new(),
             stages: Vec::new(),
             new_power: power,
             step_power: Powers::default(),
@@ -287,7 +293,11 @@ impl<'w, 'a> Watcher<'w, 'a> {
         let mut length = cut.share * full;
         let smallest = 1e-14 * start.abs().max(1.0);
         if length <= smallest {
-            return;
+            // A slip changes no equation: short of the crossing the guard would trip again for ever.
+            if !matches!(cut.guard, guards::Guard::Slip(..)) {
+                return;
+            }
+            length = 2.0 * smallest;
         }
         let mut stages = vec![self.rate.clone()];
         for _ in 0..4 {
@@ -315,11 +325,13 @@ impl<'w, 'a> Watcher<'w, 'a> {
             };
             let (here, before) = (value(1.0), value(1.0 - 1e-3));
             let slope = (here - before) / (1e-3 * length);
-            if (-1e-9..=-0.5 * TRIP).contains(&here) || slope >= 0.0 {
+            // Beyond the guard by more than rounding of the time can take back.
+            let beyond = 2.0 * TRIP - 2.0 * smallest * slope.min(0.0);
+            if (-1e-9 - 2.0 * beyond..=-0.5 * TRIP).contains(&here) || slope >= 0.0 {
                 break;
             }
-            let change = (-(here + 2.0 * TRIP) / slope).clamp(-0.1 * length, 0.1 * length);
-            if change.abs() <= smallest {
+            let change = (-(here + beyond) / slope).clamp(-0.1 * length, 0.1 * length);
+            if change.abs() <= 0.5 * smallest {
                 break;
             }
             length += change;
@@ -417,28 +429,33 @@ impl Watcher<'_, '_> {
         let b = self.tableau.b;
         let mut sum = Powers::default();
         sum.add(b[0], &self.power);
+        let speeds = self.observer.counters.angles.len();
+        self.inner_sums.clear();
+        self.inner_sums.extend(self.rate[..speeds].iter().map(|rate| self.state_weights[0] * rate));
         for stage in 1..count {
-            sum.add(b[stage], ring.powers(count - stage));
+            let back = count - stage;
+            sum.add(b[stage], ring.powers(back));
+            let weight = self.state_weights[stage];
+            if weight != 0.0 {
+                for (inner, rate) in self.inner_sums.iter_mut().zip(&ring.rates(back)[..speeds]) {
+                    *inner += weight * rate;
+                }
+            }
         }
         self.observer.energy.add(length, &sum);
         self.power = *ring.powers(0);
-        if !self.heats.is_empty() {
-            for place in 0..self.heats.len() {
-                let mut heat = b[0] * self.heats[place];
-                for stage in 1..count {
-                    heat += b[stage] * ring.heats(count - stage)[place];
-                }
-                self.observer.heats[place] += length * heat;
-                self.heats[place] = ring.heats(0)[place];
+        for place in 0..self.heats.len() {
+            let mut heat = b[0] * self.heats[place];
+            for stage in 1..count {
+                heat += b[stage] * ring.heats(count - stage)[place];
             }
+            self.observer.heats[place] += length * heat;
+            self.heats[place] = ring.heats(0)[place];
         }
         let scale = &self.observer.speed_scale;
-        for (place, sum) in self.observer.counters.angles.iter_mut().enumerate() {
-            let mut inner = self.state_weights[0] * self.rate[place];
-            for stage in 1..count {
-                inner += self.state_weights[stage] * ring.rates(count - stage)[place];
-            }
-            *sum += scale[place] * length * (self.state[place] + length * inner);
+        let angles = self.observer.counters.angles.iter_mut().zip(scale);
+        for (((sum, scale), value), inner) in angles.zip(&self.state).zip(&self.inner_sums) {
+            *sum += scale * length * (value + length * inner);
         }
         drop(ring);
         if let Some(tracer) = &mut self.observer.tracer {

@@ -27,7 +27,8 @@ pub fn show(drawing: &Drawing, name: &str) {
     write("-grey.png", &drawing.to_png_in(2.0, Theme::Grey).unwrap());
     write("-dark.png", &drawing.to_png_in(2.0, Theme::Dark).unwrap());
     let page = format!(
-        "<!doctype html><meta charset=utf-8><style>body{{background:#12181F}}{}</style><figure>{}</figure>",
+        "<!doctype html><meta charset=utf-8><style>{}body{{background:#12181F}}{}</style><figure>{}</figure>",
+        lodeshaft::render::chart::font::css(),
         dark_rules("figure"),
         drawing.to_inline_svg(name)
     );

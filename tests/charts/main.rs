@@ -6,6 +6,8 @@ mod formats;
 #[cfg(test)]
 mod gallery;
 #[cfg(test)]
+mod odd;
+#[cfg(test)]
 mod pendulum;
 #[cfg(test)]
 mod planes;

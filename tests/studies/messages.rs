@@ -5,7 +5,7 @@ use lodeshaft::analysis::study;
 use lodeshaft::scenario::load_text;
 use std::path::Path;
 
-/// What a file with this study is told; the study stands on line 14.
+/// What a file with this study is told; the study stands on line 13.
 fn told(study: &str) -> String {
     told_of(&train(60.0, 100.0, &format!("  it: {study}\n")))
 }
@@ -138,7 +138,7 @@ fn every_command_refuses_a_file_with_a_faulty_study() {
         let output = folder.call(&[command, "case.yaml", "--out", "out"]);
         let told = String::from_utf8_lossy(&output.stderr).into_owned();
         assert_eq!(output.status.code(), Some(2), "{command}: {told}");
-        assert!(told.contains("case.yaml:14:24  (studies.it.margin.vary)"), "{command}: {told}");
+        assert!(told.contains("case.yaml:13:25  (studies.it.margin.vary)"), "{command}: {told}");
         assert!(!folder.has("out"), "{command}");
     }
 }

@@ -4,7 +4,7 @@ use super::helper::{Folder, train};
 use std::process::Child;
 use std::time::{Duration, Instant};
 
-const DRAWS: usize = 300;
+const DRAWS: usize = 100;
 
 fn scenario() -> String {
     train(
@@ -15,7 +15,7 @@ fn scenario() -> String {
         ),
     )
     // Long enough to be caught in the middle.
-    .replace("duration: 0.8 s", "duration: 8 s")
+    .replace("duration: 0.8 s", "duration: 6 s")
 }
 
 const ARGUMENTS: [&str; 7] =
@@ -51,11 +51,11 @@ fn made(stderr: &[u8]) -> usize {
 fn a_killed_study_goes_on_without_losing_or_repeating_a_run() {
     let folder = Folder::new(&scenario());
     let mut child = folder.start(&ARGUMENTS);
-    wait_for(&folder, 20, &mut child);
+    wait_for(&folder, 10, &mut child);
     child.kill().unwrap();
     child.wait().unwrap();
     let kept = kept(&folder);
-    assert!((20..DRAWS).contains(&kept), "{kept}");
+    assert!((10..DRAWS).contains(&kept), "{kept}");
     assert!(!folder.has("out/studies/drawn.csv"));
 
     let mut arguments = ARGUMENTS.to_vec();
@@ -95,7 +95,7 @@ fn a_changed_scenario_is_refused() {
     assert_eq!(kept(&folder), before);
     // A new title changes no result.
     arguments.pop();
-    arguments.extend(["title=Another name", "--set", "studies.drawn.monte_carlo.draws=300"]);
+    arguments.extend(["title=Another name", "--set", "studies.drawn.monte_carlo.draws=100"]);
     let output = folder.call(&arguments);
     assert_eq!(made(&output.stderr), DRAWS - before);
 }

@@ -21,6 +21,17 @@ impl Sheet {
     pub const PAGE: Self = Self { width: 720.0, height: None };
     /// For slides; written at a scale of 1.35 it is 960 by 540 px.
     pub const SLIDE: Self = Self { width: 960.0 / 1.35, height: Some(400.0) };
+
+    /// The sheet, or the nearest one that leaves room for margins and a panel.
+    pub fn sound(self) -> Self {
+        let within = |length: f64, least: f64, usual: f64| {
+            if length.is_finite() { length.clamp(least, 2400.0) } else { usual }
+        };
+        Self {
+            width: within(self.width, 480.0, Self::PAGE.width),
+            height: self.height.map(|height| within(height, 150.0, 400.0)),
+        }
+    }
 }
 
 impl Default for Sheet {
@@ -152,11 +163,13 @@ impl Axes {
         let units = |length: f64| format!("{}", (length * super::svg::UNITS).round());
         let Frame { left, top, width, height } = self.frame;
         let frame = [left, top, width, height].map(units).join(" ");
-        Group::class("p")
-            .id(id)
-            .with("frame", frame)
-            .with("across", format!("{} {}", self.across[0], self.across[1]))
-            .with("up", format!("{} {}", self.up[0], self.up[1]))
+        let mut group = Group::class("p").id(id).with("frame", frame);
+        for (name, [low, high]) in [("across", self.across), ("up", self.up)] {
+            if low.is_finite() && high.is_finite() {
+                group = group.with(name, format!("{low} {high}"));
+            }
+        }
+        group
     }
 }
 

@@ -69,6 +69,9 @@ pub fn load_angle(phase: &[Option<Column>], window: [f64; 2]) -> Pieces {
 pub fn wrap(phase: &Pieces) -> Pieces {
     let mut wrapped: Pieces = Vec::new();
     for curve in phase {
+        if !curve.iter().flatten().all(|part| part.is_finite()) {
+            continue;
+        }
         let Some(first) = curve.first() else { continue };
         let mut well = (first[1] / TAU).round();
         let mut piece = vec![[first[0], degrees(first[1] - TAU * well)]];
@@ -77,7 +80,7 @@ pub fn wrap(phase: &Pieces) -> Pieces {
             let target = (to[1] / TAU).round();
             let (count, up) = ((target - well).abs() as u64, target > well);
             let sign = if up { 1.0 } else { -1.0 };
-            for number in (0..count).filter(|number| is_drawn(*number, count)) {
+            for number in drawn(count) {
                 let edge = TAU * well + sign * (PI + TAU * number as f64);
                 let share = ((edge - from[1]) / (to[1] - from[1])).clamp(0.0, 1.0);
                 let time = from[0] + share * (to[0] - from[0]);
@@ -94,9 +97,12 @@ pub fn wrap(phase: &Pieces) -> Pieces {
     wrapped
 }
 
-/// A column that runs through very many wells would be one block of ink: four lines say it.
-fn is_drawn(number: u64, count: u64) -> bool {
-    count <= 4 || number < 2 || number + 2 >= count
+/// A column that runs through very many wells would be one block of ink: the first two lines and
+/// the last two say it.
+fn drawn(count: u64) -> impl Iterator<Item = u64> {
+    let head = if count <= 4 { count } else { 2 };
+    let tail = if count <= 4 { count } else { count - 2 };
+    (0..head).chain(tail..count)
 }
 
 fn degrees(angle: f64) -> f64 {

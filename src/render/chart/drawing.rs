@@ -76,6 +76,15 @@ pub enum Mark {
         /// How they look.
         style: TextStyle,
     },
+    /// Texts of different looks one after another on a line; they stay apart in any font.
+    Runs {
+        /// Where the baseline begins.
+        at: Point,
+        /// Gap between two of them.
+        gap: f64,
+        /// Words and looks.
+        runs: Vec<(String, TextStyle)>,
+    },
 }
 
 /// How a line of text looks.
@@ -151,6 +160,11 @@ impl Group {
         self
     }
 
+    /// The same with a number as attribute; what is not finite is left out.
+    pub fn number(self, name: &'static str, value: f64) -> Self {
+        if value.is_finite() { self.with(name, value.to_string()) } else { self }
+    }
+
     /// The same with one more `data-` attribute.
     pub fn with(mut self, name: &'static str, value: impl Into<String>) -> Self {
         self.data.push((name, value.into()));
@@ -163,9 +177,10 @@ impl Drawing {
     pub fn texts(&self) -> Vec<&str> {
         self.marks
             .iter()
-            .filter_map(|mark| match mark {
-                Mark::Text { text, .. } => Some(text.as_str()),
-                _ => None,
+            .flat_map(|mark| match mark {
+                Mark::Text { text, .. } => vec![text.as_str()],
+                Mark::Runs { runs, .. } => runs.iter().map(|run| run.0.as_str()).collect(),
+                _ => Vec::new(),
             })
             .collect()
     }

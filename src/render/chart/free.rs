@@ -66,8 +66,11 @@ impl Room {
 
     /// A text with a leader from a mark, set round it where there is room.
     pub fn call_out(&mut self, pen: &mut Pen, mark: Point, text: &str, style: TextStyle) {
-        let wide = font::width(text, style.size, style.bold);
         let [x, y] = mark;
+        if !(x.is_finite() && y.is_finite()) {
+            return;
+        }
+        let wide = font::width(text, style.size, style.bold);
         let mut candidates = Vec::new();
         for reach in [34.0, 52.0, 74.0] {
             for (across, up) in [
@@ -90,7 +93,7 @@ impl Room {
         let Some([left, baseline]) = self.set(&mut leader, text, quiet, &candidates) else {
             return;
         };
-        let near_x = x.clamp(left, left + wide);
+        let near_x = x.max(left).min(left + wide);
         let near_y = if baseline > y { baseline - 10.5 } else { baseline + 3.5 };
         let (dx, dy) = (near_x - x, near_y - y);
         let length = dx.hypot(dy).max(1e-9);

@@ -71,7 +71,8 @@ const FOOT: f64 = 40.0;
 
 /// Draws the chart.
 pub fn interference_chart(input: &Interference) -> Drawing {
-    let height = input.sheet.height.unwrap_or(312.0);
+    let sheet = input.sheet.sound();
+    let height = sheet.height.unwrap_or(312.0);
     let highest = input.modes.iter().map(|mode| mode.frequency).fold(0.0, f64::max);
     let band = 1.0 + input.separation.unwrap_or(0.0);
     let reach = input
@@ -89,11 +90,11 @@ pub fn interference_chart(input: &Interference) -> Drawing {
         across: [0.0, across_high],
         up: [0.0, up_high],
     };
-    let margin = labels::margin(end_labels(input, &draft).iter(), axes::RIGHT, input.sheet.width);
+    let margin = labels::margin(end_labels(input, &draft).iter(), axes::RIGHT, sheet.width);
     let frame = Frame {
         left: axes::LEFT,
         top: TOP,
-        width: input.sheet.width - axes::LEFT - margin,
+        width: sheet.width - axes::LEFT - margin,
         height: height - TOP - FOOT,
     };
     let axes = Axes { frame, ..draft };
@@ -147,7 +148,7 @@ pub fn interference_chart(input: &Interference) -> Drawing {
     let name = format!("{}, {}", input.speed_of, input.speed.text);
     axes.numbers_below(&mut pen, &across_ticks, &name);
     labels::draw(&mut pen, &frame, &end_labels(input, &axes), margin);
-    pen.finish(&input.id, &input.title, input.sheet.width, height)
+    pen.finish(&input.id, &input.title, sheet.width, height)
 }
 
 /// An order from standstill to the right edge, in display units.

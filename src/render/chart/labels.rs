@@ -77,8 +77,11 @@ pub fn spread(wishes: &[f64], low: f64, high: f64) -> Vec<f64> {
 
 /// Draws labels right of a frame, cut to `room` px.
 pub fn draw(pen: &mut Pen, frame: &Frame, labels: &[EndLabel], room: f64) {
-    let wishes: Vec<f64> =
-        labels.iter().map(|label| label.y.clamp(frame.top, frame.bottom())).collect();
+    let wishes: Vec<f64> = labels
+        .iter()
+        .map(|label| if label.y.is_nan() { frame.bottom() } else { label.y })
+        .map(|y| y.max(frame.top).min(frame.bottom()))
+        .collect();
     let heights = spread(&wishes, frame.top + 2.0, frame.bottom() - 1.0);
     for ((label, wish), height) in labels.iter().zip(&wishes).zip(&heights) {
         let right = frame.right();

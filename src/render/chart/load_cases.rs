@@ -46,12 +46,13 @@ const LONGEST: f64 = 1.6;
 
 /// Draws the chart.
 pub fn load_cases_chart(input: &LoadCases) -> Drawing {
+    let sheet = input.sheet.sound();
     let names = input.cases.iter().map(|case| font::width(&case.name, pen::LABEL, true) + 12.0);
     let left = names.fold(axes::LEFT, f64::max).min(170.0);
     let frame = Frame {
         left,
         top: TOP,
-        width: input.sheet.width - left - axes::RIGHT,
+        width: sheet.width - left - axes::RIGHT,
         height: PITCH * input.cases.len().max(1) as f64,
     };
     let height = TOP + frame.height + FOOT;
@@ -77,7 +78,7 @@ pub fn load_cases_chart(input: &LoadCases) -> Drawing {
         let at = [x(f64::from(percent) / 100.0), frame.bottom() + 15.0];
         pen.text(at, &percent.to_string(), pen::label(Ink::Sub, Anchor::Middle));
     }
-    pen.finish(&input.id, &input.title, input.sheet.width, height)
+    pen.finish(&input.id, &input.title, sheet.width, height)
 }
 
 fn draw_case(pen: &mut Pen, frame: &Frame, middle: f64, case: &CaseBar, x: &dyn Fn(f64) -> f64) {

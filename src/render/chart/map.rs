@@ -115,11 +115,12 @@ pub fn map_chart(input: &MapChart) -> Drawing {
     let (columns, rows) = (input.across.values.len().max(1), input.up.values.len().max(1));
     let usual =
         if rows == 1 { 130.0 } else { (TOP + FOOT + 26.0 * rows as f64).clamp(220.0, 430.0) };
-    let height = input.sheet.height.unwrap_or(usual);
+    let sheet = input.sheet.sound();
+    let height = sheet.height.unwrap_or(usual);
     let frame = Frame {
         left: axes::LEFT,
         top: TOP,
-        width: input.sheet.width - axes::LEFT - KEY,
+        width: sheet.width - axes::LEFT - KEY,
         height: height - TOP - FOOT,
     };
     let grid = Grid { frame, columns, rows };
@@ -147,7 +148,7 @@ pub fn map_chart(input: &MapChart) -> Drawing {
     numbers_left(&mut pen, &grid, &input.up);
     numbers_below(&mut pen, &grid, &input.across);
     key(&mut pen, input, frame.right() + 14.0, shares);
-    pen.finish(&input.id, &input.title, input.sheet.width, height)
+    pen.finish(&input.id, &input.title, sheet.width, height)
 }
 
 fn named(parameter: &Parameter) -> String {

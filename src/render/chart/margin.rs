@@ -58,7 +58,8 @@ const FOOT: f64 = 40.0;
 /// Draws the chart.
 pub fn margin_chart(input: &MarginChart) -> Drawing {
     let measured = input.points.iter().any(|point| point.value.is_some());
-    let height = input.sheet.height.unwrap_or(if measured { 280.0 } else { 150.0 });
+    let sheet = input.sheet.sound();
+    let height = sheet.height.unwrap_or(if measured { 280.0 } else { 150.0 });
     let parameters = input.points.iter().map(|point| point.parameter).chain([input.design]);
     let (low, high) = bounds(parameters);
     let limit = input.limit.map(|limit| limit.0);
@@ -69,7 +70,7 @@ pub fn margin_chart(input: &MarginChart) -> Drawing {
     let frame = Frame {
         left: axes::LEFT,
         top: TOP,
-        width: input.sheet.width - axes::LEFT - axes::RIGHT,
+        width: sheet.width - axes::LEFT - axes::RIGHT,
         height: height - TOP - FOOT,
     };
     let spare = 0.02 * (high - low).max(1e-12);
@@ -113,7 +114,7 @@ pub fn margin_chart(input: &MarginChart) -> Drawing {
     };
     axes.numbers_below(&mut pen, &across_ticks, &name);
     key(&mut pen, frame.right() + 12.0, frame.top + 10.0);
-    pen.finish(&input.id, &input.title, input.sheet.width, height)
+    pen.finish(&input.id, &input.title, sheet.width, height)
 }
 
 fn bounds(values: impl Iterator<Item = f64>) -> (f64, f64) {

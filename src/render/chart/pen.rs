@@ -56,7 +56,7 @@ impl Pen {
 
     /// A line through points; anything not finite is left out.
     pub fn path(&mut self, points: &[Point], ink: Ink, width: f64, dash: Dash) {
-        if points.len() > 1 && points.iter().flatten().all(|part| part.is_finite()) {
+        if points.len() > 1 && points.iter().all(is_near) {
             self.marks.push(Mark::Line { points: points.to_vec(), ink, width, dash });
         }
     }
@@ -68,15 +68,14 @@ impl Pen {
 
     /// A filled area.
     pub fn fill(&mut self, points: &[Point], ink: Ink, alpha: f64) {
-        if points.len() > 2 && points.iter().flatten().all(|part| part.is_finite()) {
+        if points.len() > 2 && points.iter().all(is_near) {
             self.marks.push(Mark::Fill { points: points.to_vec(), ink, alpha });
         }
     }
 
     /// A filled rectangle from its upper left corner.
     pub fn rectangle(&mut self, corner: Point, size: [f64; 2], ink: Ink, alpha: f64) {
-        let finite = corner.iter().chain(size.iter()).all(|part| part.is_finite());
-        if finite && size.iter().all(|length| *length > 0.0) {
+        if is_near(&corner) && is_near(&size) && size.iter().all(|length| *length > 0.0) {
             self.marks.push(Mark::Rectangle { corner, size, ink, alpha });
         }
     }
@@ -90,7 +89,7 @@ impl Pen {
 
     /// A filled disc.
     pub fn disc(&mut self, centre: Point, radius: f64, ink: Ink) {
-        if centre.iter().all(|part| part.is_finite()) && radius > 0.0 {
+        if is_near(&centre) && radius > 0.0 {
             self.marks.push(Mark::Disc { centre, radius, ink });
         }
     }
@@ -103,25 +102,21 @@ impl Pen {
 
     /// A line of text by its baseline.
     pub fn text(&mut self, at: Point, text: &str, style: TextStyle) {
-        if !text.is_empty() && at.iter().all(|part| part.is_finite()) {
-            // Control characters have no place in SVG text; U+E000 is the writer's own sentinel.
-            let text =
-                text.replace(|letter: char| letter.is_control() || letter == '\u{E000}', " ");
-            self.marks.push(Mark::Text { at, text, style });
+        if !text.is_empty() && is_near(&at) {
+            self.marks.push(Mark::Text { at, text: clean(text), style });
         }
     }
 
-    /// Texts one after another from a point on; returns where they end.
-    pub fn run_of_text(&mut self, at: Point, gap: f64, parts: &[(&str, TextStyle)]) -> f64 {
-        let mut x = at[0];
-        for (text, style) in parts {
-            if text.is_empty() {
-                continue;
-            }
-            self.text([x, at[1]], text, TextStyle { anchor: Anchor::Start, ..*style });
-            x += font::width(text, style.size, style.bold) + gap;
+    /// Texts one after another from a point on.
+    pub fn run_of_text(&mut self, at: Point, gap: f64, parts: &[(&str, TextStyle)]) {
+        let runs: Vec<(String, TextStyle)> = parts
+            .iter()
+            .filter(|part| !part.0.is_empty())
+            .map(|(text, style)| (clean(text), TextStyle { anchor: Anchor::Start, ..*style }))
+            .collect();
+        if !runs.is_empty() && is_near(&at) {
+            self.marks.push(Mark::Runs { at, gap, runs });
         }
-        x - gap
     }
 
     /// A text on a plate of paper, for labels that must cross a line.
@@ -150,4 +145,14 @@ impl Pen {
         }
         Drawing { id: id.to_owned(), title: title.to_owned(), width, height, marks: self.marks }
     }
+}
+
+/// On any sheet, or not too far beside it; the canvases count in whole numbers.
+fn is_near(point: &Point) -> bool {
+    point.iter().all(|part| part.abs() < 50_000.0)
+}
+
+/// Control characters have no place in SVG text; U+E000 is the writer's own sentinel.
+fn clean(text: &str) -> String {
+    text.replace(|letter: char| letter.is_control() || letter == '\u{E000}', " ")
 }

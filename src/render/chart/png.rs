@@ -32,8 +32,9 @@ impl Drawing {
         let finer = (4.0 / scale).ceil().clamp(2.0, 8.0);
         let unit = scale * finer;
         let finer = finer as usize;
-        let width = (self.width * scale).round().clamp(1.0, 20_000.0) as usize;
-        let height = (self.height * scale).round().clamp(1.0, 20_000.0) as usize;
+        let width = (self.width * scale).round().min(20_000.0) as usize;
+        let height = (self.height * scale).round().min(20_000.0) as usize;
+        let (width, height) = (width.max(1), height.max(1));
         let size = (width * finer, height * finer);
         let mut buffer = vec![0_u8; 3 * size.0 * size.1];
         {
@@ -82,6 +83,13 @@ impl Bitmap<'_> {
             }
             Mark::Disc { centre, radius, ink } => self.disc(*centre, *radius, *ink),
             Mark::Text { at, text, style } => self.text(*at, text, *style),
+            Mark::Runs { at, gap, runs } => {
+                let mut x = at[0];
+                for (text, style) in runs {
+                    self.text([x, at[1]], text, *style);
+                    x += font::width(text, style.size, style.bold) + gap;
+                }
+            }
         }
     }
 

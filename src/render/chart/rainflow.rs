@@ -37,7 +37,8 @@ const BINS: f64 = 40.0;
 
 /// Draws the chart.
 pub fn rainflow_chart(input: &RainflowChart) -> Drawing {
-    let height = input.sheet.height.unwrap_or(280.0);
+    let sheet = input.sheet.sound();
+    let height = sheet.height.unwrap_or(280.0);
     let valid = |value: f64| value.is_finite() && value > 0.0;
     let cycles: Vec<[f64; 2]> = input
         .cycles
@@ -55,7 +56,7 @@ pub fn rainflow_chart(input: &RainflowChart) -> Drawing {
     let frame = Frame {
         left: axes::LEFT,
         top: TOP,
-        width: input.sheet.width - axes::LEFT - axes::RIGHT,
+        width: sheet.width - axes::LEFT - axes::RIGHT,
         height: height - TOP - FOOT,
     };
     let axes = Axes { frame, across: [0.0, high], up: [low_power, high_power] };
@@ -83,7 +84,7 @@ pub fn rainflow_chart(input: &RainflowChart) -> Drawing {
         pen.text(place, &number(10_f64.powf(*power), 3), pen::label(Ink::Sub, Anchor::End));
     }
     axes.numbers_below(&mut pen, &across_ticks, &format!("Range, {}", unit.text));
-    pen.finish(&input.id, &input.title, input.sheet.width, height)
+    pen.finish(&input.id, &input.title, sheet.width, height)
 }
 
 fn histogram(cycles: &[[f64; 2]], unit: &Unit, width: f64, high: f64) -> Vec<f64> {

@@ -37,7 +37,7 @@ pub fn run_chart(input: &RunChart) -> Drawing {
     clock.numbers(&mut pen, &axes);
     pen.close();
     let height = (top + layout.strip + FOOT).ceil();
-    pen.finish(&input.id, &input.title, input.sheet.width, height)
+    pen.finish(&input.id, &input.title, input.sheet.sound().width, height)
 }
 
 /// The axes of each panel, as drawn.
@@ -94,7 +94,7 @@ struct Layout {
 
 impl Layout {
     fn of(input: &RunChart) -> Self {
-        let sheet = input.sheet;
+        let sheet = input.sheet.sound();
         let strip = strip::height(&input.rows);
         let count = input.panels.len().max(1) as f64;
         let panel = match sheet.height {
@@ -206,9 +206,7 @@ fn draw_panel(
 fn draw_curve(pen: &mut Pen, axes: &Axes, curve: &Curve) {
     let width = stroke(curve);
     pen.open(
-        Group::class("s")
-            .with("channel", curve.channel.clone())
-            .with("factor", curve.factor.to_string()),
+        Group::class("s").with("channel", curve.channel.clone()).number("factor", curve.factor),
     );
     for piece in &curve.pieces {
         axes.draw(pen, piece, curve.hue.ink(), width, curve.dash);
@@ -226,7 +224,7 @@ fn steps_and_acts(pen: &mut Pen, input: &RunChart, axes: &Axes) {
     {
         for time in times.iter().filter(inside) {
             let x = axes.x(*time);
-            pen.open(Group::class("m").with("t", time.to_string()).with("kind", kind));
+            pen.open(Group::class("m").number("t", *time).with("kind", kind));
             pen.path(&[[x, top], [x, bottom]], ink, 1.0, dash);
             pen.close();
         }

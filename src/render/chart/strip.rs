@@ -84,7 +84,7 @@ pub fn slip_marks(pen: &mut Pen, axes: &Axes, slips: &[(f64, i32)], y: impl Fn(b
             continue;
         }
         *before = Some(x);
-        pen.open(Group::class("m").with("t", time.to_string()).with("kind", "slip"));
+        pen.open(Group::class("m").number("t", *time).with("kind", "slip"));
         marks::slip(pen, [x, y(forward)], forward, 8.0);
         pen.close();
     }
@@ -106,13 +106,13 @@ fn draw_slips(
     if let Some(time) = ring {
         // Beside the last triangle, where the ring would hide under it.
         let x = axes.x(time).max(end + 5.0);
-        pen.open(Group::class("m").with("t", time.to_string()).with("kind", "resynchronised"));
+        pen.open(Group::class("m").number("t", time).with("kind", "resynchronised"));
         marks::ring(pen, [x, middle]);
         pen.close();
         end = x + 4.0;
     }
     let time = in_step.unwrap_or(last);
-    pen.open(Group::class("m").with("t", time.to_string()).with("kind", "note"));
+    pen.open(Group::class("m").number("t", time).with("kind", "note"));
     let first = slips.iter().map(|slip| slip.0).find(|time| seen(axes, *time));
     let start = first.map_or(axes.frame.left, |time| axes.x(time) - 7.0);
     for note in notes {
@@ -146,7 +146,7 @@ fn draw_bar(pen: &mut Pen, axes: &Axes, middle: f64, kind: BarKind, bar: &Signal
         BarKind::State => (Ink::Axis, 9.0),
         BarKind::Signal => (Ink::Signal, 11.0),
     };
-    pen.open(Group::class("b").with("t", bar.start.to_string()).with("u", bar.end.to_string()));
+    pen.open(Group::class("b").number("t", bar.start).number("u", bar.end));
     pen.rectangle([left, middle - tall / 2.0], [wide, tall], ink, 1.0);
     pen.close();
     if bar.text.is_empty() {
@@ -154,7 +154,7 @@ fn draw_bar(pen: &mut Pen, axes: &Axes, middle: f64, kind: BarKind, bar: &Signal
     }
     let text_wide = font::width(&bar.text, pen::LABEL, false);
     let centre = (bar.start.max(start) + bar.end.min(end)) / 2.0;
-    pen.open(Group::class("m").with("t", centre.to_string()).with("kind", "words"));
+    pen.open(Group::class("m").number("t", centre).with("kind", "words"));
     if text_wide + 4.0 <= wide && kind == BarKind::Signal {
         let place = [left + wide / 2.0, middle + 3.9];
         pen.text(place, &bar.text, pen::label(Ink::Ink, Anchor::Middle));
@@ -175,7 +175,7 @@ fn draw_flags(pen: &mut Pen, axes: &Axes, middle: f64, flags: &[(f64, String)]) 
         let next = visible
             .get(place + 1)
             .map_or(axes.frame.right() + axes::RIGHT - 8.0, |flag| axes.x(flag.0));
-        pen.open(Group::class("m").with("t", time.to_string()).with("kind", "flag"));
+        pen.open(Group::class("m").number("t", *time).with("kind", "flag"));
         marks::flag(pen, [x, middle]);
         let wide = font::width(words, pen::LABEL, false);
         if x + 11.0 + wide <= next - 3.0 {

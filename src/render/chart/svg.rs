@@ -103,6 +103,10 @@ fn put(backend: &mut SVGBackend<'_>, tags: &mut Vec<String>, mark: &Mark, prefix
             true,
         ),
         Mark::Text { at, text, style } => draw_text(backend, *at, text, *style),
+        Mark::Runs { at, gap, runs } => {
+            let tag = runs_of_text(*at, *gap, runs);
+            sentinel(backend, tags, tag)
+        }
     };
 }
 
@@ -125,6 +129,26 @@ fn draw_text(backend: &mut SVGBackend<'_>, at: Point, text: &str, style: TextSty
         pos: Pos::new(side, VPos::Top),
     };
     backend.draw_text(text, &face, place(at))
+}
+
+/// One element for all runs: the canvas would set each at a fixed place, and they would collide
+/// in a wider font.
+fn runs_of_text(at: Point, gap: f64, runs: &[(String, TextStyle)]) -> String {
+    let (x, y) = place(at);
+    let mut tag = format!("<text x=\"{x}\" y=\"{y}\">");
+    for (number, (text, style)) in runs.iter().enumerate() {
+        let shift = if number > 0 { format!(" dx=\"{}\"", units(gap)) } else { String::new() };
+        let weight = if style.bold { " font-weight=\"bold\"" } else { "" };
+        let _ = write!(
+            tag,
+            "<tspan{shift} font-size=\"{}\" fill=\"{}\"{weight}>{}</tspan>",
+            plain(style.size * UNITS),
+            style.ink.hex(),
+            escape(text)
+        );
+    }
+    tag.push_str("</text>");
+    tag
 }
 
 fn sentinel(backend: &mut SVGBackend<'_>, tags: &mut Vec<String>, tag: String) -> Drawn {

@@ -40,12 +40,13 @@ const DEGREES: f64 = 180.0 / std::f64::consts::PI;
 
 /// Draws the chart.
 pub fn swing_chart(input: &SwingChart) -> Drawing {
-    let height = input.sheet.height.unwrap_or(328.0);
+    let sheet = input.sheet.sound();
+    let height = sheet.height.unwrap_or(328.0);
     let (up, ticks) = range(input);
     let frame = Frame {
         left: axes::LEFT,
         top: TOP,
-        width: input.sheet.width - axes::LEFT - axes::RIGHT,
+        width: sheet.width - axes::LEFT - axes::RIGHT,
         height: height - TOP - FOOT,
     };
     let axes = Axes { frame, across: [-180.0, 180.0], up };
@@ -105,7 +106,7 @@ pub fn swing_chart(input: &SwingChart) -> Drawing {
     axes.numbers_left(&mut pen, &ticks);
     axes.numbers_below(&mut pen, &angles, "Load angle, electrical degrees");
     labels::draw(&mut pen, &frame, &end_labels(input, &axes, &passes), axes::RIGHT);
-    pen.finish(&input.id, &input.title, input.sheet.width, height)
+    pen.finish(&input.id, &input.title, sheet.width, height)
 }
 
 fn degrees(points: &[[f64; 2]]) -> Vec<[f64; 2]> {

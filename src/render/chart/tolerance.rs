@@ -41,7 +41,8 @@ const WORDS: f64 = 122.0;
 
 /// Draws the chart.
 pub fn tolerance_chart(input: &Tolerance) -> Drawing {
-    let height = input.sheet.height.unwrap_or(280.0);
+    let sheet = input.sheet.sound();
+    let height = sheet.height.unwrap_or(280.0);
     let percent: Vec<f64> = input
         .shares
         .iter()
@@ -61,7 +62,7 @@ pub fn tolerance_chart(input: &Tolerance) -> Drawing {
     let frame = Frame {
         left: axes::LEFT,
         top: TOP,
-        width: input.sheet.width - axes::LEFT - BEHIND - WORDS,
+        width: sheet.width - axes::LEFT - BEHIND - WORDS,
         height: height - TOP - FOOT,
     };
     let axes = Axes { frame, across: [low, 100.0], up: [0.0, up_high] };
@@ -95,7 +96,7 @@ pub fn tolerance_chart(input: &Tolerance) -> Drawing {
     pen.text([frame.right(), frame.top - 8.5], "pull-out", pen::label(Ink::Ink, Anchor::Middle));
     axes.numbers_left(&mut pen, &up_ticks);
     axes.numbers_below(&mut pen, &across_ticks, "Peak pull-out share, %");
-    pen.finish(&input.id, &input.title, input.sheet.width, height)
+    pen.finish(&input.id, &input.title, sheet.width, height)
 }
 
 /// Counts in bins of a width from `low` to 100; the upper edge belongs to the last bin.

@@ -53,7 +53,8 @@ const FOOT: f64 = 40.0;
 
 /// Draws the chart.
 pub fn torque_speed_chart(input: &TorqueSpeed) -> Drawing {
-    let height = input.sheet.height.unwrap_or(328.0);
+    let sheet = input.sheet.sound();
+    let height = sheet.height.unwrap_or(328.0);
     let all = || {
         let curves = [Some(&input.motor), input.load.as_ref(), input.path.as_ref()];
         curves.into_iter().flatten().flat_map(|curve| curve.points.iter().copied())
@@ -89,11 +90,11 @@ pub fn torque_speed_chart(input: &TorqueSpeed) -> Drawing {
         across: [slow, fast],
         up: [low, high],
     };
-    let margin = labels::margin(labels_of(&draft).iter(), axes::RIGHT, input.sheet.width);
+    let margin = labels::margin(labels_of(&draft).iter(), axes::RIGHT, sheet.width);
     let frame = Frame {
         left: axes::LEFT,
         top: TOP,
-        width: input.sheet.width - axes::LEFT - margin,
+        width: sheet.width - axes::LEFT - margin,
         height: height - TOP - FOOT,
     };
     let axes = Axes { frame, ..draft };
@@ -127,7 +128,7 @@ pub fn torque_speed_chart(input: &TorqueSpeed) -> Drawing {
     axes.numbers_left(&mut pen, &up_ticks);
     axes.numbers_below(&mut pen, &across_ticks, &format!("Speed, {}", speed.text));
     labels::draw(&mut pen, &frame, &labels_of(&axes), margin);
-    pen.finish(&input.id, &input.title, input.sheet.width, height)
+    pen.finish(&input.id, &input.title, sheet.width, height)
 }
 
 type Scale<'a> = dyn Fn(&[[f64; 2]]) -> Vec<[f64; 2]> + 'a;

@@ -101,6 +101,12 @@ pub fn find(
     Ok(SteadyPoint { state, mode })
 }
 
+/// Motions of the train in synchronism, in which no shaft twists and no magnet slips: one column
+/// of independent speeds for each.
+pub fn motions(equations: &Equations) -> DMatrix<f64> {
+    kernel(&deformation_rates(equations), equations)
+}
+
 /// Rate rows of all deformations over the independent speeds, and their states.
 fn deformation_rates(equations: &Equations) -> Vec<(usize, DVector<f64>)> {
     let reduction = &equations.model.reduction;
@@ -259,10 +265,13 @@ fn check(
     let rhs = crate::solve::rhs::Rhs::new(evaluator);
     let mut rates = vec![0.0; equations.size];
     rhs.system(time, state, &mut rates);
+    // A controller that idles at its speed still has the rounding of its own error.
+    let rounding: f64 = equations.controllers.iter().map(|controller| controller.limit).sum();
+    let at_work = balance.at_work + 1e-4 * rounding;
     let inverse = &equations.model.reduction.inverse_mass;
     for place in 0..equations.speeds {
         let acceleration = rates[place] * equations.scale[place];
-        let at_work = balance.at_work * inverse[(place, place)];
+        let at_work = at_work * inverse[(place, place)];
         // Cogging counts by its mean, so it is left out of what must balance here.
         if acceleration.abs() > BALANCE_TOLERANCE * at_work && !has_cogging(equations) {
             let body = equations.model.reduction.independent[place];

@@ -58,9 +58,17 @@ impl Axis {
                 return None;
             }
         };
-        for value in &axis.values {
+        for (index, value) in axis.values.iter().enumerate() {
             let words = axis.varied.shown(*value);
-            if !context.try_values(fields.path(), Spot::Key, &words, &[(&axis.varied, *value)]) {
+            let changes = [(&axis.varied, *value)];
+            let possible = if values.is_some() {
+                let at = fields.path_of(&format!("values.{index}"));
+                context.try_values(&at, Spot::Value, &words, &changes)
+            } else {
+                context.try_values(fields.path(), Spot::Key, &words, &changes)
+            };
+            // In even steps the next ones are mostly impossible for the same reason.
+            if !possible && values.is_none() {
                 break;
             }
         }

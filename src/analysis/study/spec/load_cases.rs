@@ -83,7 +83,7 @@ fn read_case(fields: &mut Fields<'_>, context: Option<&Context<'_>>) -> Option<C
     }
     let at = fields.path().to_owned();
     let mut tree = context.base().clone();
-    let changed = change(fields, changes, &mut tree, context)?;
+    let (changed, sound) = change(fields, changes, &mut tree, context)?;
     require(fields, requirements, &mut tree)?;
     if !context.is_sound() {
         return None;
@@ -95,6 +95,9 @@ fn read_case(fields: &mut Fields<'_>, context: Option<&Context<'_>>) -> Option<C
             return None;
         }
     };
+    if !sound {
+        return None;
+    }
     if scenario.requirements.is_empty() {
         fields.fault_here_hint(
             "this case has no requirement to be judged by",
@@ -105,15 +108,15 @@ fn read_case(fields: &mut Fields<'_>, context: Option<&Context<'_>>) -> Option<C
     Some(Case { name, about, tree, scenario, changes: changed })
 }
 
-/// Makes the changes; returns them as typed.
+/// Makes the changes; returns those made, as typed, and whether they are all.
 fn change(
     fields: &Fields<'_>,
     node: Option<&Node>,
     tree: &mut Node,
     context: &Context<'_>,
-) -> Option<Vec<(String, String)>> {
+) -> Option<(Vec<(String, String)>, bool)> {
     let entries = match node {
-        None | Some(Node::Null) => return Some(Vec::new()),
+        None | Some(Node::Null) => return Some((Vec::new(), true)),
         Some(Node::Map(entries)) => entries,
         Some(other) => {
             fields.fault("changes", format!("`changes` must be a map of keys, not {}", other.kind()));
@@ -137,7 +140,8 @@ fn change(
             }
         }
     }
-    (changed.len() == entries.len()).then_some(changed)
+    let sound = changed.len() == entries.len();
+    Some((changed, sound))
 }
 
 /// Replaces and adds requirements.

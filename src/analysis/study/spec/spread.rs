@@ -173,11 +173,12 @@ fn read_width(
         (Some(share), None, Distribution::Lognormal) => share,
         (Some(share), None, _) => share * middle.abs(),
         (None, Some(width), _) => width,
-        _ => {
-            fields.fault_here_hint(
-                "the width of the spread is not given",
-                "give exactly one of relative and absolute",
-            );
+        (given, ..) => {
+            let message = match given {
+                Some(_) => "the width of the spread is given twice",
+                None => "the width of the spread is not given",
+            };
+            fields.fault_here_hint(message, "give exactly one of relative and absolute");
             return None;
         }
     };

@@ -16,9 +16,18 @@ use order::{Node, Order, is_member_only};
 use parts::SHAFT;
 use view::{Link, Port, Schematic};
 
+/// Most bodies and links that can still be told apart on a page or two.
+const MOST: usize = 160;
+
 /// Draws a train on a sheet 720 px wide.
 pub fn schematic(train: &Schematic) -> Drawing {
     let width = Sheet::PAGE.width;
+    if train.bodies.len() + train.links.len() > MOST {
+        let mut pen = Pen::new();
+        let words = format!("{} bodies: too many for a picture", train.bodies.len());
+        pen.text([width / 2.0, 30.0], &words, pen::label(Ink::Sub, Anchor::Middle));
+        return pen.finish(&train.id, &train.title, width, 48.0);
+    }
     let order = order::order(train);
     let layout = layout::lay_out(train, &order, width);
     let mut pen = Pen::new();

@@ -60,7 +60,7 @@ pub fn order(train: &Schematic) -> Order {
     let mut seen = vec![false; order.nodes.len()];
     let mut used = vec![false; order.edges.len()];
     while let Some(start) = (0..order.nodes.len()).find(|node| !is_set(&seen, *node)) {
-        let main = order.main_line(train, start, &seen);
+        let main = order.main_line(train, start);
         order.take(main, &mut seen, &mut used);
         // Branches of what stands already, the longest first from each place.
         while let Some(branch) = order.next_branch(train, &seen, &used) {
@@ -188,13 +188,17 @@ impl Order {
     }
 
     /// The longest line through the part of the train that holds a node, motors to the left.
-    fn main_line(&self, train: &Schematic, start: usize, seen: &[bool]) -> Line {
+    fn main_line(&self, train: &Schematic, start: usize) -> Line {
+        let none = vec![false; self.nodes.len()];
         let unused = vec![false; self.edges.len()];
         let mut line = Line { nodes: vec![start], ..Line::default() };
-        let starts = (0..self.nodes.len()).filter(|node| !is_set(seen, *node));
         let part = self.part(start);
-        for from in starts.filter(|node| part.contains(node)) {
-            let next = self.reach(train, from, seen, &unused);
+        // The longest line ends where only one edge leads on, if there is such a place.
+        let ends: Vec<usize> =
+            part.iter().copied().filter(|node| self.around(*node).count() < 2).collect();
+        let starts = if ends.is_empty() { part } else { ends };
+        for from in starts {
+            let next = self.reach(train, from, &none, &unused);
             if self.worth(train, &next) > self.worth(train, &line) {
                 line = next;
             }

@@ -1,0 +1,11 @@
+//! The program as its users meet it: statuses, messages, folders, streams.
+
+#[cfg(test)]
+mod cli {
+    mod bench;
+    mod folders;
+    mod signals;
+    mod statuses;
+    mod streams;
+    mod tools;
+}

@@ -1,0 +1,112 @@
+//! The commands beside `run`: new, check, poles, schema.
+
+use super::bench::{Bench, json};
+
+const KINDS: [&str; 9] = [
+    "pump",
+    "fan",
+    "wind_turbine",
+    "tidal_turbine",
+    "conveyor",
+    "hoist",
+    "propeller",
+    "test_bench",
+    "coupling",
+];
+
+#[test]
+fn every_starting_file_runs_as_printed() {
+    let bench = Bench::new("new");
+    for kind in KINDS {
+        let told = bench.run(&["new", kind]);
+        assert_eq!(told.status, Some(0));
+        assert!(told.out.contains("<-"), "{kind} says what to fill in");
+        let file = format!("{kind}.yaml");
+        bench.write(&file, &told.out);
+        let told = bench.run(&["check", &file]);
+        assert_eq!(told.status, Some(0), "{kind}: {told:?}");
+        assert!(told.out.lines().count() < 60, "{kind}: one screen");
+        assert!(told.out.lines().all(|line| line.chars().count() <= 110), "{kind}: {}", told.out);
+        let told = bench.run(&["run", &file, "--no-charts"]);
+        assert!(matches!(told.status, Some(0 | 1)), "{kind}: {told:?}");
+        assert!(!told.err.contains("error"), "{kind}: {}", told.err);
+    }
+}
+
+#[test]
+fn help_lists_every_kind_of_starting_file() {
+    let bench = Bench::new("kinds");
+    let told = bench.run(&["new", "--help"]);
+    for kind in KINDS {
+        assert!(told.out.contains(kind), "{kind}");
+    }
+}
+
+/// Closed forms for two bodies and a coupling of p pole pairs: K = 80/4 = 20 N*m, inertia along
+/// the phase 1/J_e = p^2 (1/J_a + 1/J_b) = 16 (10 + 5), f = sqrt(K/J_e)/(2 pi) = sqrt(4800)/(2 pi).
+#[test]
+fn check_gives_the_figures_of_the_train() {
+    let bench = Bench::new("figures");
+    let told = bench.run(&["check", "small.yaml", "--format", "json"]);
+    let file = &json(&told.out)["files"]["small.yaml"];
+    assert_eq!(file["accepted"], true);
+    let gear = &file["gears"]["coupling"];
+    let frequency = gear["natural_frequency_hz"].as_f64().unwrap();
+    let expected = 4800.0_f64.sqrt() / std::f64::consts::TAU;
+    assert!((frequency / expected - 1.0).abs() < 1e-12, "{frequency} {expected}");
+    // D = 0.5/16; damping ratio D/(2 sqrt(K J_e)) with J_e = 1/240.
+    let ratio = gear["damping_ratio"].as_f64().unwrap();
+    let expected = 0.5 / 16.0 / (2.0 * (20.0_f64 / 240.0).sqrt());
+    assert!((ratio / expected - 1.0).abs() < 1e-12, "{ratio} {expected}");
+    assert_eq!(file["bodies"]["driven"]["referred_inertia"], 0.2);
+}
+
+/// By hand: with the ring of pieces held, 4 w_i + 22 w_o = 0; the outer side seen from the motor
+/// has its inertia over 5.5^2.
+#[test]
+fn check_refers_inertias_through_the_gear() {
+    let bench = Bench::new("referred");
+    bench.write("pump.yaml", &bench.run(&["new", "pump"]).out);
+    let told = bench.run(&["check", "pump.yaml", "--format", "json"]);
+    let bodies = &json(&told.out)["files"]["pump.yaml"]["bodies"];
+    let of = |name: &str, key: &str| bodies[name][key].as_f64().unwrap();
+    assert!((of("impeller", "ratio_to_reference") + 1.0 / 5.5).abs() < 1e-12);
+    assert!((of("impeller", "referred_inertia") - 2.5 / 30.25).abs() < 1e-12);
+}
+
+#[test]
+fn poles_lists_choices_and_tells_when_there_is_none() {
+    let bench = Bench::new("poles");
+    let told = bench.run(&["poles", "--ratio", "5.5", "--tolerance", "0", "--format", "json"]);
+    assert_eq!(told.status, Some(0), "{told:?}");
+    let choices = json(&told.out)["choices"].clone();
+    let first = &choices[0];
+    assert_eq!(first["inner_pole_pairs"], 2);
+    assert_eq!(first["outer_pole_pairs"], 11);
+    assert_eq!(first["modulator_pieces"], 13);
+    assert_eq!(first["ratio"], -5.5);
+    assert_eq!(first["ripple_order_inner"], 52);
+    let told = bench.run(&["poles", "--ratio", "-5.5", "--held", "outer"]);
+    assert_eq!(told.status, Some(2), "{told:?}");
+    let told = bench.run(&["poles", "--ratio", "5.5003", "--tolerance", "0 %"]);
+    assert_eq!(told.status, Some(1), "{told:?}");
+    assert!(told.err.contains("the nearest is"), "{}", told.err);
+}
+
+#[test]
+fn the_schema_knows_every_section() {
+    let bench = Bench::new("schema");
+    let schema = json(&bench.run(&["schema"]).out);
+    assert_eq!(schema["$schema"], "https://json-schema.org/draft/2020-12/schema");
+    for section in ["bodies", "shafts", "magnetic_gears", "motors", "loads", "requirements"] {
+        assert!(schema["properties"][section].is_object(), "{section}");
+    }
+}
+
+#[test]
+fn the_version_is_told() {
+    let bench = Bench::new("version");
+    let told = bench.run(&["--version"]);
+    assert_eq!(told.status, Some(0));
+    assert_eq!(told.out.trim(), concat!("lodeshaft ", env!("CARGO_PKG_VERSION")));
+}
