@@ -52,9 +52,6 @@ pub enum Command {
     New(new::NewArguments),
     /// Prints the JSON Schema of the scenario file, for editors.
     Schema,
-    /// Writes a report (not in this version).
-    #[command(hide = true)]
-    Report(later::LaterArguments),
     /// Compares scenarios or results (not in this version).
     #[command(hide = true)]
     Compare(later::LaterArguments),
@@ -112,7 +109,6 @@ pub fn main() -> ExitCode {
         Command::Poles(arguments) => poles::run(&arguments, &common),
         Command::New(arguments) => new::run(&arguments),
         Command::Schema => schema::run(),
-        Command::Report(_) => later::refuse("report"),
         Command::Compare(_) => later::refuse("compare"),
     };
     status.into()

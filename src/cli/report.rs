@@ -12,10 +12,13 @@ use crate::analysis::transient::{prepare, run_prepared};
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::equations::Equations;
 use crate::render::folder::{Folder, FolderFault};
-use crate::render::report::{self, Material, Written, charts};
+use crate::render::chart::drawing::Drawing;
+use crate::render::chart::train::Train;
+use crate::render::charts;
+use crate::render::report::{self, Material, Written};
 use crate::render::series::SeriesWriter;
 use crate::render::{events, json, text};
-use crate::results::{RunResult, Traces, Warning};
+use crate::results::{RunResult, Warning};
 use crate::scenario::{Loaded, Method};
 use crate::solve::{RunOptions, TraceRequest, Wanted};
 use clap::Args;
@@ -81,6 +84,16 @@ struct Made {
     files: Vec<String>,
 }
 
+/// What the page is made of.
+struct Parts {
+    figures: TrainFigures,
+    train: Train,
+    result: RunResult,
+    drawings: Vec<Drawing>,
+    sharper: Option<RunResult>,
+    studies: Gathered,
+}
+
 struct Desk<'a> {
     plan: &'a Plan,
     file: &'a Path,
@@ -99,11 +112,8 @@ impl Desk<'_> {
         let scenario = &self.loaded().scenario;
         let equations = prepare(scenario).map_err(Trouble::File)?;
         let figures = train::figures(&equations.model);
-        let train = charts::train(scenario, &figures);
         let folder = Folder::open(self.shown)?;
-        let window = [0.0, scenario.duration];
-        let traces =
-            (!self.common.no_charts).then(|| charts::request(scenario, &train, window));
+        let traces = (!self.common.no_charts).then(|| charts::request(&equations));
         let mut result = self.transient(&equations, &folder, traces)?;
         let typed = self
             .loaded()
@@ -111,14 +121,16 @@ impl Desk<'_> {
             .warnings()
             .map(|warning| Warning { path: warning.path.clone(), text: warning.message.clone() });
         result.warnings.splice(0..0, typed);
-        let zooms = if result.traces.is_some() { self.zooms(&equations, &train, &result) } else { Vec::new() };
+        let drawings = self.drawings(&equations, &result);
+        let train = charts::describe(&equations, &figures);
         let sharper = if result.completed { self.sharper(&equations) } else { None };
         let studies = if result.completed || !self.interrupt.is_asked() {
             report_studies::gather(self.plan, &folder, self.shown, self.common, self.interrupt)?
         } else {
             Gathered::default()
         };
-        self.write(folder, &figures, train, result, zooms, sharper, studies)
+        let parts = Parts { figures, train, result, drawings, sharper, studies };
+        self.write(folder, parts)
     }
 
     fn transient(
@@ -146,26 +158,18 @@ impl Desk<'_> {
         Ok(result)
     }
 
-    /// The same run again for each window that deserves a closer look, traced there only.
-    fn zooms(
-        &self,
-        equations: &Equations,
-        train: &crate::render::chart::train::Train,
-        result: &RunResult,
-    ) -> Vec<Traces> {
-        let scenario = &self.loaded().scenario;
-        charts::zooms(result)
-            .into_iter()
-            .filter_map(|window| {
-                let options = RunOptions {
-                    wanted: Wanted::Asked(Vec::new()),
-                    traces: Some(charts::request(scenario, train, window)),
-                    interrupt: Some(self.interrupt.flag()),
-                    ..RunOptions::default()
-                };
-                run_prepared(equations, options).ok()?.traces
-            })
-            .collect()
+    /// The drawings of the run; windows that deserve a closer look are run and traced again.
+    fn drawings(&self, equations: &Equations, result: &RunResult) -> Vec<Drawing> {
+        let mut again = |request: TraceRequest| {
+            let options = RunOptions {
+                wanted: Wanted::Asked(Vec::new()),
+                traces: Some(request),
+                interrupt: Some(self.interrupt.flag()),
+                ..RunOptions::default()
+            };
+            run_prepared(equations, options).ok()?.traces
+        };
+        charts::drawings(equations, result, &mut again)
     }
 
     /// The same run at a tenth of the tolerance, or of the step of a fixed-step method.
@@ -186,17 +190,8 @@ impl Desk<'_> {
         (!self.interrupt.is_asked()).then_some(result)
     }
 
-    #[expect(clippy::too_many_arguments, reason = "each is a finished part of the report")]
-    fn write(
-        &self,
-        folder: Folder,
-        figures: &TrainFigures,
-        train: crate::render::chart::train::Train,
-        result: RunResult,
-        zooms: Vec<Traces>,
-        sharper: Option<RunResult>,
-        studies: Gathered,
-    ) -> Result<Made, Trouble> {
+    fn write(&self, folder: Folder, parts: Parts) -> Result<Made, Trouble> {
+        let Parts { figures, train, result, drawings, sharper, studies } = parts;
         let loaded = self.loaded();
         let out = folder.create("events.csv")?;
         events::write(out, &result.events)
@@ -212,11 +207,10 @@ impl Desk<'_> {
             scenario: &loaded.scenario,
             source: &loaded.source,
             node: &loaded.node,
-            figures,
+            figures: &figures,
             result: &result,
             train,
-            zooms,
-            planes: Vec::new(),
+            drawings,
             sharper,
             studies: &studies.results,
             unfinished: &studies.unfinished,

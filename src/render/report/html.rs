@@ -150,10 +150,6 @@ impl Figures {
         )
     }
 
-    /// The number of the figure drawn last.
-    pub fn last(&self) -> usize {
-        self.count
-    }
 }
 
 #[cfg(test)]

@@ -1,7 +1,6 @@
 //! The report: one page that holds the verdict, the run, the studies and what they stand on.
 
 pub mod carry;
-pub mod charts;
 mod figures;
 mod html;
 mod inputs;
@@ -26,7 +25,7 @@ use crate::render::chart::drawing::Drawing;
 use crate::render::chart::palette::Side;
 use crate::render::chart::schematic::schematic;
 use crate::render::chart::train::Train;
-use crate::results::{RunResult, Traces};
+use crate::results::RunResult;
 use crate::scenario::{Scenario, Source};
 use crate::tree::Node;
 use html::{Figures, escape};
@@ -45,10 +44,8 @@ pub struct Material<'a> {
     pub result: &'a RunResult,
     /// The train as charts see it.
     pub train: Train,
-    /// Traces of windows that deserve a closer look.
-    pub zooms: Vec<Traces>,
-    /// Further drawings of the run, with captions and the tables behind them (safe HTML).
-    pub planes: Vec<(Drawing, String, String)>,
+    /// The drawings of the run in the order of the page.
+    pub drawings: Vec<Drawing>,
     /// The same run at a tenth of the tolerance.
     pub sharper: Option<RunResult>,
     /// Finished studies in the order of the file.
@@ -66,6 +63,7 @@ pub fn page(material: &Material<'_>) -> String {
     let mut body = String::from("<header>\n");
     body.push_str(&verdict::head(material));
     body.push_str(&diagram(material, &mut figures));
+    body.push_str(&verdict::rest_of_about(material));
     body.push_str("</header>\n");
     let sections = [
         ("Requirements", "", requirements::section(material)),
@@ -108,14 +106,17 @@ fn diagram(material: &Material<'_>, figures: &mut Figures) -> String {
     let view =
         train::schematic(material.scenario, material.figures, material.result, material.written);
     let mut caption = "The train. The size of a disc follows its inertia".to_owned();
-    let has = |side| train::has_side(material.scenario, side);
-    if has(Side::Inner) || has(Side::Outer) {
-        let words = if material.scenario.magnetic_gears.is_empty() {
-            "; blue turns with the first half of the coupling, amber with the second"
-        } else {
-            "; blue turns with the inner member of the gear, amber with the outer, green is the modulator"
-        };
-        caption.push_str(words);
+    let gear = !material.scenario.magnetic_gears.is_empty();
+    let words = if gear {
+        [(Side::Inner, "blue turns with the inner member of the gear"), (Side::Outer, "amber with the outer"), (Side::Modulator, "green with the modulator")]
+    } else {
+        [(Side::Inner, "blue turns with the first half of the coupling"), (Side::Outer, "amber with the second"), (Side::Modulator, "")]
+    };
+    for (side, text) in words {
+        if train::has_side(material.scenario, side) && !text.is_empty() {
+            caption.push_str(if caption.contains(';') { ", " } else { "; " });
+            caption.push_str(text);
+        }
     }
     caption.push_str("; hatching is held fast. Speeds are those at the end of the run.");
     figures.figure(&schematic(&view), &caption, "")

@@ -1,12 +1,12 @@
 //! Section 2: the run in charts, its peaks and its events.
 
 use super::Material;
-use super::charts;
 use super::figures::{plain, time};
 use super::html::{Figures, HtmlTable, escape, paragraph, rich};
 use super::verdict;
 use crate::render::chart::curve::Pieces;
 use crate::render::chart::number::capital;
+use crate::render::chart::pick;
 use crate::render::chart::run_input::RunChart;
 use crate::render::shown;
 use crate::results::ChannelResult;
@@ -34,34 +34,46 @@ pub fn section(material: &Material<'_>, figures: &mut Figures) -> String {
 }
 
 fn chart_figures(material: &Material<'_>, figures: &mut Figures) -> String {
-    let Some(traces) = &material.result.traces else {
-        return paragraph("No charts were asked for.");
+    let mut html = String::new();
+    for drawing in &material.drawings {
+        html.push_str(&figures.figure(drawing, &caption(&drawing.id), &behind(material, &drawing.id)));
+    }
+    if html.is_empty() { paragraph("No charts were asked for.") } else { html }
+}
+
+/// What a drawing shows and how to read it.
+fn caption(id: &str) -> String {
+    let text = match id {
+        "run" => {
+            "Speeds, torque at the magnetic gear, load angle and events on one time axis. Speeds are referred \
+             to one body, so that they lie on each other while the gear is in step. Triangles are slips, \
+             pointing the way they go; rose is past the peak; hatched lines are limits, hatched on the side \
+             that is forbidden; a ring is the moment from which it stays in step."
+        }
+        "torque_speed" => {
+            "Torque over speed at the motor shaft. The light area is what is left to accelerate; the ring is \
+             the operating point. Above the hatched line the gear would slip."
+        }
+        "shafts" => "Torques in the shafts, with rated and peak torque where they are given.",
+        _ if id.starts_with("zoom") => "The same, closer, where the gear slips.",
+        _ if id.starts_with("swing") => {
+            "Slip speed over load angle. From inside the blue region the gear falls back into step by itself \
+             under the load of the end of the run; outside it slips on."
+        }
+        _ => "",
     };
-    let chart = charts::run_chart(material.result, traces, &material.train, material.written, "run");
-    let caption = "Speeds, torque at the magnetic gear, load angle and events on one time axis. \
-        Speeds are referred to one body, so that they lie on each other while the gear is in step. \
-        Triangles are slips, pointing the way they go; rose is past the peak; hatched lines are \
-        limits, hatched on the side that is forbidden; the ring is the moment from which it stays in step.";
-    let mut html = figures.figure(&charts::drawing(&chart), caption, &samples(&chart));
-    for zoom in &material.zooms {
-        let chart = charts::run_chart(material.result, zoom, &material.train, material.written, "zoom");
-        let caption = format!(
-            "The same between {} and {}, where the gear slips.",
-            escape(&time(zoom.start)),
-            escape(&time(zoom.end))
-        );
-        html.push_str(&figures.figure(&charts::drawing(&chart), &caption, &samples(&chart)));
+    escape(text)
+}
+
+/// The table behind a drawing over the whole run.
+fn behind(material: &Material<'_>, id: &str) -> String {
+    let Some(traces) = &material.result.traces else { return String::new() };
+    let display = material.written.chart_display();
+    match id {
+        "run" => samples(&pick::run(material.result, traces, &material.train, &display, "run")),
+        "shafts" => samples(&pick::shafts(material.result, traces, &material.train, &display)),
+        _ => String::new(),
     }
-    let gears = !material.result.gears.is_empty();
-    let shafts = charts::shafts_chart(material.result, traces, &material.train, material.written);
-    if let (true, Some(chart)) = (gears, shafts) {
-        let caption = "Torques in the shafts, with rated and peak torque where they are given.";
-        html.push_str(&figures.figure(&charts::drawing(&chart), caption, &samples(&chart)));
-    }
-    for (drawing, caption, table) in &material.planes {
-        html.push_str(&figures.figure(drawing, &escape(caption), table));
-    }
-    html
 }
 
 /// The curves of a chart at evenly spaced times.

@@ -13,16 +13,19 @@ pub fn head(material: &Material<'_>) -> String {
     let scenario = material.scenario;
     let mut html = document_line(material);
     html.push_str(&format!("<h1>{}</h1>\n", escape(title(material))));
-    let (question, rest) = first_sentence(&scenario.about);
+    let (question, _) = first_sentence(&scenario.about);
     if !question.is_empty() {
         html.push_str(&format!("<p class=\"question\">{}</p>\n", escape(question)));
     }
     html.push_str(&bar(material));
     html.push_str(&key_figures(material));
-    if !rest.is_empty() {
-        html.push_str(&format!("<p class=\"about\">{}</p>\n", escape(rest)));
-    }
     html
+}
+
+/// What the file says of the case after its first sentence.
+pub fn rest_of_about(material: &Material<'_>) -> String {
+    let (_, rest) = first_sentence(&material.scenario.about);
+    if rest.is_empty() { String::new() } else { format!("<p class=\"about\">{}</p>\n", escape(rest)) }
 }
 
 /// The title, also of the window.
