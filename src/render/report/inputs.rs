@@ -8,7 +8,8 @@ use crate::scenario::patch;
 use crate::tree::Node;
 
 /// Keys at the top of the file that are no inputs of the physics, or stand elsewhere on the page.
-const ELSEWHERE: [&str; 6] = ["lodeshaft", "title", "about", "document", "studies", "requirements"];
+const ELSEWHERE: [&str; 7] =
+    ["lodeshaft", "title", "about", "document", "display", "studies", "requirements"];
 
 /// Longest list that is shown value by value.
 const MOST_POINTS: usize = 12;
@@ -39,7 +40,7 @@ pub fn section(material: &Material<'_>) -> String {
                 let mut lines = Vec::new();
                 flatten(material, key, key, node, &mut lines);
                 for (name, value) in lines {
-                    settings.row([escape(&name), escape(&value)]);
+                    settings.row([escape(&capital(&name)), escape(&value)]);
                 }
                 continue;
             }
@@ -61,7 +62,7 @@ fn named(node: &Node) -> &[(String, Node)] {
 
 /// One table for a section: a thing, its values, their source.
 fn section_table(material: &Material<'_>, section: &str, things: &[(String, Node)]) -> String {
-    let mut table = HtmlTable::new("<<<", &["Name", "Value", "Given"]).class("inputs");
+    let mut table = HtmlTable::new("<<<", &["Name", "Given", "Source"]).class("inputs");
     for (name, thing) in things {
         let mut lines = Vec::new();
         let path = format!("{section}.{name}");
@@ -73,19 +74,18 @@ fn section_table(material: &Material<'_>, section: &str, things: &[(String, Node
             }
             other => flatten(material, "", &path, other, &mut lines),
         }
+        let given: Vec<String> = lines
+            .iter()
+            .map(|(key, value)| {
+                let key = if key.is_empty() { String::new() } else { format!("<span class=\"key-name\">{}</span> ", escape(key)) };
+                format!("{key}{}", escape(value))
+            })
+            .collect();
         let source = match thing.get("source") {
-            Some(Node::Text(text)) => {
-                format!("<br><small class=\"source\">Source: {}</small>", escape(text))
-            }
-            _ => String::new(),
+            Some(Node::Text(text)) => escape(text),
+            _ => "<small>not stated</small>".to_owned(),
         };
-        let mut head = format!("<b>{}</b>{source}", escape(name));
-        if lines.is_empty() {
-            table.row([head.clone(), String::new(), String::new()]);
-        }
-        for (key, value) in lines {
-            table.row([std::mem::take(&mut head), escape(&key), escape(&value)]);
-        }
+        table.row([format!("<b>{}</b>", escape(name)), given.join("<br>"), source]);
     }
     if table.is_empty() {
         return String::new();

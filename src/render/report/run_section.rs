@@ -173,7 +173,8 @@ fn events(material: &Material<'_>) -> String {
         html.push_str(&paragraph("No events: nothing slipped, stuck, touched or acted."));
         return html;
     }
-    let mut table = HtmlTable::new("><<<", &["Time", "Event", "Of", "What happened"]);
+    let mut table = HtmlTable::new("><<<", &["Time", "Event", "Of", "What happened"])
+        .class("events");
     for event in events.iter().take(MOST_EVENTS) {
         table.row([
             escape(&time(event.time)),
