@@ -81,11 +81,13 @@ fn a_case_that_holds_is_told_on_one_page() {
     let output = case.report(&[]);
     assert_eq!(output.status.code(), Some(0), "{}", told(&output));
     let page = case.page();
-    let heads = ["Requirements", "The run", "Studies", "Inputs", "How far to trust it", "Reproduction"];
+    let heads =
+        ["Requirements", "The run", "Studies", "Inputs", "How far to trust it", "Reproduction"];
     let mut from = 0;
     for (place, head) in heads.iter().enumerate() {
         let wanted = format!("</span>{head}</h2>");
-        let at = page[from..].find(&wanted).unwrap_or_else(|| panic!("section {} {head}", place + 1));
+        let at =
+            page[from..].find(&wanted).unwrap_or_else(|| panic!("section {} {head}", place + 1));
         from += at;
     }
     assert!(page.contains("Met: every requirement."));
@@ -106,12 +108,17 @@ fn the_page_asks_for_nothing_outside() {
     let page = case.page();
     // The name of the format is no address that is fetched; the licence's are text.
     let page = page.replace("http://www.w3.org/2000/svg", "");
-    for word in [" src=", "<link", "@import", "url(http", "url(\"http", "href=\"http", "<iframe", "<img"] {
+    for word in
+        [" src=", "<link", "@import", "url(http", "url(\"http", "href=\"http", "<iframe", "<img"]
+    {
         assert!(!page.contains(word), "{word}");
     }
     assert!(page.contains("url(data:font/woff2;base64,"));
     assert!(page.len() < 2_000_000, "{}", page.len());
-    assert!(page.contains("color-scheme:dark") && page.contains("@media screen and (prefers-color-scheme:dark)"));
+    assert!(
+        page.contains("color-scheme:dark")
+            && page.contains("@media screen and (prefers-color-scheme:dark)")
+    );
     assert!(page.contains("@page{"));
 }
 
@@ -200,7 +207,10 @@ fn the_same_file_gives_the_same_page() {
 
 #[test]
 fn faults_of_the_file_write_nothing() {
-    let case = Case::new(&scenario("-20 N*m", "studies:\n  s: { margin: { vary: bodies.none.inertia, between: [1, 2] } }\n"));
+    let case = Case::new(&scenario(
+        "-20 N*m",
+        "studies:\n  s: { margin: { vary: bodies.none.inertia, between: [1, 2] } }\n",
+    ));
     let output = case.report(&[]);
     assert_eq!(output.status.code(), Some(2), "{}", told(&output));
     assert!(!case.folder.join("out").exists());

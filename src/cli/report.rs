@@ -11,10 +11,10 @@ use crate::analysis::train::{self, Train as TrainFigures};
 use crate::analysis::transient::{prepare, run_prepared};
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::equations::Equations;
-use crate::render::folder::{Folder, FolderFault};
 use crate::render::chart::drawing::Drawing;
 use crate::render::chart::train::Train;
 use crate::render::charts;
+use crate::render::folder::{Folder, FolderFault};
 use crate::render::report::{self, Material, Written};
 use crate::render::series::SeriesWriter;
 use crate::render::{events, json, text};
@@ -60,7 +60,8 @@ pub fn run(arguments: &ReportArguments, common: &Common) -> Status {
         }
     };
     let shown = output_folder(&arguments.file, common);
-    let desk = Desk { plan: &plan, file: &arguments.file, shown: &shown, common, interrupt: &interrupt };
+    let desk =
+        Desk { plan: &plan, file: &arguments.file, shown: &shown, common, interrupt: &interrupt };
     match desk.make() {
         Ok(made) => desk.tell(&made),
         Err(Trouble::File(found)) => {
@@ -242,7 +243,8 @@ impl Desk<'_> {
                     files: &made.files,
                 };
                 let mut summary = made.studies.text(&self.loaded().scenario);
-                summary.insert_str(0, &text::summary(&self.loaded().scenario, &made.result, &telling));
+                summary
+                    .insert_str(0, &text::summary(&self.loaded().scenario, &made.result, &telling));
                 streams::print(&summary, status)
             }
         }

@@ -10,10 +10,15 @@ pub fn rich(text: &str) -> String {
         if place % 2 == 1 {
             html.push_str(&format!("<code>{}</code>", escape(part)));
         } else {
-            html.push_str(&escape(part));
+            html.push_str(&units(&escape(part)));
         }
     }
     html
+}
+
+/// Units within a sentence as they are printed.
+fn units(text: &str) -> String {
+    text.replace("N*m", "N·m").replace("kg*m2", "kg·m²").replace("*s/rad", "·s/rad")
 }
 
 /// A paragraph of safe text.
@@ -149,7 +154,6 @@ impl Figures {
              <figcaption><b>Figure {number}.</b> {caption}</figcaption>\n</figure>\n{behind}"
         )
     }
-
 }
 
 #[cfg(test)]
@@ -159,6 +163,11 @@ mod tests {
     #[test]
     fn names_become_code_and_nothing_stays_unsafe() {
         assert_eq!(rich("`a<b` & c"), "<code>a&lt;b</code> &amp; c");
+    }
+
+    #[test]
+    fn units_in_sentences_are_printed_ones() {
+        assert_eq!(rich("from 700 N*m to `a.N*m`"), "from 700 N·m to <code>a.N*m</code>");
     }
 
     #[test]

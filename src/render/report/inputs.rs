@@ -77,7 +77,11 @@ fn section_table(material: &Material<'_>, section: &str, things: &[(String, Node
         let given: Vec<String> = lines
             .iter()
             .map(|(key, value)| {
-                let key = if key.is_empty() { String::new() } else { format!("<span class=\"key-name\">{}</span> ", escape(key)) };
+                let key = if key.is_empty() {
+                    String::new()
+                } else {
+                    format!("<span class=\"key-name\">{}</span> ", escape(key))
+                };
                 format!("{key}{}", escape(value))
             })
             .collect();
@@ -104,13 +108,14 @@ fn flatten(
     match node {
         Node::Map(entries) => {
             for (key, inside) in entries {
-                let label = if label.is_empty() { words(key) } else { format!("{label}, {}", words(key)) };
+                let label =
+                    if label.is_empty() { words(key) } else { format!("{label}, {}", words(key)) };
                 flatten(material, &label, &format!("{path}.{key}"), inside, lines);
             }
         }
         Node::Number(value) => {
-            let unit = patch::value_at(material.node, path)
-                .map_or("", |found| unit_of(found.dimension));
+            let unit =
+                patch::value_at(material.node, path).map_or("", |found| unit_of(found.dimension));
             lines.push((words(label), pretty(&join(&value.to_string(), unit))));
         }
         other => lines.push((words(label), text(other))),
@@ -145,8 +150,10 @@ fn text(node: &Node) -> String {
             list.join(if nested { "; " } else { ", " })
         }
         Node::Map(entries) => {
-            let list: Vec<String> =
-                entries.iter().map(|(key, value)| format!("{} {}", words(key), text(value))).collect();
+            let list: Vec<String> = entries
+                .iter()
+                .map(|(key, value)| format!("{} {}", words(key), text(value)))
+                .collect();
             list.join(", ")
         }
     }
@@ -164,7 +171,8 @@ fn pretty(text: &str) -> String {
 
 /// How many things say where their figures come from.
 fn sources(entries: &[(String, Node)]) -> String {
-    let counted = ["bodies", "shafts", "magnetic_gears", "magnetic_couplings", "motors", "loads", "brakes"];
+    let counted =
+        ["bodies", "shafts", "magnetic_gears", "magnetic_couplings", "motors", "loads", "brakes"];
     let things: Vec<&Node> = entries
         .iter()
         .filter(|(key, _)| counted.contains(&key.as_str()))

@@ -44,9 +44,10 @@ pub fn limits(material: &Material<'_>) -> Vec<String> {
          whether it falls back into step depends on that.",
     );
     say(
-        scenario.magnetic_gears.iter().any(|gear| {
-            gear.damping.is_some_and(|damping| damping.peak_at.is_none())
-        }),
+        scenario
+            .magnetic_gears
+            .iter()
+            .any(|gear| gear.damping.is_some_and(|damping| damping.peak_at.is_none())),
         "The gear's damping grows in a straight line with slip speed, without end. Cages and eddy currents fade \
          beyond a peak: a return into step found with a straight line can be too good to be true.",
     );
@@ -76,7 +77,10 @@ fn drives(material: &Material<'_>) -> Vec<String> {
     let load = |wanted: fn(&LoadLaw) -> bool| scenario.loads.iter().any(|it| wanted(&it.law));
     say(
         motor(|law| {
-            matches!(law, MotorLaw::RatingPlate { .. } | MotorLaw::Induction { .. } | MotorLaw::Curve { .. })
+            matches!(
+                law,
+                MotorLaw::RatingPlate { .. } | MotorLaw::Induction { .. } | MotorLaw::Curve { .. }
+            )
         }),
         "A motor follows its curve of torque over speed. The torque pulses in the first periods of the mains after \
          switching, reversing or a voltage dip can be several times as large and are not in it.",

@@ -5,8 +5,8 @@ mod figures;
 mod html;
 mod inputs;
 mod limits;
-mod requirements;
 mod reproduction;
+mod requirements;
 mod run_section;
 mod sha;
 mod sides;
@@ -67,9 +67,9 @@ pub fn page(material: &Material<'_>) -> String {
     body.push_str("</header>\n");
     let sections = [
         ("Requirements", "", requirements::section(material)),
-        ("The run", "page", run_section::section(material, &mut figures)),
+        ("The run", "", run_section::section(material, &mut figures)),
         ("Studies", "page", studies::section(material, &mut figures)),
-        ("Inputs", "page", inputs::section(material)),
+        ("Inputs", "", inputs::section(material)),
         ("How far to trust it", "", trust::section(material)),
         ("Reproduction", "", reproduction::section(material)),
     ];
@@ -108,9 +108,17 @@ fn diagram(material: &Material<'_>, figures: &mut Figures) -> String {
     let mut caption = "The train. The size of a disc follows its inertia".to_owned();
     let gear = !material.scenario.magnetic_gears.is_empty();
     let words = if gear {
-        [(Side::Inner, "blue turns with the inner member of the gear"), (Side::Outer, "amber with the outer"), (Side::Modulator, "green with the modulator")]
+        [
+            (Side::Inner, "blue turns with the inner member of the gear"),
+            (Side::Outer, "amber with the outer"),
+            (Side::Modulator, "green with the modulator"),
+        ]
     } else {
-        [(Side::Inner, "blue turns with the first half of the coupling"), (Side::Outer, "amber with the second"), (Side::Modulator, "")]
+        [
+            (Side::Inner, "blue turns with the first half of the coupling"),
+            (Side::Outer, "amber with the second"),
+            (Side::Modulator, ""),
+        ]
     };
     for (side, text) in words {
         if train::has_side(material.scenario, side) && !text.is_empty() {

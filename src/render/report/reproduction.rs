@@ -25,7 +25,11 @@ pub fn section(material: &Material<'_>) -> String {
     for (name, file, rows) in tables(material) {
         row(
             "Table of a signal",
-            format!("<code>{}</code> in <code>{}</code>, {rows} rows", escape(&file), escape(&name)),
+            format!(
+                "<code>{}</code> in <code>{}</code>, {rows} rows",
+                escape(&file),
+                escape(&name)
+            ),
         );
     }
     let command = format!("lodeshaft report {}", source.name);
@@ -38,7 +42,10 @@ pub fn section(material: &Material<'_>) -> String {
     let text = format!("<pre>{}</pre>\n", escape(&source.text));
     html.push_str(&folded("The scenario as it was read", &text));
     let licence = format!("<pre class=\"licence\">{}</pre>\n", escape(FONT_LICENCE));
-    html.push_str(&folded("Licence of the font in this page (SIL Open Font License 1.1)", &licence));
+    html.push_str(&folded(
+        "Licence of the font in this page (SIL Open Font License 1.1)",
+        &licence,
+    ));
     html
 }
 

@@ -36,7 +36,11 @@ pub fn section(material: &Material<'_>, figures: &mut Figures) -> String {
 fn chart_figures(material: &Material<'_>, figures: &mut Figures) -> String {
     let mut html = String::new();
     for drawing in &material.drawings {
-        html.push_str(&figures.figure(drawing, &caption(&drawing.id), &behind(material, &drawing.id)));
+        html.push_str(&figures.figure(
+            drawing,
+            &caption(&drawing.id),
+            &behind(material, &drawing.id),
+        ));
     }
     if html.is_empty() { paragraph("No charts were asked for.") } else { html }
 }
@@ -95,7 +99,8 @@ fn samples(chart: &RunChart) -> String {
     let [start, end] = chart.window;
     for sample in 0..SAMPLES {
         let at = start + (end - start) * sample as f64 / (SAMPLES - 1) as f64;
-        let values = curves.iter().map(|(_, pieces)| value_at(pieces, at).map_or("–".to_owned(), plain));
+        let values =
+            curves.iter().map(|(_, pieces)| value_at(pieces, at).map_or("–".to_owned(), plain));
         table.row(std::iter::once(plain(at)).chain(values));
     }
     table.html()
@@ -132,7 +137,10 @@ fn peaks(material: &Material<'_>) -> String {
     if table.is_empty() {
         return String::new();
     }
-    format!("<h3>Peaks</h3>\n<p>Extremes of the continuous solution, not of rows in a file.</p>\n{}", table.html())
+    format!(
+        "<h3>Peaks</h3>\n<p>Extremes of the continuous solution, not of rows in a file.</p>\n{}",
+        table.html()
+    )
 }
 
 fn peak_row(material: &Material<'_>, channel: &ChannelResult) -> Vec<String> {
@@ -145,11 +153,16 @@ fn peak_row(material: &Material<'_>, channel: &ChannelResult) -> Vec<String> {
         escape(&channel.name),
         escape(&parts(channel.max).1),
         escape(&parts(channel.min).0),
-        escape(&time(channel.min_time)),
+        escape(&moment(channel.min_time)),
         escape(&parts(channel.max).0),
-        escape(&time(channel.max_time)),
+        escape(&moment(channel.max_time)),
         escape(&parts(channel.last).0),
     ]
+}
+
+/// A time of a run; what is less than a microsecond after the start is the start.
+fn moment(value: f64) -> String {
+    time(if value < 1e-6 { 0.0 } else { value })
 }
 
 fn motors(material: &Material<'_>) -> String {
@@ -158,9 +171,10 @@ fn motors(material: &Material<'_>) -> String {
         table.row([
             escape(&motor.name),
             motor.run_up_time.map_or_else(|| "never".to_owned(), time),
-            motor.rotor_heat.map_or_else(|| "–".to_owned(), |heat| {
-                escape(&super::figures::tidy(&shown::energy(heat)))
-            }),
+            motor.rotor_heat.map_or_else(
+                || "–".to_owned(),
+                |heat| escape(&super::figures::tidy(&shown::energy(heat))),
+            ),
         ]);
     }
     if table.is_empty() { String::new() } else { format!("<h3>Run-up</h3>\n{}", table.html()) }
@@ -173,8 +187,8 @@ fn events(material: &Material<'_>) -> String {
         html.push_str(&paragraph("No events: nothing slipped, stuck, touched or acted."));
         return html;
     }
-    let mut table = HtmlTable::new("><<<", &["Time", "Event", "Of", "What happened"])
-        .class("events");
+    let mut table =
+        HtmlTable::new("><<<", &["Time", "Event", "Of", "What happened"]).class("events");
     for event in events.iter().take(MOST_EVENTS) {
         table.row([
             escape(&time(event.time)),
@@ -186,7 +200,9 @@ fn events(material: &Material<'_>) -> String {
     html.push_str(&table.html());
     if events.len() > MOST_EVENTS {
         let more = events.len() - MOST_EVENTS;
-        html.push_str(&paragraph(&format!("And {more} more, in <code>events.csv</code> beside this page.")));
+        html.push_str(&paragraph(&format!(
+            "And {more} more, in <code>events.csv</code> beside this page."
+        )));
     }
     html
 }

@@ -26,10 +26,7 @@ pub fn sides(scenario: &Scenario) -> Vec<Side> {
         name(&coupling.between[0], Side::Inner);
         name(&coupling.between[1], Side::Outer);
     }
-    groups
-        .iter()
-        .map(|group| named.get(*group).copied().flatten().unwrap_or(Side::Other))
-        .collect()
+    groups.iter().map(|group| named.get(*group).copied().flatten().unwrap_or(Side::Other)).collect()
 }
 
 /// The group of each body: the smallest place of a body that it is joined to without a magnet.

@@ -84,7 +84,14 @@ fn load_cases(material: &Material<'_>, answer: &LoadCasesAnswer, study: &StudyRe
             name.push_str(&format!("<br><small>{}</small>", escape(line)));
         }
         if let Some(reason) = &row.outcome.failure {
-            table.row([name, rich(reason), String::new(), String::new(), String::new(), verdict(None)]);
+            table.row([
+                name,
+                rich(reason),
+                String::new(),
+                String::new(),
+                String::new(),
+                verdict(None),
+            ]);
             continue;
         }
         let failing = case.requirements.iter().find(|one| one.met != Some(true));
@@ -113,11 +120,7 @@ fn load_cases(material: &Material<'_>, answer: &LoadCasesAnswer, study: &StudyRe
 
 /// Every run of a study that varies numbers.
 fn runs(study: &StudyResult) -> String {
-    let mut heads: Vec<String> = study
-        .varied
-        .iter()
-        .map(|varied| varied.path.clone())
-        .collect();
+    let mut heads: Vec<String> = study.varied.iter().map(|varied| varied.path.clone()).collect();
     heads.extend(["Peak share", "Slips", "Verdict"].map(str::to_owned));
     let heads: Vec<&str> = heads.iter().map(String::as_str).collect();
     let sides = format!("{}><", ">".repeat(study.varied.len() + 1));
@@ -220,8 +223,7 @@ fn spreads(answer: &MonteCarloAnswer) -> String {
 }
 
 fn sensitivities(answer: &MonteCarloAnswer) -> String {
-    let mut table =
-        HtmlTable::new("<<>", &["Value", "Goes most with", "Rank correlation"]);
+    let mut table = HtmlTable::new("<<>", &["Value", "Goes most with", "Rank correlation"]);
     for found in &answer.sensitivity {
         let strongest = found
             .correlations

@@ -14,7 +14,7 @@ use crate::render::chart::load_cases::{CaseBar, LoadCases, load_cases_chart};
 use crate::render::chart::map::{Cell, MapChart, Parameter, map_chart};
 use crate::render::chart::margin::{MarginChart, MarginPoint, margin_chart};
 use crate::render::chart::marks::Forbidden;
-use crate::render::chart::number::{percent, unit_text, words};
+use crate::render::chart::number::{capital, percent, unit_text, words};
 use crate::render::chart::tolerance::{Tolerance, tolerance_chart};
 use crate::results::{GearState, RequirementResult};
 
@@ -42,6 +42,15 @@ fn parameter(varied: &Varied) -> String {
     format!("{}, {}", words(thing), words(last))
 }
 
+/// A channel in words, for the heading of an axis.
+fn measured(channel: &str) -> String {
+    match channel.split_once('.') {
+        Some((_, "pull_out_share")) => "Peak pull-out share".to_owned(),
+        Some((thing, quantity)) => capital(&format!("{} of {}", words(quantity), words(thing))),
+        None => capital(&words(channel)),
+    }
+}
+
 fn shown(varied: &Varied, value: f64) -> f64 {
     to_unit(value, varied.dimension, varied.unit).unwrap_or(value)
 }
@@ -67,7 +76,7 @@ fn margin(
             let unit = material.written.unit(&one.of, one.unit);
             let side = if one.at_least { Forbidden::Below } else { Forbidden::Above };
             let limit = one.limit.map(|limit| (unit.of(limit), side));
-            (words(&one.of.replace('.', " ")), unit.text, limit)
+            (measured(&one.of), unit.text, limit)
         }
         None => ("Peak pull-out share".to_owned(), "%".to_owned(), None),
     };
@@ -120,8 +129,7 @@ fn load_cases(study: &StudyResult, answer: &LoadCasesAnswer) -> Option<(Drawing,
             let closest = |one: &&RequirementResult| {
                 use_of_limit(one).filter(|share| share.is_finite()).unwrap_or(0.0)
             };
-            let one =
-                case.requirements.iter().max_by(|a, b| closest(a).total_cmp(&closest(b)));
+            let one = case.requirements.iter().max_by(|a, b| closest(a).total_cmp(&closest(b)));
             let share = one.map(|one| closest(&one)).filter(|share| *share > 0.0);
             let text = one.zip(share).map_or_else(String::new, |(one, share)| {
                 format!("{} uses {} of its limit", words(&one.name), percent(share))
@@ -144,7 +152,8 @@ fn load_cases(study: &StudyResult, answer: &LoadCasesAnswer) -> Option<(Drawing,
         cases,
         sheet: Sheet::PAGE,
     };
-    let caption = "Use of the nearest limit in each case; beyond the hatched line a limit is exceeded.";
+    let caption =
+        "Use of the nearest limit in each case; beyond the hatched line a limit is exceeded.";
     Some((load_cases_chart(&chart), caption.to_owned()))
 }
 
@@ -245,11 +254,7 @@ fn tolerance(
         came_back: 0,
         slipped: 0,
         interval: answer.interval?,
-        quantiles: [
-            *scatter.values.get(1)?,
-            *scatter.values.get(3)?,
-            *scatter.values.get(5)?,
-        ],
+        quantiles: [*scatter.values.get(1)?, *scatter.values.get(3)?, *scatter.values.get(5)?],
         sheet: Sheet::PAGE,
     };
     for row in &study.rows {

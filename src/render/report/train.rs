@@ -152,7 +152,9 @@ fn pull_out(magnet: &MagnetFigures, written: Written<'_>) -> String {
     turning.sort_by(|a, b| b.pull_out_torque.total_cmp(&a.pull_out_torque));
     let list: Vec<String> = turning
         .iter()
-        .map(|member| format!("{} at the {}", written.torque(member.pull_out_torque), member.member))
+        .map(|member| {
+            format!("{} at the {}", written.torque(member.pull_out_torque), member.member)
+        })
         .collect();
     format!("pull-out {}", list.join(", "))
 }
@@ -186,11 +188,9 @@ fn actors(scenario: &Scenario, result: &RunResult, written: Written<'_>) -> Vec<
 
 fn motor_text(law: &MotorLaw, written: Written<'_>) -> String {
     match law {
-        MotorLaw::RatingPlate { power, speed, .. } => format!(
-            "{}, {}",
-            tidy(&crate::render::shown::power(*power)),
-            written.speed(*speed)
-        ),
+        MotorLaw::RatingPlate { power, speed, .. } => {
+            format!("{}, {}", tidy(&crate::render::shown::power(*power)), written.speed(*speed))
+        }
         MotorLaw::Induction { breakdown_torque, .. } => {
             format!("breakdown {}", written.torque(*breakdown_torque))
         }

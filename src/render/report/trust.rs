@@ -73,7 +73,9 @@ impl Comparison {
         let mut it = Self { table, worst: 0.0, changed: Vec::new() };
         let (one, two) = (material.result, sharper);
         for gear in &one.gears {
-            let Some(other) = two.gears.iter().find(|other| other.name == gear.name) else { continue };
+            let Some(other) = two.gears.iter().find(|other| other.name == gear.name) else {
+                continue;
+            };
             it.count(&format!("{}: slips", gear.name), gear.slips, other.slips);
             it.figure(
                 &format!("{}: peak share of pull-out", gear.name),
@@ -95,18 +97,25 @@ impl Comparison {
             if requirement.of.ends_with("slips") {
                 continue;
             }
-            let shown = |value: f64| material.written.value(&requirement.of, requirement.unit, value);
+            let shown =
+                |value: f64| material.written.value(&requirement.of, requirement.unit, value);
             it.figure(&requirement.name, [requirement.value, other.value], &shown);
         }
         for channel in &one.channels {
             let wanted = [".torque", ".speed"].iter().any(|end| channel.name.ends_with(end));
-            let shaft = material.scenario.shafts.iter().any(|shaft| {
-                channel.name.strip_suffix(".torque") == Some(shaft.name.as_str())
-            });
-            let body = material.scenario.bodies.iter().any(|body| {
-                channel.name.strip_suffix(".speed") == Some(body.name.as_str())
-            });
-            let Some(other) = two.channels.iter().find(|it| it.name == channel.name) else { continue };
+            let shaft = material
+                .scenario
+                .shafts
+                .iter()
+                .any(|shaft| channel.name.strip_suffix(".torque") == Some(shaft.name.as_str()));
+            let body = material
+                .scenario
+                .bodies
+                .iter()
+                .any(|body| channel.name.strip_suffix(".speed") == Some(body.name.as_str()));
+            let Some(other) = two.channels.iter().find(|it| it.name == channel.name) else {
+                continue;
+            };
             if !wanted || !(shaft || body) {
                 continue;
             }
@@ -122,7 +131,11 @@ impl Comparison {
     }
 
     fn count(&mut self, name: &str, one: u32, two: u32) {
-        let moved = if one == two { "no change".to_owned() } else { format!("{}", i64::from(two) - i64::from(one)) };
+        let moved = if one == two {
+            "no change".to_owned()
+        } else {
+            format!("{}", i64::from(two) - i64::from(one))
+        };
         if one != two {
             self.changed.push(format!("the number of slips ({one} and {two})"));
         }
@@ -130,7 +143,8 @@ impl Comparison {
     }
 
     fn figure(&mut self, name: &str, pair: [Option<f64>; 2], shown: &dyn Fn(f64) -> String) {
-        let told = |value: Option<f64>| value.map_or_else(|| "never".to_owned(), |it| escape(&shown(it)));
+        let told =
+            |value: Option<f64>| value.map_or_else(|| "never".to_owned(), |it| escape(&shown(it)));
         let moved = match pair {
             [Some(one), Some(two)] => {
                 let share = (two - one).abs() / one.abs().max(two.abs()).max(f64::MIN_POSITIVE);

@@ -25,7 +25,11 @@ pub fn head(material: &Material<'_>) -> String {
 /// What the file says of the case after its first sentence.
 pub fn rest_of_about(material: &Material<'_>) -> String {
     let (_, rest) = first_sentence(&material.scenario.about);
-    if rest.is_empty() { String::new() } else { format!("<p class=\"about\">{}</p>\n", escape(rest)) }
+    if rest.is_empty() {
+        String::new()
+    } else {
+        format!("<p class=\"about\">{}</p>\n", escape(rest))
+    }
 }
 
 /// The title, also of the window.
@@ -68,7 +72,8 @@ pub fn first_sentence(text: &str) -> (&str, &str) {
 
 /// Whether everything asked for is met; `None` when nothing is asked or it cannot be told.
 pub fn overall(material: &Material<'_>) -> Option<bool> {
-    let mut all: Vec<Option<bool>> = material.result.requirements.iter().map(|one| one.met).collect();
+    let mut all: Vec<Option<bool>> =
+        material.result.requirements.iter().map(|one| one.met).collect();
     all.extend(material.studies.iter().filter_map(|study| study.answer.verdict()));
     if !material.result.completed {
         return None;
@@ -103,15 +108,21 @@ fn headline(material: &Material<'_>, met: Option<bool>) -> String {
     let failing: Vec<&RequirementResult> =
         result.requirements.iter().filter(|one| one.met == Some(false)).collect();
     match met {
-        Some(true) if result.requirements.is_empty() => "Met: every limit of the studies.".to_owned(),
+        Some(true) if result.requirements.is_empty() => {
+            "Met: every limit of the studies.".to_owned()
+        }
         Some(true) => "Met: every requirement.".to_owned(),
-        Some(false) if slips && !failing.is_empty() => "Not met: the magnetic gear slips.".to_owned(),
+        Some(false) if slips && !failing.is_empty() => {
+            "Not met: the magnetic gear slips.".to_owned()
+        }
         Some(false) => match failing.as_slice() {
             [] => "Not met: a limit of the studies.".to_owned(),
             [one] => format!("Not met: `{}`.", one.name),
             many => format!("Not met: {} requirements.", many.len()),
         },
-        None if result.requirements.is_empty() => "Not judged: no requirements are stated.".to_owned(),
+        None if result.requirements.is_empty() => {
+            "Not judged: no requirements are stated.".to_owned()
+        }
         None => "Not judged in full.".to_owned(),
     }
 }
@@ -131,9 +142,10 @@ fn story_line(material: &Material<'_>) -> String {
     if let Some(gear) = worst(&result.gears) {
         parts.push(told(gear));
     }
-    let limits = material.studies.iter().filter(|study| {
-        matches!(study.answer.verdict(), Some(verdict) if verdict != Some(true))
-    });
+    let limits = material
+        .studies
+        .iter()
+        .filter(|study| matches!(study.answer.verdict(), Some(verdict) if verdict != Some(true)));
     let names: Vec<String> = limits.map(|study| format!("`{}`", study.name)).collect();
     if !names.is_empty() {
         parts.push(format!("Studies that are not met: {}.", names.join(", ")));
@@ -210,7 +222,11 @@ fn key_figures(material: &Material<'_>) -> String {
         cells.push(("Run-up to 95 %".to_owned(), plain(at), "s".to_owned()));
     }
     cells.push(("Simulated".to_owned(), plain(result.end_time), "s".to_owned()));
-    cells.push(("Energy unaccounted for".to_owned(), small(result.energy.residual_share), String::new()));
+    cells.push((
+        "Energy unaccounted for".to_owned(),
+        small(result.energy.residual_share),
+        String::new(),
+    ));
     cells.push(("Events".to_owned(), result.events.len().to_string(), String::new()));
     let cells: String = cells
         .into_iter()
