@@ -2,11 +2,11 @@
 
 use crate::equations::Equations;
 use crate::equations::mode::Mode;
+use crate::quantity::Dimension;
 use crate::results::{GearState, RunResult};
 use crate::signal::course::Overrides;
 use crate::solve::run::{RunError, run_to_end};
 use crate::solve::{RunOptions, Wanted, steady};
-use crate::quantity::Dimension;
 use crate::tree::{Fields, Node, Range, Shape};
 
 /// Where to linearise.

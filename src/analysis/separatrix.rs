@@ -4,8 +4,7 @@
 //! J_e phi'' + D phi' + damper(phi') + K law(phi) = T        shafts rigid, load constant
 //! saddle: law(phi) = T/K beyond the peak;  its stable directions are the borders
 //! ```
-//! The borders are followed from the saddle backwards in time as slip speed over load angle:
-//! `dw/dphi = (T - D w - damper(w) - K law(phi)) / (J_e w)`.
+//! The borders are followed from the saddle backwards in time.
 
 use crate::equations::Equations;
 use crate::equations::Owner;
@@ -15,8 +14,14 @@ use crate::model::magnet::Magnet;
 use crate::results::{RunResult, Separatrix};
 use std::f64::consts::{PI, TAU};
 
-/// Steps of a border over one electrical turn.
-const STEPS: usize = 4000;
+/// Steps for each radian of the fastest swing.
+const STEPS_PER_RADIAN: f64 = 200.0;
+
+/// Steps after which a border that still circles is left.
+const LONGEST: usize = 200_000;
+
+/// Distance from the saddle at which a border is begun, electrical rad.
+const START: f64 = 1e-4;
 
 /// The separatrix of a magnet for the torques at the end of a run; `None` where there is no saddle.
 pub fn find(equations: &Equations, result: &RunResult, magnet: usize) -> Option<Separatrix> {
@@ -31,8 +36,17 @@ pub fn find(equations: &Equations, result: &RunResult, magnet: usize) -> Option<
     // The saddle ahead and the one a turn behind it bound the well.
     let ahead = if beyond > rest { beyond } else { beyond + TAU };
     let behind = ahead - TAU;
-    let upper = border(law, load, ahead, -1.0, -PI);
-    let lower = border(law, load, behind, 1.0, PI);
+    let from_ahead = border(law, load, ahead, -1.0);
+    let from_behind = border(law, load, behind, 1.0);
+    // Under load with little damping a border turns back before the saddle behind: it then closes
+    // the region by itself, and what lies beyond its tip is not caught in this well.
+    let (upper, lower) = if from_ahead.after.len() > 1 && from_ahead.after[0][0] > -PI {
+        (within(&from_ahead.first), within(&from_ahead.after))
+    } else if from_behind.after.len() > 1 && from_behind.after[0][0] < PI {
+        (within(&from_behind.after), within(&from_behind.first))
+    } else {
+        (within(&from_ahead.first), within(&from_behind.first))
+    };
     if upper.len() < 2 || lower.len() < 2 {
         return None;
     }
@@ -83,8 +97,16 @@ fn end_load(equations: &Equations, result: &RunResult, magnet: &Magnet) -> Optio
     load.is_finite().then_some(load)
 }
 
-/// One border from a saddle, in the direction `side` of the load angle, up to `limit`; rising angles.
-fn border(magnet: &Magnet, load: f64, saddle: f64, side: f64, limit: f64) -> Vec<[f64; 2]> {
+/// A border followed backwards in time from a saddle: until its slip speed turns, and beyond.
+struct Border {
+    /// From the saddle on, while the slip speed keeps its sign.
+    first: Vec<[f64; 2]>,
+    /// What comes after the slip speed has turned; empty when it never does.
+    after: Vec<[f64; 2]>,
+}
+
+/// Follows the stable direction of a saddle that leaves it towards `side`.
+fn border(magnet: &Magnet, load: f64, saddle: f64, side: f64) -> Border {
     let inertia = magnet.phase_inertia;
     let damper = |w: f64| {
         let fading = magnet.fading.map_or(0.0, |fading| {
@@ -99,28 +121,99 @@ fn border(magnet: &Magnet, load: f64, saddle: f64, side: f64, limit: f64) -> Vec
     // Stable direction of the saddle: J x^2 + D x + K law' = 0, the negative root.
     let root =
         (-damping - (damping * damping - 4.0 * inertia * slope).max(0.0).sqrt()) / (2.0 * inertia);
-    let rate = |phi: f64, w: f64| (load - damper(w) - magnet.law.value(phi)) / (inertia * w);
-    let step = side * TAU / STEPS as f64;
-    let mut phi = saddle + step;
-    let mut w = root * step;
-    let mut points = vec![[saddle, 0.0], [phi, w]];
-    while side * (limit - phi) > 1e-12 && points.len() <= 2 * STEPS {
-        let length = if side * (limit - phi) < step.abs() { limit - phi } else { step };
-        let k1 = rate(phi, w);
-        let k2 = rate(phi + 0.5 * length, w + 0.5 * length * k1);
-        let k3 = rate(phi + 0.5 * length, w + 0.5 * length * k2);
-        let k4 = rate(phi + length, w + length * k3);
-        w += length / 6.0 * (k1 + 2.0 * k2 + 2.0 * k3 + k4);
-        phi += length;
-        if !w.is_finite() || w * root * step <= 0.0 {
+    let step =
+        -1.0 / (STEPS_PER_RADIAN * (magnet.amplitude * magnet.law.steepest() / inertia).sqrt());
+    let rate = |[phi, w]: [f64; 2]| [w, (load - damper(w) - magnet.law.value(phi)) / inertia];
+    let ahead = |a: [f64; 2], h: f64, b: [f64; 2]| [a[0] + h * b[0], a[1] + h * b[1]];
+    let mut state = [saddle + side * START, side * START * root];
+    let mut border = Border { first: vec![[saddle, 0.0], state], after: Vec::new() };
+    for _ in 0..LONGEST {
+        let k1 = rate(state);
+        let k2 = rate(ahead(state, 0.5 * step, k1));
+        let k3 = rate(ahead(state, 0.5 * step, k2));
+        let k4 = rate(ahead(state, step, k3));
+        let mean = [0, 1].map(|i: usize| (k1[i] + 2.0 * k2[i] + 2.0 * k3[i] + k4[i]) / 6.0);
+        let next = ahead(state, step, mean);
+        if !next[0].is_finite() || !next[1].is_finite() {
             break;
         }
-        points.push([phi, w]);
+        let turned = next[1] * side * root <= 0.0;
+        if turned && border.after.is_empty() {
+            // The turning point itself belongs to both parts.
+            let share = state[1] / (state[1] - next[1]);
+            let tip = [state[0] + share * (next[0] - state[0]), 0.0];
+            border.first.push(tip);
+            border.after.push(tip);
+        }
+        if !turned && !border.after.is_empty() {
+            break;
+        }
+        state = next;
+        if turned {
+            border.after.push(state)
+        } else {
+            border.first.push(state)
+        }
+        let gone = if turned { side * state[0] < -PI - 0.1 } else { side * state[0] > PI + 0.1 };
+        if gone {
+            break;
+        }
     }
-    points.retain(|point| (-PI..=PI).contains(&point[0]));
-    let mut points: Vec<[f64; 2]> = points.into_iter().step_by(10).collect();
-    if side < 0.0 {
-        points.reverse();
+    border
+}
+
+/// Points within one turn, by rising load angle, thinned for a chart.
+fn within(points: &[[f64; 2]]) -> Vec<[f64; 2]> {
+    let last = points.len().saturating_sub(1);
+    let mut kept: Vec<[f64; 2]> = points
+        .iter()
+        .enumerate()
+        .filter(|(place, point)| {
+            (place % 8 == 0 || *place == last) && (-PI..=PI).contains(&point[0])
+        })
+        .map(|(_, point)| *point)
+        .collect();
+    kept.sort_by(|a, b| a[0].total_cmp(&b[0]));
+    kept
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::component::magnetic_law::MagnetLaw;
+    use crate::model::magnet::MagnetMember;
+
+    fn pendulum(damping: f64) -> Magnet {
+        Magnet {
+            name: String::new(),
+            path: String::new(),
+            coupling: true,
+            members: vec![MagnetMember { name: "a", body: Some(0), count: 1.0 }],
+            law: MagnetLaw::new(1.0, &[]).unwrap(),
+            amplitude: 1.0,
+            damping,
+            fading: None,
+            start_phase: 0.0,
+            phase_inertia: 1.0,
+        }
     }
-    points
+
+    #[test]
+    fn without_load_and_damping_it_is_the_pendulum_s_own() {
+        // Closed form: w = 2 cos(phi/2).
+        let border = border(&pendulum(0.0), 0.0, PI, -1.0);
+        assert!(border.first.len() > 500);
+        for [phi, w] in &border.first[5..] {
+            if *phi > -2.9 {
+                assert!((w - 2.0 * (phi / 2.0).cos()).abs() < 1e-5, "{phi} {w}");
+            }
+        }
+    }
+
+    #[test]
+    fn under_load_with_little_damping_the_region_closes_behind_the_well() {
+        let found = border(&pendulum(0.01), 0.5, PI - 0.5_f64.asin(), -1.0);
+        let tip = found.after.first().unwrap();
+        assert!(tip[0] > -1.5 && tip[0] < 0.5 && found.after.len() > 100);
+    }
 }

@@ -19,8 +19,9 @@ pub fn equations(yaml: &str) -> Equations {
 
 /// A value tree from a text.
 pub fn node(yaml: &str) -> Node {
-    let text =
-        format!("lodeshaft: 1\ntitle: a test\nduration: 1 s\nbodies: {{ a: {{ inertia: 1 }} }}\nstudies: {{ s: {yaml} }}\n");
+    let text = format!(
+        "lodeshaft: 1\ntitle: a test\nduration: 1 s\nbodies: {{ a: {{ inertia: 1 }} }}\nstudies: {{ s: {yaml} }}\n"
+    );
     let loaded = crate::scenario::load_text("test.yaml", Path::new("."), &text, &[])
         .unwrap_or_else(|failure| panic!("{}", failure.render()));
     loaded.node.get("studies").and_then(|studies| studies.get("s")).cloned().unwrap_or(Node::Null)

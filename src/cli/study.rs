@@ -186,13 +186,20 @@ fn one(
     let result = match ended {
         Ok(result) => result,
         Err(Stop::Interrupted) => {
-            let message =
-                format!("`{}` was interrupted; {} finished runs are kept", study.name, progress.done());
+            let message = format!(
+                "`{}` was interrupted; {} finished runs are kept",
+                study.name,
+                progress.done()
+            );
             streams::complain(Severity::Warning, message, Some("--resume goes on with it"));
             return Ok(Ended::Stopped(Status::Interrupted, progress.done()));
         }
         Err(Stop::NotKept(reason)) => {
-            streams::complain(Severity::Error, reason, Some("--resume goes on from the last run kept"));
+            streams::complain(
+                Severity::Error,
+                reason,
+                Some("--resume goes on from the last run kept"),
+            );
             return Ok(Ended::Stopped(Status::NotWritten, progress.done()));
         }
     };

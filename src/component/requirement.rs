@@ -109,11 +109,7 @@ impl Requirement {
 }
 
 /// The dimension of a channel by its name; an unknown one is a fault at `of`.
-pub fn channel_dimension(
-    fields: &Fields<'_>,
-    of: &str,
-    known: Known<'_>,
-) -> Option<Dimension> {
+pub fn channel_dimension(fields: &Fields<'_>, of: &str, known: Known<'_>) -> Option<Dimension> {
     if let Some(channel) = known.channels.iter().find(|channel| channel.name == of) {
         return Some(channel.dimension);
     }

@@ -109,7 +109,8 @@ fn three_members_share_speeds_and_torques_by_their_pole_pairs() {
     let found = run("three_ports", &[]);
     // Closed form: 26*modulator = 4*inner + 22*outer; torques 4 : 22 : -26. At the end the ringing
     // of the last ramp has died to 1e-4.
-    let speed = (4.0 * found.last("inner_rotor.speed") + 22.0 * found.last("outer_ring.speed")) / 26.0;
+    let speed =
+        (4.0 * found.last("inner_rotor.speed") + 22.0 * found.last("outer_ring.speed")) / 26.0;
     same(found.last("modulator.speed"), speed, 1e-5);
     let modulator = found.last("gear.torque_modulator");
     same(found.last("gear.torque_inner"), -modulator * 4.0 / 26.0, 1e-12);
@@ -139,8 +140,7 @@ fn turbine_starts_at_the_best_point_of_its_curve_and_meets_the_standard_gust() {
 #[test]
 fn gust_spares_the_gear_because_of_the_torque_limit() {
     // With twice the limit the gear carries what the optimal curve asks for at overspeed.
-    let free =
-        run("wind_gust", &["motors.generator.law.optimal_power.torque_limit=220 kN*m"]);
+    let free = run("wind_gust", &["motors.generator.law.optimal_power.torque_limit=220 kN*m"]);
     let held = run("wind_gust", &[]);
     let share = |found: &crate::runner::Found| found.number("gears/gear/peak_pull_out_share");
     assert!(share(&free) > share(&held));
@@ -181,10 +181,8 @@ fn ice_blows_above_the_pull_out_pass_but_a_lasting_torque_does_not() {
     let blows = run("ship_ice", &[]);
     let (water, ice) = (blows.number("channels/water.torque/max"), 11e3);
     assert!(-water + ice > 22e3, "the peak is above the pull-out torque");
-    let lasting = run(
-        "ship_ice",
-        &["loads.ice.law.prescribed.torque.product.1=-11 kN*m", "duration=3 s"],
-    );
+    let lasting =
+        run("ship_ice", &["loads.ice.law.prescribed.torque.product.1=-11 kN*m", "duration=3 s"]);
     assert!(lasting.slips("gear") > 0);
 }
 

@@ -51,11 +51,22 @@ fn a_case_is_the_run_of_the_file_with_its_changes() {
     let folder = Folder::new(&train(60.0, 100.0, STUDY));
     let (_, answers, _) = folder.study(&["cases"]);
     let set = "magnetic_couplings.coupling.pull_out=80 N*m";
-    let output =
-        folder.call(&["run", "case.yaml", "--set", set, "--out", "run", "--format", "json", "--no-charts"]);
+    let output = folder.call(&[
+        "run",
+        "case.yaml",
+        "--set",
+        set,
+        "--out",
+        "run",
+        "--format",
+        "json",
+        "--no-charts",
+    ]);
     let run: serde_json::Value = serde_json::from_slice(&output.stdout).unwrap();
-    let (case, alone) =
-        (&answers["studies"]["cases"]["cases"]["hot"]["gears"]["coupling"], &run["gears"]["coupling"]);
+    let (case, alone) = (
+        &answers["studies"]["cases"]["cases"]["hot"]["gears"]["coupling"],
+        &run["gears"]["coupling"],
+    );
     for figure in ["slips", "net_slips", "peak_load_angle", "final_load_angle"] {
         assert_eq!(case[figure], alone[figure], "{figure}");
     }
@@ -66,7 +77,10 @@ fn the_table_tells_every_case() {
     let folder = Folder::new(&train(60.0, 100.0, STUDY));
     let output = folder.call(&["study", "case.yaml", "--out", "out"]);
     let text = String::from_utf8(output.stdout).unwrap();
-    assert!(text.contains("2 of 4 cases meet their requirements; not met: `hot`, `strict`."), "{text}");
+    assert!(
+        text.contains("2 of 4 cases meet their requirements; not met: `hot`, `strict`."),
+        "{text}"
+    );
     for case in ["as_built", "hot", "soft", "strict"] {
         assert!(text.lines().any(|line| line.trim_start().starts_with(case)), "{text}");
     }

@@ -133,10 +133,8 @@ impl Table {
     pub fn read(text: &str) -> Self {
         let mut reader = csv::Reader::from_reader(text.as_bytes());
         let head = reader.headers().unwrap().iter().map(str::to_owned).collect();
-        let rows = reader
-            .records()
-            .map(|row| row.unwrap().iter().map(str::to_owned).collect())
-            .collect();
+        let rows =
+            reader.records().map(|row| row.unwrap().iter().map(str::to_owned).collect()).collect();
         Self { head, rows }
     }
 

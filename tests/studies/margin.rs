@@ -77,7 +77,9 @@ fn a_range_without_a_failure_is_a_lower_bound() {
         ask(&train(
             50.0,
             100.0,
-            &format!("  room: {{ margin: {{ vary: motors.drive.law.prescribed.torque, between: [50 N*m, 70 N*m], points: 5, at_least: {asked} }} }}\n"),
+            &format!(
+                "  room: {{ margin: {{ vary: motors.drive.law.prescribed.torque, between: [50 N*m, 70 N*m], points: 5, at_least: {asked} }} }}\n"
+            ),
         ))
     };
     let (status, answer) = study("30 %");

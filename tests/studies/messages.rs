@@ -31,12 +31,7 @@ fn check(cases: &[(&str, &str)]) {
 
 #[test]
 fn kinds_of_studies() {
-    check(&[
-        ("{ margn: {} }", ""),
-        ("{}", ""),
-        ("5", ""),
-        ("{ margin: {}, sweep: {} }", ""),
-    ]);
+    check(&[("{ margn: {} }", ""), ("{}", ""), ("5", ""), ("{ margin: {}, sweep: {} }", "")]);
 }
 
 #[test]
@@ -57,15 +52,19 @@ fn margins() {
         ("{ margin: { vary: bodies.rotor.inertia, between: [1, 2], points: 1 } }", ""),
         ("{ margin: { vary: bodies.rotor.inertia, between: [1, 2], accuracy: 0 } }", ""),
         ("{ margin: { vary: bodies.rotor.inertia, between: [1, 2], acuracy: 1 % } }", ""),
-        ("{ margin: { vary: bodies.rotor.inertia, between: [0.1, 0.2], channels: [rotor.sped] } }", ""),
+        (
+            "{ margin: { vary: bodies.rotor.inertia, between: [0.1, 0.2], channels: [rotor.sped] } }",
+            "",
+        ),
         ("{ margin: { vary: bodies.rotor.inertia, between: [0.05, 0.06], at_least: 50 % } }", ""),
     ]);
 }
 
 #[test]
 fn a_margin_without_requirements() {
-    let scenario = train(60.0, 100.0, "  it: { margin: { vary: bodies.rotor.inertia, between: [1, 2] } }\n")
-        .replace("  no_slip: { of: coupling.slips, at_most: 0 }\n", "");
+    let scenario =
+        train(60.0, 100.0, "  it: { margin: { vary: bodies.rotor.inertia, between: [1, 2] } }\n")
+            .replace("  no_slip: { of: coupling.slips, at_most: 0 }\n", "");
     assert_eq!(told_of(&scenario), "");
 }
 
@@ -82,29 +81,68 @@ fn sweeps() {
         ("{ sweep: { vary: { bodies.rotor.inertia: { from: 1, to: 2 } } } }", ""),
         ("{ sweep: { vary: { bodies.rotor.inertia: { from: 1, to: 2, count: 1 } } } }", ""),
         ("{ sweep: { vary: { bodies.rotor.inertia: 3 } } }", ""),
-        ("{ sweep: { vary: { bodies.rotor.inertia: { values: [1] }, duration: { values: [1] }, output_step: { values: [1] } } } }", ""),
+        (
+            "{ sweep: { vary: { bodies.rotor.inertia: { values: [1] }, duration: { values: [1] }, output_step: { values: [1] } } } }",
+            "",
+        ),
     ]);
 }
 
 #[test]
 fn scatter() {
     check(&[
-        ("{ monte_carlo: { draws: 0, spread: { bodies.rotor.inertia: { normal: { relative: 1 % } } } } }", ""),
-        ("{ monte_carlo: { spread: { bodies.rotor.inertia: { normal: { relative: 1 % } } } } }", ""),
+        (
+            "{ monte_carlo: { draws: 0, spread: { bodies.rotor.inertia: { normal: { relative: 1 % } } } } }",
+            "",
+        ),
+        (
+            "{ monte_carlo: { spread: { bodies.rotor.inertia: { normal: { relative: 1 % } } } } }",
+            "",
+        ),
         ("{ monte_carlo: { draws: 10 } }", ""),
         ("{ monte_carlo: { draws: 10, spread: {} } }", ""),
-        ("{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { normal: { relative: 30 % } } } } }", ""),
-        ("{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { uniform: { absolute: 0.06 kg*m2 } } } } }", ""),
-        ("{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { gaussian: { relative: 3 % } } } } }", ""),
+        (
+            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { normal: { relative: 30 % } } } } }",
+            "",
+        ),
+        (
+            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { uniform: { absolute: 0.06 kg*m2 } } } } }",
+            "",
+        ),
+        (
+            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { gaussian: { relative: 3 % } } } } }",
+            "",
+        ),
         ("{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { normal: {} } } } }", ""),
-        ("{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { normal: { relative: 1 %, absolute: 1 } } } } }", ""),
-        ("{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { lognormal: { absolute: 1 } } } } }", ""),
+        (
+            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { normal: { relative: 1 %, absolute: 1 } } } } }",
+            "",
+        ),
+        (
+            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { lognormal: { absolute: 1 } } } } }",
+            "",
+        ),
         ("{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: {} } } }", ""),
-        ("{ monte_carlo: { draws: 10, spread: { bodies.rotor.speed: { normal: { relative: 1 % } } } } }", ""),
-        ("{ monte_carlo: { draws: 10, spread: { solver.max_step: { normal: { relative: 1 % } } } } }", ""),
-        ("{ monte_carlo: { draws: 10, spread: { magnetic_couplings.coupling.pole_pairs: { uniform: { absolute: 1 } } } } }", ""),
-        ("{ monte_carlo: { draws: 10.5, seed: -1, spread: { bodies.rotor.inertia: { normal: { relative: -1 % } } } } }", ""),
-        ("{ monte_carlo: { draws: 10, slipping_at_most: 3, spread: { bodies.rotor.inertia: { normal: { relative: 1 % } } } } }", ""),
+        (
+            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.speed: { normal: { relative: 1 % } } } } }",
+            "",
+        ),
+        (
+            "{ monte_carlo: { draws: 10, spread: { solver.max_step: { normal: { relative: 1 % } } } } }",
+            "",
+        ),
+        (
+            "{ monte_carlo: { draws: 10, spread: { magnetic_couplings.coupling.pole_pairs: { uniform: { absolute: 1 } } } } }",
+            "",
+        ),
+        (
+            "{ monte_carlo: { draws: 10.5, seed: -1, spread: { bodies.rotor.inertia: { normal: { relative: -1 % } } } } }",
+            "",
+        ),
+        (
+            "{ monte_carlo: { draws: 10, slipping_at_most: 3, spread: { bodies.rotor.inertia: { normal: { relative: 1 % } } } } }",
+            "",
+        ),
     ]);
 }
 
@@ -116,8 +154,14 @@ fn load_cases() {
         ("{ load_cases: { cases: { Hot: {} } } }", ""),
         ("{ load_cases: { cases: { hot: { changes: { bodies.roter.inertia: 1 } } } } }", ""),
         ("{ load_cases: { cases: { hot: { changes: { bodies.rotor.inertia: -1 } } } } }", ""),
-        ("{ load_cases: { cases: { hot: { changes: { bodies.rotor.inertia: 3 N*m, studies: 3 } } } } }", ""),
-        ("{ load_cases: { cases: { hot: { requirements: { slow: { of: rotor.sped, at_most: 3 rpm } } } } } }", ""),
+        (
+            "{ load_cases: { cases: { hot: { changes: { bodies.rotor.inertia: 3 N*m, studies: 3 } } } } }",
+            "",
+        ),
+        (
+            "{ load_cases: { cases: { hot: { requirements: { slow: { of: rotor.sped, at_most: 3 rpm } } } } } }",
+            "",
+        ),
         ("{ load_cases: { cases: { hot: { requirements: { slow: { of: rotor.speed } } } } } }", ""),
         ("{ load_cases: { cases: { hot: { change: {} } } } }", ""),
     ]);
@@ -125,8 +169,12 @@ fn load_cases() {
 
 #[test]
 fn faults_of_the_file_and_its_studies_are_told_together() {
-    let scenario = train(60.0, 100.0, "  it: { margin: { vary: bodies.rotor.inertia, between: [1 kg*m2, 1 kg*m2] } }\n")
-        .replace("pole_pairs: 4", "pole_pairs: 0");
+    let scenario = train(
+        60.0,
+        100.0,
+        "  it: { margin: { vary: bodies.rotor.inertia, between: [1 kg*m2, 1 kg*m2] } }\n",
+    )
+    .replace("pole_pairs: 4", "pole_pairs: 0");
     assert_eq!(told_of(&scenario), "");
 }
 
@@ -159,5 +207,7 @@ fn unknown_studies_and_files_without_studies_are_told() {
     let folder = Folder::new(&train(60.0, 100.0, ""));
     let output = folder.call(&["study", "case.yaml"]);
     assert_eq!(output.status.code(), Some(2));
-    assert!(String::from_utf8_lossy(&output.stderr).starts_with("error: `case.yaml` has no studies\n"));
+    assert!(
+        String::from_utf8_lossy(&output.stderr).starts_with("error: `case.yaml` has no studies\n")
+    );
 }

@@ -18,8 +18,7 @@ fn scenario() -> String {
     .replace("duration: 0.8 s", "duration: 6 s")
 }
 
-const ARGUMENTS: [&str; 7] =
-    ["study", "case.yaml", "--out", "out", "--threads", "2", "drawn"];
+const ARGUMENTS: [&str; 7] = ["study", "case.yaml", "--out", "out", "--threads", "2", "drawn"];
 
 /// Finished runs in the journal.
 fn kept(folder: &Folder) -> usize {

@@ -133,7 +133,15 @@ fn any_number_of_threads_gives_the_same_bytes() {
     let runs: Vec<String> = (0..60).map(|run| run.to_string()).collect();
     assert_eq!(table.column("run"), runs);
     // Another seed draws otherwise.
-    let other = folder.call(&["study", "case.yaml", "drawn", "--out", "other", "--set", "studies.drawn.monte_carlo.seed=10"]);
+    let other = folder.call(&[
+        "study",
+        "case.yaml",
+        "drawn",
+        "--out",
+        "other",
+        "--set",
+        "studies.drawn.monte_carlo.seed=10",
+    ]);
     assert!(other.status.code().is_some());
     assert_ne!(folder.study_file("one", "drawn.csv"), folder.study_file("other", "drawn.csv"));
 }

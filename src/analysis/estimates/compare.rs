@@ -105,10 +105,7 @@ fn swing(basis: &Basis<'_>, hand: &GearEstimate) -> Vec<Comparison> {
 /// The mode with the largest share of its elastic energy in the magnet.
 fn own_mode<'m>(modes: &'m [Mode], gear: &str) -> Option<&'m Mode> {
     let share = |mode: &Mode| share_of(&mode.shape.elastic, gear);
-    modes
-        .iter()
-        .filter(|mode| share(mode) > 0.0)
-        .max_by(|a, b| share(a).total_cmp(&share(b)))
+    modes.iter().filter(|mode| share(mode) > 0.0).max_by(|a, b| share(a).total_cmp(&share(b)))
 }
 
 fn share_of(list: &[Named], name: &str) -> f64 {
@@ -119,7 +116,10 @@ fn other_springs(mode: &Mode, gear: &str) -> Vec<String> {
     let others = mode.shape.elastic.iter().filter(|(name, share)| name != gear && *share > REASON);
     others
         .map(|(name, share)| {
-            format!("`{name}` bends with it: {:.0} % of that mode's elastic energy is there", 100.0 * share)
+            format!(
+                "`{name}` bends with it: {:.0} % of that mode's elastic energy is there",
+                100.0 * share
+            )
         })
         .collect()
 }
@@ -133,9 +133,13 @@ fn other_dampers(equations: &Equations, mode: &Mode, gear: &str) -> Vec<String> 
         .map(|(name, share)| {
             let percent = 100.0 * share;
             if scenario.motors.iter().any(|motor| motor.name == *name) {
-                format!("the drive `{name}` follows the speed: {percent:.0} % of that mode's damping")
+                format!(
+                    "the drive `{name}` follows the speed: {percent:.0} % of that mode's damping"
+                )
             } else if scenario.loads.iter().any(|load| load.name == *name) {
-                format!("the load `{name}` follows the speed: {percent:.0} % of that mode's damping")
+                format!(
+                    "the load `{name}` follows the speed: {percent:.0} % of that mode's damping"
+                )
             } else {
                 format!("`{name}` gives {percent:.0} % of that mode's damping")
             }
@@ -267,7 +271,9 @@ fn peak_reasons(
             why.push(format!("the brake `{}` acts on the train", brake.name));
         }
     } else {
-        why.push("the largest motor torque comes late, when the load side turns already".to_owned());
+        why.push(
+            "the largest motor torque comes late, when the load side turns already".to_owned(),
+        );
     }
     if !equations.frictions.is_empty() {
         why.push("friction holds and lets go".to_owned());
@@ -295,11 +301,7 @@ fn peak_reasons(
 }
 
 /// Whether a gear that slipped falls into step, against what the load at the end allows.
-fn in_step_again(
-    basis: &Basis<'_>,
-    hand: &GearEstimate,
-    found: &RunResult,
-) -> Option<Comparison> {
+fn in_step_again(basis: &Basis<'_>, hand: &GearEstimate, found: &RunResult) -> Option<Comparison> {
     let gear = found.gears.get(basis.index)?;
     if gear.slips == 0 {
         return None;

@@ -287,8 +287,11 @@ fn drive(basis: &Basis<'_>) -> (Option<(usize, usize)>, Option<&'static str>) {
         let body = model.body(&motor.body)?;
         basis.train.reaches(body).then_some((place, body))
     });
-    let turning =
-        basis.magnet.members.iter().filter_map(|member| member.body.map(|body| (member.name, body)));
+    let turning = basis
+        .magnet
+        .members
+        .iter()
+        .filter_map(|member| member.body.map(|body| (member.name, body)));
     let mut turning: Vec<_> = turning.collect();
     if let Some((_, driven)) = motor {
         turning.sort_by_key(|(_, body)| !basis.train.joined(*body, driven));

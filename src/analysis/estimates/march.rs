@@ -18,19 +18,31 @@ pub struct Curve {
     pub v: f64,
 }
 
-/// Follows `dv/dx = rate(x, v)` to `end`; steps shrink with the distance from `saddle`.
-pub fn march(start: Curve, end: f64, saddle: f64, rate: &dyn Fn(f64, f64) -> f64) -> Curve {
+/// Largest step as a multiple of the length over which neighbouring curves close in.
+const STIFF: f64 = 1.0;
+
+/// A curve to follow: its slope, and how fast neighbours close in on it, per unit of x.
+pub struct Field<'f> {
+    /// `dv/dx` at a point.
+    pub rate: &'f dyn Fn(f64, f64) -> f64,
+    /// Magnitude of its derivative over v.
+    pub closing: &'f dyn Fn(f64, f64) -> f64,
+}
+
+/// Follows a curve to `end`; steps shrink with the distance from `saddle`.
+pub fn march(start: Curve, end: f64, saddle: f64, field: &Field<'_>) -> Curve {
+    let rate = field.rate;
     let tableau = tableau::of(Method::Dop853);
-    let mut rates =
-        |x: f64, state: &[f64], rates: &mut [f64]| rates[0] = rate(x, state[0]);
+    let mut rates = |x: f64, state: &[f64], rates: &mut [f64]| rates[0] = rate(x, state[0]);
     let mut here = start;
     let mut stages: Vec<Vec<f64>> = Vec::new();
-    for _ in 0..100_000 {
+    for _ in 0..1_000_000 {
         let left = end - here.x;
         if left == 0.0 {
             break;
         }
-        let cap = STEP.min(SHARE * (here.x - saddle).abs());
+        let stable = STIFF / (field.closing)(here.x, here.v);
+        let cap = STEP.min(SHARE * (here.x - saddle).abs()).min(stable);
         let step = if left.abs() <= cap { left } else { cap.copysign(left) };
         stages.resize(1, Vec::new());
         stages[0] = vec![rate(here.x, here.v)];

@@ -11,15 +11,18 @@
 //! 4 beta/pi for weak damping (retrapping of the resistively shunted junction: Tinkham,
 //! *Introduction to Superconductivity*, 6.3, from memory).
 
-use super::march::{Curve, march};
+use super::march::{Curve, Field, march};
 use crate::component::magnetic_law::MagnetLaw;
 use crate::solve::locate;
 
 /// Start distance from a saddle, rad.
 const NEAR: f64 = 1e-6;
 
+/// Steps in speed from where a swing turns.
+const TURN_STEPS: u32 = 100;
+
 /// Torques closer to the peak than this share are taken as the peak.
-const AT_PEAK: f64 = 1e-9;
+const AT_PEAK: f64 = 1e-8;
 
 /// The swing of one gear in its own units.
 #[derive(Clone, Copy, Debug)]
@@ -113,51 +116,59 @@ impl<'a> Swing<'a> {
 
     /// Follows `dv/dx = (T - f)/v - damping/v` from a point near a saddle to `x`.
     fn along(self, load: f64, start: Curve, x: f64, saddle: f64) -> Curve {
-        march(start, x, saddle, &|x, v| (load - self.torque(x) - self.damper(v)) / v)
+        let rate = |x: f64, v: f64| (load - self.torque(x) - self.damper(v)) / v;
+        let closing = |x: f64, v: f64| (load - self.torque(x)).abs() / (v * v);
+        march(start, x, saddle, &Field { rate: &rate, closing: &closing })
     }
 
-    /// Where a swing from rest must begin to end on the saddle; `None`: it begins before the last saddle.
-    fn turning_point(self, load: f64) -> Option<f64> {
+    /// How far ahead of `from` a swing from rest must begin to end on the saddle, rad; negative
+    /// when it must begin behind, which only a push replaces.
+    fn ahead_of(self, load: f64, from: f64) -> Option<f64> {
         let (saddle, rest) = (self.saddle(load)?, self.rest(load)?);
-        let behind = saddle - std::f64::consts::TAU;
         if self.beta == 0.0 {
-            let height = self.energy(saddle) - load * saddle;
-            let missing = |x: f64| height - (self.energy(x) - load * x);
-            if missing(behind) > 0.0 {
-                return None;
+            let missing = |x: f64| self.energy(saddle) - self.energy(x) - load * (saddle - x);
+            // Energy that is missing at `from`, as a distance: the drive there is never zero.
+            let here = missing(from);
+            if here > 0.0 {
+                return Some(-here);
             }
-            return Some(locate::root(rest, behind, missing, 0.0));
+            return Some(locate::root(from, rest, missing, 0.0) - from);
         }
-        // From the rest on the torque drives: there x is a smooth function of v down to v = 0.
         let mut here = Curve { x: rest, v: self.arrival_speed(load, rest)? };
-        while here.x > behind {
+        loop {
             let drive = load - self.torque(here.x) - self.damper(here.v);
-            if drive > here.v {
-                return Some(self.down_to_rest(load, here));
+            if drive * (rest - here.x) > 0.5 * here.v * here.v {
+                return Some(self.down_to_rest(load, here, from));
             }
-            let next = here.x - 0.02_f64.min(0.25 * here.v.max(1e-3));
-            here = self.along(load, here, next, f64::INFINITY);
-            if here.v <= 0.0 || here.v.is_nan() {
-                return Some(here.x);
+            if here.x <= from || here.v.is_nan() {
+                return Some(-here.v * here.v);
             }
+            let step = (rest - here.x).clamp(1e-3 * (saddle - rest), 0.02);
+            here = self.along(load, here, (here.x - step).max(from), f64::INFINITY);
         }
-        None
     }
 
-    fn down_to_rest(self, load: f64, from: Curve) -> f64 {
-        let turned = Curve { x: from.v, v: from.x };
-        let rates = |v: f64, x: f64| v / (load - self.torque(x) - self.damper(v));
-        march(turned, 0.0, f64::INFINITY, &rates).v
+    /// Behind the rest the torque drives: there x is a smooth function of v down to v = 0.
+    fn down_to_rest(self, load: f64, start: Curve, from: f64) -> f64 {
+        let rate = |v: f64, x: f64| v / (load - self.torque(x) - self.damper(v));
+        let field = Field { rate: &rate, closing: &|_, _| 1.0 };
+        let mut turned = Curve { x: start.v, v: start.x };
+        for left in (0..TURN_STEPS).rev() {
+            let v = start.v * f64::from(left) / f64::from(TURN_STEPS);
+            turned = march(turned, v, f64::INFINITY, &field);
+            let passed = turned.v < from || turned.v.is_nan();
+            if left > 0 && passed {
+                return -v * v;
+            }
+        }
+        turned.v - from
     }
 
     /// The largest torque step from rest under `preload` that is survived: total over K.
     pub fn critical_step(self, preload: f64) -> Option<f64> {
         let rest = self.rest(preload)?;
         let peak = self.peak();
-        let miss = |load: f64| match self.turning_point(load) {
-            Some(turn) => turn - rest,
-            None => -std::f64::consts::TAU,
-        };
+        let miss = |load: f64| self.ahead_of(load, rest).unwrap_or(-1.0);
         let highest = peak * (1.0 - AT_PEAK);
         if miss(highest) <= 0.0 {
             return Some(peak);

@@ -2,7 +2,7 @@
 
 use super::*;
 use crate::component::magnetic_gear::Harmonic;
-use std::f64::consts::PI;
+use std::f64::consts::{FRAC_PI_2, PI};
 
 fn sine() -> MagnetLaw {
     MagnetLaw::new(1.0, &[]).unwrap()
@@ -144,13 +144,13 @@ fn a_fading_damper_helps_less() {
 #[test]
 fn backward_loads_use_the_other_side_of_the_law() {
     let odd = MagnetLaw::new(2.0, &[Harmonic { order: 3, amplitude: 0.05, phase: 0.0 }]).unwrap();
-    let step = |law: &MagnetLaw, mirrored| {
-        Swing::new(law, 0.0, 0.0, mirrored).critical_step(0.2).unwrap()
-    };
+    let step =
+        |law: &MagnetLaw, mirrored| Swing::new(law, 0.0, 0.0, mirrored).critical_step(0.2).unwrap();
     close(step(&odd, false), step(&odd, true), 1e-10);
-    let even = MagnetLaw::new(2.0, &[Harmonic { order: 2, amplitude: 0.1, phase: 0.0 }]).unwrap();
+    let even =
+        MagnetLaw::new(2.0, &[Harmonic { order: 2, amplitude: 0.1, phase: FRAC_PI_2 }]).unwrap();
     let turned =
-        MagnetLaw::new(2.0, &[Harmonic { order: 2, amplitude: 0.1, phase: PI }]).unwrap();
+        MagnetLaw::new(2.0, &[Harmonic { order: 2, amplitude: 0.1, phase: -FRAC_PI_2 }]).unwrap();
     assert!((step(&even, false) - step(&even, true)).abs() > 1e-3);
     close(step(&even, true), step(&turned, false), 1e-10);
 }

@@ -56,7 +56,8 @@ pub fn list(
         let (per_speed, fixed) = match &excitation.follows {
             Follows::Frequency(frequency) => (0.0, *frequency),
             Follows::Turns { body, against, order } => {
-                let ratio = |name: &str| equations.model.body(name).map_or(0.0, |place| ratios[place]);
+                let ratio =
+                    |name: &str| equations.model.body(name).map_or(0.0, |place| ratios[place]);
                 let other = against.as_deref().map_or(0.0, ratio);
                 (order * (ratio(body) - other).abs() / TAU, 0.0)
             }
@@ -118,12 +119,7 @@ fn body_orders(equations: &Equations, ratios: &[f64]) -> Vec<Excitation> {
 }
 
 /// The ripple of a gear, and of cogging that the file states at other orders.
-fn ripple(
-    equations: &Equations,
-    index: usize,
-    magnet: &Magnet,
-    ratios: &[f64],
-) -> Vec<Excitation> {
+fn ripple(equations: &Equations, index: usize, magnet: &Magnet, ratios: &[f64]) -> Vec<Excitation> {
     if magnet.coupling {
         // Equal pole pairs do not turn against each other in step.
         return Vec::new();
@@ -138,19 +134,25 @@ fn ripple(
     let mut lines = Vec::new();
     let mut add = |label: String, per_turn: f64, turns: f64| {
         let per_speed = per_turn * turns / TAU;
-        let known =
-            lines.iter().any(|line: &Excitation| (line.per_speed - per_speed).abs() <= 1e-9 * per_speed);
+        let known = lines
+            .iter()
+            .any(|line: &Excitation| (line.per_speed - per_speed).abs() <= 1e-9 * per_speed);
         if per_speed > 0.0 && !known {
             lines.push(Excitation { label, per_speed, fixed: 0.0 });
         }
     };
-    add(format!("ripple of {} ({order} a turn of inner to modulator)", gear.name), order as f64, turns);
+    add(
+        format!("ripple of {} ({order} a turn of inner to modulator)", gear.name),
+        order as f64,
+        turns,
+    );
     for cogging in &gear.cogging {
         let (name, member) = match cogging.at {
             crate::component::magnetic_gear::Member::Outer => ("outer", 2),
             _ => ("inner", 0),
         };
-        let label = format!("ripple of {} ({} a turn of {name} to modulator)", gear.name, cogging.order);
+        let label =
+            format!("ripple of {} ({} a turn of {name} to modulator)", gear.name, cogging.order);
         add(label, f64::from(cogging.order), (speed(member) - speed(1)).abs());
     }
     lines
@@ -179,8 +181,7 @@ fn line_frequency(equations: &Equations, notes: &mut Vec<String>) -> Vec<Excitat
             _ => continue,
         };
         let turns = synchronous_speed / TAU;
-        let fitting: Vec<f64> =
-            MAINS.into_iter().filter(|mains| whole(mains / turns)).collect();
+        let fitting: Vec<f64> = MAINS.into_iter().filter(|mains| whole(mains / turns)).collect();
         match fitting.as_slice() {
             [mains] => {
                 notes.push(format!(
@@ -239,11 +240,8 @@ fn slip_frequency(
 /// The bodies that stay joined to `of` when one magnet is taken out.
 fn side_of(equations: &Equations, magnet: usize, of: usize) -> Vec<bool> {
     let model = &equations.model;
-    let mut links: Vec<Vec<usize>> = model
-        .shafts
-        .iter()
-        .map(|shaft| shaft.ends.iter().flatten().copied().collect())
-        .collect();
+    let mut links: Vec<Vec<usize>> =
+        model.shafts.iter().map(|shaft| shaft.ends.iter().flatten().copied().collect()).collect();
     links.extend(
         model.constraints.iter().map(|joint| joint.row.iter().map(|(body, _)| *body).collect()),
     );

@@ -91,8 +91,7 @@ pub fn draw(
     let (excitations, mut notes) = excitation::list(equations, point, spec, of)?;
     let own = dot(&equations.speed_row(&[(of, 1.0)]), &point.state);
     let size = range.speeds[0].abs().max(range.speeds[1].abs());
-    let operating =
-        range.operating.or_else(|| (own.abs() > 1e-6 * size).then_some([own, own]));
+    let operating = range.operating.or_else(|| (own.abs() > 1e-6 * size).then_some([own, own]));
     if operating.is_none() {
         notes.push(format!(
             "`{}` stands still at the point: no separation can be told; `operating` gives the speeds of long running",

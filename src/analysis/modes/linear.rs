@@ -106,9 +106,8 @@ fn reduce(
     let mut kept: Vec<usize> = (0..size).collect();
     loop {
         let before = kept.len();
-        let acts = |state: usize| {
-            state < speeds || kept.iter().any(|row| full[(*row, state)] != 0.0)
-        };
+        let acts =
+            |state: usize| state < speeds || kept.iter().any(|row| full[(*row, state)] != 0.0);
         let left: Vec<usize> = kept.iter().copied().filter(|state| acts(*state)).collect();
         kept = left;
         if kept.len() == before {

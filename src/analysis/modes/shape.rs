@@ -81,10 +81,7 @@ impl ModeShape {
 }
 
 /// Complex speed amplitudes of all bodies of a full physical state vector.
-pub fn body_amplitudes(
-    equations: &Equations,
-    vector: &DVector<Complex<f64>>,
-) -> Vec<Complex<f64>> {
+pub fn body_amplitudes(equations: &Equations, vector: &DVector<Complex<f64>>) -> Vec<Complex<f64>> {
     equations
         .model
         .reduction
@@ -110,10 +107,8 @@ fn clean(value: f64) -> f64 {
 
 /// Speeds of bodies in a free motion, the largest 1.
 pub fn free_shape(equations: &Equations, motion: &[f64]) -> Vec<Named> {
-    let vector = DVector::from_iterator(
-        motion.len(),
-        motion.iter().map(|value| Complex::new(*value, 0.0)),
-    );
+    let vector =
+        DVector::from_iterator(motion.len(), motion.iter().map(|value| Complex::new(*value, 0.0)));
     let bodies = body_amplitudes(equations, &vector);
     let reference = reference(&bodies);
     equations
@@ -260,11 +255,7 @@ impl DampingSources {
 }
 
 /// Overlap of two full vectors in kinetic energy, 0 to 1: 1 for the same motion.
-pub fn overlap(
-    mass: &DMatrix<f64>,
-    a: &DVector<Complex<f64>>,
-    b: &DVector<Complex<f64>>,
-) -> f64 {
+pub fn overlap(mass: &DMatrix<f64>, a: &DVector<Complex<f64>>, b: &DVector<Complex<f64>>) -> f64 {
     let count = mass.nrows();
     let product = |left: &DVector<Complex<f64>>, right: &DVector<Complex<f64>>| -> Complex<f64> {
         let mut sum = Complex::new(0.0, 0.0);

@@ -97,7 +97,10 @@ impl ModesSpec {
             }
             _ => None,
         };
-        if separation.is_some() && range.is_none() && !fields.has("speed_range") && !fields.has("of")
+        if separation.is_some()
+            && range.is_none()
+            && !fields.has("speed_range")
+            && !fields.has("of")
         {
             fields.fault_hint(
                 "separation",

@@ -211,8 +211,10 @@ fn held_members_change_the_frequency_of_a_gear() {
         (&["inner"], 12.1399),
     ] {
         let turning: Vec<_> = members.iter().filter(|(name, ..)| free.contains(name)).collect();
-        let bodies: Vec<String> =
-            turning.iter().map(|(name, inertia, _)| format!("r_{name}: {{ inertia: {inertia} }}")).collect();
+        let bodies: Vec<String> = turning
+            .iter()
+            .map(|(name, inertia, _)| format!("r_{name}: {{ inertia: {inertia} }}"))
+            .collect();
         let at = |name: &str| {
             if free.contains(&name) { format!("r_{name}") } else { "ground".to_owned() }
         };
@@ -225,7 +227,8 @@ magnetic_gears:
             at("modulator"),
             at("outer"),
         ));
-        let compliance: f64 = turning.iter().map(|(_, inertia, count)| count * count / inertia).sum();
+        let compliance: f64 =
+            turning.iter().map(|(_, inertia, count)| count * count / inertia).sum();
         close(rad(&found, 0), (16.0 / 22.0 * compliance).sqrt(), 1e-12);
         assert!((found.modes[0].frequency_hz - printed).abs() < 5e-5, "{printed}");
         assert_eq!(found.free.len(), free.len() - 1);
@@ -315,9 +318,8 @@ fn spec(yaml: &str, equations: &Equations) -> (ModesSpec, String) {
     let node = crate::analysis::testing::node(yaml);
     let faults = RefCell::new(crate::diagnostic::Diagnostics::new());
     let known = Known::all(&equations.model.channels);
-    let spec = Fields::read("studies.m.modes", &node, &faults, |fields| {
-        ModesSpec::read(fields, known)
-    });
+    let spec =
+        Fields::read("studies.m.modes", &node, &faults, |fields| ModesSpec::read(fields, known));
     let told: Vec<String> =
         faults.borrow().iter().map(|fault| format!("{}: {}", fault.path, fault.message)).collect();
     (spec, told.join("\n"))
@@ -355,7 +357,11 @@ fn the_interference_diagram_has_the_orders_of_the_train() {
     };
     // 2 x 1500 rpm = 50 Hz against 44.514 Hz.
     close(crossing("2 x fast").separation.unwrap(), 1.0 - 44.514266999 / 50.0, 1e-9);
-    close(crossing("2 x fast").speed.unwrap() * 30.0 / std::f64::consts::PI, 44.514266999 * 30.0, 1e-10);
+    close(
+        crossing("2 x fast").speed.unwrap() * 30.0 / std::f64::consts::PI,
+        44.514266999 * 30.0,
+        1e-10,
+    );
     close(crossing("mains").separation.unwrap(), 1.0 - 44.514266999 / 50.0, 1e-9);
     assert_eq!(crossing("mains").speed, None);
     assert_eq!(found.met, Some(true));
@@ -367,7 +373,10 @@ fn the_interference_diagram_has_the_orders_of_the_train() {
 fn faults_of_the_study_are_told_where_they_stand() {
     let equations = equations(GEAR);
     for (yaml, message) in [
-        ("{ of: fats, speed_range: [0 rpm, 9 rpm] }", "studies.m.modes.of: no body is named `fats`"),
+        (
+            "{ of: fats, speed_range: [0 rpm, 9 rpm] }",
+            "studies.m.modes.of: no body is named `fats`",
+        ),
         ("{ of: fast }", "`speed_range` is missing"),
         ("{ speed_range: [9 rpm, 0 rpm], of: fast }", "must go from a lower to a higher value"),
         ("{ point: start }", "`point` is `steady` or a time of the run, not `start`"),

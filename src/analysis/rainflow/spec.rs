@@ -48,11 +48,17 @@ impl RainflowSpec {
             1.0,
             "Cycles of the damage-equivalent range that do the same damage.",
         );
-        let gate = fields.raw("gate", Shape::OfChannel, false, "Swings smaller than this are not counted; by default only rounding is left out.");
+        let gate = fields.raw(
+            "gate",
+            Shape::OfChannel,
+            false,
+            "Swings smaller than this are not counted; by default only rounding is left out.",
+        );
         let gate = match (gate, dimension) {
             (Some(node), Some(dimension)) => {
                 let path = fields.path_of("gate");
-                let value = quantity::read(&path, node, dimension, &mut fields.faults().borrow_mut());
+                let value =
+                    quantity::read(&path, node, dimension, &mut fields.faults().borrow_mut());
                 if value < 0.0 {
                     fields.fault("gate", "`gate` must not be negative");
                 }
@@ -70,7 +76,12 @@ impl RainflowSpec {
         {
             fields.fault("before", "`before` must lie after `after`");
         }
-        let bins = fields.whole_optional("bins", 1, 1000, "Bins of the histogram and the range-mean table; default 20.");
+        let bins = fields.whole_optional(
+            "bins",
+            1,
+            1000,
+            "Bins of the histogram and the range-mean table; default 20.",
+        );
         fields.note_default(USUAL_BINS as f64);
         let at_most = limit(
             fields,

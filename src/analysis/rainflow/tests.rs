@@ -2,8 +2,8 @@
 
 use super::*;
 use crate::analysis::testing::{equations, node};
-use crate::diagnostic::Diagnostics;
 use crate::component::channel::Known;
+use crate::diagnostic::Diagnostics;
 use crate::tree::Fields;
 use std::cell::RefCell;
 
@@ -99,7 +99,8 @@ solver: { tolerance: 1e-11 }
 shafts: { s: { between: [a, b], stiffness: 200 } }",
     );
     // w = sqrt(2 k/J) = 20 rad/s, twist amplitude 4/20 rad, torque 40 N m: 9.2 periods in 2.9 s.
-    let whole: Vec<f64> = found.cycles.iter().map(|cycle| cycle.range).filter(|range| *range > 79.0).collect();
+    let whole: Vec<f64> =
+        found.cycles.iter().map(|cycle| cycle.range).filter(|range| *range > 79.0).collect();
     assert!(whole.len() >= 17, "{}", whole.len());
     for range in whole {
         assert!((range - 80.0).abs() < 1e-7, "{range}");

@@ -4,9 +4,7 @@ use super::draws;
 use super::outcome::{Layout, Outcome};
 use super::results::{MonteCarloAnswer, Quantiles, SHARES, Sensitivity};
 use super::spec::MonteCarlo;
-use super::statistics::{
-    draws_for_width, draws_to_tell, quantile, rank_correlation, wilson,
-};
+use super::statistics::{draws_for_width, draws_to_tell, quantile, rank_correlation, wilson};
 use super::work::{Row, Stop, Task, Work};
 
 /// Runs the study.
@@ -62,7 +60,9 @@ fn answer(study: &MonteCarlo, layout: &Layout, rows: &[Row]) -> MonteCarloAnswer
         quantiles: measures.iter().map(|measure| scatter(measure, &known)).collect(),
         sensitivity: measures
             .iter()
-            .map(|measure| sensitivity(&measure.of, study, &known, &|outcome| measure.value(outcome)))
+            .map(|measure| {
+                sensitivity(&measure.of, study, &known, &|outcome| measure.value(outcome))
+            })
             .chain([sensitivity("slips", study, &known, &|outcome| {
                 Some(f64::from(outcome.slips()))
             })])
@@ -121,8 +121,7 @@ fn measures(layout: &Layout) -> Vec<Measure> {
 }
 
 fn scatter(measure: &Measure, rows: &[&Row]) -> Quantiles {
-    let mut values: Vec<f64> =
-        rows.iter().filter_map(|row| measure.value(&row.outcome)).collect();
+    let mut values: Vec<f64> = rows.iter().filter_map(|row| measure.value(&row.outcome)).collect();
     values.sort_by(f64::total_cmp);
     let finite = |value: Option<&f64>| value.copied().filter(|value| value.is_finite());
     Quantiles {

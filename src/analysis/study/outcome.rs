@@ -18,8 +18,7 @@ pub struct Layout {
 impl Layout {
     /// What all these scenarios together are asked for.
     pub fn of<'s>(scenarios: impl Iterator<Item = &'s Scenario>, asked: &[String]) -> Self {
-        let mut layout =
-            Self { requirements: Vec::new(), gears: Vec::new(), channels: Vec::new() };
+        let mut layout = Self { requirements: Vec::new(), gears: Vec::new(), channels: Vec::new() };
         for scenario in scenarios {
             for requirement in &scenario.requirements {
                 let unit = unit_of(requirement, scenario);

@@ -59,11 +59,7 @@ pub fn layout(loaded: &Loaded, study: &Study) -> Layout {
 ///
 /// # Errors
 /// [`Stop`] when not all its runs could be made.
-pub fn run(
-    loaded: &Loaded,
-    study: &Study,
-    options: StudyOptions<'_>,
-) -> Result<StudyResult, Stop> {
+pub fn run(loaded: &Loaded, study: &Study, options: StudyOptions<'_>) -> Result<StudyResult, Stop> {
     let base = without_studies(&loaded.node);
     let mut setting = Setting {
         base: &base,

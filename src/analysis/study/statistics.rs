@@ -81,9 +81,9 @@ fn ranks(values: &[f64]) -> Vec<f64> {
     order.sort_by(|a, b| at(a).total_cmp(&at(b)));
     let mut ranks = vec![0.0; values.len()];
     for tied in order.chunk_by(|a, b| at(a) == at(b)) {
-        let first = tied.first().map_or(0.0, |first| {
-            order.partition_point(|place| at(place) < at(first)) as f64
-        });
+        let first = tied
+            .first()
+            .map_or(0.0, |first| order.partition_point(|place| at(place) < at(first)) as f64);
         let shared = first + 0.5 * (tied.len() as f64 + 1.0);
         for place in tied {
             if let Some(rank) = ranks.get_mut(*place) {

@@ -101,8 +101,7 @@ fn sharpen(scenario: &mut Scenario) {
 
 /// Channels to follow: those of the table, and the load angles, whose peaks stand in it.
 fn wanted(layout: &Layout, channels: &[crate::component::channel::Channel]) -> Vec<usize> {
-    let is_angle =
-        |kind| matches!(kind, ChannelKind::Magnetic(_, MagneticChannel::LoadAngle));
+    let is_angle = |kind| matches!(kind, ChannelKind::Magnetic(_, MagneticChannel::LoadAngle));
     channels
         .iter()
         .enumerate()

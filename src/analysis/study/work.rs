@@ -145,15 +145,7 @@ impl<'a, 's> Work<'a, 's> {
         layout: Layout,
         expected: usize,
     ) -> Self {
-        Self {
-            setting,
-            varied,
-            layout,
-            rows: Vec::new(),
-            cost: Cost::default(),
-            kept: 0,
-            expected,
-        }
+        Self { setting, varied, layout, rows: Vec::new(), cost: Cost::default(), kept: 0, expected }
     }
 
     /// Makes runs and returns the number of the first; those known before are not repeated.
@@ -162,9 +154,8 @@ impl<'a, 's> Work<'a, 's> {
     /// [`Stop`] when not all of them could be made.
     pub fn batch(&mut self, tasks: &[Task<'_>]) -> Result<usize, Stop> {
         let first = self.rows.len();
-        let mut outcomes: Vec<Option<Outcome>> = (first..first + tasks.len())
-            .map(|number| self.setting.known.remove(&number))
-            .collect();
+        let mut outcomes: Vec<Option<Outcome>> =
+            (first..first + tasks.len()).map(|number| self.setting.known.remove(&number)).collect();
         let missing: Vec<usize> =
             (0..tasks.len()).filter(|place| outcomes[*place].is_none()).collect();
         self.kept += tasks.len() - missing.len();
@@ -176,9 +167,9 @@ impl<'a, 's> Work<'a, 's> {
         if outcomes.iter().any(Option::is_none) {
             return Err(stopped.unwrap_or(Stop::Interrupted));
         }
-        self.rows.extend(tasks.iter().zip(outcomes).filter_map(|(task, outcome)| {
-            Some(row(task, outcome?))
-        }));
+        self.rows.extend(
+            tasks.iter().zip(outcomes).filter_map(|(task, outcome)| Some(row(task, outcome?))),
+        );
         if let Some(stop) = stopped {
             return Err(stop);
         }

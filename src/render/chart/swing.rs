@@ -164,6 +164,13 @@ fn range(input: &SwingChart) -> ([f64; 2], ticks::Ticks) {
 /// range of speeds by then.
 fn caught_region(separatrix: &Separatrix, [low, high]: [f64; 2]) -> Vec<[f64; 2]> {
     let far = 10.0 * (high - low).abs();
+    // Borders that meet close the region there.
+    let meet = |one: Option<&[f64; 2]>, other: Option<&[f64; 2]>| {
+        one.zip(other).is_some_and(|(one, other)| (one[0] - other[0]).abs() < 1e-6)
+    };
+    let (upper, lower) = (&separatrix.upper, &separatrix.lower);
+    let closed = [meet(upper.first(), lower.first()), meet(upper.last(), lower.last())];
+    let at_side = |end: [f64; 2]| (end[0].abs() - 180.0).abs() < 0.5;
     let widened = |border: &[[f64; 2]], beyond: f64| {
         let mut border = degrees(border);
         border.sort_by(|one, two| one[0].total_cmp(&two[0]));
@@ -172,8 +179,12 @@ fn caught_region(separatrix: &Separatrix, [low, high]: [f64; 2]) -> Vec<[f64; 2]
         };
         let (first, last) = (border.first().copied(), border.last().copied());
         if let (Some(first), Some(last)) = (first, last) {
-            border.insert(0, [-180.0, held(first)]);
-            border.push([180.0, held(last)]);
+            if !closed[0] || at_side(first) {
+                border.insert(0, [-180.0, held(first)]);
+            }
+            if !closed[1] || at_side(last) {
+                border.push([180.0, held(last)]);
+            }
         }
         border
     };

@@ -26,12 +26,18 @@ pub fn verdict(answer: &Answer) -> Option<String> {
     match answer {
         Answer::Margin(answer) => {
             let limit = format!("a margin of at least {}", percent(answer.at_least?));
-            Some(told(answer.met, limit, "no requirement fails up to the end of the range, which comes too early"))
+            Some(told(
+                answer.met,
+                limit,
+                "no requirement fails up to the end of the range, which comes too early",
+            ))
         }
         Answer::MonteCarlo(answer) => {
             let limit = format!("slipping in at most {}", percent(answer.slipping_at_most?));
             let unknown = match (answer.failed, answer.draws_to_tell) {
-                (0, Some(draws)) => format!("the interval holds the limit: about {draws} draws would tell"),
+                (0, Some(draws)) => {
+                    format!("the interval holds the limit: about {draws} draws would tell")
+                }
                 (0, None) => "the interval holds the limit".to_owned(),
                 (failed, _) => format!("{failed} draws came to nothing and may have slipped"),
             };

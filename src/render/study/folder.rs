@@ -124,7 +124,8 @@ impl StudyFolder {
         rows: &[Row],
         answer: &str,
     ) -> Result<(), FolderFault> {
-        let told = |error: std::io::Error| FolderFault::disk(&format!("the study `{name}`"), &error);
+        let told =
+            |error: std::io::Error| FolderFault::disk(&format!("the study `{name}`"), &error);
         let beside = self.path.join(format!(".{name}.new"));
         let write_table = || -> std::io::Result<()> {
             let mut out = BufWriter::new(fs::File::create(&beside)?);

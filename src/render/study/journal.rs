@@ -59,10 +59,7 @@ pub fn read(path: &Path, mark: &str, columns: &Columns) -> Result<Found, FolderF
 ///
 /// # Errors
 /// The fault of the disk.
-pub fn read_table(
-    path: &Path,
-    columns: &Columns,
-) -> Result<BTreeMap<usize, Outcome>, FolderFault> {
+pub fn read_table(path: &Path, columns: &Columns) -> Result<BTreeMap<usize, Outcome>, FolderFault> {
     let text = fs::read_to_string(path).map_err(|error| unread(path, &error))?;
     Ok(runs(&text, columns))
 }

@@ -22,10 +22,9 @@ pub fn study(result: &StudyResult, work: &str) -> Value {
     put("verdict", result.answer.verdict().flatten().map_or(Value::Null, Value::from));
     let inside = match &result.answer {
         Answer::Margin(margin) => margin_answer(margin, result),
-        Answer::LoadCases(cases) => vec![
-            ("cases", load_cases(&cases.cases, result)),
-            ("met", Value::from(cases.met)),
-        ],
+        Answer::LoadCases(cases) => {
+            vec![("cases", load_cases(&cases.cases, result)), ("met", Value::from(cases.met))]
+        }
         Answer::Sweep(sweep) => sweep_answer(sweep, result),
         Answer::MonteCarlo(monte_carlo) => monte_carlo_answer(monte_carlo),
     };
@@ -129,9 +128,11 @@ fn load_cases(cases: &[CaseAnswer], result: &StudyResult) -> Value {
             ("about", case.about.as_deref().map_or(Value::Null, Value::from)),
             (
                 "changes",
-                named(case.changes.iter().map(|(path, text)| {
-                    (path.as_str(), Value::from(text.as_str()))
-                })),
+                named(
+                    case.changes
+                        .iter()
+                        .map(|(path, text)| (path.as_str(), Value::from(text.as_str()))),
+                ),
             ),
             ("requirements", requirements(&case.requirements)),
             ("use_of_limit", use_of_limit),

@@ -2,7 +2,7 @@
 
 pub mod answer;
 pub mod folder;
-pub mod json;
 pub mod journal;
+pub mod json;
 pub mod rows;
 pub mod text;

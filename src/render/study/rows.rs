@@ -91,8 +91,9 @@ impl Columns {
         for channel in &outcome.channels {
             match channel {
                 None => cells.extend(std::iter::repeat_n(String::new(), 5)),
-                Some(it) => cells
-                    .extend([it.min, it.min_time, it.max, it.max_time, it.last].map(plain)),
+                Some(it) => {
+                    cells.extend([it.min, it.min_time, it.max, it.max_time, it.last].map(plain))
+                }
             }
         }
         cells.push(plain(outcome.end_time));

@@ -130,11 +130,17 @@ fn quantiles(answer: &MonteCarloAnswer, scenario: &Scenario, shown: Shown<'_>) -
     for scatter in &answer.quantiles {
         let of = channel_of(&scatter.of, scenario);
         let figure = |value: f64| {
-            if value.is_finite() { shown.value(&of, scatter.unit, value) } else { "never".to_owned() }
+            if value.is_finite() {
+                shown.value(&of, scatter.unit, value)
+            } else {
+                "never".to_owned()
+            }
         };
         let at = |share: f64| {
             let place = SHARES.iter().position(|known| *known == share);
-            place.and_then(|place| scatter.values.get(place)).map_or("-".to_owned(), |it| figure(*it))
+            place
+                .and_then(|place| scatter.values.get(place))
+                .map_or("-".to_owned(), |it| figure(*it))
         };
         let end = |value: Option<f64>| value.map_or_else(|| "never".to_owned(), figure);
         let largest = if scatter.never > 0 { "never".to_owned() } else { end(scatter.max) };
@@ -147,8 +153,11 @@ fn sensitivities(answer: &MonteCarloAnswer) -> Table {
     let mut table = Table::new("<<>");
     table.row(["value", "goes most with", "rank correlation"]);
     for found in &answer.sensitivity {
-        let strongest =
-            found.correlations.iter().filter_map(|(path, it)| Some((path, (*it)?))).take(MOST_INPUTS);
+        let strongest = found
+            .correlations
+            .iter()
+            .filter_map(|(path, it)| Some((path, (*it)?)))
+            .take(MOST_INPUTS);
         for (place, (path, correlation)) in strongest.enumerate() {
             let of = if place == 0 { found.of.as_str() } else { "" };
             table.row([of, path.as_str(), &format_number(correlation, 2)]);

@@ -21,8 +21,7 @@ impl Axis {
         section: &str,
         context: Option<&Context<'_>>,
     ) -> Option<Self> {
-        let values =
-            fields.raw("values", Shape::Free, false, "The values one by one, as a list.");
+        let values = fields.raw("values", Shape::Free, false, "The values one by one, as a list.");
         let from = fields.raw("from", Shape::Free, false, "First of `count` even steps.");
         let to = fields.raw("to", Shape::Free, false, "Last of `count` even steps.");
         let count = fields.whole_optional("count", 2, 1_000_000, "How many values, 2 or more.");

@@ -15,7 +15,8 @@ pub fn read(fields: &mut Fields<'_>, context: Option<&Context<'_>>) -> Vec<Strin
             for (index, item) in items.iter().enumerate() {
                 let at = fields.path_of(&format!("channels.{index}"));
                 let Node::Text(name) = item else {
-                    let message = format!("the name of a channel is needed here, not {}", item.kind());
+                    let message =
+                        format!("the name of a channel is needed here, not {}", item.kind());
                     fields.fault(&format!("channels.{index}"), message);
                     continue;
                 };

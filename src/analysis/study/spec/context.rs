@@ -105,7 +105,13 @@ impl<'a> Context<'a> {
     }
 
     /// Tells what is wrong with changed values, if anything is: the first fault, at `at`.
-    pub fn try_values(&self, at: &str, spot: Spot, words: &str, changes: &[(&Varied, f64)]) -> bool {
+    pub fn try_values(
+        &self,
+        at: &str,
+        spot: Spot,
+        words: &str,
+        changes: &[(&Varied, f64)],
+    ) -> bool {
         if !self.builds {
             return true;
         }

@@ -76,7 +76,9 @@ fn read_case(fields: &mut Fields<'_>, context: Option<&Context<'_>>) -> Option<C
         context.fault(
             fields.path(),
             Spot::Key,
-            format!("`{name}` cannot be a name: a small letter first, then small letters, digits and _"),
+            format!(
+                "`{name}` cannot be a name: a small letter first, then small letters, digits and _"
+            ),
             None,
         );
         return None;
@@ -119,7 +121,8 @@ fn change(
         None | Some(Node::Null) => return Some((Vec::new(), true)),
         Some(Node::Map(entries)) => entries,
         Some(other) => {
-            fields.fault("changes", format!("`changes` must be a map of keys, not {}", other.kind()));
+            fields
+                .fault("changes", format!("`changes` must be a map of keys, not {}", other.kind()));
             return None;
         }
     };
@@ -178,7 +181,10 @@ fn require(fields: &Fields<'_>, node: Option<&Node>, tree: &mut Node) -> Option<
 fn tell(at: &str, changed: &[(String, String)], found: Diagnostics, context: &Context<'_>) {
     for fault in found.into_iter().filter(|fault| fault.severity.is_error()) {
         let change = changed.iter().map(|(path, _)| path).find(|path| {
-            fault.path.strip_prefix(path.as_str()).is_some_and(|rest| rest.is_empty() || rest.starts_with('.'))
+            fault
+                .path
+                .strip_prefix(path.as_str())
+                .is_some_and(|rest| rest.is_empty() || rest.starts_with('.'))
         });
         let (path, message) = if change.is_some() {
             (format!("{at}.changes.{}", fault.path), fault.message)

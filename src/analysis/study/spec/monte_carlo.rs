@@ -30,7 +30,12 @@ impl MonteCarlo {
     pub fn read(fields: &mut Fields<'_>, context: Option<&Context<'_>>) -> Option<Self> {
         let draws = fields.whole("draws", 1, MOST_DRAWS, "How many runs.");
         let seed = fields
-            .whole_optional("seed", 0, 1 << 53, "Seed of the draws; default 1. The same seed gives the same draws.")
+            .whole_optional(
+                "seed",
+                0,
+                1 << 53,
+                "Seed of the draws; default 1. The same seed gives the same draws.",
+            )
             .unwrap_or(1);
         let slipping_at_most = fields.quantity_optional(
             "slipping_at_most",
@@ -62,7 +67,10 @@ impl MonteCarlo {
             Some((_, Node::Null)) => 0,
             Some(_) => return None,
             None => {
-                fields.miss("spread", "for example spread: { bodies.rotor.inertia: { normal: { relative: 5 % } } }");
+                fields.miss(
+                    "spread",
+                    "for example spread: { bodies.rotor.inertia: { normal: { relative: 5 % } } }",
+                );
                 return None;
             }
         };

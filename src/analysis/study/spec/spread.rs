@@ -106,10 +106,9 @@ impl Spread {
             Distribution::Uniform | Distribution::Triangular => {
                 [self.middle - self.width, self.middle + self.width]
             }
-            Distribution::Lognormal => [
-                self.middle * (-CUT * self.width).exp(),
-                self.middle * (CUT * self.width).exp(),
-            ],
+            Distribution::Lognormal => {
+                [self.middle * (-CUT * self.width).exp(), self.middle * (CUT * self.width).exp()]
+            }
         };
         [low.min(high), low.max(high)]
     }
@@ -147,8 +146,7 @@ fn read_width(
     varied: &Varied,
     distribution: Distribution,
 ) -> Option<(f64, f64)> {
-    let relative =
-        fields.quantity_optional("relative", Dimension::One, Range::Positive, RELATIVE);
+    let relative = fields.quantity_optional("relative", Dimension::One, Range::Positive, RELATIVE);
     let absolute =
         fields.quantity_optional("absolute", varied.dimension, Range::Positive, ABSOLUTE);
     if fields.is_no_map() {

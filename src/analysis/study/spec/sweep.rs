@@ -49,7 +49,10 @@ impl Sweep {
         }
         let runs = axes.iter().fold(1_usize, |runs, axis| runs.saturating_mul(axis.values.len()));
         if runs > MOST_RUNS {
-            fields.fault("vary", format!("this makes {runs} runs; more than {MOST_RUNS} are a mistake"));
+            fields.fault(
+                "vary",
+                format!("this makes {runs} runs; more than {MOST_RUNS} are a mistake"),
+            );
             return None;
         }
         if let [first, second] = axes.as_slice() {

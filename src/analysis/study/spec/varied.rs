@@ -94,7 +94,5 @@ fn usual_unit(dimension: Dimension, display: &Display) -> &'static str {
         Dimension::Angle => Some(display.angle.as_str()),
         _ => None,
     };
-    wanted
-        .and_then(quantity::find_unit)
-        .map_or_else(|| dimension.si_unit(), |unit| unit.symbol)
+    wanted.and_then(quantity::find_unit).map_or_else(|| dimension.si_unit(), |unit| unit.symbol)
 }
