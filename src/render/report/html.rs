@@ -2,6 +2,7 @@
 
 use crate::render::chart::drawing::Drawing;
 pub use crate::render::chart::svg::escape;
+use serde_json::Value;
 
 /// Text made safe, with names between backticks as code.
 pub fn rich(text: &str) -> String {
@@ -144,14 +145,30 @@ pub struct Figures {
 impl Figures {
     /// A figure with its number, caption (safe HTML) and what stands behind it, folded.
     pub fn figure(&mut self, drawing: &Drawing, caption: &str, behind: &str) -> String {
+        self.with_data(drawing, caption, behind, None)
+    }
+
+    /// The same with the data of its curves, which the script reads.
+    pub fn with_data(
+        &mut self,
+        drawing: &Drawing,
+        caption: &str,
+        behind: &str,
+        data: Option<&Value>,
+    ) -> String {
         self.count += 1;
         let number = self.count;
+        // Within a script element only `<` could end the data early.
+        let data = data.map_or_else(String::new, |data| {
+            let text = data.to_string().replace('<', "\\u003c");
+            format!("<script type=\"application/json\" class=\"data\">{text}</script>\n")
+        });
         let svg = drawing.to_inline_svg(&format!("fig{number}"));
         let behind =
             if behind.is_empty() { String::new() } else { folded("Values as a table", behind) };
         format!(
             "<figure id=\"figure-{number}\" class=\"chart\">\n<div class=\"sheet\" tabindex=\"0\">{svg}</div>\n\
-             <figcaption><b>Figure {number}.</b> {caption}</figcaption>\n</figure>\n{behind}"
+             <figcaption><b>Figure {number}.</b> {caption}</figcaption>\n{data}</figure>\n{behind}"
         )
     }
 }

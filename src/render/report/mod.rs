@@ -30,6 +30,9 @@ use crate::scenario::{Scenario, Source};
 use crate::tree::Node;
 use html::{Figures, escape};
 
+/// Values under the pointer; nothing on the page depends on it.
+const SCRIPT: &str = include_str!("script.js");
+
 /// What a report is made of.
 pub struct Material<'a> {
     /// The scenario.
@@ -84,7 +87,7 @@ pub fn page(material: &Material<'_>) -> String {
         "<!DOCTYPE html>\n<html lang=\"en\">\n<head>\n<meta charset=\"utf-8\">\n\
          <meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n\
          <meta name=\"color-scheme\" content=\"light dark\">\n<title>{}</title>\n<style>\n{}</style>\n</head>\n\
-         <body>\n<main>\n{body}<p class=\"foot\">{} · a calculation, not a certificate</p>\n</main>\n</body>\n</html>\n",
+         <body>\n<main>\n{body}<p class=\"foot\">{} · a calculation, not a certificate</p>\n</main>\n<script>\n{SCRIPT}</script>\n</body>\n</html>\n",
         escape(title),
         style::css(&running_head(material, title)),
         concat!("lodeshaft ", env!("CARGO_PKG_VERSION")),

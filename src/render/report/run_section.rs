@@ -7,6 +7,7 @@ use super::verdict;
 use crate::render::chart::curve::Pieces;
 use crate::render::chart::number::capital;
 use crate::render::chart::pick;
+use crate::render::chart::run_data::run_data;
 use crate::render::chart::run_input::RunChart;
 use crate::render::shown;
 use crate::results::ChannelResult;
@@ -36,11 +37,11 @@ pub fn section(material: &Material<'_>, figures: &mut Figures) -> String {
 fn chart_figures(material: &Material<'_>, figures: &mut Figures) -> String {
     let mut html = String::new();
     for drawing in &material.drawings {
-        html.push_str(&figures.figure(
-            drawing,
-            &caption(&drawing.id),
-            &behind(material, &drawing.id),
-        ));
+        let caption = caption(&drawing.id);
+        let chart = chart(material, &drawing.id);
+        let behind = chart.as_ref().map_or_else(String::new, samples);
+        let data = chart.as_ref().map(run_data);
+        html.push_str(&figures.with_data(drawing, &caption, &behind, data.as_ref()));
     }
     if html.is_empty() { paragraph("No charts were asked for.") } else { html }
 }
@@ -69,14 +70,14 @@ fn caption(id: &str) -> String {
     escape(text)
 }
 
-/// The table behind a drawing over the whole run.
-fn behind(material: &Material<'_>, id: &str) -> String {
-    let Some(traces) = &material.result.traces else { return String::new() };
+/// The data of a drawing over the whole run.
+fn chart(material: &Material<'_>, id: &str) -> Option<RunChart> {
+    let traces = material.result.traces.as_ref()?;
     let display = material.written.chart_display();
     match id {
-        "run" => samples(&pick::run(material.result, traces, &material.train, &display, "run")),
-        "shafts" => samples(&pick::shafts(material.result, traces, &material.train, &display)),
-        _ => String::new(),
+        "run" => Some(pick::run(material.result, traces, &material.train, &display, "run")),
+        "shafts" => Some(pick::shafts(material.result, traces, &material.train, &display)),
+        _ => None,
     }
 }
 
