@@ -38,8 +38,8 @@ impl Case {
         let number = FOLDERS.fetch_add(1, Ordering::Relaxed);
         let name = format!("report-{}-{number}", std::process::id());
         let folder = Path::new(env!("CARGO_TARGET_TMPDIR")).join(name);
-        fs::create_dir_all(&folder).unwrap();
-        fs::write(folder.join("case.yaml"), text).unwrap();
+        fs::create_dir_all(&folder).expect("a folder for the test can be made");
+        fs::write(folder.join("case.yaml"), text).expect("the scenario can be written");
         Self { folder }
     }
 
@@ -49,11 +49,11 @@ impl Case {
             .args(arguments)
             .current_dir(&self.folder)
             .output()
-            .unwrap()
+            .expect("the program starts")
     }
 
     fn page(&self) -> String {
-        fs::read_to_string(self.folder.join("out/report.html")).unwrap()
+        fs::read_to_string(self.folder.join("out/report.html")).expect("the page is there")
     }
 }
 
@@ -120,6 +120,10 @@ fn the_page_asks_for_nothing_outside() {
             && page.contains("@media screen and (prefers-color-scheme:dark)")
     );
     assert!(page.contains("@page{"));
+    // The data behind the run's curves is JSON that nothing can end early.
+    let data = page.split("class=\"data\">").nth(1).unwrap().split("</script>").next().unwrap();
+    let data: Value = serde_json::from_str(data).unwrap();
+    assert!(data["panels"].as_array().unwrap().len() >= 3);
 }
 
 #[test]
