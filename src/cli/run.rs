@@ -150,7 +150,7 @@ fn write_run(
     Ok(Written { result, summary, files })
 }
 
-fn tell_warnings(source: &Source, warnings: &[Warning]) {
+pub(super) fn tell_warnings(source: &Source, warnings: &[Warning]) {
     let mut list = Diagnostics::new();
     for warning in warnings {
         list.warning(warning.path.as_str(), warning.text.as_str());
@@ -158,7 +158,7 @@ fn tell_warnings(source: &Source, warnings: &[Warning]) {
     streams::tell(&source.render(&list));
 }
 
-fn judge(result: &RunResult, interrupt: &Interrupt) -> Status {
+pub(super) fn judge(result: &RunResult, interrupt: &Interrupt) -> Status {
     if result.completed {
         let met = result.requirements.iter().all(|requirement| requirement.met == Some(true));
         if met { Status::Done } else { Status::NotMet }
@@ -169,7 +169,7 @@ fn judge(result: &RunResult, interrupt: &Interrupt) -> Status {
     }
 }
 
-fn tell_failure(result: &RunResult, status: Status) {
+pub(super) fn tell_failure(result: &RunResult, status: Status) {
     let Some(failure) = &result.failure else { return };
     let hint = "what was found up to then is written, with `completed: false`";
     match status {

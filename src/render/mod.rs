@@ -9,6 +9,7 @@ pub mod json;
 mod leftovers;
 pub mod number;
 pub mod poles;
+pub mod report;
 pub mod schema;
 pub mod series;
 pub mod shown;
