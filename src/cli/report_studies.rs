@@ -77,11 +77,7 @@ fn one(
 ) -> Result<(), FolderFault> {
     let loaded = &plan.loaded;
     let work = study::mark(loaded, study);
-    let label = match study.kind {
-        Kind::Margin(_) => Some("part"),
-        Kind::LoadCases(_) => Some("case"),
-        Kind::Sweep(_) | Kind::MonteCarlo(_) => None,
-    };
+    let label = study.kind.label();
     let columns = Columns::new(study::varied(study), study::layout(loaded, study), label);
     let mut begun = begin(place, &study.name, &work, &columns)?;
     let mut progress = StudyProgress::new(&study.name, common.quiet);
@@ -111,6 +107,9 @@ fn one(
             streams::complain(Severity::Warning, message, Some(hint));
             gathered.unfinished.push((study.name.clone(), "it was interrupted".to_owned()));
             gathered.status = gathered.status.max(Status::Interrupted);
+        }
+        Err(Stop::NoAnswer(reason)) => {
+            gathered.unfinished.push((study.name.clone(), reason));
         }
         Err(Stop::NotKept(reason)) => {
             return Err(FolderFault { message: reason, hint: None });

@@ -1,8 +1,8 @@
 //! How each channel follows from the state and the law values of one mode.
 
-use super::assembly::Parts;
 use super::holding::pseudo_inverse;
 use super::mode::{Contact, Mode};
+use super::parts::Parts;
 use super::{Equations, Owner, StateRow, Target};
 use crate::component::channel::{ChannelKind, MagneticChannel};
 use crate::model::{BodyRow, body_index, difference};

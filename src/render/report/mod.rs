@@ -5,6 +5,7 @@ mod figures;
 mod html;
 mod inputs;
 mod limits;
+mod one_run;
 mod reproduction;
 mod requirements;
 mod run_section;

@@ -3,7 +3,7 @@
 use super::Material;
 use super::figures::{percent, plain, tidy};
 use super::html::{Figures, HtmlTable, escape, list, paragraph, rich, verdict};
-use super::study_charts;
+use super::{one_run, study_charts};
 use crate::analysis::study::results::{
     Answer, LoadCasesAnswer, MonteCarloAnswer, SHARES, StudyResult, SweepAnswer,
 };
@@ -70,6 +70,9 @@ fn tables(material: &Material<'_>, study: &StudyResult) -> (String, String) {
         Answer::Margin(_) => (String::new(), runs(study)),
         Answer::Sweep(answer) => (sweep_words(answer), runs(study)),
         Answer::MonteCarlo(answer) => (monte_carlo(material, answer), String::new()),
+        Answer::Modes(answer) => (one_run::modes(material, answer), String::new()),
+        Answer::Rainflow(answer) => (String::new(), one_run::rainflow(answer)),
+        Answer::Estimates(answer) => (one_run::estimates(answer), String::new()),
     }
 }
 

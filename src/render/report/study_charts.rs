@@ -1,6 +1,7 @@
 //! From the answers of studies to their charts.
 
 use super::Material;
+use super::one_run;
 use super::requirements::use_of_limit;
 use crate::analysis::study::results::{
     Answer, LoadCasesAnswer, MarginAnswer, MonteCarloAnswer, StudyResult, SweepAnswer,
@@ -28,6 +29,9 @@ pub fn chart(material: &Material<'_>, study: &StudyResult) -> Option<(Drawing, S
         Answer::LoadCases(answer) => load_cases(study, answer),
         Answer::Sweep(answer) => sweep(study, answer),
         Answer::MonteCarlo(answer) => tolerance(material, study, answer),
+        Answer::Modes(answer) => one_run::diagram(material, &study.name, answer),
+        Answer::Rainflow(answer) => one_run::histogram(&study.name, answer),
+        Answer::Estimates(_) => None,
     }
 }
 
