@@ -5,15 +5,15 @@ use super::status::Status;
 use super::study_progress::StudyProgress;
 use super::{Common, streams};
 use crate::analysis::study::results::StudyResult;
-use crate::analysis::study::work::Stop;
-use crate::analysis::study::{self, Kind, Plan, Study, StudyOptions};
+use crate::analysis::study::work::{Blind, Forget, Stop};
+use crate::analysis::study::{self, Plan, Study, StudyOptions};
 use crate::diagnostic::Severity;
 use crate::render::folder::{Folder, FolderFault};
 use crate::render::json;
 use crate::render::report::carry;
 use crate::render::study::folder::{Begun, StudyFolder};
 use crate::render::study::rows::Columns;
-use crate::render::study::{json as study_json, text};
+use crate::render::study::{json as study_json, of_one_run as one_run, text};
 use crate::scenario::Scenario;
 use serde_json::{Map, Value};
 use std::path::Path;
@@ -77,6 +77,9 @@ fn one(
 ) -> Result<(), FolderFault> {
     let loaded = &plan.loaded;
     let work = study::mark(loaded, study);
+    if !study.kind.has_runs() {
+        return of_one_run(plan, study, place, &work, common, interrupt, gathered);
+    }
     let label = study.kind.label();
     let columns = Columns::new(study::varied(study), study::layout(loaded, study), label);
     let mut begun = begin(place, &study.name, &work, &columns)?;
@@ -113,6 +116,43 @@ fn one(
         }
         Err(Stop::NotKept(reason)) => {
             return Err(FolderFault { message: reason, hint: None });
+        }
+    }
+    Ok(())
+}
+
+/// A study of the train as typed, or of its one run: nothing to keep on the way.
+fn of_one_run(
+    plan: &Plan,
+    study: &Study,
+    place: &StudyFolder,
+    work: &str,
+    common: &Common,
+    interrupt: &Interrupt,
+    gathered: &mut Gathered,
+) -> Result<(), FolderFault> {
+    let options = StudyOptions {
+        threads: common.threads.map(usize::from),
+        interrupt: interrupt.flag(),
+        known: std::collections::BTreeMap::new(),
+        keep: &mut Forget,
+        watch: &mut Blind,
+    };
+    match study::run(&plan.loaded, study, options) {
+        Ok(result) => {
+            let answer = study_json::study(&result, work);
+            let table = one_run::table(&result);
+            place.write(&study.name, table.as_deref(), &json::pretty(&answer))?;
+            gathered.status = gathered.status.max(judge(&result));
+            gathered.answers.insert(study.name.clone(), answer);
+            gathered.results.push(result);
+        }
+        Err(Stop::Interrupted) => {
+            gathered.unfinished.push((study.name.clone(), "it was interrupted".to_owned()));
+            gathered.status = gathered.status.max(Status::Interrupted);
+        }
+        Err(Stop::NoAnswer(reason) | Stop::NotKept(reason)) => {
+            gathered.unfinished.push((study.name.clone(), reason));
         }
     }
     Ok(())

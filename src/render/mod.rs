@@ -1,6 +1,7 @@
 //! From results to files and text. Only this floor writes files.
 
 pub mod chart;
+mod chart_signals;
 pub mod charts;
 pub mod events;
 pub mod folder;

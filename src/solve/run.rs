@@ -7,12 +7,11 @@ use super::observer::Observer;
 use super::rhs::Rhs;
 use super::steady::{self, SteadyError};
 use super::watcher::Watcher;
-use super::{RunOptions, outcome, rest, step_cap};
-use crate::component::law::Law;
+use super::{RunOptions, outcome, rest};
 use crate::equations::assembly::{Assembly, assemble};
 use crate::equations::frame::{Evaluator, Frame};
 use crate::equations::mode::{FrictionMode, Mode};
-use crate::equations::{Equations, Shape, energy};
+use crate::equations::{Equations, energy};
 use crate::results::{RunResult, SolverWork};
 use crate::scenario::{Method, Start};
 use crate::signal::course::Overrides;
@@ -269,7 +268,7 @@ impl Run<'_, '_> {
         }
     }
 
-    fn any_at_rest(&self) -> bool {
+    pub(super) fn any_at_rest(&self) -> bool {
         self.mode.frictions.contains(&FrictionMode::Stuck)
     }
 
@@ -389,33 +388,5 @@ impl Run<'_, '_> {
             None => self.judge_rest = true,
         }
         false
-    }
-
-    fn step_cap(&mut self, evaluator: &Evaluator<'_>, end: f64) -> f64 {
-        let solver = self.equations.model.scenario.solver;
-        let (time, state) = (self.time, &self.state);
-        let stable = *self
-            .caps
-            .entry(self.mode.clone())
-            .or_insert_with(|| step_cap::stable_step(evaluator, solver.method, time, state));
-        let mut cap = stable.min(end - self.time);
-        if let Some(limit) = self.equations.bank.step_cap(self.time, end, &self.overrides) {
-            cap = cap.min(limit);
-        }
-        if let Some(limit) = solver.max_step {
-            cap = cap.min(limit);
-        }
-        if self.any_at_rest() {
-            cap = cap.min(self.equations.model.scenario.output_step);
-        }
-        // Laws over an angle: a sixth of a period at the working speed.
-        for term in &self.equations.terms {
-            if let Shape::Law(Law::Cogging { order, .. }) = &term.shape {
-                let fastest =
-                    self.equations.model.scales.body_speed.iter().fold(0.0_f64, |a, b| a.max(*b));
-                cap = cap.min(TAU / (6.0 * order * fastest));
-            }
-        }
-        cap
     }
 }

@@ -4,12 +4,16 @@ use super::guards::Guard;
 use super::rest;
 use super::rhs::Rhs;
 use super::run::Run;
+use super::step_cap;
+use crate::component::law::Law;
+use crate::equations::Shape;
 use crate::equations::assembly::Assembly;
 use crate::equations::energy;
 use crate::equations::frame::Evaluator;
 use crate::equations::mode::{Contact, FrictionMode};
 use crate::results::{Event, EventKind};
 use crate::scenario::Start;
+use std::f64::consts::TAU;
 
 impl Run<'_, '_> {
     /// Changes the mode after a guard has tripped.
@@ -139,5 +143,34 @@ impl Run<'_, '_> {
             return format!("the phase of `{}`", self.equations.model.magnets[magnet].name);
         }
         "a controller".to_owned()
+    }
+
+    /// The largest step of a segment: stability, signals, the file's own limit, rest.
+    pub(super) fn step_cap(&mut self, evaluator: &Evaluator<'_>, end: f64) -> f64 {
+        let solver = self.equations.model.scenario.solver;
+        let (time, state) = (self.time, &self.state);
+        let stable = *self
+            .caps
+            .entry(self.mode.clone())
+            .or_insert_with(|| step_cap::stable_step(evaluator, solver.method, time, state));
+        let mut cap = stable.min(end - self.time);
+        if let Some(limit) = self.equations.bank.step_cap(self.time, end, &self.overrides) {
+            cap = cap.min(limit);
+        }
+        if let Some(limit) = solver.max_step {
+            cap = cap.min(limit);
+        }
+        if self.any_at_rest() {
+            cap = cap.min(self.equations.model.scenario.output_step);
+        }
+        // Laws over an angle: a sixth of a period at the working speed.
+        for term in &self.equations.terms {
+            if let Shape::Law(Law::Cogging { order, .. }) = &term.shape {
+                let fastest =
+                    self.equations.model.scales.body_speed.iter().fold(0.0_f64, |a, b| a.max(*b));
+                cap = cap.min(TAU / (6.0 * order * fastest));
+            }
+        }
+        cap
     }
 }
