@@ -312,7 +312,7 @@ fn quiet_powers(equations: &Equations, mode: &Mode) -> QuietPowers {
         match mode.contacts[index] {
             Contact::Gap => {}
             _ if shaft.damping > 0.0 => {
-                powers.rate_losses.push((place, shaft.damping * scale * scale))
+                powers.rate_losses.push((place, shaft.damping * scale * scale));
             }
             _ => {}
         }

@@ -166,7 +166,7 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
             }
             match (&term.shape, magnet.fading) {
                 (super::Shape::Law(crate::component::law::Law::Magnet(_)), _) => {
-                    form.laws.push((place, -count))
+                    form.laws.push((place, -count));
                 }
                 (
                     super::Shape::Law(crate::component::law::Law::FadingDamper { .. }),

@@ -203,7 +203,7 @@ impl<'w, 'a> Watcher<'w, 'a> {
     fn prepare(&mut self, rhs: &Rhs<'_>) {
         let stages: Vec<&[f64]> = self.stages.iter().map(Vec::as_slice).collect();
         self.step.prepare(self.method, &stages, &mut |time, state, rates| {
-            rhs.system(time, state, rates)
+            rhs.system(time, state, rates);
         });
     }
 

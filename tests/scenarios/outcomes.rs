@@ -2,7 +2,7 @@
 //!
 //! Slips and states are exact; figures are recorded from the program and held to a percent, so
 //! that a change of the physics shows. What they ought to be stands in `stories`.
-//! `hoist_stop` was integrated apart with SciPy (DOP853 at 1e-9, brakes smoothed): 18 slips,
+//! `hoist_stop` was integrated apart with `SciPy` (DOP853 at 1e-9, brakes smoothed): 18 slips,
 //! pinion shaft 6.33 kN*m, drum 5.095 rad/s.
 
 use crate::runner::{all, run, same};

@@ -218,7 +218,7 @@ impl Search<'_> {
         }
         let at_rest = self.hold_at_rest(&speeds, &mut torque, &mut at_work)?;
         let left = self.motions.transpose() * &torque;
-        if left.len() > 0
+        if !left.is_empty()
             && left.amax() > 1e-8 * at_work.max(f64::MIN_POSITIVE) * self.motions.amax()
         {
             return Err(self.missing(left[left.icamax()], motion));
