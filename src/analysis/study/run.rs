@@ -4,7 +4,7 @@ use super::outcome::Layout;
 use super::results::{Answer, StudyResult};
 use super::spec::{Kind, Study, Varied, without_studies};
 use super::work::{Keep, Setting, Stop, Watch, Work};
-use super::{fingerprint, load_cases, margin, monte_carlo, sweep};
+use super::{fingerprint, load_cases, margin, monte_carlo, steady, sweep};
 use crate::analysis::study::outcome::Outcome;
 use crate::analysis::{estimates, modes, rainflow, transient};
 use crate::diagnostic::Diagnostics;
@@ -42,7 +42,11 @@ pub fn varied(study: &Study) -> Vec<Varied> {
         Kind::MonteCarlo(study) => {
             study.spreads.iter().map(|spread| spread.varied.clone()).collect()
         }
-        Kind::LoadCases(_) | Kind::Modes(_) | Kind::Rainflow(_) | Kind::Estimates(_) => Vec::new(),
+        Kind::LoadCases(_)
+        | Kind::Modes(_)
+        | Kind::Rainflow(_)
+        | Kind::Estimates(_)
+        | Kind::Steady(_) => Vec::new(),
     }
 }
 
@@ -56,7 +60,9 @@ pub fn layout(loaded: &Loaded, study: &Study) -> Layout {
         }
         Kind::Sweep(sweep) => Layout::of(file(), &sweep.channels),
         Kind::MonteCarlo(study) => Layout::of(file(), &study.channels),
-        Kind::Modes(_) | Kind::Rainflow(_) | Kind::Estimates(_) => Layout::of(file(), &[]),
+        Kind::Modes(_) | Kind::Rainflow(_) | Kind::Estimates(_) | Kind::Steady(_) => {
+            Layout::of(file(), &[])
+        }
     }
 }
 
@@ -80,7 +86,7 @@ pub fn run(loaded: &Loaded, study: &Study, options: StudyOptions<'_>) -> Result<
         Kind::LoadCases(cases) => cases.cases.len(),
         Kind::Sweep(sweep) => sweep::expected(sweep),
         Kind::MonteCarlo(study) => study.draws,
-        Kind::Modes(_) | Kind::Rainflow(_) | Kind::Estimates(_) => 1,
+        Kind::Modes(_) | Kind::Rainflow(_) | Kind::Estimates(_) | Kind::Steady(_) => 1,
     };
     let interrupt = options.interrupt;
     let varied = varied(study);
@@ -90,7 +96,7 @@ pub fn run(loaded: &Loaded, study: &Study, options: StudyOptions<'_>) -> Result<
         Kind::LoadCases(cases) => Answer::LoadCases(load_cases::run(cases, &mut work)?),
         Kind::Sweep(sweep) => Answer::Sweep(sweep::run(sweep, &mut work)?),
         Kind::MonteCarlo(study) => Answer::MonteCarlo(monte_carlo::run(study, &mut work)?),
-        Kind::Modes(_) | Kind::Rainflow(_) | Kind::Estimates(_) => {
+        Kind::Modes(_) | Kind::Rainflow(_) | Kind::Estimates(_) | Kind::Steady(_) => {
             of_one_run(loaded, study, interrupt)?
         }
     };
@@ -127,6 +133,7 @@ fn of_one_run(loaded: &Loaded, study: &Study, interrupt: &AtomicBool) -> Result<
             }
             Ok(Answer::Estimates(estimates::run(spec, &equations, &found)))
         }
+        Kind::Steady(spec) => steady::run(spec, loaded, interrupt).map(Answer::Steady),
         Kind::Margin(_) | Kind::LoadCases(_) | Kind::Sweep(_) | Kind::MonteCarlo(_) => {
             Err(Stop::NoAnswer("this study stands on many runs".to_owned()))
         }

@@ -1,5 +1,6 @@
 //! The answer of a study in one sentence, and what a reader must know beside it.
 
+use super::steady;
 use crate::analysis::estimates::EstimatesResult;
 use crate::analysis::modes::ModesResult;
 use crate::analysis::rainflow::RainflowResult;
@@ -19,6 +20,7 @@ pub fn sentence(result: &StudyResult) -> String {
         Answer::Modes(answer) => modes(answer),
         Answer::Rainflow(answer) => rainflow(answer),
         Answer::Estimates(answer) => estimates(answer),
+        Answer::Steady(answer) => steady::sentence(answer),
     }
 }
 
@@ -57,7 +59,7 @@ pub fn verdict(answer: &Answer) -> Option<String> {
             let limit = format!("a range of at most {}", unit_of(answer, answer.limit?));
             Some(told(answer.met, limit, "nothing was counted"))
         }
-        Answer::LoadCases(_) | Answer::Sweep(_) | Answer::Estimates(_) => None,
+        Answer::LoadCases(_) | Answer::Sweep(_) | Answer::Estimates(_) | Answer::Steady(_) => None,
     }
 }
 
@@ -78,7 +80,7 @@ pub fn notes(result: &StudyResult) -> Vec<String> {
                 notes.extend(gear.notes.iter().map(|note| format!("`{}`: {note}", gear.gear)));
             }
         }
-        Answer::LoadCases(_) | Answer::Sweep(_) | Answer::Rainflow(_) => {}
+        Answer::LoadCases(_) | Answer::Sweep(_) | Answer::Rainflow(_) | Answer::Steady(_) => {}
     }
     let failed: Vec<&str> =
         result.outcomes().filter_map(|outcome| outcome.failure.as_deref()).collect();

@@ -1,6 +1,6 @@
 //! The answer of a study for machines: SI and rad.
 
-use super::{answer, of_one_run};
+use super::{answer, of_one_run, steady};
 use crate::analysis::study::outcome::{GearFound, Outcome};
 use crate::analysis::study::results::{
     Answer, CaseAnswer, MarginAnswer, MonteCarloAnswer, SHARES, Sensitivity, StudyResult,
@@ -30,6 +30,7 @@ pub fn study(result: &StudyResult, work: &str) -> Value {
         Answer::Modes(modes) => of_one_run::modes(modes),
         Answer::Rainflow(rainflow) => of_one_run::rainflow(rainflow),
         Answer::Estimates(estimates) => of_one_run::estimates(estimates),
+        Answer::Steady(points) => steady::entries(points),
     };
     for (key, value) in inside {
         put(key, value);
@@ -61,6 +62,7 @@ pub fn kind(answer: &Answer) -> &'static str {
         Answer::Modes(_) => "modes",
         Answer::Rainflow(_) => "rainflow",
         Answer::Estimates(_) => "estimates",
+        Answer::Steady(_) => "steady",
     }
 }
 

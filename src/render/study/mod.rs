@@ -6,4 +6,5 @@ pub mod journal;
 pub mod json;
 pub mod of_one_run;
 pub mod rows;
+pub mod steady;
 pub mod text;

@@ -1,6 +1,7 @@
 //! Studies of the train as typed or of its one run, as JSON and as tables.
 
 use super::journal::line;
+use super::steady;
 use crate::analysis::estimates::{Comparison, EstimatesResult, GearEstimate, Variant};
 use crate::analysis::modes::{Mode, ModesResult, RealRoot};
 use crate::analysis::rainflow::RainflowResult;
@@ -25,6 +26,7 @@ pub fn table(result: &StudyResult) -> Option<String> {
             }
             Some(text)
         }
+        Answer::Steady(answer) => Some(steady::table(answer)),
         _ => None,
     }
 }

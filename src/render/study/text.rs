@@ -1,6 +1,6 @@
 //! Studies for people: the answer in one sentence, then what it stands on.
 
-use super::{answer, json};
+use super::{answer, json, steady};
 use crate::analysis::estimates::EstimatesResult;
 use crate::analysis::modes::ModesResult;
 use crate::analysis::rainflow::RainflowResult;
@@ -35,6 +35,7 @@ pub fn summary(result: &StudyResult, scenario: &Scenario) -> String {
         Answer::Modes(answer) => modes(answer),
         Answer::Rainflow(answer) => cycles(answer),
         Answer::Estimates(answer) => estimates(answer),
+        Answer::Steady(answer) => steady::text(answer, shown),
     };
     if table.len() > 1 {
         text.push('\n');

@@ -7,6 +7,7 @@ mod load_cases;
 mod margin;
 mod monte_carlo;
 mod spread;
+mod steady;
 mod sweep;
 mod varied;
 
@@ -16,6 +17,7 @@ pub use load_cases::{Case, LoadCases};
 pub use margin::Margin;
 pub use monte_carlo::MonteCarlo;
 pub use spread::{CUT, Distribution, Spread};
+pub use steady::Steady;
 pub use sweep::Sweep;
 pub use varied::Varied;
 
@@ -51,6 +53,8 @@ pub enum Kind {
     Rainflow(RainflowSpec),
     /// Figures by hand beside the run.
     Estimates(EstimatesSpec),
+    /// The operating point.
+    Steady(Steady),
 }
 
 impl Kind {
@@ -77,7 +81,7 @@ struct Entry {
 }
 
 /// Every kind of study.
-const KINDS: [Entry; 7] = [
+const KINDS: [Entry; 8] = [
     Entry {
         key: "margin",
         doc: "How far a number of the file can go before a requirement fails.",
@@ -124,6 +128,11 @@ const KINDS: [Entry; 7] = [
             let _ = fields.source();
             Some(Kind::Estimates(spec))
         },
+    },
+    Entry {
+        key: "steady",
+        doc: "The operating point as a table, over a range of one number if asked.",
+        read: |fields, context| Steady::read(fields, context).map(Kind::Steady),
     },
 ];
 
