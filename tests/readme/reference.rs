@@ -50,6 +50,10 @@ impl Rows {
                 }
                 Shape::List(inside) => self.add(&format!("{key}.0"), inside, true),
                 Shape::Choice(inside) => self.add(&key, inside, false),
+                // Those of the file itself have tables of their own.
+                Shape::Section(inside) if !path.is_empty() => {
+                    self.add(&format!("{key}.NAME"), inside, true);
+                }
                 _ => {}
             }
         }

@@ -78,10 +78,7 @@ fn conveyor_stop_reverses_the_torque_as_rigid_bodies_do() {
 
 #[test]
 fn conveyor_slips_when_the_same_brake_closes_at_once() {
-    let sudden = run(
-        "conveyor_stop",
-        &["brakes.stop.applied={ step: { at: 1 s, from: 0, to: 1 } }", "duration=2 s"],
-    );
+    let sudden = run("conveyor_stop", &["brakes.stop.applied.ramp.end=1.001 s", "duration=2 s"]);
     assert!(sudden.slips("gear") > 0);
 }
 
@@ -169,8 +166,9 @@ fn bench_reads_the_pull_out_torque_of_the_coupling() {
 
 #[test]
 fn fan_slips_when_switched_straight_onto_the_line() {
-    let direct =
-        run("fan_soft_start", &["motors.fan_motor.law.rating_plate.voltage=1", "duration=3 s"]);
+    let voltage = "motors.fan_motor.law.rating_plate.voltage.ramp";
+    let full = [&format!("{voltage}.from=1"), &format!("{voltage}.to=1"), "duration=3 s"];
+    let direct = run("fan_soft_start", &full);
     assert!(direct.slips("gear") > 0);
     assert_ne!(direct.state("gear"), "synchronous");
 }
