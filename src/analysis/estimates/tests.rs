@@ -1,5 +1,7 @@
 //! Estimates of whole trains against closed forms and worked values.
 
+#![expect(clippy::float_cmp, reason = "exact zeros and counts")]
+
 use super::*;
 use crate::analysis::testing::equations;
 use crate::solve::{RunOptions, run};
