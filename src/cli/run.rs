@@ -11,7 +11,7 @@ use crate::render::folder::{Folder, FolderFault};
 use crate::render::series::SeriesWriter;
 use crate::render::{charts, events, json, text};
 use crate::results::{RunResult, Warning};
-use crate::scenario::{Loaded, Source};
+use crate::scenario::{self, Loaded, Source};
 use crate::solve::{RunOptions, Wanted};
 use clap::Args;
 use std::path::{Path, PathBuf};
@@ -34,8 +34,14 @@ pub enum Trouble {
 /// Runs the command.
 pub fn run(arguments: &RunArguments, common: &Common) -> Status {
     let interrupt = Interrupt::listen();
-    let loaded = match study::load(&arguments.file, &common.sets) {
-        Ok(plan) => plan.loaded,
+    // A change by --set may take away what a study varies: that concerns the studies, not this run.
+    let read = if common.sets.is_empty() {
+        study::load(&arguments.file, &common.sets).map(|plan| plan.loaded)
+    } else {
+        scenario::load(&arguments.file, &common.sets)
+    };
+    let loaded = match read {
+        Ok(loaded) => loaded,
         Err(failure) => {
             streams::tell(&failure.render());
             return Status::Fault;

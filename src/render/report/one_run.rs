@@ -5,6 +5,8 @@ use super::html::{HtmlTable, escape};
 use crate::analysis::estimates::EstimatesResult;
 use crate::analysis::modes::ModesResult;
 use crate::analysis::rainflow::RainflowResult;
+use crate::analysis::study::results::SteadyAnswer;
+use crate::quantity::to_unit;
 use crate::render::chart::axes::Sheet;
 use crate::render::chart::drawing::Drawing;
 use crate::render::chart::interference::{Crossing, Interference, Mode, Order, interference_chart};
@@ -173,4 +175,56 @@ pub fn histogram(name: &str, answer: &RainflowResult) -> Option<(Drawing, String
         sheet: Sheet::PAGE,
     });
     Some((drawing, "Cycles by range (ASTM E1049), with the damage-equivalent range.".to_owned()))
+}
+
+/// Operating points: speeds, and how near each magnet stands to its pull-out.
+pub fn steady(material: &Material<'_>, answer: &SteadyAnswer) -> String {
+    let display = charts::display(material.scenario);
+    let head = ["Point", "Thing", "Speed or torque", "Power", "Share of pull-out"];
+    let mut table = HtmlTable::new("<<>>>", &head);
+    for point in &answer.points {
+        let mut name = match (&answer.varied, point.value) {
+            (Some(varied), Some(value)) => {
+                let shown = to_unit(value, varied.dimension, varied.unit).unwrap_or(value);
+                format!("{}{NBSP}{}", number(shown, 4), escape(varied.unit))
+            }
+            _ => "as typed".to_owned(),
+        };
+        let found = match &point.point {
+            Ok(found) => found,
+            Err(reason) => {
+                table.row([name, escape(reason), "–".to_owned(), "–".to_owned(), "–".to_owned()]);
+                continue;
+            }
+        };
+        let torque = |value: f64| {
+            format!("{}{NBSP}{}", number(display.torque.of(value), 4), display.torque.text)
+        };
+        for (body, speed) in &found.bodies {
+            let speed =
+                format!("{}{NBSP}{}", number(display.speed.of(*speed), 4), display.speed.text);
+            let cells = [escape(&words(body)), speed, String::new(), String::new()];
+            table.row(std::iter::once(std::mem::take(&mut name)).chain(cells));
+        }
+        for actor in &found.actors {
+            let power = format!("{}{NBSP}W", number(actor.power, 4));
+            table.row([
+                String::new(),
+                escape(&words(&actor.name)),
+                torque(actor.torque),
+                power,
+                String::new(),
+            ]);
+        }
+        for magnet in &found.magnets {
+            table.row([
+                String::new(),
+                escape(&words(&magnet.name)),
+                format!("{}{NBSP}° electrical", number(magnet.load_angle.to_degrees(), 4)),
+                format!("{}{NBSP}W lost", number(magnet.loss, 3)),
+                percent(magnet.pull_out_share),
+            ]);
+        }
+    }
+    table.html()
 }

@@ -31,7 +31,7 @@ pub fn chart(material: &Material<'_>, study: &StudyResult) -> Option<(Drawing, S
         Answer::MonteCarlo(answer) => tolerance(material, study, answer),
         Answer::Modes(answer) => one_run::diagram(material, &study.name, answer),
         Answer::Rainflow(answer) => one_run::histogram(&study.name, answer),
-        Answer::Estimates(_) => None,
+        Answer::Estimates(_) | Answer::Steady(_) => None,
     }
 }
 
