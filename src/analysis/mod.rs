@@ -6,6 +6,7 @@ pub mod characteristics;
 pub mod estimates;
 pub mod linear_point;
 pub mod modes;
+pub mod operating_point;
 pub mod poles;
 pub mod rainflow;
 pub mod separatrix;

@@ -6,17 +6,18 @@ use super::status::Status;
 use super::study_progress::StudyProgress;
 use super::{Common, Format, streams};
 use crate::analysis::study::results::StudyResult;
-use crate::analysis::study::work::{Cost, Stop};
-use crate::analysis::study::{self, Kind, Plan, Study, StudyOptions};
+use crate::analysis::study::work::{Blind, Cost, Forget, Stop};
+use crate::analysis::study::{self, Plan, Study, StudyOptions};
 use crate::analysis::transient;
 use crate::diagnostic::{Severity, closest};
 use crate::render::folder::FolderFault;
 use crate::render::json;
 use crate::render::study::folder::StudyFolder;
 use crate::render::study::rows::Columns;
-use crate::render::study::{json as study_json, text};
+use crate::render::study::{json as study_json, of_one_run as one_run, text};
 use clap::Args;
 use serde_json::{Map, Value};
+use std::collections::BTreeMap;
 use std::path::PathBuf;
 
 /// What `study` takes.
@@ -34,7 +35,7 @@ pub struct StudyArguments {
 /// How a study ended.
 enum Ended {
     Done(Box<StudyResult>, Value),
-    Stopped(Status, usize),
+    Stopped(Status, Value),
 }
 
 /// Runs the command.
@@ -84,10 +85,13 @@ pub fn run(arguments: &StudyArguments, common: &Common) -> Status {
                     status = streams::print(&format!("{gap}{summary}"), status);
                 }
             }
-            Ended::Stopped(how, runs) => {
+            Ended::Stopped(how, told) => {
                 status = status.max(how);
-                answers.insert(study.name.clone(), study_json::unfinished(runs));
-                break;
+                answers.insert(study.name.clone(), told);
+                // What is wrong with one study does not stand in the way of the next.
+                if how != Status::Fault {
+                    break;
+                }
             }
         }
     }
@@ -151,11 +155,10 @@ fn one(
 ) -> Result<Ended, FolderFault> {
     let loaded = &plan.loaded;
     let work = study::mark(loaded, study);
-    let label = match study.kind {
-        Kind::Margin(_) => Some("part"),
-        Kind::LoadCases(_) => Some("case"),
-        Kind::Sweep(_) | Kind::MonteCarlo(_) => None,
-    };
+    if !study.kind.has_runs() {
+        return of_one_run(plan, study, folder, &work, common, interrupt);
+    }
+    let label = study.kind.label();
     let columns = Columns::new(study::varied(study), study::layout(loaded, study), label);
     let Some(mut begun) = folder.begin(&study.name, &work, &columns, resume)? else {
         let message = format!(
@@ -164,7 +167,7 @@ fn one(
         );
         let hint = "without --resume it begins anew";
         streams::complain(Severity::Error, message, Some(hint));
-        return Ok(Ended::Stopped(Status::Fault, 0));
+        return Ok(Ended::Stopped(Status::Fault, study_json::unfinished(0, "it has changed")));
     };
     if begun.restarted {
         let message = format!("`{}` was stopped before and begins anew", study.name);
@@ -192,15 +195,15 @@ fn one(
                 progress.done()
             );
             streams::complain(Severity::Warning, message, Some("--resume goes on with it"));
-            return Ok(Ended::Stopped(Status::Interrupted, progress.done()));
+            let told = study_json::unfinished(progress.done(), "interrupted");
+            return Ok(Ended::Stopped(Status::Interrupted, told));
         }
+        Err(Stop::NoAnswer(reason)) => return Ok(no_answer(&study.name, &reason)),
         Err(Stop::NotKept(reason)) => {
-            streams::complain(
-                Severity::Error,
-                reason,
-                Some("--resume goes on from the last run kept"),
-            );
-            return Ok(Ended::Stopped(Status::NotWritten, progress.done()));
+            let hint = "--resume goes on from the last run kept";
+            streams::complain(Severity::Error, &reason, Some(hint));
+            let told = study_json::unfinished(progress.done(), &reason);
+            return Ok(Ended::Stopped(Status::NotWritten, told));
         }
     };
     if !common.quiet {
@@ -209,6 +212,47 @@ fn one(
     let answer = study_json::study(&result, &work);
     folder.finish(&study.name, &columns, &result.rows, &json::pretty(&answer))?;
     Ok(Ended::Done(Box::new(result), answer))
+}
+
+/// Runs a study of the train as typed, or of its one run.
+fn of_one_run(
+    plan: &Plan,
+    study: &Study,
+    folder: &StudyFolder,
+    work: &str,
+    common: &Common,
+    interrupt: &Interrupt,
+) -> Result<Ended, FolderFault> {
+    let ended = study::run(
+        &plan.loaded,
+        study,
+        StudyOptions {
+            threads: common.threads.map(usize::from),
+            interrupt: interrupt.flag(),
+            known: BTreeMap::new(),
+            keep: &mut Forget,
+            watch: &mut Blind,
+        },
+    );
+    match ended {
+        Ok(result) => {
+            let answer = study_json::study(&result, work);
+            let table = one_run::table(&result);
+            folder.write(&study.name, table.as_deref(), &json::pretty(&answer))?;
+            Ok(Ended::Done(Box::new(result), answer))
+        }
+        Err(Stop::Interrupted) => {
+            streams::complain(Severity::Warning, format!("`{}` was interrupted", study.name), None);
+            Ok(Ended::Stopped(Status::Interrupted, study_json::unfinished(0, "interrupted")))
+        }
+        Err(Stop::NoAnswer(reason) | Stop::NotKept(reason)) => Ok(no_answer(&study.name, &reason)),
+    }
+}
+
+/// A study whose question has no answer.
+fn no_answer(name: &str, reason: &str) -> Ended {
+    streams::complain(Severity::Error, format!("`{name}` has no answer: {reason}"), None);
+    Ended::Stopped(Status::Fault, study_json::unfinished(0, reason))
 }
 
 /// What a study cost, on standard error: it differs from run to run.

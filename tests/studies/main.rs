@@ -11,6 +11,7 @@
 #![allow(clippy::unwrap_used, clippy::cast_precision_loss, clippy::float_cmp)]
 
 mod cases;
+mod contract;
 mod helper;
 mod margin;
 mod messages;

@@ -17,47 +17,26 @@ fn told_of(scenario: &str) -> String {
     }
 }
 
-/// Checks each study against what is told of it.
-fn check(cases: &[(&str, &str)]) {
+/// Each study with what is told of it: a line of the study, then the words, then an empty line.
+const MESSAGES: &str = include_str!("messages.txt");
+
+#[test]
+fn each_fault_of_a_study_is_told_in_the_words_beside_it() {
+    let blocks: Vec<(&str, &str)> = MESSAGES
+        .trim_end()
+        .split("\n\n")
+        .filter(|block| !block.starts_with("# "))
+        .map(|block| block.split_once('\n').expect("words follow the study"))
+        .collect();
+    assert!(blocks.len() > 50, "only {} studies were found", blocks.len());
     let mut wrong = String::new();
-    for (study, expected) in cases {
+    for (study, expected) in blocks {
         let found = told(study);
-        if found != *expected {
-            wrong.push_str(&format!("{study}\n{found}--- not\n{expected}\n"));
+        if found.trim_end() != expected {
+            wrong.push_str(&format!("{study}\n{found}\n"));
         }
     }
-    assert!(wrong.is_empty(), "\n{wrong}");
-}
-
-#[test]
-fn kinds_of_studies() {
-    check(&[("{ margn: {} }", ""), ("{}", ""), ("5", ""), ("{ margin: {}, sweep: {} }", "")]);
-}
-
-#[test]
-fn margins() {
-    check(&[
-        ("{ margin: {} }", ""),
-        ("{ margin: { vary: motors.drive.law.prescribed.torqe, between: [50 N*m, 100 N*m] } }", ""),
-        ("{ margin: { vary: motors.drve.law.prescribed.torque, between: [50 N*m, 100 N*m] } }", ""),
-        ("{ margin: { vary: bodies.rotor, between: [50, 100] } }", ""),
-        ("{ margin: { vary: title, between: [50, 100] } }", ""),
-        ("{ margin: { vary: start, between: [50, 100] } }", ""),
-        ("{ margin: { vary: bodies.rotor.inertia, between: [1 kg*m2, 1 kg*m2] } }", ""),
-        ("{ margin: { vary: bodies.rotor.inertia, between: [1 N*m, 2] } }", ""),
-        ("{ margin: { vary: bodies.rotor.inertia, between: [1, 2, 3] } }", ""),
-        ("{ margin: { vary: bodies.rotor.inertia, between: 3 } }", ""),
-        ("{ margin: { vary: bodies.rotor.inertia, between: [-1 kg*m2, 2 kg*m2] } }", ""),
-        ("{ margin: { vary: magnetic_couplings.coupling.pole_pairs, between: [1, 4.5] } }", ""),
-        ("{ margin: { vary: bodies.rotor.inertia, between: [1, 2], points: 1 } }", ""),
-        ("{ margin: { vary: bodies.rotor.inertia, between: [1, 2], accuracy: 0 } }", ""),
-        ("{ margin: { vary: bodies.rotor.inertia, between: [1, 2], acuracy: 1 % } }", ""),
-        (
-            "{ margin: { vary: bodies.rotor.inertia, between: [0.1, 0.2], channels: [rotor.sped] } }",
-            "",
-        ),
-        ("{ margin: { vary: bodies.rotor.inertia, between: [0.05, 0.06], at_least: 50 % } }", ""),
-    ]);
+    assert!(wrong.is_empty(), "told instead of what is expected:\n{wrong}");
 }
 
 #[test]
@@ -65,106 +44,14 @@ fn a_margin_without_requirements() {
     let scenario =
         train(60.0, 100.0, "  it: { margin: { vary: bodies.rotor.inertia, between: [1, 2] } }\n")
             .replace("  no_slip: { of: coupling.slips, at_most: 0 }\n", "");
-    assert_eq!(told_of(&scenario), "");
-}
-
-#[test]
-fn sweeps() {
-    check(&[
-        ("{ sweep: {} }", ""),
-        ("{ sweep: { vary: } }", ""),
-        ("{ sweep: { vary: { bodies.rotor.inertai: { values: [1] } } } }", ""),
-        ("{ sweep: { vary: { bodies.rotor.inertia: { values: [] } } } }", ""),
-        ("{ sweep: { vary: { bodies.rotor.inertia: { values: [1, 1] } } } }", ""),
-        ("{ sweep: { vary: { bodies.rotor.inertia: { values: [1, -1] } } } }", ""),
-        ("{ sweep: { vary: { bodies.rotor.inertia: { from: 1, to: 1, count: 3 } } } }", ""),
-        ("{ sweep: { vary: { bodies.rotor.inertia: { from: 1, to: 2 } } } }", ""),
-        ("{ sweep: { vary: { bodies.rotor.inertia: { from: 1, to: 2, count: 1 } } } }", ""),
-        ("{ sweep: { vary: { bodies.rotor.inertia: 3 } } }", ""),
-        (
-            "{ sweep: { vary: { bodies.rotor.inertia: { values: [1] }, duration: { values: [1] }, output_step: { values: [1] } } } }",
-            "",
-        ),
-    ]);
-}
-
-#[test]
-fn scatter() {
-    check(&[
-        (
-            "{ monte_carlo: { draws: 0, spread: { bodies.rotor.inertia: { normal: { relative: 1 % } } } } }",
-            "",
-        ),
-        (
-            "{ monte_carlo: { spread: { bodies.rotor.inertia: { normal: { relative: 1 % } } } } }",
-            "",
-        ),
-        ("{ monte_carlo: { draws: 10 } }", ""),
-        ("{ monte_carlo: { draws: 10, spread: {} } }", ""),
-        (
-            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { normal: { relative: 30 % } } } } }",
-            "",
-        ),
-        (
-            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { uniform: { absolute: 0.06 kg*m2 } } } } }",
-            "",
-        ),
-        (
-            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { gaussian: { relative: 3 % } } } } }",
-            "",
-        ),
-        ("{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { normal: {} } } } }", ""),
-        (
-            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { normal: { relative: 1 %, absolute: 1 } } } } }",
-            "",
-        ),
-        (
-            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: { lognormal: { absolute: 1 } } } } }",
-            "",
-        ),
-        ("{ monte_carlo: { draws: 10, spread: { bodies.rotor.inertia: {} } } }", ""),
-        (
-            "{ monte_carlo: { draws: 10, spread: { bodies.rotor.speed: { normal: { relative: 1 % } } } } }",
-            "",
-        ),
-        (
-            "{ monte_carlo: { draws: 10, spread: { solver.max_step: { normal: { relative: 1 % } } } } }",
-            "",
-        ),
-        (
-            "{ monte_carlo: { draws: 10, spread: { magnetic_couplings.coupling.pole_pairs: { uniform: { absolute: 1 } } } } }",
-            "",
-        ),
-        (
-            "{ monte_carlo: { draws: 10.5, seed: -1, spread: { bodies.rotor.inertia: { normal: { relative: -1 % } } } } }",
-            "",
-        ),
-        (
-            "{ monte_carlo: { draws: 10, slipping_at_most: 3, spread: { bodies.rotor.inertia: { normal: { relative: 1 % } } } } }",
-            "",
-        ),
-    ]);
-}
-
-#[test]
-fn load_cases() {
-    check(&[
-        ("{ load_cases: {} }", ""),
-        ("{ load_cases: { cases: {} } }", ""),
-        ("{ load_cases: { cases: { Hot: {} } } }", ""),
-        ("{ load_cases: { cases: { hot: { changes: { bodies.roter.inertia: 1 } } } } }", ""),
-        ("{ load_cases: { cases: { hot: { changes: { bodies.rotor.inertia: -1 } } } } }", ""),
-        (
-            "{ load_cases: { cases: { hot: { changes: { bodies.rotor.inertia: 3 N*m, studies: 3 } } } } }",
-            "",
-        ),
-        (
-            "{ load_cases: { cases: { hot: { requirements: { slow: { of: rotor.sped, at_most: 3 rpm } } } } } }",
-            "",
-        ),
-        ("{ load_cases: { cases: { hot: { requirements: { slow: { of: rotor.speed } } } } } }", ""),
-        ("{ load_cases: { cases: { hot: { change: {} } } } }", ""),
-    ]);
+    assert_eq!(
+        told_of(&scenario),
+        concat!(
+            "error: a margin needs a requirement that can fail\n",
+            "  --> case.yaml:12:9  (studies.it.margin)\n",
+            "  hint: for example requirements: { no_slip: { of: gear.slips, at_most: 0 } }\n",
+        )
+    );
 }
 
 #[test]
@@ -175,7 +62,15 @@ fn faults_of_the_file_and_its_studies_are_told_together() {
         "  it: { margin: { vary: bodies.rotor.inertia, between: [1 kg*m2, 1 kg*m2] } }\n",
     )
     .replace("pole_pairs: 4", "pole_pairs: 0");
-    assert_eq!(told_of(&scenario), "");
+    assert_eq!(
+        told_of(&scenario),
+        concat!(
+            "error: `pole_pairs` must be a whole number from 1 to 10000\n",
+            "  --> case.yaml:7:53  (magnetic_couplings.coupling.pole_pairs)\n",
+            "error: the range is empty: both ends are 1 kg*m2\n",
+            "  --> case.yaml:13:47  (studies.it.margin.between)\n",
+        )
+    );
 }
 
 #[test]

@@ -6,7 +6,7 @@
 //! share = J_e (r m)^2/(e_b m),  m = M^-1 e_b'      share of a torque on body b that crosses the magnet
 //! u     = J_e r M^-1 tau / K            equivalent load of all torques tau
 //! ```
-//! For two inertias the share is the practitioners' J_load/(J_motor + J_load).
+//! For two inertias the share is the practitioners' `J_load/(J_motor + J_load)`.
 
 use crate::equations::Equations;
 use crate::model::elimination::{self, Constraint, Reduction};

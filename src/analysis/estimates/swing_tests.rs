@@ -154,3 +154,52 @@ fn backward_loads_use_the_other_side_of_the_law() {
     assert!((step(&even, false) - step(&even, true)).abs() > 1e-3);
     close(step(&even, true), step(&turned, false), 1e-10);
 }
+
+// Time-domain bisection of an independent integrator (SciPy DOP853, rtol 1e-12, outcome by
+// events): damped kicks, steps from a preload and from the reversed torque, pulses.
+#[test]
+fn damped_figures_agree_with_an_independent_integrator() {
+    let law = sine();
+    let with = |beta, fade| Swing::new(&law, beta, fade, false);
+    let close = |found: Option<f64>, expected: f64| close(found.unwrap(), expected, 2e-9);
+    close(with(0.2, 0.0).critical_kick(0.0), 2.4149382176055267);
+    close(with(0.1, 0.0).critical_kick(0.5), 1.3069243246671594);
+    close(with(0.1, 0.0).critical_step(0.5), 0.8979057910083095);
+    close(with(0.2, 0.0).critical_step(-0.4), 0.7217977496781365);
+    close(with(0.15, 0.0).critical_pulse(0.3, 1.4), 1.7893847949244401);
+    close(with(0.15, 0.5).critical_pulse(0.3, 1.4), 1.7395877182356125);
+    close(with(0.2, 1.0).critical_step(0.0), 0.7978086836461695);
+    close(with(0.2, 1.0).critical_kick(0.3), 1.6508361081581233);
+    close(with(0.2, 1.0).resynchronisation(), 0.0821780036836828);
+}
+
+// The same integrator with a third harmonic of 4 % and a second one of 10 % a quarter turn ahead.
+#[test]
+fn laws_with_harmonics_agree_with_an_independent_integrator() {
+    for (order, amplitude, phase, expected) in [
+        (
+            3,
+            0.04,
+            0.0,
+            [0.7564631471068635, 0.9041432930347162, 1.5789806586849133, 0.2598582504061866],
+        ),
+        (
+            2,
+            0.1,
+            FRAC_PI_2,
+            [0.7527834210036892, 0.9014310986128331, 1.6203137230385032, 0.26484551618851937],
+        ),
+    ] {
+        let law = MagnetLaw::new(7.0, &[Harmonic { order, amplitude, phase }]).unwrap();
+        let with = |beta| Swing::new(&law, beta, 0.0, false);
+        let found = [
+            with(0.0).critical_step(0.0),
+            with(0.2).critical_step(0.3),
+            with(0.0).critical_kick(0.3),
+            with(0.2).resynchronisation(),
+        ];
+        for (found, expected) in found.into_iter().zip(expected) {
+            close(found.unwrap(), expected, 2e-9);
+        }
+    }
+}

@@ -1,5 +1,7 @@
 //! Estimates of whole trains against closed forms and worked values.
 
+#![expect(clippy::float_cmp, reason = "exact zeros and counts")]
+
 use super::*;
 use crate::analysis::testing::equations;
 use crate::solve::{RunOptions, run};
@@ -132,7 +134,7 @@ loads: { work: { body: slow, law: { prescribed: { torque: 2500 } } } }";
 #[test]
 fn a_soft_shaft_is_named_as_the_reason() {
     let found = estimate(
-        "bodies: { motor: { inertia: 1, speed: 10 rad/s }, hub: { inertia: 1e-6 }, load: { inertia: 1 } }
+        "bodies: { motor: { inertia: 1, speed: 10 rad/s }, hub: { inertia: 1e-3 }, load: { inertia: 1 } }
 shafts: { soft: { between: [motor, hub], stiffness: 400 } }
 magnetic_couplings: { coupling: { between: [hub, load], pole_pairs: 4, pull_out: 100, damping: 0.2 } }
 loads: { bearing: { body: load, law: { viscous: { coefficient: 3 } } } }
@@ -140,7 +142,7 @@ motors: { drive: { body: motor, law: { speed_loop: { speed: 10 rad/s, torque_lim
     );
     let comparisons = &found.gears[0].comparisons;
     // By hand sqrt(400*2)/2 pi = 4.50 Hz; two springs of 400 in a row: 200, a factor sqrt(2) less.
-    close(comparisons[0].hand, 800.0_f64.sqrt() / std::f64::consts::TAU, 1e-5);
+    close(comparisons[0].hand, 800.0_f64.sqrt() / std::f64::consts::TAU, 1e-3);
     assert_eq!(comparisons[0].agree, Some(false));
     assert!(comparisons[0].why[0].contains("`soft` bends with it"), "{:?}", comparisons[0].why);
     assert_eq!(comparisons[1].agree, Some(false));

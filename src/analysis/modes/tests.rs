@@ -1,5 +1,7 @@
 //! Modes against handbook values and closed forms; inputs stand as YAML, as a user types them.
 
+#![expect(clippy::float_cmp, reason = "exact zeros and counts")]
+
 use super::*;
 use crate::analysis::testing::equations;
 use crate::component::channel::Known;

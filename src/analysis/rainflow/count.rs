@@ -62,6 +62,7 @@ impl Counter {
 }
 
 #[cfg(test)]
+#[expect(clippy::float_cmp, reason = "counts are exact")]
 mod tests {
     use super::*;
 

@@ -1,5 +1,7 @@
 //! Rainflow through the engine, against the standard's example and closed forms.
 
+#![expect(clippy::float_cmp, reason = "exact zeros and counts")]
+
 use super::*;
 use crate::analysis::testing::{equations, node};
 use crate::component::channel::Known;

@@ -16,6 +16,7 @@ pub mod results;
 mod run;
 pub mod spec;
 mod statistics;
+mod steady;
 mod sweep;
 mod trial;
 pub mod work;

@@ -3,6 +3,10 @@
 use super::outcome::{Layout, Outcome};
 use super::spec::{Axis, Spread, Varied};
 use super::work::{Cost, Row};
+use crate::analysis::estimates::EstimatesResult;
+use crate::analysis::modes::ModesResult;
+use crate::analysis::operating_point::OperatingPoint;
+use crate::analysis::rainflow::RainflowResult;
 use crate::results::RequirementResult;
 
 /// A finished study.
@@ -33,6 +37,14 @@ pub enum Answer {
     Sweep(SweepAnswer),
     /// What scatter does.
     MonteCarlo(MonteCarloAnswer),
+    /// Natural frequencies and what may excite them.
+    Modes(ModesResult),
+    /// Cycles of a channel.
+    Rainflow(RainflowResult),
+    /// Figures by hand beside the run.
+    Estimates(EstimatesResult),
+    /// The operating point.
+    Steady(SteadyAnswer),
 }
 
 impl Answer {
@@ -43,8 +55,10 @@ impl Answer {
         match self {
             Self::Margin(answer) => answer.at_least.map(|_| answer.met),
             Self::LoadCases(answer) => Some(Some(answer.met)),
-            Self::Sweep(_) => None,
+            Self::Sweep(_) | Self::Estimates(_) | Self::Steady(_) => None,
             Self::MonteCarlo(answer) => answer.slipping_at_most.map(|_| answer.met),
+            Self::Modes(answer) => answer.separation.map(|_| answer.met),
+            Self::Rainflow(answer) => answer.limit.map(|_| answer.met),
         }
     }
 }
@@ -168,6 +182,24 @@ pub struct MonteCarloAnswer {
     pub slipping_at_most: Option<f64>,
     /// Whether the share is below that; `None`: not asked, or the draws cannot tell.
     pub met: Option<bool>,
+}
+
+/// Operating points.
+#[derive(Clone, Debug, PartialEq)]
+pub struct SteadyAnswer {
+    /// The number that is varied, if one is.
+    pub varied: Option<Varied>,
+    /// One point a value; one alone when nothing is varied.
+    pub points: Vec<SteadyPoint>,
+}
+
+/// One operating point.
+#[derive(Clone, Debug, PartialEq)]
+pub struct SteadyPoint {
+    /// The value of the varied number, SI.
+    pub value: Option<f64>,
+    /// The point, or why there is none.
+    pub point: Result<OperatingPoint, String>,
 }
 
 /// Shares at which quantiles are given.

@@ -4,11 +4,15 @@ use super::outcome::Layout;
 use super::results::{Answer, StudyResult};
 use super::spec::{Kind, Study, Varied, without_studies};
 use super::work::{Keep, Setting, Stop, Watch, Work};
-use super::{fingerprint, load_cases, margin, monte_carlo, sweep};
+use super::{fingerprint, load_cases, margin, monte_carlo, steady, sweep};
 use crate::analysis::study::outcome::Outcome;
+use crate::analysis::{estimates, modes, rainflow, transient};
+use crate::diagnostic::Diagnostics;
+use crate::equations::Equations;
 use crate::scenario::Loaded;
+use crate::solve::RunOptions;
 use std::collections::BTreeMap;
-use std::sync::atomic::AtomicBool;
+use std::sync::atomic::{AtomicBool, Ordering};
 
 /// How a study is run.
 pub struct StudyOptions<'a> {
@@ -34,11 +38,15 @@ pub fn mark(loaded: &Loaded, study: &Study) -> String {
 pub fn varied(study: &Study) -> Vec<Varied> {
     match &study.kind {
         Kind::Margin(margin) => vec![margin.varied.clone()],
-        Kind::LoadCases(_) => Vec::new(),
         Kind::Sweep(sweep) => sweep.axes.iter().map(|axis| axis.varied.clone()).collect(),
         Kind::MonteCarlo(study) => {
             study.spreads.iter().map(|spread| spread.varied.clone()).collect()
         }
+        Kind::LoadCases(_)
+        | Kind::Modes(_)
+        | Kind::Rainflow(_)
+        | Kind::Estimates(_)
+        | Kind::Steady(_) => Vec::new(),
     }
 }
 
@@ -52,6 +60,9 @@ pub fn layout(loaded: &Loaded, study: &Study) -> Layout {
         }
         Kind::Sweep(sweep) => Layout::of(file(), &sweep.channels),
         Kind::MonteCarlo(study) => Layout::of(file(), &study.channels),
+        Kind::Modes(_) | Kind::Rainflow(_) | Kind::Estimates(_) | Kind::Steady(_) => {
+            Layout::of(file(), &[])
+        }
     }
 }
 
@@ -75,7 +86,9 @@ pub fn run(loaded: &Loaded, study: &Study, options: StudyOptions<'_>) -> Result<
         Kind::LoadCases(cases) => cases.cases.len(),
         Kind::Sweep(sweep) => sweep::expected(sweep),
         Kind::MonteCarlo(study) => study.draws,
+        Kind::Modes(_) | Kind::Rainflow(_) | Kind::Estimates(_) | Kind::Steady(_) => 1,
     };
+    let interrupt = options.interrupt;
     let varied = varied(study);
     let mut work = Work::new(&mut setting, varied.clone(), layout(loaded, study), expected);
     let answer = match &study.kind {
@@ -83,6 +96,9 @@ pub fn run(loaded: &Loaded, study: &Study, options: StudyOptions<'_>) -> Result<
         Kind::LoadCases(cases) => Answer::LoadCases(load_cases::run(cases, &mut work)?),
         Kind::Sweep(sweep) => Answer::Sweep(sweep::run(sweep, &mut work)?),
         Kind::MonteCarlo(study) => Answer::MonteCarlo(monte_carlo::run(study, &mut work)?),
+        Kind::Modes(_) | Kind::Rainflow(_) | Kind::Estimates(_) | Kind::Steady(_) => {
+            of_one_run(loaded, study, interrupt)?
+        }
     };
     Ok(StudyResult {
         name: study.name.clone(),
@@ -92,4 +108,34 @@ pub fn run(loaded: &Loaded, study: &Study, options: StudyOptions<'_>) -> Result<
         rows: work.rows,
         cost: work.cost,
     })
+}
+
+/// Studies of the train as typed, or of its one run.
+fn of_one_run(loaded: &Loaded, study: &Study, interrupt: &AtomicBool) -> Result<Answer, Stop> {
+    let at_fault = |found: Diagnostics| {
+        let first = found.iter().find(|entry| entry.severity.is_error());
+        Stop::NoAnswer(first.map_or_else(String::new, |fault| fault.message.clone()))
+    };
+    let stopped = |reason: String| {
+        if interrupt.load(Ordering::Relaxed) { Stop::Interrupted } else { Stop::NoAnswer(reason) }
+    };
+    let equations: Equations = transient::prepare(&loaded.scenario).map_err(at_fault)?;
+    match &study.kind {
+        Kind::Modes(spec) => modes::run(spec, &equations).map(Answer::Modes).map_err(stopped),
+        Kind::Rainflow(spec) => {
+            rainflow::run(spec, &equations, Some(interrupt)).map(Answer::Rainflow).map_err(stopped)
+        }
+        Kind::Estimates(spec) => {
+            let options = RunOptions { interrupt: Some(interrupt), ..RunOptions::default() };
+            let found = transient::run_prepared(&equations, options).map_err(at_fault)?;
+            if interrupt.load(Ordering::Relaxed) {
+                return Err(Stop::Interrupted);
+            }
+            Ok(Answer::Estimates(estimates::run(spec, &equations, &found)))
+        }
+        Kind::Steady(spec) => steady::run(spec, loaded, interrupt).map(Answer::Steady),
+        Kind::Margin(_) | Kind::LoadCases(_) | Kind::Sweep(_) | Kind::MonteCarlo(_) => {
+            Err(Stop::NoAnswer("this study stands on many runs".to_owned()))
+        }
+    }
 }

@@ -55,6 +55,8 @@ pub enum Stop {
     Interrupted,
     /// A finished run could not be kept.
     NotKept(String),
+    /// There is none, in words.
+    NoAnswer(String),
 }
 
 /// A run of a study: what was changed, and what came of it.

@@ -1,5 +1,9 @@
 //! The answer of a study in one sentence, and what a reader must know beside it.
 
+use super::steady;
+use crate::analysis::estimates::EstimatesResult;
+use crate::analysis::modes::ModesResult;
+use crate::analysis::rainflow::RainflowResult;
 use crate::analysis::study::results::{
     Answer, LoadCasesAnswer, MarginAnswer, MonteCarloAnswer, StudyResult, SweepAnswer,
 };
@@ -13,6 +17,10 @@ pub fn sentence(result: &StudyResult) -> String {
         Answer::LoadCases(answer) => load_cases(answer),
         Answer::Sweep(answer) => sweep(answer, result.rows.len()),
         Answer::MonteCarlo(answer) => monte_carlo(answer),
+        Answer::Modes(answer) => modes(answer),
+        Answer::Rainflow(answer) => rainflow(answer),
+        Answer::Estimates(answer) => estimates(answer),
+        Answer::Steady(answer) => steady::sentence(answer),
     }
 }
 
@@ -43,7 +51,15 @@ pub fn verdict(answer: &Answer) -> Option<String> {
             };
             Some(told(answer.met, limit, &unknown))
         }
-        Answer::LoadCases(_) | Answer::Sweep(_) => None,
+        Answer::Modes(answer) => {
+            let limit = format!("excitations at least {} from modes", percent(answer.separation?));
+            Some(told(answer.met, limit, "the train stands still at the point"))
+        }
+        Answer::Rainflow(answer) => {
+            let limit = format!("a range of at most {}", unit_of(answer, answer.limit?));
+            Some(told(answer.met, limit, "nothing was counted"))
+        }
+        Answer::LoadCases(_) | Answer::Sweep(_) | Answer::Estimates(_) | Answer::Steady(_) => None,
     }
 }
 
@@ -57,7 +73,18 @@ pub fn notes(result: &StudyResult) -> Vec<String> {
                 notes.push(format!("an interval half as wide needs about {draws} draws"));
             }
         }
-        Answer::LoadCases(_) | Answer::Sweep(_) => {}
+        Answer::Modes(answer) => notes.extend(answer.notes.iter().cloned()),
+        Answer::Estimates(answer) => {
+            notes.extend(answer.notes.iter().cloned());
+            for gear in &answer.gears {
+                let why = gear.comparisons.iter().filter(|one| !one.why.is_empty()).map(|one| {
+                    format!("`{}`, {}: {}", gear.gear, one.figure, one.why.join("; "))
+                });
+                notes.extend(why);
+                notes.extend(gear.notes.iter().map(|note| format!("`{}`: {note}", gear.gear)));
+            }
+        }
+        Answer::LoadCases(_) | Answer::Sweep(_) | Answer::Rainflow(_) | Answer::Steady(_) => {}
     }
     let failed: Vec<&str> =
         result.outcomes().filter_map(|outcome| outcome.failure.as_deref()).collect();
@@ -198,6 +225,69 @@ fn monte_carlo(answer: &MonteCarloAnswer) -> String {
         ),
         _ => format!("All {} draws came to nothing.", answer.draws),
     }
+}
+
+fn modes(answer: &ModesResult) -> String {
+    let list = match answer.modes.first() {
+        None => "The train does not oscillate".to_owned(),
+        Some(first) => {
+            let count = match answer.modes.len() {
+                1 => "One mode".to_owned(),
+                count => format!("{count} modes"),
+            };
+            format!(
+                "{count}; the lowest, {}, at {} Hz with a damping ratio of {}",
+                first.label,
+                format_number(first.frequency_hz, 4),
+                percent(first.damping_ratio)
+            )
+        }
+    };
+    format!("{list} ({}).", answer.point)
+}
+
+fn unit_of(answer: &RainflowResult, value: f64) -> String {
+    let unit = if answer.unit == "1" { "" } else { answer.unit };
+    format!("{} {unit}", format_number(value, 4)).trim_end().to_owned()
+}
+
+fn rainflow(answer: &RainflowResult) -> String {
+    format!(
+        "`{}` makes {} cycles; a range of {} does the same damage in {} (slope {}).",
+        answer.of,
+        format_number(answer.count, 7),
+        unit_of(answer, answer.damage_equivalent),
+        match answer.equivalent_cycles {
+            1.0 => "one cycle".to_owned(),
+            cycles => format!("{} cycles", format_number(cycles, 7)),
+        },
+        format_number(answer.slope, 4)
+    )
+}
+
+fn estimates(answer: &EstimatesResult) -> String {
+    let gears: Vec<String> = answer
+        .gears
+        .iter()
+        .map(|gear| {
+            let step = gear.given().map_or_else(String::new, |given| {
+                format!(
+                    ", holds a step of load up to {} of its pull-out and falls into step again below {}",
+                    percent(given.critical_step_share),
+                    percent(given.resynchronisation_share)
+                )
+            });
+            format!(
+                "`{}` swings at {} Hz without load{step}",
+                gear.gear,
+                format_number(gear.natural_frequency_hz, 4)
+            )
+        })
+        .collect();
+    if gears.is_empty() {
+        return "The train has no magnetic gear or coupling to estimate.".to_owned();
+    }
+    format!("By hand: {}.", gears.join("; "))
 }
 
 /// `1 run`, `2 runs`.

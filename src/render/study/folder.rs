@@ -113,7 +113,7 @@ impl StudyFolder {
         }
     }
 
-    /// Writes the table and the answer of a finished study; its journal goes.
+    /// Writes the table and the answer of a finished study of many runs; its journal goes.
     ///
     /// # Errors
     /// The fault of the disk.
@@ -126,23 +126,47 @@ impl StudyFolder {
     ) -> Result<(), FolderFault> {
         let told =
             |error: std::io::Error| FolderFault::disk(&format!("the study `{name}`"), &error);
-        let beside = self.path.join(format!(".{name}.new"));
-        let write_table = || -> std::io::Result<()> {
-            let mut out = BufWriter::new(fs::File::create(&beside)?);
+        self.replace(&self.table(name), |out| {
             out.write_all(journal::line(&columns.head()).as_bytes())?;
             for (number, row) in rows.iter().enumerate() {
                 out.write_all(journal::line(&columns.cells(number, row)).as_bytes())?;
             }
-            out.flush()?;
-            drop(out);
-            fs::rename(&beside, self.table(name))
-        };
-        write_table().map_err(told)?;
-        fs::write(&beside, answer).map_err(told)?;
-        fs::rename(&beside, self.answer(name)).map_err(told)?;
+            Ok(())
+        })
+        .and_then(|()| self.replace(&self.answer(name), |out| out.write_all(answer.as_bytes())))
+        .map_err(told)?;
         match fs::remove_file(self.journal(name)) {
             Err(error) if error.kind() != std::io::ErrorKind::NotFound => Err(told(error)),
             _ => Ok(()),
         }
+    }
+
+    /// Writes the answer of a study without runs of its own, and its table when it has one.
+    ///
+    /// # Errors
+    /// The fault of the disk.
+    pub fn write(&self, name: &str, table: Option<&str>, answer: &str) -> Result<(), FolderFault> {
+        let write = |path: PathBuf, text: &str| {
+            self.replace(&path, |out| out.write_all(text.as_bytes()))
+                .map_err(|error| FolderFault::disk(&format!("the study `{name}`"), &error))
+        };
+        if let Some(table) = table {
+            write(self.table(name), table)?;
+        }
+        write(self.answer(name), answer)
+    }
+
+    /// Writes a file beside its place and puts it there as a whole.
+    fn replace(
+        &self,
+        path: &Path,
+        fill: impl FnOnce(&mut BufWriter<fs::File>) -> std::io::Result<()>,
+    ) -> std::io::Result<()> {
+        let beside = path.with_extension("new");
+        let mut out = BufWriter::new(fs::File::create(&beside)?);
+        fill(&mut out)?;
+        out.flush()?;
+        drop(out);
+        fs::rename(&beside, path)
     }
 }

@@ -1,6 +1,6 @@
 //! The answer of a study for machines: SI and rad.
 
-use super::answer;
+use super::{answer, of_one_run, steady};
 use crate::analysis::study::outcome::{GearFound, Outcome};
 use crate::analysis::study::results::{
     Answer, CaseAnswer, MarginAnswer, MonteCarloAnswer, SHARES, Sensitivity, StudyResult,
@@ -27,19 +27,29 @@ pub fn study(result: &StudyResult, work: &str) -> Value {
         }
         Answer::Sweep(sweep) => sweep_answer(sweep, result),
         Answer::MonteCarlo(monte_carlo) => monte_carlo_answer(monte_carlo),
+        Answer::Modes(modes) => of_one_run::modes(modes),
+        Answer::Rainflow(rainflow) => of_one_run::rainflow(rainflow),
+        Answer::Estimates(estimates) => of_one_run::estimates(estimates),
+        Answer::Steady(points) => steady::entries(points),
     };
     for (key, value) in inside {
         put(key, value);
     }
     put("notes", answer::notes(result).into_iter().map(Value::from).collect());
-    put("file", Value::from(format!("{}.csv", result.name)));
+    if !matches!(result.answer, Answer::Estimates(_)) {
+        put("file", Value::from(format!("{}.csv", result.name)));
+    }
     put(super::folder::MARK, Value::from(work));
     Value::Object(map)
 }
 
-/// What is told of a study that was stopped.
-pub fn unfinished(runs: usize) -> Value {
-    named([("completed", Value::from(false)), ("runs", Value::from(runs))])
+/// What is told of a study without an answer.
+pub fn unfinished(runs: usize, reason: &str) -> Value {
+    named([
+        ("completed", Value::from(false)),
+        ("failure", Value::from(reason)),
+        ("runs", Value::from(runs)),
+    ])
 }
 
 /// The word for the kind of study.
@@ -49,6 +59,10 @@ pub fn kind(answer: &Answer) -> &'static str {
         Answer::LoadCases(_) => "load_cases",
         Answer::Sweep(_) => "sweep",
         Answer::MonteCarlo(_) => "monte_carlo",
+        Answer::Modes(_) => "modes",
+        Answer::Rainflow(_) => "rainflow",
+        Answer::Estimates(_) => "estimates",
+        Answer::Steady(_) => "steady",
     }
 }
 

@@ -4,5 +4,7 @@ pub mod answer;
 pub mod folder;
 pub mod journal;
 pub mod json;
+pub mod of_one_run;
 pub mod rows;
+pub mod steady;
 pub mod text;

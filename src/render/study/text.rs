@@ -1,6 +1,9 @@
 //! Studies for people: the answer in one sentence, then what it stands on.
 
-use super::{answer, json};
+use super::{answer, json, steady};
+use crate::analysis::estimates::EstimatesResult;
+use crate::analysis::modes::ModesResult;
+use crate::analysis::rainflow::RainflowResult;
 use crate::analysis::study::results::{
     Answer, LoadCasesAnswer, MonteCarloAnswer, SHARES, StudyResult, SweepAnswer,
 };
@@ -29,13 +32,21 @@ pub fn summary(result: &StudyResult, scenario: &Scenario) -> String {
         Answer::LoadCases(cases) => load_cases(cases, result, shown),
         Answer::Sweep(sweep) => sweep_rows(sweep, result),
         Answer::MonteCarlo(monte_carlo) => quantiles(monte_carlo, scenario, shown),
+        Answer::Modes(answer) => modes(answer),
+        Answer::Rainflow(answer) => cycles(answer),
+        Answer::Estimates(answer) => estimates(answer),
+        Answer::Steady(answer) => steady::text(answer, shown),
     };
     if table.len() > 1 {
         text.push('\n');
         text.push_str(&table.text(2));
     }
-    if let Answer::MonteCarlo(monte_carlo) = &result.answer {
-        let table = sensitivities(monte_carlo);
+    let second = match &result.answer {
+        Answer::MonteCarlo(answer) => Some(sensitivities(answer)),
+        Answer::Modes(answer) => Some(crossings(answer, shown)),
+        _ => None,
+    };
+    if let Some(table) = second {
         if table.len() > 1 {
             text.push('\n');
             text.push_str(&table.text(2));
@@ -161,6 +172,75 @@ fn sensitivities(answer: &MonteCarloAnswer) -> Table {
         for (place, (path, correlation)) in strongest.enumerate() {
             let of = if place == 0 { found.of.as_str() } else { "" };
             table.row([of, path.as_str(), &format_number(correlation, 2)]);
+        }
+    }
+    table
+}
+
+fn modes(answer: &ModesResult) -> Table {
+    let mut table = Table::new("<>>>");
+    table.row(["mode", "frequency", "damped", "damping ratio"]);
+    for mode in &answer.modes {
+        table.row([
+            &mode.label,
+            &format!("{} Hz", format_number(mode.frequency_hz, 5)),
+            &format!("{} Hz", format_number(mode.damped_hz, 5)),
+            &percent(mode.damping_ratio),
+        ]);
+    }
+    table
+}
+
+fn crossings(answer: &ModesResult, shown: Shown<'_>) -> Table {
+    let mut table = Table::new("<<>>>");
+    table.row(["excitation", "mode", "frequency", "at", "separation"]);
+    let all = answer.interference.as_ref().map_or(&[][..], |diagram| &diagram.crossings);
+    for crossing in all.iter().filter(|crossing| crossing.in_range) {
+        table.row([
+            &crossing.order,
+            &crossing.label,
+            &format!("{} Hz", format_number(crossing.frequency_hz, 5)),
+            &crossing.speed.map_or_else(|| "any speed".to_owned(), |speed| shown.speed(speed)),
+            &crossing.separation.map_or_else(|| "-".to_owned(), percent),
+        ]);
+    }
+    table
+}
+
+fn cycles(answer: &RainflowResult) -> Table {
+    let mut table = Table::new(">>>");
+    table.row(["range from", "to", "cycles"]);
+    for bin in answer.histogram.bins.iter().filter(|bin| bin.count > 0.0) {
+        let figure = |value: f64| {
+            let unit = if answer.unit == "1" { "" } else { answer.unit };
+            format!("{} {unit}", format_number(value, 4)).trim_end().to_owned()
+        };
+        table.row([&figure(bin.from), &figure(bin.to), &format_number(bin.count, 7)]);
+    }
+    table
+}
+
+fn estimates(answer: &EstimatesResult) -> Table {
+    let mut table = Table::new("<<>><");
+    table.row(["gear", "figure", "by hand", "run", ""]);
+    for gear in &answer.gears {
+        for (place, one) in gear.comparisons.iter().enumerate() {
+            let figure = |value: f64| {
+                let unit = if one.unit == "1" { "" } else { one.unit };
+                format!("{} {unit}", format_number(value, 4)).trim_end().to_owned()
+            };
+            let verdict = match one.agree {
+                Some(true) => "agrees",
+                Some(false) => "differs",
+                None => "",
+            };
+            table.row([
+                if place == 0 { gear.gear.as_str() } else { "" },
+                one.figure,
+                &figure(one.hand),
+                &one.found.map_or_else(|| "-".to_owned(), figure),
+                verdict,
+            ]);
         }
     }
     table

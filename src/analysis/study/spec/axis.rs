@@ -82,11 +82,12 @@ pub fn path_in<'f>(fields: &'f Fields<'_>, section: &str) -> &'f str {
 
 /// `count` values in even steps, both ends included; whole numbers once each.
 pub fn steps(from: f64, to: f64, count: usize, varied: &Varied) -> Vec<f64> {
-    let last = count.saturating_sub(1).max(1) as f64;
+    let last = count.saturating_sub(1).max(1);
     let mut values: Vec<f64> = (0..count)
         .map(|step| {
-            let share = step as f64 / last;
-            varied.allowed(from * (1.0 - share) + to * share)
+            // Multiplied first, so that round steps come out round.
+            let value = from + (to - from) * step as f64 / last as f64;
+            varied.allowed(if step == last { to } else { value })
         })
         .collect();
     values.dedup();

@@ -7,6 +7,7 @@ mod load_cases;
 mod margin;
 mod monte_carlo;
 mod spread;
+mod steady;
 mod sweep;
 mod varied;
 
@@ -16,9 +17,14 @@ pub use load_cases::{Case, LoadCases};
 pub use margin::Margin;
 pub use monte_carlo::MonteCarlo;
 pub use spread::{CUT, Distribution, Spread};
+pub use steady::Steady;
 pub use sweep::Sweep;
 pub use varied::Varied;
 
+use crate::analysis::estimates::EstimatesSpec;
+use crate::analysis::modes::ModesSpec;
+use crate::analysis::rainflow::RainflowSpec;
+use crate::component::channel::Known;
 use crate::tree::{FieldDescription, Fields, Node, Shape, chosen};
 
 /// A study of the file.
@@ -41,6 +47,30 @@ pub enum Kind {
     Sweep(Sweep),
     /// Numbers drawn at random.
     MonteCarlo(MonteCarlo),
+    /// Natural frequencies, damping, shapes and what may excite them.
+    Modes(ModesSpec),
+    /// Cycles of a channel.
+    Rainflow(RainflowSpec),
+    /// Figures by hand beside the run.
+    Estimates(EstimatesSpec),
+    /// The operating point.
+    Steady(Steady),
+}
+
+impl Kind {
+    /// What the label of a run is called in the table; `None`: runs have none.
+    pub fn label(&self) -> Option<&'static str> {
+        match self {
+            Self::Margin(_) => Some("part"),
+            Self::LoadCases(_) => Some("case"),
+            _ => None,
+        }
+    }
+
+    /// True when the answer stands on many runs, each a row of a table.
+    pub fn has_runs(&self) -> bool {
+        matches!(self, Self::Margin(_) | Self::LoadCases(_) | Self::Sweep(_) | Self::MonteCarlo(_))
+    }
 }
 
 /// One kind of study: its key, what it is for, how its inside is read.
@@ -51,7 +81,7 @@ struct Entry {
 }
 
 /// Every kind of study.
-const KINDS: [Entry; 4] = [
+const KINDS: [Entry; 8] = [
     Entry {
         key: "margin",
         doc: "How far a number of the file can go before a requirement fails.",
@@ -72,7 +102,47 @@ const KINDS: [Entry; 4] = [
         doc: "Many runs with numbers of the file drawn at random.",
         read: |fields, context| MonteCarlo::read(fields, context).map(Kind::MonteCarlo),
     },
+    Entry {
+        key: "modes",
+        doc: "Natural frequencies, damping and shapes of the linearised train, and what may excite them.",
+        read: |fields, context| {
+            let spec = ModesSpec::read(fields, known(context));
+            let _ = fields.source();
+            Some(Kind::Modes(spec))
+        },
+    },
+    Entry {
+        key: "rainflow",
+        doc: "Cycles of a channel over the run, and the range that does the same damage.",
+        read: |fields, context| {
+            let spec = RainflowSpec::read(fields, known(context));
+            let _ = fields.source();
+            Some(Kind::Rainflow(spec))
+        },
+    },
+    Entry {
+        key: "estimates",
+        doc: "Closed-form figures for each magnetic gear beside what the run found.",
+        read: |fields, _| {
+            let spec = EstimatesSpec::read(fields);
+            let _ = fields.source();
+            Some(Kind::Estimates(spec))
+        },
+    },
+    Entry {
+        key: "steady",
+        doc: "The operating point as a table, over a range of one number if asked.",
+        read: |fields, context| Steady::read(fields, context).map(Kind::Steady),
+    },
 ];
+
+/// The channels of the train; a file with other faults may lack some for that reason.
+fn known<'a>(context: Option<&Context<'a>>) -> Known<'a> {
+    Known {
+        channels: context.map_or(&[][..], Context::channels),
+        complete: context.is_some_and(Context::is_sound),
+    }
+}
 
 /// Reads the section of studies; what is at fault is told and left out.
 pub fn read(section: &Node, context: &Context<'_>) -> Vec<Study> {
