@@ -1,5 +1,7 @@
 //! Files that must be refused, each with the exact words beside it: `NAME.yaml`, `NAME.txt`.
 
+#![allow(clippy::unwrap_used, reason = "a test may stop here")]
+
 use lodeshaft::scenario::load;
 use std::fs;
 use std::path::{Path, PathBuf};

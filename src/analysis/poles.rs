@@ -159,6 +159,6 @@ mod tests {
             found,
             [(2, 11), (4, 22), (6, 33)].map(|(inner, outer)| PolePairs { inner, outer })
         );
-        assert_eq!(nearest(5.5, Held::Modulator, 10), Some(PolePairs { inner: 1, outer: 5 }));
+        assert_eq!(nearest(5.3, Held::Modulator, 10), Some(PolePairs { inner: 1, outer: 5 }));
     }
 }

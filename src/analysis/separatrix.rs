@@ -150,9 +150,9 @@ fn border(magnet: &Magnet, load: f64, saddle: f64, side: f64) -> Border {
         }
         state = next;
         if turned {
-            border.after.push(state)
+            border.after.push(state);
         } else {
-            border.first.push(state)
+            border.first.push(state);
         }
         let gone = if turned { side * state[0] < -PI - 0.1 } else { side * state[0] > PI + 0.1 };
         if gone {

@@ -6,6 +6,8 @@ mod later;
 mod new;
 mod poles;
 mod progress;
+mod report;
+mod report_studies;
 mod run;
 mod schema;
 mod status;
@@ -40,6 +42,8 @@ pub enum Command {
     Run(run::RunArguments),
     /// Runs the studies of a scenario: margins, load cases, sweeps, tolerances.
     Study(study::StudyArguments),
+    /// Runs a scenario and all its studies and writes them as one page.
+    Report(report::ReportArguments),
     /// Reads and checks scenarios and shows their trains; runs nothing.
     Check(check::CheckArguments),
     /// Lists pole-pair choices for a ratio: pieces, the six ratios, ripple orders.
@@ -48,9 +52,6 @@ pub enum Command {
     New(new::NewArguments),
     /// Prints the JSON Schema of the scenario file, for editors.
     Schema,
-    /// Writes a report (not in this version).
-    #[command(hide = true)]
-    Report(later::LaterArguments),
     /// Compares scenarios or results (not in this version).
     #[command(hide = true)]
     Compare(later::LaterArguments),
@@ -103,11 +104,11 @@ pub fn main() -> ExitCode {
     let status: Status = match command {
         Command::Run(arguments) => run::run(&arguments, &common),
         Command::Study(arguments) => study::run(&arguments, &common),
+        Command::Report(arguments) => report::run(&arguments, &common),
         Command::Check(arguments) => check::run(&arguments, &common),
         Command::Poles(arguments) => poles::run(&arguments, &common),
         Command::New(arguments) => new::run(&arguments),
         Command::Schema => schema::run(),
-        Command::Report(_) => later::refuse("report"),
         Command::Compare(_) => later::refuse("compare"),
     };
     status.into()

@@ -11,7 +11,7 @@ use crate::render::folder::{Folder, FolderFault};
 use crate::render::series::SeriesWriter;
 use crate::render::{charts, events, json, text};
 use crate::results::{RunResult, Warning};
-use crate::scenario::{Loaded, Source};
+use crate::scenario::{self, Loaded, Source};
 use crate::solve::{RunOptions, Wanted};
 use clap::Args;
 use std::path::{Path, PathBuf};
@@ -34,8 +34,14 @@ pub enum Trouble {
 /// Runs the command.
 pub fn run(arguments: &RunArguments, common: &Common) -> Status {
     let interrupt = Interrupt::listen();
-    let loaded = match study::load(&arguments.file, &common.sets) {
-        Ok(plan) => plan.loaded,
+    // A change by --set may take away what a study varies: that concerns the studies, not this run.
+    let read = if common.sets.is_empty() {
+        study::load(&arguments.file, &common.sets).map(|plan| plan.loaded)
+    } else {
+        scenario::load(&arguments.file, &common.sets)
+    };
+    let loaded = match read {
+        Ok(loaded) => loaded,
         Err(failure) => {
             streams::tell(&failure.render());
             return Status::Fault;
@@ -150,7 +156,7 @@ fn write_run(
     Ok(Written { result, summary, files })
 }
 
-fn tell_warnings(source: &Source, warnings: &[Warning]) {
+pub(super) fn tell_warnings(source: &Source, warnings: &[Warning]) {
     let mut list = Diagnostics::new();
     for warning in warnings {
         list.warning(warning.path.as_str(), warning.text.as_str());
@@ -158,7 +164,7 @@ fn tell_warnings(source: &Source, warnings: &[Warning]) {
     streams::tell(&source.render(&list));
 }
 
-fn judge(result: &RunResult, interrupt: &Interrupt) -> Status {
+pub(super) fn judge(result: &RunResult, interrupt: &Interrupt) -> Status {
     if result.completed {
         let met = result.requirements.iter().all(|requirement| requirement.met == Some(true));
         if met { Status::Done } else { Status::NotMet }
@@ -169,7 +175,7 @@ fn judge(result: &RunResult, interrupt: &Interrupt) -> Status {
     }
 }
 
-fn tell_failure(result: &RunResult, status: Status) {
+pub(super) fn tell_failure(result: &RunResult, status: Status) {
     let Some(failure) = &result.failure else { return };
     let hint = "what was found up to then is written, with `completed: false`";
     match status {

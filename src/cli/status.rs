@@ -3,9 +3,10 @@
 use std::process::ExitCode;
 
 /// How a command ended; later ones are worse.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, PartialOrd, Ord)]
 pub enum Status {
     /// Done, and every requirement is met.
+    #[default]
     Done,
     /// Done, but a requirement or a study's limit is not met.
     NotMet,

@@ -1,8 +1,8 @@
 //! How each channel follows from the state and the law values of one mode.
 
-use super::assembly::Parts;
 use super::holding::pseudo_inverse;
 use super::mode::{Contact, Mode};
+use super::parts::Parts;
 use super::{Equations, Owner, StateRow, Target};
 use crate::component::channel::{ChannelKind, MagneticChannel};
 use crate::model::{BodyRow, body_index, difference};
@@ -166,7 +166,7 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
             }
             match (&term.shape, magnet.fading) {
                 (super::Shape::Law(crate::component::law::Law::Magnet(_)), _) => {
-                    form.laws.push((place, -count))
+                    form.laws.push((place, -count));
                 }
                 (
                     super::Shape::Law(crate::component::law::Law::FadingDamper { .. }),

@@ -9,12 +9,14 @@
 
 pub mod assembly;
 pub mod build;
+mod build_motor;
 pub mod channels;
 pub mod energy;
 pub mod frame;
 pub mod holding;
 pub mod linearise;
 pub mod mode;
+pub mod parts;
 
 use crate::component::law::Law;
 use crate::model::{BodyRow, Model};

@@ -1,6 +1,7 @@
 //! From results to files and text. Only this floor writes files.
 
 pub mod chart;
+mod chart_signals;
 pub mod charts;
 pub mod events;
 pub mod folder;
@@ -9,6 +10,7 @@ pub mod json;
 mod leftovers;
 pub mod number;
 pub mod poles;
+pub mod report;
 pub mod schema;
 pub mod series;
 pub mod shown;

@@ -84,16 +84,16 @@ pub fn maximum(low: f64, high: f64, mut function: impl FnMut(f64) -> f64) -> (f6
         let fu = -function(u);
         if fu <= fx {
             if u >= x {
-                a = x
+                a = x;
             } else {
-                b = x
+                b = x;
             }
             (v, fv, w, fw, x, fx) = (w, fw, x, fx, u, fu);
         } else {
             if u < x {
-                a = u
+                a = u;
             } else {
-                b = u
+                b = u;
             }
             if fu <= fw || w == x {
                 (v, fv, w, fw) = (w, fw, u, fu);

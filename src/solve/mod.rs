@@ -3,6 +3,7 @@
 pub mod calm;
 pub mod conditions;
 pub mod dense;
+pub mod extremes;
 pub mod gears;
 pub mod guards;
 pub mod integrate;
@@ -12,6 +13,7 @@ pub mod outcome;
 pub mod rest;
 pub mod rhs;
 pub mod run;
+mod run_events;
 pub mod sampling;
 pub mod steady;
 pub mod step_cap;
@@ -19,6 +21,7 @@ pub mod tableau;
 pub mod traces;
 pub mod turning;
 pub mod watcher;
+mod watcher_steps;
 pub mod windows;
 
 use std::sync::atomic::AtomicBool;

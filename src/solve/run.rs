@@ -7,13 +7,12 @@ use super::observer::Observer;
 use super::rhs::Rhs;
 use super::steady::{self, SteadyError};
 use super::watcher::Watcher;
-use super::{RunOptions, outcome, rest, step_cap};
-use crate::component::law::Law;
+use super::{RunOptions, outcome, rest};
 use crate::equations::assembly::{Assembly, assemble};
 use crate::equations::frame::{Evaluator, Frame};
-use crate::equations::mode::{Contact, FrictionMode, Mode};
-use crate::equations::{Equations, Shape, energy};
-use crate::results::{Event, EventKind, RunResult, SolverWork};
+use crate::equations::mode::{FrictionMode, Mode};
+use crate::equations::{Equations, energy};
+use crate::results::{RunResult, SolverWork};
 use crate::scenario::{Method, Start};
 use crate::signal::course::Overrides;
 use std::collections::BTreeMap;
@@ -44,10 +43,10 @@ pub struct Run<'e, 'a> {
     pub failure: Option<String>,
     /// Warnings of the run.
     pub warnings: Vec<(String, String)>,
-    last_steps: [f64; 2],
-    caps: BTreeMap<Mode, f64>,
-    changed: bool,
-    judge_rest: bool,
+    pub(super) last_steps: [f64; 2],
+    pub(super) caps: BTreeMap<Mode, f64>,
+    pub(super) changed: bool,
+    pub(super) judge_rest: bool,
 }
 
 /// Why no run took place.
@@ -269,7 +268,7 @@ impl Run<'_, '_> {
         }
     }
 
-    fn any_at_rest(&self) -> bool {
+    pub(super) fn any_at_rest(&self) -> bool {
         self.mode.frictions.contains(&FrictionMode::Stuck)
     }
 
@@ -389,162 +388,5 @@ impl Run<'_, '_> {
             None => self.judge_rest = true,
         }
         false
-    }
-
-    fn step_cap(&mut self, evaluator: &Evaluator<'_>, end: f64) -> f64 {
-        let solver = self.equations.model.scenario.solver;
-        let (time, state) = (self.time, &self.state);
-        let stable = *self
-            .caps
-            .entry(self.mode.clone())
-            .or_insert_with(|| step_cap::stable_step(evaluator, solver.method, time, state));
-        let mut cap = stable.min(end - self.time);
-        if let Some(limit) = self.equations.bank.step_cap(self.time, end, &self.overrides) {
-            cap = cap.min(limit);
-        }
-        if let Some(limit) = solver.max_step {
-            cap = cap.min(limit);
-        }
-        if self.any_at_rest() {
-            cap = cap.min(self.equations.model.scenario.output_step);
-        }
-        // Laws over an angle: a sixth of a period at the working speed.
-        for term in &self.equations.terms {
-            if let Shape::Law(Law::Cogging { order, .. }) = &term.shape {
-                let fastest =
-                    self.equations.model.scales.body_speed.iter().fold(0.0_f64, |a, b| a.max(*b));
-                cap = cap.min(TAU / (6.0 * order * fastest));
-            }
-        }
-        cap
-    }
-
-    /// Changes the mode after a guard has tripped.
-    fn apply(&mut self, guard: Guard, end: f64) {
-        self.work.events += 1;
-        self.changed = true;
-        let equations = self.equations;
-        match guard {
-            Guard::Lower(term) => {
-                self.mode.pieces[term] -= 1;
-                self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
-            }
-            Guard::Upper(term) => {
-                self.mode.pieces[term] += 1;
-                self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
-            }
-            Guard::Slide(_) | Guard::Hold => {
-                let tripped = guard == Guard::Hold;
-                rest::resolve(
-                    equations,
-                    &mut self.mode,
-                    self.time,
-                    end,
-                    &mut self.state,
-                    &self.overrides,
-                    tripped,
-                    Some(&mut self.observer.events),
-                );
-            }
-            Guard::Open(shaft) => {
-                // What the flank still holds is not given back.
-                self.observer.energy.lost += energy::elastic(equations, shaft, &self.state);
-                self.mode.contacts[shaft] = Contact::Gap;
-                self.contact_event(shaft, EventKind::Gap);
-            }
-            Guard::Close(shaft) => {
-                self.observer.energy.lost -= energy::elastic(equations, shaft, &self.state);
-                let place = equations.twist_state[shaft];
-                let twist = place.map_or(0.0, |place| self.state[place]);
-                self.mode.contacts[shaft] =
-                    if twist >= 0.0 { Contact::Forward } else { Contact::Backward };
-                self.contact_event(shaft, EventKind::Contact);
-            }
-            Guard::Windup(index) => self.mode.held[index] = !self.mode.held[index],
-            Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..) => {}
-        }
-    }
-
-    fn contact_event(&mut self, shaft: usize, kind: EventKind) {
-        let name = self.equations.model.scenario.shafts[shaft].name.clone();
-        let text = match kind {
-            EventKind::Contact => format!("the free play of `{name}` closes"),
-            _ => format!("the free play of `{name}` opens"),
-        };
-        let value = self.equations.twist_state[shaft]
-            .map_or(0.0, |place| self.state[place] * self.equations.scale[place]);
-        self.observer.events.push(Event {
-            time: self.time,
-            kind,
-            of: name,
-            value,
-            unit: "rad",
-            text,
-        });
-    }
-
-    fn warn_of_jolt(&mut self, assembly: &Assembly) {
-        if self.equations.model.scenario.start == Start::Steady {
-            return;
-        }
-        let evaluator =
-            Evaluator { equations: self.equations, assembly, overrides: &self.overrides };
-        let rhs = Rhs::new(evaluator);
-        let mut rates = vec![0.0; self.equations.size];
-        rhs.system(0.0, &self.state, &mut rates);
-        // Time in which the first accelerations would bring a body to its working speed.
-        let fastest =
-            rates[..self.equations.speeds].iter().fold(0.0_f64, |a, rate| a.max(rate.abs()));
-        if fastest * self.equations.model.scenario.duration > 1e-3 {
-            self.warnings.push((
-                "start".to_owned(),
-                "begins with a jolt: at 0 s the train is not in balance (`start: steady` begins at an operating point)"
-                    .to_owned(),
-            ));
-        }
-    }
-
-    fn give_up_chatter(&mut self) {
-        let names: Vec<&str> = self
-            .equations
-            .frictions
-            .iter()
-            .zip(&self.mode.frictions)
-            .filter(|(_, mode)| **mode != FrictionMode::Absent)
-            .map(|(friction, _)| friction.name.as_str())
-            .collect();
-        self.failure = Some(format!(
-            "the equations change without end at {} s (friction at work: {}); give the elements different limits, or a shaft between them",
-            self.time,
-            if names.is_empty() { "none".to_owned() } else { names.join(", ") }
-        ));
-    }
-
-    fn give_up(&mut self, time: f64, fault: Option<(f64, usize)>) {
-        self.failure = Some(match fault {
-            Some((at, place)) => format!(
-                "the rate of {} is not a number at {at} s; a law or a signal leaves its range there",
-                self.state_name(place)
-            ),
-            None => format!(
-                "the step became too small at {time} s; a larger tolerance, `max_step`, or less stiffness may help"
-            ),
-        });
-    }
-
-    fn state_name(&self, place: usize) -> String {
-        let scenario = &self.equations.model.scenario;
-        if let Some(body) = self.equations.model.reduction.independent.get(place) {
-            return format!("the speed of `{}`", scenario.bodies[*body].name);
-        }
-        if let Some(shaft) =
-            self.equations.twist_state.iter().position(|state| *state == Some(place))
-        {
-            return format!("the twist of `{}`", scenario.shafts[shaft].name);
-        }
-        if let Some(magnet) = self.equations.phase_state.iter().position(|state| *state == place) {
-            return format!("the phase of `{}`", self.equations.model.magnets[magnet].name);
-        }
-        "a controller".to_owned()
     }
 }

@@ -40,9 +40,9 @@ pub fn stable_step(evaluator: &Evaluator<'_>, method: Method, time: f64, state: 
         for _ in 0..30 {
             let middle = 0.5 * (low + high);
             if tableau.growth(middle * unit_re, middle * unit_im) <= 1.0 {
-                low = middle
+                low = middle;
             } else {
-                high = middle
+                high = middle;
             }
         }
         cap = f64::min(cap, SHARE * low / size);

@@ -111,7 +111,7 @@ fn widen(column: &mut Option<Column>, value: f64) {
     match column {
         None => {
             *column =
-                Some(Column { first: value, min: value, max: value, last: value, min_first: true })
+                Some(Column { first: value, min: value, max: value, last: value, min_first: true });
         }
         Some(column) => {
             column.last = value;

@@ -1,5 +1,6 @@
 //! Runs that are interrupted or killed.
 #![cfg(unix)]
+#![allow(clippy::zombie_processes, reason = "the child is waited for, or the test fails")]
 
 use super::bench::{Bench, json, names};
 use std::process::{Child, Command};

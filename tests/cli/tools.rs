@@ -43,7 +43,7 @@ fn help_lists_every_kind_of_starting_file() {
 }
 
 /// Closed forms for two bodies and a coupling of p pole pairs: K = 80/4 = 20 N*m, inertia along
-/// the phase 1/J_e = p^2 (1/J_a + 1/J_b) = 16 (10 + 5), f = sqrt(K/J_e)/(2 pi) = sqrt(4800)/(2 pi).
+/// the phase `1/J_e` = p^2 (`1/J_a` + `1/J_b`) = 16 (10 + 5), f = `sqrt(K/J_e)/(2` pi) = sqrt(4800)/(2 pi).
 #[test]
 fn check_gives_the_figures_of_the_train() {
     let bench = Bench::new("figures");
@@ -61,7 +61,7 @@ fn check_gives_the_figures_of_the_train() {
     assert_eq!(file["bodies"]["driven"]["referred_inertia"], 0.2);
 }
 
-/// By hand: with the ring of pieces held, 4 w_i + 22 w_o = 0; the outer side seen from the motor
+/// By hand: with the ring of pieces held, 4 `w_i` + 22 `w_o` = 0; the outer side seen from the motor
 /// has its inertia over 5.5^2.
 #[test]
 fn check_refers_inertias_through_the_gear() {

@@ -87,6 +87,7 @@ fn playground() -> PathBuf {
     let folder = Path::new(env!("CARGO_TARGET_TMPDIR")).join(name);
     let scenarios = folder.join("scenarios");
     fs::create_dir_all(&scenarios).expect("a folder for the test can be made");
+    fs::create_dir_all(folder.join("output")).expect("a folder for results can be made");
     for entry in fs::read_dir(package.join("scenarios")).expect("the scenarios can be read") {
         let path = entry.expect("an entry can be read").path();
         let to = scenarios.join(path.file_name().expect("a file has a name"));

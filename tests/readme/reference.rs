@@ -4,6 +4,7 @@
 //! between the marks is then written anew.
 
 use crate::{path, text};
+use lodeshaft::analysis::study::spec;
 use lodeshaft::quantity::{Dimension, format_number, units};
 use lodeshaft::scenario::describe::root;
 use lodeshaft::signal::read::describe_forms;
@@ -40,13 +41,19 @@ impl Rows {
                 format!("{path}.{}", field.key)
             };
             let holds = self::holds(field, counted);
-            let _ = writeln!(self.text, "| `{key}` | {holds} | {} |", field.doc);
+            // A bar would end the cell.
+            let doc = field.doc.replace('|', "\\|");
+            let _ = writeln!(self.text, "| `{key}` | {holds} | {doc} |");
             match &field.shape {
                 Shape::Group(inside) | Shape::QuantityOrGroup(_, _, inside) => {
                     self.add(&key, inside, true);
                 }
                 Shape::List(inside) => self.add(&format!("{key}.0"), inside, true),
                 Shape::Choice(inside) => self.add(&key, inside, false),
+                // Those of the file itself have tables of their own.
+                Shape::Section(inside) if !path.is_empty() => {
+                    self.add(&format!("{key}.NAME"), inside, true);
+                }
                 _ => {}
             }
         }
@@ -55,7 +62,18 @@ impl Rows {
 
 /// What a key holds, in a few words.
 fn holds(field: &FieldDescription, counted: bool) -> String {
-    let mut words = shape(&field.shape);
+    let mut words = match (field.key, &field.shape) {
+        ("sum" | "product", Shape::Free) => "list of SIGNALs".to_owned(),
+        ("document", Shape::Free) => "map of text".to_owned(),
+        ("point", Shape::Free) => "`steady` or a time".to_owned(),
+        ("between" | "speed_range" | "operating", Shape::Free) => "list of two values".to_owned(),
+        ("accuracy", Shape::Free) => "share or value".to_owned(),
+        ("changes" | "vary" | "spread", Shape::Free) => "map of dotted paths".to_owned(),
+        ("requirements", Shape::Free) => "map of requirements".to_owned(),
+        ("channels", Shape::Free) => "list of channels".to_owned(),
+        ("studies", Shape::Free) => "map of named studies".to_owned(),
+        (_, other) => shape(other),
+    };
     if !counted {
         return words;
     }
@@ -103,7 +121,7 @@ fn shape(shape: &Shape) -> String {
         }
         Shape::Signals => "map of named signals".to_owned(),
         Shape::OfChannel => "quantity like the channel's".to_owned(),
-        Shape::Free => "see above".to_owned(),
+        Shape::Free => "any value".to_owned(),
     }
 }
 
@@ -131,6 +149,10 @@ fn reference() -> String {
             text.push_str(&Rows::of(inside));
         }
     }
+    text.push_str("\n#### Things of `studies`\n\n");
+    let mut rows = Rows { text: "| key | holds | meaning |\n| --- | --- | --- |\n".to_owned() };
+    rows.add("", &spec::describe(), false);
+    text.push_str(&rows.text);
     text.push_str("\n#### Forms of a SIGNAL (here of a torque)\n\n");
     let mut rows = Rows { text: "| key | holds | meaning |\n| --- | --- | --- |\n".to_owned() };
     rows.add("", &describe_forms(Dimension::Torque), false);
@@ -214,8 +236,8 @@ fn count(fields: &[FieldDescription]) -> usize {
 fn no_key_is_left_out() {
     let made = reference();
     let rows = made.lines().filter(|line| line.starts_with("| `")).count();
-    let signals = count(&describe_forms(Dimension::Torque));
-    assert_eq!(rows, count(&root()) + signals, "each key has a row of its own");
+    let others = count(&describe_forms(Dimension::Torque)) + count(&spec::describe());
+    assert_eq!(rows, count(&root()) + others, "each key has a row of its own");
     // The reference is read by eye too: a few keys at every depth.
     for key in ["| `inertia` |", "| `law.rating_plate.power` |", "| `harmonics.0.order` |"] {
         assert!(made.contains(key), "{key}");

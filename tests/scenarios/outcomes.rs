@@ -2,7 +2,7 @@
 //!
 //! Slips and states are exact; figures are recorded from the program and held to a percent, so
 //! that a change of the physics shows. What they ought to be stands in `stories`.
-//! `hoist_stop` was integrated apart with SciPy (DOP853 at 1e-9, brakes smoothed): 18 slips,
+//! `hoist_stop` was integrated apart with `SciPy` (DOP853 at 1e-9, brakes smoothed): 18 slips,
 //! pinion shaft 6.33 kN*m, drum 5.095 rad/s.
 
 use crate::runner::{all, run, same};
@@ -79,11 +79,11 @@ const OUTCOMES: [Outcome; 13] = [
         stem: "overload_burst",
         status: 0,
         gear: "gear",
-        slips: 6..=6,
+        slips: 20..=20,
         state: "synchronous",
         figures: &[
-            ("gears/gear/resynchronised_at", 1.321),
-            ("channels/gear.slip_speed/max", 254.9),
+            ("gears/gear/resynchronised_at", 1.4084),
+            ("channels/gear.slip_speed/max", 631.9),
         ],
         failing: &[],
     },
@@ -97,7 +97,7 @@ const OUTCOMES: [Outcome; 13] = [
             ("gears/gear/peak_pull_out_share", 0.7363),
             ("gears/gear/peak_load_angle", 0.8275),
             ("motors/line_motor/run_up_time", 0.1906),
-            ("motors/line_motor/rotor_heat", 6025.0),
+            ("motors/line_motor/rotor_heat", 5136.0),
         ],
         failing: &[],
     },

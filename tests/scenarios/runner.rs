@@ -16,7 +16,7 @@ pub fn all() -> Vec<String> {
         .expect("the folder of the scenarios can be read")
         .map(|entry| entry.expect("an entry can be read").path())
         .filter(|path| path.extension().is_some_and(|ending| ending == "yaml"))
-        .map(|path| path.file_stem().expect("a file has a stem").display().to_string())
+        .map(|path| path.file_stem().expect("a file has a stem").to_string_lossy().into_owned())
         .collect();
     stems.sort();
     stems

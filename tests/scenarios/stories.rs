@@ -9,7 +9,7 @@ const RPM: f64 = PI / 30.0;
 
 #[test]
 fn pump_start_ends_at_the_load_angle_of_statics() {
-    let found = run("pump_start", &[]);
+    let found = run("pump_start", &["duration=3 s"]);
     // Closed form: sin(load angle) = torque over pull-out torque; the motor shaft's friction
     // does not pass the gear.
     let torque = found.last("pump.torque") + found.last("gland.torque");
@@ -36,26 +36,25 @@ fn tripped_gear_catches_because_the_motor_torque_is_gone() {
     let tripped = run("pump_start_trip", &[]);
     let caught = tripped.number("gears/gear/resynchronised_at");
     assert!(caught < 1.5, "{caught}");
-    // Without the trip it goes on to the end, with no motor torque to speak of needed.
+    // Without the trip it goes on to the end, though the motor hardly pulls any more.
     let waiting = run("pump_start_trip", &["protections.trip.delay=100 s"]);
     assert_eq!(waiting.state("gear"), "slipping");
-    assert!(waiting.slips("gear") > 10 * tripped.slips("gear"));
+    assert!(waiting.slips("gear") > 3 * tripped.slips("gear"));
 }
 
 #[test]
-fn burst_slips_as_many_poles_as_the_inner_rotor_passes() {
+fn burst_is_caught_by_the_cage() {
+    let cage = "magnetic_gears.gear.damping.coefficient";
     let found = run("overload_burst", &[]);
-    // The mixer stands from about 1.045 s to 1.3 s while the servo holds 390 rpm: the phase grows
-    // by four pole pairs times that, to which a part of a pole at either end comes.
-    let poles = 4.0 * 390.0 / 60.0 * 0.255;
-    let slips = found.number("gears/gear/net_slips");
-    assert!((slips - poles).abs() < 1.0, "{slips} slips, {poles} poles pass");
-    // The cage makes the difference: with a twentieth of its damping the gear goes on slipping.
-    let bare = run(
-        "overload_burst",
-        &["magnetic_gears.gear.damping.coefficient=2.5 N*m*s/rad", "duration=3 s"],
-    );
-    assert_ne!(bare.state("gear"), "synchronous");
+    let weak = run("overload_burst", &[&format!("{cage}=4 N*m*s/rad")]);
+    assert_eq!(weak.state("gear"), "slipping");
+    assert!(weak.last("mixer.speed") < 0.5 * found.last("mixer.speed"));
+    // A damper that does not fade flatters the recovery.
+    let straight = run("overload_burst", &["magnetic_gears.gear.damping.peak_at=1000 rad/s"]);
+    assert!(straight.slips("gear") < found.slips("gear"));
+    // Closed form: paste and pull-out torque give the load angle; 2.8 N*m*s/rad, 260 N*m.
+    let angle = (2.8 * found.last("mixer.speed") / 260.0).asin();
+    same(found.number("gears/gear/final_load_angle"), angle, 1e-6);
 }
 
 #[test]
@@ -79,10 +78,7 @@ fn conveyor_stop_reverses_the_torque_as_rigid_bodies_do() {
 
 #[test]
 fn conveyor_slips_when_the_same_brake_closes_at_once() {
-    let sudden = run(
-        "conveyor_stop",
-        &["brakes.stop.applied={ step: { at: 1 s, from: 0, to: 1 } }", "duration=2 s"],
-    );
+    let sudden = run("conveyor_stop", &["brakes.stop.applied.ramp.end=1.001 s", "duration=2 s"]);
     assert!(sudden.slips("gear") > 0);
 }
 
@@ -170,8 +166,9 @@ fn bench_reads_the_pull_out_torque_of_the_coupling() {
 
 #[test]
 fn fan_slips_when_switched_straight_onto_the_line() {
-    let direct =
-        run("fan_soft_start", &["motors.fan_motor.law.rating_plate.voltage=1", "duration=3 s"]);
+    let voltage = "motors.fan_motor.law.rating_plate.voltage.ramp";
+    let full = [&format!("{voltage}.from=1"), &format!("{voltage}.to=1"), "duration=3 s"];
+    let direct = run("fan_soft_start", &full);
     assert!(direct.slips("gear") > 0);
     assert_ne!(direct.state("gear"), "synchronous");
 }

@@ -24,7 +24,7 @@ const STUDY: &str = "  cases:
 fn each_case_has_the_verdict_of_its_closed_form() {
     // 60 N*m at once: 0.6 of 100 holds, 0.75 of 80 does not (0.7246); brought up slowly 0.75
     // of 80 holds, with a share little above 0.75.
-    assert!(60.0 / 100.0 < LIMIT && 60.0 / 80.0 > LIMIT);
+    const { assert!(60.0 / 100.0 < LIMIT && 60.0 / 80.0 > LIMIT) };
     let folder = Folder::new(&train(60.0, 100.0, STUDY));
     let (status, answers, stderr) = folder.study(&[]);
     assert_eq!(status, Some(1), "{stderr}");

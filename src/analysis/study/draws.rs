@@ -4,7 +4,7 @@
 //! u_i = (p_i + r_i)/n        p a random order of 0..n-1, r uniform in [0, 1), one stream a number
 //! x_i = F^-1(u_i)            F the distribution of the number
 //! ```
-//! McKay, Beckman and Conover (Technometrics 21, 1979). Each number has a stream of its own
+//! `McKay`, Beckman and Conover (Technometrics 21, 1979). Each number has a stream of its own
 //! from the seed and its path, so that the draws of one do not change when another is added.
 
 use super::fingerprint::Fingerprint;

@@ -92,7 +92,7 @@ impl Columns {
             match channel {
                 None => cells.extend(std::iter::repeat_n(String::new(), 5)),
                 Some(it) => {
-                    cells.extend([it.min, it.min_time, it.max, it.max_time, it.last].map(plain))
+                    cells.extend([it.min, it.min_time, it.max, it.max_time, it.last].map(plain));
                 }
             }
         }

@@ -9,7 +9,7 @@ use crate::signal::course::Overrides;
 use nalgebra::{DMatrix, DVector};
 
 /// Torque that still counts as balanced, relative to the torques at work.
-const CLOSED: f64 = 1e-11;
+pub(super) const CLOSED: f64 = 1e-11;
 
 /// Points of the scan over speed on each side of the given one.
 const SCAN: usize = 3000;
@@ -29,10 +29,11 @@ pub struct Balance {
     pub at_rest: Vec<Option<f64>>,
 }
 
-struct Search<'a> {
-    external: External<'a>,
-    motions: &'a DMatrix<f64>,
-    mass: DMatrix<f64>,
+/// A search for a balance.
+pub(super) struct Search<'a> {
+    pub(super) external: External<'a>,
+    pub(super) motions: &'a DMatrix<f64>,
+    pub(super) mass: DMatrix<f64>,
 }
 
 impl Balance {
@@ -63,11 +64,11 @@ impl Balance {
 }
 
 impl Search<'_> {
-    fn equations(&self) -> &Equations {
+    pub(super) fn equations(&self) -> &Equations {
         self.external.equations
     }
 
-    fn speeds(&self, motion: &DVector<f64>) -> DVector<f64> {
+    pub(super) fn speeds(&self, motion: &DVector<f64>) -> DVector<f64> {
         if self.motions.ncols() == 0 {
             DVector::zeros(self.equations().speeds)
         } else {
@@ -80,7 +81,7 @@ impl Search<'_> {
     }
 
     /// Net torque along each motion, and the sum of magnitudes at work.
-    fn net(&self, motion: &DVector<f64>, commands: &[Command]) -> (DVector<f64>, f64) {
+    pub(super) fn net(&self, motion: &DVector<f64>, commands: &[Command]) -> (DVector<f64>, f64) {
         let (torque, at_work) = self.external.torque(&self.speeds(motion), commands);
         (self.motions.transpose() * torque, at_work)
     }
@@ -178,139 +179,12 @@ impl Search<'_> {
         left >= 0.0 && right <= 0.0
     }
 
-    /// Several motions: pseudo-time steps that follow the train towards a balance, then Newton.
-    fn many(&self, given: &DVector<f64>) -> Result<Balance, SteadyError> {
-        let count = given.len();
-        let mut motion = given.clone();
-        let mut commands: Vec<Command> = self
-            .equations()
-            .controllers
-            .iter()
-            .enumerate()
-            .map(|(index, controller)| {
-                if controller.integral.is_some() && self.external.scale(index) != 0.0 {
-                    Command::Fixed(0.0)
-                } else {
-                    Command::ByLaw
-                }
-            })
-            .collect();
-        for _ in 0..4 {
-            motion = self.newton(motion, &mut commands, count)?;
-            let mut changed = false;
-            for (index, command) in commands.iter_mut().enumerate() {
-                let limit = self.equations().controllers[index].limit;
-                if let Command::Fixed(torque) = *command {
-                    if torque.abs() > limit * (1.0 + 1e-9) {
-                        *command = Command::ByLaw;
-                        changed = true;
-                    }
-                }
-            }
-            if !changed {
-                return self.settled_with(&motion, &commands);
-            }
-        }
-        Err(SteadyError {
-            message: "no torque balance within the limits of the controllers".to_owned(),
-        })
-    }
-
-    /// Solves the balance with the commands of integrating controllers as unknowns.
-    fn newton(
-        &self,
-        start: DVector<f64>,
-        commands: &mut [Command],
-        count: usize,
-    ) -> Result<DVector<f64>, SteadyError> {
-        let open: Vec<usize> = (0..commands.len())
-            .filter(|index| matches!(commands[*index], Command::Fixed(_)))
-            .collect();
-        // Members that are given at rest and held by friction stay at rest while a balance is sought.
-        let held: Vec<DVector<f64>> = self
-            .equations()
-            .frictions
-            .iter()
-            .filter(|friction| {
-                let speed = self.external.relative(friction, &self.speeds(&start));
-                speed.abs() <= REST * friction.speed_size && self.external.breakaway(friction) > 0.0
-            })
-            .map(|friction| {
-                (self.equations().model.reduction.dense(&friction.row).transpose() * self.motions)
-                    .transpose()
-            })
-            .filter(|row| row.amax() > 1e-12)
-            .collect();
-        let total = count + open.len() + held.len();
-        let scale = DVector::from_fn(count, |column, _| {
-            (0..self.equations().speeds)
-                .filter(|place| self.motions[(*place, column)].abs() > 1e-12)
-                .map(|place| self.equations().scale[place] / self.motions[(place, column)].abs())
-                .fold(f64::INFINITY, f64::min)
-        });
-        let mut unknown = DVector::zeros(total);
-        unknown.rows_mut(0, count).copy_from(&start);
-        let residual = |unknown: &DVector<f64>, commands: &mut [Command]| {
-            for (line, index) in open.iter().enumerate() {
-                commands[*index] = Command::Fixed(unknown[count + line]);
-            }
-            let motion = unknown.rows(0, count).into_owned();
-            let (mut net, at_work) = self.net(&motion, commands);
-            for (line, row) in held.iter().enumerate() {
-                net += row * unknown[count + open.len() + line];
-            }
-            let mut all = DVector::zeros(total);
-            all.rows_mut(0, count).copy_from(&net);
-            for (line, index) in open.iter().enumerate() {
-                all[count + line] = self.external.error(*index, &self.speeds(&motion));
-            }
-            for (line, row) in held.iter().enumerate() {
-                all[count + open.len() + line] = row.dot(&motion);
-            }
-            (all, at_work)
-        };
-        let mut pseudo_step = 1e-3;
-        for _ in 0..400 {
-            let (now, at_work) = residual(&unknown, commands);
-            let size = at_work.max(f64::MIN_POSITIVE);
-            if now.rows(0, count).amax() <= CLOSED * size && pseudo_step > 1e3 {
-                break;
-            }
-            let mut slope = DMatrix::zeros(total, total);
-            for column in 0..total {
-                let width =
-                    if column < count { 1e-7 * scale[column].min(1e9) } else { 1e-6 * size };
-                let mut moved = unknown.clone();
-                moved[column] += width;
-                let (there, _) = residual(&moved, commands);
-                slope.set_column(column, &((there - &now) / width));
-            }
-            for row in 0..count {
-                for column in 0..count {
-                    slope[(row, column)] -= self.mass[(row, column)] / pseudo_step;
-                }
-            }
-            let Ok(step) = slope.svd(true, true).solve(&(-&now), 1e-14) else { break };
-            unknown += step;
-            pseudo_step *= 1.5;
-        }
-        let (now, at_work) = residual(&unknown, commands);
-        let motion = unknown.rows(0, count).into_owned();
-        if now.rows(0, count).amax() > 1e-9 * at_work.max(f64::MIN_POSITIVE)
-            || !now.iter().all(|v| v.is_finite())
-        {
-            let worst = now.rows(0, count).icamax();
-            return Err(self.missing(now[worst], &motion));
-        }
-        Ok(motion)
-    }
-
     fn settled(&self, motion: &DVector<f64>) -> Result<Balance, SteadyError> {
         self.settled_with(motion, &self.by_law())
     }
 
     /// Completes a balance: what controllers and resting friction must carry to close it.
-    fn settled_with(
+    pub(super) fn settled_with(
         &self,
         motion: &DVector<f64>,
         commands: &[Command],
@@ -344,7 +218,7 @@ impl Search<'_> {
         }
         let at_rest = self.hold_at_rest(&speeds, &mut torque, &mut at_work)?;
         let left = self.motions.transpose() * &torque;
-        if left.len() > 0
+        if !left.is_empty()
             && left.amax() > 1e-8 * at_work.max(f64::MIN_POSITIVE) * self.motions.amax()
         {
             return Err(self.missing(left[left.icamax()], motion));
@@ -422,7 +296,7 @@ impl Search<'_> {
     }
 
     /// The error that names the member at which torque is missing.
-    fn missing(&self, net: f64, motion: &DVector<f64>) -> SteadyError {
+    pub(super) fn missing(&self, net: f64, motion: &DVector<f64>) -> SteadyError {
         let equations = self.equations();
         let torque = self.external.torque(&self.speeds(motion), &self.by_law()).0;
         let place = torque.icamax();

@@ -11,6 +11,7 @@
 
 mod balance;
 mod external;
+mod several;
 
 use crate::component::law::Law;
 use crate::equations::assembly::assemble;

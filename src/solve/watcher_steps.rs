@@ -1,0 +1,89 @@
+//! The short way of a calm step, and where a guard trips within another.
+
+use super::guards::TRIP;
+use super::locate;
+use super::rhs::{Powers, Rhs};
+use super::watcher::Watcher;
+
+/// The first pair of shares between which a guard trips; a dip between samples is looked into.
+pub(super) fn bracket(
+    shares: &[f64],
+    values: &[Vec<f64>],
+    guard: usize,
+    mut at: impl FnMut(f64) -> f64,
+) -> Option<(f64, f64)> {
+    let value = |index: usize| values[index][guard];
+    if value(0) < -TRIP {
+        return Some((0.0, 0.0));
+    }
+    for index in 1..shares.len() {
+        if value(index) < -TRIP {
+            return Some((shares[index - 1], shares[index]));
+        }
+        if index + 1 < shares.len() {
+            let places = [shares[index - 1], shares[index], shares[index + 1]];
+            let heights = [value(index - 1), value(index), value(index + 1)];
+            if let Some((place, low)) = locate::vertex(places, heights) {
+                let near = low < 0.1 * heights[0].min(heights[2]);
+                if near && low < heights[1].min(heights[0]).min(heights[2]) && heights[2] >= -TRIP {
+                    let (place_low, depth) =
+                        locate::maximum(places[0], places[2], |share| -at(share));
+                    if -depth < -TRIP {
+                        return Some((places[0], place_low));
+                    }
+                    let _ = place;
+                }
+            }
+        }
+    }
+    None
+}
+
+impl Watcher<'_, '_> {
+    /// The short way for a step in which nothing can happen: audit and angles only.
+    pub(super) fn load_calm(&mut self, rhs: &Rhs<'_>, time: f64, state: &[f64], rates: &[f64]) {
+        let length = time - self.time;
+        let count = self.tableau.stages();
+        let ring = rhs.ring();
+        let b = self.tableau.b;
+        let mut sum = Powers::default();
+        sum.add(b[0], &self.power);
+        let speeds = self.observer.counters.angles.len();
+        self.inner_sums.clear();
+        self.inner_sums.extend(self.rate[..speeds].iter().map(|rate| self.state_weights[0] * rate));
+        for stage in 1..count {
+            let back = count - stage;
+            sum.add(b[stage], ring.powers(back));
+            let weight = self.state_weights[stage];
+            if weight != 0.0 {
+                for (inner, rate) in self.inner_sums.iter_mut().zip(&ring.rates(back)[..speeds]) {
+                    *inner += weight * rate;
+                }
+            }
+        }
+        self.observer.energy.add(length, &sum);
+        self.power = *ring.powers(0);
+        for place in 0..self.heats.len() {
+            let mut heat = b[0] * self.heats[place];
+            for stage in 1..count {
+                heat += b[stage] * ring.heats(count - stage)[place];
+            }
+            self.observer.heats[place] += length * heat;
+            self.heats[place] = ring.heats(0)[place];
+        }
+        let scale = &self.observer.speed_scale;
+        let angles = self.observer.counters.angles.iter_mut().zip(scale);
+        for (((sum, scale), value), inner) in angles.zip(&self.state).zip(&self.inner_sums) {
+            *sum += scale * length * (value + length * inner);
+        }
+        drop(ring);
+        if let Some(tracer) = &mut self.observer.tracer {
+            self.calm.trace(tracer, self.time, time);
+        }
+        self.time = time;
+        self.state.copy_from_slice(state);
+        self.rate.copy_from_slice(rates);
+        self.last_steps = [self.last_steps[1], length];
+        self.steps += 1;
+    }
+}
