@@ -4,7 +4,7 @@ use crate::analysis::linear_point::LinearPoint;
 use crate::component::channel::{ChannelKind, MagneticChannel};
 use crate::equations::assembly::assemble;
 use crate::equations::frame::{Counters, Evaluator, Frame};
-use crate::equations::{Equations, Owner};
+use crate::equations::{Equations, Owner, Sliding};
 use crate::solve::steady;
 
 /// An operating point, SI.
@@ -130,7 +130,11 @@ pub fn at(equations: &Equations, point: &LinearPoint) -> OperatingPoint {
         lost: 0.0,
         efficiency: None,
     };
-    let rubs = |owner: Owner| equations.frictions.iter().any(|friction| friction.owner == owner);
+    let rubs = |owner: Owner| {
+        equations.frictions.iter().any(|friction| {
+            friction.owner == owner && matches!(friction.sliding, Sliding::Constant(_))
+        })
+    };
     let (mut motors, mut loads) = (0, 0);
     for actor in &sums.actors {
         let lost = match actor.kind {
@@ -151,7 +155,13 @@ pub fn at(equations: &Equations, point: &LinearPoint) -> OperatingPoint {
         }
     }
     debug_assert_eq!(motors, model.scenario.motors.len());
-    sums.lost += sums.magnets.iter().map(|magnet| magnet.loss).sum::<f64>();
+    for magnet in &mut sums.magnets {
+        // Slip speeds are zero but for rounding, and so is what the damper loses.
+        if magnet.loss <= 1e-15 * sums.supplied {
+            magnet.loss = 0.0;
+        }
+        sums.lost += magnet.loss;
+    }
     sums.efficiency = (sums.supplied > 0.0).then(|| sums.absorbed / sums.supplied);
     sums
 }

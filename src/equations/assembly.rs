@@ -212,7 +212,11 @@ pub fn assemble(
             fixed: (0.0, [0.0; 2]),
             factor,
             column: parts.column(&friction.row),
-            power: PowerKind::Lost,
+            // A load by points takes power out of the train, friction turns it to heat.
+            power: match &friction.sliding {
+                Sliding::Constant(_) => PowerKind::Lost,
+                Sliding::Curve(_) => PowerKind::Drive,
+            },
             speed: None,
             heat: None,
         });

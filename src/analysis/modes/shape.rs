@@ -2,7 +2,7 @@
 
 use super::linear::LinearTrain;
 use crate::analysis::linear_point::LinearPoint;
-use crate::equations::assembly::{Function, assemble};
+use crate::equations::assembly::{Active, Function, assemble};
 use crate::equations::frame::Evaluator;
 use crate::equations::{Equations, Owner, Shape, StateRow, Target};
 use nalgebra::{Complex, DMatrix, DVector};
@@ -175,16 +175,14 @@ impl DampingSources {
         let assembly =
             assemble(equations, &point.mode, point.time, f64::INFINITY, &point.overrides);
         let evaluator = Evaluator { equations, assembly: &assembly, overrides: &point.overrides };
-        let name = |owner: Owner| match owner {
-            Owner::Motor(index) => scenario.motors[index].name.clone(),
-            Owner::Load(index) => scenario.loads[index].name.clone(),
-            Owner::Brake(index) => scenario.brakes[index].name.clone(),
-            Owner::Magnet(index) => model.magnets[index].name.clone(),
-        };
+        let name = |owner: Owner| name_of(equations, owner);
         let signal = |slot| equations.bank.value(slot, point.time, &point.overrides);
         let mut torques = Vec::new();
         for active in assembly.active.iter().chain(&assembly.folded) {
-            let Some(term) = equations.terms.get(active.place) else { continue };
+            let Some(term) = equations.terms.get(active.place) else {
+                torques.extend(curve_load(equations, &evaluator, active, point));
+                continue;
+            };
             let Target::Torque(direction) = &term.target else { continue };
             let (input, _) = evaluator.law(active, point.time, &point.state);
             let parameters = term.parameters.map(|slot| slot.map_or(0.0, signal));
@@ -252,6 +250,35 @@ impl DampingSources {
             .map(|(name, power)| (name.to_owned(), power / sum))
             .collect()
     }
+}
+
+fn name_of(equations: &Equations, owner: Owner) -> String {
+    let scenario = &equations.model.scenario;
+    match owner {
+        Owner::Motor(index) => scenario.motors[index].name.clone(),
+        Owner::Load(index) => scenario.loads[index].name.clone(),
+        Owner::Brake(index) => scenario.brakes[index].name.clone(),
+        Owner::Magnet(index) => equations.model.magnets[index].name.clone(),
+    }
+}
+
+/// A load by points that sticks at standstill, while it turns; friction follows no speed.
+fn curve_load(
+    equations: &Equations,
+    evaluator: &Evaluator<'_>,
+    active: &Active,
+    point: &LinearPoint,
+) -> Option<Torque> {
+    let Function::FrictionCurve(law, _) = &active.function else { return None };
+    let friction = equations.frictions.get(active.place.checked_sub(equations.terms.len())?)?;
+    let input = active.input_at(&point.state);
+    let slope = law.slope(input, [0.0; 2], law.piece_at(input))
+        * evaluator.strength(&active.factor, point.time);
+    Some(Torque {
+        name: name_of(equations, friction.owner),
+        direction: equations.model.reduction.dense(&friction.row),
+        form: active.input.iter().map(|(place, weight)| (*place, weight * slope)).collect(),
+    })
 }
 
 /// Overlap of two full vectors in kinetic energy, 0 to 1: 1 for the same motion.

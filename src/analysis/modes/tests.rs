@@ -391,3 +391,17 @@ fn faults_of_the_study_are_told_where_they_stand() {
         assert!(faults.contains(message), "{yaml}: {faults}");
     }
 }
+
+// A load by points that sticks at standstill has a slope while it turns: 5 N m s/rad on one body of
+// 2 kg m2 gives the root -5/2 (closed form); dry friction beside it adds nothing.
+#[test]
+fn a_load_by_points_damps_with_its_slope() {
+    let found = modes(
+        "bodies: { a: { inertia: 2, speed: 10 rad/s } }
+motors: { drive: { body: a, law: { prescribed: { torque: 107 } } } }
+loads: { mill: { body: a, law: { curve: { points: [[0 rad/s, 50], [20 rad/s, 150]] } } }, gland: { body: a, law: { friction: { sliding: 7 } } } }",
+    );
+    assert_eq!(found.overdamped.len(), 1);
+    close(found.overdamped[0].rate, -2.5, 1e-12);
+    assert!(found.free.is_empty());
+}
