@@ -253,4 +253,8 @@ fn softening(
 }
 
 #[cfg(test)]
+mod diagram_tests;
+#[cfg(test)]
+mod independent_tests;
+#[cfg(test)]
 mod tests;
