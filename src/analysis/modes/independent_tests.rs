@@ -1,4 +1,4 @@
-//! Whole trains against an independent model: SciPy, absolute angles of the bodies, laws
+//! Whole trains against an independent model: `SciPy`, absolute angles of the bodies, laws
 //! differentiated numerically, eigenvalues of the dense matrix.
 
 use super::*;
