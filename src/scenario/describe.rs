@@ -60,7 +60,7 @@ impl From<&Shape> for Kind {
             Shape::Names(_) => Self::Names,
             Shape::Group(inside) => Self::Map(inside.clone()),
             Shape::List(inside) => Self::List(inside.clone()),
-            Shape::Section(inside) => Self::Section(inside.clone()),
+            Shape::Section(inside) | Shape::Paths(inside) => Self::Section(inside.clone()),
             Shape::Choice(inside) => Self::Choice(inside.clone()),
             Shape::QuantityOrGroup(dimension, _, inside) => {
                 Self::QuantityOrMap(*dimension, inside.clone())

@@ -44,7 +44,7 @@ impl MonteCarlo {
             "Largest share of the draws in which a magnetic gear or coupling slips; gives a verdict.",
         );
         let section = fields.path_of("spread");
-        let spreads = fields.section(
+        let spreads = fields.paths(
             "spread",
             "Numbers of the file by their dotted paths, with the way they scatter.",
             |spread| Spread::read(spread, &section, context),
