@@ -8,7 +8,7 @@ use crate::quantity::Dimension;
 use crate::tree::{Fields, Node, Range};
 
 /// Draws beyond this are a mistake.
-const MOST_DRAWS: i64 = 10_000_000;
+const MOST_DRAWS: i64 = 1_000_000;
 
 /// Many runs with numbers of the file drawn at random.
 #[derive(Clone, Debug, PartialEq)]

@@ -7,7 +7,7 @@ use crate::diagnostic::Spot;
 use crate::tree::{Fields, Node};
 
 /// Runs beyond this are a mistake.
-const MOST_RUNS: usize = 10_000_000;
+const MOST_RUNS: usize = 1_000_000;
 
 /// Runs over all values of one or two numbers.
 #[derive(Clone, Debug, PartialEq)]
