@@ -66,7 +66,8 @@ fn holds(field: &FieldDescription, counted: bool) -> String {
     let mut words = match (field.key, &field.shape) {
         ("sum" | "product", Shape::Free) => "list of SIGNALs".to_owned(),
         ("document", Shape::Free) => "map of text".to_owned(),
-        ("between", Shape::Free) => "list of two values".to_owned(),
+        ("point", Shape::Free) => "`steady` or a time".to_owned(),
+        ("between" | "speed_range" | "operating", Shape::Free) => "list of two values".to_owned(),
         ("accuracy", Shape::Free) => "share or value".to_owned(),
         ("changes" | "vary" | "spread", Shape::Free) => "map of dotted paths".to_owned(),
         ("requirements", Shape::Free) => "map of requirements".to_owned(),
