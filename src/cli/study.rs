@@ -263,12 +263,11 @@ fn tell_cost(name: &str, cost: &Cost) {
     }
     let threads = if cost.threads == 1 { "1 thread" } else { &format!("{} threads", cost.threads) };
     let rate = cost.runs as f64 / elapsed;
-    // Everything that is not integrating, as a share of the threads' time.
-    let busy = cost.integrating.as_secs_f64() / (elapsed * cost.threads as f64);
+    let preparing = cost.preparing.as_secs_f64() / cost.integrating.as_secs_f64().max(1e-9);
     streams::tell(&format!(
-        "{name}: {} runs in {elapsed:.1} s on {threads}, {rate:.1} a second, {:.0} % of the time integrating\n",
+        "{name}: {} runs in {elapsed:.1} s on {threads}, {rate:.1} a second; reading and building took {:.1} % beside integrating\n",
         cost.runs,
-        100.0 * busy.min(1.0)
+        100.0 * preparing
     ));
 }
 

@@ -4,6 +4,7 @@
 //! units, names, and the rules between values.
 
 use super::number::json;
+use crate::analysis::study;
 use crate::quantity::{Dimension, units};
 use crate::scenario::describe;
 use crate::signal::read::describe_forms;
@@ -21,6 +22,10 @@ const QUANTITY: &str = r"^\s*[-+\u2212]?(\d+\.?\d*|\.\d+)([eE][-+]?\d+)?\s*\S*.*
 pub fn schema() -> Value {
     let mut parts = Parts::default();
     let mut root = parts.group(&describe::root());
+    // The reader of the file keeps studies as they stand; what they may be is known above it.
+    let mut studies = section(parts.one_key_map(&study::spec::describe()));
+    studies["description"] = root["properties"]["studies"]["description"].clone();
+    root["properties"]["studies"] = studies;
     let definitions: Map<String, Value> = parts.definitions.into_iter().collect();
     let mut whole = json!({
         "$schema": "https://json-schema.org/draft/2020-12/schema",
@@ -102,6 +107,9 @@ impl Parts {
             Shape::Section(inside) => {
                 let thing = self.group(inside);
                 section(thing)
+            }
+            Shape::Paths(inside) => {
+                json!({ "type": "object", "additionalProperties": self.group(inside) })
             }
             Shape::Choice(inside) => {
                 // What this version does not know yet has no documentation of its keys.
@@ -243,5 +251,9 @@ mod tests {
         assert!(motor["law"]["properties"]["rating_plate"].is_object());
         assert!(motor["law"]["properties"]["induction_circuit"].is_null(), "not in this version");
         assert_eq!(schema["required"], json!(["lodeshaft", "duration"]));
+        let study = &schema["properties"]["studies"]["additionalProperties"]["properties"];
+        assert!(study["margin"]["properties"]["between"].is_object());
+        let spread = &study["monte_carlo"]["properties"]["spread"]["additionalProperties"];
+        assert!(spread["properties"]["normal"]["properties"]["relative"].is_object());
     }
 }

@@ -60,7 +60,7 @@ impl From<&Shape> for Kind {
             Shape::Names(_) => Self::Names,
             Shape::Group(inside) => Self::Map(inside.clone()),
             Shape::List(inside) => Self::List(inside.clone()),
-            Shape::Section(inside) => Self::Section(inside.clone()),
+            Shape::Section(inside) | Shape::Paths(inside) => Self::Section(inside.clone()),
             Shape::Choice(inside) => Self::Choice(inside.clone()),
             Shape::QuantityOrGroup(dimension, _, inside) => {
                 Self::QuantityOrMap(*dimension, inside.clone())
@@ -220,6 +220,10 @@ impl<'n> At<'n, '_> {
             Kind::Free => {
                 let node = match self.node {
                     Some(Node::List(_)) => self.entry(step)?,
+                    // A key of a study may be absent; what is not one is told when it is read.
+                    Some(node @ Node::Map(_)) if self.is_in_study() && node.get(step).is_none() => {
+                        return Ok(Found { kind: Kind::Free, node: None, default: None });
+                    }
                     _ => self.named(step)?,
                 };
                 Ok(Found::there(Kind::Free, node))
@@ -248,6 +252,11 @@ impl<'n> At<'n, '_> {
             node: self.node.and_then(|node| node.get(step)),
             default: field.default,
         })
+    }
+
+    /// True inside the description of a study: below its name and its kind.
+    fn is_in_study(&self) -> bool {
+        self.walked.starts_with("studies.") && self.walked.split('.').count() >= 3
     }
 
     /// An entry of a map whose names the user chose.

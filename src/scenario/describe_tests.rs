@@ -55,6 +55,7 @@ fn check_documentation(fields: &[FieldDescription], path: &str, count: &mut usiz
             Shape::Group(inside)
             | Shape::List(inside)
             | Shape::Section(inside)
+            | Shape::Paths(inside)
             | Shape::Choice(inside)
             | Shape::QuantityOrGroup(_, _, inside) => check_documentation(inside, &here, count),
             _ => {}

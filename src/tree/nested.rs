@@ -114,9 +114,31 @@ impl Fields<'_> {
         doc: &'static str,
         read: impl Fn(&mut Fields<'_>) -> T,
     ) -> Vec<T> {
+        self.entries_of(key, doc, Shape::Section, read)
+    }
+
+    /// A map from dotted paths of the file to maps, read in the order of the file.
+    ///
+    /// Paths are checked by the caller. An entry that is no map is told and left out.
+    pub fn paths<T>(
+        &mut self,
+        key: &'static str,
+        doc: &'static str,
+        read: impl Fn(&mut Fields<'_>) -> T,
+    ) -> Vec<T> {
+        self.entries_of(key, doc, Shape::Paths, read)
+    }
+
+    fn entries_of<T>(
+        &mut self,
+        key: &'static str,
+        doc: &'static str,
+        shape: fn(Vec<FieldDescription>) -> Shape,
+        read: impl Fn(&mut Fields<'_>) -> T,
+    ) -> Vec<T> {
         if self.describing() {
             let inside = Self::describe(&read);
-            self.note(key, Shape::Section(inside), false, doc);
+            self.note(key, shape(inside), false, doc);
             return Vec::new();
         }
         self.ask(key);

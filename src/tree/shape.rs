@@ -71,6 +71,8 @@ pub enum Shape {
     List(Vec<FieldDescription>),
     /// A map from names of the user's to nested maps: a section of the file.
     Section(Vec<FieldDescription>),
+    /// A map from dotted paths of the file to nested maps.
+    Paths(Vec<FieldDescription>),
     /// A one-key map: exactly one of these.
     Choice(Vec<FieldDescription>),
     /// A quantity of a dimension within a range, or a nested map it is worked out from.

@@ -54,6 +54,7 @@ impl Rows {
                 Shape::Section(inside) if !path.is_empty() => {
                     self.add(&format!("{key}.NAME"), inside, true);
                 }
+                Shape::Paths(inside) => self.add(&format!("{key}.PATH"), inside, true),
                 _ => {}
             }
         }
@@ -115,6 +116,7 @@ fn shape(shape: &Shape) -> String {
         Shape::Group(_) => "map".to_owned(),
         Shape::List(_) => "list of maps".to_owned(),
         Shape::Section(_) => "map of named things".to_owned(),
+        Shape::Paths(_) => "map of dotted paths".to_owned(),
         Shape::Choice(_) => "map with exactly one of".to_owned(),
         Shape::QuantityOrGroup(dimension, range, _) => {
             format!("{}, or a map", quantity(*dimension, *range))
@@ -224,6 +226,7 @@ fn count(fields: &[FieldDescription]) -> usize {
                 Shape::Group(inside)
                 | Shape::List(inside)
                 | Shape::Section(inside)
+                | Shape::Paths(inside)
                 | Shape::Choice(inside)
                 | Shape::QuantityOrGroup(_, _, inside) => count(inside),
                 _ => 0,

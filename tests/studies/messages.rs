@@ -106,3 +106,36 @@ fn unknown_studies_and_files_without_studies_are_told() {
         String::from_utf8_lossy(&output.stderr).starts_with("error: `case.yaml` has no studies\n")
     );
 }
+
+#[test]
+fn keys_of_studies_are_set_from_the_command_line() {
+    let folder = Folder::new(&train(
+        60.0,
+        100.0,
+        "  room: { margin: { vary: motors.drive.law.prescribed.torque, between: [50 N*m, 70 N*m] } }\n",
+    ));
+    // `points` is absent in the file.
+    let (status, answers, told) = folder.study(&["--set", "studies.room.margin.points=3"]);
+    assert_eq!(status, Some(0), "{told}");
+    assert_eq!(answers["studies"]["room"]["runs"], 3);
+    let set = "studies.room.margin.pionts=3";
+    let output = folder.call(&["study", "case.yaml", "--set", set]);
+    assert_eq!(output.status.code(), Some(2));
+    assert_eq!(
+        String::from_utf8_lossy(&output.stderr),
+        concat!(
+            "error: `pionts` is not a key of this map\n",
+            "  --> --set studies.room.margin.pionts=3  (studies.room.margin.pionts)\n",
+            "  hint: did you mean `points`?\n",
+        )
+    );
+    let output = folder.call(&["study", "case.yaml", "--set", "studies.rom.margin.points=3"]);
+    assert_eq!(
+        String::from_utf8_lossy(&output.stderr),
+        concat!(
+            "error: `studies` has no `rom`\n",
+            "  --> --set studies.rom.margin.points=3  (studies.rom.margin.points)\n",
+            "  hint: did you mean `room`?\n",
+        )
+    );
+}

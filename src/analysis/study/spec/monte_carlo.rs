@@ -8,7 +8,7 @@ use crate::quantity::Dimension;
 use crate::tree::{Fields, Node, Range};
 
 /// Draws beyond this are a mistake.
-const MOST_DRAWS: i64 = 10_000_000;
+const MOST_DRAWS: i64 = 1_000_000;
 
 /// Many runs with numbers of the file drawn at random.
 #[derive(Clone, Debug, PartialEq)]
@@ -44,7 +44,7 @@ impl MonteCarlo {
             "Largest share of the draws in which a magnetic gear or coupling slips; gives a verdict.",
         );
         let section = fields.path_of("spread");
-        let spreads = fields.section(
+        let spreads = fields.paths(
             "spread",
             "Numbers of the file by their dotted paths, with the way they scatter.",
             |spread| Spread::read(spread, &section, context),

@@ -15,7 +15,7 @@ impl Steady {
     /// Reads the inside of `steady:`; `None` when it is at fault.
     pub fn read(fields: &mut Fields<'_>, context: Option<&Context<'_>>) -> Option<Self> {
         let section = fields.path_of("vary");
-        let axes = fields.section(
+        let axes = fields.paths(
             "vary",
             "One number of the file by its dotted path, with the values it takes.",
             |axis| Axis::read(axis, &section, context),

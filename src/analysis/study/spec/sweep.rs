@@ -7,7 +7,7 @@ use crate::diagnostic::Spot;
 use crate::tree::{Fields, Node};
 
 /// Runs beyond this are a mistake.
-const MOST_RUNS: usize = 10_000_000;
+const MOST_RUNS: usize = 1_000_000;
 
 /// Runs over all values of one or two numbers.
 #[derive(Clone, Debug, PartialEq)]
@@ -22,7 +22,7 @@ impl Sweep {
     /// Reads the inside of `sweep:`; `None` when it is at fault.
     pub fn read(fields: &mut Fields<'_>, context: Option<&Context<'_>>) -> Option<Self> {
         let section = fields.path_of("vary");
-        let axes = fields.section(
+        let axes = fields.paths(
             "vary",
             "One or two numbers of the file by their dotted paths, with the values they take.",
             |axis| Axis::read(axis, &section, context),
