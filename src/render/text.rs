@@ -62,14 +62,17 @@ fn verdicts(result: &RunResult, shown: Shown<'_>) -> String {
     if all == 0 {
         return "\nNo requirements are stated.\n".to_owned();
     }
-    let met = result.requirements.iter().filter(|one| one.met == Some(true)).count();
-    let mut text = if met == all {
-        format!(
-            "\nMET: {}\n",
-            if all == 1 { "the requirement".to_owned() } else { format!("all {all} requirements") }
-        )
-    } else {
-        format!("\nNOT MET: {} of {all} requirements\n", all - met)
+    let count = |met| result.requirements.iter().filter(|one| one.met == met).count();
+    let (failed, open) = (count(Some(false)), count(None));
+    let all_of_them =
+        if all == 1 { "the requirement".to_owned() } else { format!("all {all} requirements") };
+    let mut text = match (failed, open) {
+        (0, 0) => format!("\nMET: {all_of_them}\n"),
+        (0, open) => format!("\nNOT JUDGED: {open} of {all} requirements\n"),
+        (failed, 0) => format!("\nNOT MET: {failed} of {all} requirements\n"),
+        (failed, open) => {
+            format!("\nNOT MET: {failed} of {all} requirements, and {open} not judged\n")
+        }
     };
     let mut table = Table::new("<<<<");
     let mut order: Vec<&RequirementResult> = result.requirements.iter().collect();

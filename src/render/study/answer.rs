@@ -77,6 +77,11 @@ pub fn notes(result: &StudyResult) -> Vec<String> {
         Answer::Estimates(answer) => {
             notes.extend(answer.notes.iter().cloned());
             for gear in &answer.gears {
+                let why =
+                    gear.comparisons.iter().filter(|one| !one.why.is_empty()).map(|one| {
+                        format!("`{}`, {}: {}", gear.gear, one.figure, one.why.join("; "))
+                    });
+                notes.extend(why);
                 notes.extend(gear.notes.iter().map(|note| format!("`{}`: {note}", gear.gear)));
             }
         }

@@ -229,17 +229,17 @@ fn estimates(answer: &EstimatesResult) -> Table {
                 let unit = if one.unit == "1" { "" } else { one.unit };
                 format!("{} {unit}", format_number(value, 4)).trim_end().to_owned()
             };
-            let why = match one.agree {
-                Some(true) => "agrees".to_owned(),
-                Some(false) => format!("differs: {}", one.why.join("; ")),
-                None => one.why.join("; "),
+            let verdict = match one.agree {
+                Some(true) => "agrees",
+                Some(false) => "differs",
+                None => "",
             };
             table.row([
                 if place == 0 { gear.gear.as_str() } else { "" },
                 one.figure,
                 &figure(one.hand),
                 &one.found.map_or_else(|| "-".to_owned(), figure),
-                &why,
+                verdict,
             ]);
         }
     }
