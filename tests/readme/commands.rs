@@ -128,6 +128,43 @@ fn the_first_block_runs_the_main_job_and_the_tests() {
 }
 
 #[test]
+fn every_command_of_the_program_is_listed() {
+    let output = Command::new(env!("CARGO_BIN_EXE_lodeshaft")).arg("--help").output();
+    let help = String::from_utf8(output.expect("the program starts").stdout).expect("UTF-8");
+    let list = help.split("Commands:\n").nth(1).and_then(|rest| rest.split("\n\n").next());
+    let names = list.expect("the help lists commands").lines().filter_map(|line| {
+        let (indent, rest) = line.split_at_checked(2)?;
+        // Longer explanations go on further in.
+        (indent == "  " && !rest.starts_with(' ')).then(|| rest.split(' ').next())?
+    });
+    let names: Vec<&str> = names.filter(|name| *name != "help").collect();
+    assert!(names.contains(&"run") && names.len() >= 6, "{names:?}");
+    for name in names {
+        assert!(text().contains(&format!("\n    lodeshaft {name}")), "{name} is not in the README");
+    }
+}
+
+#[test]
+fn the_example_of_the_file_runs() {
+    let readme = text();
+    let example = readme.split("```yaml\n").nth(1).and_then(|rest| rest.split("```").next());
+    let name = format!("readme-example-{}", std::process::id());
+    let folder = Path::new(env!("CARGO_TARGET_TMPDIR")).join(name);
+    fs::create_dir_all(&folder).expect("a folder for the test can be made");
+    fs::write(folder.join("pump.yaml"), example.expect("the README has an example"))
+        .expect("the example can be written");
+    let output = Command::new(env!("CARGO_BIN_EXE_lodeshaft"))
+        .args(["run", "pump.yaml", "--out", "out", "--quiet"])
+        .current_dir(&folder)
+        .output()
+        .expect("the program starts");
+    let told = String::from_utf8_lossy(&output.stderr).into_owned();
+    // A folder left behind harms nobody.
+    let _ = fs::remove_dir_all(&folder);
+    assert_eq!(output.status.code(), Some(0), "{told}");
+}
+
+#[test]
 fn quotes_hold_words_together() {
     assert_eq!(words("run a --set 'b=1 m' \"c d\""), ["run", "a", "--set", "b=1 m", "c d"]);
 }

@@ -5,3 +5,4 @@ mod outcomes;
 mod runner;
 mod sources;
 mod stories;
+mod studies;

@@ -37,24 +37,39 @@ pub struct Found {
 
 /// Runs a scenario with values set by path.
 pub fn run(stem: &str, sets: &[&str]) -> Found {
+    let mut arguments = vec!["--no-charts"];
+    for set in sets {
+        arguments.extend(["--set", set]);
+    }
+    let found = call("run", stem, &arguments);
+    assert_eq!(found.value("completed"), true, "{stem} {sets:?}\n{}", found.stderr);
+    found
+}
+
+/// Runs a study of a scenario.
+pub fn study(stem: &str, name: &str) -> Found {
+    call("study", stem, &[name])
+}
+
+fn call(command: &str, stem: &str, arguments: &[&str]) -> Found {
     let number = FOLDERS.fetch_add(1, Ordering::Relaxed);
     let name = format!("scenarios-{}-{number}", std::process::id());
     let out = Path::new(env!("CARGO_TARGET_TMPDIR")).join(name);
-    let mut command = Command::new(env!("CARGO_BIN_EXE_lodeshaft"));
-    command.arg("run").arg(path_of(stem)).arg("--out").arg(&out);
-    command.args(["--no-charts", "--quiet", "--format", "json"]);
-    for set in sets {
-        command.args(["--set", set]);
-    }
-    let output = command.output().expect("the program starts");
+    let output = Command::new(env!("CARGO_BIN_EXE_lodeshaft"))
+        .arg(command)
+        .arg(path_of(stem))
+        .args(arguments)
+        .arg("--out")
+        .arg(&out)
+        .args(["--quiet", "--format", "json"])
+        .output()
+        .expect("the program starts");
     // A folder left behind harms nobody; a failing test must show its own message.
     let _ = fs::remove_dir_all(&out);
     let stderr = String::from_utf8_lossy(&output.stderr).into_owned();
     let summary = serde_json::from_slice(&output.stdout)
-        .unwrap_or_else(|fault| panic!("{stem} {sets:?}: {fault}\n{stderr}"));
-    let found = Found { status: output.status.code(), summary, stderr };
-    assert_eq!(found.value("completed"), true, "{stem} {sets:?}\n{}", found.stderr);
-    found
+        .unwrap_or_else(|fault| panic!("{command} {stem} {arguments:?}: {fault}\n{stderr}"));
+    Found { status: output.status.code(), summary, stderr }
 }
 
 impl Found {
