@@ -3,7 +3,10 @@
 #[cfg(test)]
 mod cli {
     mod bench;
+    mod disk;
     mod folders;
+    mod kills;
+    mod lock;
     mod signals;
     mod statuses;
     mod streams;

@@ -8,6 +8,7 @@ pub mod folder;
 mod in_place;
 pub mod json;
 mod leftovers;
+mod lock;
 pub mod number;
 pub mod poles;
 pub mod report;

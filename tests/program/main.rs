@@ -9,11 +9,13 @@
 
 mod checking;
 mod commands;
+mod convergence;
 mod energy;
 mod equal_area;
 mod friction;
 mod gears;
 mod helper;
+mod invariance;
 mod law;
 mod likeness;
 mod oscillator;
@@ -28,4 +30,5 @@ mod stops;
 mod swing;
 mod units;
 mod verdicts;
+mod verification;
 mod wind;
