@@ -3,6 +3,7 @@
 #[cfg(test)]
 mod cli {
     mod bench;
+    mod comparisons;
     mod folders;
     mod signals;
     mod statuses;

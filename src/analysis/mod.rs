@@ -3,6 +3,7 @@
 mod testing;
 
 pub mod characteristics;
+pub mod comparison;
 pub mod estimates;
 pub mod linear_point;
 pub mod modes;

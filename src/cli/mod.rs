@@ -1,8 +1,9 @@
 //! The command line: what was typed, and the commands that do it.
 
 mod check;
+mod compare;
+mod compared;
 mod interrupt;
-mod later;
 mod new;
 mod poles;
 mod progress;
@@ -46,15 +47,14 @@ pub enum Command {
     Report(report::ReportArguments),
     /// Reads and checks scenarios and shows their trains; runs nothing.
     Check(check::CheckArguments),
+    /// Compares scenarios, variants of one or folders of results: what differs in inputs and answers.
+    Compare(compare::CompareArguments),
     /// Lists pole-pair choices for a ratio: pieces, the six ratios, ripple orders.
     Poles(poles::PolesArguments),
     /// Prints a commented file to start from.
     New(new::NewArguments),
     /// Prints the JSON Schema of the scenario file, for editors.
     Schema,
-    /// Compares scenarios or results (not in this version).
-    #[command(hide = true)]
-    Compare(later::LaterArguments),
 }
 
 /// Options that every command takes, as far as they mean something to it.
@@ -106,10 +106,10 @@ pub fn main() -> ExitCode {
         Command::Study(arguments) => study::run(&arguments, &common),
         Command::Report(arguments) => report::run(&arguments, &common),
         Command::Check(arguments) => check::run(&arguments, &common),
+        Command::Compare(arguments) => compare::run(&arguments, &common),
         Command::Poles(arguments) => poles::run(&arguments, &common),
         Command::New(arguments) => new::run(&arguments),
         Command::Schema => schema::run(),
-        Command::Compare(_) => later::refuse("compare"),
     };
     status.into()
 }

@@ -17,7 +17,7 @@ use crate::render::charts;
 use crate::render::folder::{Folder, FolderFault};
 use crate::render::report::{self, Material, Written};
 use crate::render::series::SeriesWriter;
-use crate::render::{events, json, text};
+use crate::render::{events, json, kept, text};
 use crate::results::{RunResult, Warning};
 use crate::scenario::{Loaded, Method};
 use crate::solve::{RunOptions, TraceRequest, Wanted};
@@ -204,6 +204,7 @@ impl Desk<'_> {
         };
         let mut summary = json::summary(&result, &origin);
         folder.write("summary.json", json::pretty(&summary).as_bytes())?;
+        folder.write(kept::SCENARIO, loaded.source.text.as_bytes())?;
         let page = report::page(&Material {
             scenario: &loaded.scenario,
             source: &loaded.source,
@@ -222,7 +223,9 @@ impl Desk<'_> {
             entries.insert("report".to_owned(), Value::from(PAGE));
             entries.insert("studies".to_owned(), Value::Object(studies.answers.clone()));
         }
-        let files = [PAGE, "summary.json", "series.csv", "events.csv"].map(str::to_owned).to_vec();
+        let files = [PAGE, "summary.json", "series.csv", "events.csv", kept::SCENARIO]
+            .map(str::to_owned)
+            .to_vec();
         folder.commit()?;
         Ok(Made { result, studies, summary, files })
     }

@@ -9,7 +9,7 @@ use crate::analysis::transient::{prepare, run_prepared};
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::render::folder::{Folder, FolderFault};
 use crate::render::series::SeriesWriter;
-use crate::render::{charts, events, json, text};
+use crate::render::{charts, events, json, kept, text};
 use crate::results::{RunResult, Warning};
 use crate::scenario::{self, Loaded, Source};
 use crate::solve::{RunOptions, Wanted};
@@ -138,7 +138,9 @@ fn write_run(
     };
     let summary = json::pretty(&json::summary(&result, &origin));
     folder.write("summary.json", summary.as_bytes()).map_err(Trouble::Writing)?;
-    let mut files = ["summary.json", "series.csv", "events.csv"].map(str::to_owned).to_vec();
+    folder.write(kept::SCENARIO, loaded.source.text.as_bytes()).map_err(Trouble::Writing)?;
+    let mut files =
+        ["summary.json", "series.csv", "events.csv", kept::SCENARIO].map(str::to_owned).to_vec();
     if !common.no_charts {
         let mut again = |request| {
             let options = RunOptions {

@@ -119,14 +119,19 @@ fn clusters(result: &RunResult) -> Vec<[f64; 2]> {
 
 /// The units that a scenario asks for, as charts write them.
 pub fn display(scenario: &Scenario) -> Display {
+    display_of(&scenario.display)
+}
+
+/// The same from the section of the file.
+pub fn display_of(typed: &crate::scenario::Display) -> Display {
     let unit = |text: &str, dimension: Dimension| {
         let per_si = quantity::to_unit(1.0, dimension, text).unwrap_or(1.0);
         Unit::new(&number::unit_text(text), per_si)
     };
     Display {
-        speed: unit(&scenario.display.speed, Dimension::Speed),
-        torque: unit(&scenario.display.torque, Dimension::Torque),
-        angle: unit(&scenario.display.angle, Dimension::Angle),
+        speed: unit(&typed.speed, Dimension::Speed),
+        torque: unit(&typed.torque, Dimension::Torque),
+        angle: unit(&typed.angle, Dimension::Angle),
     }
 }
 

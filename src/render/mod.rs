@@ -3,10 +3,12 @@
 pub mod chart;
 mod chart_signals;
 pub mod charts;
+pub mod compare;
 pub mod events;
 pub mod folder;
 mod in_place;
 pub mod json;
+pub mod kept;
 mod leftovers;
 pub mod number;
 pub mod poles;

@@ -1,8 +1,8 @@
 //! The report: one page that holds the verdict, the run, the studies and what they stand on.
 
 pub mod carry;
-mod figures;
-mod html;
+pub(in crate::render) mod figures;
+pub(in crate::render) mod html;
 mod inputs;
 mod limits;
 mod one_run;
@@ -13,12 +13,13 @@ mod sha;
 mod sides;
 mod studies;
 mod study_charts;
-mod style;
+pub(in crate::render) mod style;
 pub mod train;
 mod trust;
 mod verdict;
 
 pub use figures::Written;
+pub(in crate::render) use run_section::samples;
 
 use crate::analysis::study::results::StudyResult;
 use crate::analysis::train::Train as TrainFigures;
@@ -32,7 +33,7 @@ use crate::tree::Node;
 use html::{Figures, escape};
 
 /// Values under the pointer; nothing on the page depends on it.
-const SCRIPT: &str = include_str!("script.js");
+pub(in crate::render) const SCRIPT: &str = include_str!("script.js");
 
 /// What a report is made of.
 pub struct Material<'a> {

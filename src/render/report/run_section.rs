@@ -82,7 +82,7 @@ fn chart(material: &Material<'_>, id: &str) -> Option<RunChart> {
 }
 
 /// The curves of a chart at evenly spaced times.
-fn samples(chart: &RunChart) -> String {
+pub(in crate::render) fn samples(chart: &RunChart) -> String {
     let curves: Vec<(String, &Pieces)> = chart
         .panels
         .iter()
