@@ -10,6 +10,7 @@ pub mod modes;
 pub mod operating_point;
 pub mod poles;
 pub mod rainflow;
+pub mod records;
 pub mod separatrix;
 pub mod study;
 pub mod train;

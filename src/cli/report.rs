@@ -6,6 +6,7 @@ use super::report_studies::{self, Gathered};
 use super::run::{judge, output_folder, tell_failure, tell_warnings};
 use super::status::Status;
 use super::{Common, Format, streams};
+use crate::analysis::records::{Follower, RecordComparison, Shared};
 use crate::analysis::study::{self, Plan};
 use crate::analysis::train::{self, Train as TrainFigures};
 use crate::analysis::transient::{prepare, run_prepared};
@@ -80,6 +81,7 @@ pub fn run(arguments: &ReportArguments, common: &Common) -> Status {
 /// What was made.
 struct Made {
     result: RunResult,
+    records: Vec<RecordComparison>,
     studies: Gathered,
     summary: Value,
     files: Vec<String>,
@@ -90,6 +92,7 @@ struct Parts {
     figures: TrainFigures,
     train: Train,
     result: RunResult,
+    records: Vec<RecordComparison>,
     drawings: Vec<Drawing>,
     sharper: Option<RunResult>,
     studies: Gathered,
@@ -115,7 +118,7 @@ impl Desk<'_> {
         let figures = train::figures(&equations.model);
         let folder = Folder::open(self.shown)?;
         let traces = (!self.common.no_charts).then(|| charts::request(&equations));
-        let mut result = self.transient(&equations, &folder, traces)?;
+        let (mut result, records) = self.transient(&equations, &folder, traces)?;
         let typed = self
             .loaded()
             .warnings
@@ -130,7 +133,7 @@ impl Desk<'_> {
         } else {
             Gathered::default()
         };
-        let parts = Parts { figures, train, result, drawings, sharper, studies };
+        let parts = Parts { figures, train, result, records, drawings, sharper, studies };
         self.write(folder, parts)
     }
 
@@ -139,14 +142,15 @@ impl Desk<'_> {
         equations: &Equations,
         folder: &Folder,
         traces: Option<TraceRequest>,
-    ) -> Result<RunResult, Trouble> {
+    ) -> Result<(RunResult, Vec<RecordComparison>), Trouble> {
         let scenario = &self.loaded().scenario;
         let out = folder.create("series.csv")?;
         let mut rows = SeriesWriter::new(out, &scenario.channels, Some(self.interrupt.flag()));
+        let mut follower = Follower::new(scenario);
         let mut progress = Progress::new(scenario.duration, self.common.quiet);
         let mut show = |time: f64| progress.at(time);
         let options = RunOptions {
-            rows: Some(&mut rows),
+            rows: Some(&mut Shared { rows: &mut rows, follower: &mut follower }),
             traces,
             interrupt: Some(self.interrupt.flag()),
             progress: Some(&mut show),
@@ -156,7 +160,7 @@ impl Desk<'_> {
         progress.end();
         let result = outcome.map_err(Trouble::File)?;
         rows.finish().map_err(|error| FolderFault::disk("`series.csv`", &error))?;
-        Ok(result)
+        Ok((result, follower.finish()))
     }
 
     /// The drawings of the run; windows that deserve a closer look are run and traced again.
@@ -192,7 +196,7 @@ impl Desk<'_> {
     }
 
     fn write(&self, folder: Folder, parts: Parts) -> Result<Made, Trouble> {
-        let Parts { figures, train, result, drawings, sharper, studies } = parts;
+        let Parts { figures, train, result, records, drawings, sharper, studies } = parts;
         let loaded = self.loaded();
         let out = folder.create("events.csv")?;
         events::write(out, &result.events)
@@ -202,7 +206,7 @@ impl Desk<'_> {
             sets: &self.common.sets,
             output_folder: &self.shown.display().to_string(),
         };
-        let mut summary = json::summary(&result, &origin);
+        let mut summary = json::summary(&result, &records, &origin);
         folder.write("summary.json", json::pretty(&summary).as_bytes())?;
         folder.write(kept::SCENARIO, loaded.source.text.as_bytes())?;
         let page = report::page(&Material {
@@ -211,6 +215,7 @@ impl Desk<'_> {
             node: &loaded.node,
             figures: &figures,
             result: &result,
+            records: &records,
             train,
             drawings,
             sharper,
@@ -227,7 +232,7 @@ impl Desk<'_> {
             .map(str::to_owned)
             .to_vec();
         folder.commit()?;
-        Ok(Made { result, studies, summary, files })
+        Ok(Made { result, records, studies, summary, files })
     }
 
     /// Prints what was found and tells how it ended.
@@ -244,6 +249,7 @@ impl Desk<'_> {
                     file: &self.loaded().source.name,
                     output_folder: &self.shown.display().to_string(),
                     files: &made.files,
+                    records: &made.records,
                 };
                 let mut summary = made.studies.text(&self.loaded().scenario);
                 summary

@@ -4,6 +4,7 @@ use super::interrupt::Interrupt;
 use super::progress::Progress;
 use super::status::Status;
 use super::{Common, Format, streams};
+use crate::analysis::records::{Follower, RecordComparison, Shared};
 use crate::analysis::study;
 use crate::analysis::transient::{prepare, run_prepared};
 use crate::diagnostic::{Diagnostics, Severity};
@@ -49,7 +50,7 @@ pub fn run(arguments: &RunArguments, common: &Common) -> Status {
     };
     let shown = output_folder(&arguments.file, common);
     let written = write_run(&loaded, &shown, &arguments.file, common, &interrupt);
-    let Written { result, summary, files } = match written {
+    let Written { result, records, summary, files } = match written {
         Ok(written) => written,
         Err(Trouble::File) => return Status::Fault,
         Err(Trouble::Writing(fault)) => {
@@ -68,6 +69,7 @@ pub fn run(arguments: &RunArguments, common: &Common) -> Status {
                 file: &loaded.source.name,
                 output_folder: &shown.display().to_string(),
                 files: &files,
+                records: &records,
             };
             streams::print(&text::summary(&loaded.scenario, &result, &telling), status)
         }
@@ -85,6 +87,8 @@ pub fn output_folder(file: &Path, common: &Common) -> PathBuf {
 /// What a run left behind.
 struct Written {
     result: RunResult,
+    /// Measured records against the run.
+    records: Vec<RecordComparison>,
     /// The text of `summary.json`.
     summary: String,
     /// The files in the folder.
@@ -110,10 +114,11 @@ fn write_run(
     let folder = Folder::open(shown).map_err(Trouble::Writing)?;
     let out = folder.create("series.csv").map_err(Trouble::Writing)?;
     let mut rows = SeriesWriter::new(out, &scenario.channels, Some(interrupt.flag()));
+    let mut follower = Follower::new(scenario);
     let mut progress = Progress::new(scenario.duration, common.quiet);
     let mut show = |time: f64| progress.at(time);
     let options = RunOptions {
-        rows: Some(&mut rows),
+        rows: Some(&mut Shared { rows: &mut rows, follower: &mut follower }),
         traces: (!common.no_charts).then(|| charts::request(&equations)),
         interrupt: Some(interrupt.flag()),
         progress: Some(&mut show),
@@ -129,6 +134,7 @@ fn write_run(
         .warnings()
         .map(|warning| Warning { path: warning.path.clone(), text: warning.message.clone() });
     result.warnings.splice(0..0, typed);
+    let records = follower.finish();
     let out = folder.create("events.csv").map_err(Trouble::Writing)?;
     events::write(out, &result.events).map_err(of("`events.csv`"))?;
     let origin = json::Origin {
@@ -136,7 +142,7 @@ fn write_run(
         sets: &common.sets,
         output_folder: &shown.display().to_string(),
     };
-    let summary = json::pretty(&json::summary(&result, &origin));
+    let summary = json::pretty(&json::summary(&result, &records, &origin));
     folder.write("summary.json", summary.as_bytes()).map_err(Trouble::Writing)?;
     folder.write(kept::SCENARIO, loaded.source.text.as_bytes()).map_err(Trouble::Writing)?;
     let mut files =
@@ -155,7 +161,7 @@ fn write_run(
         files.extend(charts::write(folder.path(), &drawings).map_err(of("the charts"))?);
     }
     folder.commit().map_err(Trouble::Writing)?;
-    Ok(Written { result, summary, files })
+    Ok(Written { result, records, summary, files })
 }
 
 pub(super) fn tell_warnings(source: &Source, warnings: &[Warning]) {

@@ -5,9 +5,9 @@ use super::chart::drawing::Drawing;
 use super::chart::palette::Side;
 use super::chart::swing::{SwingChart, swing_chart};
 use super::chart::torque_speed::{Characteristic, TorqueSpeed, torque_speed_chart};
-use super::chart::train::{Train, TrainBody, TrainGear, TrainShaft};
+use super::chart::train::{Train, TrainBody, TrainGear, TrainRecord, TrainShaft};
 use super::chart::units::{Display, Unit};
-use super::chart::{number, pick, pick_rows, run};
+use super::chart::{number, pick, pick_records, pick_rows, run};
 use super::chart_signals::bars;
 use crate::analysis::train::{self, Train as Figures};
 use crate::analysis::{characteristics, separatrix};
@@ -74,6 +74,9 @@ pub fn drawings(
     }
     if !train.shafts.is_empty() && !result.gears.is_empty() {
         list.push(run::run_chart(&pick::shafts(result, traces, &train, &display)));
+    }
+    for chart in pick_records::charts(result, traces, &train, &display) {
+        list.push(run::run_chart(&chart));
     }
     list
 }
@@ -258,6 +261,19 @@ pub fn describe(equations: &Equations, figures: &Figures) -> Train {
         })
         .collect();
     let (signals, signal_steps) = bars(scenario, equations);
+    let records = scenario
+        .measured
+        .iter()
+        .filter_map(|record| {
+            let channel = scenario.channels.iter().find(|channel| channel.name == record.of)?;
+            Some(TrainRecord {
+                name: record.name.clone(),
+                channel: record.of.clone(),
+                unit: channel.unit,
+                rows: record.rows.clone(),
+            })
+        })
+        .collect();
     Train {
         bodies,
         shafts,
@@ -265,6 +281,7 @@ pub fn describe(equations: &Equations, figures: &Figures) -> Train {
         reference: figures.reference.replace('_', " "),
         signals,
         signal_steps,
+        records,
     }
 }
 

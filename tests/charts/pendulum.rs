@@ -230,5 +230,6 @@ pub fn train() -> Train {
             bars: vec![SignalBar { start: 1.0, end: 1.25, text: "900 N·m".to_owned() }],
         }],
         signal_steps: vec![1.0, 1.25],
+        records: Vec::new(),
     }
 }

@@ -4,7 +4,8 @@ use crate::quantity::{format_number, parse_any};
 use crate::tree::Node;
 
 /// Keys on which no result depends, and texts.
-const NO_INPUTS: [&str; 6] = ["lodeshaft", "title", "about", "document", "display", "studies"];
+const NO_INPUTS: [&str; 7] =
+    ["lodeshaft", "title", "about", "document", "display", "measured", "studies"];
 
 /// Values closer than this share are the same figure in other units.
 const SAME: f64 = 1e-12;

@@ -24,6 +24,7 @@ pub mod number;
 pub mod palette;
 pub mod pen;
 pub mod pick;
+pub mod pick_records;
 pub mod pick_rows;
 pub mod png;
 pub mod rainflow;

@@ -6,6 +6,7 @@ pub(in crate::render) mod html;
 mod inputs;
 mod limits;
 mod one_run;
+mod records;
 mod reproduction;
 mod requirements;
 mod run_section;
@@ -21,6 +22,7 @@ mod verdict;
 pub use figures::Written;
 pub(in crate::render) use run_section::samples;
 
+use crate::analysis::records::RecordComparison;
 use crate::analysis::study::results::StudyResult;
 use crate::analysis::train::Train as TrainFigures;
 use crate::render::chart::drawing::Drawing;
@@ -47,6 +49,8 @@ pub struct Material<'a> {
     pub figures: &'a TrainFigures,
     /// The run, with its traces.
     pub result: &'a RunResult,
+    /// Measured records against it.
+    pub records: &'a [RecordComparison],
     /// The train as charts see it.
     pub train: Train,
     /// The drawings of the run in the order of the page.

@@ -6,9 +6,9 @@ use super::html::{Figures, HtmlTable, escape, paragraph, rich};
 use super::verdict;
 use crate::render::chart::curve::Pieces;
 use crate::render::chart::number::capital;
-use crate::render::chart::pick;
 use crate::render::chart::run_data::run_data;
 use crate::render::chart::run_input::RunChart;
+use crate::render::chart::{pick, pick_records};
 use crate::render::shown;
 use crate::results::ChannelResult;
 
@@ -28,6 +28,7 @@ pub fn section(material: &Material<'_>, figures: &mut Figures) -> String {
         html.push_str(&paragraph(&verdict::told_in_full(gear, material)));
     }
     html.push_str(&chart_figures(material, figures));
+    html.push_str(&super::records::section(material));
     html.push_str(&peaks(material));
     html.push_str(&motors(material));
     html.push_str(&events(material));
@@ -59,6 +60,10 @@ fn caption(id: &str) -> String {
             "Torque over speed at the motor shaft. The light area is what is left to accelerate; the ring is \
              the operating point. Above the hatched line the gear would slip."
         }
+        _ if id.starts_with("measured") => {
+            "What was measured (dots) and what was computed (line), on the clock of the run. The table below tells \
+             how far they are apart."
+        }
         "shafts" => "Torques in the shafts, with rated and peak torque where they are given.",
         _ if id.starts_with("zoom") => "The same, closer, where the gear slips.",
         _ if id.starts_with("swing") => {
@@ -77,7 +82,9 @@ fn chart(material: &Material<'_>, id: &str) -> Option<RunChart> {
     match id {
         "run" => Some(pick::run(material.result, traces, &material.train, &display, "run")),
         "shafts" => Some(pick::shafts(material.result, traces, &material.train, &display)),
-        _ => None,
+        _ => pick_records::charts(material.result, traces, &material.train, &display)
+            .into_iter()
+            .find(|chart| chart.id == id),
     }
 }
 
