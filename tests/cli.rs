@@ -5,6 +5,7 @@ mod cli {
     mod bench;
     mod comparisons;
     mod folders;
+    mod records;
     mod signals;
     mod statuses;
     mod streams;

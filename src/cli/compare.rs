@@ -18,11 +18,12 @@ use crate::render::chart::{compare as overlay, pick};
 use crate::render::compare::{self, Origin, Side, page};
 use crate::render::folder::{Folder, FolderFault};
 use crate::render::kept::{self, Kept};
-use crate::render::{charts, json};
+use crate::render::{charts, json, pictures};
 use crate::results::{RunResult, Traces, Warning};
 use crate::scenario::{self, Display, Loaded};
 use crate::solve::RunOptions;
 use clap::Args;
+use std::collections::BTreeSet;
 use std::path::{Path, PathBuf};
 
 /// What `compare` takes.
@@ -68,8 +69,9 @@ pub fn run(arguments: &CompareArguments, common: &Common) -> Status {
     }
     let mut runs = Vec::new();
     let mut status = Status::Done;
+    let mut told = BTreeSet::new();
     for one in wanted {
-        match made(one, common, &interrupt) {
+        match made(one, common, &interrupt, &mut told) {
             Ok(run) => {
                 status = status.max(run.status);
                 runs.push(run);
@@ -104,9 +106,14 @@ fn is_same(one: &Path, two: &Path) -> bool {
 }
 
 /// Makes a run or reads it back; faults are told.
-fn made(wanted: Wanted, common: &Common, interrupt: &Interrupt) -> Result<Run, Status> {
+fn made(
+    wanted: Wanted,
+    common: &Common,
+    interrupt: &Interrupt,
+    told: &mut BTreeSet<String>,
+) -> Result<Run, Status> {
     if !wanted.kept {
-        return fresh(wanted, common, interrupt);
+        return fresh(wanted, common, interrupt, told);
     }
     let kept = kept::read(&wanted.path).map_err(|fault| {
         streams::complain(Severity::Error, &fault.fault.message, fault.fault.hint.as_deref());
@@ -128,7 +135,12 @@ fn made(wanted: Wanted, common: &Common, interrupt: &Interrupt) -> Result<Run, S
     })
 }
 
-fn fresh(wanted: Wanted, common: &Common, interrupt: &Interrupt) -> Result<Run, Status> {
+fn fresh(
+    wanted: Wanted,
+    common: &Common,
+    interrupt: &Interrupt,
+    told: &mut BTreeSet<String>,
+) -> Result<Run, Status> {
     let loaded = scenario::load(&wanted.path, &wanted.sets).map_err(|failure| {
         streams::tell(&failure.render());
         Status::Fault
@@ -156,7 +168,12 @@ fn fresh(wanted: Wanted, common: &Common, interrupt: &Interrupt) -> Result<Run, 
         .warnings()
         .map(|warning| Warning { path: warning.path.clone(), text: warning.message.clone() });
     result.warnings.splice(0..0, typed);
-    tell_warnings(&loaded.source, &result.warnings);
+    // Variants of a file warn alike: each warning is told once.
+    let mut fresh = |warning: &&Warning| {
+        told.insert(format!("{} {} {}", wanted.path.display(), warning.path, warning.text))
+    };
+    let new: Vec<Warning> = result.warnings.iter().filter(&mut fresh).cloned().collect();
+    tell_warnings(&loaded.source, &new);
     let status = judge(&result, interrupt);
     tell_failure(&result, status);
     Ok(Run { wanted, loaded, result, equations: Some(equations), kept: None, status })
@@ -199,13 +216,14 @@ fn write(runs: &[Run], out: &Path, common: &Common) -> Result<(String, String), 
     let drawn: Vec<(RunChart, Drawing)> = overlay::overlays(&single)
         .into_iter()
         .map(|chart| {
+            let chart = RunChart { sheet: common.print().sheet, ..chart };
             let drawing = run_chart(&chart);
             (chart, drawing)
         })
         .collect();
     let folder = Folder::open(out)?;
-    let drawings: Vec<Drawing> = drawn.iter().map(|(_, drawing)| drawing.clone()).collect();
-    let pictures = charts::write(folder.path(), &drawings)
+    let drawings: Vec<&Drawing> = drawn.iter().map(|(_, drawing)| drawing).collect();
+    let pictures = pictures::write(folder.path(), &drawings, common.print())
         .map_err(|error| FolderFault::disk("the charts", &error))?;
     let mut files = ["compare.html", "compare.json", "compare.csv"].map(str::to_owned).to_vec();
     files.extend(pictures);

@@ -5,17 +5,18 @@ use super::progress::Progress;
 use super::report_studies::{self, Gathered};
 use super::run::{judge, output_folder, tell_failure, tell_warnings};
 use super::status::Status;
-use super::{Common, Format, streams};
+use super::{Common, Format, open, streams};
 use crate::analysis::records::{Follower, RecordComparison, Shared};
 use crate::analysis::study::{self, Plan};
 use crate::analysis::train::{self, Train as TrainFigures};
 use crate::analysis::transient::{prepare, run_prepared};
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::equations::Equations;
-use crate::render::chart::drawing::Drawing;
+use crate::render::chart::axes::Sheet;
 use crate::render::chart::train::Train;
 use crate::render::charts;
 use crate::render::folder::{Folder, FolderFault};
+use crate::render::pictures::Picture;
 use crate::render::report::{self, Material, Written};
 use crate::render::series::SeriesWriter;
 use crate::render::{events, json, kept, text};
@@ -31,6 +32,9 @@ use std::path::{Path, PathBuf};
 pub struct ReportArguments {
     /// The scenario; `-` reads standard input.
     pub file: PathBuf,
+    /// Opens the page in the browser of the desktop.
+    #[arg(long)]
+    pub open: bool,
 }
 
 /// Name of the page in the folder of results.
@@ -64,7 +68,13 @@ pub fn run(arguments: &ReportArguments, common: &Common) -> Status {
     let desk =
         Desk { plan: &plan, file: &arguments.file, shown: &shown, common, interrupt: &interrupt };
     match desk.make() {
-        Ok(made) => desk.tell(&made),
+        Ok(made) => {
+            let status = desk.tell(&made);
+            if arguments.open {
+                open::page(&shown.join(PAGE));
+            }
+            status
+        }
         Err(Trouble::File(found)) => {
             let mut all = plan.loaded.warnings.clone();
             all.extend(found);
@@ -93,7 +103,7 @@ struct Parts {
     train: Train,
     result: RunResult,
     records: Vec<RecordComparison>,
-    drawings: Vec<Drawing>,
+    drawings: Vec<Picture>,
     sharper: Option<RunResult>,
     studies: Gathered,
 }
@@ -164,7 +174,7 @@ impl Desk<'_> {
     }
 
     /// The drawings of the run; windows that deserve a closer look are run and traced again.
-    fn drawings(&self, equations: &Equations, result: &RunResult) -> Vec<Drawing> {
+    fn drawings(&self, equations: &Equations, result: &RunResult) -> Vec<Picture> {
         let mut again = |request: TraceRequest| {
             let options = RunOptions {
                 wanted: Wanted::Asked(Vec::new()),
@@ -174,7 +184,7 @@ impl Desk<'_> {
             };
             run_prepared(equations, options).ok()?.traces
         };
-        charts::drawings(equations, result, &mut again)
+        charts::drawings(equations, result, &mut again, Sheet::PAGE)
     }
 
     /// The same run at a tenth of the tolerance, or of the step of a fixed-step method.

@@ -12,6 +12,7 @@ pub mod kept;
 mod leftovers;
 pub mod measured;
 pub mod number;
+pub mod pictures;
 pub mod poles;
 pub mod report;
 pub mod schema;

@@ -64,7 +64,8 @@ impl Figure {
             .iter()
             .map(|value| {
                 let (first, value) = (first?, value.as_ref()?.number()?);
-                let change = (value - first) / first.abs();
+                // Larger in magnitude is more, also where the sign is negative.
+                let change = (value - first) / first;
                 // A change of what is nothing but rounding is no change.
                 (change.is_finite() && first.abs() > 1e-9 * self.size).then_some(change)
             })
@@ -293,7 +294,7 @@ mod tests {
     fn a_change_is_measured_against_the_first_run() {
         let number = |value| Some(Found::Number(value));
         let one = figure(4.0, vec![number(-4.0), number(-3.0), None]);
-        assert_eq!(one.changes(), [Some(0.0), Some(0.25), None]);
+        assert_eq!(one.changes(), [Some(0.0), Some(-0.25), None]);
         assert!(one.differs(0.3), "the third has none");
         let near = figure(100.0, vec![number(1e-12), number(-2e-12)]);
         assert!(!near.differs(1e-9));

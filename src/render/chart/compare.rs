@@ -10,11 +10,13 @@ pub const MOST: usize = 3;
 ///
 /// Panels are matched by their id; a panel that only some runs have is kept with what it has.
 pub fn overlay(runs: &[(String, RunChart)]) -> Option<RunChart> {
+    let names = runs.iter().take(MOST).map(|(name, _)| name.as_str());
     let styles = [Dash::Solid, Dash::Long, Dash::Dots];
     let mut runs = runs.iter().zip(styles).take(MOST);
     let ((name, first), _) = runs.next()?;
     let mut chart = first.clone();
     chart.id = "compare".to_owned();
+    chart.title = format!("Runs over time: {}", line_styles(names));
     name_all(&mut chart, name, Dash::Solid);
     for ((name, next), dash) in runs {
         let mut next = next.clone();
@@ -63,6 +65,12 @@ pub fn overlay(runs: &[(String, RunChart)]) -> Option<RunChart> {
         chart.steps.extend(next.steps.iter().filter(|step| !first.steps.contains(step)));
     }
     Some(chart)
+}
+
+/// Which line is which run, in words.
+fn line_styles<'n>(names: impl Iterator<Item = &'n str>) -> String {
+    let styled = ["solid", "dashed", "dotted"].into_iter().zip(names);
+    styled.map(|(style, name)| format!("{style} {name}")).collect::<Vec<_>>().join(", ")
 }
 
 /// Charts of any number of runs: each shows the first run and at most two others.

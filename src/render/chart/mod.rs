@@ -26,6 +26,7 @@ pub mod pen;
 pub mod pick;
 pub mod pick_records;
 pub mod pick_rows;
+pub mod plane_tables;
 pub mod png;
 pub mod rainflow;
 mod raster;

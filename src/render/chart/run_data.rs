@@ -5,7 +5,7 @@ use super::clip::Frame;
 use super::curve::Pieces;
 use super::palette::Ink;
 use super::run;
-use super::run_input::{Curve, Dots, Panel, RunChart, Weight};
+use super::run_input::{Curve, Dots, Panel, PanelKind, RunChart, Weight};
 use serde_json::{Value, json};
 
 /// All curves with their points in display units.
@@ -13,7 +13,7 @@ use serde_json::{Value, json};
 /// ```text
 /// { "window": [s, s], "panels": [ { "id", "name", "unit", "frame": [left, top, width, height],
 ///   "up": [low, high], "curves": [ { "label", "ink", "width", "pieces": [[t, v, t, v, ...], ...] } ],
-///   "dots": [ { "label", "points": [t, v, ...] } ] } ] }
+///   "slips": [ [t, direction], ... ] or null, "dots": [ { "label", "points": [t, v, ...] } ] } ] }
 /// ```
 ///
 /// Frames are in CSS pixels. The points are those of the drawing before it is thinned to its
@@ -31,6 +31,12 @@ pub fn run_data(input: &RunChart) -> Value {
 fn panel_data(panel: &Panel, axes: &Axes) -> Value {
     let Frame { left, top, width, height } = axes.frame;
     let curves: Vec<Value> = panel.curves.iter().map(|curve| curve_data(curve, axes)).collect();
+    let slips = match &panel.kind {
+        PanelKind::LoadAngle { slips, .. } => {
+            slips.iter().map(|(time, direction)| json!([time, direction])).collect()
+        }
+        PanelKind::Values => Value::Null,
+    };
     json!({
         "id": panel.id,
         "name": panel.name,
@@ -38,6 +44,7 @@ fn panel_data(panel: &Panel, axes: &Axes) -> Value {
         "frame": [left, top, width, height],
         "up": axes.up,
         "curves": curves,
+        "slips": slips,
         "dots": panel.dots.iter().map(|dots| dots_data(dots, axes)).collect::<Vec<_>>(),
     })
 }

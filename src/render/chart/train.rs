@@ -17,6 +17,8 @@ pub struct Train {
     pub signals: Vec<SignalBars>,
     /// Times at which a signal jumps or breaks, s.
     pub signal_steps: Vec<f64>,
+    /// Brakes and frictions that hold nothing at the start, for want of pressure.
+    pub idle_at_start: Vec<String>,
     /// Measured records in file order.
     pub records: Vec<TrainRecord>,
 }

@@ -6,7 +6,7 @@ use crate::quantity::format_number;
 use crate::render::shown::{self, Shown};
 
 /// Channels whose extremes are told; all others stand in the JSON and the table.
-const CHANNELS: [&str; 5] = [".speed", ".torque", ".slip_speed", ".load_angle", ".flow"];
+const CHANNELS: [&str; 4] = [".speed", ".torque", ".slip_speed", ".flow"];
 
 /// The value of a figure for people.
 pub fn value(figure: &Figure, found: Option<&Found>, shown: Shown<'_>) -> String {

@@ -127,13 +127,15 @@ fn name(of: &str) -> String {
 }
 
 fn over_time(charts: &[(RunChart, Drawing)], numbered: &mut Figures) -> String {
-    let caption = "The runs on one time axis. Colour tells the member a curve turns with, the line the run: \
-                   solid is the first, dashed the second, dotted the third.";
     let html: String = charts
         .iter()
         .map(|(chart, drawing)| {
             let data = run_data(chart);
-            numbered.with_data(drawing, &escape(caption), &samples(chart), Some(&data))
+            let caption = format!(
+                "{}. Colour tells the member a curve turns with, the line the run.",
+                chart.title
+            );
+            numbered.with_data(drawing, &escape(&caption), &samples(chart), Some(&data))
         })
         .collect();
     if html.is_empty() { paragraph("No charts were drawn.") } else { html }

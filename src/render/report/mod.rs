@@ -25,10 +25,10 @@ pub(in crate::render) use run_section::samples;
 use crate::analysis::records::RecordComparison;
 use crate::analysis::study::results::StudyResult;
 use crate::analysis::train::Train as TrainFigures;
-use crate::render::chart::drawing::Drawing;
 use crate::render::chart::palette::Side;
 use crate::render::chart::schematic::schematic;
 use crate::render::chart::train::Train;
+use crate::render::pictures::Picture;
 use crate::results::RunResult;
 use crate::scenario::{Scenario, Source};
 use crate::tree::Node;
@@ -54,7 +54,7 @@ pub struct Material<'a> {
     /// The train as charts see it.
     pub train: Train,
     /// The drawings of the run in the order of the page.
-    pub drawings: Vec<Drawing>,
+    pub drawings: Vec<Picture>,
     /// The same run at a tenth of the tolerance.
     pub sharper: Option<RunResult>,
     /// Finished studies in the order of the file.

@@ -6,9 +6,10 @@ use super::html::{Figures, HtmlTable, escape, paragraph, rich};
 use super::verdict;
 use crate::render::chart::curve::Pieces;
 use crate::render::chart::number::capital;
+use crate::render::chart::plane_tables::Columns;
 use crate::render::chart::run_data::run_data;
 use crate::render::chart::run_input::RunChart;
-use crate::render::chart::{pick, pick_records};
+use crate::render::pictures::Picture;
 use crate::render::shown;
 use crate::results::ChannelResult;
 
@@ -37,10 +38,13 @@ pub fn section(material: &Material<'_>, figures: &mut Figures) -> String {
 
 fn chart_figures(material: &Material<'_>, figures: &mut Figures) -> String {
     let mut html = String::new();
-    for drawing in &material.drawings {
+    for Picture { drawing, chart, table } in &material.drawings {
         let caption = caption(&drawing.id);
-        let chart = chart(material, &drawing.id);
-        let behind = chart.as_ref().map_or_else(String::new, samples);
+        let behind = match (chart, table) {
+            (Some(chart), _) => samples(chart),
+            (None, Some(table)) => columns(table),
+            (None, None) => String::new(),
+        };
         let data = chart.as_ref().map(run_data);
         html.push_str(&figures.with_data(drawing, &caption, &behind, data.as_ref()));
     }
@@ -75,17 +79,14 @@ fn caption(id: &str) -> String {
     escape(text)
 }
 
-/// The data of a drawing over the whole run.
-fn chart(material: &Material<'_>, id: &str) -> Option<RunChart> {
-    let traces = material.result.traces.as_ref()?;
-    let display = material.written.chart_display();
-    match id {
-        "run" => Some(pick::run(material.result, traces, &material.train, &display, "run")),
-        "shafts" => Some(pick::shafts(material.result, traces, &material.train, &display)),
-        _ => pick_records::charts(material.result, traces, &material.train, &display)
-            .into_iter()
-            .find(|chart| chart.id == id),
+/// The figures behind a chart that is not over time.
+fn columns(columns: &Columns) -> String {
+    let heads: Vec<&str> = columns.heads.iter().map(String::as_str).collect();
+    let mut table = HtmlTable::new(&">".repeat(heads.len()), &heads).class("small");
+    for row in &columns.rows {
+        table.row(row.iter().map(|cell| cell.map_or_else(|| "–".to_owned(), plain)));
     }
+    table.html()
 }
 
 /// The curves of a chart at evenly spaced times.
