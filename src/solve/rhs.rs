@@ -105,8 +105,11 @@ impl<'a> Rhs<'a> {
             sum += rate;
         }
         if !sum.is_finite() && self.fault.get().is_none() {
-            let place = rates.iter().position(|rate| !rate.is_finite()).unwrap_or(0);
-            self.fault.set(Some((time, place)));
+            // A value that is no number spoils every rate of the dense matrix: its own comes first.
+            let lost = assembly.active.iter().zip(&*values).find(|(_, value)| !value.is_finite());
+            let own = lost.and_then(|(active, _)| active.column.first()).map(|(row, _)| *row);
+            let any = rates.iter().position(|rate| !rate.is_finite()).unwrap_or(0);
+            self.fault.set(Some((time, own.unwrap_or(any))));
         }
         ring.next = (ring.next + 1) % RING;
         ring.calls += 1;
