@@ -40,6 +40,8 @@ pub struct Equations {
     pub twist_state: Vec<Option<usize>>,
     /// State of each magnet's phase.
     pub phase_state: Vec<usize>,
+    /// Rate of each magnet's phase (electrical rad/s) as a form over the scaled state.
+    pub phase_rows: Vec<StateRow>,
     /// Angles that some law needs: state and rate row over bodies.
     pub angle_states: Vec<(usize, BodyRow)>,
     /// Scalar laws.

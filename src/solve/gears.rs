@@ -130,12 +130,12 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
         equations.model.magnets.iter().zip(&equations.phase_state).enumerate()
     {
         let scale = equations.scale[place];
-        let row = equations.speed_row(&magnet.row());
+        let row = &equations.phase_rows[index];
         let mut knots: Vec<(f64, f64)> = Vec::with_capacity(shares.len() + 2);
         let mut before: Option<(f64, f64)> = None;
         for &share in shares {
             step.state(share, &mut state);
-            let rate = dot(&row, &state);
+            let rate = dot(row, &state);
             let phase = state[place] * scale;
             if let Some((last_share, last_rate)) = before {
                 if last_rate * rate < 0.0 {
@@ -144,7 +144,7 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
                         share,
                         |place| {
                             step.state(place, &mut state);
-                            dot(&row, &state) * last_rate.signum()
+                            dot(row, &state) * last_rate.signum()
                         },
                         1e-12,
                     );
@@ -162,17 +162,18 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
                 continue;
             }
             let direction = if high > low { 1 } else { -1 };
-            let mut targets: Vec<(f64, bool, bool)> = Vec::new();
             let (bottom, top) = (low.min(high), low.max(high));
             let first_well = ((bottom - PI) / TAU).floor() as i64 - 1;
             let last_well = ((top + PI) / TAU).ceil() as i64 + 1;
-            for well in first_well..=last_well {
+            let peak_short = |is_upper: bool| (direction > 0) != is_upper;
+            let targets = (first_well..=last_well).flat_map(|well| {
                 let centre = TAU * well as f64;
-                let peak_short = |is_upper: bool| (direction > 0) != is_upper;
-                targets.push((centre + PI, true, false));
-                targets.push((centre + peaks[0], false, peak_short(false)));
-                targets.push((centre + peaks[1], false, peak_short(true)));
-            }
+                [
+                    (centre + PI, true, false),
+                    (centre + peaks[0], false, peak_short(false)),
+                    (centre + peaks[1], false, peak_short(true)),
+                ]
+            });
             for (target, is_slip, short) in targets {
                 // The load angle lies in (-pi, pi]: the target itself belongs to the side below it.
                 let crossed = if direction > 0 {
@@ -194,7 +195,7 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
                     1e-15,
                 );
                 step.state(share, &mut state);
-                let slip_speed = dot(&row, &state);
+                let slip_speed = dot(row, &state);
                 found.push(GearCrossing {
                     share,
                     magnet: index,

@@ -47,6 +47,7 @@ pub struct Observer<'a> {
     wraps: Vec<bool>,
     samples: Vec<Sample>,
     scratch: Sample,
+    sums: Vec<f64>,
     names: Vec<String>,
 }
 
@@ -143,6 +144,7 @@ impl<'a> Observer<'a> {
                 .collect(),
             samples: Vec::new(),
             scratch: Sample::default(),
+            sums: Vec::new(),
             names: scenario
                 .requirements
                 .iter()
@@ -226,8 +228,8 @@ impl<'a> Observer<'a> {
     pub fn step(&mut self, evaluator: Evaluator<'_>, step: &DenseStep, inner: usize) {
         let shares = self.shares(step, inner);
         let found = crossings(evaluator.equations, step, &shares);
-        let scale = self.speed_scale.clone();
-        let counters = self.counters.clone();
+        let scale = std::mem::take(&mut self.speed_scale);
+        let counters = std::mem::take(&mut self.counters);
         let view =
             StepView { step, evaluator, counters: &counters, crossings: found, scale: &scale };
         let mut samples = std::mem::take(&mut self.samples);
@@ -257,7 +259,8 @@ impl<'a> Observer<'a> {
             window.step(&view, &samples, &mut scratch, &mut self.events, name);
         }
         self.rows_in(&view, &mut scratch);
-        self.counters = view.counters_at(1.0);
+        view.counters_at(1.0, &mut self.counters, &mut self.sums);
+        self.speed_scale = scale;
         self.samples = samples;
         self.scratch = scratch;
     }
@@ -266,14 +269,11 @@ impl<'a> Observer<'a> {
         let Some(tracer) = &mut self.tracer else { return };
         tracer.note(sample.time, &sample.frame.channels);
         let equations = view.evaluator.equations;
-        let wells = &self.counters.wells;
+        let wells = &view.counters.wells;
         tracer.swing(&|magnet| {
             let place = equations.phase_state[magnet];
             let phase = sample.state[place] * equations.scale[place];
-            let rate = crate::equations::dot(
-                &equations.speed_row(&equations.model.magnets[magnet].row()),
-                &sample.state,
-            );
+            let rate = crate::equations::dot(&equations.phase_rows[magnet], &sample.state);
             [sample.time, phase + std::f64::consts::TAU * wells[magnet] as f64, rate]
         });
     }
@@ -322,25 +322,22 @@ impl<'a> Observer<'a> {
         for (index, track) in self.gears.iter_mut().enumerate() {
             let place = equations.phase_state[index];
             let scale = equations.scale[place];
-            let mut turning = Vec::new();
             for sample in &self.samples {
-                turning.push((sample.time, load_angle(sample.state[place] * scale)));
-            }
-            for (time, angle) in turning {
-                track.note_angle(angle, time);
+                track.note_angle(load_angle(sample.state[place] * scale), sample.time);
             }
         }
     }
 
     /// Takes the rows of a step in which nothing else can happen.
     pub fn rows_only(&mut self, evaluator: Evaluator<'_>, step: &DenseStep) {
-        let scale = self.speed_scale.clone();
-        let counters = self.counters.clone();
+        let scale = std::mem::take(&mut self.speed_scale);
+        let counters = std::mem::take(&mut self.counters);
         let view =
             StepView { step, evaluator, counters: &counters, crossings: Vec::new(), scale: &scale };
         let mut scratch = std::mem::take(&mut self.scratch);
         self.rows_in(&view, &mut scratch);
-        self.counters = view.counters_at(1.0);
+        view.counters_at(1.0, &mut self.counters, &mut self.sums);
+        self.speed_scale = scale;
         self.scratch = scratch;
     }
 

@@ -219,40 +219,27 @@ impl<'w, 'a> Watcher<'w, 'a> {
             return None;
         }
         let shares = self.observer.shares(&self.step, self.inner());
-        let counters = self.observer.counters.clone();
-        let scale = self.observer.speed_scale.clone();
         let view = StepView {
             step: &self.step,
             evaluator,
-            counters: &counters,
+            counters: &self.observer.counters,
             crossings: Vec::new(),
-            scale: &scale,
+            scale: &self.observer.speed_scale,
         };
-        let wanted = self.conditions.channels.clone();
+        let wanted = &self.conditions.channels;
         let mut scratch = std::mem::take(&mut self.scratch);
-        let mut values: Vec<Vec<f64>> = Vec::with_capacity(shares.len());
+        let mut values: Vec<f64> = Vec::with_capacity(shares.len() * self.guards.len());
         for &share in &shares {
-            view.sample(share, Some(&wanted), &mut scratch);
-            values.push(
-                self.guards
-                    .iter()
-                    .map(|guard| {
-                        guards::value(
-                            *guard,
-                            &evaluator,
-                            self.mode,
-                            self.conditions,
-                            &scratch.state,
-                            &scratch.frame,
-                        )
-                    })
-                    .collect(),
-            );
+            view.sample(share, Some(wanted), &mut scratch);
+            let Sample { state, frame, .. } = &scratch;
+            values.extend(self.guards.iter().map(|guard| {
+                guards::value(*guard, &evaluator, self.mode, self.conditions, state, frame)
+            }));
         }
         let mut first: Option<Cut> = None;
         for (index, guard) in self.guards.iter().enumerate() {
             let at = |share: f64, scratch: &mut Sample| {
-                view.sample(share, Some(&wanted), scratch);
+                view.sample(share, Some(wanted), scratch);
                 guards::value(
                     *guard,
                     &evaluator,
@@ -262,8 +249,8 @@ impl<'w, 'a> Watcher<'w, 'a> {
                     &scratch.frame,
                 )
             };
-            let Some((low, high)) =
-                bracket(&shares, &values, index, |share| at(share, &mut scratch))
+            let of_guard = |place: usize| values[place * self.guards.len() + index];
+            let Some((low, high)) = bracket(&shares, of_guard, |share| at(share, &mut scratch))
             else {
                 continue;
             };

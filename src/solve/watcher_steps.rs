@@ -9,11 +9,9 @@ use super::watcher::Watcher;
 /// The first pair of shares between which a guard trips; a dip between samples is looked into.
 pub(super) fn bracket(
     shares: &[f64],
-    values: &[Vec<f64>],
-    guard: usize,
+    value: impl Fn(usize) -> f64,
     mut at: impl FnMut(f64) -> f64,
 ) -> Option<(f64, f64)> {
-    let value = |index: usize| values[index][guard];
     if value(0) < -TRIP {
         return Some((0.0, 0.0));
     }
