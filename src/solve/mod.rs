@@ -7,6 +7,7 @@ pub mod extremes;
 pub mod gears;
 pub mod guards;
 pub mod integrate;
+pub mod limits;
 pub mod locate;
 pub mod observer;
 pub mod outcome;
@@ -22,6 +23,7 @@ pub mod traces;
 pub mod turning;
 pub mod watcher;
 mod watcher_steps;
+mod window_steps;
 pub mod windows;
 
 use std::sync::atomic::AtomicBool;

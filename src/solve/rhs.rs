@@ -213,9 +213,6 @@ fn steady(active: &Active, state: &[f64]) -> (f64, f64) {
         Function::Law(law, piece) => law.value(input, parameters, *piece),
         Function::Linear => input,
         Function::Friction(torque, direction) => -direction * torque,
-        Function::FrictionCurve(law, direction) => {
-            -direction * crate::equations::frame::sliding_of(law, input * direction)
-        }
     };
     (input, factor * value)
 }
