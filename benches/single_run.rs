@@ -166,6 +166,13 @@ fn main() {
     let mut scale = [0.0; STATES];
     scale.copy_from_slice(&equations.scale[..STATES]);
     let hand = Hand { scale };
+    // For a profiler: one side alone.
+    if let Some(only) = std::env::args().nth(1).filter(|name| name == "engine" || name == "hand") {
+        for _ in 0..std::env::args().nth(2).and_then(|count| count.parse().ok()).unwrap_or(10) {
+            let _ = if only == "hand" { hand.run(610.0, 1e-8) } else { engine(&equations, 610.0) };
+        }
+        return;
+    }
     let (hand_steps, hand_angle) = hand.run(610.0, 1e-8);
     let (steps, angle) = engine(&equations, 610.0);
     let mut ratios: Vec<f64> = (0..7)

@@ -41,6 +41,8 @@ pub struct Active {
     pub parameters: [Option<SlotId>; 2],
     /// Offset and parameters where nothing of them follows time.
     pub fixed: (f64, [f64; 2]),
+    /// True when its factor, offset or a parameter follows time within the stretch.
+    pub follows_time: bool,
     /// Factor on the value.
     pub factor: Strength,
     /// Column: entries of the scaled rates.
@@ -158,12 +160,11 @@ pub fn assemble(
         if factor == Strength::Constant(0.0) {
             continue;
         }
-        let moving =
+        let mut moving =
             term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
-        for slot in moving {
-            // The steady path leaves offsets and parameters out: right only where they are zero.
-            varies |= equations.bank.constant_on(slot, start, end, overrides) != Some(0.0);
-        }
+        let moves =
+            moving.any(|slot| equations.bank.constant_on(slot, start, end, overrides).is_none());
+        varies |= moves;
         let column = match &term.target {
             Target::Torque(direction) => parts.column(direction),
             Target::State(state, rate) => vec![(*state, rate / equations.scale[*state])],
@@ -190,6 +191,7 @@ pub fn assemble(
             term.offset.map_or(0.0, |(gain, slot)| gain * constant(slot)),
             term.parameters.map(|slot| slot.map_or(0.0, constant)),
         );
+        entry.follows_time |= moves;
         active.push(entry);
     }
     for (index, friction) in equations.frictions.iter().enumerate() {
@@ -210,6 +212,7 @@ pub fn assemble(
             offset: None,
             parameters: [None; 2],
             fixed: (0.0, [0.0; 2]),
+            follows_time: matches!(factor, Strength::Varying(_)),
             factor,
             column: parts.column(&friction.row),
             // A load by points takes power out of the train, friction turns it to heat.
@@ -229,6 +232,7 @@ pub fn assemble(
             offset: None,
             parameters: [None; 2],
             fixed: (0.0, [0.0; 2]),
+            follows_time: false,
             factor: Strength::Constant(1.0),
             column: parts.column(&parts.constant_row()),
             power: PowerKind::None,
@@ -355,6 +359,7 @@ impl Active {
             offset: term.offset,
             parameters: term.parameters,
             fixed: (0.0, [0.0; 2]),
+            follows_time: matches!(factor, Strength::Varying(_)),
             factor,
             column,
             power: term.power,

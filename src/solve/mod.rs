@@ -1,9 +1,11 @@
 //! The run in time: segments, located events, one observer that streams.
 
+pub mod audit;
 pub mod calm;
 pub mod conditions;
 pub mod dense;
 pub mod extremes;
+mod flat;
 pub mod gears;
 pub mod guards;
 pub mod integrate;

@@ -1,9 +1,9 @@
 //! The one observer of a run: extremes, verdicts, slips, rows and traces from the continuous solution.
 
+use super::audit::Powers;
 use super::dense::DenseStep;
 use super::extremes::{Extreme, gear_event, refine};
 use super::gears::{GearTrack, crossings};
-use super::rhs::Powers;
 use super::sampling::{Sample, StepView};
 use super::traces::Tracer;
 use super::turning::TurningWatch;
@@ -351,6 +351,18 @@ impl<'a> Observer<'a> {
                 track.note_angle(angle, time);
             }
         }
+    }
+
+    /// Takes the rows of a step in which nothing else can happen.
+    pub fn rows_only(&mut self, evaluator: Evaluator<'_>, step: &DenseStep) {
+        let scale = self.speed_scale.clone();
+        let counters = self.counters.clone();
+        let view =
+            StepView { step, evaluator, counters: &counters, crossings: Vec::new(), scale: &scale };
+        let mut scratch = std::mem::take(&mut self.scratch);
+        self.rows_in(&view, &mut scratch);
+        self.counters = view.counters_at(1.0);
+        self.scratch = scratch;
     }
 
     fn rows_in(&mut self, view: &StepView<'_>, scratch: &mut Sample) {
