@@ -64,8 +64,6 @@ pub enum Function {
     Linear,
     /// Friction of constant size against this direction.
     Friction(f64, f64),
-    /// Friction along a load curve against this direction.
-    FrictionCurve(Law, f64),
 }
 
 /// A factor over one stretch.
@@ -206,7 +204,9 @@ pub fn assemble(
             place: equations.terms.len() + index,
             function: match &friction.sliding {
                 Sliding::Constant(torque) => Function::Friction(*torque, direction),
-                Sliding::Curve(law) => Function::FrictionCurve(law.clone(), direction),
+                Sliding::Curve(law) => {
+                    Function::Law(law.clone(), mode.pieces[equations.terms.len() + index])
+                }
             },
             input: friction.speed.clone(),
             offset: None,

@@ -90,9 +90,6 @@ impl Evaluator<'_> {
             }
             Function::Linear => input,
             Function::Friction(torque, direction) => -direction * torque,
-            Function::FrictionCurve(law, direction) => {
-                -direction * sliding_of(law, input * direction)
-            }
         };
         (input, self.strength(&active.factor, time) * value)
     }

@@ -208,6 +208,31 @@ impl Equations {
         speed_row(&self.model, &self.scale, row)
     }
 
+    /// The law at a place of the frame: of a term, or of a friction element by points.
+    pub fn law_at(&self, place: usize) -> Option<&Law> {
+        match self.terms.get(place) {
+            Some(term) => match &term.shape {
+                Shape::Law(law) => Some(law),
+                Shape::Linear => None,
+            },
+            None => match &self.frictions.get(place - self.terms.len())?.sliding {
+                Sliding::Curve(law) => Some(law),
+                Sliding::Constant(_) => None,
+            },
+        }
+    }
+
+    /// Typical size of the input of the law at a place of the frame.
+    pub fn input_size_at(&self, place: usize) -> f64 {
+        match self.terms.get(place) {
+            Some(term) => term.input_size,
+            None => self
+                .frictions
+                .get(place - self.terms.len())
+                .map_or(1.0, |friction| friction.speed_size),
+        }
+    }
+
     /// The starting state (scaled) with shafts unloaded and controllers at rest.
     pub fn start_state(&self) -> Vec<f64> {
         let mut state = vec![0.0; self.size];

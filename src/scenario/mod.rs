@@ -10,7 +10,7 @@ mod load;
 mod locate;
 pub mod patch;
 mod sections;
-mod signals;
+pub mod signals;
 mod source;
 mod tables;
 mod yaml;

@@ -8,7 +8,7 @@ use crate::component::law::Law;
 use crate::component::load::power_law::PowerLaw;
 use crate::component::motor::induction::Induction;
 use crate::equations::assembly::{Active, DENSE_LIMIT, Function, Matrix, Strength};
-use crate::equations::frame::{Evaluator, sliding_of};
+use crate::equations::frame::Evaluator;
 
 /// How the value of a law comes about.
 #[derive(Clone, Copy, Debug)]
@@ -154,7 +154,7 @@ fn kernel(active: &Active) -> (Kernel, f64) {
         Function::Law(Law::Induction(motor), _) => (Kernel::Induction(*motor), 1.0),
         Function::Law(Law::PowerLaw(load), piece) => (Kernel::PowerLaw(*load, *piece), 1.0),
         Function::Law(Law::Unit, _) => (Kernel::Constant, 1.0),
-        Function::Law(..) | Function::FrictionCurve(..) => (Kernel::Steady, 1.0),
+        Function::Law(..) => (Kernel::Steady, 1.0),
         Function::Linear => (Kernel::Input, 1.0),
         Function::Friction(torque, direction) => (Kernel::Constant, -direction * torque),
     }
@@ -166,6 +166,5 @@ fn steady(active: &Active, input: f64) -> f64 {
         Function::Law(law, piece) => law.value(input, active.fixed.1, *piece),
         Function::Linear => input,
         Function::Friction(torque, direction) => -direction * torque,
-        Function::FrictionCurve(law, direction) => -direction * sliding_of(law, input * direction),
     }
 }

@@ -7,6 +7,12 @@ use crate::equations::{Equations, dot};
 use crate::results::{GearState, SlipEvent};
 use std::f64::consts::{PI, TAU};
 
+/// Most electrical turns of a phase within one step: beyond them the curve between its ends means nothing.
+const MOST_TURNS: f64 = 1e5;
+
+/// Most slips of one gear in a run; each is kept.
+const MOST_SLIPS: usize = 10_000_000;
+
 /// A place in a step where a phase crosses an odd multiple of pi or a peak.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct GearCrossing {
@@ -119,6 +125,40 @@ impl GearTrack {
     }
 }
 
+/// Says which magnet turns too far within a step, or has slipped too often, for the run to go on.
+///
+/// `first` and `last` are state and rate at the ends of the step.
+pub fn runaway(
+    equations: &Equations,
+    tracks: &[GearTrack],
+    length: f64,
+    first: [&[f64]; 2],
+    last: [&[f64]; 2],
+) -> Option<String> {
+    for ((magnet, &place), track) in
+        equations.model.magnets.iter().zip(&equations.phase_state).zip(tracks)
+    {
+        let name = &magnet.name;
+        let turns = equations.scale[place] / TAU;
+        let moved = (last[0][place] - first[0][place]).abs();
+        let swept = length * first[1][place].abs().max(last[1][place].abs());
+        // Written so that a value that is no number counts as too far.
+        let within = moved * turns <= MOST_TURNS && swept * turns <= MOST_TURNS;
+        if !within {
+            return Some(format!(
+                "`{name}` runs away: it turns by more than {MOST_TURNS} poles within a step of {length:e} s; \
+                 look at torques, inertias and their units"
+            ));
+        }
+        if track.slips.len() >= MOST_SLIPS {
+            return Some(format!(
+                "`{name}` has slipped {MOST_SLIPS} times; end the run earlier (a protection with `end_run`)"
+            ));
+        }
+    }
+    None
+}
+
 /// All crossings of one step in order of time.
 ///
 /// Each phase is cut at its turning points (where its rate changes sign between two of `shares`),
@@ -163,6 +203,10 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
             }
             let direction = if high > low { 1 } else { -1 };
             let (bottom, top) = (low.min(high), low.max(high));
+            // The curve between the ends of a step may still leave all reason.
+            if !(top.abs().max(bottom.abs()) <= 1e15 && top - bottom <= 10.0 * TAU * MOST_TURNS) {
+                continue;
+            }
             let first_well = ((bottom - PI) / TAU).floor() as i64 - 1;
             let last_well = ((top + PI) / TAU).ceil() as i64 + 1;
             let peak_short = |is_upper: bool| (direction > 0) != is_upper;

@@ -9,6 +9,7 @@ mod flat;
 pub mod gears;
 pub mod guards;
 pub mod integrate;
+pub mod limits;
 pub mod locate;
 pub mod observer;
 pub mod outcome;
@@ -24,6 +25,7 @@ pub mod traces;
 pub mod turning;
 pub mod watcher;
 mod watcher_steps;
+mod window_steps;
 pub mod windows;
 
 use std::sync::atomic::AtomicBool;

@@ -197,6 +197,15 @@ impl<'a> Observer<'a> {
         self.scratch = scratch;
     }
 
+    /// Takes the values from the right at the end of the run: a jump there has two sides like any other.
+    pub fn finish(&mut self, evaluator: &Evaluator<'_>, time: f64, state: &[f64]) {
+        let last: Vec<f64> = self.extremes.iter().map(|extreme| extreme.last).collect();
+        self.begin(evaluator, time, state);
+        for (extreme, last) in self.extremes.iter_mut().zip(last) {
+            extreme.last = last;
+        }
+    }
+
     fn note_all(&mut self, time: f64, channels: &[f64]) {
         for &channel in &self.wanted {
             self.extremes[channel].note(channels[channel], time);
@@ -238,6 +247,7 @@ impl<'a> Observer<'a> {
             view.sample(*share, Some(&self.wanted), sample);
         }
         let mut scratch = std::mem::take(&mut self.scratch);
+        self.note_slips(&view, &mut scratch);
         for sample in &samples {
             self.note_all(sample.time, &sample.frame.channels);
         }
@@ -263,6 +273,17 @@ impl<'a> Observer<'a> {
         self.speed_scale = scale;
         self.samples = samples;
         self.scratch = scratch;
+    }
+
+    /// Counts change at the slips themselves.
+    fn note_slips(&mut self, view: &StepView<'_>, scratch: &mut Sample) {
+        for crossing in view.crossings.iter().filter(|crossing| crossing.is_slip) {
+            let time = view.step.time(crossing.share);
+            for &channel in self.wanted.iter().filter(|channel| self.discrete[**channel]) {
+                let value = view.channel(channel, crossing.share, scratch);
+                self.extremes[channel].note(value, time);
+            }
+        }
     }
 
     fn trace(&mut self, view: &StepView<'_>, sample: &Sample) {

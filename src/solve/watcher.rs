@@ -12,13 +12,10 @@ use super::rhs::Rhs;
 use super::sampling::{Sample, StepView};
 use super::tableau::{self, Tableau};
 use super::watcher_steps::bracket;
-use crate::equations::frame::{Counters, Evaluator, Frame};
+use crate::equations::frame::{Evaluator, Frame};
 use crate::equations::mode::Mode;
 use crate::scenario::Method;
-use std::sync::atomic::{AtomicBool, Ordering};
-
-/// Steps between two looks at the outside world.
-const LOOK_AROUND: u64 = 256;
+use std::sync::atomic::AtomicBool;
 
 /// Where a step was cut by a guard.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -53,6 +50,8 @@ pub struct Watcher<'w, 'a> {
     pub steps: u64,
     /// Set when a guard cut a step; the step is not taken.
     pub cut: Option<Cut>,
+    /// Set when a magnet runs away; the step is not taken.
+    pub runaway: Option<String>,
     /// Set when the outside asked to end.
     pub interrupted: bool,
     pub(super) interrupt: Option<&'w AtomicBool>,
@@ -113,6 +112,7 @@ impl<'w, 'a> Watcher<'w, 'a> {
             last_steps: [0.0; 2],
             steps: 0,
             cut: None,
+            runaway: None,
             interrupted: false,
             interrupt,
             progress,
@@ -318,19 +318,6 @@ impl<'w, 'a> Watcher<'w, 'a> {
         self.observer.step(rhs.evaluator, &self.step, self.inner());
         self.advance();
     }
-
-    fn look_around(&mut self) -> bool {
-        if self.steps % LOOK_AROUND == 0 {
-            if let Some(progress) = &mut self.progress {
-                progress(self.time);
-            }
-            if self.interrupt.is_some_and(|flag| flag.load(Ordering::Relaxed)) {
-                self.interrupted = true;
-                return true;
-            }
-        }
-        false
-    }
 }
 
 impl Watch for Watcher<'_, '_> {
@@ -342,6 +329,9 @@ impl Watch for Watcher<'_, '_> {
         if quiet != Quiet::No && !row_due {
             self.load_quiet(rhs, time, state, rates, quiet);
             return self.look_around() || full;
+        }
+        if self.runs_away(rhs, time, state, rates) {
+            return true;
         }
         self.load(rhs, time, state, rates);
         self.prepare(rhs);
@@ -371,15 +361,5 @@ impl Watch for Watcher<'_, '_> {
             self.step.length,
         );
         self.look_around() || full
-    }
-}
-
-/// Counts without slips, for evaluations that ask for none.
-pub fn no_counters(magnets: usize, speeds: usize) -> Counters {
-    Counters {
-        wells: vec![0; magnets],
-        slips: vec![0; magnets],
-        net_slips: vec![0; magnets],
-        angles: vec![0.0; speeds],
     }
 }

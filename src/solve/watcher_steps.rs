@@ -1,10 +1,15 @@
 //! The short way of a calm step, and where a guard trips within another.
 
 use super::calm::Quiet;
+use super::gears;
 use super::guards::TRIP;
 use super::locate;
 use super::rhs::Rhs;
 use super::watcher::Watcher;
+use std::sync::atomic::Ordering;
+
+/// Steps between two looks at the outside world.
+const LOOK_AROUND: u64 = 256;
 
 /// The first pair of shares between which a guard trips; a dip between samples is looked into.
 pub(super) fn bracket(
@@ -22,7 +27,7 @@ pub(super) fn bracket(
         if index + 1 < shares.len() {
             let places = [shares[index - 1], shares[index], shares[index + 1]];
             let heights = [value(index - 1), value(index), value(index + 1)];
-            if let Some((place, low)) = locate::vertex(places, heights) {
+            if let Some((_, low)) = locate::vertex(places, heights) {
                 let near = low < 0.1 * heights[0].min(heights[2]);
                 if near && low < heights[1].min(heights[0]).min(heights[2]) && heights[2] >= -TRIP {
                     let (place_low, depth) =
@@ -30,7 +35,6 @@ pub(super) fn bracket(
                     if -depth < -TRIP {
                         return Some((places[0], place_low));
                     }
-                    let _ = place;
                 }
             }
         }
@@ -39,6 +43,24 @@ pub(super) fn bracket(
 }
 
 impl Watcher<'_, '_> {
+    /// True when a magnet turns too far within a step; why is noted.
+    pub(super) fn runs_away(
+        &mut self,
+        rhs: &Rhs<'_>,
+        time: f64,
+        state: &[f64],
+        rates: &[f64],
+    ) -> bool {
+        self.runaway = gears::runaway(
+            rhs.evaluator.equations,
+            &self.observer.gears,
+            time - self.time,
+            [&self.state, &self.rate],
+            [state, rates],
+        );
+        self.runaway.is_some()
+    }
+
     /// The short way for a step in which nothing can happen: audit and angles only.
     pub(super) fn load_quiet(
         &mut self,
@@ -89,5 +111,18 @@ impl Watcher<'_, '_> {
         self.rate.copy_from_slice(rates);
         self.last_steps = [self.last_steps[1], length];
         self.steps += 1;
+    }
+
+    pub(super) fn look_around(&mut self) -> bool {
+        if self.steps % LOOK_AROUND == 0 {
+            if let Some(progress) = &mut self.progress {
+                progress(self.time);
+            }
+            if self.interrupt.is_some_and(|flag| flag.load(Ordering::Relaxed)) {
+                self.interrupted = true;
+                return true;
+            }
+        }
+        false
     }
 }

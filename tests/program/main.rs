@@ -9,6 +9,7 @@
 
 mod checking;
 mod commands;
+mod endings;
 mod energy;
 mod equal_area;
 mod friction;
