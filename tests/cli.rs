@@ -3,7 +3,9 @@
 #[cfg(test)]
 mod cli {
     mod bench;
+    mod comparisons;
     mod folders;
+    mod records;
     mod signals;
     mod statuses;
     mod streams;

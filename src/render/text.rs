@@ -1,8 +1,10 @@
 //! The summary of a run for people: verdicts first, then what happened and why.
 
+use super::measured;
 use super::shown::{self, Shown};
 use super::story;
 use super::table::{Table, wrap};
+use crate::analysis::records::RecordComparison;
 use crate::results::{RequirementResult, RunResult};
 use crate::scenario::Scenario;
 use std::fmt::Write as _;
@@ -22,6 +24,8 @@ pub struct Telling<'a> {
     pub output_folder: &'a str,
     /// The files in it.
     pub files: &'a [String],
+    /// Measured records against the run.
+    pub records: &'a [RecordComparison],
 }
 
 /// The summary of a run.
@@ -38,6 +42,7 @@ pub fn summary(scenario: &Scenario, result: &RunResult, telling: &Telling<'_>) -
     text.push_str(&gears(result, shown));
     text.push_str(&utilisation(scenario, result, shown));
     text.push_str(&peaks(result, shown));
+    text.push_str(&measured::text(telling.records, shown));
     text.push_str(&start_up(result));
     text.push_str(&bookkeeping(result));
     let warnings = match result.warnings.len() {

@@ -9,6 +9,7 @@ pub mod describe;
 mod load;
 mod locate;
 pub mod patch;
+mod records;
 mod sections;
 pub mod signals;
 mod source;
@@ -27,6 +28,7 @@ use crate::component::{
     gear_pair::GearPair,
     load::Load,
     magnetic_gear::{MagneticCoupling, MagneticGear},
+    measured::Measured,
     motor::Motor,
     planetary::PlanetaryGear,
     protection::Protection,
@@ -79,6 +81,8 @@ pub struct Scenario {
     pub signals: Vec<NamedSignal>,
     /// Requirements.
     pub requirements: Vec<Requirement>,
+    /// Measured records.
+    pub measured: Vec<Measured>,
     /// Studies as they stand in the file: name and tree.
     pub studies: Vec<(String, Node)>,
     /// All channels of the train, in file order.
