@@ -9,12 +9,14 @@
 
 mod checking;
 mod commands;
+mod convergence;
 mod endings;
 mod energy;
 mod equal_area;
 mod friction;
 mod gears;
 mod helper;
+mod invariance;
 mod law;
 mod likeness;
 mod oscillator;
@@ -29,4 +31,5 @@ mod stops;
 mod swing;
 mod units;
 mod verdicts;
+mod verification;
 mod wind;
