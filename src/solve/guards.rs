@@ -99,17 +99,19 @@ pub fn value(
     let boundary = |term: usize, place: usize| -> f64 {
         match &equations.terms[term].shape {
             Shape::Law(law) => law.boundaries().get(place).copied().unwrap_or(0.0),
-            Shape::Linear => 0.0,
+            Shape::Linear | Shape::Products(_) => 0.0,
         }
     };
     match guard {
         Guard::Lower(term) => {
             let edge = boundary(term, mode.pieces[term] - 1);
-            (frame.inputs[term] - edge) / equations.terms[term].input_size
+            let (place, size) = evaluator.place_on_axis(term, frame);
+            (place - edge) / size
         }
         Guard::Upper(term) => {
             let edge = boundary(term, mode.pieces[term]);
-            (edge - frame.inputs[term]) / equations.terms[term].input_size
+            let (place, size) = evaluator.place_on_axis(term, frame);
+            (edge - place) / size
         }
         Guard::Slide(index) => {
             let friction = &equations.frictions[index];

@@ -212,6 +212,7 @@ fn steady(active: &Active, state: &[f64]) -> (f64, f64) {
     let value = match &active.function {
         Function::Law(law, piece) => law.value(input, parameters, *piece),
         Function::Linear => input,
+        Function::Products(list) => crate::equations::products(list, state),
         Function::Friction(torque, direction) => -direction * torque,
         Function::FrictionCurve(law, direction) => {
             -direction * crate::equations::frame::sliding_of(law, input * direction)

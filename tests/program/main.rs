@@ -16,6 +16,7 @@ mod gears;
 mod helper;
 mod law;
 mod likeness;
+mod loads;
 mod oscillator;
 mod output;
 mod pendulum;
