@@ -10,6 +10,7 @@ use hand::Hand;
 use lodeshaft::analysis::study;
 use lodeshaft::analysis::transient::{prepare, run_prepared};
 use lodeshaft::render::charts;
+use lodeshaft::render::pictures::{Print, write};
 use lodeshaft::scenario::load;
 use lodeshaft::solve::{RunOptions, Wanted};
 use std::hint::black_box;
@@ -100,8 +101,10 @@ fn parts(text: &mut String) {
             let options = RunOptions { traces, wanted, ..RunOptions::default() };
             run_prepared(&equations, options).ok()?.traces
         };
-        let drawings = charts::drawings(&equations, &result, &mut again);
-        charts::write(&folder, &drawings).is_ok()
+        let print = Print::default();
+        let pictures = charts::drawings(&equations, &result, &mut again, print.sheet);
+        let drawings: Vec<_> = pictures.iter().map(|picture| &picture.drawing).collect();
+        write(&folder, &drawings, print).is_ok()
     });
     let known = bare + reading + building + integrating + tracing + charts;
     *text += &format!("pump start, whole process {:.1} ms, of which\n", 1e3 * whole);

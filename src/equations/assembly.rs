@@ -62,6 +62,8 @@ pub enum Function {
     Law(Law, usize),
     /// The input itself.
     Linear,
+    /// A sum of products of two states each.
+    Products(Vec<(usize, usize, f64)>),
     /// Friction of constant size against this direction.
     Friction(f64, f64),
 }
@@ -153,7 +155,7 @@ pub fn assemble(
                 .is_some_and(|scale| scale == 0.0);
             controller.integral == Some(place) && (*held || off)
         });
-        if held {
+        if held || equations.machines.iter().any(|machine| machine.is_off(mode, place)) {
             continue;
         }
         let factor = strength(&term.factor, &mut varies);
@@ -354,6 +356,7 @@ impl Active {
             function: match &term.shape {
                 Shape::Law(law) => Function::Law(law.clone(), piece),
                 Shape::Linear => Function::Linear,
+                Shape::Products(list) => Function::Products(list.clone()),
             },
             input: term.input.clone(),
             offset: term.offset,

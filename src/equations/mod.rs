@@ -9,12 +9,14 @@
 
 pub mod assembly;
 pub mod build;
+mod build_machine;
 mod build_motor;
 pub mod channels;
 pub mod energy;
 pub mod frame;
 pub mod holding;
 pub mod linearise;
+pub mod machine;
 pub mod mode;
 pub mod parts;
 
@@ -52,6 +54,8 @@ pub struct Equations {
     pub dampers: Vec<Damper>,
     /// Speed controllers.
     pub controllers: Vec<Controller>,
+    /// Induction machines with flux equations.
+    pub machines: Vec<machine::Machine>,
     /// Motors with a synchronous speed: motor by place and that speed (mirrored with the law), rad/s.
     pub heats: Vec<(usize, f64)>,
     /// Everything that follows time.
@@ -100,6 +104,8 @@ pub enum Shape {
     Law(Law),
     /// The input itself.
     Linear,
+    /// A sum of products of two states each; the input is the speed that makes its power.
+    Products(Vec<(usize, usize, f64)>),
 }
 
 /// A factor that follows signals: the product of slots to whole powers.
@@ -213,7 +219,7 @@ impl Equations {
         match self.terms.get(place) {
             Some(term) => match &term.shape {
                 Shape::Law(law) => Some(law),
-                Shape::Linear => None,
+                Shape::Linear | Shape::Products(_) => None,
             },
             None => match &self.frictions.get(place - self.terms.len())?.sliding {
                 Sliding::Curve(law) => Some(law),
@@ -255,6 +261,12 @@ pub fn speed_row(model: &Model, scale: &[f64], row: &[(usize, f64)]) -> StateRow
         .filter(|(_, value)| **value != 0.0)
         .map(|(place, value)| (place, value * scale[place]))
         .collect()
+}
+
+/// The value of a sum of products of states.
+#[inline]
+pub fn products(list: &[(usize, usize, f64)], state: &[f64]) -> f64 {
+    list.iter().map(|&(left, right, factor)| factor * state[left] * state[right]).sum()
 }
 
 /// The value of a sparse form.

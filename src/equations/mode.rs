@@ -87,8 +87,11 @@ impl Mode {
                 .terms
                 .iter()
                 .map(|term| match &term.shape {
-                    Shape::Law(law) => law.piece_at(input(equations, term, time, state, overrides)),
-                    Shape::Linear => 0,
+                    Shape::Law(law) => {
+                        let input = input(equations, term, time, state, overrides);
+                        law.piece(input, parameters(equations, term, time, overrides))
+                    }
+                    Shape::Linear | Shape::Products(_) => 0,
                 })
                 .chain(equations.frictions.iter().map(|_| 0))
                 .collect(),
@@ -165,6 +168,16 @@ impl Mode {
 
 /// Relative speed below which two bodies count as at rest to each other, as a share of the working speed.
 pub const REST: f64 = 1e-9;
+
+/// The parameters of a term's law at a time.
+pub fn parameters(
+    equations: &Equations,
+    term: &super::Term,
+    time: f64,
+    overrides: &Overrides,
+) -> [f64; 2] {
+    term.parameters.map(|slot| slot.map_or(0.0, |slot| equations.bank.value(slot, time, overrides)))
+}
 
 /// The input of a term at a state.
 pub fn input(

@@ -148,6 +148,18 @@ fn check_actions(scenario: &Scenario, faults: &mut Diagnostics) {
     for protection in &scenario.protections {
         for (index, action) in protection.then.iter().enumerate() {
             let Action::Set { signal, to, .. } = action else { continue };
+            let circuit = scenario.motors.iter().find(|motor| {
+                *signal == format!("motors.{}.scale", motor.name)
+                    && matches!(motor.law, MotorLaw::InductionCircuit { .. })
+            });
+            if circuit.is_some() {
+                faults.error_hint(
+                    format!("protections.{}.then.{index}.set", protection.name),
+                    "`scale` has no meaning for `induction_circuit`",
+                    "`law.induction_circuit.connected` switches it, `voltage` lowers its torque",
+                );
+                continue;
+            }
             let bounds = match places.iter().find(|place| place.path == *signal) {
                 Some(place) => place.bounds,
                 None if signal.ends_with(".scale") => scale_bounds(scenario, signal),
@@ -268,6 +280,10 @@ fn motor_signals<'a>(path: &str, law: &'a MotorLaw, uses: &mut Vec<Use<'a>>) {
         MotorLaw::Curve { voltage, .. } => add("curve", "voltage", voltage, Dimension::One),
         MotorLaw::Prescribed { torque } => add("prescribed", "torque", torque, Dimension::Torque),
         MotorLaw::SpeedLoop { speed, .. } => add("speed_loop", "speed", speed, Dimension::Speed),
+        MotorLaw::InductionCircuit { voltage, connected, .. } => {
+            add("induction_circuit", "voltage", voltage, Dimension::One);
+            add("induction_circuit", "connected", connected, Dimension::One);
+        }
         MotorLaw::OptimalPower { .. } => {}
     }
 }
@@ -287,10 +303,14 @@ fn load_signals<'a>(path: &str, law: &'a LoadLaw, uses: &mut Vec<Use<'a>>) {
             add("axial_rotor.flow", flow, Dimension::LinearSpeed);
             add("axial_rotor.pitch", pitch, Dimension::Angle);
         }
+        LoadLaw::Propeller { advance, .. } => {
+            add("propeller.advance", advance, Dimension::LinearSpeed);
+        }
         LoadLaw::PowerLaw { .. }
         | LoadLaw::Friction { .. }
         | LoadLaw::Viscous { .. }
-        | LoadLaw::Curve { .. } => {}
+        | LoadLaw::Curve { .. }
+        | LoadLaw::Periodic { .. } => {}
     }
 }
 
@@ -317,6 +337,10 @@ pub(super) fn each_with_table(scenario: &mut Scenario, look: &mut dyn FnMut(&str
             MotorLaw::Curve { voltage, .. } => ("curve.voltage", voltage),
             MotorLaw::Prescribed { torque } => ("prescribed.torque", torque),
             MotorLaw::SpeedLoop { speed, .. } => ("speed_loop.speed", speed),
+            MotorLaw::InductionCircuit { voltage, connected, .. } => {
+                visit(format!("{path}.law.induction_circuit.connected"), connected);
+                ("induction_circuit.voltage", voltage)
+            }
             MotorLaw::OptimalPower { .. } => continue,
         };
         visit(format!("{path}.law.{key}"), signal);
@@ -334,10 +358,14 @@ pub(super) fn each_with_table(scenario: &mut Scenario, look: &mut dyn FnMut(&str
                 visit(format!("{path}.law.axial_rotor.flow"), flow);
                 visit(format!("{path}.law.axial_rotor.pitch"), pitch);
             }
+            LoadLaw::Propeller { advance, .. } => {
+                visit(format!("{path}.law.propeller.advance"), advance);
+            }
             LoadLaw::PowerLaw { .. }
             | LoadLaw::Friction { .. }
             | LoadLaw::Viscous { .. }
-            | LoadLaw::Curve { .. } => {}
+            | LoadLaw::Curve { .. }
+            | LoadLaw::Periodic { .. } => {}
         }
     }
     for brake in &mut scenario.brakes {

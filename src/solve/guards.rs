@@ -103,11 +103,13 @@ pub fn value(
     match guard {
         Guard::Lower(term) => {
             let edge = boundary(term, mode.pieces[term] - 1);
-            (frame.inputs[term] - edge) / equations.input_size_at(term)
+            let (place, size) = evaluator.place_on_axis(term, frame);
+            (place - edge) / size
         }
         Guard::Upper(term) => {
             let edge = boundary(term, mode.pieces[term]);
-            (edge - frame.inputs[term]) / equations.input_size_at(term)
+            let (place, size) = evaluator.place_on_axis(term, frame);
+            (edge - place) / size
         }
         Guard::Slide(index) => {
             let friction = &equations.frictions[index];

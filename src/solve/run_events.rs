@@ -5,11 +5,10 @@ use super::rest;
 use super::rhs::Rhs;
 use super::run::Run;
 use super::step_cap;
-use crate::component::law::Law;
 use crate::equations::assembly::Assembly;
 use crate::equations::energy;
 use crate::equations::frame::Evaluator;
-use crate::equations::mode::{Contact, FrictionMode};
+use crate::equations::mode::{self, Contact, FrictionMode};
 use crate::equations::{Owner, Shape};
 use crate::results::{Event, EventKind};
 use crate::scenario::Start;
@@ -49,6 +48,24 @@ impl Run<'_, '_> {
         }
     }
 
+    /// Where a signal or a pole has carried a law over several pieces at once, they count as one.
+    fn catch_up(&mut self, term: usize) {
+        let Shape::Law(law) = &self.equations.terms[term].shape else { return };
+        for machine in &self.equations.machines {
+            machine.open(&self.mode, &mut self.state);
+        }
+        if law.piece_follows_signals() {
+            let term_of = &self.equations.terms[term];
+            let input =
+                mode::input(self.equations, term_of, self.time, &self.state, &self.overrides);
+            let parameters = mode::parameters(self.equations, term_of, self.time, &self.overrides);
+            let piece = law.piece(input, parameters);
+            if piece.abs_diff(self.mode.pieces[term]) > 1 {
+                self.mode.pieces[term] = piece;
+            }
+        }
+    }
+
     /// Changes the mode after a guard has tripped.
     pub(super) fn apply(&mut self, guard: Guard, end: f64) {
         self.work.events += 1;
@@ -60,10 +77,12 @@ impl Run<'_, '_> {
         match guard {
             Guard::Lower(term) => {
                 self.mode.pieces[term] -= 1;
+                self.catch_up(term);
                 self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
             }
             Guard::Upper(term) => {
                 self.mode.pieces[term] += 1;
+                self.catch_up(term);
                 self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
             }
             Guard::Slide(_) | Guard::Hold => {
@@ -248,7 +267,8 @@ impl Run<'_, '_> {
         }
         // Laws over an angle: a sixth of a period at the working speed.
         for term in &self.equations.terms {
-            if let Shape::Law(Law::Cogging { order, .. }) = &term.shape {
+            if let Shape::Law(law) = &term.shape {
+                let Some(order) = law.turn_order() else { continue };
                 let fastest =
                     self.equations.model.scales.body_speed.iter().fold(0.0_f64, |a, b| a.max(*b));
                 cap = cap.min(TAU / (6.0 * order * fastest));

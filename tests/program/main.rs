@@ -19,6 +19,7 @@ mod helper;
 mod invariance;
 mod law;
 mod likeness;
+mod loads;
 mod oscillator;
 mod output;
 mod pendulum;

@@ -189,7 +189,14 @@ impl DampingSources {
             let slope = match (&active.function, &term.shape) {
                 // Magnets and ripple store energy: they take none out.
                 (Function::Law(crate::component::law::Law::Magnet(_), _), _)
-                | (Function::Law(crate::component::law::Law::Cogging { .. }, _), _) => continue,
+                | (
+                    Function::Law(
+                        crate::component::law::Law::Cogging { .. }
+                        | crate::component::law::Law::Periodic(_),
+                        _,
+                    ),
+                    _,
+                ) => continue,
                 (Function::Law(law, piece), _) => law.slope(input, parameters, *piece),
                 (Function::Linear, Shape::Linear) => 1.0,
                 _ => continue,
