@@ -4,7 +4,10 @@
 mod cli {
     mod bench;
     mod comparisons;
+    mod disk;
     mod folders;
+    mod kills;
+    mod lock;
     mod records;
     mod signals;
     mod statuses;

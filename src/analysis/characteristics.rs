@@ -31,7 +31,9 @@ pub fn find(equations: &Equations, train: &Train, result: &RunResult) -> Option<
         matches!(term.owner, Owner::Motor(_))
             && matches!(
                 term.shape,
-                Shape::Law(Law::RatingPlate(_) | Law::Induction(_) | Law::MotorCurve(_))
+                Shape::Law(
+                    Law::RatingPlate(_) | Law::Induction(_) | Law::MotorCurve(_) | Law::Circuit(_)
+                )
             )
     })?;
     let (Owner::Motor(index), Shape::Law(law)) = (term.owner, &term.shape) else { return None };
@@ -45,8 +47,12 @@ pub fn find(equations: &Equations, train: &Train, result: &RunResult) -> Option<
     };
     let top = if top.abs() > 0.0 { top } else { speed.max };
     let sense = top.signum();
-    let value =
-        |speed: f64| sense * sign * law.value(sign * speed, [0.0; 2], law.piece_at(sign * speed));
+    let value = |speed: f64| {
+        // A circuit is drawn as it is on the line.
+        let parameters = [1.0; 2];
+        let piece = law.piece(sign * speed, parameters);
+        sense * sign * law.value(sign * speed, parameters, piece)
+    };
     let grid = |place: usize| top * place as f64 / (POINTS - 1) as f64;
     let drive = (0..POINTS).map(|place| [sense * grid(place), value(grid(place))]).collect();
     let own = train.bodies.iter().find(|body| body.name == motor.body)?.ratio?;

@@ -232,7 +232,7 @@ pub(super) fn tell_failure(result: &RunResult, status: Status) {
         Status::Interrupted => streams::complain(Severity::Warning, failure, Some(hint)),
         _ => streams::complain(
             Severity::Error,
-            format!("the numerics gave up: {failure}"),
+            format!("the run was given up: {failure}"),
             Some(hint),
         ),
     }

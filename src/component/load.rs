@@ -2,7 +2,10 @@
 
 pub mod axial_rotor;
 pub mod curve;
+pub mod periodic;
 pub mod power_law;
+pub mod propeller;
+pub mod propeller_series;
 mod read;
 
 use crate::component::law::Law;
@@ -72,6 +75,24 @@ pub enum LoadLaw {
         /// rad.
         pitch: Signal,
     },
+    /// By the body's angle: a mean against the motion, and harmonics of a turn.
+    Periodic {
+        /// N*m, against the motion.
+        mean: f64,
+        /// Harmonics of the resisting torque.
+        harmonics: Vec<periodic::TurnHarmonic>,
+    },
+    /// Ship's propeller.
+    Propeller {
+        /// m.
+        diameter: f64,
+        /// kg/m3.
+        density: f64,
+        /// Speed of advance, m/s.
+        advance: Signal,
+        /// Torque coefficient over the advance ratio.
+        coefficient: propeller::TorqueCoefficient,
+    },
 }
 
 impl LoadLaw {
@@ -86,6 +107,12 @@ impl LoadLaw {
             Self::AxialRotor { radius, density, .. } => {
                 Some(Law::AxialRotor(axial_rotor::AxialRotor::new(*radius, *density)))
             }
+            Self::Periodic { harmonics, .. } => {
+                Some(Law::Periodic(periodic::Periodic::new(harmonics)))
+            }
+            Self::Propeller { diameter, density, coefficient, .. } => Some(Law::Propeller(
+                propeller::Propeller::new(*diameter, *density, coefficient.clone()),
+            )),
             Self::Prescribed { .. } => Some(Law::Unit),
             Self::Friction { .. } | Self::Viscous { .. } => None,
         }

@@ -10,6 +10,7 @@ mod in_place;
 pub mod json;
 pub mod kept;
 mod leftovers;
+mod lock;
 pub mod measured;
 pub mod number;
 pub mod pictures;

@@ -131,12 +131,7 @@ fn utilisation(scenario: &Scenario, result: &RunResult, shown: Shown<'_>) -> Str
         let largest = channel.max.abs().max(channel.min.abs());
         let of = |limit: Option<f64>, what: &str| {
             limit.map_or_else(String::new, |limit| {
-                let above = if largest > limit { " (above)" } else { "" };
-                format!(
-                    "{} of {what} {}{above}",
-                    shown::percent(largest / limit),
-                    shown.torque(limit)
-                )
+                format!("{} of {what} {}", shown::percent(largest / limit), shown.torque(limit))
             })
         };
         table.row([
@@ -191,7 +186,7 @@ fn start_up(result: &RunResult) -> String {
     for motor in &result.motors {
         let reached = match motor.run_up_time {
             Some(at) => format!("95 % of synchronous speed at {}", shown::time(at)),
-            None => "95 % of synchronous speed never reached".to_owned(),
+            None => "no run-up to 95 % of synchronous speed".to_owned(),
         };
         let heat = motor
             .rotor_heat

@@ -11,7 +11,7 @@ mod locate;
 pub mod patch;
 mod records;
 mod sections;
-mod signals;
+pub mod signals;
 mod source;
 mod tables;
 mod yaml;

@@ -9,13 +9,17 @@
 
 mod checking;
 mod commands;
+mod convergence;
+mod endings;
 mod energy;
 mod equal_area;
 mod friction;
 mod gears;
 mod helper;
+mod invariance;
 mod law;
 mod likeness;
+mod loads;
 mod oscillator;
 mod output;
 mod pendulum;
@@ -28,4 +32,5 @@ mod stops;
 mod swing;
 mod units;
 mod verdicts;
+mod verification;
 mod wind;

@@ -1,13 +1,18 @@
 //! How a load is written in a scenario.
 
-use super::{Load, LoadLaw};
-use crate::component::points::read_curve;
+use super::periodic::TurnHarmonic;
+use super::propeller::TorqueCoefficient;
+use super::{Load, LoadLaw, propeller_series};
+use crate::component::points::{read_curve, read_pairs};
 use crate::quantity::Dimension;
 use crate::signal::Signal;
 use crate::signal::read::{read_signal, read_signal_or};
-use crate::tree::{Alternative, Fields, Range, Shape};
+use crate::tree::{Alternative, Fields, Range};
 
-/// The laws a load may have; the last [`NOT_YET`] are refused by name.
+/// The highest order of a load over an angle.
+const HIGHEST_ORDER: i64 = 10_000;
+
+/// The laws a load may have.
 const LAWS: [Alternative<LoadLaw>; 8] = [
     ("power_law", "Torque*|w/speed|^exponent against the motion.", power_law),
     ("friction", "Dry friction that sticks and slips.", friction),
@@ -18,20 +23,12 @@ const LAWS: [Alternative<LoadLaw>; 8] = [
     ("periodic", "Torque by the body's angle.", periodic),
     ("propeller", "Ship's propeller.", propeller),
 ];
-const NOT_YET: usize = 2;
 
 impl Load {
     /// Reads the load called `name`.
     pub fn read(name: &str, fields: &mut Fields<'_>) -> Self {
         let body = fields.name("body", "The body it loads.");
-        // The reference lists only what can be run.
-        let hidden = if fields.describing() { NOT_YET } else { 0 };
-        let law = fields.choice(
-            "law",
-            true,
-            "How its torque comes about.",
-            LAWS.get(..LAWS.len() - hidden).unwrap_or(&LAWS),
-        );
+        let law = fields.choice("law", true, "How its torque comes about.", &LAWS);
         let against = fields
             .name_optional("against", "Other body (friction and viscous); ground when absent.");
         let scale = read_signal(
@@ -162,19 +159,103 @@ fn axial_rotor(fields: &mut Fields<'_>) -> LoadLaw {
 }
 
 fn periodic(fields: &mut Fields<'_>) -> LoadLaw {
-    fields.fault_here("`periodic` is not in this version of the program");
-    for key in ["mean", "harmonics"] {
-        fields.raw(key, Shape::Free, false, "");
-    }
-    LoadLaw::Prescribed { torque: Signal::Constant(0.0) }
+    let mean = fields.quantity(
+        "mean",
+        Dimension::Torque,
+        Range::NotNegative,
+        "Mean torque, against the motion; holds at rest.",
+    );
+    let harmonics = fields.list("harmonics", "Harmonics of the resisting torque.", |wave| {
+        let order = wave.whole("order", 1, HIGHEST_ORDER, "Periods a turn of the body.");
+        let amplitude = wave.quantity(
+            "amplitude",
+            Dimension::Torque,
+            Range::NotNegative,
+            "Resisting torque of amplitude*sin(order*angle + phase).",
+        );
+        let phase =
+            wave.quantity_or("phase", Dimension::Angle, Range::Any, 0.0, "Phase at the start.");
+        TurnHarmonic { order: order as u32, amplitude, phase }
+    });
+    LoadLaw::Periodic { mean, harmonics }
 }
 
 fn propeller(fields: &mut Fields<'_>) -> LoadLaw {
-    fields.fault_here("`propeller` is not in this version of the program");
-    for key in ["diameter", "density", "advance", "points", "torque_coefficient"] {
-        fields.raw(key, Shape::Free, false, "");
+    let diameter = fields.quantity("diameter", Dimension::Length, Range::Positive, "Diameter.");
+    let density = fields.quantity_or(
+        "density",
+        Dimension::Density,
+        Range::Positive,
+        1025.0,
+        "Density of the water: sea 1025 kg/m3, fresh 1000 kg/m3.",
+    );
+    let advance = read_signal_or(
+        fields,
+        "advance",
+        Dimension::LinearSpeed,
+        0.0,
+        "Speed of the water past the propeller: ship's speed less wake; 0 is bollard pull.",
+    );
+    let coefficient = fields.group(
+        "torque_coefficient",
+        "KQ = torque/(density*n^2*diameter^5) over J = advance/(n*diameter), in one of these ways.",
+        torque_coefficient,
+    );
+    let coefficient = coefficient.flatten().unwrap_or_else(|| TorqueCoefficient::constant(0.0));
+    LoadLaw::Propeller { diameter, density, advance, coefficient }
+}
+
+fn torque_coefficient(fields: &mut Fields<'_>) -> Option<TorqueCoefficient> {
+    let constant = fields
+        .quantity_optional(
+            "constant",
+            Dimension::One,
+            Range::NotNegative,
+            "The same KQ at every advance ratio, typically 0.02 to 0.07.",
+        )
+        .map(TorqueCoefficient::constant);
+    let points = read_pairs(
+        fields,
+        "points",
+        [Dimension::One, Dimension::One],
+        "advance ratios",
+        "Rows of J and KQ, J rising; straight lines, end values are held.",
+    )
+    .map(|points| TorqueCoefficient::points(&points));
+    let series =
+        fields.group_optional("b_series", "Wageningen B series, Reynolds number 2e6.", b_series);
+    one_of_ways(fields, ["constant", "points", "b_series"], [constant, points, series])
+}
+
+/// The one of several ways that is given; none or several are a fault.
+fn one_of_ways<T, const N: usize>(
+    fields: &Fields<'_>,
+    keys: [&'static str; N],
+    ways: [Option<T>; N],
+) -> Option<T> {
+    let given: Vec<&str> = keys.into_iter().filter(|key| fields.has(key)).collect();
+    match given.as_slice() {
+        [] => {
+            fields.fault_here(format!(
+                "one of {} is needed here",
+                keys.map(|key| format!("`{key}`")).join(", ")
+            ));
+        }
+        [_] => {}
+        [first, second, ..] => {
+            fields.fault(second, format!("either `{first}` or `{second}` is stated, not both"));
+        }
     }
-    LoadLaw::Prescribed { torque: Signal::Constant(0.0) }
+    ways.into_iter().flatten().next()
+}
+
+fn b_series(fields: &mut Fields<'_>) -> TorqueCoefficient {
+    let blades = fields.whole("blades", 2, 7, "Number of blades.");
+    let mut ratio =
+        |key, low, high, doc| fields.quantity(key, Dimension::One, Range::Between(low, high), doc);
+    let pitch_ratio = ratio("pitch_ratio", 0.5, 1.4, "Pitch over diameter.");
+    let area_ratio = ratio("area_ratio", 0.3, 1.05, "Expanded blade area over disc area.");
+    propeller_series::torque_coefficient(blades as u32, pitch_ratio, area_ratio)
 }
 
 #[cfg(test)]

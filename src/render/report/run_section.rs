@@ -179,7 +179,7 @@ fn motors(material: &Material<'_>) -> String {
     for motor in &material.result.motors {
         table.row([
             escape(&motor.name),
-            motor.run_up_time.map_or_else(|| "never".to_owned(), time),
+            motor.run_up_time.map_or_else(|| "none".to_owned(), time),
             motor.rotor_heat.map_or_else(
                 || "–".to_owned(),
                 |heat| escape(&super::figures::tidy(&shown::energy(heat))),
