@@ -17,6 +17,7 @@ mod helper;
 mod law;
 mod likeness;
 mod loads;
+mod motors;
 mod oscillator;
 mod output;
 mod pendulum;
