@@ -41,6 +41,8 @@ pub struct Active {
     pub parameters: [Option<SlotId>; 2],
     /// Offset and parameters where nothing of them follows time.
     pub fixed: (f64, [f64; 2]),
+    /// True when its factor, offset or a parameter follows time within the stretch.
+    pub follows_time: bool,
     /// Factor on the value.
     pub factor: Strength,
     /// Column: entries of the scaled rates.
@@ -64,8 +66,6 @@ pub enum Function {
     Products(Vec<(usize, usize, f64)>),
     /// Friction of constant size against this direction.
     Friction(f64, f64),
-    /// Friction along a load curve against this direction.
-    FrictionCurve(Law, f64),
 }
 
 /// A factor over one stretch.
@@ -162,12 +162,11 @@ pub fn assemble(
         if factor == Strength::Constant(0.0) {
             continue;
         }
-        let moving =
+        let mut moving =
             term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
-        for slot in moving {
-            // The steady path leaves offsets and parameters out: right only where they are zero.
-            varies |= equations.bank.constant_on(slot, start, end, overrides) != Some(0.0);
-        }
+        let moves =
+            moving.any(|slot| equations.bank.constant_on(slot, start, end, overrides).is_none());
+        varies |= moves;
         let column = match &term.target {
             Target::Torque(direction) => parts.column(direction),
             Target::State(state, rate) => vec![(*state, rate / equations.scale[*state])],
@@ -194,6 +193,7 @@ pub fn assemble(
             term.offset.map_or(0.0, |(gain, slot)| gain * constant(slot)),
             term.parameters.map(|slot| slot.map_or(0.0, constant)),
         );
+        entry.follows_time |= moves;
         active.push(entry);
     }
     for (index, friction) in equations.frictions.iter().enumerate() {
@@ -206,12 +206,15 @@ pub fn assemble(
             place: equations.terms.len() + index,
             function: match &friction.sliding {
                 Sliding::Constant(torque) => Function::Friction(*torque, direction),
-                Sliding::Curve(law) => Function::FrictionCurve(law.clone(), direction),
+                Sliding::Curve(law) => {
+                    Function::Law(law.clone(), mode.pieces[equations.terms.len() + index])
+                }
             },
             input: friction.speed.clone(),
             offset: None,
             parameters: [None; 2],
             fixed: (0.0, [0.0; 2]),
+            follows_time: matches!(factor, Strength::Varying(_)),
             factor,
             column: parts.column(&friction.row),
             // A load by points takes power out of the train, friction turns it to heat.
@@ -231,6 +234,7 @@ pub fn assemble(
             offset: None,
             parameters: [None; 2],
             fixed: (0.0, [0.0; 2]),
+            follows_time: false,
             factor: Strength::Constant(1.0),
             column: parts.column(&parts.constant_row()),
             power: PowerKind::None,
@@ -358,6 +362,7 @@ impl Active {
             offset: term.offset,
             parameters: term.parameters,
             fixed: (0.0, [0.0; 2]),
+            follows_time: matches!(factor, Strength::Varying(_)),
             factor,
             column,
             power: term.power,

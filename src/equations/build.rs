@@ -39,6 +39,7 @@ pub fn build(model: &Model) -> Equations {
         scale,
         twist_state,
         phase_state,
+        phase_rows: Vec::new(),
         angle_states: Vec::new(),
         terms: Vec::new(),
         frictions: Vec::new(),
@@ -77,6 +78,8 @@ pub fn build(model: &Model) -> Equations {
         );
     }
     equations.size = equations.scale.len();
+    let rows = model.magnets.iter().map(|magnet| equations.speed_row(&magnet.row()));
+    equations.phase_rows = rows.collect();
     equations
 }
 

@@ -73,7 +73,9 @@ impl Evaluator<'_> {
 
     /// Where a term stands on the axis of its law's boundaries, and the size of that axis.
     pub fn place_on_axis(&self, term: usize, frame: &Frame) -> (f64, f64) {
-        let (input, term) = (frame.inputs[term], &self.equations.terms[term]);
+        let input = frame.inputs[term];
+        let size = self.equations.input_size_at(term);
+        let Some(term) = self.equations.terms.get(term) else { return (input, size) };
         match &term.shape {
             Shape::Law(law) if law.piece_follows_signals() => {
                 let signal = |slot| {
@@ -87,7 +89,7 @@ impl Evaluator<'_> {
                 let parameters = term.parameters.map(|slot| slot.map_or(0.0, signal));
                 (law.axis(input, parameters), 1.0)
             }
-            _ => (input, term.input_size),
+            _ => (input, size),
         }
     }
 
@@ -111,9 +113,6 @@ impl Evaluator<'_> {
             Function::Linear => input,
             Function::Products(list) => super::products(list, state),
             Function::Friction(torque, direction) => -direction * torque,
-            Function::FrictionCurve(law, direction) => {
-                -direction * sliding_of(law, input * direction)
-            }
         };
         (input, self.strength(&active.factor, time) * value)
     }

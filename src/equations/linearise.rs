@@ -52,8 +52,6 @@ pub fn jacobian(
             Function::Products(_) => 0.0,
             // Sliding friction adds nothing: its torque does not follow small changes of speed.
             Function::Friction(..) => 0.0,
-            // A load by points that sticks at standstill is a load like any other while it turns.
-            Function::FrictionCurve(law, _) => law.slope(input, [0.0; 2], law.piece_at(input)),
         };
         let slope = slope * evaluator.strength(&active.factor, time);
         for &(row, share) in &active.column {

@@ -42,6 +42,8 @@ pub struct Equations {
     pub twist_state: Vec<Option<usize>>,
     /// State of each magnet's phase.
     pub phase_state: Vec<usize>,
+    /// Rate of each magnet's phase (electrical rad/s) as a form over the scaled state.
+    pub phase_rows: Vec<StateRow>,
     /// Angles that some law needs: state and rate row over bodies.
     pub angle_states: Vec<(usize, BodyRow)>,
     /// Scalar laws.
@@ -210,6 +212,31 @@ impl Equations {
     /// A form over bodies as a form over the scaled state.
     pub fn speed_row(&self, row: &[(usize, f64)]) -> StateRow {
         speed_row(&self.model, &self.scale, row)
+    }
+
+    /// The law at a place of the frame: of a term, or of a friction element by points.
+    pub fn law_at(&self, place: usize) -> Option<&Law> {
+        match self.terms.get(place) {
+            Some(term) => match &term.shape {
+                Shape::Law(law) => Some(law),
+                Shape::Linear | Shape::Products(_) => None,
+            },
+            None => match &self.frictions.get(place - self.terms.len())?.sliding {
+                Sliding::Curve(law) => Some(law),
+                Sliding::Constant(_) => None,
+            },
+        }
+    }
+
+    /// Typical size of the input of the law at a place of the frame.
+    pub fn input_size_at(&self, place: usize) -> f64 {
+        match self.terms.get(place) {
+            Some(term) => term.input_size,
+            None => self
+                .frictions
+                .get(place - self.terms.len())
+                .map_or(1.0, |friction| friction.speed_size),
+        }
     }
 
     /// The starting state (scaled) with shafts unloaded and controllers at rest.

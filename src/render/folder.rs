@@ -7,6 +7,7 @@
 
 use super::in_place;
 use super::leftovers::{self, MARKER, MARKER_FILE};
+use super::lock;
 use std::fs::{self, File};
 use std::io::{self, BufWriter};
 use std::path::{Path, PathBuf};
@@ -32,6 +33,18 @@ impl FolderFault {
         Self {
             message: format!("`{}` {what}", target.display()),
             hint: Some("name another folder with --out".to_owned()),
+        }
+    }
+
+    /// Studies of another process are under way in a folder of results.
+    pub fn in_use(shown: &Path, process: Option<u32>) -> Self {
+        let who = process.map_or_else(String::new, |number| format!(" (process {number})"));
+        Self {
+            message: format!(
+                "`{}` is in use: studies of another process{who} are under way in it",
+                shown.display()
+            ),
+            hint: Some("wait for its end, or name another folder with --out".to_owned()),
         }
     }
 
@@ -85,6 +98,7 @@ impl Folder {
         if let Place::Foreign(what) = look(&target) {
             return Err(FolderFault::refused(shown, what));
         }
+        is_free(&target, shown)?;
         let told = |error: io::Error| {
             FolderFault::disk(&format!("the folder `{}`", shown.display()), &error)
         };
@@ -157,6 +171,7 @@ impl Folder {
     /// # Errors
     /// A fault of the disk, or a place that has meanwhile been taken by something else.
     pub fn commit(mut self) -> Result<(), FolderFault> {
+        is_free(&self.target, &self.shown)?;
         if self.in_place {
             in_place::fill(&self.target, &self.temporary).map_err(|error| {
                 FolderFault::disk(&format!("the folder `{}`", self.shown.display()), &error)
@@ -221,6 +236,14 @@ impl Drop for Folder {
             // Stays when something else has come into it.
             let _ = fs::remove_dir(parent);
         }
+    }
+}
+
+/// Fails when studies of another process are under way in a folder of results.
+fn is_free(target: &Path, shown: &Path) -> Result<(), FolderFault> {
+    match lock::taken(&target.join(super::study::folder::NAME)) {
+        Some(process) => Err(FolderFault::in_use(shown, process)),
+        None => Ok(()),
     }
 }
 

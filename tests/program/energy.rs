@@ -117,7 +117,7 @@ enum Joint {
 }
 
 /// A train of bodies in a row, its joints and figures drawn from a seed.
-fn random_train(seed: u64) -> (String, Vec<String>) {
+pub fn random_train(seed: u64) -> (String, Vec<String>) {
     let mut draw = ChaCha8Rng::seed_from_u64(seed);
     let count = draw.random_range(2..=5_usize);
     let mut text = head(0.4, 0.02, 1e-8);

@@ -20,8 +20,20 @@ fn slips(swing: &Swing, expected: bool, what: &str) -> Outcome {
     outcome
 }
 
+/// A step of torque from a steady preload; a reversal's preload moves with the step.
+pub fn step(preload: f64, torque: f64) -> Swing {
+    let preload = if preload < 0.0 { -torque } else { preload };
+    Swing {
+        steady: true,
+        torque: (preload, vec![(1.0, torque)]),
+        duration: 81.0,
+        tolerance: 1e-10,
+        ..Swing::default()
+    }
+}
+
 /// Where an undamped swing from rest at `start` under the share `torque` turns back.
-fn turning_point(start: f64, torque: f64) -> f64 {
+pub fn turning_point(start: f64, torque: f64) -> f64 {
     // Energy left at d; positive from the start to the turning point, which lies before the
     // unstable point.
     let energy = |d: f64| torque * (d - start) + d.cos() - start.cos();
@@ -35,7 +47,7 @@ fn turning_point(start: f64, torque: f64) -> f64 {
 }
 
 /// Roots of T1 (pi - asin T1 - asin T0) = cos(asin T0) + sqrt(1 - T1^2), 40 digits: T0, T1.
-const STEPS: [(f64, f64); 10] = [
+pub const STEPS: [(f64, f64); 10] = [
     (0.0, 0.7246113537767085),
     (0.1, 0.7552081964271955),
     (0.2, 0.7849135527147918),
@@ -53,18 +65,7 @@ const STEPS: [(f64, f64); 10] = [
 fn critical_step_from_each_preload() {
     for (preload, critical) in STEPS {
         for (factor, slips_above) in BRACKET {
-            let swing = Swing {
-                steady: true,
-                // The reversal's preload moves with the step.
-                torque: if preload < 0.0 {
-                    (preload * factor, vec![(1.0, critical * factor)])
-                } else {
-                    (preload, vec![(1.0, critical * factor)])
-                },
-                duration: 81.0,
-                tolerance: 1e-10,
-                ..Swing::default()
-            };
+            let swing = step(preload, critical * factor);
             let what = format!("step from {preload} to {critical} x {factor}");
             let outcome = slips(&swing, slips_above, &what);
             if !slips_above {
@@ -112,7 +113,7 @@ fn critical_step_is_found_at_coarse_tolerance_too() {
 
 /// Critical step from rest with damping, by independent integration (Dormand-Prince 8(5,3) at
 /// 1e-11, bisected): beta, share.
-const DAMPED_STEPS: [(f64, f64); 5] = [
+pub const DAMPED_STEPS: [(f64, f64); 5] = [
     (0.02, 0.734857359062),
     (0.05, 0.750013310434),
     (0.1, 0.774659579485),
@@ -120,23 +121,23 @@ const DAMPED_STEPS: [(f64, f64); 5] = [
     (0.5, 0.934639760989),
 ];
 
+/// A step of torque from rest in a damped train of workshop size.
+pub fn damped_step(beta: f64, torque: f64) -> Swing {
+    Swing { beta, torque: (torque, Vec::new()), duration: 120.0, ..Swing::workshop() }
+}
+
 #[test]
 fn damping_raises_the_critical_step() {
     for (beta, critical) in DAMPED_STEPS {
         for (factor, slips_above) in [(1.0 - 1e-5, false), (1.0 + 1e-5, true)] {
-            let swing = Swing {
-                beta,
-                torque: (critical * factor, Vec::new()),
-                duration: 120.0,
-                ..Swing::workshop()
-            };
+            let swing = damped_step(beta, critical * factor);
             slips(&swing, slips_above, &format!("beta {beta}, step x {factor}"));
         }
     }
 }
 
 /// Two free bodies with a coupling between them, torque on the first only.
-fn free_pair(torque: f64, tolerance: f64) -> String {
+pub fn free_pair(torque: f64, tolerance: f64) -> String {
     format!(
         "lodeshaft: 1\ntitle: Two free bodies\nduration: 80 s\noutput_step: 1 s\n\
          solver: {{ method: dop853, tolerance: {tolerance} }}\n\
@@ -167,21 +168,20 @@ fn free_load_lets_a_larger_step_pass() {
 }
 
 /// w^2/2 = 2 sqrt(1 - T^2) - T (pi - 2 asin T): torque share, critical rate at the stable point.
-const KICKS: [(f64, f64); 4] =
+pub const KICKS: [(f64, f64); 4] =
     [(0.0, 2.0), (0.2, 1.68036688364459), (0.5, 1.170344612814772), (0.8, 0.5837777418345872)];
+
+/// A kick from the stable point under a torque.
+pub fn kick(torque: f64, rate: f64, train: Swing) -> Swing {
+    Swing { phase: torque.asin(), rate, torque: (torque, Vec::new()), duration: 80.0, ..train }
+}
 
 #[test]
 fn critical_kick_at_each_load() {
     for (torque, critical) in KICKS {
         for (factor, slips_above) in BRACKET {
             for train in [Swing::default(), Swing::workshop()] {
-                let swing = Swing {
-                    phase: torque.asin(),
-                    rate: critical * factor,
-                    torque: (torque, Vec::new()),
-                    duration: 80.0,
-                    ..train
-                };
+                let swing = kick(torque, critical * factor, train);
                 slips(&swing, slips_above, &format!("kick {critical} x {factor} at {torque}"));
             }
         }
@@ -190,7 +190,7 @@ fn critical_kick_at_each_load() {
 
 /// Torque T0 -> T1 for a time -> T0: the pulse may last until the swing's energy just reaches
 /// the top at T0; time by quadrature with 40 digits: T0, T1, time.
-const PULSES: [(f64, f64, f64); 6] = [
+pub const PULSES: [(f64, f64, f64); 6] = [
     (0.0, 1.0, 2.500615127619551),
     (0.0, 1.5, 1.448282873403636),
     (0.0, 3.0, 0.6794517515915012),
@@ -199,16 +199,21 @@ const PULSES: [(f64, f64, f64); 6] = [
     (0.5, 2.0, 0.797287417844984),
 ];
 
+/// From a steady preload a higher torque for a time.
+pub fn pulse(preload: f64, peak: f64, time: f64) -> Swing {
+    Swing {
+        steady: true,
+        torque: (preload, vec![(1.0, peak), (1.0 + time, preload)]),
+        duration: 81.0,
+        ..Swing::workshop()
+    }
+}
+
 #[test]
 fn critical_length_of_each_pulse() {
     for (preload, peak, critical) in PULSES {
         for (factor, slips_above) in BRACKET {
-            let swing = Swing {
-                steady: true,
-                torque: (preload, vec![(1.0, peak), (1.0 + critical * factor, preload)]),
-                duration: 81.0,
-                ..Swing::workshop()
-            };
+            let swing = pulse(preload, peak, critical * factor);
             let what = format!("pulse {preload} to {peak} for {critical} x {factor}");
             slips(&swing, slips_above, &what);
         }
@@ -231,7 +236,7 @@ fn pulse_signal_does_the_same_as_points() {
 }
 
 /// A magnetic gear whose inner rotor turns while modulator and outer rotor stand: a jam.
-fn jam(speed_rpm: f64, load_angle_degrees: f64, torque: f64) -> String {
+pub fn jam(speed_rpm: f64, load_angle_degrees: f64, torque: f64) -> String {
     format!(
         "lodeshaft: 1\ntitle: Jammed output\nduration: 0.6 s\noutput_step: 10 ms\n\
          solver: {{ tolerance: 1e-9 }}\n\

@@ -6,12 +6,21 @@
 use super::helper::{head, near, run_through, run_well, same};
 use std::f64::consts::PI;
 
+/// A rotor on a spring with dry friction, thrown so that it first turns back at 1 rad.
+pub fn rubbed(head: &str, more: &str) -> String {
+    let speed = (1.06_f64 * 1.06 - 0.06 * 0.06).sqrt();
+    format!(
+        "{head}bodies:\n  rotor: {{ inertia: 1 kg*m2, speed: {speed} rad/s }}\n\
+         shafts:\n  spring: {{ between: [rotor, ground], stiffness: 1 N*m/rad }}\n\
+         loads:\n  rub: {{ body: rotor, law: {{ friction: {{ sliding: 0.06 N*m }} }} }}\n{more}",
+    )
+}
+
 #[test]
 fn dry_friction_takes_a_fixed_step_from_each_swing() {
     // J = k = 1, friction 0.06: each half swing is shorter by 2 F/k = 0.12 and lasts pi. The
     // start gives a first turning point of 1; it rests where the spring is within the
     // friction: at 0.04, after 8 half swings.
-    let speed = (1.06_f64 * 1.06 - 0.06 * 0.06).sqrt();
     let first = PI / 2.0 - (0.06_f64 / 1.06).asin();
     let mut requirements = String::from("requirements:\n");
     for swing in 0..=8 {
@@ -22,12 +31,7 @@ fn dry_friction_takes_a_fixed_step_from_each_swing() {
             turn + 1.0,
         ));
     }
-    let scenario = format!(
-        "{}bodies:\n  rotor: {{ inertia: 1 kg*m2, speed: {speed} rad/s }}\n\
-         shafts:\n  spring: {{ between: [rotor, ground], stiffness: 1 N*m/rad }}\n\
-         loads:\n  rub: {{ body: rotor, law: {{ friction: {{ sliding: 0.06 N*m }} }} }}\n{requirements}",
-        head(40.0, 0.1, 1e-9),
-    );
+    let scenario = rubbed(&head(40.0, 0.1, 1e-9), &requirements);
     let outcome = run_well(&scenario);
     for swing in 0..=8 {
         let turn = 1.0 - 0.12 * f64::from(swing);
@@ -44,20 +48,26 @@ fn dry_friction_takes_a_fixed_step_from_each_swing() {
     same(outcome.number(&["energy", "lost"]), 0.06 * way, 1e-7);
 }
 
-#[test]
-fn sticks_and_slips_on_a_moving_belt() {
-    // J 1, k 100, belt at 0.1, breakaway 10, sliding 7: slip lasts (2/w)(pi - atan(D w/v)) with
-    // D = 3/100, stick lasts 2 D/v = 0.6. The belt is a wheel too heavy to be slowed.
-    let scenario = format!(
-        "{}bodies:\n  slider: {{ inertia: 1 kg*m2, speed: 0.1 rad/s }}\n  \
+/// (2/w)(pi - atan(D w/v)) for the belt below.
+pub const SLIP: f64 = 0.37850937623831;
+
+/// A slider on a spring, carried along by a belt.
+pub fn belt(head: &str) -> String {
+    format!(
+        "{head}bodies:\n  slider: {{ inertia: 1 kg*m2, speed: 0.1 rad/s }}\n  \
          belt: {{ inertia: 1e10 kg*m2, speed: 0.1 rad/s }}\n\
          shafts:\n  spring: {{ between: [slider, ground], stiffness: 100 N*m/rad }}\n\
          loads:\n  pad: {{ body: slider, against: belt, law: {{ friction: {{ sliding: 7 N*m, breakaway: 10 N*m }} }} }}\n\
          requirements:\n  lowest: {{ of: spring.twist, at_least: 0 rad, after: 1.2 s }}\n",
-        head(12.0, 0.01, 1e-9),
-    );
-    let outcome = run_well(&scenario);
-    let (slip, stick) = (0.37850937623831, 0.6);
+    )
+}
+
+#[test]
+fn sticks_and_slips_on_a_moving_belt() {
+    // J 1, k 100, belt at 0.1, breakaway 10, sliding 7: slip lasts (2/w)(pi - atan(D w/v)) with
+    // D = 3/100, stick lasts 2 D/v = 0.6. The belt is a wheel too heavy to be slowed.
+    let outcome = run_well(&belt(&head(12.0, 0.01, 1e-9)));
+    let (slip, stick) = (SLIP, 0.6);
     let sliding = outcome.times("sliding", "pad");
     let stuck: Vec<f64> =
         outcome.times("stuck", "pad").into_iter().filter(|time| *time > 0.5).collect();
@@ -74,16 +84,19 @@ fn sticks_and_slips_on_a_moving_belt() {
     near(outcome.found("lowest").unwrap(), 0.07 - 0.03_f64.hypot(0.01), 1e-8);
 }
 
+/// Two wheels and a clutch between them.
+pub fn clutch(head: &str) -> String {
+    format!(
+        "{head}bodies:\n  fast: {{ inertia: 2 kg*m2, speed: 150 rad/s }}\n  slow: {{ inertia: 3 kg*m2, speed: 0 rad/s }}\n\
+         brakes:\n  clutch: {{ body: fast, against: slow, torque: 90 N*m, applied: 1 }}\n",
+    )
+}
+
 #[test]
 fn clutch_locks_two_wheels() {
     // J 2 at 150 rad/s and J 3 at rest, 90 N*m between them: final 60 rad/s, time
     // dw/(T (1/J1 + 1/J2)) = 2 s, heat J1 J2/(J1 + J2) dw^2/2 = 13500 J.
-    let scenario = format!(
-        "{}bodies:\n  fast: {{ inertia: 2 kg*m2, speed: 150 rad/s }}\n  slow: {{ inertia: 3 kg*m2, speed: 0 rad/s }}\n\
-         brakes:\n  clutch: {{ body: fast, against: slow, torque: 90 N*m, applied: 1 }}\n",
-        head(3.0, 0.5, 1e-9),
-    );
-    let outcome = run_well(&scenario);
+    let outcome = run_well(&clutch(&head(3.0, 0.5, 1e-9)));
     near(outcome.times("stuck", "clutch")[0], 2.0, 1e-9);
     near(outcome.channel("fast.speed", "final"), 60.0, 1e-8);
     near(outcome.channel("slow.speed", "final"), 60.0, 1e-8);

@@ -7,7 +7,7 @@
 use super::helper::{head, near, run_through, run_well, same};
 
 /// A gear 3/15 with one member held and the others as given.
-fn small_gear(held: &str, driven: &str, start: &str, torque: &str) -> String {
+pub fn small_gear(held: &str, driven: &str, start: &str, torque: &str) -> String {
     let member = |name: &str| if name == held { "ground".to_owned() } else { name.to_owned() };
     let bodies: String = ["inner", "modulator", "outer"]
         .iter()
@@ -30,7 +30,7 @@ fn small_gear(held: &str, driven: &str, start: &str, torque: &str) -> String {
 }
 
 /// Held, driven, driving and speed of driving over driven... of the six ways to use 3/15/18.
-const SIX_RATIOS: [(&str, &str, &str, f64); 6] = [
+pub const SIX_RATIOS: [(&str, &str, &str, f64); 6] = [
     ("modulator", "inner", "outer", -5.0),
     ("modulator", "outer", "inner", -1.0 / 5.0),
     ("outer", "inner", "modulator", 6.0),
@@ -75,7 +75,7 @@ fn number_of_pieces_is_the_sum_of_the_pole_pairs() {
 }
 
 /// The three-rotor gear 4/22/26 with 16 N*m at the outer rotor; a member is a body or ground.
-fn benchmark(inner: &str, outer: &str, modulator: &str, more: &str) -> String {
+pub fn benchmark(inner: &str, outer: &str, modulator: &str, more: &str) -> String {
     let bodies: String =
         [("inner", inner, 0.002), ("outer", outer, 0.05), ("modulator", modulator, 0.08)]
             .iter()
@@ -99,25 +99,27 @@ fn benchmark(inner: &str, outer: &str, modulator: &str, more: &str) -> String {
 }
 
 /// A constant push from the start.
-fn push(body: &str, torque: f64) -> String {
+pub fn push(body: &str, torque: f64) -> String {
     format!(
         "motors:\n  push: {{ body: {body}, law: {{ prescribed: {{ torque: {torque} N*m }} }} }}\n"
     )
 }
+
+/// Members (a body or ground), driven member and critical step of the three-rotor gear, N*m.
+pub const BENCHMARK_STEPS: [(&str, &str, &str, &str, f64); 5] = [
+    ("inner", "outer", "ground", "outer", 21.175419396317693),
+    ("inner", "outer", "ground", "inner", 4.658592267189893),
+    ("ground", "outer", "ground", "outer", 11.593781660427336),
+    ("inner", "outer", "modulator", "outer", 31.29602425485189),
+    ("inner", "outer", "modulator", "modulator", 42.37000206810717),
+];
 
 #[test]
 fn free_reaction_side_lets_a_step_above_pull_out_pass() {
     // Step from rest, critical share 0.7246113537767085 of K, with K = 16/22 and
     // 1/J_e = 16/J_i + 484/J_o + 676/J_m (terms of held members left out), torque T at a member
     // with count p: share = J_e p T/(K J). Inertias invented. Held members, driven, critical.
-    let free = ("inner", "outer", "modulator");
-    for (inner, outer, modulator, driven, critical) in [
-        (free.0, free.1, "ground", "outer", 21.175419396317693),
-        (free.0, free.1, "ground", "inner", 4.658592267189893),
-        ("ground", free.1, "ground", "outer", 11.593781660427336),
-        (free.0, free.1, free.2, "outer", 31.29602425485189),
-        (free.0, free.1, free.2, "modulator", 42.37000206810717),
-    ] {
+    for (inner, outer, modulator, driven, critical) in BENCHMARK_STEPS {
         for (factor, slips) in [(0.9999, false), (1.0001, true)] {
             let scenario = benchmark(inner, outer, modulator, &push(driven, critical * factor));
             let outcome = run_through(&scenario);

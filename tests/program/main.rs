@@ -9,11 +9,14 @@
 
 mod checking;
 mod commands;
+mod convergence;
+mod endings;
 mod energy;
 mod equal_area;
 mod friction;
 mod gears;
 mod helper;
+mod invariance;
 mod law;
 mod likeness;
 mod loads;
@@ -30,4 +33,5 @@ mod stops;
 mod swing;
 mod units;
 mod verdicts;
+mod verification;
 mod wind;

@@ -7,7 +7,7 @@ use super::helper::{head, near, run_well, same};
 use std::f64::consts::PI;
 
 /// A rotor on a shaft with damping ratio 0.1 or none.
-fn oscillator(duration: f64, start: &str, speed: f64, damping: f64, torque: &str) -> String {
+pub fn oscillator(duration: f64, start: &str, speed: f64, damping: f64, torque: &str) -> String {
     format!(
         "{}start: {start}\n\
          bodies:\n  rotor: {{ inertia: 1 kg*m2, speed: {speed} rad/s }}\n\

@@ -8,7 +8,7 @@ use super::swing::Swing;
 use std::f64::consts::{PI, TAU};
 
 /// Period over the period of small swings, (2/pi) K(k), DLMF 22.19(i): amplitude in degrees, ratio.
-const PERIODS: [(f64, f64); 8] = [
+pub const PERIODS: [(f64, f64); 8] = [
     (10.0, 1.001907188143217),
     (30.0, 1.017408797595956),
     (60.0, 1.073182007149364),
@@ -19,37 +19,48 @@ const PERIODS: [(f64, f64); 8] = [
     (179.0, 3.901065160389086),
 ];
 
+/// A swing from rest, with its passages through zero and its turning point as requirements.
+pub fn released(degrees: f64, ratio: f64, train: Swing) -> Swing {
+    let period = ratio * TAU;
+    let quarter = train.seconds(0.25 * period);
+    let half = train.seconds(0.5 * period);
+    Swing {
+        phase: degrees.to_radians(),
+        duration: 0.9 * period,
+        tolerance: 1e-11,
+        more: format!(
+            "requirements:\n  first: {{ of: coupling.load_angle, reaches: 0, signed: true }}\n  \
+             half: {{ of: rotor.speed, reaches: 0 rad/s, after: {}, signed: true }}\n  \
+             second: {{ of: coupling.load_angle, reaches: 0, after: {half}, signed: true }}",
+            0.5 * quarter,
+        ),
+        ..train
+    }
+}
+
 #[test]
 fn period_grows_with_the_amplitude() {
     for (degrees, ratio) in PERIODS {
         for train in [Swing::default(), Swing::workshop()] {
-            let period = ratio * TAU;
-            let quarter = train.seconds(0.25 * period);
-            let half = train.seconds(0.5 * period);
-            let swing = Swing {
-                phase: degrees.to_radians(),
-                duration: 0.9 * period,
-                tolerance: 1e-11,
-                more: format!(
-                    "requirements:\n  first: {{ of: coupling.load_angle, reaches: 0, signed: true }}\n  \
-                     half: {{ of: rotor.speed, reaches: 0 rad/s, after: {}, signed: true }}\n  \
-                     second: {{ of: coupling.load_angle, reaches: 0, after: {half}, signed: true }}",
-                    0.5 * quarter,
-                ),
-                ..train
-            };
+            let quarter = train.seconds(0.25 * ratio * TAU);
+            let swing = released(degrees, ratio, train);
             let outcome = run_well(&swing.yaml());
             // 179 degrees starts 1 degree from the unstable point, which multiplies errors.
             same(outcome.found("first").unwrap(), quarter, 1e-7);
-            same(outcome.found("half").unwrap(), half, 1e-7);
+            same(outcome.found("half").unwrap(), 2.0 * quarter, 1e-7);
             same(outcome.found("second").unwrap(), 3.0 * quarter, 1e-7);
             same(outcome.channel("coupling.load_angle", "min"), -degrees.to_radians(), 1e-7);
         }
     }
 }
 
+/// The swing from 2 rad, undamped.
+pub fn from_two_radians(method: &'static str, tolerance: f64) -> Swing {
+    Swing { phase: 2.0, duration: 100.0, rows: 100, method, tolerance, ..Swing::default() }
+}
+
 /// d = 2 asin(k sn(K - t)), d' = -2 k cn(K - t) from rest at 2 rad: time, phase, rate.
-const FROM_TWO_RADIANS: [(f64, f64, f64); 5] = [
+pub const FROM_TWO_RADIANS: [(f64, f64, f64); 5] = [
     (1.0, 1.532727506038253, -0.9531069854513636),
     (5.0, -1.684124436566809, 0.7785385729469985),
     (10.0, 0.7131481806013794, -1.531308504135835),
@@ -60,8 +71,7 @@ const FROM_TWO_RADIANS: [(f64, f64, f64); 5] = [
 #[test]
 fn swing_follows_the_elliptic_functions() {
     for (method, tolerance) in [("dop853", 1e-11), ("dopri5", 1e-11)] {
-        let swing =
-            Swing { phase: 2.0, duration: 100.0, rows: 100, method, tolerance, ..Swing::default() };
+        let swing = from_two_radians(method, tolerance);
         let series = run_well(&swing.yaml()).series();
         for (time, phase, rate) in FROM_TWO_RADIANS {
             same(series.at("coupling.phase", time), phase, 1e-7);
@@ -109,19 +119,28 @@ fn fixed_steps_make_the_error_of_the_classical_method() {
     }
 }
 
+/// Time of one pole at rate 2.5 from zero: 2 K(0.8)/1.25.
+pub const POLE: f64 = 3.192484444263567;
+
+/// d = 2 am(1.25 t, k = 0.8): time, phase.
+pub const OVER_THE_TOP: [(f64, f64); 3] =
+    [(1.0, 2.195561464249909), (5.0, 9.744038901005756), (10.0, 19.87640094701566)];
+
+/// An undamped rotor that slips for ever.
+pub fn over_the_top(train: Swing) -> Swing {
+    Swing { rate: 2.5, tolerance: 1e-11, rows: 20, ..train }
+}
+
 #[test]
 fn slips_over_the_top_at_exact_times() {
     // d = 2 am(1.25 t, k = 0.8) from d = 0 at rate 2.5: 3.192484444263567 a pole, so odd
     // multiples of pi are crossed at half of it and then once a pole; there the rate is
     // sqrt(2.5^2 - 4) = 1.5 (energy).
-    let pole = 3.192484444263567;
     for train in [Swing::default(), Swing::workshop()] {
-        let swing = Swing { rate: 2.5, tolerance: 1e-11, rows: 20, ..train };
+        let swing = over_the_top(train);
         let outcome = run_well(&swing.yaml());
         let series = outcome.series();
-        for (time, phase) in
-            [(1.0, 2.195561464249909), (5.0, 9.744038901005756), (10.0, 19.87640094701566)]
-        {
+        for (time, phase) in OVER_THE_TOP {
             same(series.at("coupling.phase", swing.seconds(time)), phase, 1e-7);
         }
         same(
@@ -131,7 +150,7 @@ fn slips_over_the_top_at_exact_times() {
         );
         assert_eq!(outcome.slips("coupling"), 3);
         for (number, time) in outcome.slip_times("coupling").into_iter().enumerate() {
-            let expected = pole * (0.5 + f64::from(u32::try_from(number).unwrap()));
+            let expected = POLE * (0.5 + f64::from(u32::try_from(number).unwrap()));
             near(time, swing.seconds(expected), 1e-6);
             same(time, swing.seconds(expected), 1e-7);
             let slip = &outcome.at(&["gears", "coupling", "slip_events"])[number];
@@ -147,10 +166,15 @@ fn slips_over_the_top_at_exact_times() {
     }
 }
 
+/// A kick that just reaches the top.
+pub fn separatrix() -> Swing {
+    Swing { rate: 2.0, tolerance: 1e-12, duration: 4.0, rows: 4, ..Swing::default() }
+}
+
 #[test]
 fn creeps_up_the_separatrix() {
     // d = 4 atan(exp t) - pi, d' = 2 sech t: the motion that just reaches the top.
-    let swing = Swing { rate: 2.0, tolerance: 1e-12, duration: 4.0, rows: 4, ..Swing::default() };
+    let swing = separatrix();
     let outcome = run_well(&swing.yaml());
     let series = outcome.series();
     same(series.at("coupling.phase", 1.0), 1.731538966479317, 1e-7);
@@ -163,8 +187,21 @@ fn creeps_up_the_separatrix() {
 fn loaded_swing_is_longer_and_lopsided() {
     // Half the pull-out torque, released 0.8 rad beyond the stable point asin 0.5:
     // period and other turning point by quadrature with 40 digits.
-    let (period, turning) = (7.155781877008632, -0.1611217809775707);
-    let swing = Swing {
+    let (period, turning) = LOADED;
+    let outcome = run_well(&loaded().yaml());
+    same(outcome.found("half").unwrap(), 0.5 * period, 1e-7);
+    same(outcome.found("whole").unwrap(), period, 1e-7);
+    same(outcome.channel("coupling.load_angle", "min"), turning, 1e-7);
+    // A turning point is flat: its place in time is known to the root of the tolerance.
+    near(outcome.channel("coupling.load_angle", "min_time"), 0.5 * period, 1e-5);
+}
+
+/// Period and other turning point of the loaded swing.
+pub const LOADED: (f64, f64) = (7.155781877008632, -0.1611217809775707);
+
+/// Half the pull-out torque, released 0.8 rad beyond the stable point.
+pub fn loaded() -> Swing {
+    Swing {
         phase: 0.5_f64.asin() + 0.8,
         torque: (0.5, Vec::new()),
         tolerance: 1e-11,
@@ -172,11 +209,5 @@ fn loaded_swing_is_longer_and_lopsided() {
                whole: { of: rotor.speed, reaches: 0 rad/s, after: 5, signed: true }"
             .to_owned(),
         ..Swing::default()
-    };
-    let outcome = run_well(&swing.yaml());
-    same(outcome.found("half").unwrap(), 0.5 * period, 1e-7);
-    same(outcome.found("whole").unwrap(), period, 1e-7);
-    same(outcome.channel("coupling.load_angle", "min"), turning, 1e-7);
-    // A turning point is flat: its place in time is known to the root of the tolerance.
-    near(outcome.channel("coupling.load_angle", "min_time"), 0.5 * period, 1e-5);
+    }
 }

@@ -9,7 +9,7 @@ use super::swing::Swing;
 use std::f64::consts::TAU;
 
 /// Mean slip speed between the last slips of a run, electrical rad/s.
-fn mean_slip_speed(times: &[f64]) -> f64 {
+pub fn mean_slip_speed(times: &[f64]) -> f64 {
     assert!(times.len() >= 22, "only {} slips", times.len());
     let last = times.len() - 1;
     20.0 * TAU / (times[last] - times[last - 20])
@@ -17,7 +17,7 @@ fn mean_slip_speed(times: &[f64]) -> f64 {
 
 /// Torque share and damping, mean slip speed of the running state, by independent integration
 /// (Dormand-Prince 8(5,3) at 1e-12, over 20 poles).
-const RUNNING: [(f64, f64, f64); 9] = [
+pub const RUNNING: [(f64, f64, f64); 9] = [
     (0.2, 0.1, 1.933634512),
     (0.5, 0.1, 4.995995591),
     (0.5, 0.2, 2.467417969),
@@ -29,17 +29,22 @@ const RUNNING: [(f64, f64, f64); 9] = [
     (0.3, 0.1, 2.981284274),
 ];
 
+/// A coupling that slips on, until its transient is gone.
+pub fn running(torque: f64, beta: f64, mean: f64) -> Swing {
+    Swing {
+        beta,
+        rate: torque / beta + 1.0,
+        torque: (torque, Vec::new()),
+        duration: 24.0 / beta + 25.0 * TAU / mean,
+        tolerance: 1e-10,
+        ..Swing::workshop()
+    }
+}
+
 #[test]
 fn mean_slip_speed_of_the_running_state() {
     for (torque, beta, mean) in RUNNING {
-        let swing = Swing {
-            beta,
-            rate: torque / beta + 1.0,
-            torque: (torque, Vec::new()),
-            duration: 24.0 / beta + 25.0 * TAU / mean,
-            tolerance: 1e-10,
-            ..Swing::workshop()
-        };
+        let swing = running(torque, beta, mean);
         let outcome = run_through(&swing.yaml());
         let found = mean_slip_speed(&outcome.slip_times("coupling")) / swing.frequency();
         same(found, mean, 1e-7);
@@ -52,7 +57,7 @@ fn mean_slip_speed_of_the_running_state() {
 }
 
 /// Torque at which the running state dies (homoclinic orbit, by shooting, 12 digits): beta, share.
-const LOCKS_AGAIN: [(f64, f64); 5] = [
+pub const LOCKS_AGAIN: [(f64, f64); 5] = [
     (0.1, 0.127008859805),
     (0.2, 0.252128244467),
     (0.5, 0.597383200311),
@@ -60,18 +65,23 @@ const LOCKS_AGAIN: [(f64, f64); 5] = [
     (1.0, 0.964327124471),
 ];
 
+/// A coupling that slips at first and has time to lock.
+pub fn spinning(beta: f64, torque: f64) -> Swing {
+    Swing {
+        beta,
+        rate: 2.5,
+        torque: (torque, Vec::new()),
+        duration: 40.0 / beta + 400.0,
+        tolerance: 1e-8,
+        ..Swing::workshop()
+    }
+}
+
 #[test]
 fn falls_back_into_step_only_below_the_resynchronisation_torque() {
     for (beta, torque) in LOCKS_AGAIN {
         for (factor, slipping) in [(0.9999, false), (1.0001, true)] {
-            let swing = Swing {
-                beta,
-                rate: 2.5,
-                torque: (torque * factor, Vec::new()),
-                duration: 40.0 / beta + 400.0,
-                tolerance: 1e-8,
-                ..Swing::workshop()
-            };
+            let swing = spinning(beta, torque * factor);
             let outcome = run_through(&swing.yaml());
             let state = if slipping { "slipping" } else { "synchronous" };
             assert_eq!(outcome.state("coupling"), state, "beta {beta}, torque x {factor}");
@@ -92,9 +102,17 @@ fn weakly_damped_gear_does_not_recover_above_a_fifth_of_its_pull_out() {
     // The same limit in a whole gear: 22 outer pole pairs, 5 kN*m, 60 N*m*s/rad, inertias
     // 0.05 and 20 kg*m2: beta 0.15255893911 and 965.627415 N*m, 19.3 % of the pull-out torque.
     for (factor, slipping) in [(0.9999, false), (1.0001, true)] {
-        let load = 965.627415 * factor;
-        let scenario = format!(
-            "lodeshaft: 1\ntitle: Slipping gear under load\nduration: 2.5 s\noutput_step: 10 ms\n\
+        let outcome = run_through(&weakly_damped(965.627415 * factor));
+        let state = if slipping { "slipping" } else { "synchronous" };
+        assert_eq!(outcome.state("gear"), state, "limit x {factor}");
+        assert!(outcome.slips("gear") > 5, "it slips at first");
+    }
+}
+
+/// A slipping gear of 5 kN*m under a load, both sides of the torque in balance.
+pub fn weakly_damped(load: f64) -> String {
+    format!(
+        "lodeshaft: 1\ntitle: Slipping gear under load\nduration: 2.5 s\noutput_step: 10 ms\n\
              solver: {{ tolerance: 1e-8 }}\n\
              bodies:\n  fast: {{ inertia: 0.05 kg*m2, speed: {speed} rad/s }}\n  slow: {{ inertia: 20 kg*m2, speed: 0 rad/s }}\n\
              magnetic_gears:\n  gear:\n    inner: fast\n    modulator: ground\n    outer: slow\n    \
@@ -102,36 +120,36 @@ fn weakly_damped_gear_does_not_recover_above_a_fifth_of_its_pull_out() {
              damping: {{ at: outer, coefficient: 60 N*m*s/rad }}\n\
              motors:\n  drive: {{ body: fast, law: {{ prescribed: {{ torque: {drive} }} }} }}\n\
              loads:\n  mill: {{ body: slow, law: {{ prescribed: {{ torque: {load} }} }} }}\n",
-            speed = 2.5 * 279.6913883681 / 4.0,
-            drive = load * 4.0 / 22.0,
-        );
-        let outcome = run_through(&scenario);
-        let state = if slipping { "slipping" } else { "synchronous" };
-        assert_eq!(outcome.state("gear"), state, "{load} N*m");
-        assert!(outcome.slips("gear") > 5, "it slips at first");
-    }
+        speed = 2.5 * 279.6913883681 / 4.0,
+        drive = load * 4.0 / 22.0,
+    )
 }
 
 /// From steady T0 the torque T1 for a time, then T0 again, by independent integration at 1e-12:
 /// T0, T1, time, beta, poles lost, largest slip speed. The count is the same for times 2 % off.
-const BURSTS: [(f64, f64, f64, f64, u64, f64); 4] = [
+pub const BURSTS: [(f64, f64, f64, f64, u64, f64); 4] = [
     (0.1, 1.5, 5.25, 0.15, 7, 5.049194064370),
     (0.05, 2.0, 4.1, 0.1, 11, 6.293735220878),
     (0.2, 1.2, 8.0, 0.3, 4, 3.562792928733),
     (0.5, 1.2, 10.0, 0.6, 2, 2.341447581152),
 ];
 
+/// An overload for a time on a steady coupling.
+pub fn burst(preload: f64, overload: f64, time: f64, beta: f64) -> Swing {
+    Swing {
+        beta,
+        steady: true,
+        torque: (preload, vec![(1.0, overload), (1.0 + time, preload)]),
+        duration: 100.0 + 30.0 / beta,
+        ..Swing::workshop()
+    }
+}
+
 #[test]
 fn counts_the_poles_lost_in_an_overload() {
     for (preload, overload, time, beta, poles, fastest) in BURSTS {
         for stretch in [0.98, 1.0, 1.02] {
-            let swing = Swing {
-                beta,
-                steady: true,
-                torque: (preload, vec![(1.0, overload), (1.0 + time * stretch, preload)]),
-                duration: 100.0 + 30.0 / beta,
-                ..Swing::workshop()
-            };
+            let swing = burst(preload, overload, time * stretch, beta);
             let outcome = run_through(&swing.yaml());
             let what = format!("{overload} for {time} x {stretch}");
             assert_eq!(outcome.slips("coupling"), poles, "{what}");
@@ -172,7 +190,7 @@ fn never_locks_again_above_the_resynchronisation_torque() {
 }
 
 /// A coupling with almost no inertia behind it: `e d'' + d' + sin d = T`, time in s.
-fn creeping(torque: f64, inertia: f64, duration: f64, rows: u32) -> Swing {
+pub fn creeping(torque: f64, inertia: f64, duration: f64, rows: u32) -> Swing {
     // Units: damping 1 N*m*s/rad, pull-out 1 N*m. The frequency is 1/sqrt(e) and beta is it too.
     let frequency = inertia.sqrt().recip();
     Swing {

@@ -6,10 +6,10 @@
 use super::helper::{Outcome, head, near, run_through, run_well, same};
 
 /// Synchronous speed, rad/s.
-const SYNCHRONOUS: f64 = 157.07963267948966;
+pub const SYNCHRONOUS: f64 = 157.07963267948966;
 
 /// A cage motor by Kloss's formula on 1 kg*m2, with loads.
-fn run_up(duration: f64, more: &str) -> String {
+pub fn run_up(duration: f64, more: &str) -> String {
     format!(
         "{}bodies:\n  rotor: {{ inertia: 1 kg*m2 }}\n\
          motors:\n  cage: {{ body: rotor, law: {{ induction: {{ synchronous_speed: 1500 rpm, breakdown_torque: 100 N*m, \
@@ -19,7 +19,7 @@ fn run_up(duration: f64, more: &str) -> String {
 }
 
 /// Ends the run at 95 % of synchronous speed.
-const END_AT_95: &str = "protections:\n  there: { when: { of: rotor.speed, at_least: 1425 rpm }, then: [ { end_run: true } ] }\n";
+pub const END_AT_95: &str = "protections:\n  there: { when: { of: rotor.speed, at_least: 1425 rpm }, then: [ { end_run: true } ] }\n";
 
 #[track_caller]
 fn run_up_time(outcome: &Outcome, seconds: f64) {
@@ -100,7 +100,7 @@ fn curve_through_zero_slip_ends_at_its_balance() {
 }
 
 /// 150 N*m on 2.5 kg*m2 against a quadratic load of 100 N*m at 1500 rpm.
-fn fan(start: &str, duration: f64) -> String {
+pub fn fan(start: &str, duration: f64) -> String {
     format!(
         "{}start: {start}\nbodies:\n  wheel: {{ inertia: 2.5 kg*m2, speed: 0 rad/s }}\n\
          motors:\n  drive: {{ body: wheel, law: {{ prescribed: {{ torque: 150 N*m }} }} }}\n\

@@ -5,7 +5,7 @@
 use super::helper::{head, near, run_through, run_well, same};
 
 /// A wheel that coasts down against loads.
-fn coast(duration: f64, loads: &str) -> String {
+pub fn coast(duration: f64, loads: &str) -> String {
     format!(
         "{}bodies:\n  wheel: {{ inertia: 4 kg*m2, speed: 150 rad/s }}\nloads:\n{loads}",
         head(duration, 0.5, 1e-10),
@@ -13,11 +13,11 @@ fn coast(duration: f64, loads: &str) -> String {
 }
 
 /// Dry friction of 20 N*m.
-const RUB: &str = "  rub: { body: wheel, law: { friction: { sliding: 20 N*m } } }\n";
+pub const RUB: &str = "  rub: { body: wheel, law: { friction: { sliding: 20 N*m } } }\n";
 /// Viscous drag.
-const OIL: &str = "  oil: { body: wheel, law: { viscous: { coefficient: 0.5 N*m*s/rad } } }\n";
+pub const OIL: &str = "  oil: { body: wheel, law: { viscous: { coefficient: 0.5 N*m*s/rad } } }\n";
 /// A fan of 80 N*m at the first speed.
-const FAN: &str = "  fan: { body: wheel, law: { power_law: { torque: 80 N*m, speed: 150 rad/s, exponent: 2 } } }\n";
+pub const FAN: &str = "  fan: { body: wheel, law: { power_law: { torque: 80 N*m, speed: 150 rad/s, exponent: 2 } } }\n";
 
 #[test]
 fn dry_friction_stops_in_a_straight_line() {
@@ -67,13 +67,7 @@ fn a_curve_of_friction_is_the_same_as_its_law() {
 fn brake_and_load_stop_a_drum() {
     // J 50 from 1500 rpm against 800 + 150 N*m: J w0/950 s, J w0^2/1900 rad = 103.34186360493
     // turns; the brake takes 800/950 of the energy. Then the brake holds the load.
-    let scenario = format!(
-        "{}bodies:\n  drum: {{ inertia: 50 kg*m2, speed: 1500 rpm }}\n\
-         loads:\n  weight: {{ body: drum, law: {{ prescribed: {{ torque: -150 N*m }} }} }}\n\
-         brakes:\n  stop: {{ body: drum, against: ground, torque: 800 N*m, applied: 1 }}\n",
-        head(10.0, 0.5, 1e-10),
-    );
-    let outcome = run_well(&scenario);
+    let outcome = run_well(&drum());
     near(outcome.times("stuck", "stop")[0], 8.2673490883942, 1e-6);
     let turns = 103.34186360493 * std::f64::consts::TAU;
     same(outcome.channel("drum.angle", "final"), turns, 1e-7);
@@ -83,9 +77,19 @@ fn brake_and_load_stop_a_drum() {
     near(outcome.channel("drum.speed", "final"), 0.0, 1e-12);
 }
 
+/// A drum with a weight, stopped by its brake.
+pub fn drum() -> String {
+    format!(
+        "{}bodies:\n  drum: {{ inertia: 50 kg*m2, speed: 1500 rpm }}\n\
+         loads:\n  weight: {{ body: drum, law: {{ prescribed: {{ torque: -150 N*m }} }} }}\n\
+         brakes:\n  stop: {{ body: drum, against: ground, torque: 800 N*m, applied: 1 }}\n",
+        head(10.0, 0.5, 1e-10),
+    )
+}
+
 /// A drive with a brake on one body and its load on the other: the motor is cut and the brake
 /// falls in at 1 s.
-fn hard_stop(joint: &str, duration: f64) -> String {
+pub fn hard_stop(joint: &str, duration: f64) -> String {
     format!(
         "{}start: steady\n\
          bodies:\n  brake_drum: {{ inertia: 20 kg*m2, speed: 1500 rpm }}\n  machine: {{ inertia: 30 kg*m2, speed: 1500 rpm }}\n\

@@ -6,7 +6,7 @@
 use super::helper::{head, run, run_well, same};
 
 /// A wheel with a torque on it.
-fn wheel(inertia: &str, speed: &str, torque: &str) -> String {
+pub fn wheel(inertia: &str, speed: &str, torque: &str) -> String {
     format!(
         "{}bodies:\n  wheel: {{ inertia: {inertia}, speed: {speed} }}\n\
          motors:\n  push: {{ body: wheel, law: {{ prescribed: {{ torque: {torque} }} }} }}\n",

@@ -12,7 +12,7 @@ use super::helper::{head, near, run_well, same};
 use std::f64::consts::PI;
 
 /// A rotor too heavy to change its speed in a flow.
-fn rotor(duration: f64, step: f64, speed: f64, radius: f64, flow: &str, pitch: &str) -> String {
+pub fn rotor(duration: f64, step: f64, speed: f64, radius: f64, flow: &str, pitch: &str) -> String {
     format!(
         "{}bodies:\n  hub: {{ inertia: 1e15 kg*m2, speed: {speed} rad/s }}\n\
          loads:\n  blades: {{ body: hub, law: {{ axial_rotor: {{ radius: {radius} m, density: 1.225 kg/m3, \
@@ -22,7 +22,7 @@ fn rotor(duration: f64, step: f64, speed: f64, radius: f64, flow: &str, pitch: &
 }
 
 /// A gust that starts at 1 s.
-fn gust(hub_wind: f64, diameter: f64, height: f64, turbine: &str, turbulence: &str) -> String {
+pub fn gust(hub_wind: f64, diameter: f64, height: f64, turbine: &str, turbulence: &str) -> String {
     format!(
         "{{ extreme_gust: {{ start: 1 s, hub_wind: {hub_wind} m/s, rotor_diameter: {diameter} m, \
          hub_height: {height} m, turbine_class: {turbine}, turbulence_class: {turbulence} }} }}"
@@ -30,7 +30,7 @@ fn gust(hub_wind: f64, diameter: f64, height: f64, turbine: &str, turbulence: &s
 }
 
 /// Turbine class, turbulence class, wind at the hub and magnitude of the gust for D = z = 80 m.
-const GUSTS: [(&str, &str, f64, f64); 7] = [
+pub const GUSTS: [(&str, &str, f64, f64); 7] = [
     ("I", "A", 12.0, 6.475392),
     ("II", "A", 10.0, 5.810112),
     ("II", "A", 12.0, 6.475392),
@@ -82,7 +82,7 @@ fn extreme_gust_has_the_shape_of_the_standard() {
 /// Slootweg, Polinder and Kling, IEEE Trans. Power Systems 18(1) (2003) 144 (coefficients read
 /// in a published code that cites it), worked out independently: tip speed ratio, pitch in
 /// degrees, power coefficient.
-const COEFFICIENTS: [(f64, f64, f64); 5] = [
+pub const COEFFICIENTS: [(f64, f64, f64); 5] = [
     (6.907744908695644, 0.0, 0.4411993813370081),
     (8.0, 0.0, 0.40388290806087),
     (6.0, 5.0, 0.30442211986914),

@@ -276,11 +276,10 @@ fn curve_load(
     active: &Active,
     point: &LinearPoint,
 ) -> Option<Torque> {
-    let Function::FrictionCurve(law, _) = &active.function else { return None };
+    let Function::Law(law, piece) = &active.function else { return None };
     let friction = equations.frictions.get(active.place.checked_sub(equations.terms.len())?)?;
     let input = active.input_at(&point.state);
-    let slope = law.slope(input, [0.0; 2], law.piece_at(input))
-        * evaluator.strength(&active.factor, point.time);
+    let slope = law.slope(input, [0.0; 2], *piece) * evaluator.strength(&active.factor, point.time);
     Some(Torque {
         name: name_of(equations, friction.owner),
         direction: equations.model.reduction.dense(&friction.row),

@@ -8,6 +8,7 @@ use super::rows::Columns;
 use crate::analysis::study::outcome::Outcome;
 use crate::analysis::study::work::Row;
 use crate::render::folder::{FolderFault, settle};
+use crate::render::lock::{self, Asked, Lock};
 use serde_json::Value;
 use std::collections::BTreeMap;
 use std::fs;
@@ -24,6 +25,8 @@ pub const MARK: &str = "work";
 #[derive(Debug)]
 pub struct StudyFolder {
     path: PathBuf,
+    /// Held until the studies are done.
+    _lock: Option<Lock>,
 }
 
 /// A study that may begin or go on.
@@ -38,15 +41,19 @@ pub struct Begun {
 }
 
 impl StudyFolder {
-    /// Opens the folder of studies below a folder of results.
+    /// Opens the folder of studies below a folder of results, for this process alone.
     ///
     /// # Errors
-    /// A place that is taken by something else, or a fault of the disk.
+    /// A place that is taken by something else or by another process, or a fault of the disk.
     pub fn open(results: &Path) -> Result<Self, FolderFault> {
         let path = settle(results)?.join(NAME);
-        fs::create_dir_all(&path)
+        let asked = fs::create_dir_all(&path)
+            .and_then(|()| lock::take(&path))
             .map_err(|error| FolderFault::disk("the folder of studies", &error))?;
-        Ok(Self { path })
+        match asked {
+            Asked::Ours(lock) => Ok(Self { path, _lock: lock }),
+            Asked::Taken(process) => Err(FolderFault::in_use(results, process)),
+        }
     }
 
     fn table(&self, name: &str) -> PathBuf {
