@@ -149,6 +149,7 @@ fn signal_size(signal: &Signal) -> f64 {
         Signal::Points(rows) | Signal::Table { rows, .. } => {
             rows.iter().fold(0.0, |size, row| f64::max(size, row[1].abs()))
         }
+        Signal::Turbulence(spectrum) => spectrum.mean + 3.0 * spectrum.deviation,
         Signal::Sine { mean, amplitude, .. } => mean.abs() + amplitude.abs(),
         _ => 0.0,
     }

@@ -20,6 +20,7 @@ mod invariance;
 mod law;
 mod likeness;
 mod loads;
+mod motors;
 mod oscillator;
 mod output;
 mod pendulum;
