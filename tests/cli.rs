@@ -3,10 +3,12 @@
 #[cfg(test)]
 mod cli {
     mod bench;
+    mod comparisons;
     mod disk;
     mod folders;
     mod kills;
     mod lock;
+    mod records;
     mod signals;
     mod statuses;
     mod streams;

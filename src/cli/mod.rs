@@ -1,9 +1,12 @@
 //! The command line: what was typed, and the commands that do it.
 
 mod check;
+mod compare;
+mod compared;
 mod interrupt;
-mod later;
+mod manual;
 mod new;
+mod open;
 mod poles;
 mod progress;
 mod report;
@@ -15,6 +18,7 @@ mod streams;
 mod study;
 mod study_progress;
 
+use crate::render::pictures::Print;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use status::Status;
 use std::path::PathBuf;
@@ -46,15 +50,18 @@ pub enum Command {
     Report(report::ReportArguments),
     /// Reads and checks scenarios and shows their trains; runs nothing.
     Check(check::CheckArguments),
+    /// Compares scenarios, variants of one or folders of results: what differs in inputs and answers.
+    Compare(compare::CompareArguments),
     /// Lists pole-pair choices for a ratio: pieces, the six ratios, ripple orders.
     Poles(poles::PolesArguments),
     /// Prints a commented file to start from.
     New(new::NewArguments),
     /// Prints the JSON Schema of the scenario file, for editors.
     Schema,
-    /// Compares scenarios or results (not in this version).
-    #[command(hide = true)]
-    Compare(later::LaterArguments),
+    /// Prints completions for a shell: bash, zsh, fish, powershell, elvish.
+    Completions(manual::CompletionsArguments),
+    /// Prints the manual page of the program or of one of its commands.
+    Man(manual::ManArguments),
 }
 
 /// Options that every command takes, as far as they mean something to it.
@@ -75,6 +82,12 @@ pub struct Common {
     /// Draws no charts.
     #[arg(long, global = true)]
     pub no_charts: bool,
+    /// Pixels of PNG charts for each pixel of a page, 0.5 to 8.
+    #[arg(long, global = true, value_name = "N", default_value_t = 2.0, value_parser = scale)]
+    pub scale: f64,
+    /// Size of charts: page, slide, or WIDTHxHEIGHT in pixels of a page.
+    #[arg(long, global = true, value_name = "SIZE", default_value = "page", value_parser = size)]
+    pub size: Print,
     /// Number of threads for studies [default: one a processor].
     #[arg(long, global = true, value_name = "N", value_parser = clap::value_parser!(u16).range(1..))]
     pub threads: Option<u16>,
@@ -87,6 +100,24 @@ pub enum Format {
     Text,
     /// For machines: nothing but JSON.
     Json,
+}
+
+fn scale(text: &str) -> Result<f64, String> {
+    match text.parse::<f64>() {
+        Ok(scale) if (0.5..=8.0).contains(&scale) => Ok(scale),
+        _ => Err("it takes a number from 0.5 to 8".to_owned()),
+    }
+}
+
+fn size(text: &str) -> Result<Print, String> {
+    Print::default().sized(text)
+}
+
+impl Common {
+    /// How charts are written.
+    pub fn print(&self) -> Print {
+        Print { scale: self.scale, ..self.size }
+    }
 }
 
 fn path_and_value(text: &str) -> Result<(String, String), String> {
@@ -106,10 +137,12 @@ pub fn main() -> ExitCode {
         Command::Study(arguments) => study::run(&arguments, &common),
         Command::Report(arguments) => report::run(&arguments, &common),
         Command::Check(arguments) => check::run(&arguments, &common),
+        Command::Compare(arguments) => compare::run(&arguments, &common),
         Command::Poles(arguments) => poles::run(&arguments, &common),
         Command::New(arguments) => new::run(&arguments),
         Command::Schema => schema::run(),
-        Command::Compare(_) => later::refuse("compare"),
+        Command::Completions(arguments) => manual::completions(&arguments),
+        Command::Man(arguments) => manual::page(&arguments),
     };
     status.into()
 }

@@ -5,19 +5,21 @@ use super::progress::Progress;
 use super::report_studies::{self, Gathered};
 use super::run::{judge, output_folder, tell_failure, tell_warnings};
 use super::status::Status;
-use super::{Common, Format, streams};
+use super::{Common, Format, open, streams};
+use crate::analysis::records::{Follower, RecordComparison, Shared};
 use crate::analysis::study::{self, Plan};
 use crate::analysis::train::{self, Train as TrainFigures};
 use crate::analysis::transient::{prepare, run_prepared};
 use crate::diagnostic::{Diagnostics, Severity};
 use crate::equations::Equations;
-use crate::render::chart::drawing::Drawing;
+use crate::render::chart::axes::Sheet;
 use crate::render::chart::train::Train;
 use crate::render::charts;
 use crate::render::folder::{Folder, FolderFault};
+use crate::render::pictures::Picture;
 use crate::render::report::{self, Material, Written};
 use crate::render::series::SeriesWriter;
-use crate::render::{events, json, text};
+use crate::render::{events, json, kept, text};
 use crate::results::{RunResult, Warning};
 use crate::scenario::{Loaded, Method};
 use crate::solve::{RunOptions, TraceRequest, Wanted};
@@ -30,6 +32,9 @@ use std::path::{Path, PathBuf};
 pub struct ReportArguments {
     /// The scenario; `-` reads standard input.
     pub file: PathBuf,
+    /// Opens the page in the browser of the desktop.
+    #[arg(long)]
+    pub open: bool,
 }
 
 /// Name of the page in the folder of results.
@@ -63,7 +68,13 @@ pub fn run(arguments: &ReportArguments, common: &Common) -> Status {
     let desk =
         Desk { plan: &plan, file: &arguments.file, shown: &shown, common, interrupt: &interrupt };
     match desk.make() {
-        Ok(made) => desk.tell(&made),
+        Ok(made) => {
+            let status = desk.tell(&made);
+            if arguments.open {
+                open::page(&shown.join(PAGE));
+            }
+            status
+        }
         Err(Trouble::File(found)) => {
             let mut all = plan.loaded.warnings.clone();
             all.extend(found);
@@ -80,6 +91,7 @@ pub fn run(arguments: &ReportArguments, common: &Common) -> Status {
 /// What was made.
 struct Made {
     result: RunResult,
+    records: Vec<RecordComparison>,
     studies: Gathered,
     summary: Value,
     files: Vec<String>,
@@ -90,7 +102,8 @@ struct Parts {
     figures: TrainFigures,
     train: Train,
     result: RunResult,
-    drawings: Vec<Drawing>,
+    records: Vec<RecordComparison>,
+    drawings: Vec<Picture>,
     sharper: Option<RunResult>,
     studies: Gathered,
 }
@@ -115,7 +128,7 @@ impl Desk<'_> {
         let figures = train::figures(&equations.model);
         let folder = Folder::open(self.shown)?;
         let traces = (!self.common.no_charts).then(|| charts::request(&equations));
-        let mut result = self.transient(&equations, &folder, traces)?;
+        let (mut result, records) = self.transient(&equations, &folder, traces)?;
         let typed = self
             .loaded()
             .warnings
@@ -130,7 +143,7 @@ impl Desk<'_> {
         } else {
             Gathered::default()
         };
-        let parts = Parts { figures, train, result, drawings, sharper, studies };
+        let parts = Parts { figures, train, result, records, drawings, sharper, studies };
         self.write(folder, parts)
     }
 
@@ -139,14 +152,15 @@ impl Desk<'_> {
         equations: &Equations,
         folder: &Folder,
         traces: Option<TraceRequest>,
-    ) -> Result<RunResult, Trouble> {
+    ) -> Result<(RunResult, Vec<RecordComparison>), Trouble> {
         let scenario = &self.loaded().scenario;
         let out = folder.create("series.csv")?;
         let mut rows = SeriesWriter::new(out, &scenario.channels, Some(self.interrupt.flag()));
+        let mut follower = Follower::new(scenario);
         let mut progress = Progress::new(scenario.duration, self.common.quiet);
         let mut show = |time: f64| progress.at(time);
         let options = RunOptions {
-            rows: Some(&mut rows),
+            rows: Some(&mut Shared { rows: &mut rows, follower: &mut follower }),
             traces,
             interrupt: Some(self.interrupt.flag()),
             progress: Some(&mut show),
@@ -156,11 +170,11 @@ impl Desk<'_> {
         progress.end();
         let result = outcome.map_err(Trouble::File)?;
         rows.finish().map_err(|error| FolderFault::disk("`series.csv`", &error))?;
-        Ok(result)
+        Ok((result, follower.finish()))
     }
 
     /// The drawings of the run; windows that deserve a closer look are run and traced again.
-    fn drawings(&self, equations: &Equations, result: &RunResult) -> Vec<Drawing> {
+    fn drawings(&self, equations: &Equations, result: &RunResult) -> Vec<Picture> {
         let mut again = |request: TraceRequest| {
             let options = RunOptions {
                 wanted: Wanted::Asked(Vec::new()),
@@ -170,7 +184,7 @@ impl Desk<'_> {
             };
             run_prepared(equations, options).ok()?.traces
         };
-        charts::drawings(equations, result, &mut again)
+        charts::drawings(equations, result, &mut again, Sheet::PAGE)
     }
 
     /// The same run at a tenth of the tolerance, or of the step of a fixed-step method.
@@ -192,7 +206,7 @@ impl Desk<'_> {
     }
 
     fn write(&self, folder: Folder, parts: Parts) -> Result<Made, Trouble> {
-        let Parts { figures, train, result, drawings, sharper, studies } = parts;
+        let Parts { figures, train, result, records, drawings, sharper, studies } = parts;
         let loaded = self.loaded();
         let out = folder.create("events.csv")?;
         events::write(out, &result.events)
@@ -202,14 +216,16 @@ impl Desk<'_> {
             sets: &self.common.sets,
             output_folder: &self.shown.display().to_string(),
         };
-        let mut summary = json::summary(&result, &origin);
+        let mut summary = json::summary(&result, &records, &origin);
         folder.write("summary.json", json::pretty(&summary).as_bytes())?;
+        folder.write(kept::SCENARIO, loaded.source.text.as_bytes())?;
         let page = report::page(&Material {
             scenario: &loaded.scenario,
             source: &loaded.source,
             node: &loaded.node,
             figures: &figures,
             result: &result,
+            records: &records,
             train,
             drawings,
             sharper,
@@ -222,9 +238,11 @@ impl Desk<'_> {
             entries.insert("report".to_owned(), Value::from(PAGE));
             entries.insert("studies".to_owned(), Value::Object(studies.answers.clone()));
         }
-        let files = [PAGE, "summary.json", "series.csv", "events.csv"].map(str::to_owned).to_vec();
+        let files = [PAGE, "summary.json", "series.csv", "events.csv", kept::SCENARIO]
+            .map(str::to_owned)
+            .to_vec();
         folder.commit()?;
-        Ok(Made { result, studies, summary, files })
+        Ok(Made { result, records, studies, summary, files })
     }
 
     /// Prints what was found and tells how it ended.
@@ -241,6 +259,7 @@ impl Desk<'_> {
                     file: &self.loaded().source.name,
                     output_folder: &self.shown.display().to_string(),
                     files: &made.files,
+                    records: &made.records,
                 };
                 let mut summary = made.studies.text(&self.loaded().scenario);
                 summary

@@ -13,8 +13,11 @@
 
 use crate::component::load::axial_rotor::AxialRotor;
 use crate::component::load::curve::LoadCurve;
+use crate::component::load::periodic::Periodic;
 use crate::component::load::power_law::PowerLaw;
+use crate::component::load::propeller::Propeller;
 use crate::component::magnetic_law::MagnetLaw;
+use crate::component::motor::circuit::{CONNECTED, Circuit};
 use crate::component::motor::curve::MotorCurve;
 use crate::component::motor::induction::Induction;
 use crate::component::motor::optimal_power::OptimalPower;
@@ -49,6 +52,11 @@ pub enum Law {
     RatingPlate(RatingPlate),
     /// Motor by points; the input is the body's speed, rad/s.
     MotorCurve(MotorCurve),
+    /// Induction motor by its circuit; the input is the body's speed, rad/s, the parameter says
+    /// whether it is connected; pieces 0 (open) and 1 (closed).
+    Circuit(Circuit),
+    /// The second parameter while the first is 0.5 or more, else 0: a voltage behind a contactor.
+    Contactor,
     /// Generator on its optimal-power curve; the input is the body's speed, rad/s.
     OptimalPower(OptimalPower),
     /// Load by a power of the speed; the input is the body's speed, rad/s.
@@ -57,6 +65,10 @@ pub enum Law {
     LoadCurve(LoadCurve),
     /// Wind or water rotor; the input is the body's speed, the parameters are flow (m/s) and pitch (rad).
     AxialRotor(AxialRotor),
+    /// Load by the body's angle; the input is that angle, rad.
+    Periodic(Periodic),
+    /// Ship's propeller; the input is the body's speed, the parameter is the speed of advance (m/s).
+    Propeller(Propeller),
     /// `x` clamped to the limits; pieces 0 (at the lower), 1 (`x` itself), 2 (at the upper).
     Saturation {
         /// Lower and upper limit, in the input's unit.
@@ -84,10 +96,21 @@ impl Law {
             Self::Induction(motor) => motor.value(x),
             Self::RatingPlate(motor) => motor.value(x, piece),
             Self::MotorCurve(motor) => motor.value(x, piece),
+            Self::Circuit(_) if piece == 0 => 0.0,
+            Self::Circuit(motor) => motor.torque(x),
+            Self::Contactor => {
+                if piece == 0 {
+                    0.0
+                } else {
+                    p[1]
+                }
+            }
             Self::OptimalPower(generator) => generator.value(x, piece),
             Self::PowerLaw(load) => load.value(x, piece),
             Self::LoadCurve(load) => load.value(x, piece),
-            Self::AxialRotor(rotor) => rotor.value(x, p),
+            Self::AxialRotor(rotor) => rotor.value(x, p, piece),
+            Self::Periodic(load) => load.value(x),
+            Self::Propeller(propeller) => propeller.value(x, p, piece),
             Self::Saturation { limits } => match piece {
                 0 => limits[0],
                 1 => x,
@@ -110,15 +133,55 @@ impl Law {
             Self::Induction(motor) => motor.slope(x),
             Self::RatingPlate(motor) => motor.slope(x, piece),
             Self::MotorCurve(motor) => motor.slope(piece),
+            Self::Circuit(_) if piece == 0 => 0.0,
+            Self::Circuit(motor) => motor.slope(x),
+            Self::Contactor => 0.0,
             Self::OptimalPower(generator) => generator.slope(x, piece),
             Self::PowerLaw(load) => load.slope(x, piece),
             Self::LoadCurve(load) => load.slope(piece),
-            Self::AxialRotor(rotor) => rotor.slope(x, p),
+            Self::AxialRotor(rotor) => rotor.slope(x, p, piece),
+            Self::Periodic(load) => load.slope(x),
+            Self::Propeller(propeller) => propeller.slope(x, p, piece),
             Self::Saturation { .. } => f64::from(u8::from(piece == 1)),
         }
     }
 
-    /// The inputs at which the formula changes, rising; piece `k` lies between entries `k-1` and `k`.
+    /// What is compared with the boundaries: the input itself, or a figure that signals move too.
+    #[inline]
+    pub fn axis(&self, x: f64, p: [f64; 2]) -> f64 {
+        match self {
+            Self::AxialRotor(rotor) => rotor.tip_speed_ratio(x, p[0]),
+            Self::Propeller(propeller) => propeller.advance_ratio(x, p[0]),
+            Self::Circuit(_) | Self::Contactor => p[0],
+            _ => x,
+        }
+    }
+
+    /// True when the piece hangs on signals, not on the input alone.
+    #[inline]
+    pub fn piece_follows_signals(&self) -> bool {
+        matches!(
+            self,
+            Self::AxialRotor(_) | Self::Propeller(_) | Self::Circuit(_) | Self::Contactor
+        )
+    }
+
+    /// The piece at an input and parameters.
+    #[inline]
+    pub fn piece(&self, x: f64, p: [f64; 2]) -> usize {
+        self.piece_at(self.axis(x, p))
+    }
+
+    /// Periods a turn of a law over an angle, the highest where there are several.
+    pub fn turn_order(&self) -> Option<f64> {
+        match self {
+            Self::Cogging { order, .. } => Some(*order),
+            Self::Periodic(load) => Some(f64::from(load.highest_order())),
+            _ => None,
+        }
+    }
+
+    /// Places on the law's axis at which the formula changes, rising; piece `k` lies between entries `k-1` and `k`.
     #[inline]
     pub fn boundaries(&self) -> &[f64] {
         match self {
@@ -127,17 +190,20 @@ impl Law {
             | Self::FadingDamper { .. }
             | Self::Cogging { .. }
             | Self::Induction(_)
-            | Self::AxialRotor(_) => &[],
+            | Self::Periodic(_) => &[],
+            Self::AxialRotor(rotor) => rotor.boundaries(),
             Self::RatingPlate(motor) => motor.boundaries(),
             Self::MotorCurve(motor) => motor.boundaries(),
+            Self::Circuit(_) | Self::Contactor => &CONNECTED,
             Self::OptimalPower(generator) => generator.boundaries(),
             Self::PowerLaw(load) => load.boundaries(),
             Self::LoadCurve(load) => load.boundaries(),
+            Self::Propeller(propeller) => propeller.boundaries(),
             Self::Saturation { limits } => limits,
         }
     }
 
-    /// The piece that holds `x`; on a boundary the upper one.
+    /// The piece that holds a place on the law's axis; on a boundary the upper one.
     #[inline]
     pub fn piece_at(&self, x: f64) -> usize {
         self.boundaries().partition_point(|boundary| *boundary <= x)

@@ -2,8 +2,13 @@
 
 pub mod axial_rotor;
 pub mod curve;
+pub mod periodic;
+pub mod power_coefficient;
 pub mod power_law;
+pub mod propeller;
+pub mod propeller_series;
 mod read;
+mod read_coefficients;
 
 use crate::component::law::Law;
 use crate::signal::Signal;
@@ -71,6 +76,26 @@ pub enum LoadLaw {
         flow: Signal,
         /// rad.
         pitch: Signal,
+        /// Power coefficient over tip speed ratio and pitch.
+        coefficient: power_coefficient::PowerCoefficient,
+    },
+    /// By the body's angle: a mean against the motion, and harmonics of a turn.
+    Periodic {
+        /// N*m, against the motion.
+        mean: f64,
+        /// Harmonics of the resisting torque.
+        harmonics: Vec<periodic::TurnHarmonic>,
+    },
+    /// Ship's propeller.
+    Propeller {
+        /// m.
+        diameter: f64,
+        /// kg/m3.
+        density: f64,
+        /// Speed of advance, m/s.
+        advance: Signal,
+        /// Torque coefficient over the advance ratio.
+        coefficient: propeller::TorqueCoefficient,
     },
 }
 
@@ -83,9 +108,15 @@ impl LoadLaw {
                 Some(Law::PowerLaw(power_law::PowerLaw::new(*torque, *speed, *exponent)))
             }
             Self::Curve { points } => Some(Law::LoadCurve(curve::LoadCurve::new(points))),
-            Self::AxialRotor { radius, density, .. } => {
-                Some(Law::AxialRotor(axial_rotor::AxialRotor::new(*radius, *density)))
+            Self::AxialRotor { radius, density, coefficient, .. } => Some(Law::AxialRotor(
+                axial_rotor::AxialRotor::new(*radius, *density, coefficient.clone()),
+            )),
+            Self::Periodic { harmonics, .. } => {
+                Some(Law::Periodic(periodic::Periodic::new(harmonics)))
             }
+            Self::Propeller { diameter, density, coefficient, .. } => Some(Law::Propeller(
+                propeller::Propeller::new(*diameter, *density, coefficient.clone()),
+            )),
             Self::Prescribed { .. } => Some(Law::Unit),
             Self::Friction { .. } | Self::Viscous { .. } => None,
         }

@@ -158,6 +158,11 @@ impl MagnetLaw {
         if self.harmonics.is_empty() { self.amplitude * x.sin() } else { self.scale * self.raw(x) }
     }
 
+    /// The amplitude of a law that is a plain sine, N*m.
+    pub fn sine(&self) -> Option<f64> {
+        self.harmonics.is_empty().then_some(self.amplitude)
+    }
+
     /// Derivative of [`MagnetLaw::value`], N*m/rad.
     #[inline]
     pub fn slope(&self, x: f64) -> f64 {

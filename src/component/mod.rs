@@ -9,6 +9,7 @@ pub mod load;
 pub mod magnetic_gear;
 pub mod magnetic_law;
 mod magnetic_read;
+pub mod measured;
 pub mod motor;
 pub mod planetary;
 mod points;

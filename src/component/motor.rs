@@ -1,5 +1,6 @@
 //! Motors and generators as typed, and their laws.
 
+pub mod circuit;
 pub mod curve;
 pub mod induction;
 pub mod optimal_power;
@@ -82,6 +83,17 @@ pub enum MotorLaw {
         /// First-order lag of the torque, s; 0 for none.
         lag: f64,
     },
+    /// Equivalent circuit of an induction motor.
+    InductionCircuit {
+        /// The circuit.
+        figures: circuit::CircuitFigures,
+        /// Share of rated voltage.
+        voltage: Signal,
+        /// 0.5 or more: on the line; below: no stator current.
+        connected: Signal,
+        /// With the flux equations instead of the circuit at each instant.
+        transient: bool,
+    },
     /// Generator: torque = -min(coefficient*speed^2, limit) while turning forward.
     OptimalPower {
         /// N*m*s2/rad2.
@@ -126,7 +138,8 @@ impl Plate {
 }
 
 impl MotorLaw {
-    /// The scalar law at full voltage; none for a speed loop, which has states of its own.
+    /// The scalar law at full voltage; none for a speed loop, which has states of its own. With
+    /// `transient` a circuit has states too, and this is where they come to rest.
     /// A prescribed torque is the unit law times its signal.
     pub fn scalar(&self) -> Option<Law> {
         let law = match self {
@@ -155,6 +168,7 @@ impl MotorLaw {
             }
             Self::Curve { points, .. } => Law::MotorCurve(curve::MotorCurve::new(points)),
             Self::Prescribed { .. } => Law::Unit,
+            Self::InductionCircuit { figures, .. } => Law::Circuit(circuit::Circuit::new(*figures)),
             Self::SpeedLoop { .. } => return None,
             Self::OptimalPower { coefficient, torque_limit } => {
                 Law::OptimalPower(optimal_power::OptimalPower::new(*coefficient, *torque_limit))

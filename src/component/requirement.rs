@@ -89,6 +89,14 @@ impl Requirement {
                 }
             }
         }
+        let counts = of.ends_with(".slips") || of.ends_with(".net_slips");
+        if counts && limits[1].1.is_some_and(|least| least > 0.0) {
+            fields.warn(
+                "at_least",
+                "no run can meet this: slips are counted from the start of the window, so the \
+                 smallest count in it is 0; `reaches: 1` asks that it slips",
+            );
+        }
         let value = |index: usize| limits.get(index).and_then(|(_, value)| *value);
         let test = match given.first().map(|(key, _)| *key) {
             Some("at_most") => Test::AtMost(value(0).unwrap_or(f64::NAN)),

@@ -41,6 +41,8 @@ pub struct Active {
     pub parameters: [Option<SlotId>; 2],
     /// Offset and parameters where nothing of them follows time.
     pub fixed: (f64, [f64; 2]),
+    /// True when its factor, offset or a parameter follows time within the stretch.
+    pub follows_time: bool,
     /// Factor on the value.
     pub factor: Strength,
     /// Column: entries of the scaled rates.
@@ -60,10 +62,10 @@ pub enum Function {
     Law(Law, usize),
     /// The input itself.
     Linear,
+    /// A sum of products of two states each.
+    Products(Vec<(usize, usize, f64)>),
     /// Friction of constant size against this direction.
     Friction(f64, f64),
-    /// Friction along a load curve against this direction.
-    FrictionCurve(Law, f64),
 }
 
 /// A factor over one stretch.
@@ -153,19 +155,18 @@ pub fn assemble(
                 .is_some_and(|scale| scale == 0.0);
             controller.integral == Some(place) && (*held || off)
         });
-        if held {
+        if held || equations.machines.iter().any(|machine| machine.is_off(mode, place)) {
             continue;
         }
         let factor = strength(&term.factor, &mut varies);
         if factor == Strength::Constant(0.0) {
             continue;
         }
-        let moving =
+        let mut moving =
             term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
-        for slot in moving {
-            // The steady path leaves offsets and parameters out: right only where they are zero.
-            varies |= equations.bank.constant_on(slot, start, end, overrides) != Some(0.0);
-        }
+        let moves =
+            moving.any(|slot| equations.bank.constant_on(slot, start, end, overrides).is_none());
+        varies |= moves;
         let column = match &term.target {
             Target::Torque(direction) => parts.column(direction),
             Target::State(state, rate) => vec![(*state, rate / equations.scale[*state])],
@@ -192,6 +193,7 @@ pub fn assemble(
             term.offset.map_or(0.0, |(gain, slot)| gain * constant(slot)),
             term.parameters.map(|slot| slot.map_or(0.0, constant)),
         );
+        entry.follows_time |= moves;
         active.push(entry);
     }
     for (index, friction) in equations.frictions.iter().enumerate() {
@@ -204,12 +206,15 @@ pub fn assemble(
             place: equations.terms.len() + index,
             function: match &friction.sliding {
                 Sliding::Constant(torque) => Function::Friction(*torque, direction),
-                Sliding::Curve(law) => Function::FrictionCurve(law.clone(), direction),
+                Sliding::Curve(law) => {
+                    Function::Law(law.clone(), mode.pieces[equations.terms.len() + index])
+                }
             },
             input: friction.speed.clone(),
             offset: None,
             parameters: [None; 2],
             fixed: (0.0, [0.0; 2]),
+            follows_time: matches!(factor, Strength::Varying(_)),
             factor,
             column: parts.column(&friction.row),
             // A load by points takes power out of the train, friction turns it to heat.
@@ -229,6 +234,7 @@ pub fn assemble(
             offset: None,
             parameters: [None; 2],
             fixed: (0.0, [0.0; 2]),
+            follows_time: false,
             factor: Strength::Constant(1.0),
             column: parts.column(&parts.constant_row()),
             power: PowerKind::None,
@@ -350,11 +356,13 @@ impl Active {
             function: match &term.shape {
                 Shape::Law(law) => Function::Law(law.clone(), piece),
                 Shape::Linear => Function::Linear,
+                Shape::Products(list) => Function::Products(list.clone()),
             },
             input: term.input.clone(),
             offset: term.offset,
             parameters: term.parameters,
             fixed: (0.0, [0.0; 2]),
+            follows_time: matches!(factor, Strength::Varying(_)),
             factor,
             column,
             power: term.power,

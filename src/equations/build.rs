@@ -5,6 +5,7 @@ use super::{
     Damper, Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, Target, Term, speed_row,
 };
 use crate::component::law::Law;
+use crate::component::load::curve::LoadCurve;
 use crate::component::load::{Load, LoadLaw};
 use crate::component::magnetic_gear::Member;
 use crate::model::{BodyRow, Model, body_index, difference};
@@ -38,11 +39,13 @@ pub fn build(model: &Model) -> Equations {
         scale,
         twist_state,
         phase_state,
+        phase_rows: Vec::new(),
         angle_states: Vec::new(),
         terms: Vec::new(),
         frictions: Vec::new(),
         dampers: Vec::new(),
         controllers: Vec::new(),
+        machines: Vec::new(),
         heats: Vec::new(),
         bank: SignalBank::new(&model.scenario.signals),
         warnings: Vec::new(),
@@ -75,6 +78,8 @@ pub fn build(model: &Model) -> Equations {
         );
     }
     equations.size = equations.scale.len();
+    let rows = model.magnets.iter().map(|magnet| equations.speed_row(&magnet.row()));
+    equations.phase_rows = rows.collect();
     equations
 }
 
@@ -242,6 +247,34 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
                 Some(slot(equations, path("flow"), flow)),
                 Some(slot(equations, path("pitch"), pitch)),
             ];
+            let Some(law) = load.law.scalar() else { return };
+            (Shape::Law(law), direction.clone())
+        }
+        LoadLaw::Propeller { advance, .. } => {
+            let path = format!("loads.{}.law.propeller.advance", load.name);
+            parameters[0] = Some(slot(equations, path, advance));
+            let Some(law) = load.law.scalar() else { return };
+            (Shape::Law(law), direction.clone())
+        }
+        LoadLaw::Periodic { mean, harmonics } => {
+            if *mean > 0.0 {
+                // A mean against the motion holds at rest; as a load it takes power out.
+                let curve = LoadCurve::new(&[[0.0, *mean], [1.0, *mean]]);
+                add_friction(
+                    equations,
+                    owner,
+                    &load.name,
+                    direction.clone(),
+                    Sliding::Curve(Law::LoadCurve(curve)),
+                    *mean,
+                    factor.clone(),
+                );
+            }
+            if harmonics.is_empty() {
+                return;
+            }
+            let place = angle_state(equations, direction.clone());
+            own_speed = Some(std::mem::replace(&mut input, vec![(place, equations.scale[place])]));
             let Some(law) = load.law.scalar() else { return };
             (Shape::Law(law), direction.clone())
         }

@@ -5,6 +5,7 @@ use super::{
     Controller, Equations, Factor, Owner, PowerKind, Shape, StateRow, Target, Term, speed_row,
 };
 use crate::component::law::Law;
+use crate::component::motor::circuit::Circuit;
 use crate::component::motor::{Motor, MotorLaw};
 use crate::model::{BodyRow, body_index};
 use crate::signal::Signal;
@@ -15,9 +16,18 @@ pub(super) fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) 
     let sign = if motor.reversed { -1.0 } else { 1.0 };
     let direction: BodyRow = vec![(body, sign)];
     let speed = speed_row(&equations.model, &equations.scale, &direction);
-    let mut factor = factor_of(equations, "motors", &motor.name, &motor.scale);
-    let law_path = |law: &str, key: &str| format!("motors.{}.law.{law}.{key}", motor.name);
     let size = equations.model.scales.body_speed[body];
+    if matches!(motor.law, MotorLaw::InductionCircuit { transient: true, .. }) {
+        super::build_machine::add_machine(equations, index, motor, &direction, size);
+        return;
+    }
+    let mut factor = match motor.law {
+        // It has no scale, and none can be set.
+        MotorLaw::InductionCircuit { .. } => Factor::default(),
+        _ => factor_of(equations, "motors", &motor.name, &motor.scale),
+    };
+    let mut parameters = [None; 2];
+    let law_path = |law: &str, key: &str| format!("motors.{}.law.{law}.{key}", motor.name);
     let mut with_voltage = |equations: &mut Equations, law: &str, voltage: &Signal| {
         let place = slot(equations, law_path(law, "voltage"), voltage);
         factor.slots.push((place, 2));
@@ -35,6 +45,12 @@ pub(super) fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) 
             with_voltage(equations, "curve", voltage);
             motor.law.scalar()
         }
+        MotorLaw::InductionCircuit { voltage, connected, .. } => {
+            with_voltage(equations, "induction_circuit", voltage);
+            let path = law_path("induction_circuit", "connected");
+            parameters[0] = Some(slot(equations, path, connected));
+            motor.law.scalar()
+        }
         MotorLaw::OptimalPower { .. } => motor.law.scalar(),
         MotorLaw::Prescribed { torque } => {
             let place = slot(equations, law_path("prescribed", "torque"), torque);
@@ -50,6 +66,9 @@ pub(super) fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) 
     let synchronous_speed = match &motor.law {
         MotorLaw::RatingPlate { synchronous_speed, .. }
         | MotorLaw::Induction { synchronous_speed, .. } => Some(*synchronous_speed),
+        MotorLaw::InductionCircuit { figures, .. } => {
+            Some(Circuit::new(*figures).synchronous_speed())
+        }
         _ => None,
     };
     let heat = synchronous_speed.map(|speed| {
@@ -62,7 +81,7 @@ pub(super) fn add_motor(equations: &mut Equations, index: usize, motor: &Motor) 
         input: if matches!(law, Law::Unit) { Vec::new() } else { speed },
         shape: Shape::Law(law),
         offset: None,
-        parameters: [None; 2],
+        parameters,
         factor,
         target: Target::Torque(direction),
         power: PowerKind::Drive,

@@ -71,6 +71,28 @@ impl Evaluator<'_> {
         })
     }
 
+    /// Where a term stands on the axis of its law's boundaries, and the size of that axis.
+    pub fn place_on_axis(&self, term: usize, frame: &Frame) -> (f64, f64) {
+        let input = frame.inputs[term];
+        let size = self.equations.input_size_at(term);
+        let Some(term) = self.equations.terms.get(term) else { return (input, size) };
+        match &term.shape {
+            Shape::Law(law) if law.piece_follows_signals() => {
+                let signal = |slot| {
+                    self.equations.bank.value_in(
+                        slot,
+                        frame.time,
+                        self.assembly.start,
+                        self.overrides,
+                    )
+                };
+                let parameters = term.parameters.map(|slot| slot.map_or(0.0, signal));
+                (law.axis(input, parameters), 1.0)
+            }
+            _ => (input, size),
+        }
+    }
+
     /// Input and value of an active term.
     #[inline]
     pub fn law(&self, active: &Active, time: f64, state: &[f64]) -> (f64, f64) {
@@ -89,10 +111,8 @@ impl Evaluator<'_> {
                 law.value(input, parameters, *piece)
             }
             Function::Linear => input,
+            Function::Products(list) => super::products(list, state),
             Function::Friction(torque, direction) => -direction * torque,
-            Function::FrictionCurve(law, direction) => {
-                -direction * sliding_of(law, input * direction)
-            }
         };
         (input, self.strength(&active.factor, time) * value)
     }
@@ -267,7 +287,7 @@ impl Evaluator<'_> {
             return speed * radius / flow;
         }
         let Shape::Law(law) = &term.shape else { return 0.0 };
-        let torque = law.value(speed, [flow, pitch], 0);
+        let torque = law.value(speed, [flow, pitch], law.piece(speed, [flow, pitch]));
         let flow_power = 0.5 * density * PI * radius * radius * flow.powi(3);
         torque * speed / flow_power
     }

@@ -28,6 +28,16 @@ pub fn jacobian(
         let signal = |slot| {
             evaluator.equations.bank.value_in(slot, time, assembly.start, evaluator.overrides)
         };
+        if let Function::Products(list) = &active.function {
+            let strength = evaluator.strength(&active.factor, time);
+            for &(row, share) in &active.column {
+                for &(left, right, factor) in list {
+                    matrix[(row, left)] += share * strength * factor * state[right];
+                    matrix[(row, right)] += share * strength * factor * state[left];
+                }
+            }
+            continue;
+        }
         let slope = match &active.function {
             Function::Law(crate::component::law::Law::Magnet(magnet), _)
                 if magnets == MagnetSlope::Steepest =>
@@ -39,10 +49,9 @@ pub fn jacobian(
                 law.slope(input, [first.map_or(0.0, signal), second.map_or(0.0, signal)], *piece)
             }
             Function::Linear => 1.0,
+            Function::Products(_) => 0.0,
             // Sliding friction adds nothing: its torque does not follow small changes of speed.
             Function::Friction(..) => 0.0,
-            // A load by points that sticks at standstill is a load like any other while it turns.
-            Function::FrictionCurve(law, _) => law.slope(input, [0.0; 2], law.piece_at(input)),
         };
         let slope = slope * evaluator.strength(&active.factor, time);
         for &(row, share) in &active.column {

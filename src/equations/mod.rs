@@ -9,12 +9,14 @@
 
 pub mod assembly;
 pub mod build;
+mod build_machine;
 mod build_motor;
 pub mod channels;
 pub mod energy;
 pub mod frame;
 pub mod holding;
 pub mod linearise;
+pub mod machine;
 pub mod mode;
 pub mod parts;
 
@@ -40,6 +42,8 @@ pub struct Equations {
     pub twist_state: Vec<Option<usize>>,
     /// State of each magnet's phase.
     pub phase_state: Vec<usize>,
+    /// Rate of each magnet's phase (electrical rad/s) as a form over the scaled state.
+    pub phase_rows: Vec<StateRow>,
     /// Angles that some law needs: state and rate row over bodies.
     pub angle_states: Vec<(usize, BodyRow)>,
     /// Scalar laws.
@@ -50,6 +54,8 @@ pub struct Equations {
     pub dampers: Vec<Damper>,
     /// Speed controllers.
     pub controllers: Vec<Controller>,
+    /// Induction machines with flux equations.
+    pub machines: Vec<machine::Machine>,
     /// Motors with a synchronous speed: motor by place and that speed (mirrored with the law), rad/s.
     pub heats: Vec<(usize, f64)>,
     /// Everything that follows time.
@@ -98,6 +104,8 @@ pub enum Shape {
     Law(Law),
     /// The input itself.
     Linear,
+    /// A sum of products of two states each; the input is the speed that makes its power.
+    Products(Vec<(usize, usize, f64)>),
 }
 
 /// A factor that follows signals: the product of slots to whole powers.
@@ -206,6 +214,31 @@ impl Equations {
         speed_row(&self.model, &self.scale, row)
     }
 
+    /// The law at a place of the frame: of a term, or of a friction element by points.
+    pub fn law_at(&self, place: usize) -> Option<&Law> {
+        match self.terms.get(place) {
+            Some(term) => match &term.shape {
+                Shape::Law(law) => Some(law),
+                Shape::Linear | Shape::Products(_) => None,
+            },
+            None => match &self.frictions.get(place - self.terms.len())?.sliding {
+                Sliding::Curve(law) => Some(law),
+                Sliding::Constant(_) => None,
+            },
+        }
+    }
+
+    /// Typical size of the input of the law at a place of the frame.
+    pub fn input_size_at(&self, place: usize) -> f64 {
+        match self.terms.get(place) {
+            Some(term) => term.input_size,
+            None => self
+                .frictions
+                .get(place - self.terms.len())
+                .map_or(1.0, |friction| friction.speed_size),
+        }
+    }
+
     /// The starting state (scaled) with shafts unloaded and controllers at rest.
     pub fn start_state(&self) -> Vec<f64> {
         let mut state = vec![0.0; self.size];
@@ -228,6 +261,12 @@ pub fn speed_row(model: &Model, scale: &[f64], row: &[(usize, f64)]) -> StateRow
         .filter(|(_, value)| **value != 0.0)
         .map(|(place, value)| (place, value * scale[place]))
         .collect()
+}
+
+/// The value of a sum of products of states.
+#[inline]
+pub fn products(list: &[(usize, usize, f64)], state: &[f64]) -> f64 {
+    list.iter().map(|&(left, right, factor)| factor * state[left] * state[right]).sum()
 }
 
 /// The value of a sparse form.

@@ -2,7 +2,7 @@
 //!
 //! The mode is an explicit input of everything that is evaluated; nothing hides in a law.
 
-use super::{Equations, Shape, dot};
+use super::{Equations, Shape, Sliding, dot};
 use crate::signal::course::Overrides;
 
 /// What a friction element does.
@@ -52,7 +52,7 @@ pub enum Contact {
 pub struct Mode {
     /// One entry a friction element.
     pub frictions: Vec<FrictionMode>,
-    /// Piece of each term's law.
+    /// Piece of each law: those of the terms, then those of the friction elements.
     pub pieces: Vec<usize>,
     /// One entry a shaft.
     pub contacts: Vec<Contact>,
@@ -87,9 +87,13 @@ impl Mode {
                 .terms
                 .iter()
                 .map(|term| match &term.shape {
-                    Shape::Law(law) => law.piece_at(input(equations, term, time, state, overrides)),
-                    Shape::Linear => 0,
+                    Shape::Law(law) => {
+                        let input = input(equations, term, time, state, overrides);
+                        law.piece(input, parameters(equations, term, time, overrides))
+                    }
+                    Shape::Linear | Shape::Products(_) => 0,
                 })
+                .chain(equations.frictions.iter().map(|_| 0))
                 .collect(),
             contacts: equations
                 .model
@@ -112,8 +116,37 @@ impl Mode {
                 .collect(),
             held: vec![false; equations.controllers.len()],
         };
+        for index in 0..equations.frictions.len() {
+            mode.choose_piece(equations, index, state);
+        }
         mode.judge_controllers(equations, time, state, overrides);
         mode
+    }
+
+    /// Lets a friction element do something else; one that begins to slide takes the piece of its
+    /// curve on that side.
+    pub fn set_friction(
+        &mut self,
+        equations: &Equations,
+        index: usize,
+        friction: FrictionMode,
+        state: &[f64],
+    ) {
+        if self.frictions[index] != friction {
+            self.frictions[index] = friction;
+            self.choose_piece(equations, index, state);
+        }
+    }
+
+    fn choose_piece(&mut self, equations: &Equations, index: usize, state: &[f64]) {
+        let friction = &equations.frictions[index];
+        let Sliding::Curve(law) = &friction.sliding else { return };
+        let speed = dot(&friction.speed, state);
+        let bounds = law.boundaries();
+        self.pieces[equations.terms.len() + index] = match self.frictions[index] {
+            FrictionMode::Backward => bounds.partition_point(|bound| *bound < speed.min(0.0)),
+            _ => bounds.partition_point(|bound| *bound <= speed.max(0.0)),
+        };
     }
 
     /// Decides anew which integrals are held.
@@ -135,6 +168,16 @@ impl Mode {
 
 /// Relative speed below which two bodies count as at rest to each other, as a share of the working speed.
 pub const REST: f64 = 1e-9;
+
+/// The parameters of a term's law at a time.
+pub fn parameters(
+    equations: &Equations,
+    term: &super::Term,
+    time: f64,
+    overrides: &Overrides,
+) -> [f64; 2] {
+    term.parameters.map(|slot| slot.map_or(0.0, |slot| equations.bank.value(slot, time, overrides)))
+}
 
 /// The input of a term at a state.
 pub fn input(

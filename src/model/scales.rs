@@ -9,6 +9,7 @@ use super::magnet::Magnet;
 use super::{BodyRow, ShaftModel, body_index};
 use crate::component::load::LoadLaw;
 use crate::component::motor::MotorLaw;
+use crate::component::motor::circuit::Circuit;
 use crate::scenario::Scenario;
 use crate::signal::Signal;
 
@@ -148,6 +149,7 @@ fn signal_size(signal: &Signal) -> f64 {
         Signal::Points(rows) | Signal::Table { rows, .. } => {
             rows.iter().fold(0.0, |size, row| f64::max(size, row[1].abs()))
         }
+        Signal::Turbulence(spectrum) => spectrum.mean + 3.0 * spectrum.deviation,
         Signal::Sine { mean, amplitude, .. } => mean.abs() + amplitude.abs(),
         _ => 0.0,
     }
@@ -160,6 +162,10 @@ fn motor_size(law: &MotorLaw) -> (f64, f64) {
         }
         MotorLaw::Induction { synchronous_speed, breakdown_torque, .. } => {
             (*synchronous_speed, *breakdown_torque)
+        }
+        MotorLaw::InductionCircuit { figures, .. } => {
+            let circuit = Circuit::new(*figures);
+            (circuit.synchronous_speed(), circuit.breakdown_torque())
         }
         MotorLaw::Curve { points, .. } => curve_size(points),
         MotorLaw::Prescribed { torque } => (0.0, signal_size(torque)),
@@ -177,6 +183,13 @@ fn load_size(law: &LoadLaw) -> (f64, f64) {
         LoadLaw::Viscous { .. } => (0.0, 0.0),
         LoadLaw::Prescribed { torque } => (0.0, signal_size(torque)),
         LoadLaw::Curve { points } => curve_size(points),
+        LoadLaw::Periodic { mean, harmonics } => {
+            (0.0, mean + harmonics.iter().map(|wave| wave.amplitude.abs()).sum::<f64>())
+        }
+        // A plain working point: an advance ratio of 0.7.
+        LoadLaw::Propeller { diameter, advance, .. } => {
+            (std::f64::consts::TAU * signal_size(advance) / (0.7 * diameter), 0.0)
+        }
         LoadLaw::AxialRotor { radius, flow, .. } => (8.0 * signal_size(flow) / radius, 0.0),
     }
 }

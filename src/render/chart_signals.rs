@@ -4,6 +4,7 @@ use super::chart::train::{SignalBar, SignalBars};
 use crate::equations::Equations;
 use crate::scenario::Scenario;
 use crate::signal::Signal;
+use crate::signal::course::SignalBank;
 
 /// Pulses and steps of prescribed torques and brakes as bars; kinks of all signals as dotted lines.
 pub(super) fn bars(scenario: &Scenario, equations: &Equations) -> (Vec<SignalBars>, Vec<f64>) {
@@ -58,4 +59,21 @@ pub(super) fn bars(scenario: &Scenario, equations: &Equations) -> (Vec<SignalBar
     }
     rows.truncate(3);
     (rows, steps)
+}
+
+/// Brakes that are not pressed and frictions scaled to nothing when the run begins: they hold
+/// nothing, so that they are not stuck.
+pub(super) fn idle_at_start(scenario: &Scenario) -> Vec<String> {
+    let mut bank = SignalBank::new(&scenario.signals);
+    let mut is_zero = |name: &str, signal: &Signal| {
+        let id = bank.add(name, signal);
+        bank.value(id, 0.0, &bank.no_overrides()) == 0.0
+    };
+    let brakes = scenario.brakes.iter().map(|brake| (&brake.name, Some(&brake.applied)));
+    let loads = scenario.loads.iter().map(|load| (&load.name, load.scale.as_ref()));
+    brakes
+        .chain(loads)
+        .filter(|(name, signal)| signal.is_some_and(|signal| is_zero(name, signal)))
+        .map(|(name, _)| name.clone())
+        .collect()
 }

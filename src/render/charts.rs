@@ -1,14 +1,15 @@
 //! The charts of a run: which traces they need, and the files they become.
 
 use super::chart::axes::Sheet;
-use super::chart::drawing::Drawing;
 use super::chart::palette::Side;
+use super::chart::plane_tables;
 use super::chart::swing::{SwingChart, swing_chart};
 use super::chart::torque_speed::{Characteristic, TorqueSpeed, torque_speed_chart};
-use super::chart::train::{Train, TrainBody, TrainGear, TrainShaft};
+use super::chart::train::{Train, TrainBody, TrainGear, TrainRecord, TrainShaft};
 use super::chart::units::{Display, Unit};
-use super::chart::{number, pick, pick_rows, run};
-use super::chart_signals::bars;
+use super::chart::{number, pick, pick_records, pick_rows};
+use super::chart_signals::{bars, idle_at_start};
+use super::pictures::Picture;
 use crate::analysis::train::{self, Train as Figures};
 use crate::analysis::{characteristics, separatrix};
 use crate::equations::Equations;
@@ -16,15 +17,9 @@ use crate::quantity::{self, Dimension};
 use crate::results::{GearResult, RunResult, Traces};
 use crate::scenario::Scenario;
 use crate::solve::TraceRequest;
-use std::fs;
-use std::io;
-use std::path::Path;
 
 /// Columns of a chart: two for each CSS pixel of a panel.
 const COLUMNS: usize = 1092;
-
-/// Pixels of a PNG for each CSS pixel.
-const PNG_SCALE: f64 = 2.0;
 
 /// What a run must record for its charts.
 pub fn request(equations: &Equations) -> TraceRequest {
@@ -55,51 +50,31 @@ pub fn drawings(
     equations: &Equations,
     result: &RunResult,
     again: &mut dyn FnMut(TraceRequest) -> Option<Traces>,
-) -> Vec<Drawing> {
+    sheet: Sheet,
+) -> Vec<Picture> {
     let Some(traces) = &result.traces else { return Vec::new() };
     let scenario = &equations.model.scenario;
     let figures = train::figures(&equations.model);
     let train = describe(equations, &figures);
     let display = display(scenario);
-    let mut list = vec![run::run_chart(&pick::run(result, traces, &train, &display, "run"))];
+    let over_time = |chart| Picture::over_time(chart, sheet);
+    let mut list = vec![over_time(pick::run(result, traces, &train, &display, "run"))];
     for (number, [start, end]) in clusters(result).into_iter().enumerate() {
         if let Some(zoomed) = again(window(equations, start, end, false)) {
             let id = format!("zoom_{}", number + 1);
-            list.push(run::run_chart(&pick::run(result, &zoomed, &train, &display, &id)));
+            list.push(over_time(pick::run(result, &zoomed, &train, &display, &id)));
         }
     }
-    list.extend(torque_speed(equations, &figures, &train, result, traces, &display));
+    list.extend(torque_speed(equations, &figures, &train, result, traces, &display, sheet));
     for (index, gear) in result.gears.iter().enumerate() {
-        list.extend(swing(equations, result, traces, gear, index));
+        list.extend(swing(equations, result, traces, gear, index, sheet));
     }
     if !train.shafts.is_empty() && !result.gears.is_empty() {
-        list.push(run::run_chart(&pick::shafts(result, traces, &train, &display)));
+        list.push(over_time(pick::shafts(result, traces, &train, &display)));
     }
+    let measured = pick_records::charts(result, traces, &train, &display);
+    list.extend(measured.into_iter().map(over_time));
     list
-}
-
-/// Writes drawings as SVG and PNG into a folder and returns the names of the files.
-///
-/// # Errors
-/// The fault of the disk, or of drawing.
-pub fn write(folder: &Path, drawings: &[Drawing]) -> io::Result<Vec<String>> {
-    let mut names = Vec::new();
-    let pictures: Vec<_> = std::thread::scope(|scope| {
-        let threads: Vec<_> =
-            drawings.iter().map(|drawing| scope.spawn(move || drawing.to_png(PNG_SCALE))).collect();
-        threads.into_iter().map(std::thread::ScopedJoinHandle::join).collect()
-    });
-    for (drawing, picture) in drawings.iter().zip(pictures) {
-        let name = format!("{}.svg", drawing.id);
-        fs::write(folder.join(&name), drawing.to_svg(1.0))?;
-        names.push(name);
-        if let Ok(Ok(bytes)) = picture {
-            let name = format!("{}.png", drawing.id);
-            fs::write(folder.join(&name), bytes)?;
-            names.push(name);
-        }
-    }
-    Ok(names)
 }
 
 /// Clusters of slips worth a picture of their own: three at most, none that is most of the run.
@@ -119,14 +94,19 @@ fn clusters(result: &RunResult) -> Vec<[f64; 2]> {
 
 /// The units that a scenario asks for, as charts write them.
 pub fn display(scenario: &Scenario) -> Display {
+    display_of(&scenario.display)
+}
+
+/// The same from the section of the file.
+pub fn display_of(typed: &crate::scenario::Display) -> Display {
     let unit = |text: &str, dimension: Dimension| {
         let per_si = quantity::to_unit(1.0, dimension, text).unwrap_or(1.0);
         Unit::new(&number::unit_text(text), per_si)
     };
     Display {
-        speed: unit(&scenario.display.speed, Dimension::Speed),
-        torque: unit(&scenario.display.torque, Dimension::Torque),
-        angle: unit(&scenario.display.angle, Dimension::Angle),
+        speed: unit(&typed.speed, Dimension::Speed),
+        torque: unit(&typed.torque, Dimension::Torque),
+        angle: unit(&typed.angle, Dimension::Angle),
     }
 }
 
@@ -253,6 +233,19 @@ pub fn describe(equations: &Equations, figures: &Figures) -> Train {
         })
         .collect();
     let (signals, signal_steps) = bars(scenario, equations);
+    let records = scenario
+        .measured
+        .iter()
+        .filter_map(|record| {
+            let channel = scenario.channels.iter().find(|channel| channel.name == record.of)?;
+            Some(TrainRecord {
+                name: record.name.clone(),
+                channel: record.of.clone(),
+                unit: channel.unit,
+                rows: record.rows.clone(),
+            })
+        })
+        .collect();
     Train {
         bodies,
         shafts,
@@ -260,6 +253,8 @@ pub fn describe(equations: &Equations, figures: &Figures) -> Train {
         reference: figures.reference.replace('_', " "),
         signals,
         signal_steps,
+        idle_at_start: idle_at_start(scenario),
+        records,
     }
 }
 
@@ -270,7 +265,8 @@ fn torque_speed(
     result: &RunResult,
     traces: &Traces,
     display: &Display,
-) -> Option<Drawing> {
+    sheet: Sheet,
+) -> Option<Picture> {
     let found = characteristics::find(equations, figures, result)?;
     let scenario = &equations.model.scenario;
     let own = train.bodies.iter().find(|body| body.name == found.body)?;
@@ -313,7 +309,7 @@ fn torque_speed(
         .first()
         .and_then(|load| train.bodies.iter().find(|body| body.name == load.body))
         .map_or(Side::Outer, |body| body.side);
-    Some(torque_speed_chart(&TorqueSpeed {
+    let chart = TorqueSpeed {
         id: "torque_speed".to_owned(),
         title: format!("{}: torque over speed at {}", result.title, found.body.replace('_', " ")),
         at: found.body.replace('_', " "),
@@ -327,8 +323,10 @@ fn torque_speed(
         operating_point: found.operating_point,
         path,
         display: display.clone(),
-        sheet: Sheet::PAGE,
-    }))
+        sheet,
+    };
+    let table = Some(plane_tables::torque_speed(&chart));
+    Some(Picture { drawing: torque_speed_chart(&chart), chart: None, table })
 }
 
 fn swing(
@@ -337,14 +335,15 @@ fn swing(
     traces: &Traces,
     gear: &GearResult,
     index: usize,
-) -> Option<Drawing> {
+    sheet: Sheet,
+) -> Option<Picture> {
     let mut swing = traces.swings.iter().find(|swing| swing.gear == gear.name)?.clone();
     if swing.path.len() < 2 {
         return None;
     }
     swing.separatrix = separatrix::find(equations, result, index);
     let several = result.gears.len() > 1;
-    Some(swing_chart(&SwingChart {
+    let chart = SwingChart {
         id: if several { format!("swing_{}", gear.name) } else { "swing".to_owned() },
         title: format!("{}: slip speed over load angle", result.title),
         gear: if several { gear.name.replace('_', " ") } else { String::new() },
@@ -352,6 +351,8 @@ fn swing(
         peaks: gear.law_peaks,
         slips: gear.slip_events.iter().map(|slip| (slip.time, slip.direction)).collect(),
         in_step: gear.state_at_end == crate::results::GearState::Synchronous,
-        sheet: Sheet::PAGE,
-    }))
+        sheet,
+    };
+    let table = Some(plane_tables::swing(&chart));
+    Some(Picture { drawing: swing_chart(&chart), chart: None, table })
 }

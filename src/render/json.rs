@@ -1,6 +1,8 @@
 //! `summary.json`: the results of a run in SI and rad, for machines.
 
+use super::measured;
 use super::number::{json, json_optional};
+use crate::analysis::records::RecordComparison;
 use crate::results::{ChannelResult, GearResult, RequirementResult, RunResult};
 use serde_json::{Map, Value};
 use std::fmt::Write as _;
@@ -20,7 +22,7 @@ pub struct Origin<'a> {
 }
 
 /// The summary of a run.
-pub fn summary(result: &RunResult, origin: &Origin<'_>) -> Value {
+pub fn summary(result: &RunResult, records: &[RecordComparison], origin: &Origin<'_>) -> Value {
     let mut root = Map::new();
     let mut put = |key: &str, value: Value| {
         root.insert(key.to_owned(), value);
@@ -38,6 +40,9 @@ pub fn summary(result: &RunResult, origin: &Origin<'_>) -> Value {
     put("requirements", requirements(&result.requirements));
     put("energy", energy(result));
     put("motors", motors(result));
+    if !records.is_empty() {
+        put("measured", measured::to_json(records));
+    }
     put("warnings", warnings(result));
     put("solver", solver(result));
     Value::Object(root)

@@ -31,6 +31,11 @@ impl Table {
         self.rows.push(cells.iter().map(|cell| (*cell).to_owned()).collect());
     }
 
+    /// Adds a row of as many cells as the table has columns.
+    pub fn cells(&mut self, cells: Vec<String>) {
+        self.rows.push(cells);
+    }
+
     /// True without rows.
     pub fn is_empty(&self) -> bool {
         self.rows.is_empty()

@@ -1,8 +1,10 @@
 //! The summary of a run for people: verdicts first, then what happened and why.
 
+use super::measured;
 use super::shown::{self, Shown};
 use super::story;
 use super::table::{Table, wrap};
+use crate::analysis::records::RecordComparison;
 use crate::results::{RequirementResult, RunResult};
 use crate::scenario::Scenario;
 use std::fmt::Write as _;
@@ -22,6 +24,8 @@ pub struct Telling<'a> {
     pub output_folder: &'a str,
     /// The files in it.
     pub files: &'a [String],
+    /// Measured records against the run.
+    pub records: &'a [RecordComparison],
 }
 
 /// The summary of a run.
@@ -38,6 +42,7 @@ pub fn summary(scenario: &Scenario, result: &RunResult, telling: &Telling<'_>) -
     text.push_str(&gears(result, shown));
     text.push_str(&utilisation(scenario, result, shown));
     text.push_str(&peaks(result, shown));
+    text.push_str(&measured::text(telling.records, shown));
     text.push_str(&start_up(result));
     text.push_str(&bookkeeping(result));
     let warnings = match result.warnings.len() {
@@ -126,12 +131,7 @@ fn utilisation(scenario: &Scenario, result: &RunResult, shown: Shown<'_>) -> Str
         let largest = channel.max.abs().max(channel.min.abs());
         let of = |limit: Option<f64>, what: &str| {
             limit.map_or_else(String::new, |limit| {
-                let above = if largest > limit { " (above)" } else { "" };
-                format!(
-                    "{} of {what} {}{above}",
-                    shown::percent(largest / limit),
-                    shown.torque(limit)
-                )
+                format!("{} of {what} {}", shown::percent(largest / limit), shown.torque(limit))
             })
         };
         table.row([
@@ -186,7 +186,7 @@ fn start_up(result: &RunResult) -> String {
     for motor in &result.motors {
         let reached = match motor.run_up_time {
             Some(at) => format!("95 % of synchronous speed at {}", shown::time(at)),
-            None => "95 % of synchronous speed never reached".to_owned(),
+            None => "no run-up to 95 % of synchronous speed".to_owned(),
         };
         let heat = motor
             .rotor_heat

@@ -13,7 +13,7 @@ use std::collections::BTreeMap;
 const GROUND: &str = "ground";
 
 /// The sections whose entries are named by the user.
-const NAMED_SECTIONS: [&str; 13] = [
+const NAMED_SECTIONS: [&str; 14] = [
     "bodies",
     "shafts",
     "magnetic_gears",
@@ -26,6 +26,7 @@ const NAMED_SECTIONS: [&str; 13] = [
     "protections",
     "signals",
     "requirements",
+    "measured",
     "studies",
 ];
 
@@ -40,6 +41,7 @@ pub(super) fn check(scenario: &Scenario, node: &Node, faults: &mut Diagnostics) 
     if is_known("signals", node, faults) {
         signals::check(scenario, faults);
     }
+    super::records::check(scenario, faults);
     refuse_not_finite(node, faults);
 }
 

@@ -9,8 +9,9 @@ pub mod describe;
 mod load;
 mod locate;
 pub mod patch;
+mod records;
 mod sections;
-mod signals;
+pub mod signals;
 mod source;
 mod tables;
 mod yaml;
@@ -27,6 +28,7 @@ use crate::component::{
     gear_pair::GearPair,
     load::Load,
     magnetic_gear::{MagneticCoupling, MagneticGear},
+    measured::Measured,
     motor::Motor,
     planetary::PlanetaryGear,
     protection::Protection,
@@ -79,6 +81,8 @@ pub struct Scenario {
     pub signals: Vec<NamedSignal>,
     /// Requirements.
     pub requirements: Vec<Requirement>,
+    /// Measured records.
+    pub measured: Vec<Measured>,
     /// Studies as they stand in the file: name and tree.
     pub studies: Vec<(String, Node)>,
     /// All channels of the train, in file order.

@@ -8,6 +8,7 @@ use crate::component::channel::{self, Known, Section, Train};
 use crate::component::gear_pair::GearPair;
 use crate::component::load::Load;
 use crate::component::magnetic_gear::{MagneticCoupling, MagneticGear};
+use crate::component::measured::Measured;
 use crate::component::motor::Motor;
 use crate::component::planetary::PlanetaryGear;
 use crate::component::protection::{Protection, Surroundings};
@@ -84,7 +85,8 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
     let sound = !fields.faults().borrow().has_errors();
     let known = Known {
         channels: &channels,
-        complete: sound && !fields.has_unknown(&["protections", "requirements", "studies"]),
+        complete: sound
+            && !fields.has_unknown(&["protections", "requirements", "measured", "studies"]),
     };
     let faults = fields.faults();
     let protections = {
@@ -108,6 +110,11 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         fields.section("requirements", "What the run is judged by.", |requirement| {
             Requirement::read(requirement, known)
         });
+    let measured = fields.section(
+        "measured",
+        "Measured records, laid over the computed curves; no result depends on them.",
+        |record| Measured::read(record, known),
+    );
     let studies = read_studies(fields);
     Scenario {
         title,
@@ -130,6 +137,7 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         protections,
         signals,
         requirements,
+        measured,
         studies,
         channels,
     }

@@ -12,13 +12,58 @@ use crate::signal::course::SignalBank;
 
 /// What is asked of the values of a signal at a place.
 #[derive(Clone, Copy, Debug, PartialEq)]
-enum Bounds {
+pub enum Bounds {
     /// Anything.
     Free,
     /// Zero or more: a factor on what a law delivers.
     NotNegative,
+    /// Zero or more: the share of the rated voltage.
+    Voltage,
     /// From 0 to 1: how far a brake is pressed.
     Share,
+}
+
+impl Bounds {
+    /// The smallest and the largest value allowed.
+    pub fn limits(self) -> [f64; 2] {
+        match self {
+            Self::Free => [f64::NEG_INFINITY, f64::INFINITY],
+            Self::NotNegative | Self::Voltage => [0.0, f64::INFINITY],
+            Self::Share => [0.0, 1.0],
+        }
+    }
+
+    /// The rule in words.
+    pub fn rule(self) -> &'static str {
+        match self {
+            Self::Free => "any value is allowed",
+            Self::NotNegative => "a scale must not be negative",
+            Self::Voltage => "a voltage must not be negative",
+            Self::Share => "a brake is applied from 0 to 1",
+        }
+    }
+}
+
+/// The places whose values are bounded, by path; scales that the file leaves out are among them,
+/// since a protection may set them.
+pub fn bounded(scenario: &Scenario) -> Vec<(String, Bounds)> {
+    let mut places: Vec<(String, Bounds)> =
+        uses(scenario).into_iter().map(|place| (place.path, place.bounds)).collect();
+    let absent = scenario
+        .motors
+        .iter()
+        .filter(|motor| motor.scale.is_none())
+        .map(|motor| (format!("motors.{}.scale", motor.name), motor_bounds(motor)))
+        .chain(
+            scenario
+                .loads
+                .iter()
+                .filter(|load| load.scale.is_none())
+                .map(|load| (format!("loads.{}.scale", load.name), load_bounds(load))),
+        );
+    places.extend(absent);
+    places.retain(|(_, bounds)| *bounds != Bounds::Free);
+    places
 }
 
 /// A place where a signal stands.
@@ -30,7 +75,7 @@ struct Use<'a> {
 }
 
 /// Rounding that is no fault: a sine of 0.5 about 0.5 may come out a little below zero.
-const ROUNDING: f64 = 1e-9;
+pub const ROUNDING: f64 = 1e-9;
 
 /// Checks all signals of a scenario: their names, dimensions and values.
 pub(super) fn check(scenario: &Scenario, faults: &mut Diagnostics) {
@@ -59,7 +104,7 @@ fn check_values(scenario: &Scenario, uses: &[Use<'_>], faults: &mut Diagnostics)
     let mut bank: Option<SignalBank> = None;
     for place in uses.iter().filter(|place| place.bounds != Bounds::Free) {
         let (low, high) = if let Signal::Constant(value) = place.signal {
-            if place.bounds == Bounds::NotNegative {
+            if matches!(place.bounds, Bounds::NotNegative | Bounds::Voltage) {
                 continue; // Told when it was read.
             }
             (*value, *value)
@@ -77,6 +122,10 @@ fn check_values(scenario: &Scenario, uses: &[Use<'_>], faults: &mut Diagnostics)
                 place.path.as_str(),
                 format!("the scale reaches {}, but it must not be negative", shown(low)),
                 "`reversed: true` mirrors a law; only a prescribed torque may be scaled below zero",
+            ),
+            Bounds::Voltage if low < -ROUNDING => faults.error(
+                place.path.as_str(),
+                format!("the voltage reaches {}, but it must not be negative", shown(low)),
             ),
             Bounds::Share if low < -ROUNDING || high > 1.0 + ROUNDING => {
                 let outside = if low < -ROUNDING { low } else { high };
@@ -99,19 +148,28 @@ fn check_actions(scenario: &Scenario, faults: &mut Diagnostics) {
     for protection in &scenario.protections {
         for (index, action) in protection.then.iter().enumerate() {
             let Action::Set { signal, to, .. } = action else { continue };
+            let circuit = scenario.motors.iter().find(|motor| {
+                *signal == format!("motors.{}.scale", motor.name)
+                    && matches!(motor.law, MotorLaw::InductionCircuit { .. })
+            });
+            if circuit.is_some() {
+                faults.error_hint(
+                    format!("protections.{}.then.{index}.set", protection.name),
+                    "`scale` has no meaning for `induction_circuit`",
+                    "`law.induction_circuit.connected` switches it, `voltage` lowers its torque",
+                );
+                continue;
+            }
             let bounds = match places.iter().find(|place| place.path == *signal) {
                 Some(place) => place.bounds,
                 None if signal.ends_with(".scale") => scale_bounds(scenario, signal),
                 None => Bounds::Free,
             };
-            let fault = match bounds {
-                Bounds::NotNegative if *to < 0.0 => "a scale must not be negative",
-                Bounds::Share if !(0.0..=1.0).contains(to) && to.is_finite() => {
-                    "a brake is applied from 0 to 1"
-                }
-                _ => continue,
-            };
-            faults.error(format!("protections.{}.then.{index}.to", protection.name), fault);
+            let [low, high] = bounds.limits();
+            if to.is_finite() && !(low..=high).contains(to) {
+                let path = format!("protections.{}.then.{index}.to", protection.name);
+                faults.error(path, bounds.rule());
+            }
         }
     }
 }
@@ -148,6 +206,16 @@ fn warn_of_held_ends(path: &str, signal: &Signal, duration: f64, faults: &mut Di
         let (rows, path) = match inside {
             Signal::Points(rows) => (rows, format!("{path}.points")),
             Signal::Table { rows, .. } => (rows, format!("{path}.table.file")),
+            Signal::Turbulence(spectrum) if spectrum.period() < duration => {
+                faults.warning(
+                    format!("{path}.turbulence"),
+                    format!(
+                        "the wind repeats after {} s; a lower `highest_frequency` makes that longer",
+                        format_number(spectrum.period(), 4)
+                    ),
+                );
+                return;
+            }
             _ => return,
         };
         let (Some(first), Some(last)) = (rows.first(), rows.last()) else { return };
@@ -211,12 +279,8 @@ fn uses(scenario: &Scenario) -> Vec<Use<'_>> {
 
 fn motor_signals<'a>(path: &str, law: &'a MotorLaw, uses: &mut Vec<Use<'a>>) {
     let mut add = |law: &str, key: &str, signal, dimension| {
-        uses.push(Use {
-            path: format!("{path}.law.{law}.{key}"),
-            signal,
-            dimension,
-            bounds: Bounds::Free,
-        });
+        let bounds = if key == "voltage" { Bounds::Voltage } else { Bounds::Free };
+        uses.push(Use { path: format!("{path}.law.{law}.{key}"), signal, dimension, bounds });
     };
     match law {
         MotorLaw::RatingPlate { voltage, .. } => {
@@ -226,6 +290,10 @@ fn motor_signals<'a>(path: &str, law: &'a MotorLaw, uses: &mut Vec<Use<'a>>) {
         MotorLaw::Curve { voltage, .. } => add("curve", "voltage", voltage, Dimension::One),
         MotorLaw::Prescribed { torque } => add("prescribed", "torque", torque, Dimension::Torque),
         MotorLaw::SpeedLoop { speed, .. } => add("speed_loop", "speed", speed, Dimension::Speed),
+        MotorLaw::InductionCircuit { voltage, connected, .. } => {
+            add("induction_circuit", "voltage", voltage, Dimension::One);
+            add("induction_circuit", "connected", connected, Dimension::One);
+        }
         MotorLaw::OptimalPower { .. } => {}
     }
 }
@@ -245,10 +313,14 @@ fn load_signals<'a>(path: &str, law: &'a LoadLaw, uses: &mut Vec<Use<'a>>) {
             add("axial_rotor.flow", flow, Dimension::LinearSpeed);
             add("axial_rotor.pitch", pitch, Dimension::Angle);
         }
+        LoadLaw::Propeller { advance, .. } => {
+            add("propeller.advance", advance, Dimension::LinearSpeed);
+        }
         LoadLaw::PowerLaw { .. }
         | LoadLaw::Friction { .. }
         | LoadLaw::Viscous { .. }
-        | LoadLaw::Curve { .. } => {}
+        | LoadLaw::Curve { .. }
+        | LoadLaw::Periodic { .. } => {}
     }
 }
 
@@ -275,6 +347,10 @@ pub(super) fn each_with_table(scenario: &mut Scenario, look: &mut dyn FnMut(&str
             MotorLaw::Curve { voltage, .. } => ("curve.voltage", voltage),
             MotorLaw::Prescribed { torque } => ("prescribed.torque", torque),
             MotorLaw::SpeedLoop { speed, .. } => ("speed_loop.speed", speed),
+            MotorLaw::InductionCircuit { voltage, connected, .. } => {
+                visit(format!("{path}.law.induction_circuit.connected"), connected);
+                ("induction_circuit.voltage", voltage)
+            }
             MotorLaw::OptimalPower { .. } => continue,
         };
         visit(format!("{path}.law.{key}"), signal);
@@ -292,10 +368,14 @@ pub(super) fn each_with_table(scenario: &mut Scenario, look: &mut dyn FnMut(&str
                 visit(format!("{path}.law.axial_rotor.flow"), flow);
                 visit(format!("{path}.law.axial_rotor.pitch"), pitch);
             }
+            LoadLaw::Propeller { advance, .. } => {
+                visit(format!("{path}.law.propeller.advance"), advance);
+            }
             LoadLaw::PowerLaw { .. }
             | LoadLaw::Friction { .. }
             | LoadLaw::Viscous { .. }
-            | LoadLaw::Curve { .. } => {}
+            | LoadLaw::Curve { .. }
+            | LoadLaw::Periodic { .. } => {}
         }
     }
     for brake in &mut scenario.brakes {

@@ -1,4 +1,4 @@
-//! The CSV files that signals of a scenario name, each read once.
+//! The CSV files that signals and records of a scenario name, each read once.
 
 use super::Scenario;
 use crate::diagnostic::Diagnostics;
@@ -22,6 +22,8 @@ struct Table {
     file: String,
     columns: TableColumns,
     rows: Result<Vec<[f64; 2]>, String>,
+    /// True when a signal follows it: results depend on it.
+    followed: bool,
 }
 
 impl Tables {
@@ -33,7 +35,7 @@ impl Tables {
     /// Gives every table signal of a scenario its rows.
     pub(super) fn fill(&mut self, scenario: &mut Scenario, faults: &mut Diagnostics) {
         let mut load =
-            |path: &str, file: &str, columns: &TableColumns| match self.rows(file, columns) {
+            |path: &str, file: &str, columns: &TableColumns| match self.rows(file, columns, true) {
                 Ok(rows) => rows,
                 Err(message) => {
                     faults.error(path, message);
@@ -42,19 +44,36 @@ impl Tables {
             };
         let mut fill = |path: &str, signal: &mut Signal| signal.load_tables(path, &mut load);
         super::signals::each_with_table(scenario, &mut fill);
+        for record in &mut scenario.measured {
+            let named = [&record.file, &record.columns.time, &record.columns.value];
+            if named.iter().any(|text| text.is_empty()) {
+                continue;
+            }
+            match self.rows(&record.file, &record.columns, false) {
+                Ok(rows) => record.fill(&rows),
+                Err(message) => faults.error(format!("measured.{}.file", record.name), message),
+            }
+        }
     }
 
-    /// Shows every row read so far.
+    /// Shows every row read so far that results depend on.
     pub fn each_row(&self, take: &mut dyn FnMut(&[f64; 2])) {
-        for row in self.read.iter().filter_map(|table| table.rows.as_ref().ok()).flatten() {
+        let followed = self.read.iter().filter(|table| table.followed);
+        for row in followed.filter_map(|table| table.rows.as_ref().ok()).flatten() {
             take(row);
         }
     }
 
-    fn rows(&mut self, file: &str, columns: &TableColumns) -> Result<Vec<[f64; 2]>, String> {
+    fn rows(
+        &mut self,
+        file: &str,
+        columns: &TableColumns,
+        followed: bool,
+    ) -> Result<Vec<[f64; 2]>, String> {
         if let Some(known) =
-            self.read.iter().find(|table| table.file == file && table.columns == *columns)
+            self.read.iter_mut().find(|table| table.file == file && table.columns == *columns)
         {
+            known.followed |= followed;
             return known.rows.clone();
         }
         let rows = read_text(&self.base.join(file))
@@ -67,6 +86,7 @@ impl Tables {
             file: file.to_owned(),
             columns: columns.clone(),
             rows: rows.clone(),
+            followed,
         });
         rows
     }

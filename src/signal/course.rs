@@ -172,6 +172,7 @@ impl SignalBank {
             Signal::Sine { mean, amplitude, frequency, phase } => {
                 Shape::sine(*mean, *amplitude, *frequency, *phase)
             }
+            Signal::Turbulence(spectrum) => Shape::turbulence(spectrum),
             Signal::ExtremeGust { start, hub_wind, magnitude } => {
                 Shape::gust(*start, *hub_wind, *magnitude)
             }

@@ -26,17 +26,76 @@ impl SignalBank {
         }
     }
 
+    /// The first time between `from` and `to` at which the value lies outside `low..=high`, and
+    /// the value farthest outside before the next kink; `None` when it never does.
+    ///
+    /// Jumps are found exactly, crossings of smooth branches by bisection.
+    pub fn first_outside(
+        &self,
+        id: SlotId,
+        [from, to]: [f64; 2],
+        [low, high]: [f64; 2],
+        o: &Overrides,
+    ) -> Option<(f64, f64)> {
+        let is_outside = |value: f64| value < low || value > high;
+        let mut start = from;
+        loop {
+            let end = self.next_kink_of(id, start, o).unwrap_or(to).min(to);
+            let mut range = (f64::INFINITY, f64::NEG_INFINITY);
+            self.widen(id, start, end, o, &mut range);
+            let farthest = if range.0 < low { range.0 } else { range.1 };
+            let value = |time: f64| self.value_in(id, time, start, o);
+            if is_outside(value(start)) {
+                return Some((start, farthest));
+            }
+            if is_outside(farthest) {
+                let count = self.samples(id, start, end, o).max(1.0) * 4.0;
+                let step = (end - start) / count;
+                let mut inside = start;
+                for index in 1..=count as usize {
+                    let mut outside = (start + step * index as f64).min(end);
+                    if is_outside(value(outside)) {
+                        for _ in 0..60 {
+                            let middle = 0.5 * (inside + outside);
+                            if is_outside(value(middle)) {
+                                outside = middle;
+                            } else {
+                                inside = middle;
+                            }
+                        }
+                        return Some((outside, farthest));
+                    }
+                    inside = outside;
+                }
+                // It peeps out between two samples only: the branch is refused as a whole.
+                return Some((start, farthest));
+            }
+            if end >= to {
+                return None;
+            }
+            start = end;
+        }
+    }
+
+    /// Samples that show how a branch between two kinks bends; 0 where it is straight.
+    fn samples(&self, id: SlotId, start: f64, end: f64, o: &Overrides) -> f64 {
+        match self.step_cap_of(id, start, end, o) {
+            Some(cap) => ((end - start) / cap * SAMPLES_A_CAP).ceil().clamp(8.0, MOST_SAMPLES),
+            None if self.bends(id, start, end, o) => BENT_SAMPLES,
+            None => 0.0,
+        }
+    }
+
     /// Widens `range` by the values of the branch between two kinks.
     fn widen(&self, id: SlotId, start: f64, end: f64, o: &Overrides, range: &mut (f64, f64)) {
         let value = |t: f64| self.value_in(id, t, start, o);
         let mut include = |value: f64| *range = (range.0.min(value), range.1.max(value));
         include(value(start));
         include(value(end));
-        let count = match self.step_cap_of(id, start, end, o) {
-            Some(cap) => ((end - start) / cap * SAMPLES_A_CAP).ceil().clamp(8.0, MOST_SAMPLES),
-            None if self.bends(id, start, end, o) => BENT_SAMPLES,
-            None => return,
-        };
+        let count = self.samples(id, start, end, o);
+        if count == 0.0 {
+            return;
+        }
         let step = (end - start) / count;
         let place = |index: f64| (start + step * index).clamp(start, end);
         let samples = (0..=count as usize).map(|index| (index as f64, value(place(index as f64))));

@@ -10,7 +10,7 @@ use super::conditions::Conditions;
 use super::guards::{self, Guard};
 use super::observer::Observer;
 use super::traces::Tracer;
-use crate::component::channel::{ChannelKind, MagneticChannel};
+use crate::component::channel::ChannelKind;
 use crate::equations::frame::{Counters, Evaluator, Frame};
 use crate::equations::mode::Mode;
 use std::f64::consts::{PI, TAU};
@@ -23,6 +23,20 @@ const PATIENCE: u32 = 16;
 
 /// Largest growth of an extreme that may be missed, as a share of the tolerance times the channel's size.
 const SLACK: f64 = 1e-3;
+
+/// A step that moves every state by less, in scaled units, has the powers of its end all along.
+const REST: f64 = 1e-11;
+
+/// How quiet a step is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Quiet {
+    /// Something may happen.
+    No,
+    /// It lies inside the region.
+    Calm,
+    /// It lies inside the region, and hardly moves.
+    Rest,
+}
 
 /// The region, when there is one.
 pub struct Calm {
@@ -62,27 +76,34 @@ impl Calm {
         self.active = false;
     }
 
-    /// True when the whole step lies inside the region.
+    /// How quiet a step is.
     #[inline]
-    pub fn inside(
+    pub fn look(
         &self,
         h: f64,
         first: &[f64],
         first_rate: &[f64],
         last: &[f64],
         last_rate: &[f64],
-    ) -> bool {
+    ) -> Quiet {
         if !self.active {
-            return false;
+            return Quiet::No;
         }
         let reach = 4.0 / 27.0 * h;
+        let ends = first.iter().zip(last).zip(first_rate.iter().zip(last_rate));
         let mut inside = true;
-        for place in 0..first.len() {
-            let beyond = reach * (first_rate[place].abs() + last_rate[place].abs());
-            let (a, b) = (first[place], last[place]);
-            inside &= a.min(b) - beyond >= self.low[place] && a.max(b) + beyond <= self.high[place];
+        let mut most = 0.0;
+        for (((a, b), (first, last)), (low, high)) in ends.zip(self.low.iter().zip(&self.high)) {
+            let beyond = reach * (first.abs() + last.abs());
+            let (lower, upper) = if a < b { (a, b) } else { (b, a) };
+            inside &= (lower - beyond >= *low) & (upper + beyond <= *high);
+            most = if beyond > most { beyond } else { most };
         }
-        inside
+        match inside {
+            false => Quiet::No,
+            true if most < REST => Quiet::Rest,
+            true => Quiet::Calm,
+        }
     }
 
     /// Notes the channels of the reference in every column that a calm stretch passes.
@@ -135,7 +156,6 @@ impl Calm {
         probe.values(state, &mut frame, &mut centre, Some(&mut slack));
         self.values.clone_from(&frame.channels);
         let size = state.len();
-        let mut reach = vec![self.widest; centre.len()];
         let mut slopes = vec![vec![0.0_f64; size]; centre.len()];
         let mut moved = state.to_vec();
         let mut values = Vec::new();
@@ -160,7 +180,6 @@ impl Calm {
                         f64::min(width[place], slack / (2.0 * used as f64 * slopes[index][place]));
                 }
             }
-            reach[index] = *slack;
         }
         let still = rate.iter().zip(&width).all(|(rate, width)| (rate * step).abs() < 0.25 * width);
         if !still {
@@ -213,9 +232,6 @@ impl Probe<'_, '_> {
             if matches!(kind, ChannelKind::BodySpeed(_)) {
                 values.push(value);
                 room.push(value.abs() + free);
-            }
-            if let ChannelKind::Magnetic(magnet, MagneticChannel::SlipSpeed) = kind {
-                let _ = magnet;
             }
         }
         for (index, &place) in equations.phase_state.iter().enumerate() {

@@ -48,43 +48,46 @@ impl DenseStep {
     ) {
         let size = self.first.len();
         let h = self.length;
-        let difference: Vec<f64> = (0..size).map(|i| self.last[i] - self.first[i]).collect();
-        let bend: Vec<f64> = (0..size).map(|i| h * self.first_rate[i] - difference[i]).collect();
-        let close: Vec<f64> =
-            (0..size).map(|i| difference[i] - h * self.last_rate[i] - bend[i]).collect();
-        self.coefficients.clear();
-        self.coefficients.extend([difference, bend, close]);
+        let count = match method {
+            Method::Rk4 => 3,
+            Method::Dopri5 => 4,
+            Method::Dop853 => 7,
+        };
+        self.coefficients.resize(count, Vec::new());
+        for row in &mut self.coefficients {
+            row.clear();
+        }
+        for i in 0..size {
+            let difference = self.last[i] - self.first[i];
+            let bend = h * self.first_rate[i] - difference;
+            self.coefficients[0].push(difference);
+            self.coefficients[1].push(bend);
+            self.coefficients[2].push(difference - h * self.last_rate[i] - bend);
+        }
         match method {
             Method::Rk4 => self.kind = Kind::Cubic,
             Method::Dopri5 => {
                 self.kind = Kind::Quartic;
-                let quartic = (0..size)
-                    .map(|i| {
-                        let inner: f64 =
-                            stages.iter().zip(&dopri5::D).map(|(stage, d)| d * stage[i]).sum();
-                        h * (inner + dopri5::D[6] * self.last_rate[i])
-                    })
-                    .collect();
-                self.coefficients.push(quartic);
+                let last_rate = &self.last_rate;
+                self.coefficients[3].extend((0..size).map(|i| {
+                    let inner: f64 =
+                        stages.iter().zip(&dopri5::D).map(|(stage, d)| d * stage[i]).sum();
+                    h * (inner + dopri5::D[6] * last_rate[i])
+                }));
             }
             Method::Dop853 => {
                 self.kind = Kind::Septic;
                 let more = self.more_stages(stages, rates);
-                for weights in &dop853::D {
-                    let row = (0..size)
-                        .map(|i| {
-                            let own: f64 =
-                                stages.iter().zip(weights).map(|(stage, d)| d * stage[i]).sum();
-                            let end = weights[12] * self.last_rate[i];
-                            let extra: f64 = more
-                                .iter()
-                                .zip(&weights[13..])
-                                .map(|(stage, d)| d * stage[i])
-                                .sum();
-                            h * (own + end + extra)
-                        })
-                        .collect();
-                    self.coefficients.push(row);
+                let last_rate = &self.last_rate;
+                for (weights, row) in dop853::D.iter().zip(&mut self.coefficients[3..]) {
+                    row.extend((0..size).map(|i| {
+                        let own: f64 =
+                            stages.iter().zip(weights).map(|(stage, d)| d * stage[i]).sum();
+                        let end = weights[12] * last_rate[i];
+                        let extra: f64 =
+                            more.iter().zip(&weights[13..]).map(|(stage, d)| d * stage[i]).sum();
+                        h * (own + end + extra)
+                    }));
                 }
             }
         }

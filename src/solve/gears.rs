@@ -7,6 +7,12 @@ use crate::equations::{Equations, dot};
 use crate::results::{GearState, SlipEvent};
 use std::f64::consts::{PI, TAU};
 
+/// Most electrical turns of a phase within one step: beyond them the curve between its ends means nothing.
+const MOST_TURNS: f64 = 1e5;
+
+/// Most slips of one gear in a run; each is kept.
+const MOST_SLIPS: usize = 10_000_000;
+
 /// A place in a step where a phase crosses an odd multiple of pi or a peak.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct GearCrossing {
@@ -119,6 +125,40 @@ impl GearTrack {
     }
 }
 
+/// Says which magnet turns too far within a step, or has slipped too often, for the run to go on.
+///
+/// `first` and `last` are state and rate at the ends of the step.
+pub fn runaway(
+    equations: &Equations,
+    tracks: &[GearTrack],
+    length: f64,
+    first: [&[f64]; 2],
+    last: [&[f64]; 2],
+) -> Option<String> {
+    for ((magnet, &place), track) in
+        equations.model.magnets.iter().zip(&equations.phase_state).zip(tracks)
+    {
+        let name = &magnet.name;
+        let turns = equations.scale[place] / TAU;
+        let moved = (last[0][place] - first[0][place]).abs();
+        let swept = length * first[1][place].abs().max(last[1][place].abs());
+        // Written so that a value that is no number counts as too far.
+        let within = moved * turns <= MOST_TURNS && swept * turns <= MOST_TURNS;
+        if !within {
+            return Some(format!(
+                "`{name}` runs away: it turns by more than {MOST_TURNS} poles within a step of {length:e} s; \
+                 look at torques, inertias and their units"
+            ));
+        }
+        if track.slips.len() >= MOST_SLIPS {
+            return Some(format!(
+                "`{name}` has slipped {MOST_SLIPS} times; end the run earlier (a protection with `end_run`)"
+            ));
+        }
+    }
+    None
+}
+
 /// All crossings of one step in order of time.
 ///
 /// Each phase is cut at its turning points (where its rate changes sign between two of `shares`),
@@ -130,12 +170,12 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
         equations.model.magnets.iter().zip(&equations.phase_state).enumerate()
     {
         let scale = equations.scale[place];
-        let row = equations.speed_row(&magnet.row());
+        let row = &equations.phase_rows[index];
         let mut knots: Vec<(f64, f64)> = Vec::with_capacity(shares.len() + 2);
         let mut before: Option<(f64, f64)> = None;
         for &share in shares {
             step.state(share, &mut state);
-            let rate = dot(&row, &state);
+            let rate = dot(row, &state);
             let phase = state[place] * scale;
             if let Some((last_share, last_rate)) = before {
                 if last_rate * rate < 0.0 {
@@ -144,7 +184,7 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
                         share,
                         |place| {
                             step.state(place, &mut state);
-                            dot(&row, &state) * last_rate.signum()
+                            dot(row, &state) * last_rate.signum()
                         },
                         1e-12,
                     );
@@ -162,17 +202,22 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
                 continue;
             }
             let direction = if high > low { 1 } else { -1 };
-            let mut targets: Vec<(f64, bool, bool)> = Vec::new();
             let (bottom, top) = (low.min(high), low.max(high));
+            // The curve between the ends of a step may still leave all reason.
+            if !(top.abs().max(bottom.abs()) <= 1e15 && top - bottom <= 10.0 * TAU * MOST_TURNS) {
+                continue;
+            }
             let first_well = ((bottom - PI) / TAU).floor() as i64 - 1;
             let last_well = ((top + PI) / TAU).ceil() as i64 + 1;
-            for well in first_well..=last_well {
+            let peak_short = |is_upper: bool| (direction > 0) != is_upper;
+            let targets = (first_well..=last_well).flat_map(|well| {
                 let centre = TAU * well as f64;
-                let peak_short = |is_upper: bool| (direction > 0) != is_upper;
-                targets.push((centre + PI, true, false));
-                targets.push((centre + peaks[0], false, peak_short(false)));
-                targets.push((centre + peaks[1], false, peak_short(true)));
-            }
+                [
+                    (centre + PI, true, false),
+                    (centre + peaks[0], false, peak_short(false)),
+                    (centre + peaks[1], false, peak_short(true)),
+                ]
+            });
             for (target, is_slip, short) in targets {
                 // The load angle lies in (-pi, pi]: the target itself belongs to the side below it.
                 let crossed = if direction > 0 {
@@ -194,7 +239,7 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
                     1e-15,
                 );
                 step.state(share, &mut state);
-                let slip_speed = dot(&row, &state);
+                let slip_speed = dot(row, &state);
                 found.push(GearCrossing {
                     share,
                     magnet: index,

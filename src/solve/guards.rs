@@ -1,10 +1,9 @@
 //! Functions whose sign change stops the run: the equations change there.
 
 use super::conditions::Conditions;
-use crate::component::law::Law;
+use crate::equations::dot;
 use crate::equations::frame::{Evaluator, Frame};
 use crate::equations::mode::{Contact, FrictionMode, Mode};
-use crate::equations::{Shape, dot};
 use std::f64::consts::{PI, TAU};
 
 /// A guard trips when it falls below minus this; guards are scaled to working values of about 1.
@@ -45,13 +44,15 @@ pub fn list(
     let equations = evaluator.equations;
     let mut guards = Vec::new();
     for active in &evaluator.assembly.active {
-        let Some(term) = equations.terms.get(active.place) else { continue };
-        let Shape::Law(law) = &term.shape else { continue };
-        let (piece, count) = (mode.pieces[active.place], law.boundaries().len());
-        if piece > 0 {
+        let Some(law) = equations.law_at(active.place) else { continue };
+        let Some(&piece) = mode.pieces.get(active.place) else { continue };
+        // At standstill a sliding element is watched by its own guard.
+        let counts = |bound: &f64| active.place < equations.terms.len() || *bound != 0.0;
+        let bounds = law.boundaries();
+        if piece.checked_sub(1).and_then(|below| bounds.get(below)).is_some_and(counts) {
             guards.push(Guard::Lower(active.place));
         }
-        if piece < count {
+        if bounds.get(piece).is_some_and(counts) {
             guards.push(Guard::Upper(active.place));
         }
     }
@@ -97,19 +98,18 @@ pub fn value(
 ) -> f64 {
     let equations = evaluator.equations;
     let boundary = |term: usize, place: usize| -> f64 {
-        match &equations.terms[term].shape {
-            Shape::Law(law) => law.boundaries().get(place).copied().unwrap_or(0.0),
-            Shape::Linear => 0.0,
-        }
+        equations.law_at(term).and_then(|law| law.boundaries().get(place)).copied().unwrap_or(0.0)
     };
     match guard {
         Guard::Lower(term) => {
             let edge = boundary(term, mode.pieces[term] - 1);
-            (frame.inputs[term] - edge) / equations.terms[term].input_size
+            let (place, size) = evaluator.place_on_axis(term, frame);
+            (place - edge) / size
         }
         Guard::Upper(term) => {
             let edge = boundary(term, mode.pieces[term]);
-            (edge - frame.inputs[term]) / equations.terms[term].input_size
+            let (place, size) = evaluator.place_on_axis(term, frame);
+            (edge - place) / size
         }
         Guard::Slide(index) => {
             let friction = &equations.frictions[index];
@@ -173,9 +173,4 @@ pub fn flank(evaluator: &Evaluator<'_>, shaft: usize, state: &[f64], side: f64) 
     let row = equations.speed_row(&model.row());
     let torque = model.stiffness * overlap + model.damping * side * dot(&row, state);
     (overlap / scale).min(torque / (model.stiffness * scale))
-}
-
-/// True when a law is the torque of a magnet.
-pub fn is_magnet(shape: &Shape) -> bool {
-    matches!(shape, Shape::Law(Law::Magnet(_)))
 }

@@ -1,12 +1,15 @@
 //! The run in time: segments, located events, one observer that streams.
 
+pub mod audit;
 pub mod calm;
 pub mod conditions;
 pub mod dense;
 pub mod extremes;
+mod flat;
 pub mod gears;
 pub mod guards;
 pub mod integrate;
+pub mod limits;
 pub mod locate;
 pub mod observer;
 pub mod outcome;
@@ -22,6 +25,7 @@ pub mod traces;
 pub mod turning;
 pub mod watcher;
 mod watcher_steps;
+mod window_steps;
 pub mod windows;
 
 use std::sync::atomic::AtomicBool;

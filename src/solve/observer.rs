@@ -1,9 +1,9 @@
 //! The one observer of a run: extremes, verdicts, slips, rows and traces from the continuous solution.
 
+use super::audit::Powers;
 use super::dense::DenseStep;
 use super::extremes::{Extreme, gear_event, refine};
 use super::gears::{GearTrack, crossings};
-use super::rhs::Powers;
 use super::sampling::{Sample, StepView};
 use super::traces::Tracer;
 use super::turning::TurningWatch;
@@ -47,6 +47,7 @@ pub struct Observer<'a> {
     wraps: Vec<bool>,
     samples: Vec<Sample>,
     scratch: Sample,
+    sums: Vec<f64>,
     names: Vec<String>,
 }
 
@@ -143,6 +144,7 @@ impl<'a> Observer<'a> {
                 .collect(),
             samples: Vec::new(),
             scratch: Sample::default(),
+            sums: Vec::new(),
             names: scenario
                 .requirements
                 .iter()
@@ -195,6 +197,15 @@ impl<'a> Observer<'a> {
         self.scratch = scratch;
     }
 
+    /// Takes the values from the right at the end of the run: a jump there has two sides like any other.
+    pub fn finish(&mut self, evaluator: &Evaluator<'_>, time: f64, state: &[f64]) {
+        let last: Vec<f64> = self.extremes.iter().map(|extreme| extreme.last).collect();
+        self.begin(evaluator, time, state);
+        for (extreme, last) in self.extremes.iter_mut().zip(last) {
+            extreme.last = last;
+        }
+    }
+
     fn note_all(&mut self, time: f64, channels: &[f64]) {
         for &channel in &self.wanted {
             self.extremes[channel].note(channels[channel], time);
@@ -226,8 +237,8 @@ impl<'a> Observer<'a> {
     pub fn step(&mut self, evaluator: Evaluator<'_>, step: &DenseStep, inner: usize) {
         let shares = self.shares(step, inner);
         let found = crossings(evaluator.equations, step, &shares);
-        let scale = self.speed_scale.clone();
-        let counters = self.counters.clone();
+        let scale = std::mem::take(&mut self.speed_scale);
+        let counters = std::mem::take(&mut self.counters);
         let view =
             StepView { step, evaluator, counters: &counters, crossings: found, scale: &scale };
         let mut samples = std::mem::take(&mut self.samples);
@@ -236,11 +247,11 @@ impl<'a> Observer<'a> {
             view.sample(*share, Some(&self.wanted), sample);
         }
         let mut scratch = std::mem::take(&mut self.scratch);
+        self.note_slips(&view, &mut scratch);
         for sample in &samples {
             self.note_all(sample.time, &sample.frame.channels);
         }
-        for (position, &channel) in self.wanted.iter().enumerate() {
-            let _ = position;
+        for &channel in &self.wanted {
             if !self.discrete[channel] {
                 let wraps = self.wraps[channel];
                 refine(&mut self.extremes[channel], &view, &samples, channel, wraps, &mut scratch);
@@ -258,23 +269,32 @@ impl<'a> Observer<'a> {
             window.step(&view, &samples, &mut scratch, &mut self.events, name);
         }
         self.rows_in(&view, &mut scratch);
-        self.counters = view.counters_at(1.0);
+        view.counters_at(1.0, &mut self.counters, &mut self.sums);
+        self.speed_scale = scale;
         self.samples = samples;
         self.scratch = scratch;
+    }
+
+    /// Counts change at the slips themselves.
+    fn note_slips(&mut self, view: &StepView<'_>, scratch: &mut Sample) {
+        for crossing in view.crossings.iter().filter(|crossing| crossing.is_slip) {
+            let time = view.step.time(crossing.share);
+            for &channel in self.wanted.iter().filter(|channel| self.discrete[**channel]) {
+                let value = view.channel(channel, crossing.share, scratch);
+                self.extremes[channel].note(value, time);
+            }
+        }
     }
 
     fn trace(&mut self, view: &StepView<'_>, sample: &Sample) {
         let Some(tracer) = &mut self.tracer else { return };
         tracer.note(sample.time, &sample.frame.channels);
         let equations = view.evaluator.equations;
-        let wells = &self.counters.wells;
+        let wells = &view.counters.wells;
         tracer.swing(&|magnet| {
             let place = equations.phase_state[magnet];
             let phase = sample.state[place] * equations.scale[place];
-            let rate = crate::equations::dot(
-                &equations.speed_row(&equations.model.magnets[magnet].row()),
-                &sample.state,
-            );
+            let rate = crate::equations::dot(&equations.phase_rows[magnet], &sample.state);
             [sample.time, phase + std::f64::consts::TAU * wells[magnet] as f64, rate]
         });
     }
@@ -323,14 +343,23 @@ impl<'a> Observer<'a> {
         for (index, track) in self.gears.iter_mut().enumerate() {
             let place = equations.phase_state[index];
             let scale = equations.scale[place];
-            let mut turning = Vec::new();
             for sample in &self.samples {
-                turning.push((sample.time, load_angle(sample.state[place] * scale)));
-            }
-            for (time, angle) in turning {
-                track.note_angle(angle, time);
+                track.note_angle(load_angle(sample.state[place] * scale), sample.time);
             }
         }
+    }
+
+    /// Takes the rows of a step in which nothing else can happen.
+    pub fn rows_only(&mut self, evaluator: Evaluator<'_>, step: &DenseStep) {
+        let scale = std::mem::take(&mut self.speed_scale);
+        let counters = std::mem::take(&mut self.counters);
+        let view =
+            StepView { step, evaluator, counters: &counters, crossings: Vec::new(), scale: &scale };
+        let mut scratch = std::mem::take(&mut self.scratch);
+        self.rows_in(&view, &mut scratch);
+        view.counters_at(1.0, &mut self.counters, &mut self.sums);
+        self.speed_scale = scale;
+        self.scratch = scratch;
     }
 
     fn rows_in(&mut self, view: &StepView<'_>, scratch: &mut Sample) {

@@ -28,12 +28,12 @@ pub fn presence(
     overrides: &Overrides,
 ) {
     for (index, friction) in equations.frictions.iter().enumerate() {
-        let absent =
-            friction.factor.slots.iter().any(|(slot, _)| {
+        let absent = friction.breakaway == 0.0
+            || friction.factor.slots.iter().any(|(slot, _)| {
                 equations.bank.constant_on(*slot, time, end, overrides) == Some(0.0)
             });
         let speed = dot(&friction.speed, state);
-        mode.frictions[index] = match (absent, mode.frictions[index]) {
+        let friction = match (absent, mode.frictions[index]) {
             (true, _) => FrictionMode::Absent,
             (false, FrictionMode::Absent) if speed.abs() > REST * friction.speed_size => {
                 FrictionMode::sliding(speed)
@@ -41,6 +41,7 @@ pub fn presence(
             (false, FrictionMode::Absent) => FrictionMode::Stuck,
             (false, other) => other,
         };
+        mode.set_friction(equations, index, friction, state);
     }
 }
 
@@ -61,11 +62,12 @@ pub fn resolve(
     for (index, friction) in equations.frictions.iter().enumerate() {
         if mode.frictions[index] != FrictionMode::Absent {
             let speed = dot(&friction.speed, state);
-            mode.frictions[index] = if speed.abs() <= REST * friction.speed_size {
+            let judged = if speed.abs() <= REST * friction.speed_size {
                 FrictionMode::Stuck
             } else {
                 FrictionMode::sliding(speed)
             };
+            mode.set_friction(equations, index, judged, state);
         }
     }
     let mut refused: Vec<usize> = Vec::new();
@@ -89,14 +91,14 @@ pub fn resolve(
         let size = assembly.stuck_compliance[(line, line)] * evaluator.limit(index, time);
         let mut released = false;
         for torque in [holding.torque[line], -holding.torque[line]] {
-            mode.frictions[index] = FrictionMode::sliding(-torque);
+            mode.set_friction(equations, index, FrictionMode::sliding(-torque), state);
             if accelerates(equations, mode, index, size, time, end, state, overrides) {
                 released = true;
                 break;
             }
         }
         if !released {
-            mode.frictions[index] = FrictionMode::Stuck;
+            mode.set_friction(equations, index, FrictionMode::Stuck, state);
             refused.push(index);
         }
     }

@@ -1,82 +1,42 @@
 //! The right-hand side as the library calls it, with what the observer needs of each call.
 
-use crate::equations::assembly::{Active, Assembly, Function, Matrix, Strength};
+use super::audit::Audit;
+use super::flat::Flat;
+use crate::equations::assembly::Matrix;
+use crate::equations::dot;
 use crate::equations::frame::Evaluator;
-use crate::equations::{PowerKind, dot};
 use std::cell::{Cell, RefCell};
 
 /// Calls kept: the twelve stages of the longest method and its rate at the end.
 const RING: usize = 16;
 
-/// The powers of one evaluation, W.
-#[derive(Clone, Copy, Debug, Default, PartialEq)]
-pub struct Powers {
-    /// Positive power of motors and loads.
-    pub supplied: f64,
-    /// Negative power of motors and loads, as a positive number.
-    pub absorbed: f64,
-    /// Turned to heat.
-    pub lost: f64,
-}
-
-impl Powers {
-    /// Adds `weight` times another evaluation's powers.
-    pub fn add(&mut self, weight: f64, other: &Powers) {
-        self.supplied += weight * other.supplied;
-        self.absorbed += weight * other.absorbed;
-        self.lost += weight * other.lost;
-    }
-
-    #[inline]
-    fn drive(&mut self, power: f64) {
-        if power >= 0.0 {
-            self.supplied += power;
-        } else {
-            self.absorbed -= power;
-        }
-    }
-}
-
-/// The last calls: rates and powers.
+/// The last calls, each a record `[state | rates | law values]`, the first two padded.
 pub struct Ring {
-    size: usize,
+    width: usize,
+    length: usize,
     next: usize,
-    rates: Vec<f64>,
-    powers: [Powers; RING],
-    heat_count: usize,
-    heats: Vec<f64>,
+    records: Vec<f64>,
     /// All calls so far.
     pub calls: u64,
 }
 
 impl Ring {
-    fn new(size: usize, heat_count: usize) -> Self {
-        Self {
-            size,
-            next: 0,
-            rates: vec![0.0; size * RING],
-            powers: [Powers::default(); RING],
-            heat_count,
-            heats: vec![0.0; heat_count * RING],
-            calls: 0,
-        }
+    fn new(width: usize, laws: usize) -> Self {
+        let length = 2 * width + laws;
+        Self { width, length, next: 0, records: vec![0.0; length * RING], calls: 0 }
     }
 
-    /// Rotor heats of the call `back` calls ago, W.
-    pub fn heats(&self, back: usize) -> &[f64] {
+    /// The record of the call `back` calls ago; 0 is the last one.
+    #[inline]
+    pub fn record(&self, back: usize) -> &[f64] {
         let place = (self.next + RING - 1 - back) % RING;
-        &self.heats[place * self.heat_count..(place + 1) * self.heat_count]
+        &self.records[place * self.length..(place + 1) * self.length]
     }
 
-    /// Rates of the call `back` calls ago; 0 is the last one.
+    /// Rates of the call `back` calls ago, zeros behind the state's length.
+    #[inline]
     pub fn rates(&self, back: usize) -> &[f64] {
-        let place = (self.next + RING - 1 - back) % RING;
-        &self.rates[place * self.size..(place + 1) * self.size]
-    }
-
-    /// Powers of the call `back` calls ago.
-    pub fn powers(&self, back: usize) -> &Powers {
-        &self.powers[(self.next + RING - 1 - back) % RING]
+        &self.record(back)[self.width..2 * self.width]
     }
 }
 
@@ -84,7 +44,9 @@ impl Ring {
 pub struct Rhs<'a> {
     /// What it evaluates.
     pub evaluator: Evaluator<'a>,
-    constant: bool,
+    /// Which products of a record are powers.
+    pub audit: Audit,
+    flat: Flat,
     ring: RefCell<Ring>,
     fault: Cell<Option<(f64, usize)>>,
 }
@@ -92,10 +54,10 @@ pub struct Rhs<'a> {
 impl<'a> Rhs<'a> {
     /// The right-hand side of an evaluator's assembly.
     pub fn new(evaluator: Evaluator<'a>) -> Self {
-        let constant = !evaluator.assembly.varies;
-        let ring =
-            RefCell::new(Ring::new(evaluator.equations.size, evaluator.equations.heats.len()));
-        Self { evaluator, constant, ring, fault: Cell::new(None) }
+        let flat = Flat::new(&evaluator);
+        let audit = Audit::new(&evaluator, flat.width);
+        let ring = RefCell::new(Ring::new(flat.width, evaluator.assembly.active.len()));
+        Self { evaluator, audit, flat, ring, fault: Cell::new(None) }
     }
 
     /// The last calls.
@@ -108,114 +70,52 @@ impl<'a> Rhs<'a> {
         self.fault.get()
     }
 
-    /// Rates of the scaled state; the call is remembered.
+    /// Rates of the scaled state; the call is remembered. Both may be padded with zeros.
     #[inline(always)]
     pub fn system(&self, time: f64, state: &[f64], rates: &mut [f64]) {
-        let mut ring = self.ring.borrow_mut();
-        let span = ring.next * ring.heat_count..(ring.next + 1) * ring.heat_count;
-        let powers = self.rates(time, state, rates, &mut ring.heats[span]);
-        let mut sum = 0.0;
-        for rate in rates.iter() {
-            sum += rate;
-        }
-        if !sum.is_finite() && self.fault.get().is_none() {
-            let place = rates.iter().position(|rate| !rate.is_finite()).unwrap_or(0);
-            self.fault.set(Some((time, place)));
-        }
-        let (place, size) = (ring.next, rates.len());
-        ring.rates[place * size..(place + 1) * size].copy_from_slice(rates);
-        ring.powers[place] = powers;
-        ring.next = (place + 1) % RING;
-        ring.calls += 1;
-    }
-
-    #[inline(always)]
-    fn rates(&self, time: f64, state: &[f64], rates: &mut [f64], heats: &mut [f64]) -> Powers {
-        let assembly: &Assembly = self.evaluator.assembly;
+        let ring = &mut *self.ring.borrow_mut();
+        let assembly = self.evaluator.assembly;
+        let record = &mut ring.records[ring.next * ring.length..(ring.next + 1) * ring.length];
+        let (kept_state, rest) = record.split_at_mut(ring.width);
+        let (kept_rates, values) = rest.split_at_mut(ring.width);
+        self.flat.values(&self.evaluator, time, state, values);
         match &assembly.matrix {
-            Matrix::Dense(columns) => {
-                // Plain counted loops: with a length known to the compiler they unroll, and the
-                // rates stay in registers.
-                let size = rates.len();
-                let columns = &columns[..size * size];
-                let state = &state[..size];
-                rates.fill(0.0);
-                for place in 0..size {
-                    let value = state[place];
-                    let column = &columns[place * size..(place + 1) * size];
-                    for row in 0..size {
-                        rates[row] += column[row] * value;
-                    }
-                }
-            }
+            Matrix::Dense(_) => self.flat.rates(state, values, rates),
             Matrix::Sparse { starts, entries } => {
+                rates.fill(0.0);
                 for (rate, span) in rates.iter_mut().zip(starts.windows(2)) {
                     *rate = dot(&entries[span[0]..span[1]], state);
                 }
-            }
-        }
-        let mut powers = Powers::default();
-        heats.fill(0.0);
-        for active in &assembly.active {
-            let (input, value) = if self.constant {
-                steady(active, state)
-            } else {
-                self.evaluator.law(active, time, state)
-            };
-            for &(place, factor) in &active.column {
-                rates[place] += factor * value;
-            }
-            if let Some((place, synchronous_speed)) = active.heat {
-                if let Some(heat) = heats.get_mut(place) {
-                    *heat = value * (synchronous_speed - input);
+                for (active, value) in assembly.active.iter().zip(values.iter()) {
+                    for &(row, factor) in &active.column {
+                        rates[row] += factor * value;
+                    }
                 }
             }
-            match active.power {
-                PowerKind::Drive => {
-                    let speed = active.speed.as_ref().map_or(input, |row| dot(row, state));
-                    powers.drive(value * speed);
-                }
-                PowerKind::Lost => powers.lost -= lost_sign(active) * value * input,
-                PowerKind::None => {}
-            }
         }
-        let quiet = &assembly.powers;
-        for &(place, weight) in &quiet.rate_losses {
-            powers.lost += weight * rates[place] * rates[place];
+        if kept_rates.len() == rates.len() && state.len() == rates.len() {
+            kept_state.copy_from_slice(state);
+            kept_rates.copy_from_slice(rates);
+        } else {
+            kept_state.iter_mut().zip(state).for_each(|(kept, value)| *kept = *value);
+            kept_rates.iter_mut().zip(&*rates).for_each(|(kept, rate)| *kept = *rate);
         }
-        for (weight, row) in &quiet.losses {
-            let speed = dot(row, state);
-            powers.lost += weight * speed * speed;
+        // Two sums side by side: one after the other took as long as a law.
+        let mut sums = [0.0; 2];
+        let pairs = rates.chunks_exact(2);
+        sums[0] += pairs.remainder().iter().sum::<f64>();
+        for pair in pairs {
+            sums[0] += pair[0];
+            sums[1] += pair[1];
         }
-        for (weight, torque, speed) in &quiet.drives {
-            powers.drive(weight * dot(torque, state) * dot(speed, state));
+        if !(sums[0] + sums[1]).is_finite() && self.fault.get().is_none() {
+            // A value that is no number spoils every rate of the dense matrix: its own comes first.
+            let lost = assembly.active.iter().zip(&*values).find(|(_, value)| !value.is_finite());
+            let own = lost.and_then(|(active, _)| active.column.first()).map(|(row, _)| *row);
+            let any = rates.iter().position(|rate| !rate.is_finite()).unwrap_or(0);
+            self.fault.set(Some((time, own.unwrap_or(any))));
         }
-        powers
+        ring.next = (ring.next + 1) % RING;
+        ring.calls += 1;
     }
-}
-
-/// A damper's law gives the resisting torque as a positive value; friction gives the torque itself.
-#[inline(always)]
-fn lost_sign(active: &Active) -> f64 {
-    if matches!(active.function, Function::Law(..)) { -1.0 } else { 1.0 }
-}
-
-/// Input and value of a term that follows no signal.
-#[inline(always)]
-fn steady(active: &Active, state: &[f64]) -> (f64, f64) {
-    let (offset, parameters) = active.fixed;
-    let input = active.input_at(state) + offset;
-    let factor = match active.factor {
-        Strength::Constant(value) => value,
-        Strength::Varying(_) => 1.0,
-    };
-    let value = match &active.function {
-        Function::Law(law, piece) => law.value(input, parameters, *piece),
-        Function::Linear => input,
-        Function::Friction(torque, direction) => -direction * torque,
-        Function::FrictionCurve(law, direction) => {
-            -direction * crate::equations::frame::sliding_of(law, input * direction)
-        }
-    };
-    (input, factor * value)
 }

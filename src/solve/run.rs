@@ -3,6 +3,7 @@
 use super::conditions::Conditions;
 use super::guards::{self, Guard, TRIP};
 use super::integrate::{self, Stop, Window};
+use super::limits::{Breach, Limits};
 use super::observer::Observer;
 use super::rhs::Rhs;
 use super::steady::{self, SteadyError};
@@ -16,7 +17,6 @@ use crate::results::{RunResult, SolverWork};
 use crate::scenario::{Method, Start};
 use crate::signal::course::Overrides;
 use std::collections::BTreeMap;
-use std::f64::consts::{PI, TAU};
 
 /// Changes of the equations at one instant before the run is given up.
 const CHATTER_LIMIT: u32 = 40;
@@ -47,6 +47,10 @@ pub struct Run<'e, 'a> {
     pub(super) caps: BTreeMap<Mode, f64>,
     pub(super) changed: bool,
     pub(super) judge_rest: bool,
+    /// The guards that have tripped at the present instant.
+    pub(super) tripped: Vec<Guard>,
+    limits: Limits,
+    pub(super) breach: Option<Breach>,
 }
 
 /// Why no run took place.
@@ -122,6 +126,9 @@ pub fn run_to_end(
         caps: BTreeMap::new(),
         changed: true,
         judge_rest: true,
+        tripped: Vec::new(),
+        limits: Limits::new(equations),
+        breach: None,
     };
     run.go(&mut options);
     if let Some(turning) = &mut run.observer.turning {
@@ -163,6 +170,7 @@ impl Run<'_, '_> {
             } else {
                 instant = self.time;
                 at_instant = 0;
+                self.tripped.clear();
             }
             let end = self.next_stop(duration);
             self.wrap_phases();
@@ -215,13 +223,19 @@ impl Run<'_, '_> {
                 if self.work.steps == 0 {
                     self.observer.end(&evaluator, self.time, &self.state);
                 }
+                self.observer.finish(&evaluator, self.time, &self.state);
                 self.observer.final_row(&evaluator, self.time, &self.state);
                 return;
             }
             if acted.signals {
                 self.changed = true;
                 self.judge_rest = true;
+                self.breach = self.limits.breach(equations, self.time, duration, &self.overrides);
                 continue;
+            }
+            if let Some(breach) = self.breach.as_ref().filter(|breach| breach.time <= self.time) {
+                self.failure = Some(breach.text.clone());
+                return;
             }
             // A protection that has begun to wait may be due before the next kink.
             let end = end.min(self.next_stop(duration));
@@ -234,37 +248,6 @@ impl Run<'_, '_> {
                 first = false;
             }
             finished = self.segment(&assembly, end, options);
-        }
-    }
-
-    /// The next time at which the run must stop by itself.
-    fn next_stop(&self, duration: f64) -> f64 {
-        let kink = self.equations.bank.next_kink(self.time, &self.overrides);
-        let due = self.conditions.next_time(self.time);
-        let borders = self.observer.windows.iter().flat_map(super::windows::Window::borders);
-        let mut end = duration;
-        for time in kink.into_iter().chain(due).chain(borders) {
-            // Two stops closer than rounding are one.
-            if time > self.time * (1.0 + 1e-14) + 1e-300 && time < end {
-                end = time;
-            }
-        }
-        end
-    }
-
-    /// Brings phases and angles near their wells; whole turns are counted apart.
-    fn wrap_phases(&mut self) {
-        for (index, &place) in self.equations.phase_state.iter().enumerate() {
-            let scale = self.equations.scale[place];
-            let wells = ((self.state[place] * scale - PI) / TAU).ceil();
-            if wells != 0.0 {
-                self.state[place] -= TAU * wells / scale;
-                self.observer.counters.wells[index] += wells as i64;
-            }
-        }
-        for (place, _) in &self.equations.angle_states {
-            let scale = self.equations.scale[*place];
-            self.state[*place] -= TAU * (self.state[*place] * scale / TAU).round() / scale;
         }
     }
 
@@ -354,7 +337,10 @@ impl Run<'_, '_> {
                 watcher.take_cut(&rhs, cut);
                 break;
             }
-            if watcher.interrupted || end - watcher.time <= 1e-13 * end.abs().max(1.0) {
+            if watcher.runaway.is_some()
+                || watcher.interrupted
+                || end - watcher.time <= 1e-13 * end.abs().max(1.0)
+            {
                 break;
             }
             first_step = watcher.last_steps[0].max(watcher.last_steps[1]);
@@ -362,10 +348,12 @@ impl Run<'_, '_> {
         }
         let (time, state, last_steps) = (watcher.time, watcher.state.clone(), watcher.last_steps);
         let (steps, cut, interrupted) = (watcher.steps, watcher.cut, watcher.interrupted);
+        let runaway = watcher.runaway.take();
         self.work.steps += steps;
         self.work.evaluations += rhs.ring().calls;
         self.state = state;
-        self.time = if cut.is_none() && failure.is_none() && !interrupted { end } else { time };
+        let whole = cut.is_none() && failure.is_none() && runaway.is_none() && !interrupted;
+        self.time = if whole { end } else { time };
         if last_steps[1] > 0.0 {
             self.last_steps = last_steps;
         }
@@ -375,8 +363,8 @@ impl Run<'_, '_> {
             self.give_up(time, fault);
             return true;
         }
-        if cut.is_none() && self.time >= equations.model.scenario.duration {
-            self.observer.final_row(&evaluator, self.time, &self.state);
+        if let Some(runaway) = runaway {
+            self.failure = Some(format!("at {} s {runaway}", self.time));
             return true;
         }
         if interrupted {

@@ -5,29 +5,85 @@ use super::rest;
 use super::rhs::Rhs;
 use super::run::Run;
 use super::step_cap;
-use crate::component::law::Law;
-use crate::equations::Shape;
 use crate::equations::assembly::Assembly;
 use crate::equations::energy;
 use crate::equations::frame::Evaluator;
-use crate::equations::mode::{Contact, FrictionMode};
+use crate::equations::mode::{self, Contact, FrictionMode};
+use crate::equations::{Owner, Shape};
 use crate::results::{Event, EventKind};
 use crate::scenario::Start;
-use std::f64::consts::TAU;
+use std::f64::consts::{PI, TAU};
 
 impl Run<'_, '_> {
+    /// The next time at which the run must stop by itself.
+    pub(super) fn next_stop(&self, duration: f64) -> f64 {
+        let kink = self.equations.bank.next_kink(self.time, &self.overrides);
+        let due = self.conditions.next_time(self.time);
+        let borders = self.observer.windows.iter().flat_map(super::windows::Window::borders);
+        let mut end = duration;
+        let breach = self.breach.as_ref().map(|breach| breach.time);
+        for time in kink.into_iter().chain(due).chain(borders).chain(breach) {
+            // Two stops closer than rounding are one.
+            if time > self.time * (1.0 + 1e-14) + 1e-300 && time < end {
+                end = time;
+            }
+        }
+        end
+    }
+
+    /// Brings phases and angles near their wells; whole turns are counted apart.
+    pub(super) fn wrap_phases(&mut self) {
+        for (index, &place) in self.equations.phase_state.iter().enumerate() {
+            let scale = self.equations.scale[place];
+            let wells = ((self.state[place] * scale - PI) / TAU).ceil();
+            if wells != 0.0 {
+                self.state[place] -= TAU * wells / scale;
+                let count = &mut self.observer.counters.wells[index];
+                *count = count.saturating_add(wells as i64);
+            }
+        }
+        for (place, _) in &self.equations.angle_states {
+            let scale = self.equations.scale[*place];
+            self.state[*place] -= TAU * (self.state[*place] * scale / TAU).round() / scale;
+        }
+    }
+
+    /// Where a signal or a pole has carried a law over several pieces at once, they count as one.
+    fn catch_up(&mut self, term: usize) {
+        for machine in &self.equations.machines {
+            machine.open(&self.mode, &mut self.state);
+        }
+        // Behind the terms stand the frictions, whose curves follow no signal.
+        let Some(term_of) = self.equations.terms.get(term) else { return };
+        let Shape::Law(law) = &term_of.shape else { return };
+        if law.piece_follows_signals() {
+            let input =
+                mode::input(self.equations, term_of, self.time, &self.state, &self.overrides);
+            let parameters = mode::parameters(self.equations, term_of, self.time, &self.overrides);
+            let piece = law.piece(input, parameters);
+            if piece.abs_diff(self.mode.pieces[term]) > 1 {
+                self.mode.pieces[term] = piece;
+            }
+        }
+    }
+
     /// Changes the mode after a guard has tripped.
     pub(super) fn apply(&mut self, guard: Guard, end: f64) {
         self.work.events += 1;
         self.changed = true;
+        if !self.tripped.contains(&guard) {
+            self.tripped.push(guard);
+        }
         let equations = self.equations;
         match guard {
             Guard::Lower(term) => {
                 self.mode.pieces[term] -= 1;
+                self.catch_up(term);
                 self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
             }
             Guard::Upper(term) => {
                 self.mode.pieces[term] += 1;
+                self.catch_up(term);
                 self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
             }
             Guard::Slide(_) | Guard::Hold => {
@@ -102,19 +158,66 @@ impl Run<'_, '_> {
     }
 
     pub(super) fn give_up_chatter(&mut self) {
-        let names: Vec<&str> = self
-            .equations
-            .frictions
-            .iter()
-            .zip(&self.mode.frictions)
-            .filter(|(_, mode)| **mode != FrictionMode::Absent)
-            .map(|(friction, _)| friction.name.as_str())
-            .collect();
+        let mut names: Vec<String> = Vec::new();
+        for guard in &self.tripped {
+            for name in self.guard_names(*guard) {
+                if !names.contains(&name) {
+                    names.push(name);
+                }
+            }
+        }
+        let dry = self.tripped.iter().any(|guard| matches!(guard, Guard::Slide(_) | Guard::Hold));
+        let advice = if dry {
+            "give the elements different limits, or a shaft between them"
+        } else {
+            "let the law rise gradually there instead of jumping"
+        };
         self.failure = Some(format!(
-            "the equations change without end at {} s (friction at work: {}); give the elements different limits, or a shaft between them",
+            "the equations change without end at {} s, back and forth at {}; {advice}",
             self.time,
-            if names.is_empty() { "none".to_owned() } else { names.join(", ") }
+            names.join(" and ")
         ));
+    }
+
+    /// What a guard watches, in words.
+    fn guard_names(&self, guard: Guard) -> Vec<String> {
+        let equations = self.equations;
+        let scenario = &equations.model.scenario;
+        let law = |place: usize| match equations.terms.get(place).map(|term| term.owner) {
+            Some(Owner::Motor(motor)) => scenario.motors[motor].name.clone(),
+            Some(Owner::Load(load)) => scenario.loads[load].name.clone(),
+            Some(Owner::Brake(brake)) => scenario.brakes[brake].name.clone(),
+            Some(Owner::Magnet(magnet)) => equations.model.magnets[magnet].name.clone(),
+            None => equations
+                .frictions
+                .get(place - equations.terms.len())
+                .map_or_else(String::new, |friction| friction.name.clone()),
+        };
+        match guard {
+            Guard::Lower(place) | Guard::Upper(place) => {
+                vec![format!("a corner or limit of `{}`", law(place))]
+            }
+            Guard::Slide(index) => {
+                vec![format!("the friction of `{}`", equations.frictions[index].name)]
+            }
+            Guard::Hold => equations
+                .frictions
+                .iter()
+                .zip(&self.mode.frictions)
+                .filter(|(_, mode)| **mode != FrictionMode::Absent)
+                .map(|(friction, _)| format!("the friction of `{}`", friction.name))
+                .collect(),
+            Guard::Open(shaft) | Guard::Close(shaft) => {
+                vec![format!("the free play of `{}`", scenario.shafts[shaft].name)]
+            }
+            Guard::Windup(index) => {
+                vec![format!(
+                    "the controller of `{}`",
+                    scenario.motors[equations.controllers[index].motor].name
+                )]
+            }
+            Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..) => Vec::new(),
+        }
     }
 
     pub(super) fn give_up(&mut self, time: f64, fault: Option<(f64, usize)>) {
@@ -165,7 +268,8 @@ impl Run<'_, '_> {
         }
         // Laws over an angle: a sixth of a period at the working speed.
         for term in &self.equations.terms {
-            if let Shape::Law(Law::Cogging { order, .. }) = &term.shape {
+            if let Shape::Law(law) = &term.shape {
+                let Some(order) = law.turn_order() else { continue };
                 let fastest =
                     self.equations.model.scales.body_speed.iter().fold(0.0_f64, |a, b| a.max(*b));
                 cap = cap.min(TAU / (6.0 * order * fastest));

@@ -15,6 +15,8 @@ pub struct Sample {
     pub state: Vec<f64>,
     /// Laws and wanted channels.
     pub frame: Frame,
+    counters: Counters,
+    sums: Vec<f64>,
 }
 
 /// A step with its evaluator, for values anywhere in it.
@@ -32,21 +34,20 @@ pub struct StepView<'a> {
 }
 
 impl StepView<'_> {
-    /// Counts and angle sums at a share of the step.
-    pub fn counters_at(&self, share: f64) -> Counters {
-        let mut counters = self.counters.clone();
+    /// Counts and angle sums at a share of the step, written over those given.
+    pub fn counters_at(&self, share: f64, counters: &mut Counters, sums: &mut Vec<f64>) {
+        counters.wells.clone_from(&self.counters.wells);
+        counters.slips.clone_from(&self.counters.slips);
+        counters.net_slips.clone_from(&self.counters.net_slips);
         for crossing in
             self.crossings.iter().filter(|crossing| crossing.is_slip && crossing.share <= share)
         {
             counters.slips[crossing.magnet] += 1;
             counters.net_slips[crossing.magnet] += crossing.direction;
         }
-        let mut sums = Vec::new();
-        self.step.sums(share, &mut sums);
-        for (place, sum) in sums.iter().enumerate() {
-            counters.angles[place] = sum * self.scale[place];
-        }
-        counters
+        self.step.sums(share, sums);
+        counters.angles.clear();
+        counters.angles.extend(sums.iter().zip(self.scale).map(|(sum, scale)| sum * scale));
     }
 
     /// All values at a share of the step; `wanted` channels only.
@@ -54,10 +55,9 @@ impl StepView<'_> {
         sample.share = share;
         sample.time = self.step.time(share);
         self.step.state(share, &mut sample.state);
-        let counters = self.counters_at(share);
-        let state = std::mem::take(&mut sample.state);
-        self.evaluator.evaluate(sample.time, &state, &counters, wanted, &mut sample.frame);
-        sample.state = state;
+        self.counters_at(share, &mut sample.counters, &mut sample.sums);
+        let Sample { time, state, frame, counters, .. } = sample;
+        self.evaluator.evaluate(*time, state, counters, wanted, frame);
     }
 
     /// One channel's value at a share of the step.

@@ -1,23 +1,21 @@
 //! Watches the accepted steps of one segment: guards first, then the observer and the audit.
 
-use super::calm::Calm;
+use super::audit::Powers;
+use super::calm::{Calm, Quiet};
 use super::conditions::Conditions;
 use super::dense::{DenseStep, add_sums};
 use super::guards::{self, Guard, TRIP};
 use super::integrate::{WINDOW, Watch};
 use super::locate;
 use super::observer::Observer;
-use super::rhs::{Powers, Rhs};
+use super::rhs::Rhs;
 use super::sampling::{Sample, StepView};
 use super::tableau::{self, Tableau};
 use super::watcher_steps::bracket;
-use crate::equations::frame::{Counters, Evaluator, Frame};
+use crate::equations::frame::{Evaluator, Frame};
 use crate::equations::mode::Mode;
 use crate::scenario::Method;
-use std::sync::atomic::{AtomicBool, Ordering};
-
-/// Steps between two looks at the outside world.
-const LOOK_AROUND: u64 = 256;
+use std::sync::atomic::AtomicBool;
 
 /// Where a step was cut by a guard.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -52,22 +50,23 @@ pub struct Watcher<'w, 'a> {
     pub steps: u64,
     /// Set when a guard cut a step; the step is not taken.
     pub cut: Option<Cut>,
+    /// Set when a magnet runs away; the step is not taken.
+    pub runaway: Option<String>,
     /// Set when the outside asked to end.
     pub interrupted: bool,
     pub(super) interrupt: Option<&'w AtomicBool>,
     pub(super) progress: Option<&'w mut dyn FnMut(f64)>,
     pub(super) window_steps: u32,
-    pub(super) power: Powers,
-    pub(super) heats: Vec<f64>,
+    /// Record of the evaluation at the time reached.
+    pub(super) record: Vec<f64>,
     pub(super) tableau: Tableau,
     pub(super) state_weights: Vec<f64>,
     pub(super) step: DenseStep,
     pub(super) inner_sums: Vec<f64>,
     pub(super) stages: Vec<Vec<f64>>,
-    pub(super) new_power: Powers,
-    pub(super) step_power: Powers,
+    pub(super) new_record: Vec<f64>,
+    pub(super) step_energy: Powers,
     pub(super) step_heats: Vec<f64>,
-    pub(super) new_heats: Vec<f64>,
     pub(super) calm: Calm,
     pub(super) scratch: Sample,
 }
@@ -92,8 +91,8 @@ impl<'w, 'a> Watcher<'w, 'a> {
     ) -> Self {
         let mut rate = vec![0.0; state.len()];
         rhs.system(time, state, &mut rate);
-        let ring = rhs.ring();
-        let (power, heats) = (*ring.powers(0), ring.heats(0).to_vec());
+        let record = rhs.ring().record(0).to_vec();
+        let heats = observer.heats.len();
         let tableau = tableau::of(method);
         let guards = guards::list(&rhs.evaluator, mode, conditions, state);
         let mut calm = Calm::new(&rhs.evaluator, observer.tracer.is_some(), tolerance);
@@ -113,21 +112,20 @@ impl<'w, 'a> Watcher<'w, 'a> {
             last_steps: [0.0; 2],
             steps: 0,
             cut: None,
+            runaway: None,
             interrupted: false,
             interrupt,
             progress,
             window_steps: 0,
-            power,
-            new_heats: heats.clone(),
-            step_heats: heats.clone(),
-            heats,
+            new_record: record.clone(),
+            record,
+            step_heats: vec![0.0; heats],
             state_weights: tableau.state_weights(),
             tableau,
             step: DenseStep::default(),
             inner_sums: Vec::new(),
             stages: Vec::new(),
-            new_power: power,
-            step_power: Powers::default(),
+            step_energy: Powers::default(),
             scratch: Sample::default(),
         }
     }
@@ -135,8 +133,11 @@ impl<'w, 'a> Watcher<'w, 'a> {
     /// Begins another window of the same segment.
     pub fn next_window(&mut self, rhs: &Rhs<'_>) {
         self.window_steps = 0;
-        self.guards = guards::list(&rhs.evaluator, self.mode, self.conditions, &self.state);
-        self.calm.forget();
+        let guards = guards::list(&rhs.evaluator, self.mode, self.conditions, &self.state);
+        if guards != self.guards {
+            self.guards = guards;
+            self.calm.forget();
+        }
     }
 
     fn inner(&self) -> usize {
@@ -154,24 +155,15 @@ impl<'w, 'a> Watcher<'w, 'a> {
         let ring = rhs.ring();
         self.stages.resize(count, Vec::new());
         self.stages[0].clone_from(&self.rate);
-        let b = self.tableau.b;
-        self.step_power = Powers::default();
-        self.step_power.add(length * b[0], &self.power);
-        for (sum, heat) in self.step_heats.iter_mut().zip(&self.heats) {
-            *sum = length * b[0] * heat;
-        }
+        self.step_heats.fill(0.0);
+        self.step_energy =
+            rhs.audit.step(length, self.tableau.b, &self.record, &ring, &mut self.step_heats);
         for stage in 1..count {
             let back = count - stage;
             self.stages[stage].clear();
-            self.stages[stage].extend_from_slice(ring.rates(back));
-            self.step_power.add(length * b[stage], ring.powers(back));
-            for (sum, heat) in self.step_heats.iter_mut().zip(ring.heats(back)) {
-                *sum += length * b[stage] * heat;
-            }
+            self.stages[stage].extend_from_slice(&ring.rates(back)[..state.len()]);
         }
-        self.new_power = *ring.powers(0);
-        self.new_heats.clear();
-        self.new_heats.extend_from_slice(ring.heats(0));
+        self.new_record.copy_from_slice(ring.record(0));
         drop(ring);
         let speeds = self.observer.counters.angles.len();
         let step = &mut self.step;
@@ -209,12 +201,11 @@ impl<'w, 'a> Watcher<'w, 'a> {
 
     /// Moves on to the end of the loaded step.
     fn advance(&mut self) {
-        self.observer.energy.add(1.0, &self.step_power);
+        self.observer.energy.add(&self.step_energy);
         for (sum, heat) in self.observer.heats.iter_mut().zip(&self.step_heats) {
             *sum += heat;
         }
-        self.power = self.new_power;
-        std::mem::swap(&mut self.heats, &mut self.new_heats);
+        std::mem::swap(&mut self.record, &mut self.new_record);
         self.time = self.step.start + self.step.length;
         std::mem::swap(&mut self.state, &mut self.step.last);
         std::mem::swap(&mut self.rate, &mut self.step.last_rate);
@@ -228,40 +219,27 @@ impl<'w, 'a> Watcher<'w, 'a> {
             return None;
         }
         let shares = self.observer.shares(&self.step, self.inner());
-        let counters = self.observer.counters.clone();
-        let scale = self.observer.speed_scale.clone();
         let view = StepView {
             step: &self.step,
             evaluator,
-            counters: &counters,
+            counters: &self.observer.counters,
             crossings: Vec::new(),
-            scale: &scale,
+            scale: &self.observer.speed_scale,
         };
-        let wanted = self.conditions.channels.clone();
+        let wanted = &self.conditions.channels;
         let mut scratch = std::mem::take(&mut self.scratch);
-        let mut values: Vec<Vec<f64>> = Vec::with_capacity(shares.len());
+        let mut values: Vec<f64> = Vec::with_capacity(shares.len() * self.guards.len());
         for &share in &shares {
-            view.sample(share, Some(&wanted), &mut scratch);
-            values.push(
-                self.guards
-                    .iter()
-                    .map(|guard| {
-                        guards::value(
-                            *guard,
-                            &evaluator,
-                            self.mode,
-                            self.conditions,
-                            &scratch.state,
-                            &scratch.frame,
-                        )
-                    })
-                    .collect(),
-            );
+            view.sample(share, Some(wanted), &mut scratch);
+            let Sample { state, frame, .. } = &scratch;
+            values.extend(self.guards.iter().map(|guard| {
+                guards::value(*guard, &evaluator, self.mode, self.conditions, state, frame)
+            }));
         }
         let mut first: Option<Cut> = None;
         for (index, guard) in self.guards.iter().enumerate() {
             let at = |share: f64, scratch: &mut Sample| {
-                view.sample(share, Some(&wanted), scratch);
+                view.sample(share, Some(wanted), scratch);
                 guards::value(
                     *guard,
                     &evaluator,
@@ -271,8 +249,8 @@ impl<'w, 'a> Watcher<'w, 'a> {
                     &scratch.frame,
                 )
             };
-            let Some((low, high)) =
-                bracket(&shares, &values, index, |share| at(share, &mut scratch))
+            let of_guard = |place: usize| values[place * self.guards.len() + index];
+            let Some((low, high)) = bracket(&shares, of_guard, |share| at(share, &mut scratch))
             else {
                 continue;
             };
@@ -340,19 +318,6 @@ impl<'w, 'a> Watcher<'w, 'a> {
         self.observer.step(rhs.evaluator, &self.step, self.inner());
         self.advance();
     }
-
-    fn look_around(&mut self) -> bool {
-        if self.steps % LOOK_AROUND == 0 {
-            if let Some(progress) = &mut self.progress {
-                progress(self.time);
-            }
-            if self.interrupt.is_some_and(|flag| flag.load(Ordering::Relaxed)) {
-                self.interrupted = true;
-                return true;
-            }
-        }
-        false
-    }
 }
 
 impl Watch for Watcher<'_, '_> {
@@ -360,12 +325,24 @@ impl Watch for Watcher<'_, '_> {
         let row_due = self.observer.next_row_time() < time;
         self.window_steps += 1;
         let full = self.window_steps >= WINDOW;
-        if !row_due && self.calm.inside(time - self.time, &self.state, &self.rate, state, rates) {
-            self.load_calm(rhs, time, state, rates);
+        let quiet = self.calm.look(time - self.time, &self.state, &self.rate, state, rates);
+        if quiet != Quiet::No && !row_due {
+            self.load_quiet(rhs, time, state, rates, quiet);
             return self.look_around() || full;
+        }
+        if self.runs_away(rhs, time, state, rates) {
+            return true;
         }
         self.load(rhs, time, state, rates);
         self.prepare(rhs);
+        if quiet != Quiet::No {
+            self.observer.rows_only(rhs.evaluator, &self.step);
+            if let Some(tracer) = &mut self.observer.tracer {
+                self.calm.trace(tracer, self.time, time);
+            }
+            self.advance();
+            return self.look_around() || full;
+        }
         if let Some(cut) = self.first_trip(rhs.evaluator) {
             self.cut = Some(cut);
             return true;
@@ -384,15 +361,5 @@ impl Watch for Watcher<'_, '_> {
             self.step.length,
         );
         self.look_around() || full
-    }
-}
-
-/// Counts without slips, for evaluations that ask for none.
-pub fn no_counters(magnets: usize, speeds: usize) -> Counters {
-    Counters {
-        wells: vec![0; magnets],
-        slips: vec![0; magnets],
-        net_slips: vec![0; magnets],
-        angles: vec![0.0; speeds],
     }
 }

@@ -1,18 +1,22 @@
 //! The short way of a calm step, and where a guard trips within another.
 
+use super::calm::Quiet;
+use super::gears;
 use super::guards::TRIP;
 use super::locate;
-use super::rhs::{Powers, Rhs};
+use super::rhs::Rhs;
 use super::watcher::Watcher;
+use std::sync::atomic::Ordering;
+
+/// Steps between two looks at the outside world.
+const LOOK_AROUND: u64 = 256;
 
 /// The first pair of shares between which a guard trips; a dip between samples is looked into.
 pub(super) fn bracket(
     shares: &[f64],
-    values: &[Vec<f64>],
-    guard: usize,
+    value: impl Fn(usize) -> f64,
     mut at: impl FnMut(f64) -> f64,
 ) -> Option<(f64, f64)> {
-    let value = |index: usize| values[index][guard];
     if value(0) < -TRIP {
         return Some((0.0, 0.0));
     }
@@ -23,7 +27,7 @@ pub(super) fn bracket(
         if index + 1 < shares.len() {
             let places = [shares[index - 1], shares[index], shares[index + 1]];
             let heights = [value(index - 1), value(index), value(index + 1)];
-            if let Some((place, low)) = locate::vertex(places, heights) {
+            if let Some((_, low)) = locate::vertex(places, heights) {
                 let near = low < 0.1 * heights[0].min(heights[2]);
                 if near && low < heights[1].min(heights[0]).min(heights[2]) && heights[2] >= -TRIP {
                     let (place_low, depth) =
@@ -31,7 +35,6 @@ pub(super) fn bracket(
                     if -depth < -TRIP {
                         return Some((places[0], place_low));
                     }
-                    let _ = place;
                 }
             }
         }
@@ -40,42 +43,65 @@ pub(super) fn bracket(
 }
 
 impl Watcher<'_, '_> {
+    /// True when a magnet turns too far within a step; why is noted.
+    pub(super) fn runs_away(
+        &mut self,
+        rhs: &Rhs<'_>,
+        time: f64,
+        state: &[f64],
+        rates: &[f64],
+    ) -> bool {
+        self.runaway = gears::runaway(
+            rhs.evaluator.equations,
+            &self.observer.gears,
+            time - self.time,
+            [&self.state, &self.rate],
+            [state, rates],
+        );
+        self.runaway.is_some()
+    }
+
     /// The short way for a step in which nothing can happen: audit and angles only.
-    pub(super) fn load_calm(&mut self, rhs: &Rhs<'_>, time: f64, state: &[f64], rates: &[f64]) {
+    pub(super) fn load_quiet(
+        &mut self,
+        rhs: &Rhs<'_>,
+        time: f64,
+        state: &[f64],
+        rates: &[f64],
+        quiet: Quiet,
+    ) {
         let length = time - self.time;
-        let count = self.tableau.stages();
         let ring = rhs.ring();
-        let b = self.tableau.b;
-        let mut sum = Powers::default();
-        sum.add(b[0], &self.power);
-        let speeds = self.observer.counters.angles.len();
-        self.inner_sums.clear();
-        self.inner_sums.extend(self.rate[..speeds].iter().map(|rate| self.state_weights[0] * rate));
-        for stage in 1..count {
-            let back = count - stage;
-            sum.add(b[stage], ring.powers(back));
-            let weight = self.state_weights[stage];
-            if weight != 0.0 {
-                for (inner, rate) in self.inner_sums.iter_mut().zip(&ring.rates(back)[..speeds]) {
-                    *inner += weight * rate;
+        let observer = &mut *self.observer;
+        let angles = observer.counters.angles.iter_mut().zip(&observer.speed_scale);
+        let energy = if quiet == Quiet::Rest {
+            for (((sum, scale), before), after) in angles.zip(&self.state).zip(state) {
+                *sum += 0.5 * scale * length * (before + after);
+            }
+            rhs.audit.end(length, ring.record(0), &mut observer.heats)
+        } else {
+            let count = self.tableau.stages();
+            let speeds = observer.speed_scale.len();
+            self.inner_sums.clear();
+            let first = self.state_weights[0];
+            self.inner_sums.extend(self.rate[..speeds].iter().map(|rate| first * rate));
+            for stage in 1..count {
+                let weight = self.state_weights[stage];
+                if weight != 0.0 {
+                    let rates = &ring.rates(count - stage)[..speeds];
+                    for (inner, rate) in self.inner_sums.iter_mut().zip(rates) {
+                        *inner += weight * rate;
+                    }
                 }
             }
-        }
-        self.observer.energy.add(length, &sum);
-        self.power = *ring.powers(0);
-        for place in 0..self.heats.len() {
-            let mut heat = b[0] * self.heats[place];
-            for stage in 1..count {
-                heat += b[stage] * ring.heats(count - stage)[place];
+            for (((sum, scale), value), inner) in angles.zip(&self.state).zip(&self.inner_sums) {
+                *sum += scale * length * (value + length * inner);
             }
-            self.observer.heats[place] += length * heat;
-            self.heats[place] = ring.heats(0)[place];
-        }
-        let scale = &self.observer.speed_scale;
-        let angles = self.observer.counters.angles.iter_mut().zip(scale);
-        for (((sum, scale), value), inner) in angles.zip(&self.state).zip(&self.inner_sums) {
-            *sum += scale * length * (value + length * inner);
-        }
+            let heats = &mut observer.heats;
+            rhs.audit.step(length, self.tableau.b, &self.record, &ring, heats)
+        };
+        observer.energy.add(&energy);
+        self.record.copy_from_slice(ring.record(0));
         drop(ring);
         if let Some(tracer) = &mut self.observer.tracer {
             self.calm.trace(tracer, self.time, time);
@@ -85,5 +111,18 @@ impl Watcher<'_, '_> {
         self.rate.copy_from_slice(rates);
         self.last_steps = [self.last_steps[1], length];
         self.steps += 1;
+    }
+
+    pub(super) fn look_around(&mut self) -> bool {
+        if self.steps % LOOK_AROUND == 0 {
+            if let Some(progress) = &mut self.progress {
+                progress(self.time);
+            }
+            if self.interrupt.is_some_and(|flag| flag.load(Ordering::Relaxed)) {
+                self.interrupted = true;
+                return true;
+            }
+        }
+        false
     }
 }

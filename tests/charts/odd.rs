@@ -13,7 +13,7 @@ use lodeshaft::render::chart::rainflow::{RainflowChart, rainflow_chart};
 use lodeshaft::render::chart::run::run_chart;
 use lodeshaft::render::chart::run_data::run_data;
 use lodeshaft::render::chart::run_input::{
-    Curve, Hue, Limit, Panel, PanelKind, Row, RunChart, Weight,
+    Curve, Dots, Hue, Limit, Panel, PanelKind, Row, RunChart, Weight,
 };
 use lodeshaft::render::chart::swing::{SwingChart, swing_chart};
 use lodeshaft::render::chart::tolerance::{Tolerance, tolerance_chart};
@@ -56,6 +56,7 @@ fn draw_all(a: f64, b: f64, c: f64) {
         curves: vec![curve.clone()],
         allowed: Some([a, b]),
         limits: vec![limit.clone()],
+        dots: vec![Dots { label: name(), points: vec![[a, b], [b, c], [c, a]] }],
     };
     let run = RunChart {
         id: name(),

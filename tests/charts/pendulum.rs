@@ -230,5 +230,7 @@ pub fn train() -> Train {
             bars: vec![SignalBar { start: 1.0, end: 1.25, text: "900 N·m".to_owned() }],
         }],
         signal_steps: vec![1.0, 1.25],
+        idle_at_start: Vec::new(),
+        records: Vec::new(),
     }
 }

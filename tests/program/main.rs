@@ -10,6 +10,7 @@
 mod checking;
 mod commands;
 mod convergence;
+mod endings;
 mod energy;
 mod equal_area;
 mod friction;
@@ -18,6 +19,8 @@ mod helper;
 mod invariance;
 mod law;
 mod likeness;
+mod loads;
+mod motors;
 mod oscillator;
 mod output;
 mod pendulum;

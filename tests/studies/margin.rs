@@ -167,3 +167,21 @@ fn whole_numbers_are_varied_in_whole_steps() {
     assert!(pairs.iter().all(|pairs| pairs.fract() == 0.0), "{pairs:?}");
     assert_eq!(answer["runs"].as_u64(), Some(table.rows.len() as u64));
 }
+
+#[test]
+fn a_fixed_step_is_shortened_for_the_second_look() {
+    // A step of a fifth of the swing's time is coarse: the limit found with it is off by far more
+    // than the bracket, and a tenth of the step comes back to the equal-area limit.
+    let scenario = train(
+        60.0,
+        100.0,
+        "  room: { margin: { vary: motors.drive.law.prescribed.torque, between: [50 N*m, 100 N*m], accuracy: 1e-5 } }\n",
+    )
+    .replace("duration: 0.8 s", "duration: 0.8 s\nsolver: { method: rk4, step: 10 ms }");
+    let (_, answer) = ask(&scenario);
+    let off = |value: &serde_json::Value| (value.as_f64().unwrap() / (100.0 * LIMIT) - 1.0).abs();
+    let second = &answer["tenth_of_tolerance"];
+    assert_eq!(second["held"], false, "{answer}");
+    assert!(off(&answer["value"]) > 1e-4, "{answer}");
+    assert!(off(&second["value"]) < 1e-5, "{answer}");
+}

@@ -178,6 +178,9 @@ fn line_frequency(equations: &Equations, notes: &mut Vec<String>) -> Vec<Excitat
         let synchronous_speed = match &motor.law {
             MotorLaw::RatingPlate { synchronous_speed, .. }
             | MotorLaw::Induction { synchronous_speed, .. } => synchronous_speed.abs(),
+            MotorLaw::InductionCircuit { figures, .. } => {
+                std::f64::consts::TAU * figures.frequency / f64::from(figures.pole_pairs)
+            }
             _ => continue,
         };
         let turns = synchronous_speed / TAU;

@@ -60,7 +60,7 @@ pub fn linearise(equations: &Equations, point: &LinearPoint, load: MagnetLoad) -
                     magnet_stiffness[index] = wanted;
                 }
             }
-            Function::Law(law @ Law::Cogging { .. }, piece)
+            Function::Law(law @ (Law::Cogging { .. } | Law::Periodic(_)), piece)
                 if turns(equations, active, &point.state) =>
             {
                 add(&mut full, active, -law.slope(input, [0.0; 2], *piece));

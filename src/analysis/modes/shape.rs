@@ -189,7 +189,14 @@ impl DampingSources {
             let slope = match (&active.function, &term.shape) {
                 // Magnets and ripple store energy: they take none out.
                 (Function::Law(crate::component::law::Law::Magnet(_), _), _)
-                | (Function::Law(crate::component::law::Law::Cogging { .. }, _), _) => continue,
+                | (
+                    Function::Law(
+                        crate::component::law::Law::Cogging { .. }
+                        | crate::component::law::Law::Periodic(_),
+                        _,
+                    ),
+                    _,
+                ) => continue,
                 (Function::Law(law, piece), _) => law.slope(input, parameters, *piece),
                 (Function::Linear, Shape::Linear) => 1.0,
                 _ => continue,
@@ -269,11 +276,10 @@ fn curve_load(
     active: &Active,
     point: &LinearPoint,
 ) -> Option<Torque> {
-    let Function::FrictionCurve(law, _) = &active.function else { return None };
+    let Function::Law(law, piece) = &active.function else { return None };
     let friction = equations.frictions.get(active.place.checked_sub(equations.terms.len())?)?;
     let input = active.input_at(&point.state);
-    let slope = law.slope(input, [0.0; 2], law.piece_at(input))
-        * evaluator.strength(&active.factor, point.time);
+    let slope = law.slope(input, [0.0; 2], *piece) * evaluator.strength(&active.factor, point.time);
     Some(Torque {
         name: name_of(equations, friction.owner),
         direction: equations.model.reduction.dense(&friction.row),

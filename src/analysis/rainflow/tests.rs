@@ -133,3 +133,32 @@ fn faults_are_told() {
         assert!(told, "{yaml}: {faults}");
     }
 }
+
+// Narrow-band Gaussian: the amplitudes follow Rayleigh's distribution, so that ranges S = 2R have
+// E[S^m] = (2 sqrt2 sigma)^m Gamma(1 + m/2): 30.0795392956 for m = 3, 128 for m = 4, sigma 1 (textbooks
+// of fatigue under random loads, from memory). The amplitudes are the middles of equal shares of
+// probability, in an order that mixes them as swings in a slow envelope do: rising and falling.
+#[test]
+fn ranges_of_a_narrow_band_follow_rayleigh() {
+    const CYCLES: u32 = 200_000;
+    let rayleigh = |share: f64| (-2.0 * (1.0 - share).ln()).sqrt();
+    let amplitudes = (0..CYCLES).map(|index| {
+        // Up over the even shares, down over the odd ones.
+        let place = if index < CYCLES / 2 { 2 * index } else { 2 * (CYCLES - index) - 1 };
+        rayleigh((f64::from(place) + 0.5) / f64::from(CYCLES))
+    });
+    let mut counter = count::Counter::default();
+    let mut cycles = Vec::new();
+    for amplitude in amplitudes {
+        counter.take(amplitude, &mut |cycle| cycles.push(cycle));
+        counter.take(-amplitude, &mut |cycle| cycles.push(cycle));
+    }
+    counter.finish(&mut |cycle| cycles.push(cycle));
+    let number: f64 = cycles.iter().map(|cycle| cycle.count).sum();
+    assert!((number / f64::from(CYCLES) - 1.0).abs() < 1e-4, "{number}");
+    for (slope, expected) in [(3.0, 30.079_539_295_6), (4.0, 128.0)] {
+        let found = damage_sum(&cycles, slope) / f64::from(CYCLES);
+        // The largest amplitudes are cut off at one share in 400000.
+        assert!((found / expected - 1.0).abs() < 1e-3, "m {slope}: {found}");
+    }
+}

@@ -8,7 +8,7 @@
 //! speed, power with its cube), 1 a viscous load, 0 would be a hoist (use friction or a torque).
 
 /// A load with a power of the speed.
-#[derive(Clone, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, PartialEq)]
 pub struct PowerLaw {
     torque: f64,
     per_speed: f64,

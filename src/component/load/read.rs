@@ -1,13 +1,20 @@
 //! How a load is written in a scenario.
 
+use super::periodic::TurnHarmonic;
+use super::power_coefficient::{DEFAULT, PowerCoefficient};
+use super::propeller::TorqueCoefficient;
+use super::read_coefficients::{power_coefficient, torque_coefficient};
 use super::{Load, LoadLaw};
 use crate::component::points::read_curve;
 use crate::quantity::Dimension;
 use crate::signal::Signal;
 use crate::signal::read::{read_signal, read_signal_or};
-use crate::tree::{Alternative, Fields, Range, Shape};
+use crate::tree::{Alternative, Fields, Range};
 
-/// The laws a load may have; the last [`NOT_YET`] are refused by name.
+/// The highest order of a load over an angle.
+const HIGHEST_ORDER: i64 = 10_000;
+
+/// The laws a load may have.
 const LAWS: [Alternative<LoadLaw>; 8] = [
     ("power_law", "Torque*|w/speed|^exponent against the motion.", power_law),
     ("friction", "Dry friction that sticks and slips.", friction),
@@ -18,20 +25,12 @@ const LAWS: [Alternative<LoadLaw>; 8] = [
     ("periodic", "Torque by the body's angle.", periodic),
     ("propeller", "Ship's propeller.", propeller),
 ];
-const NOT_YET: usize = 2;
 
 impl Load {
     /// Reads the load called `name`.
     pub fn read(name: &str, fields: &mut Fields<'_>) -> Self {
         let body = fields.name("body", "The body it loads.");
-        // The reference lists only what can be run.
-        let hidden = if fields.describing() { NOT_YET } else { 0 };
-        let law = fields.choice(
-            "law",
-            true,
-            "How its torque comes about.",
-            LAWS.get(..LAWS.len() - hidden).unwrap_or(&LAWS),
-        );
+        let law = fields.choice("law", true, "How its torque comes about.", &LAWS);
         let against = fields
             .name_optional("against", "Other body (friction and viscous); ground when absent.");
         let scale = read_signal(
@@ -156,25 +155,61 @@ fn axial_rotor(fields: &mut Fields<'_>) -> LoadLaw {
     let flow =
         read_signal(fields, "flow", Dimension::LinearSpeed, true, "Speed of the wind or water.");
     let pitch = read_signal_or(fields, "pitch", Dimension::Angle, 0.0, "Pitch of the blades.");
-    fields.later("power_coefficient");
+    let coefficient = fields.group_optional(
+        "power_coefficient",
+        "Cp over tip speed ratio and pitch in one of these ways, in place of the built-in formula.",
+        power_coefficient,
+    );
+    let coefficient = coefficient.flatten().unwrap_or(PowerCoefficient::Formula(DEFAULT));
     let flow = flow.unwrap_or(Signal::Constant(0.0));
-    LoadLaw::AxialRotor { radius, density, flow, pitch }
+    LoadLaw::AxialRotor { radius, density, flow, pitch, coefficient }
 }
 
 fn periodic(fields: &mut Fields<'_>) -> LoadLaw {
-    fields.fault_here("`periodic` is not in this version of the program");
-    for key in ["mean", "harmonics"] {
-        fields.raw(key, Shape::Free, false, "");
-    }
-    LoadLaw::Prescribed { torque: Signal::Constant(0.0) }
+    let mean = fields.quantity(
+        "mean",
+        Dimension::Torque,
+        Range::NotNegative,
+        "Mean torque, against the motion; holds at rest.",
+    );
+    let harmonics = fields.list("harmonics", "Harmonics of the resisting torque.", |wave| {
+        let order = wave.whole("order", 1, HIGHEST_ORDER, "Periods a turn of the body.");
+        let amplitude = wave.quantity(
+            "amplitude",
+            Dimension::Torque,
+            Range::NotNegative,
+            "Resisting torque of amplitude*sin(order*angle + phase).",
+        );
+        let phase =
+            wave.quantity_or("phase", Dimension::Angle, Range::Any, 0.0, "Phase at the start.");
+        TurnHarmonic { order: order as u32, amplitude, phase }
+    });
+    LoadLaw::Periodic { mean, harmonics }
 }
 
 fn propeller(fields: &mut Fields<'_>) -> LoadLaw {
-    fields.fault_here("`propeller` is not in this version of the program");
-    for key in ["diameter", "density", "advance", "points", "torque_coefficient"] {
-        fields.raw(key, Shape::Free, false, "");
-    }
-    LoadLaw::Prescribed { torque: Signal::Constant(0.0) }
+    let diameter = fields.quantity("diameter", Dimension::Length, Range::Positive, "Diameter.");
+    let density = fields.quantity_or(
+        "density",
+        Dimension::Density,
+        Range::Positive,
+        1025.0,
+        "Density of the water: sea 1025 kg/m3, fresh 1000 kg/m3.",
+    );
+    let advance = read_signal_or(
+        fields,
+        "advance",
+        Dimension::LinearSpeed,
+        0.0,
+        "Speed of the water past the propeller: ship's speed less wake; 0 is bollard pull.",
+    );
+    let coefficient = fields.group(
+        "torque_coefficient",
+        "KQ = torque/(density*n^2*diameter^5) over J = advance/(n*diameter), in one of these ways.",
+        torque_coefficient,
+    );
+    let coefficient = coefficient.flatten().unwrap_or_else(|| TorqueCoefficient::constant(0.0));
+    LoadLaw::Propeller { diameter, density, advance, coefficient }
 }
 
 #[cfg(test)]

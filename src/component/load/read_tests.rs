@@ -85,12 +85,20 @@ fn an_axial_rotor_has_a_flow_and_a_pitch_of_zero_by_default() {
 }
 
 #[test]
-fn what_this_version_lacks_is_refused_by_name_and_once() {
-    for (law, inside) in
-        [("periodic", map(&[("mean", "80 N*m")])), ("propeller", map(&[("diameter", "4 m")]))]
-    {
-        let (_, faults) = read(law, inside, &[]);
-        assert_eq!(faults.len(), 1, "{faults:?}");
-        assert!(faults[0].contains("not in this version"), "{faults:?}");
-    }
+fn a_periodic_load_and_a_propeller_are_read() {
+    let (load, faults) = read("periodic", map(&[("mean", "80 N*m")]), &[]);
+    assert!(faults.is_empty(), "{faults:?}");
+    assert_eq!(load.law, LoadLaw::Periodic { mean: 80.0, harmonics: Vec::new() });
+    let coefficient = map(&[("constant", "0.03")]);
+    let inside = Node::Map(vec![
+        ("diameter".to_owned(), Node::Text("4 m".to_owned())),
+        ("torque_coefficient".to_owned(), coefficient),
+    ]);
+    let (load, faults) = read("propeller", inside, &[]);
+    assert!(faults.is_empty(), "{faults:?}");
+    let LoadLaw::Propeller { density, advance, coefficient, .. } = load.law else {
+        panic!("{load:?}")
+    };
+    assert!((density - 1025.0).abs() < 1e-12 && advance == Signal::Constant(0.0));
+    assert!((coefficient.at(0.5) - 0.03).abs() < 1e-15);
 }

@@ -12,7 +12,7 @@
 //! five times the torque of this formula because its bars are not thin.
 
 /// Kloss's formula at full voltage.
-#[derive(Clone, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Induction {
     synchronous_speed: f64,
     per_synchronous_speed: f64,

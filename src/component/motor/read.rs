@@ -1,11 +1,12 @@
 //! How a motor is written in a scenario.
 
+use super::circuit::CircuitFigures;
 use super::{Motor, MotorLaw, Plate};
 use crate::component::points::read_curve;
 use crate::quantity::{Dimension, format_number};
 use crate::signal::Signal;
 use crate::signal::read::{read_signal, read_signal_or};
-use crate::tree::{Alternative, Fields, Range, Shape};
+use crate::tree::{Alternative, Fields, Range};
 
 /// The laws a motor may have.
 const LAWS: [Alternative<MotorLaw>; 7] = [
@@ -26,10 +27,7 @@ impl Motor {
     /// Reads the motor called `name`.
     pub fn read(name: &str, fields: &mut Fields<'_>) -> Self {
         let body = fields.name("body", "The body it drives; the reaction goes to ground.");
-        // The reference lists only what can be run.
-        let laws =
-            if fields.describing() { LAWS.split_last().map_or(&LAWS[..], |l| l.1) } else { &LAWS };
-        let law = fields.choice("law", true, "How its torque comes about.", laws);
+        let law = fields.choice("law", true, "How its torque comes about.", &LAWS);
         let scale = read_signal(
             fields,
             "scale",
@@ -37,6 +35,13 @@ impl Motor {
             false,
             "Factor on what the law delivers, after its limits.",
         );
+        if scale.is_some() && matches!(law, Some(MotorLaw::InductionCircuit { .. })) {
+            fields.fault_hint(
+                "scale",
+                "`scale` has no meaning for `induction_circuit`",
+                "`voltage` lowers its torque, `connected` switches it",
+            );
+        }
         let reversed = fields.flag("reversed", false, "Mirrors the law: forward is negative.");
         let source = fields.source();
         // A law that is missing or faulty has been told; no torque stands in for it.
@@ -202,27 +207,53 @@ fn optimal_power(fields: &mut Fields<'_>) -> MotorLaw {
     }
 }
 
-/// Keys of a law that this version refuses by name.
-const CIRCUIT_KEYS: [&str; 11] = [
-    "line_voltage",
-    "frequency",
-    "pole_pairs",
-    "stator_resistance",
-    "stator_reactance",
-    "rotor_resistance",
-    "rotor_reactance",
-    "magnetising_reactance",
-    "voltage",
-    "connected",
-    "transient",
-];
-
 fn induction_circuit(fields: &mut Fields<'_>) -> MotorLaw {
-    fields.fault_here("`induction_circuit` is not in this version of the program");
-    for key in CIRCUIT_KEYS {
-        fields.raw(key, Shape::Free, false, "");
+    let line_voltage =
+        positive(fields, "line_voltage", Dimension::Voltage, "Rated voltage between two lines.");
+    let frequency = positive(fields, "frequency", Dimension::Frequency, "Frequency of the line.");
+    let pole_pairs = fields.whole("pole_pairs", 1, 1000, "Pole pairs: 2 for 1500 rpm at 50 Hz.");
+    let mut ohms = |key, range, doc| fields.quantity(key, Dimension::Resistance, range, doc);
+    let stator_resistance =
+        ohms("stator_resistance", Range::NotNegative, "Of a phase, star equivalent.");
+    let stator_reactance =
+        ohms("stator_reactance", Range::NotNegative, "Leakage of a phase at the line frequency.");
+    let rotor_resistance =
+        ohms("rotor_resistance", Range::Positive, "Of a phase, referred to the stator.");
+    let rotor_reactance =
+        ohms("rotor_reactance", Range::NotNegative, "Leakage of a phase, referred to the stator.");
+    let magnetising_reactance =
+        ohms("magnetising_reactance", Range::Positive, "Of a phase, at the line frequency.");
+    if stator_reactance + rotor_reactance == 0.0 {
+        fields.fault_hint(
+            "rotor_reactance",
+            "a machine without any leakage reactance has no limit to its torque",
+            "`stator_reactance` and `rotor_reactance` together are some 10 to 25 % of V/I at rated load",
+        );
     }
-    MotorLaw::Prescribed { torque: Signal::Constant(0.0) }
+    let voltage = voltage(fields);
+    let connected = read_signal_or(
+        fields,
+        "connected",
+        Dimension::One,
+        1.0,
+        "0.5 or more: on the line; below: open, no stator current.",
+    );
+    let transient = fields.flag(
+        "transient",
+        false,
+        "Flux equations: torque pulses after switching; else the circuit at each instant.",
+    );
+    let figures = CircuitFigures {
+        line_voltage,
+        frequency,
+        pole_pairs: pole_pairs as u32,
+        stator_resistance,
+        stator_reactance,
+        rotor_resistance,
+        rotor_reactance,
+        magnetising_reactance,
+    };
+    MotorLaw::InductionCircuit { figures, voltage, connected, transient }
 }
 
 #[cfg(test)]

@@ -2,7 +2,7 @@
 
 use super::*;
 use crate::diagnostic::Diagnostics;
-use crate::tree::Node;
+use crate::tree::{Node, Shape};
 use std::cell::RefCell;
 
 /// A map of texts; a value that starts with `{` cannot be written here, use `nest`.
@@ -101,10 +101,53 @@ fn the_other_laws_are_read_and_what_is_missing_is_told() {
     assert_eq!(faults, ["motors.m.law.speed_loop: `torque_limit` is missing"]);
     let (_, faults) = read(nest("prescribed", map(&[])));
     assert_eq!(faults, ["motors.m.law.prescribed: `torque` is missing"]);
-    let circuit = nest("induction_circuit", map(&[("line_voltage", "400 V")]));
-    let (_, faults) = read(circuit);
-    assert_eq!(faults.len(), 1);
-    assert!(faults[0].contains("not in this version"), "{faults:?}");
+}
+
+#[test]
+fn an_equivalent_circuit_is_read_and_needs_leakage() {
+    let circuit = |changes: &[(&str, &str)]| {
+        let mut entries = vec![
+            ("line_voltage", "0.4 kV"),
+            ("frequency", "50 Hz"),
+            ("pole_pairs", "2"),
+            ("stator_resistance", "0.2 ohm"),
+            ("stator_reactance", "0.6 ohm"),
+            ("rotor_resistance", "0.25 ohm"),
+            ("rotor_reactance", "0.6 ohm"),
+            ("magnetising_reactance", "18 ohm"),
+        ];
+        for (key, value) in changes {
+            entries.retain(|(known, _)| known != key);
+            entries.push((key, value));
+        }
+        read(nest("induction_circuit", map(&entries)))
+    };
+    let (law, faults) = circuit(&[("line_voltage", "400 V"), ("connected", "contactor")]);
+    assert!(faults.is_empty(), "{faults:?}");
+    let MotorLaw::InductionCircuit { figures, voltage, connected, transient } = law else {
+        panic!("{law:?}")
+    };
+    assert!((figures.line_voltage - 400.0).abs() < 1e-12 && figures.pole_pairs == 2);
+    assert!((figures.rotor_resistance - 0.25).abs() < 1e-15 && !transient);
+    assert_eq!(voltage, Signal::Constant(1.0));
+    assert_eq!(connected, Signal::Named("contactor".to_owned()));
+    for (changes, words) in [
+        (&[("line_voltage", "0 V")][..], "`line_voltage` must be above zero"),
+        (&[("line_voltage", "400 V"), ("pole_pairs", "1.5")], "`pole_pairs` must be a whole"),
+        (&[("line_voltage", "400 V"), ("rotor_resistance", "0 ohm")], "must be above zero"),
+        (
+            &[
+                ("line_voltage", "400 V"),
+                ("rotor_reactance", "0 ohm"),
+                ("stator_reactance", "0 ohm"),
+            ],
+            "without any leakage reactance",
+        ),
+    ] {
+        let (_, faults) = circuit(changes);
+        assert_eq!(faults.len(), 1, "{changes:?}: {faults:?}");
+        assert!(faults[0].contains(words), "{faults:?}");
+    }
 }
 
 #[test]
@@ -128,10 +171,9 @@ fn a_curve_needs_two_points_and_rising_speeds() {
 }
 
 #[test]
-fn the_reference_lists_only_laws_that_run() {
+fn the_reference_lists_every_law() {
     let keys = Fields::describe(|fields| Motor::read("m", fields));
     let law = keys.iter().find(|field| field.key == "law").unwrap();
     let Shape::Choice(laws) = &law.shape else { panic!("{law:?}") };
-    assert_eq!(laws.len(), 6);
-    assert!(laws.iter().all(|law| law.key != "induction_circuit"));
+    assert_eq!(laws.len(), LAWS.len());
 }

@@ -170,6 +170,20 @@ fn distance(point: Point, from: Point, to: Point) -> f64 {
     (px - share * dx).hypot(py - share * dy)
 }
 
+/// Points within a frame, none within `least` px of the one before it.
+pub fn apart(points: impl Iterator<Item = Point>, frame: &Frame, least: f64) -> Vec<Point> {
+    let mut kept: Vec<Point> = Vec::new();
+    for point in points {
+        let inside = (frame.left..=frame.right()).contains(&point[0])
+            && (frame.top..=frame.bottom()).contains(&point[1]);
+        let near = |last: &Point| (last[0] - point[0]).hypot(last[1] - point[1]) < least;
+        if inside && !kept.last().is_some_and(near) {
+            kept.push(point);
+        }
+    }
+    kept
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

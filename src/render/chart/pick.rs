@@ -7,7 +7,7 @@ use super::marks::Forbidden;
 use super::number::{capital, number, words};
 use super::palette::Side;
 use super::pick_rows;
-use super::run_input::{Curve, Hue, Limit, Panel, PanelKind, RunChart, Weight};
+use super::run_input::{Curve, Dots, Hue, Limit, Panel, PanelKind, RunChart, Weight};
 use super::train::{Train, TrainGear};
 use super::units::Display;
 use crate::results::{Column, GearResult, RunResult, Traces};
@@ -54,22 +54,24 @@ pub fn shafts(result: &RunResult, traces: &Traces, train: &Train, display: &Disp
                 let Some(torque) = torque else { continue };
                 panel.limits.extend(both_ways(name, torque * factor));
             }
-            panel.limits.extend(desk.requirements(&format!("{}.torque", shaft.name), factor));
+            let channel = format!("{}.torque", shaft.name);
+            panel.limits.extend(desk.requirements(&channel, factor));
+            panel.dots = desk.dots(&channel, factor);
             Some(panel)
         })
         .collect();
     desk.chart("shafts", "Shaft torques and events over time", panels)
 }
 
-struct Desk<'a> {
-    result: &'a RunResult,
-    traces: &'a Traces,
-    train: &'a Train,
-    display: &'a Display,
+pub(super) struct Desk<'a> {
+    pub(super) result: &'a RunResult,
+    pub(super) traces: &'a Traces,
+    pub(super) train: &'a Train,
+    pub(super) display: &'a Display,
 }
 
 impl<'a> Desk<'a> {
-    fn chart(&self, id: &str, title: &str, panels: Vec<Panel>) -> RunChart {
+    pub(super) fn chart(&self, id: &str, title: &str, panels: Vec<Panel>) -> RunChart {
         let window = [self.traces.start, self.traces.end];
         let (rows, acts) = pick_rows::rows(self.result, self.train, window);
         RunChart {
@@ -89,7 +91,7 @@ impl<'a> Desk<'a> {
         Some(&found.columns)
     }
 
-    fn curve(&self, channel: &str, factor: f64) -> Option<Curve> {
+    pub(super) fn curve(&self, channel: &str, factor: f64) -> Option<Curve> {
         let window = [self.traces.start, self.traces.end];
         let pieces = curve::pieces(self.columns(channel)?, window, factor);
         (!pieces.is_empty()).then(|| Curve {
@@ -107,6 +109,7 @@ impl<'a> Desk<'a> {
         let unit = &self.display.speed;
         let mut curves = Vec::new();
         let mut limits = Vec::new();
+        let mut dots = Vec::new();
         let mut referred = Vec::new();
         for body in self.train.speed_bodies() {
             let referral = body.referral.unwrap_or(1.0);
@@ -119,6 +122,7 @@ impl<'a> Desk<'a> {
                 referred.push((words(&body.name), referral));
             }
             limits.extend(self.requirements(&channel, factor));
+            dots.extend(self.dots(&channel, factor));
             curves.push(curve);
         }
         lighten_repeated(&mut curves);
@@ -138,6 +142,7 @@ impl<'a> Desk<'a> {
             curves,
             allowed: None,
             limits,
+            dots,
         })
     }
 
@@ -206,6 +211,7 @@ impl<'a> Desk<'a> {
             curves,
             allowed: Some([-bound, bound]),
             limits: limits.to_vec(),
+            dots: self.dots(&channel, unit.per_si),
         })
     }
 
@@ -235,6 +241,7 @@ impl<'a> Desk<'a> {
             curves: vec![curve],
             allowed: None,
             limits: Vec::new(),
+            dots: self.angle_dots(&gear.name),
         })
     }
 
@@ -278,12 +285,33 @@ impl<'a> Desk<'a> {
             curves,
             allowed: None,
             limits: Vec::new(),
+            dots: Vec::new(),
         }
+    }
+
+    /// What was measured at a channel, in the unit shown.
+    pub(super) fn dots(&self, channel: &str, factor: f64) -> Vec<Dots> {
+        let records = self.train.records.iter().filter(|record| record.channel == channel);
+        records
+            .map(|record| Dots {
+                label: words(&record.name),
+                points: record.rows.iter().map(|row| [row[0], row[1] * factor]).collect(),
+            })
+            .collect()
+    }
+
+    /// Measured load angles, brought into the turn that the panel shows.
+    pub(super) fn angle_dots(&self, gear: &str) -> Vec<Dots> {
+        let mut dots = self.dots(&format!("{gear}.load_angle"), 180.0 / std::f64::consts::PI);
+        for point in dots.iter_mut().flat_map(|one| &mut one.points) {
+            point[1] -= 360.0 * (point[1] / 360.0).round();
+        }
+        dots
     }
 
     /// Limits that requirements put on a channel; they compare magnitudes, so the limit stands on
     /// the side of zero where the channel is.
-    fn requirements(&self, channel: &str, factor: f64) -> Vec<Limit> {
+    pub(super) fn requirements(&self, channel: &str, factor: f64) -> Vec<Limit> {
         let found = self.result.channels.iter().find(|each| each.name == channel);
         let Some(found) = found else { return Vec::new() };
         let sign = if found.max.abs() >= found.min.abs() {

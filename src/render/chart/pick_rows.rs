@@ -16,7 +16,7 @@ pub fn rows(result: &RunResult, train: &Train, window: [f64; 2]) -> (Vec<Row>, V
     for gear in &result.gears {
         rows.extend(gear_rows(result, gear, several, window));
     }
-    rows.extend(state_rows(result, window));
+    rows.extend(state_rows(result, train, window));
     for (label, kind) in
         [("Protection", EventKind::Protection), ("Limit crossed", EventKind::Requirement)]
     {
@@ -68,7 +68,8 @@ fn gear_rows(result: &RunResult, gear: &GearResult, several: bool, window: [f64;
             notes: notes(gear, window),
         });
     }
-    let bars = spans(result, &gear.name, EventKind::PastPeak, EventKind::ShortOfPeak);
+    let kinds = (EventKind::PastPeak, EventKind::ShortOfPeak);
+    let bars = spans(result, &gear.name, kinds, true);
     if bars.iter().any(|bar| bar.end > window[0] && bar.start < window[1]) {
         rows.push(Row::Bars { label: named("Past peak"), kind: BarKind::PastPeak, bars });
     }
@@ -103,7 +104,14 @@ fn notes(gear: &GearResult, window: [f64; 2]) -> Vec<String> {
 }
 
 /// Spans between two kinds of events of one thing; an open one lasts to the end of the run.
-fn spans(result: &RunResult, of: &str, opens: EventKind, closes: EventKind) -> Vec<SignalBar> {
+///
+/// `begun`: an event that ends the state before any began it tells that the run began in it.
+fn spans(
+    result: &RunResult,
+    of: &str,
+    (opens, closes): (EventKind, EventKind),
+    begun: bool,
+) -> Vec<SignalBar> {
     let mut bars = Vec::new();
     let mut start = None;
     let bar = |start, end| SignalBar { start, end, text: String::new() };
@@ -114,7 +122,7 @@ fn spans(result: &RunResult, of: &str, opens: EventKind, closes: EventKind) -> V
         } else if event.kind == closes {
             if let Some(start) = start.take() {
                 bars.push(bar(start, event.time));
-            } else if first {
+            } else if first && begun {
                 // The first event ends the state, so the run began in it.
                 bars.push(bar(0.0, event.time));
             }
@@ -128,7 +136,7 @@ fn spans(result: &RunResult, of: &str, opens: EventKind, closes: EventKind) -> V
 }
 
 /// Stuck friction and open backlash, in order of their first event.
-fn state_rows(result: &RunResult, window: [f64; 2]) -> Vec<Row> {
+fn state_rows(result: &RunResult, train: &Train, window: [f64; 2]) -> Vec<Row> {
     let mut rows: Vec<Row> = Vec::new();
     let mut told: Vec<(&str, EventKind)> = Vec::new();
     for event in &result.events {
@@ -143,7 +151,8 @@ fn state_rows(result: &RunResult, window: [f64; 2]) -> Vec<Row> {
             continue;
         }
         told.push((event.of.as_str(), opens));
-        let bars = spans(result, &event.of, opens, closes);
+        let begun = !train.idle_at_start.contains(&event.of);
+        let bars = spans(result, &event.of, (opens, closes), begun);
         if rows.len() < STATE_ROWS
             && bars.iter().any(|bar| bar.end > window[0] && bar.start < window[1])
         {

@@ -1,7 +1,7 @@
 //! The run chart: panels over one time axis, and the strip of events.
 
 use super::axes::{self, Axes};
-use super::clip::Frame;
+use super::clip::{self, Frame};
 use super::drawing::{Dash, Drawing, Group};
 use super::labels::{self, EndLabel};
 use super::marks;
@@ -15,6 +15,8 @@ use super::ticks::{self, Ticks};
 const TOP: f64 = 24.0;
 const GAP: f64 = 34.0;
 const FOOT: f64 = 38.0;
+/// Radius of a measured point, px.
+const DOT: f64 = 1.2;
 
 /// Draws a chart over time.
 pub fn run_chart(input: &RunChart) -> Drawing {
@@ -113,7 +115,7 @@ impl Layout {
             .map(|(place, each)| {
                 let top = TOP + (panel + GAP) * place as f64;
                 let frame = Frame { left, top, width, height: panel };
-                Axes { frame, across: input.window, up: range(each, panel).0 }
+                Axes { frame, across: input.window, up: range(each, input.window, panel).0 }
             })
             .collect();
         Self { left, width, margin, panel, strip, axes }
@@ -128,7 +130,7 @@ impl Layout {
 }
 
 /// Range of a panel's axis and its ticks.
-fn range(panel: &Panel, height: f64) -> ([f64; 2], Ticks) {
+fn range(panel: &Panel, window: [f64; 2], height: f64) -> ([f64; 2], Ticks) {
     if let PanelKind::LoadAngle { .. } = panel.kind {
         let step = if height < 60.0 { 180.0 } else { 90.0 };
         return ([-180.0, 180.0], ticks::at_step(-180.0, 180.0, step));
@@ -136,9 +138,13 @@ fn range(panel: &Panel, height: f64) -> ([f64; 2], Ticks) {
     let drawn = panel.curves.iter().flat_map(|curve| &curve.pieces).flatten().map(|pair| pair[1]);
     let limits = panel.limits.iter().filter(|limit| limit.always_seen).map(|limit| limit.value);
     let bands = panel.allowed.into_iter().flatten();
+    let dots = panel.dots.iter().flat_map(|dots| &dots.points);
+    let [start, end] = window;
+    let seen = dots.filter(|point| (start..=end).contains(&point[0])).map(|point| point[1]);
     let (low, high) = drawn
         .chain(limits)
         .chain(bands)
+        .chain(seen)
         .filter(|value| value.is_finite())
         .fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), value| {
             (low.min(value), high.max(value))
@@ -173,7 +179,7 @@ fn draw_panel(
     clock: &Clock,
     margin: f64,
 ) {
-    let (_, ticks) = range(panel, axes.frame.height);
+    let (_, ticks) = range(panel, input.window, axes.frame.height);
     axes.heading(pen, &panel.name, &panel.unit);
     pen.open(axes.group(&panel.id));
     if let Some(allowed) = panel.allowed {
@@ -189,6 +195,7 @@ fn draw_panel(
     pen.close();
     axes.base_lines(pen);
     steps_and_acts(pen, input, axes);
+    draw_dots(pen, axes, panel);
     for curve in panel.curves.iter().rev() {
         draw_curve(pen, axes, curve);
     }
@@ -212,6 +219,17 @@ fn draw_curve(pen: &mut Pen, axes: &Axes, curve: &Curve) {
         axes.draw(pen, piece, curve.hue.ink(), width, curve.dash);
     }
     pen.close();
+}
+
+/// Measured points; those that would cover one another are one.
+fn draw_dots(pen: &mut Pen, axes: &Axes, panel: &Panel) {
+    for dots in &panel.dots {
+        pen.open(Group::class("d").with("record", dots.label.clone()));
+        for point in clip::apart(dots.points.iter().map(|pair| axes.at(*pair)), &axes.frame, DOT) {
+            pen.disc(point, DOT, Ink::Axis);
+        }
+        pen.close();
+    }
 }
 
 fn steps_and_acts(pen: &mut Pen, input: &RunChart, axes: &Axes) {
@@ -242,6 +260,18 @@ fn placed_labels(panel: &Panel, axes: &Axes) -> Vec<EndLabel> {
             bold: curve.weight == Weight::Main,
             ink: curve.hue.text(),
             leader: curve.hue.ink(),
+        });
+    }
+    for dots in &panel.dots {
+        let Some(last) = dots.points.iter().rfind(|point| point[0] <= axes.across[1]) else {
+            continue;
+        };
+        labels.push(EndLabel {
+            y: axes.y(last[1]),
+            text: format!("measured, {}", dots.label),
+            bold: false,
+            ink: Ink::Sub,
+            leader: Ink::Axis,
         });
     }
     for limit in panel.limits.iter().filter(|limit| !limit.label.is_empty()) {

@@ -5,14 +5,15 @@ use super::clip::Frame;
 use super::curve::Pieces;
 use super::palette::Ink;
 use super::run;
-use super::run_input::{Curve, Panel, RunChart, Weight};
+use super::run_input::{Curve, Dots, Panel, PanelKind, RunChart, Weight};
 use serde_json::{Value, json};
 
 /// All curves with their points in display units.
 ///
 /// ```text
 /// { "window": [s, s], "panels": [ { "id", "name", "unit", "frame": [left, top, width, height],
-///   "up": [low, high], "curves": [ { "label", "ink", "width", "pieces": [[t, v, t, v, ...], ...] } ] } ] }
+///   "up": [low, high], "curves": [ { "label", "ink", "width", "pieces": [[t, v, t, v, ...], ...] } ],
+///   "slips": [ [t, direction], ... ] or null, "dots": [ { "label", "points": [t, v, ...] } ] } ] }
 /// ```
 ///
 /// Frames are in CSS pixels. The points are those of the drawing before it is thinned to its
@@ -30,6 +31,12 @@ pub fn run_data(input: &RunChart) -> Value {
 fn panel_data(panel: &Panel, axes: &Axes) -> Value {
     let Frame { left, top, width, height } = axes.frame;
     let curves: Vec<Value> = panel.curves.iter().map(|curve| curve_data(curve, axes)).collect();
+    let slips = match &panel.kind {
+        PanelKind::LoadAngle { slips, .. } => {
+            slips.iter().map(|(time, direction)| json!([time, direction])).collect()
+        }
+        PanelKind::Values => Value::Null,
+    };
     json!({
         "id": panel.id,
         "name": panel.name,
@@ -37,7 +44,19 @@ fn panel_data(panel: &Panel, axes: &Axes) -> Value {
         "frame": [left, top, width, height],
         "up": axes.up,
         "curves": curves,
+        "slips": slips,
+        "dots": panel.dots.iter().map(|dots| dots_data(dots, axes)).collect::<Vec<_>>(),
     })
+}
+
+fn dots_data(dots: &Dots, axes: &Axes) -> Value {
+    let [start, end] = axes.across;
+    let [low, high] = axes.up;
+    let inside = dots.points.iter().filter(|point| (start..=end).contains(&point[0]));
+    let points: Vec<Value> = inside
+        .flat_map(|point| [short(point[0], end - start), short(point[1], high - low)])
+        .collect();
+    json!({ "label": dots.label, "points": points })
 }
 
 fn curve_data(curve: &Curve, axes: &Axes) -> Value {

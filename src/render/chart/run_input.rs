@@ -45,6 +45,17 @@ pub struct Panel {
     pub allowed: Option<[f64; 2]>,
     /// Limit lines.
     pub limits: Vec<Limit>,
+    /// Measured records, under the curves.
+    pub dots: Vec<Dots>,
+}
+
+/// A measured record within a panel.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Dots {
+    /// Name of the record.
+    pub label: String,
+    /// `[time s, value]` in the unit of the panel, in order of time.
+    pub points: Vec<[f64; 2]>,
 }
 
 /// What is special about a panel.

@@ -84,7 +84,8 @@ pub fn slip_marks(pen: &mut Pen, axes: &Axes, slips: &[(f64, i32)], y: impl Fn(b
             continue;
         }
         *before = Some(x);
-        pen.open(Group::class("m").number("t", *time).with("kind", "slip"));
+        let mark = Group::class("m").number("t", *time).with("kind", "slip");
+        pen.open(mark.number("direction", f64::from(*direction)));
         marks::slip(pen, [x, y(forward)], forward, 8.0);
         pen.close();
     }

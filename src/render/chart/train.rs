@@ -17,6 +17,23 @@ pub struct Train {
     pub signals: Vec<SignalBars>,
     /// Times at which a signal jumps or breaks, s.
     pub signal_steps: Vec<f64>,
+    /// Brakes and frictions that hold nothing at the start, for want of pressure.
+    pub idle_at_start: Vec<String>,
+    /// Measured records in file order.
+    pub records: Vec<TrainRecord>,
+}
+
+/// A measured record.
+#[derive(Clone, Debug, PartialEq)]
+pub struct TrainRecord {
+    /// Name in the file.
+    pub name: String,
+    /// The channel it was measured at.
+    pub channel: String,
+    /// SI unit of the channel.
+    pub unit: &'static str,
+    /// `[time of the run, value]`, SI.
+    pub rows: Vec<[f64; 2]>,
 }
 
 /// A rotating body.
@@ -91,6 +108,7 @@ impl Train {
             names.push(format!("{}.torque_{}", gear.name, gear.shown_member));
         }
         names.extend(self.shafts.iter().map(|shaft| format!("{}.torque", shaft.name)));
+        names.extend(self.records.iter().map(|record| record.channel.clone()));
         names
     }
 

@@ -79,11 +79,19 @@ fn drives(material: &Material<'_>) -> Vec<String> {
         motor(|law| {
             matches!(
                 law,
-                MotorLaw::RatingPlate { .. } | MotorLaw::Induction { .. } | MotorLaw::Curve { .. }
+                MotorLaw::RatingPlate { .. }
+                    | MotorLaw::Induction { .. }
+                    | MotorLaw::Curve { .. }
+                    | MotorLaw::InductionCircuit { transient: false, .. }
             )
         }),
         "A motor follows its curve of torque over speed. The torque pulses in the first periods of the mains after \
          switching, reversing or a voltage dip can be several times as large and are not in it.",
+    );
+    say(
+        motor(|law| matches!(law, MotorLaw::InductionCircuit { .. })),
+        "The motor follows its equivalent circuit with constant figures on a stiff, symmetrical line; skin effect, \
+         saturation, iron loss and the arc of a contactor are not in it.",
     );
     say(
         motor(|law| matches!(law, MotorLaw::Induction { .. })),
@@ -107,6 +115,16 @@ fn drives(material: &Material<'_>) -> Vec<String> {
         load(|law| matches!(law, LoadLaw::AxialRotor { .. })),
         "The rotor follows the flow at once by one curve of power over tip speed ratio and pitch; the wake, stall \
          in time and the flow over the disc are averaged.",
+    );
+    say(
+        load(|law| matches!(law, LoadLaw::Propeller { .. })),
+        "The propeller follows its open-water diagram at once and at the speed of advance as given; the ship does not \
+         answer, the water it carries along is not in the inertia unless given there, and blade-rate pulses, cavitation \
+         and reversing are not in it.",
+    );
+    say(
+        load(|law| matches!(law, LoadLaw::Periodic { .. })),
+        "The torque over a turn is the same at every speed and starts at the angle of the run's start; run the worst angles.",
     );
     say(
         load(|law| matches!(law, LoadLaw::Friction { .. })) || !scenario.brakes.is_empty(),

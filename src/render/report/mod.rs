@@ -1,11 +1,12 @@
 //! The report: one page that holds the verdict, the run, the studies and what they stand on.
 
 pub mod carry;
-mod figures;
-mod html;
+pub(in crate::render) mod figures;
+pub(in crate::render) mod html;
 mod inputs;
 mod limits;
 mod one_run;
+mod records;
 mod reproduction;
 mod requirements;
 mod run_section;
@@ -13,26 +14,28 @@ mod sha;
 mod sides;
 mod studies;
 mod study_charts;
-mod style;
+pub(in crate::render) mod style;
 pub mod train;
 mod trust;
 mod verdict;
 
 pub use figures::Written;
+pub(in crate::render) use run_section::samples;
 
+use crate::analysis::records::RecordComparison;
 use crate::analysis::study::results::StudyResult;
 use crate::analysis::train::Train as TrainFigures;
-use crate::render::chart::drawing::Drawing;
 use crate::render::chart::palette::Side;
 use crate::render::chart::schematic::schematic;
 use crate::render::chart::train::Train;
+use crate::render::pictures::Picture;
 use crate::results::RunResult;
 use crate::scenario::{Scenario, Source};
 use crate::tree::Node;
 use html::{Figures, escape};
 
 /// Values under the pointer; nothing on the page depends on it.
-const SCRIPT: &str = include_str!("script.js");
+pub(in crate::render) const SCRIPT: &str = include_str!("script.js");
 
 /// What a report is made of.
 pub struct Material<'a> {
@@ -46,10 +49,12 @@ pub struct Material<'a> {
     pub figures: &'a TrainFigures,
     /// The run, with its traces.
     pub result: &'a RunResult,
+    /// Measured records against it.
+    pub records: &'a [RecordComparison],
     /// The train as charts see it.
     pub train: Train,
     /// The drawings of the run in the order of the page.
-    pub drawings: Vec<Drawing>,
+    pub drawings: Vec<Picture>,
     /// The same run at a tenth of the tolerance.
     pub sharper: Option<RunResult>,
     /// Finished studies in the order of the file.

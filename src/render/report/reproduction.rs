@@ -32,7 +32,7 @@ pub fn section(material: &Material<'_>) -> String {
             ),
         );
     }
-    let command = format!("lodeshaft report {}", source.name);
+    let command = command(&source.name, &source.sets);
     row("Command", format!("<code>{}</code>", escape(&command)));
     let mut html = paragraph(
         "The same file with the same version of the program gives the same figures. The hash tells whether a file \
@@ -49,6 +49,25 @@ pub fn section(material: &Material<'_>) -> String {
     html
 }
 
+/// The command that makes this page, values set from outside included.
+fn command(file: &str, sets: &[(String, String)]) -> String {
+    let mut command = format!("lodeshaft report {}", quoted(file));
+    for (path, value) in sets {
+        command.push_str(&format!(" --set {}", quoted(&format!("{path}={value}"))));
+    }
+    command
+}
+
+/// A word for a shell, in quotes where it holds more than plain letters.
+fn quoted(word: &str) -> String {
+    let plain = |c: char| c.is_ascii_alphanumeric() || "_-./=,:+".contains(c);
+    if !word.is_empty() && word.chars().all(plain) {
+        word.to_owned()
+    } else {
+        format!("'{}'", word.replace('\'', "'\\''"))
+    }
+}
+
 /// Tables that named signals read: name of the signal, file, rows.
 fn tables(material: &Material<'_>) -> Vec<(String, String, usize)> {
     let mut found = Vec::new();
@@ -60,4 +79,18 @@ fn tables(material: &Material<'_>) -> Vec<(String, String, usize)> {
         });
     }
     found
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_command_can_be_pasted_into_a_shell() {
+        let sets = [("bodies.hub.inertia".to_owned(), "2 kg*m2".to_owned())];
+        let told = command("a file.yaml", &sets);
+        assert_eq!(told, "lodeshaft report 'a file.yaml' --set 'bodies.hub.inertia=2 kg*m2'");
+        assert_eq!(quoted("it's"), "'it'\\''s'");
+        assert_eq!(command("pump.yaml", &[]), "lodeshaft report pump.yaml");
+    }
 }

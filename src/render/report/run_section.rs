@@ -6,9 +6,10 @@ use super::html::{Figures, HtmlTable, escape, paragraph, rich};
 use super::verdict;
 use crate::render::chart::curve::Pieces;
 use crate::render::chart::number::capital;
-use crate::render::chart::pick;
+use crate::render::chart::plane_tables::Columns;
 use crate::render::chart::run_data::run_data;
 use crate::render::chart::run_input::RunChart;
+use crate::render::pictures::Picture;
 use crate::render::shown;
 use crate::results::ChannelResult;
 
@@ -28,6 +29,7 @@ pub fn section(material: &Material<'_>, figures: &mut Figures) -> String {
         html.push_str(&paragraph(&verdict::told_in_full(gear, material)));
     }
     html.push_str(&chart_figures(material, figures));
+    html.push_str(&super::records::section(material));
     html.push_str(&peaks(material));
     html.push_str(&motors(material));
     html.push_str(&events(material));
@@ -36,10 +38,13 @@ pub fn section(material: &Material<'_>, figures: &mut Figures) -> String {
 
 fn chart_figures(material: &Material<'_>, figures: &mut Figures) -> String {
     let mut html = String::new();
-    for drawing in &material.drawings {
+    for Picture { drawing, chart, table } in &material.drawings {
         let caption = caption(&drawing.id);
-        let chart = chart(material, &drawing.id);
-        let behind = chart.as_ref().map_or_else(String::new, samples);
+        let behind = match (chart, table) {
+            (Some(chart), _) => samples(chart),
+            (None, Some(table)) => columns(table),
+            (None, None) => String::new(),
+        };
         let data = chart.as_ref().map(run_data);
         html.push_str(&figures.with_data(drawing, &caption, &behind, data.as_ref()));
     }
@@ -59,6 +64,10 @@ fn caption(id: &str) -> String {
             "Torque over speed at the motor shaft. The light area is what is left to accelerate; the ring is \
              the operating point. Above the hatched line the gear would slip."
         }
+        _ if id.starts_with("measured") => {
+            "What was measured (dots) and what was computed (line), on the clock of the run. The table below tells \
+             how far they are apart."
+        }
         "shafts" => "Torques in the shafts, with rated and peak torque where they are given.",
         _ if id.starts_with("zoom") => "The same, closer, where the gear slips.",
         _ if id.starts_with("swing") => {
@@ -70,19 +79,18 @@ fn caption(id: &str) -> String {
     escape(text)
 }
 
-/// The data of a drawing over the whole run.
-fn chart(material: &Material<'_>, id: &str) -> Option<RunChart> {
-    let traces = material.result.traces.as_ref()?;
-    let display = material.written.chart_display();
-    match id {
-        "run" => Some(pick::run(material.result, traces, &material.train, &display, "run")),
-        "shafts" => Some(pick::shafts(material.result, traces, &material.train, &display)),
-        _ => None,
+/// The figures behind a chart that is not over time.
+fn columns(columns: &Columns) -> String {
+    let heads: Vec<&str> = columns.heads.iter().map(String::as_str).collect();
+    let mut table = HtmlTable::new(&">".repeat(heads.len()), &heads).class("small");
+    for row in &columns.rows {
+        table.row(row.iter().map(|cell| cell.map_or_else(|| "–".to_owned(), plain)));
     }
+    table.html()
 }
 
 /// The curves of a chart at evenly spaced times.
-fn samples(chart: &RunChart) -> String {
+pub(in crate::render) fn samples(chart: &RunChart) -> String {
     let curves: Vec<(String, &Pieces)> = chart
         .panels
         .iter()
@@ -171,7 +179,7 @@ fn motors(material: &Material<'_>) -> String {
     for motor in &material.result.motors {
         table.row([
             escape(&motor.name),
-            motor.run_up_time.map_or_else(|| "never".to_owned(), time),
+            motor.run_up_time.map_or_else(|| "none".to_owned(), time),
             motor.rotor_heat.map_or_else(
                 || "–".to_owned(),
                 |heat| escape(&super::figures::tidy(&shown::energy(heat))),

@@ -194,6 +194,9 @@ fn motor_text(law: &MotorLaw, written: Written<'_>) -> String {
         MotorLaw::Induction { breakdown_torque, .. } => {
             format!("breakdown {}", written.torque(*breakdown_torque))
         }
+        MotorLaw::InductionCircuit { figures, .. } => {
+            format!("{}{NBSP}V, {}{NBSP}Hz", plain(figures.line_voltage), plain(figures.frequency))
+        }
         MotorLaw::SpeedLoop { torque_limit, .. } => {
             format!("speed loop, up to {}", written.torque(*torque_limit))
         }
@@ -212,6 +215,12 @@ fn load_text(law: &LoadLaw, written: Written<'_>) -> String {
         }
         LoadLaw::Friction { sliding, .. } => format!("friction {}", written.torque(*sliding)),
         LoadLaw::Prescribed { .. } => "torque as given".to_owned(),
+        LoadLaw::Periodic { mean, .. } => {
+            format!("{} and a ripple over each turn", written.torque(*mean))
+        }
+        LoadLaw::Propeller { diameter, .. } => {
+            format!("propeller, diameter {}{NBSP}m", plain(*diameter))
+        }
         LoadLaw::AxialRotor { radius, .. } => format!("rotor, radius {}{NBSP}m", plain(*radius)),
         _ => String::new(),
     }

@@ -209,7 +209,12 @@ fn sweep(answer: &SweepAnswer, rows: usize) -> String {
         0 => String::new(),
         failed => format!(", {failed} came to nothing"),
     };
-    format!("{met}{} slip{failed}.", answer.slipped)
+    let slip = match answer.slipped {
+        0 => "no run slips".to_owned(),
+        1 => "1 run slips".to_owned(),
+        many => format!("{many} runs slip"),
+    };
+    format!("{met}{slip}{failed}.")
 }
 
 fn monte_carlo(answer: &MonteCarloAnswer) -> String {

@@ -1,7 +1,9 @@
 //! Torques on the bodies of a train that turns as one, at given speeds.
 
 use crate::component::law::Law;
+use crate::component::motor::circuit::CONNECTED;
 use crate::equations::frame::sliding_of;
+use crate::equations::machine::Machine;
 use crate::equations::mode::REST;
 use crate::equations::{Equations, Friction, Owner, Shape, Sliding, Target, Term};
 use crate::signal::course::Overrides;
@@ -139,14 +141,32 @@ impl External<'_> {
         let input = self.input(term, state);
         match &term.shape {
             Shape::Linear => input,
+            // Of products of states only a machine's torque reaches the train.
+            Shape::Products(_) => self.machine(term, input),
             // Torques over an angle count by their mean over a turn, which is zero.
-            Shape::Law(Law::Cogging { .. } | Law::Magnet(_)) => 0.0,
+            Shape::Law(Law::Cogging { .. } | Law::Periodic(_) | Law::Magnet(_)) => 0.0,
             Shape::Law(law) => {
                 let parameters =
                     term.parameters.map(|slot| slot.map_or(0.0, |slot| self.signal(slot)));
-                law.value(input, parameters, law.piece_at(input))
+                law.value(input, parameters, law.piece(input, parameters))
             }
         }
+    }
+
+    /// Torque of a machine whose fluxes have settled.
+    fn machine(&self, term: &Term, speed: f64) -> f64 {
+        let machine =
+            self.equations.machines.iter().find(|one| Owner::Motor(one.motor) == term.owner);
+        machine.map_or(0.0, |machine| {
+            let voltage = self.machine_voltage(machine);
+            voltage * voltage * machine.circuit.torque(speed)
+        })
+    }
+
+    /// Share of rated voltage at a machine's terminals; 0 while it is open.
+    pub fn machine_voltage(&self, machine: &Machine) -> f64 {
+        let connected = self.signal(machine.connected) >= CONNECTED[0];
+        if connected { self.signal(machine.voltage) } else { 0.0 }
     }
 
     fn input(&self, term: &Term, state: &[f64]) -> f64 {

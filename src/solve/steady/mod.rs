@@ -21,6 +21,7 @@ use crate::equations::mode::{FrictionMode, Mode};
 use crate::equations::{Equations, Shape};
 use crate::signal::course::Overrides;
 use balance::Balance;
+use external::External;
 use nalgebra::{DMatrix, DVector};
 
 /// Growth rates up to this share of the fastest mode are rounding.
@@ -89,6 +90,10 @@ pub fn find(
         if let Some(place) = controller.torque_state {
             state[place] = torque / equations.scale[place];
         }
+    }
+    let external = External { equations, time, overrides };
+    for machine in &equations.machines {
+        machine.settle(&mut state, &equations.scale, external.machine_voltage(machine));
     }
     let mut mode = Mode::of_state(equations, time, &state, overrides);
     for (index, holding) in balance.at_rest.iter().enumerate() {
