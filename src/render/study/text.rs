@@ -50,11 +50,11 @@ pub fn summary(result: &StudyResult, scenario: &Scenario) -> String {
         Answer::Modes(answer) => Some(crossings(answer, shown)),
         _ => None,
     };
-    if let Some(table) = second {
-        if table.len() > 1 {
-            text.push('\n');
-            text.push_str(&table.text(2));
-        }
+    if let Some(table) = second
+        && table.len() > 1
+    {
+        text.push('\n');
+        text.push_str(&table.text(2));
     }
     let notes = answer::notes(result);
     if !notes.is_empty() {
