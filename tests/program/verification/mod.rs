@@ -10,6 +10,7 @@ mod fatigue;
 mod friction;
 mod gears;
 mod limits;
+mod machines;
 mod sheet;
 mod slip;
 mod starts;
@@ -49,6 +50,7 @@ fn cases() -> Vec<Case> {
         slip::cases,
         gears::cases,
         starts::cases,
+        machines::cases,
         friction::cases,
         vibration::cases,
         fatigue::cases,
