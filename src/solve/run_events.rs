@@ -50,15 +50,15 @@ impl Run<'_, '_> {
 
     /// Where a signal or a pole has carried a law over several pieces at once, they count as one.
     fn catch_up(&mut self, term: usize) {
-        let Shape::Law(law) = &self.equations.terms[term].shape else { return };
         for machine in &self.equations.machines {
             machine.open(&self.mode, &mut self.state);
         }
+        // Beyond the terms stand friction elements, which follow no signal.
+        let Some(of) = self.equations.terms.get(term) else { return };
+        let Shape::Law(law) = &of.shape else { return };
         if law.piece_follows_signals() {
-            let term_of = &self.equations.terms[term];
-            let input =
-                mode::input(self.equations, term_of, self.time, &self.state, &self.overrides);
-            let parameters = mode::parameters(self.equations, term_of, self.time, &self.overrides);
+            let input = mode::input(self.equations, of, self.time, &self.state, &self.overrides);
+            let parameters = mode::parameters(self.equations, of, self.time, &self.overrides);
             let piece = law.piece(input, parameters);
             if piece.abs_diff(self.mode.pieces[term]) > 1 {
                 self.mode.pieces[term] = piece;
