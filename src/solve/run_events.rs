@@ -53,12 +53,13 @@ impl Run<'_, '_> {
         for machine in &self.equations.machines {
             machine.open(&self.mode, &mut self.state);
         }
-        // Beyond the terms stand friction elements, which follow no signal.
-        let Some(of) = self.equations.terms.get(term) else { return };
-        let Shape::Law(law) = &of.shape else { return };
+        // Behind the terms stand the frictions, whose curves follow no signal.
+        let Some(term_of) = self.equations.terms.get(term) else { return };
+        let Shape::Law(law) = &term_of.shape else { return };
         if law.piece_follows_signals() {
-            let input = mode::input(self.equations, of, self.time, &self.state, &self.overrides);
-            let parameters = mode::parameters(self.equations, of, self.time, &self.overrides);
+            let input =
+                mode::input(self.equations, term_of, self.time, &self.state, &self.overrides);
+            let parameters = mode::parameters(self.equations, term_of, self.time, &self.overrides);
             let piece = law.piece(input, parameters);
             if piece.abs_diff(self.mode.pieces[term]) > 1 {
                 self.mode.pieces[term] = piece;

@@ -3,7 +3,7 @@
 use crate::gallery::show;
 use crate::pendulum::{END, Run, train};
 use lodeshaft::render::chart::axes::Sheet;
-use lodeshaft::render::chart::compare::overlay;
+use lodeshaft::render::chart::compare::{overlay, overlays};
 use lodeshaft::render::chart::drawing::{Anchor, Dash, Drawing};
 use lodeshaft::render::chart::palette::{Ink, Theme};
 use lodeshaft::render::chart::pen::{self, Pen};
@@ -130,6 +130,46 @@ fn compared_runs_differ_by_line_style() {
     assert_eq!(speed.curves.iter().filter(|curve| curve.dash == Dash::Long).count(), 2);
     show(&run_chart(&both), "compare");
     assert!(overlay(&[]).is_none());
+}
+
+#[test]
+fn many_runs_are_charts_of_three_with_the_first_in_each() {
+    let runs: Vec<(String, RunChart)> =
+        ["a", "b", "c", "d", "e", "f"].map(|name| (name.to_owned(), chart(900.0, 400.0))).to_vec();
+    let charts = overlays(&runs);
+    let titles: Vec<&str> = charts.iter().map(|chart| chart.title.as_str()).collect();
+    assert_eq!(
+        titles,
+        [
+            "Runs over time: solid a, dashed b, dotted c",
+            "Runs over time: solid a, dashed d, dotted e",
+            "Runs over time: solid a, dashed f"
+        ]
+    );
+    let ids: Vec<&str> = charts.iter().map(|chart| chart.id.as_str()).collect();
+    assert_eq!(ids, ["compare_1", "compare_2", "compare_3"]);
+    assert!(overlays(&[]).is_empty());
+}
+
+#[test]
+fn overlaid_panels_share_the_unit_of_the_first() {
+    // The second run's torque is in kN m because it is large: 1000 N m make one.
+    let small = chart(900.0, 400.0);
+    let large = chart(90_000.0, 40_000.0);
+    let torque = |chart: &RunChart| {
+        chart.panels.iter().find(|panel| panel.id.starts_with("torque")).unwrap().clone()
+    };
+    let (own, far) = (torque(&small), torque(&large));
+    assert_ne!(own.unit, far.unit);
+    let largest = |points: &[Vec<[f64; 2]>]| {
+        points.iter().flatten().fold(0.0_f64, |most, point| most.max(point[1].abs()))
+    };
+    let wanted = 1000.0 * largest(&far.curves[0].pieces);
+    let both = overlay(&[("a".to_owned(), small), ("b".to_owned(), large)]).unwrap();
+    let found = torque(&both);
+    assert_eq!(found.unit, own.unit);
+    let found = largest(&found.curves.last().unwrap().pieces);
+    assert!((found - wanted).abs() < 1e-9 * wanted, "{found} {wanted}");
 }
 
 #[test]

@@ -16,4 +16,6 @@ mod run;
 #[cfg(test)]
 mod schematics;
 #[cfg(test)]
+mod structure;
+#[cfg(test)]
 mod studies;

@@ -110,3 +110,81 @@ fn the_version_is_told() {
     assert_eq!(told.status, Some(0));
     assert_eq!(told.out.trim(), concat!("lodeshaft ", env!("CARGO_PKG_VERSION")));
 }
+
+#[test]
+fn completions_and_manual_pages_are_printed() {
+    let bench = Bench::new("manual");
+    for (shell, words) in [
+        ("bash", "complete -F"),
+        ("zsh", "#compdef lodeshaft"),
+        ("fish", "complete -c lodeshaft"),
+        ("powershell", "Register-ArgumentCompleter"),
+    ] {
+        let told = bench.run(&["completions", shell]);
+        assert_eq!(told.status, Some(0), "{shell}: {told:?}");
+        assert!(told.out.contains(words), "{shell}: {}", told.out);
+        assert!(told.out.contains("compare") && told.out.contains("--set"), "{shell}");
+    }
+    assert_eq!(bench.run(&["completions", "dos"]).status, Some(2));
+    let told = bench.run(&["man"]);
+    assert!(told.out.contains(".TH lodeshaft 1"), "{}", told.out);
+    assert!(told.out.contains("Exit status"), "{}", told.out);
+    let told = bench.run(&["man", "compare"]);
+    assert!(told.out.contains(".TH lodeshaft-compare 1"), "{}", told.out);
+    let told = bench.run(&["man", "compar"]);
+    assert_eq!(told.status, Some(2));
+    assert!(told.err.contains("did you mean `compare`?"), "{}", told.err);
+}
+
+/// Width and height of a PNG stand in its first chunk (ISO/IEC 15948, 11.2.2).
+fn png_size(bytes: &[u8]) -> (u32, u32) {
+    let number = |at: usize| u32::from_be_bytes(bytes[at..at + 4].try_into().unwrap());
+    (number(16), number(20))
+}
+
+#[test]
+fn charts_come_in_the_size_asked_for() {
+    let bench = Bench::new("sizes");
+    let size = |arguments: &[&str]| {
+        let told = bench.run(&[&["run", "small.yaml", "--quiet"], arguments].concat());
+        assert_eq!(told.status, Some(0), "{told:?}");
+        png_size(&std::fs::read(bench.path("output/small/run.png")).unwrap())
+    };
+    assert_eq!(size(&[]).0, 1440, "720 px at two to the pixel");
+    assert_eq!(size(&["--scale", "1"]).0, 720);
+    assert_eq!(size(&["--size", "900x600", "--scale", "1"]), (900, 600));
+    let (width, height) = size(&["--size", "slide", "--scale", "1"]);
+    assert!(width.abs_diff(960) <= 1 && height.abs_diff(540) <= 1, "{width} {height}");
+    for wrong in [["--scale", "0"], ["--scale", "nan"], ["--size", "poster"], ["--size", "1x1"]] {
+        let told = bench.run(&["run", "small.yaml", wrong[0], wrong[1]]);
+        assert_eq!(told.status, Some(2), "{wrong:?}: {told:?}");
+    }
+}
+
+#[test]
+#[cfg(target_os = "linux")]
+fn a_report_is_opened_by_the_desktop_when_asked() {
+    use std::os::unix::fs::PermissionsExt;
+    let bench = Bench::new("open");
+    std::fs::create_dir(bench.path("bin")).unwrap();
+    let script = format!("#!/bin/sh\necho \"$1\" > {}\n", bench.path("opened").display());
+    bench.write("bin/xdg-open", &script);
+    let mode = std::fs::Permissions::from_mode(0o755);
+    std::fs::set_permissions(bench.path("bin/xdg-open"), mode).unwrap();
+    let run = |path: &str| {
+        let mut command = bench.command(&["report", "small.yaml", "--quiet", "--open"]);
+        super::bench::Told::from(command.env("PATH", path).output().unwrap())
+    };
+    let told = run(&format!("{}:/usr/bin:/bin", bench.path("bin").display()));
+    assert_eq!(told.status, Some(0), "{told:?}");
+    for _ in 0..200 {
+        if bench.path("opened").exists() && bench.read("opened").ends_with('\n') {
+            break;
+        }
+        std::thread::sleep(std::time::Duration::from_millis(50));
+    }
+    assert_eq!(bench.read("opened").trim(), "output/small/report.html");
+    let told = run("/nowhere");
+    assert_eq!(told.status, Some(0), "the page stands: {told:?}");
+    assert!(told.err.contains("cannot be opened with `xdg-open`"), "{}", told.err);
+}

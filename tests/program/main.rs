@@ -31,6 +31,7 @@ mod starts;
 mod steady;
 mod stops;
 mod swing;
+mod torture;
 mod units;
 mod verdicts;
 mod verification;

@@ -10,6 +10,7 @@
 // Helpers of tests may fail by panicking, and results of tests are compared as they are.
 #![allow(clippy::unwrap_used, clippy::cast_precision_loss, clippy::float_cmp)]
 
+mod carried;
 mod cases;
 mod contract;
 mod helper;

@@ -98,12 +98,7 @@ fn load_cases(material: &Material<'_>, answer: &LoadCasesAnswer, study: &StudyRe
             ]);
             continue;
         }
-        let failing = case.requirements.iter().find(|one| one.met != Some(true));
-        let closest = case
-            .use_of_limit
-            .as_ref()
-            .and_then(|(_, name)| case.requirements.iter().find(|one| one.name == *name));
-        let told = failing.or(closest).or(case.requirements.first());
+        let told = case.told();
         let figure = |value: Option<f64>| {
             told.zip(value).map_or_else(
                 || "–".to_owned(),

@@ -210,9 +210,9 @@ fn sweep(answer: &SweepAnswer, rows: usize) -> String {
         failed => format!(", {failed} came to nothing"),
     };
     let slip = match answer.slipped {
-        0 => "none slips".to_owned(),
-        1 => "1 slips".to_owned(),
-        many => format!("{many} slip"),
+        0 => "no run slips".to_owned(),
+        1 => "1 run slips".to_owned(),
+        many => format!("{many} runs slip"),
     };
     format!("{met}{slip}{failed}.")
 }

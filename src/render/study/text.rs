@@ -88,13 +88,7 @@ fn load_cases(answer: &LoadCasesAnswer, result: &StudyResult, shown: Shown<'_>) 
             table.row([case.name.as_str(), verdict, reason.as_str(), "", "", "", ""]);
             continue;
         }
-        // What is not met comes first; else what comes closest to its limit.
-        let failing = case.requirements.iter().find(|one| one.met != Some(true));
-        let closest = case
-            .use_of_limit
-            .as_ref()
-            .and_then(|(_, name)| case.requirements.iter().find(|one| one.name == *name));
-        let told = failing.or(closest).or(case.requirements.first());
+        let told = case.told();
         let (name, found, limit) = match told {
             Some(one) => {
                 let figure = |value: Option<f64>| {
