@@ -2,7 +2,7 @@
 
 use super::Material;
 use super::figures::tidy;
-use super::html::{HtmlTable, escape};
+use super::html::{HtmlTable, escape, rich};
 use crate::analysis::estimates::EstimatesResult;
 use crate::analysis::modes::ModesResult;
 use crate::analysis::rainflow::RainflowResult;
@@ -93,7 +93,7 @@ pub fn estimates(material: &Material<'_>, answer: &EstimatesResult) -> String {
                 escape(one.figure),
                 figure(one.hand),
                 one.found.map_or_else(|| "–".to_owned(), figure),
-                escape(&why),
+                rich(&why),
             ]);
         }
     }

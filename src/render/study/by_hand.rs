@@ -33,7 +33,7 @@ pub fn members(answer: &EstimatesResult, shown: Shown<'_>) -> Sheet {
     let row = |gear: &GearEstimate, member: &MemberEstimate, first: bool| {
         vec![
             if first { gear.gear.clone() } else { String::new() },
-            format!("{} {}", member.member, member.body),
+            format!("{}, {}", member.member, member.body),
             shown.torque(member.pull_out_torque),
             inertia(member.side_inertia),
             member.other_side_inertia.map_or_else(dash, inertia),
