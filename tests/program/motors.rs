@@ -3,7 +3,7 @@
 //! The machine is that of Chapman, Electric Machinery Fundamentals, example 7-5: 460 V, 60 Hz, four
 //! poles, star, R1 0.641, X1 1.106, R2 0.332, X2 0.464, Xm 26.3 ohm (data read in a public exercise).
 //! Its exact circuit was evaluated apart from this program. The recorded transients come from an
-//! integration with SciPy (DOP853, relative tolerance 1e-12) of the textbook's flux linkages of
+//! integration with `SciPy` (DOP853, relative tolerance 1e-12) of the textbook's flux linkages of
 //! stator and rotor in a frame at rest, sinusoidal phase voltages and all: other states and another
 //! frame than the program's.
 
