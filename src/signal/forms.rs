@@ -126,10 +126,10 @@ fn table(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
     } else if matches!(kind.wanted, Some(Dimension::Speed | Dimension::Angle)) {
         fields.warn("unit", "the table has no unit, so its values are read in SI (rad, rad/s)");
     }
-    if let Some(unit) = &time_unit {
-        if let Err(fault) = quantity::parse(&format!("1 {unit}"), Dimension::Time) {
-            fault.report(&fields.path_of("time_unit"), &mut faults.borrow_mut());
-        }
+    if let Some(unit) = &time_unit
+        && let Err(fault) = quantity::parse(&format!("1 {unit}"), Dimension::Time)
+    {
+        fault.report(&fields.path_of("time_unit"), &mut faults.borrow_mut());
     }
     let columns = TableColumns { time, value, time_unit, unit };
     let named = ![&file, &columns.time, &columns.value].iter().any(|text| text.is_empty());
