@@ -102,7 +102,7 @@ pub fn shape(rows: &[[f64; 2]], count: f64) -> Result<Shape, String> {
     let fundamental = cosine.hypot(sine);
     let percent = |value: f64| format!("{} %", format_number(100.0 * value / fundamental, 3));
     let left = (&torque - form * &solved).norm() / (fitted.len() as f64).sqrt();
-    if !(fundamental > left) || fundamental == 0.0 {
+    if !fundamental.is_finite() || fundamental <= left || fundamental == 0.0 {
         return Err("the torques do not follow the angle over one pole pitch".to_owned());
     }
     if solved[0].abs() > ROOM * fundamental {

@@ -10,6 +10,7 @@ mod fatigue;
 mod friction;
 mod gears;
 mod limits;
+mod machines;
 mod sheet;
 mod slip;
 mod starts;
@@ -53,6 +54,7 @@ fn cases() -> Vec<Case> {
         vibration::cases,
         fatigue::cases,
         wind::cases,
+        machines::cases,
         units::cases,
     ]
     .iter()
