@@ -12,5 +12,6 @@ mod cli {
     mod signals;
     mod statuses;
     mod streams;
+    mod surroundings;
     mod tools;
 }

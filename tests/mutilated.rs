@@ -52,6 +52,14 @@ fn damage(text: &str, dice: &mut Dice) -> String {
     letters.into_iter().collect()
 }
 
+/// The most memory that this process has had, where the system tells.
+fn most_memory() -> String {
+    let status = std::fs::read_to_string("/proc/self/status").unwrap_or_default();
+    let line = status.lines().find_map(|line| line.strip_prefix("VmHWM:"));
+    line.map_or_else(|| "memory unknown".to_owned(), |most| format!("at most {}", most.trim()))
+}
+
+/// `LODESHAFT_FUZZ_ROUNDS` and `LODESHAFT_FUZZ_SEED` make it longer and other.
 #[test]
 fn a_damaged_file_never_panics_and_every_fault_prints() {
     let mut texts: Vec<String> = Vec::new();
@@ -64,10 +72,15 @@ fn a_damaged_file_never_panics_and_every_fault_prints() {
         files.sort();
         texts.extend(files.iter().map(|file| std::fs::read_to_string(file).unwrap()));
     }
-    let mut dice = Dice(11);
-    let mut refused = 0;
-    let rounds = 4000;
+    let number = |name: &str, usual: u64| {
+        std::env::var(name).ok().and_then(|text| text.parse().ok()).unwrap_or(usual)
+    };
+    let mut dice = Dice(number("LODESHAFT_FUZZ_SEED", 11));
+    let rounds = number("LODESHAFT_FUZZ_ROUNDS", 4000) as usize;
+    let (mut refused, begun) = (0, std::time::Instant::now());
+    let mut longest = std::time::Duration::ZERO;
     for round in 0..rounds {
+        let clock = std::time::Instant::now();
         // Every other time the first file, which is sound and knows every section.
         let text = damage(&texts[if round % 2 == 0 { 0 } else { round % texts.len() }], &mut dice);
         if let Err(failure) = load_text("damaged", Path::new("tests/rejected"), &text, &[]) {
@@ -75,6 +88,14 @@ fn a_damaged_file_never_panics_and_every_fault_prints() {
             let said = failure.render();
             assert!(said.starts_with("error: ") || said.starts_with("warning: "), "{said}");
         }
+        longest = longest.max(clock.elapsed());
     }
+    println!(
+        "{rounds} damaged files in {:.0} s, the longest {:.3} s, {refused} refused, {}",
+        begun.elapsed().as_secs_f64(),
+        longest.as_secs_f64(),
+        most_memory()
+    );
+    assert!(longest.as_secs() < 60, "a damaged file held the reader up for {longest:?}");
     assert!(refused > rounds / 4, "only {refused} of {rounds} damaged files were refused");
 }

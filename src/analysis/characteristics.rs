@@ -5,6 +5,7 @@ use crate::component::law::Law;
 use crate::component::load::LoadLaw;
 use crate::equations::{Equations, Owner, Shape};
 use crate::results::RunResult;
+use crate::signal::course::SlotId;
 
 /// Points of a curve.
 const POINTS: usize = 241;
@@ -16,9 +17,9 @@ pub struct Characteristics {
     pub motor: String,
     /// Its body.
     pub body: String,
-    /// Motor torque, `[rad/s, N*m]`, at the voltage and scale that stand at the end of the run.
+    /// Motor torque, `[rad/s, N*m]`, at the largest voltage and scale that the file shows.
     pub drive: Vec<[f64; 2]>,
-    /// Load torque in step, positive where it brakes.
+    /// Load torque in step, positive where it brakes, at the largest scale that the file shows.
     pub load: Option<Vec<[f64; 2]>>,
     /// Where the run came to rest: speed and torque.
     pub operating_point: Option<[f64; 2]>,
@@ -47,18 +48,24 @@ pub fn find(equations: &Equations, train: &Train, result: &RunResult) -> Option<
     };
     let top = if top.abs() > 0.0 { top } else { speed.max };
     let sense = top.signum();
+    let free = equations.bank.no_overrides();
+    let most = |slot| equations.bank.range_on(slot, 0.0, scenario.duration, &free).1;
+    let largest = |slots: &[(SlotId, i32)]| -> f64 {
+        slots.iter().map(|(slot, power)| most(*slot).powi(*power)).product()
+    };
+    let strength = largest(&term.factor.slots);
+    // A circuit is drawn at its largest voltage, on the line.
+    let parameters = term.parameters.map(|slot| slot.map_or(1.0, most));
     let value = |speed: f64| {
-        // A circuit is drawn as it is on the line.
-        let parameters = [1.0; 2];
         let piece = law.piece(sign * speed, parameters);
-        sense * sign * law.value(sign * speed, parameters, piece)
+        strength * sense * sign * law.value(sign * speed, parameters, piece)
     };
     let grid = |place: usize| top * place as f64 / (POINTS - 1) as f64;
     let drive = (0..POINTS).map(|place| [sense * grid(place), value(grid(place))]).collect();
     let own = train.bodies.iter().find(|body| body.name == motor.body)?.ratio?;
     let mut load = vec![0.0; POINTS];
     let mut any = false;
-    for (place, typed) in scenario.loads.iter().enumerate() {
+    for typed in &scenario.loads {
         let Some(ratio) =
             train.bodies.iter().find(|body| body.name == typed.body).and_then(|body| body.ratio)
         else {
@@ -68,15 +75,11 @@ pub fn find(equations: &Equations, train: &Train, result: &RunResult) -> Option<
             continue;
         }
         let referred = ratio / own;
+        let scale = equations.bank.find(&format!("loads.{}.scale", typed.name));
+        let scale = scale.map_or(1.0, |slot| largest(&[(slot, 1)]));
         for (slot, sum) in load.iter_mut().enumerate() {
-            if let Some(torque) = torque_at(
-                equations,
-                place,
-                typed.law.clone(),
-                grid(slot) * referred,
-                typed.reversed,
-            ) {
-                *sum -= sense * torque * referred;
+            if let Some(torque) = torque_at(&typed.law, grid(slot) * referred, typed.reversed) {
+                *sum -= sense * scale * torque * referred;
                 any = true;
             }
         }
@@ -99,13 +102,7 @@ pub fn find(equations: &Equations, train: &Train, result: &RunResult) -> Option<
 }
 
 /// Torque of a load on its body at a speed of it; `None` for loads that follow time.
-fn torque_at(
-    equations: &Equations,
-    place: usize,
-    law: LoadLaw,
-    speed: f64,
-    reversed: bool,
-) -> Option<f64> {
+fn torque_at(law: &LoadLaw, speed: f64, reversed: bool) -> Option<f64> {
     let sign = if reversed { -1.0 } else { 1.0 };
     match law {
         LoadLaw::Friction { sliding, .. } => {
@@ -115,13 +112,10 @@ fn torque_at(
         LoadLaw::PowerLaw { .. } => law
             .scalar()
             .map(|law| sign * law.value(sign * speed, [0.0; 2], law.piece_at(sign * speed))),
-        LoadLaw::Curve { .. } => {
-            let _ = (equations, place);
-            match law.scalar()? {
-                Law::LoadCurve(curve) => Some(-curve.sliding(speed.abs()).copysign(speed)),
-                _ => None,
-            }
-        }
+        LoadLaw::Curve { .. } => match law.scalar()? {
+            Law::LoadCurve(curve) => Some(-curve.sliding(speed.abs()).copysign(speed)),
+            _ => None,
+        },
         _ => None,
     }
 }

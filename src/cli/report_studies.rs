@@ -85,18 +85,7 @@ fn one(
     let columns = Columns::new(study::varied(study), study::layout(loaded, study), label);
     let mut begun = begin(place, &study.name, &work, &columns)?;
     let mut progress = StudyProgress::new(&study.name, common.quiet);
-    let ended = study::run(
-        loaded,
-        study,
-        StudyOptions {
-            threads: common.threads.map(usize::from),
-            interrupt: interrupt.flag(),
-            known: std::mem::take(&mut begun.known),
-            keep: &mut begun.journal,
-            watch: &mut progress,
-        },
-    );
-    progress.end();
+    let ended = super::study::make(loaded, study, common, interrupt, &mut begun, &mut progress);
     match ended {
         Ok(result) => {
             let answer = study_json::study(&result, &work);

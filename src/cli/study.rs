@@ -12,9 +12,10 @@ use crate::analysis::transient;
 use crate::diagnostic::{Severity, closest};
 use crate::render::folder::FolderFault;
 use crate::render::json;
-use crate::render::study::folder::StudyFolder;
+use crate::render::study::folder::{Begun, StudyFolder};
 use crate::render::study::rows::Columns;
 use crate::render::study::{json as study_json, of_one_run as one_run, text};
+use crate::scenario::Loaded;
 use clap::Args;
 use serde_json::{Map, Value};
 use std::collections::BTreeMap;
@@ -174,18 +175,7 @@ fn one(
         streams::complain(Severity::Warning, message, Some("--resume goes on with it"));
     }
     let mut progress = StudyProgress::new(&study.name, common.quiet);
-    let ended = study::run(
-        loaded,
-        study,
-        StudyOptions {
-            threads: common.threads.map(usize::from),
-            interrupt: interrupt.flag(),
-            known: std::mem::take(&mut begun.known),
-            keep: &mut begun.journal,
-            watch: &mut progress,
-        },
-    );
-    progress.end();
+    let ended = make(loaded, study, common, interrupt, &mut begun, &mut progress);
     let result = match ended {
         Ok(result) => result,
         Err(Stop::Interrupted) => {
@@ -288,4 +278,28 @@ fn judge(result: &StudyResult) -> Status {
 fn not_written(fault: &FolderFault) -> Status {
     streams::complain(Severity::Error, &fault.message, fault.hint.as_deref());
     Status::NotWritten
+}
+
+/// Makes the runs of a study that are not known yet; each is kept when it is done.
+pub(super) fn make(
+    loaded: &Loaded,
+    study: &Study,
+    common: &Common,
+    interrupt: &Interrupt,
+    begun: &mut Begun,
+    progress: &mut StudyProgress,
+) -> Result<StudyResult, Stop> {
+    let ended = study::run(
+        loaded,
+        study,
+        StudyOptions {
+            threads: common.threads.map(usize::from),
+            interrupt: interrupt.flag(),
+            known: std::mem::take(&mut begun.known),
+            keep: &mut begun.journal,
+            watch: progress,
+        },
+    );
+    progress.end();
+    ended
 }

@@ -108,7 +108,7 @@ impl Law {
             Self::OptimalPower(generator) => generator.value(x, piece),
             Self::PowerLaw(load) => load.value(x, piece),
             Self::LoadCurve(load) => load.value(x, piece),
-            Self::AxialRotor(rotor) => rotor.value(x, p),
+            Self::AxialRotor(rotor) => rotor.value(x, p, piece),
             Self::Periodic(load) => load.value(x),
             Self::Propeller(propeller) => propeller.value(x, p, piece),
             Self::Saturation { limits } => match piece {
@@ -139,7 +139,7 @@ impl Law {
             Self::OptimalPower(generator) => generator.slope(x, piece),
             Self::PowerLaw(load) => load.slope(x, piece),
             Self::LoadCurve(load) => load.slope(piece),
-            Self::AxialRotor(rotor) => rotor.slope(x, p),
+            Self::AxialRotor(rotor) => rotor.slope(x, p, piece),
             Self::Periodic(load) => load.slope(x),
             Self::Propeller(propeller) => propeller.slope(x, p, piece),
             Self::Saturation { .. } => f64::from(u8::from(piece == 1)),
@@ -150,6 +150,7 @@ impl Law {
     #[inline]
     pub fn axis(&self, x: f64, p: [f64; 2]) -> f64 {
         match self {
+            Self::AxialRotor(rotor) => rotor.tip_speed_ratio(x, p[0]),
             Self::Propeller(propeller) => propeller.advance_ratio(x, p[0]),
             Self::Circuit(_) | Self::Contactor => p[0],
             _ => x,
@@ -159,7 +160,10 @@ impl Law {
     /// True when the piece hangs on signals, not on the input alone.
     #[inline]
     pub fn piece_follows_signals(&self) -> bool {
-        matches!(self, Self::Propeller(_) | Self::Circuit(_) | Self::Contactor)
+        matches!(
+            self,
+            Self::AxialRotor(_) | Self::Propeller(_) | Self::Circuit(_) | Self::Contactor
+        )
     }
 
     /// The piece at an input and parameters.
@@ -186,8 +190,8 @@ impl Law {
             | Self::FadingDamper { .. }
             | Self::Cogging { .. }
             | Self::Induction(_)
-            | Self::AxialRotor(_)
             | Self::Periodic(_) => &[],
+            Self::AxialRotor(rotor) => rotor.boundaries(),
             Self::RatingPlate(motor) => motor.boundaries(),
             Self::MotorCurve(motor) => motor.boundaries(),
             Self::Circuit(_) | Self::Contactor => &CONNECTED,

@@ -3,10 +3,12 @@
 pub mod axial_rotor;
 pub mod curve;
 pub mod periodic;
+pub mod power_coefficient;
 pub mod power_law;
 pub mod propeller;
 pub mod propeller_series;
 mod read;
+mod read_coefficients;
 
 use crate::component::law::Law;
 use crate::signal::Signal;
@@ -74,6 +76,8 @@ pub enum LoadLaw {
         flow: Signal,
         /// rad.
         pitch: Signal,
+        /// Power coefficient over tip speed ratio and pitch.
+        coefficient: power_coefficient::PowerCoefficient,
     },
     /// By the body's angle: a mean against the motion, and harmonics of a turn.
     Periodic {
@@ -104,9 +108,9 @@ impl LoadLaw {
                 Some(Law::PowerLaw(power_law::PowerLaw::new(*torque, *speed, *exponent)))
             }
             Self::Curve { points } => Some(Law::LoadCurve(curve::LoadCurve::new(points))),
-            Self::AxialRotor { radius, density, .. } => {
-                Some(Law::AxialRotor(axial_rotor::AxialRotor::new(*radius, *density)))
-            }
+            Self::AxialRotor { radius, density, coefficient, .. } => Some(Law::AxialRotor(
+                axial_rotor::AxialRotor::new(*radius, *density, coefficient.clone()),
+            )),
             Self::Periodic { harmonics, .. } => {
                 Some(Law::Periodic(periodic::Periodic::new(harmonics)))
             }

@@ -287,7 +287,7 @@ impl Evaluator<'_> {
             return speed * radius / flow;
         }
         let Shape::Law(law) = &term.shape else { return 0.0 };
-        let torque = law.value(speed, [flow, pitch], 0);
+        let torque = law.value(speed, [flow, pitch], law.piece(speed, [flow, pitch]));
         let flow_power = 0.5 * density * PI * radius * radius * flow.powi(3);
         torque * speed / flow_power
     }

@@ -249,7 +249,7 @@ mod tests {
         assert_eq!(body["properties"]["inertia"]["anyOf"][0]["minimum"], json!(0));
         let motor = &schema["properties"]["motors"]["additionalProperties"]["properties"];
         assert!(motor["law"]["properties"]["rating_plate"].is_object());
-        assert!(motor["law"]["properties"]["induction_circuit"].is_null(), "not in this version");
+        assert!(motor["law"]["properties"]["induction_circuit"].is_object());
         assert_eq!(schema["required"], json!(["lodeshaft", "duration"]));
         let study = &schema["properties"]["studies"]["additionalProperties"]["properties"];
         assert!(study["margin"]["properties"]["between"].is_object());

@@ -206,6 +206,16 @@ fn warn_of_held_ends(path: &str, signal: &Signal, duration: f64, faults: &mut Di
         let (rows, path) = match inside {
             Signal::Points(rows) => (rows, format!("{path}.points")),
             Signal::Table { rows, .. } => (rows, format!("{path}.table.file")),
+            Signal::Turbulence(spectrum) if spectrum.period() < duration => {
+                faults.warning(
+                    format!("{path}.turbulence"),
+                    format!(
+                        "the wind repeats after {} s; a lower `highest_frequency` makes that longer",
+                        format_number(spectrum.period(), 4)
+                    ),
+                );
+                return;
+            }
             _ => return,
         };
         let (Some(first), Some(last)) = (rows.first(), rows.last()) else { return };

@@ -65,17 +65,17 @@ pub fn check_use(
         Signal::Product { .. } => {
             check_members(path, signal, named, faults);
             let found = effective_dimension(signal, named, named.len());
-            if let Some(found) = found.filter(|found| *found != dimension) {
-                if !faults.has_error_under(path) {
-                    faults.error(
-                        path,
-                        format!(
-                            "this product is {}, but {} is needed here",
-                            found.with_article(),
-                            dimension.with_article()
-                        ),
-                    );
-                }
+            if let Some(found) = found.filter(|found| *found != dimension)
+                && !faults.has_error_under(path)
+            {
+                faults.error(
+                    path,
+                    format!(
+                        "this product is {}, but {} is needed here",
+                        found.with_article(),
+                        dimension.with_article()
+                    ),
+                );
             }
         }
         _ => {}
@@ -154,7 +154,7 @@ fn effective_dimension(signal: &Signal, named: &[NamedSignal], depth: usize) -> 
             .iter()
             .filter_map(|member| effective_dimension(member, named, depth))
             .find(|dimension| *dimension != Dimension::One),
-        Signal::ExtremeGust { .. } => Some(Dimension::LinearSpeed),
+        Signal::ExtremeGust { .. } | Signal::Turbulence(_) => Some(Dimension::LinearSpeed),
         _ => None,
     }
 }

@@ -2,6 +2,7 @@
 
 use super::kind::Kind;
 use super::table::TableColumns;
+use super::turbulence::{LENGTH_SCALE, Spectrum};
 use super::{Signal, gust};
 use crate::quantity::{self, Dimension, format_number};
 use crate::tree::{Fields, Range, Shape};
@@ -9,13 +10,18 @@ use crate::tree::{Fields, Range, Shape};
 /// One form: its key, its documentation, how its map is read.
 type Form = (&'static str, &'static str, fn(&mut Fields<'_>, &mut Kind) -> Option<Signal>);
 
-const FORMS: [Form; 6] = [
+const FORMS: [Form; 7] = [
     ("step", "One value before an instant, another from then on.", step),
     ("ramp", "A straight line between two held values.", ramp),
     ("pulse", "One value between two instants, another outside.", pulse),
     ("sine", "Mean + amplitude*sin(2 pi frequency t + phase).", sine),
     ("table", "Two columns of a CSV file, straight lines between its rows.", table),
     ("extreme_gust", "Extreme operating gust of IEC 61400-1, 10.5 s long.", extreme_gust),
+    (
+        "turbulence",
+        "Turbulent wind at one point by Kaimal's spectrum, drawn from a seed.",
+        turbulence,
+    ),
 ];
 
 /// Reads the map of a form by its key.
@@ -120,10 +126,10 @@ fn table(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
     } else if matches!(kind.wanted, Some(Dimension::Speed | Dimension::Angle)) {
         fields.warn("unit", "the table has no unit, so its values are read in SI (rad, rad/s)");
     }
-    if let Some(unit) = &time_unit {
-        if let Err(fault) = quantity::parse(&format!("1 {unit}"), Dimension::Time) {
-            fault.report(&fields.path_of("time_unit"), &mut faults.borrow_mut());
-        }
+    if let Some(unit) = &time_unit
+        && let Err(fault) = quantity::parse(&format!("1 {unit}"), Dimension::Time)
+    {
+        fault.report(&fields.path_of("time_unit"), &mut faults.borrow_mut());
     }
     let columns = TableColumns { time, value, time_unit, unit };
     let named = ![&file, &columns.time, &columns.value].iter().any(|text| text.is_empty());
@@ -164,4 +170,62 @@ fn extreme_gust(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
         return None;
     }
     sound([start, hub_wind, magnitude], Signal::ExtremeGust { start, hub_wind, magnitude })
+}
+
+fn turbulence(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
+    let mean =
+        fields.quantity("mean", Dimension::LinearSpeed, Range::Positive, "Mean speed of the wind.");
+    let intensity = fields.quantity_optional(
+        "intensity",
+        Dimension::One,
+        Range::Between(0.0, 1.0),
+        "Standard deviation over mean; or `turbulence_class` instead.",
+    );
+    let classed = fields.has("turbulence_class");
+    let class = fields.one_of(
+        "turbulence_class",
+        &["A+", "A", "B", "C"],
+        false,
+        "Class of IEC 61400-1: sigma = Iref (0.75 mean + 5.6 m/s).",
+    );
+    let length_scale = fields.quantity_or(
+        "length_scale",
+        Dimension::Length,
+        Range::Positive,
+        LENGTH_SCALE,
+        "Integral scale of the spectrum: 340.2 m for hubs above 60 m, else 5.67 times the height.",
+    );
+    let seed =
+        fields.whole_optional("seed", 0, i64::MAX, "Another seed is another wind; default 1.");
+    let highest_frequency = fields.quantity_or(
+        "highest_frequency",
+        Dimension::Frequency,
+        Range::Positive,
+        2.0,
+        "Eddies faster than this are left out, and their variance with them.",
+    );
+    let here = fields.path().to_owned();
+    kind.meet(&here, Some(Dimension::LinearSpeed), &mut fields.faults().borrow_mut());
+    match (intensity.is_some(), classed) {
+        (true, true) => fields.fault(
+            "turbulence_class",
+            "either `intensity` or `turbulence_class` is stated, not both",
+        ),
+        (false, false) => {
+            fields.fault_here("`intensity` is missing (or `turbulence_class` in its place)");
+        }
+        _ => {}
+    }
+    let deviation = match intensity {
+        Some(intensity) => intensity * mean,
+        None => gust::standard_deviation(class, mean),
+    };
+    let spectrum = Spectrum {
+        mean,
+        deviation,
+        length_scale,
+        highest_frequency,
+        seed: seed.unwrap_or(1).unsigned_abs(),
+    };
+    sound([mean, deviation, length_scale, highest_frequency], Signal::Turbulence(spectrum))
 }

@@ -10,6 +10,7 @@ mod range;
 pub mod read;
 mod shape;
 pub mod table;
+pub mod turbulence;
 
 use crate::quantity::Dimension;
 use table::TableColumns;
@@ -86,6 +87,8 @@ pub enum Signal {
         /// Gust magnitude of the standard, m/s.
         magnitude: f64,
     },
+    /// Turbulent wind at a point by Kaimal's spectrum.
+    Turbulence(turbulence::Spectrum),
     /// Sum of signals of one dimension.
     Sum(Vec<Signal>),
     /// Product, at most one member with a dimension.

@@ -127,10 +127,6 @@ fn read_form(
             read.collect::<Vec<_>>().into_iter().collect::<Option<_>>().map(Signal::Sum)
         }
         "product" => read_product(&inner, inside, kind, faults),
-        "turbulence" => {
-            faults.borrow_mut().error(inner, "`turbulence` is not in this version of the program");
-            None
-        }
         form if FORMS.contains(&form) => {
             Fields::read(inner, inside, faults, |fields| forms::read(form, fields, kind))
         }

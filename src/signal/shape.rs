@@ -6,7 +6,9 @@
 //! jump, and the branch an integrator needs within a segment.
 
 use super::gust;
+use super::turbulence::{Spectrum, Turbulence};
 use std::f64::consts::TAU;
+use std::sync::Arc;
 
 /// A time, from the right (`after`) or from the left.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -119,6 +121,7 @@ pub(super) enum Shape {
     Lines(Lines),
     Sine { mean: f64, amplitude: f64, omega: f64, phase: f64 },
     Gust { start: f64, end: f64, hub_wind: f64, magnitude: f64 },
+    Turbulence { mean: f64, course: Arc<Turbulence> },
 }
 
 impl Shape {
@@ -133,6 +136,13 @@ impl Shape {
         Self::Gust { start, end: start + gust::DURATION, hub_wind, magnitude }
     }
 
+    pub(super) fn turbulence(spectrum: &Spectrum) -> Self {
+        if spectrum.deviation == 0.0 {
+            return Self::Constant(spectrum.mean);
+        }
+        Self::Turbulence { mean: spectrum.mean, course: Arc::new(Turbulence::new(spectrum)) }
+    }
+
     /// The value at `time` of the branch that is live at `at`.
     #[inline]
     pub(super) fn value(&self, time: f64, at: Moment) -> f64 {
@@ -142,6 +152,7 @@ impl Shape {
             Self::Sine { mean, amplitude, omega, phase } => {
                 mean + amplitude * (omega * time + phase).sin()
             }
+            Self::Turbulence { mean, course } => mean + course.value(time),
             Self::Gust { start, end, hub_wind, magnitude } => {
                 if at.is_past(*start) && !at.is_past(*end) {
                     hub_wind + magnitude * gust::shape(time - start)
@@ -160,6 +171,7 @@ impl Shape {
             Self::Sine { amplitude, omega, phase, .. } => {
                 amplitude * omega * (omega * time + phase).cos()
             }
+            Self::Turbulence { course, .. } => course.slope(time),
             Self::Gust { start, end, magnitude, .. } => {
                 if at.is_past(*start) && !at.is_past(*end) {
                     magnitude * gust::shape_slope(time - start)
@@ -173,7 +185,7 @@ impl Shape {
     /// The first corner or jump after `time`.
     pub(super) fn next_kink(&self, time: f64) -> Option<f64> {
         match self {
-            Self::Constant(_) | Self::Sine { .. } => None,
+            Self::Constant(_) | Self::Sine { .. } | Self::Turbulence { .. } => None,
             Self::Lines(lines) => lines.next_start(time),
             Self::Gust { start, end, .. } => [*start, *end].into_iter().find(|kink| *kink > time),
         }
@@ -184,7 +196,7 @@ impl Shape {
         let at = Moment::after(from);
         let still = match self {
             Self::Constant(_) => true,
-            Self::Sine { .. } => false,
+            Self::Sine { .. } | Self::Turbulence { .. } => false,
             Self::Lines(lines) => lines.line(at).slope == 0.0,
             Self::Gust { .. } => self.cap(from, to).is_none(),
         };
@@ -200,6 +212,7 @@ impl Shape {
         match self {
             Self::Constant(_) | Self::Lines(_) => None,
             Self::Sine { omega, .. } => Some(TAU / omega / 6.0),
+            Self::Turbulence { course, .. } => Some(course.step()),
             Self::Gust { start, end, .. } => {
                 (from < *end && to > *start).then_some(gust::DURATION / 50.0)
             }

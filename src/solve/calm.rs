@@ -156,7 +156,6 @@ impl Calm {
         probe.values(state, &mut frame, &mut centre, Some(&mut slack));
         self.values.clone_from(&frame.channels);
         let size = state.len();
-        let mut reach = vec![self.widest; centre.len()];
         let mut slopes = vec![vec![0.0_f64; size]; centre.len()];
         let mut moved = state.to_vec();
         let mut values = Vec::new();
@@ -181,7 +180,6 @@ impl Calm {
                         f64::min(width[place], slack / (2.0 * used as f64 * slopes[index][place]));
                 }
             }
-            reach[index] = *slack;
         }
         let still = rate.iter().zip(&width).all(|(rate, width)| (rate * step).abs() < 0.25 * width);
         if !still {

@@ -1,6 +1,7 @@
 //! From the recorder of a finished run to its results.
 
 use super::run::Run;
+use crate::component::load::LoadLaw;
 use crate::equations::frame::load_angle;
 use crate::equations::{Equations, Owner, Shape, energy};
 use crate::results::{
@@ -203,9 +204,7 @@ fn audit(equations: &Equations, run: &Run<'_, '_>, stored: f64) -> Energy {
 fn warn_of_rotors(run: &mut Run<'_, '_>) {
     let equations = run.equations;
     for load in &equations.model.scenario.loads {
-        if !matches!(load.law, crate::component::load::LoadLaw::AxialRotor { .. }) {
-            continue;
-        }
+        let LoadLaw::AxialRotor { coefficient, .. } = &load.law else { continue };
         let extreme = |what: &str| {
             let name = format!("{}.{what}", load.name);
             let place = equations.model.channels.iter().position(|channel| channel.name == name)?;
@@ -221,6 +220,10 @@ fn warn_of_rotors(run: &mut Run<'_, '_>) {
         }
         if extreme("power_coefficient").is_some_and(|power| power.min < 0.0) {
             texts.push("the power coefficient is negative at times: the train drives the rotor");
+        }
+        let last = coefficient.boundaries().last();
+        if extreme("tip_speed_ratio").zip(last).is_some_and(|(ratio, last)| ratio.max > *last) {
+            texts.push("the tip speed ratio leaves the rows of the power coefficient; the last one is held there");
         }
         let path = format!("loads.{}.law.axial_rotor", load.name);
         run.warnings.extend(texts.into_iter().map(|text| (path.clone(), text.to_owned())));

@@ -50,12 +50,13 @@ impl Run<'_, '_> {
 
     /// Where a signal or a pole has carried a law over several pieces at once, they count as one.
     fn catch_up(&mut self, term: usize) {
-        let Shape::Law(law) = &self.equations.terms[term].shape else { return };
         for machine in &self.equations.machines {
             machine.open(&self.mode, &mut self.state);
         }
+        // Behind the terms stand the frictions, whose curves follow no signal.
+        let Some(term_of) = self.equations.terms.get(term) else { return };
+        let Shape::Law(law) = &term_of.shape else { return };
         if law.piece_follows_signals() {
-            let term_of = &self.equations.terms[term];
             let input =
                 mode::input(self.equations, term_of, self.time, &self.state, &self.overrides);
             let parameters = mode::parameters(self.equations, term_of, self.time, &self.overrides);
@@ -243,6 +244,12 @@ impl Run<'_, '_> {
         }
         if let Some(magnet) = self.equations.phase_state.iter().position(|state| *state == place) {
             return format!("the phase of `{}`", self.equations.model.magnets[magnet].name);
+        }
+        let machine =
+            self.equations.machines.iter().find(|machine| machine.states.contains(&place));
+        if let Some(machine) = machine {
+            let motor = &scenario.motors[machine.motor];
+            return format!("current and flux of `{}`", motor.name);
         }
         "a controller".to_owned()
     }

@@ -203,13 +203,6 @@ impl<'a> Fields<'a> {
     pub fn miss(&mut self, key: &'static str, hint: impl Into<String>) {
         self.missing.push((key, Some(hint.into())));
     }
-    /// Refuses a key of the contract that this version does not know yet.
-    pub fn later(&mut self, key: &'static str) {
-        self.asked.push(key);
-        if self.has(key) {
-            self.fault(key, format!("`{key}` is not in this version of the program"));
-        }
-    }
 
     /// Reports every key that was never asked for and every required one that is missing.
     ///

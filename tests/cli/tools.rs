@@ -123,7 +123,8 @@ fn completions_and_manual_pages_are_printed() {
         let told = bench.run(&["completions", shell]);
         assert_eq!(told.status, Some(0), "{shell}: {told:?}");
         assert!(told.out.contains(words), "{shell}: {}", told.out);
-        assert!(told.out.contains("compare") && told.out.contains("--set"), "{shell}");
+        let option = if shell == "fish" { "-l set" } else { "--set" };
+        assert!(told.out.contains("compare") && told.out.contains(option), "{shell}");
     }
     assert_eq!(bench.run(&["completions", "dos"]).status, Some(2));
     let told = bench.run(&["man"]);

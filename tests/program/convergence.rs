@@ -149,7 +149,12 @@ fn errors_fall_with_the_tolerance_and_the_steps() {
                     "{method}, {case}, {figure}: tolerance^{rate:.2}, steps^-{found:.2}, {:.1e} at {:e}: {by_tolerance:?}",
                     by_tolerance[4].1, by_tolerance[4].0
                 );
-                assert!((0.6..1.4).contains(&rate), "{method}, {case}, {figure}: {by_tolerance:?}");
+                // Events on the way make the few errors of a fit scatter.
+                let least = if smooth { 0.75 } else { 0.4 };
+                assert!(
+                    (least..1.4).contains(&rate),
+                    "{method}, {case}, {figure}: {by_tolerance:?}"
+                );
                 assert!(
                     !smooth || (0.8 * order..1.4 * order).contains(&found),
                     "{method}, {case}, {figure}: {by_steps:?}"

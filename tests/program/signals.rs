@@ -142,11 +142,6 @@ fn turbulence_has_its_mean_and_spread_and_repeats() {
             head(600.0, 0.5, 1e-6),
         )
     };
-    let refused = run(&scenario(1));
-    if refused.stderr.contains("not in this version") {
-        assert_eq!(refused.status, Some(2));
-        return;
-    }
     let flow = |seed: u32| run_well(&scenario(seed)).series().column("blades.flow");
     let first = flow(1);
     assert_eq!(first, flow(1));

@@ -31,10 +31,6 @@ impl Rows {
     /// Adds the keys below a path; keys of a choice are not required one by one.
     fn add(&mut self, path: &str, fields: &[FieldDescription], counted: bool) {
         for field in fields {
-            if field.doc.is_empty() {
-                // Known but not in this version.
-                continue;
-            }
             let key = if path.is_empty() {
                 field.key.to_owned()
             } else {

@@ -136,6 +136,19 @@ pub struct CaseAnswer {
     pub use_of_limit: Option<(f64, String)>,
 }
 
+impl CaseAnswer {
+    /// The requirement to tell of: one that is not met, else the one that comes closest to its
+    /// limit, else the first.
+    pub fn told(&self) -> Option<&RequirementResult> {
+        let failing = self.requirements.iter().find(|one| one.met != Some(true));
+        let closest = self
+            .use_of_limit
+            .as_ref()
+            .and_then(|(_, name)| self.requirements.iter().find(|one| one.name == *name));
+        failing.or(closest).or(self.requirements.first())
+    }
+}
+
 /// A map over one or two numbers.
 #[derive(Clone, Debug, PartialEq)]
 pub struct SweepAnswer {

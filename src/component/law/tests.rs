@@ -1,8 +1,73 @@
 //! What holds for every law: derivatives, pieces, smoothness beyond their ends.
 
 use super::*;
+use crate::component::load::periodic::TurnHarmonic;
+use crate::component::load::power_coefficient::{DEFAULT, PowerCoefficient, Rows};
+use crate::component::load::propeller::TorqueCoefficient;
 use crate::component::magnetic_gear::Harmonic;
 use crate::component::motor::Plate;
+use crate::component::motor::circuit::CircuitFigures;
+
+fn rotor(coefficient: PowerCoefficient) -> AxialRotor {
+    AxialRotor::new(40.0, 1.225, coefficient)
+}
+
+/// A law whose pieces hang on signals too.
+fn laws_cut_by_signals() -> Vec<(&'static str, Law, [f64; 2], f64)> {
+    let rows = Rows::new(
+        vec![2.0, 6.0, 10.0],
+        vec![0.0, 0.1],
+        vec![vec![0.1, 0.08], vec![0.45, 0.3], vec![0.25, 0.1]],
+    );
+    let lines = TorqueCoefficient::points(&[[0.0, 0.07], [0.5, 0.05], [1.0, 0.01]]);
+    let circuit = Circuit::new(CircuitFigures {
+        line_voltage: 460.0,
+        frequency: 60.0,
+        pole_pairs: 2,
+        stator_resistance: 0.641,
+        stator_reactance: 1.106,
+        rotor_resistance: 0.332,
+        rotor_reactance: 0.464,
+        magnetising_reactance: 26.3,
+    });
+    vec![
+        ("rotor by rows", Law::AxialRotor(rotor(PowerCoefficient::Rows(rows))), [11.0, 0.05], 5.0),
+        ("propeller", Law::Propeller(Propeller::new(4.0, 1025.0, lines)), [6.0, 0.0], 40.0),
+        ("circuit", Law::Circuit(circuit.clone()), [1.0, 0.0], 400.0),
+        ("open circuit", Law::Circuit(circuit), [0.4, 0.0], 400.0),
+        ("contactor", Law::Contactor, [1.0, 0.8], 1.0),
+    ]
+}
+
+#[test]
+fn laws_cut_by_signals_are_smooth_within_a_piece_and_meet_at_its_ends() {
+    for (name, law, p, reach) in laws_cut_by_signals() {
+        assert!(law.piece_follows_signals(), "{name}");
+        for step in 0..401 {
+            let x = reach * (f64::from(step) - 200.3) / 200.0;
+            let piece = law.piece(x, p);
+            let h = 1e-7 * reach;
+            let (below, above) = (law.value(x - h, p, piece), law.value(x + h, p, piece));
+            let slope = law.slope(x, p, piece);
+            let size = (law.value(x, p, piece) / reach).abs() + slope.abs();
+            // A rotor's torque has a corner at standstill, where it is held.
+            let corner = name.starts_with("rotor") && x.abs() < 1e-3;
+            let off = ((above - below) / (2.0 * h) - slope).abs();
+            assert!(corner || off < 1e-4 * size + 1e-9, "{name} at {x}: {slope}");
+            let next = x + reach / 200.0;
+            if law.piece(next, p) == piece + 1 && !name.contains("circuit") {
+                // The boundary lies between: both formulas agree at it.
+                let (mut low, mut high) = (x, next);
+                for _ in 0..80 {
+                    let middle = 0.5 * (low + high);
+                    if law.piece(middle, p) == piece { low = middle } else { high = middle }
+                }
+                let (one, other) = (law.value(low, p, piece), law.value(low, p, piece + 1));
+                assert!((one - other).abs() < 1e-9 * one.abs().max(1.0), "{name}: {one} {other}");
+            }
+        }
+    }
+}
 
 fn every_law() -> Vec<(&'static str, Law, [f64; 2], f64)> {
     let harmonics = [Harmonic { order: 3, amplitude: 0.04, phase: 0.3 }];
@@ -18,6 +83,7 @@ fn every_law() -> Vec<(&'static str, Law, [f64; 2], f64)> {
     let points = [[-10.0, 5.0], [0.0, 300.0], [140.0, 450.0], [157.0, 0.0]];
     let load = [[0.0, 50.0], [10.0, 20.0], [40.0, 90.0]];
     let none = [0.0, 0.0];
+    let beat = [TurnHarmonic { order: 3, amplitude: 30.0, phase: 0.3 }];
     vec![
         ("unit", Law::Unit, none, 10.0),
         ("magnet", Law::Magnet(MagnetLaw::new(75.0, &[]).unwrap()), none, 4.0),
@@ -33,7 +99,8 @@ fn every_law() -> Vec<(&'static str, Law, [f64; 2], f64)> {
         ("cubic load", Law::PowerLaw(PowerLaw::new(700.0, 28.0, 3.0)), none, 60.0),
         ("odd load", Law::PowerLaw(PowerLaw::new(700.0, 28.0, 1.6)), none, 60.0),
         ("load curve", Law::LoadCurve(LoadCurve::new(&load)), none, 60.0),
-        ("rotor", Law::AxialRotor(AxialRotor::new(40.0, 1.225)), [11.0, 0.05], 5.0),
+        ("rotor", Law::AxialRotor(rotor(PowerCoefficient::Formula(DEFAULT))), [11.0, 0.05], 5.0),
+        ("beat", Law::Periodic(Periodic::new(&beat)), none, 4.0),
         ("saturation", Law::saturation(3.0), none, 9.0),
     ]
 }

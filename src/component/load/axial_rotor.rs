@@ -3,20 +3,21 @@
 //! ```text
 //! lambda = speed*radius/flow                                          tip speed ratio
 //! torque = 1/2 density pi radius^3 flow^2 Cp(lambda, pitch)/lambda    N*m
-//! Cp     = 0.73 (151 z - 0.58 b - 0.002 b^2.14 - 13.2) exp(-18.4 z)
-//! z      = 1/(lambda - 0.02 b) - 0.003/(b^3 + 1)                      b pitch in degrees
 //! ```
 //!
-//! Coefficients: Slootweg, Polinder and Kling, IEEE Trans. Power Systems 18(1) (2003) 144-151.
 //! Below `lambda = 1e-6` (standstill, reverse) the value there holds; no flow gives no torque.
-//! At `lambda <= 0.02 b` the formula's own limit from above, zero, is taken. A negative pitch
-//! is read as zero: the formula has a pole there. At high tip speed ratio, or with much pitch,
-//! Cp is negative and the rotor brakes; at a feathered pitch by more than a real one does.
+//! At high tip speed ratio, or with much pitch, the default Cp is negative and the rotor brakes;
+//! at a feathered pitch by more than a real one does. A constant Cp means constant power: its
+//! torque grows without bound towards standstill.
 
+use super::power_coefficient::PowerCoefficient;
 use std::f64::consts::PI;
 
 /// The tip speed ratio below which the torque holds.
 pub const SMALLEST_TIP_SPEED_RATIO: f64 = 1e-6;
+
+/// Beyond this a tip speed ratio says no more.
+const LARGEST_TIP_SPEED_RATIO: f64 = 1e12;
 
 /// An axial-flow rotor.
 #[derive(Clone, Debug, PartialEq)]
@@ -24,27 +25,28 @@ pub struct AxialRotor {
     radius: f64,
     /// 1/2 density pi radius^3.
     scale: f64,
+    coefficient: PowerCoefficient,
 }
 
 impl AxialRotor {
     /// From the radius (m) and the density of the fluid (kg/m3), both above zero.
-    pub fn new(radius: f64, density: f64) -> Self {
-        Self { radius, scale: 0.5 * density * PI * radius * radius * radius }
+    pub fn new(radius: f64, density: f64, coefficient: PowerCoefficient) -> Self {
+        Self { radius, scale: 0.5 * density * PI * radius * radius * radius, coefficient }
     }
 
     /// Torque at a speed in rad/s with the parameters flow (m/s) and pitch (rad).
     #[inline]
-    pub fn value(&self, speed: f64, [flow, pitch]: [f64; 2]) -> f64 {
+    pub fn value(&self, speed: f64, [flow, pitch]: [f64; 2], piece: usize) -> f64 {
         if flow <= 0.0 {
             return 0.0;
         }
         let ratio = (speed * self.radius / flow).max(SMALLEST_TIP_SPEED_RATIO);
-        self.scale * flow * flow * power_coefficient(ratio, pitch) / ratio
+        self.scale * flow * flow * self.coefficient.at(ratio, pitch, piece).0 / ratio
     }
 
     /// Derivative of the torque with respect to the speed.
     #[inline]
-    pub fn slope(&self, speed: f64, [flow, pitch]: [f64; 2]) -> f64 {
+    pub fn slope(&self, speed: f64, [flow, pitch]: [f64; 2], piece: usize) -> f64 {
         if flow <= 0.0 {
             return 0.0;
         }
@@ -52,60 +54,38 @@ impl AxialRotor {
         if ratio < SMALLEST_TIP_SPEED_RATIO {
             return 0.0;
         }
-        let (coefficient, slope) = coefficient_and_slope(ratio, pitch);
+        let (coefficient, slope) = self.coefficient.at(ratio, pitch, piece);
         self.scale * flow * self.radius * (slope - coefficient / ratio) / ratio
     }
 
-    /// Tip speed ratio at a speed in rad/s; 0 without flow.
+    /// Tip speed ratio at a speed in rad/s; very large without flow, where nothing hangs on it.
+    #[inline]
     pub fn tip_speed_ratio(&self, speed: f64, flow: f64) -> f64 {
-        if flow <= 0.0 { 0.0 } else { speed * self.radius / flow }
-    }
-
-    /// Power coefficient at a speed in rad/s; 0 without flow.
-    pub fn power_coefficient(&self, speed: f64, [flow, pitch]: [f64; 2]) -> f64 {
         if flow <= 0.0 {
-            return 0.0;
+            return LARGEST_TIP_SPEED_RATIO;
         }
-        power_coefficient((speed * self.radius / flow).max(SMALLEST_TIP_SPEED_RATIO), pitch)
+        (speed * self.radius / flow).clamp(-LARGEST_TIP_SPEED_RATIO, LARGEST_TIP_SPEED_RATIO)
     }
-}
 
-/// Power coefficient at a tip speed ratio above zero and a pitch in rad.
-pub fn power_coefficient(ratio: f64, pitch: f64) -> f64 {
-    coefficient_and_slope(ratio, pitch).0
-}
-
-/// Power coefficient and its derivative with respect to the tip speed ratio.
-#[inline]
-fn coefficient_and_slope(ratio: f64, pitch: f64) -> (f64, f64) {
-    let (offset, lift, bias) = if pitch > 0.0 {
-        let degrees = pitch.to_degrees();
-        (
-            0.02 * degrees,
-            0.003 / (degrees * degrees * degrees + 1.0),
-            0.58 * degrees + 0.002 * degrees.powf(2.14) + 13.2,
-        )
-    } else {
-        (0.0, 0.003, 13.2)
-    };
-    let reach = ratio - offset;
-    if reach <= 0.0 {
-        return (0.0, 0.0);
+    /// Tip speed ratios at which the line of the power coefficient changes.
+    #[inline]
+    pub fn boundaries(&self) -> &[f64] {
+        self.coefficient.boundaries()
     }
-    let inverse = 1.0 / reach;
-    let z = inverse - lift;
-    let decay = 0.73 * (-18.4 * z).exp();
-    if decay == 0.0 {
-        // Also keeps an infinite `inverse` from making NaN of zero.
-        return (0.0, 0.0);
-    }
-    let blade = 151.0 * z - bias;
-    (decay * blade, decay * (18.4 * blade - 151.0) * inverse * inverse)
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::component::load::power_coefficient::DEFAULT;
+
+    fn rotor() -> AxialRotor {
+        AxialRotor::new(40.0, 1.225, PowerCoefficient::Formula(DEFAULT))
+    }
+
+    fn power_coefficient(ratio: f64, pitch: f64) -> f64 {
+        PowerCoefficient::Formula(DEFAULT).at(ratio, pitch, 0).0
+    }
 
     // Slootweg, Polinder and Kling (2003), set of constants of the file's head: best point in
     // closed form 1/li = 13.2/151 + 1/18.4, and values computed from the formula by hand.
@@ -130,30 +110,30 @@ mod tests {
     // P_wind = 1/2 density pi R^2 flow^3: 5320098.6633 W for a diameter of 80 m and 12 m/s.
     #[test]
     fn torque_times_speed_is_the_coefficient_times_the_power_of_the_wind() {
-        let rotor = AxialRotor::new(40.0, 1.225);
+        let rotor = rotor();
         let speed = 7.0 * 12.0 / 40.0;
         let wind = 5320098.6633;
-        let power = rotor.value(speed, [12.0, 0.0]) * speed;
+        let power = rotor.value(speed, [12.0, 0.0], 0) * speed;
         assert!((power / wind - power_coefficient(7.0, 0.0)).abs() < 1e-10);
         assert!((rotor.tip_speed_ratio(speed, 12.0) - 7.0).abs() < 1e-12);
     }
 
     #[test]
     fn the_torque_is_finite_at_rest_in_reverse_without_flow_and_at_any_pitch() {
-        let rotor = AxialRotor::new(40.0, 1.225);
+        let rotor = rotor();
         for pitch in [-0.2, 0.0, 1e-9, 0.1, 0.5, 1.5] {
             for speed in [-3.0, 0.0, 1e-12, 1e-3, 0.05, 0.3, 30.0] {
                 for flow in [-5.0, 0.0, 1e-9, 3.0, 50.0] {
                     let p = [flow, pitch];
-                    assert!(rotor.value(speed, p).is_finite(), "{speed} {p:?}");
-                    assert!(rotor.slope(speed, p).is_finite(), "{speed} {p:?}");
+                    assert!(rotor.value(speed, p, 0).is_finite(), "{speed} {p:?}");
+                    assert!(rotor.slope(speed, p, 0).is_finite(), "{speed} {p:?}");
                 }
             }
         }
-        assert!(rotor.value(2.0, [0.0, 0.0]).abs() < 1e-300);
+        assert!(rotor.value(2.0, [0.0, 0.0], 0).abs() < 1e-300);
         assert_eq!(
-            rotor.value(-2.0, [9.0, 0.0]).to_bits(),
-            rotor.value(0.0, [9.0, 0.0]).to_bits(),
+            rotor.value(-2.0, [9.0, 0.0], 0).to_bits(),
+            rotor.value(0.0, [9.0, 0.0], 0).to_bits(),
             "in reverse as at rest"
         );
     }

@@ -1,9 +1,11 @@
 //! How a load is written in a scenario.
 
 use super::periodic::TurnHarmonic;
+use super::power_coefficient::{DEFAULT, PowerCoefficient};
 use super::propeller::TorqueCoefficient;
-use super::{Load, LoadLaw, propeller_series};
-use crate::component::points::{read_curve, read_pairs};
+use super::read_coefficients::{power_coefficient, torque_coefficient};
+use super::{Load, LoadLaw};
+use crate::component::points::read_curve;
 use crate::quantity::Dimension;
 use crate::signal::Signal;
 use crate::signal::read::{read_signal, read_signal_or};
@@ -153,9 +155,14 @@ fn axial_rotor(fields: &mut Fields<'_>) -> LoadLaw {
     let flow =
         read_signal(fields, "flow", Dimension::LinearSpeed, true, "Speed of the wind or water.");
     let pitch = read_signal_or(fields, "pitch", Dimension::Angle, 0.0, "Pitch of the blades.");
-    fields.later("power_coefficient");
+    let coefficient = fields.group_optional(
+        "power_coefficient",
+        "Cp over tip speed ratio and pitch in one of these ways, in place of the built-in formula.",
+        power_coefficient,
+    );
+    let coefficient = coefficient.flatten().unwrap_or(PowerCoefficient::Formula(DEFAULT));
     let flow = flow.unwrap_or(Signal::Constant(0.0));
-    LoadLaw::AxialRotor { radius, density, flow, pitch }
+    LoadLaw::AxialRotor { radius, density, flow, pitch, coefficient }
 }
 
 fn periodic(fields: &mut Fields<'_>) -> LoadLaw {
@@ -203,59 +210,6 @@ fn propeller(fields: &mut Fields<'_>) -> LoadLaw {
     );
     let coefficient = coefficient.flatten().unwrap_or_else(|| TorqueCoefficient::constant(0.0));
     LoadLaw::Propeller { diameter, density, advance, coefficient }
-}
-
-fn torque_coefficient(fields: &mut Fields<'_>) -> Option<TorqueCoefficient> {
-    let constant = fields
-        .quantity_optional(
-            "constant",
-            Dimension::One,
-            Range::NotNegative,
-            "The same KQ at every advance ratio, typically 0.02 to 0.07.",
-        )
-        .map(TorqueCoefficient::constant);
-    let points = read_pairs(
-        fields,
-        "points",
-        [Dimension::One, Dimension::One],
-        "advance ratios",
-        "Rows of J and KQ, J rising; straight lines, end values are held.",
-    )
-    .map(|points| TorqueCoefficient::points(&points));
-    let series =
-        fields.group_optional("b_series", "Wageningen B series, Reynolds number 2e6.", b_series);
-    one_of_ways(fields, ["constant", "points", "b_series"], [constant, points, series])
-}
-
-/// The one of several ways that is given; none or several are a fault.
-fn one_of_ways<T, const N: usize>(
-    fields: &Fields<'_>,
-    keys: [&'static str; N],
-    ways: [Option<T>; N],
-) -> Option<T> {
-    let given: Vec<&str> = keys.into_iter().filter(|key| fields.has(key)).collect();
-    match given.as_slice() {
-        [] => {
-            fields.fault_here(format!(
-                "one of {} is needed here",
-                keys.map(|key| format!("`{key}`")).join(", ")
-            ));
-        }
-        [_] => {}
-        [first, second, ..] => {
-            fields.fault(second, format!("either `{first}` or `{second}` is stated, not both"));
-        }
-    }
-    ways.into_iter().flatten().next()
-}
-
-fn b_series(fields: &mut Fields<'_>) -> TorqueCoefficient {
-    let blades = fields.whole("blades", 2, 7, "Number of blades.");
-    let mut ratio =
-        |key, low, high, doc| fields.quantity(key, Dimension::One, Range::Between(low, high), doc);
-    let pitch_ratio = ratio("pitch_ratio", 0.5, 1.4, "Pitch over diameter.");
-    let area_ratio = ratio("area_ratio", 0.3, 1.05, "Expanded blade area over disc area.");
-    propeller_series::torque_coefficient(blades as u32, pitch_ratio, area_ratio)
 }
 
 #[cfg(test)]

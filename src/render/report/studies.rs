@@ -72,7 +72,7 @@ fn tables(material: &Material<'_>, study: &StudyResult) -> (String, String) {
         Answer::MonteCarlo(answer) => (monte_carlo(material, answer), String::new()),
         Answer::Modes(answer) => (one_run::modes(material, answer), String::new()),
         Answer::Rainflow(answer) => (String::new(), one_run::rainflow(answer)),
-        Answer::Estimates(answer) => (one_run::estimates(answer), String::new()),
+        Answer::Estimates(answer) => (one_run::estimates(material, answer), String::new()),
         Answer::Steady(answer) => (one_run::steady(material, answer), String::new()),
     }
 }
@@ -98,12 +98,7 @@ fn load_cases(material: &Material<'_>, answer: &LoadCasesAnswer, study: &StudyRe
             ]);
             continue;
         }
-        let failing = case.requirements.iter().find(|one| one.met != Some(true));
-        let closest = case
-            .use_of_limit
-            .as_ref()
-            .and_then(|(_, name)| case.requirements.iter().find(|one| one.name == *name));
-        let told = failing.or(closest).or(case.requirements.first());
+        let told = case.told();
         let figure = |value: Option<f64>| {
             told.zip(value).map_or_else(
                 || "–".to_owned(),

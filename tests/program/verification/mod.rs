@@ -18,7 +18,6 @@ mod vibration;
 mod wind;
 
 use crate::helper::{Folder, call};
-use rayon::prelude::*;
 use serde_json::Value;
 use sheet::{Case, Row};
 use std::fmt::Write as _;
@@ -63,7 +62,16 @@ fn cases() -> Vec<Case> {
 
 /// All lines in the order of the cases.
 fn rows() -> Vec<Row> {
-    cases().par_iter().flat_map(Case::rows).collect()
+    let cases = cases();
+    let threads = std::thread::available_parallelism().map_or(1, usize::from);
+    let share = cases.len().div_ceil(threads).max(1);
+    std::thread::scope(|scope| {
+        let parts: Vec<_> = cases
+            .chunks(share)
+            .map(|part| scope.spawn(|| part.iter().flat_map(Case::rows).collect::<Vec<_>>()))
+            .collect();
+        parts.into_iter().flat_map(|part| part.join().unwrap()).collect()
+    })
 }
 
 /// Chapters in order, each with its lines.
