@@ -3,6 +3,8 @@
 //!
 //! Without headless Chromium these tests say so and pass; `LODESHAFT_BROWSER` names another.
 
+#![allow(clippy::unwrap_used, reason = "a test may stop here")]
+
 use serde_json::Value;
 use std::fs;
 use std::path::{Path, PathBuf};
