@@ -32,7 +32,7 @@ pub fn machine(
 }
 
 /// Torque at the start of a run at a slip.
-fn torque(slip: f64, law: &str) -> f64 {
+pub fn torque(slip: f64, law: &str) -> f64 {
     let speed = SYNCHRONOUS * (1.0 - slip);
     run_well(&machine(1.0, 0.5, 1e12, speed, law, "")).series().at("motor.torque", 0.0)
 }

@@ -7,6 +7,7 @@
 
 mod coupling;
 mod fatigue;
+mod fluxes;
 mod friction;
 mod gears;
 mod limits;
@@ -50,11 +51,12 @@ fn cases() -> Vec<Case> {
         slip::cases,
         gears::cases,
         starts::cases,
+        machines::cases,
+        fluxes::cases,
         friction::cases,
         vibration::cases,
         fatigue::cases,
         wind::cases,
-        machines::cases,
         units::cases,
     ]
     .iter()
