@@ -4,7 +4,6 @@
 //! Without headless Chromium these tests say so and pass; `LODESHAFT_BROWSER` names another.
 
 #![allow(clippy::unwrap_used, reason = "a test may stop here")]
-#![allow(clippy::print_stdout, reason = "it says that it is left out")]
 
 use serde_json::Value;
 use std::fs;
