@@ -86,7 +86,8 @@ fn browser() -> Option<PathBuf> {
         .flat_map(|folder| names.map(|name| folder.join(name)))
         .find(|file| file.is_file());
     if found.is_none() {
-        println!("left out: no headless Chromium is installed");
+        let told = b"left out: no headless Chromium is installed\n";
+        let _ = std::io::Write::write_all(&mut std::io::stderr(), told);
     }
     found
 }
