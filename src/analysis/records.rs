@@ -244,11 +244,17 @@ impl<'p> Line<'p> {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::signal::table::TableColumns;
+    use crate::signal::table::{Across, TableColumns};
 
     fn record(rows: Vec<[f64; 2]>) -> Measured {
         let text = String::new;
-        let columns = TableColumns { time: text(), value: text(), time_unit: None, unit: None };
+        let columns = TableColumns {
+            time: text(),
+            value: text(),
+            time_unit: None,
+            unit: None,
+            across: Across::Time,
+        };
         Measured {
             name: text(),
             of: text(),

@@ -5,8 +5,9 @@ use super::shown::{self, Shown};
 use super::story;
 use super::table::{Table, wrap};
 use crate::analysis::records::RecordComparison;
+use crate::component::motor::MotorLaw;
 use crate::results::{RequirementResult, RunResult};
-use crate::scenario::Scenario;
+use crate::scenario::{Scenario, Start};
 use std::fmt::Write as _;
 
 /// Width of the summary in letters.
@@ -43,7 +44,7 @@ pub fn summary(scenario: &Scenario, result: &RunResult, telling: &Telling<'_>) -
     text.push_str(&utilisation(scenario, result, shown));
     text.push_str(&peaks(result, shown));
     text.push_str(&measured::text(telling.records, shown));
-    text.push_str(&start_up(result));
+    text.push_str(&start_up(scenario, result));
     text.push_str(&bookkeeping(result));
     let warnings = match result.warnings.len() {
         0 => String::new(),
@@ -172,21 +173,29 @@ fn peaks(result: &RunResult, shown: Shown<'_>) -> String {
         table.row([
             &name,
             &figure(channel.min),
-            &shown::time(channel.min_time),
+            &moment(channel.min_time),
             &figure(channel.max),
-            &shown::time(channel.max_time),
+            &moment(channel.max_time),
             &figure(channel.last),
         ]);
     }
     if table.len() < 2 { String::new() } else { format!("\n{}", table.text(2)) }
 }
 
-fn start_up(result: &RunResult) -> String {
+/// A time of a run; what is less than a microsecond after the start is the start.
+fn moment(time: f64) -> String {
+    shown::time(if time < 1e-6 { 0.0 } else { time })
+}
+
+fn start_up(scenario: &Scenario, result: &RunResult) -> String {
     let mut text = String::new();
     for motor in &result.motors {
         let reached = match motor.run_up_time {
             Some(at) => format!("95 % of synchronous speed at {}", shown::time(at)),
-            None => "no run-up to 95 % of synchronous speed".to_owned(),
+            None if began_at_speed(scenario, &motor.name) => {
+                "at its speed from the start".to_owned()
+            }
+            None => "95 % of synchronous speed never reached".to_owned(),
         };
         let heat = motor
             .rotor_heat
@@ -196,21 +205,42 @@ fn start_up(result: &RunResult) -> String {
     if text.is_empty() { text } else { format!("\nMotors\n{text}") }
 }
 
+/// Whether a motor starts at or above 95 % of its synchronous speed, as one in steady running does.
+fn began_at_speed(scenario: &Scenario, motor: &str) -> bool {
+    let Some(motor) = scenario.motors.iter().find(|one| one.name == motor) else { return false };
+    let synchronous = match motor.law {
+        MotorLaw::RatingPlate { synchronous_speed, .. }
+        | MotorLaw::Induction { synchronous_speed, .. } => synchronous_speed,
+        _ => return false,
+    };
+    let body = scenario.bodies.iter().find(|body| body.name == motor.body);
+    let given = body.and_then(|body| body.speed).unwrap_or(0.0);
+    scenario.start == Start::Steady || given.abs() >= 0.95 * synchronous.abs()
+}
+
+/// `1 event`, `2 events`.
+fn counted(count: u64, what: &str) -> String {
+    if count == 1 { format!("1 {what}") } else { format!("{count} {what}s") }
+}
+
 fn bookkeeping(result: &RunResult) -> String {
     let energy = &result.energy;
     let work = &result.solver;
+    let turned_over = energy.supplied + energy.absorbed + energy.lost;
+    let stored = energy.stored_change;
+    let stored = if stored.abs() < ROUNDING * turned_over { 0.0 } else { stored };
     format!(
         "\nEnergy: supplied {}, absorbed {}, lost {}, stored {}; {} of it is unaccounted for.\n\
-         Solver: {}, {} steps, {} rejected, {} evaluations, {} events.\n",
+         Solver: {}, {}, {} rejected, {}, {}.\n",
         shown::energy(energy.supplied),
         shown::energy(energy.absorbed),
         shown::energy(energy.lost),
-        shown::energy(energy.stored_change),
+        shown::energy(stored),
         crate::quantity::format_number(energy.residual_share, 2),
         work.method,
-        work.steps,
+        counted(work.steps, "step"),
         work.rejected,
-        work.evaluations,
-        work.events,
+        counted(work.evaluations, "evaluation"),
+        counted(work.events, "event"),
     )
 }

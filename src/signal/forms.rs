@@ -1,7 +1,7 @@
 //! The signal forms that are maps of keys: step, ramp, pulse, sine, table, extreme gust.
 
 use super::kind::Kind;
-use super::table::TableColumns;
+use super::table::{Across, TableColumns};
 use super::turbulence::{LENGTH_SCALE, Spectrum};
 use super::{Signal, gust};
 use crate::quantity::{self, Dimension, format_number};
@@ -131,7 +131,7 @@ fn table(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
     {
         fault.report(&fields.path_of("time_unit"), &mut faults.borrow_mut());
     }
-    let columns = TableColumns { time, value, time_unit, unit };
+    let columns = TableColumns { time, value, time_unit, unit, across: Across::Time };
     let named = ![&file, &columns.time, &columns.value].iter().any(|text| text.is_empty());
     named.then_some(Signal::Table { file, columns, rows: Vec::new() })
 }

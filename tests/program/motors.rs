@@ -10,10 +10,18 @@
 use super::helper::{Outcome, head, near, run, run_well, same};
 use std::f64::consts::PI;
 
-const SYNCHRONOUS: f64 = 60.0 * PI;
+/// Speed without load, rad/s.
+pub const SYNCHRONOUS: f64 = 60.0 * PI;
 
 /// The textbook's machine on a body of its own.
-fn machine(duration: f64, step: f64, inertia: f64, speed: f64, law: &str, more: &str) -> String {
+pub fn machine(
+    duration: f64,
+    step: f64,
+    inertia: f64,
+    speed: f64,
+    law: &str,
+    more: &str,
+) -> String {
     format!(
         "{}bodies:\n  rotor: {{ inertia: {inertia} kg*m2, speed: {speed} rad/s }}\n\
          motors:\n  motor: {{ body: rotor, law: {{ induction_circuit: {{ line_voltage: 460 V, frequency: 60 Hz, pole_pairs: 2, \
@@ -102,7 +110,7 @@ fn the_flux_equations_come_to_rest_on_the_circuit() {
 }
 
 /// Torque at its `n`-th extreme in a fine series, by a parabola through three rows.
-fn extremes(outcome: &Outcome) -> Vec<(f64, f64)> {
+pub fn extremes(outcome: &Outcome) -> Vec<(f64, f64)> {
     let series = outcome.series();
     let (times, torques) = (series.column("time"), series.column("motor.torque"));
     let mut found = Vec::new();

@@ -48,6 +48,8 @@ pub struct Crossing {
     pub label: String,
     /// Speed at which they meet, rad/s; `None` for an excitation that follows no speed.
     pub speed: Option<f64>,
+    /// The same with all magnets unloaded: between the two they meet in truth, as the load has it.
+    pub unloaded_speed: Option<f64>,
     /// Frequency of the mode, Hz.
     pub frequency_hz: f64,
     /// Distance at the operating speed as a share of the excitation's frequency; `None` at a standstill.
@@ -155,16 +157,20 @@ fn meet(
     operating: Option<[f64; 2]>,
 ) -> Crossing {
     let [from, to] = range.speeds;
-    let magnitude = (excitation.per_speed > 0.0)
-        .then(|| (mode.frequency_hz - excitation.fixed) / excitation.per_speed)
-        .filter(|speed| *speed >= 0.0);
     // Frequencies do not ask for the sense of rotation: a range of negative speeds is met there.
-    let speed = magnitude.map(|speed| if from.abs() > to.abs() { -speed } else { speed });
+    let meets = |frequency: f64| {
+        (excitation.per_speed > 0.0)
+            .then(|| (frequency - excitation.fixed) / excitation.per_speed)
+            .filter(|speed| *speed >= 0.0)
+            .map(|speed| if from.abs() > to.abs() { -speed } else { speed })
+    };
+    let speed = meets(mode.frequency_hz);
     Crossing {
         order: excitation.label.clone(),
         mode: place,
         label: mode.label.clone(),
         speed,
+        unloaded_speed: mode.unloaded_hz.and_then(meets),
         frequency_hz: mode.frequency_hz,
         separation: separation(excitation, mode.frequency_hz, operating),
         amplification: (mode.damping_ratio > 0.0).then(|| 0.5 / mode.damping_ratio),

@@ -11,6 +11,7 @@ pub use spec::{ExcitationSpec, ModesSpec};
 
 use super::linear_point::{self, LinearPoint};
 use crate::equations::{Equations, dot};
+use crate::quantity::format_number;
 use eigen::Root;
 use interference::Interference;
 use linear::{LinearTrain, MagnetLoad, linearise};
@@ -107,9 +108,29 @@ pub fn run(spec: &ModesSpec, equations: &Equations) -> Result<ModesResult, Strin
         result.met = spec.separation.and_then(|limit| diagram.verdict(limit));
         result.notes.extend(diagram.nearest_words());
         result.notes.extend(diagram.notes.iter().cloned());
+        result.notes.extend(softening_words(&result.modes));
         result.interference = Some(diagram);
     }
     Ok(result)
+}
+
+/// What the level lines of the diagram leave out: magnets are softer the more they bear, and the
+/// load changes along the diagram with the speed.
+fn softening_words(modes: &[Mode]) -> Option<String> {
+    let softened: Vec<String> = modes
+        .iter()
+        .filter_map(|mode| {
+            let free = mode.unloaded_hz.filter(|free| *free > 1.01 * mode.frequency_hz)?;
+            Some(format!("{} at up to {} Hz", mode.label, format_number(free, 4)))
+        })
+        .collect();
+    (!softened.is_empty()).then(|| {
+        format!(
+            "the diagram draws the modes as the load at the point leaves them; where the magnets bear less, as \
+             at lower speed, they lie higher: {} without load",
+            softened.join(", ")
+        )
+    })
 }
 
 /// Modes of a train at a point, without diagram.

@@ -184,6 +184,20 @@ impl DampingSources {
                 continue;
             };
             let Target::Torque(direction) = &term.target else { continue };
+            if let Function::Products(list) = &active.function {
+                // A machine's torque by its currents and fluxes, which swing with the train.
+                let strength = evaluator.strength(&active.factor, point.time);
+                let form = list.iter().flat_map(|&(left, right, factor)| {
+                    let weight = factor * strength;
+                    [(left, weight * point.state[right]), (right, weight * point.state[left])]
+                });
+                torques.push(Torque {
+                    name: name(term.owner),
+                    direction: model.reduction.dense(direction),
+                    form: form.collect(),
+                });
+                continue;
+            }
             let (input, _) = evaluator.law(active, point.time, &point.state);
             let parameters = term.parameters.map(|slot| slot.map_or(0.0, signal));
             let slope = match (&active.function, &term.shape) {

@@ -67,6 +67,7 @@ pub fn modes(answer: &ModesResult) -> Entries {
             ("order", Value::from(crossing.order.as_str())),
             ("mode", Value::from(crossing.mode)),
             ("speed", json_optional(crossing.speed)),
+            ("unloaded_speed", json_optional(crossing.unloaded_speed)),
             ("frequency_hz", json(crossing.frequency_hz)),
             ("separation", json_optional(crossing.separation)),
             ("amplification", json_optional(crossing.amplification)),

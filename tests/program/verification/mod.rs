@@ -7,6 +7,7 @@
 
 mod coupling;
 mod fatigue;
+mod fluxes;
 mod friction;
 mod gears;
 mod limits;
@@ -51,6 +52,7 @@ fn cases() -> Vec<Case> {
         gears::cases,
         starts::cases,
         machines::cases,
+        fluxes::cases,
         friction::cases,
         vibration::cases,
         fatigue::cases,
