@@ -30,13 +30,58 @@ pub struct Holding {
 }
 
 /// The pseudo-inverse of a symmetric positive semidefinite matrix.
+///
+/// Elements that share no body do not feel each other: each group of coupled rows is inverted by
+/// itself, since the cost grows with the cube of a group.
 pub fn pseudo_inverse(matrix: &DMatrix<f64>) -> DMatrix<f64> {
+    let size = matrix.nrows();
+    let mut inverse = DMatrix::zeros(size, size);
+    for group in groups(matrix) {
+        let block = DMatrix::from_fn(group.len(), group.len(), |i, j| matrix[(group[i], group[j])]);
+        let block = inverse_of_group(block);
+        for (i, row) in group.iter().enumerate() {
+            for (j, column) in group.iter().enumerate() {
+                inverse[(*row, *column)] = block[(i, j)];
+            }
+        }
+    }
+    inverse
+}
+
+/// Rows that are coupled by entries other than zero, each group rising.
+fn groups(matrix: &DMatrix<f64>) -> Vec<Vec<usize>> {
+    let size = matrix.nrows();
+    let mut seen = vec![false; size];
+    let mut groups = Vec::new();
+    for first in 0..size {
+        if seen[first] {
+            continue;
+        }
+        seen[first] = true;
+        let mut group = vec![first];
+        let mut next = 0;
+        while let Some(&row) = group.get(next) {
+            next += 1;
+            for column in 0..size {
+                if !seen[column] && matrix[(row, column)] != 0.0 {
+                    seen[column] = true;
+                    group.push(column);
+                }
+            }
+        }
+        group.sort_unstable();
+        groups.push(group);
+    }
+    groups
+}
+
+fn inverse_of_group(matrix: DMatrix<f64>) -> DMatrix<f64> {
     let size = matrix.nrows();
     if size == 1 {
         let value = matrix[(0, 0)];
         return DMatrix::from_element(1, 1, if value > 0.0 { 1.0 / value } else { 0.0 });
     }
-    let eigen = matrix.clone().symmetric_eigen();
+    let eigen = matrix.symmetric_eigen();
     let largest = eigen.eigenvalues.amax();
     let mut inverse = DMatrix::zeros(size, size);
     for (place, value) in eigen.eigenvalues.iter().enumerate() {
