@@ -1,7 +1,7 @@
 //! Every package that is built in is recorded with its licence and what is known against it.
 //!
 //! `tests/packages.tsv` is the record; the licences are those that the packages state. Advisories
-//! are those of the RustSec database of 21 August 2026, matched by version. No network is
+//! are those of the `RustSec` database of 21 August 2026, matched by version. No network is
 //! needed: a package that comes, goes or changes its version makes the test fail until somebody
 //! has looked at it and recorded it:
 //!

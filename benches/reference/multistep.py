@@ -1,26 +1,26 @@
 """The program beside a multistep solver in C, at the same achieved error, in one run.
 
-The pump train of the bench, in steady running and shaken at 5 Hz, from 0 to 600 s. Both are run
-at several tolerances; the error is the largest one of the magnetic phase over rows of 10 s,
-against CVODE at 1e-13. Times are medians of turns taken one after the other; of the program the
-whole command is timed, less that of a run of 0.01 s, so that it pays for its observer, its energy
-audit and its files. At errors that both reach, the ratio of times is read off by straight lines
-through the logarithms.
+The pump train of the bench, its start and then shaken at 5 Hz, so that it never settles. Both are
+run at several tolerances; the error is the largest one of the magnetic phase over rows of 0.93 s,
+against CVODE at 1e-13. Times are of the processor, medians of turns taken one after the other; of
+the program the whole command is timed, less that of a run of 0.01 s, so that it pays for its
+observer, its energy audit and its files. At errors that both reach, the ratio of times is read off
+by straight lines through the logarithms.
 
 Usage: multistep.py PROGRAM [TURNS]      needs cc, the headers of SUNDIALS 6 and numpy
 """
 import csv
 import pathlib
+import resource
 import statistics
 import subprocess
 import sys
 import tempfile
-import time
 
 import numpy as np
 
 HERE = pathlib.Path(__file__).parent
-DURATION, EVERY = 600.0, 10.0
+DURATION, EVERY = 55.8, 0.93
 TRAIN = (HERE.parent / "pump_train.yaml").read_text()
 LIBRARIES = ["-lsundials_cvode", "-lsundials_nvecserial", "-lm"]
 
@@ -38,10 +38,12 @@ def scenario(folder, ripple, tolerance, duration):
 
 
 def timed(call):
-    begun = time.perf_counter()
+    """Seconds of the processor that a command took, and what it printed."""
+    used = lambda: sum(resource.getrusage(resource.RUSAGE_CHILDREN)[:2])
+    begun = used()
     done = subprocess.run(call, capture_output=True, text=True)
     assert done.returncode in (0, 1), done.stderr
-    return time.perf_counter() - begun, done.stdout
+    return used() - begun, done.stdout
 
 
 def by_program(program, folder, ripple, tolerance, turns):
@@ -82,7 +84,7 @@ def main():
         folder = pathlib.Path(name)
         solver = str(folder / "multistep")
         subprocess.run(["cc", "-O2", str(HERE / "multistep.c"), "-o", solver, *LIBRARIES], check=True)
-        for ripple, what in [(0, "steady running"), (200, "shaken at 5 Hz")]:
+        for ripple, what in [(200, "shaken at 5 Hz")]:
             _, exact = by_solver(solver, "adams", ripple, 1e-13, 1)
             found = {}
             for method in ["program", "adams", "bdf"]:

@@ -85,7 +85,7 @@ pub struct Common {
     /// Pixels of PNG charts for each pixel of a page, 0.5 to 8.
     #[arg(long, global = true, value_name = "N", default_value_t = 2.0, value_parser = scale)]
     pub scale: f64,
-    /// Size of charts: page, slide, or WIDTHxHEIGHT in pixels of a page.
+    /// Size of charts: page, slide, or width x height as in 900x500, in pixels of a page.
     #[arg(long, global = true, value_name = "SIZE", default_value = "page", value_parser = size)]
     pub size: Print,
     /// Number of threads for studies [default: one a processor].

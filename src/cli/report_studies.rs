@@ -49,6 +49,7 @@ pub fn gather(
     interrupt: &Interrupt,
 ) -> Result<Gathered, FolderFault> {
     let mut gathered = Gathered::default();
+    carry::begun(shown, folder.path())?;
     if plan.studies.is_empty() {
         return Ok(gathered);
     }

@@ -1,5 +1,7 @@
 //! Magnetic gears and couplings as typed, and their law.
 
+use super::torque_table::TorqueTable;
+
 /// Which member of a magnetic gear.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Member {
@@ -68,8 +70,10 @@ pub struct MagneticCoupling {
 pub struct Field {
     /// Load angle at the start, electrical rad; `None` is 0 and may be combined with a steady start.
     pub initial_load_angle: Option<f64>,
-    /// Harmonics of the torque law, relative to the fundamental.
+    /// Harmonics of the torque law, relative to the fundamental; of the table, when there is one.
     pub harmonics: Vec<Harmonic>,
+    /// The table of which the harmonics come.
+    pub torque_table: Option<TorqueTable>,
     /// Factor on the pull-out torque from the magnets' temperature, 1 when none is given.
     pub temperature_factor: f64,
 }

@@ -3,6 +3,7 @@
 use super::magnetic_gear::{
     Cogging, Drag, Field, GearDamping, Harmonic, MagneticCoupling, MagneticGear, Member,
 };
+use super::torque_table::TorqueTable;
 use crate::quantity::Dimension;
 use crate::tree::{Fields, Range};
 use std::f64::consts::PI;
@@ -71,7 +72,7 @@ impl MagneticGear {
             pull_out_at,
             pull_out_torque,
             damping: fields.group_optional("damping", "Damping of the slip.", read_damping),
-            field: Field::read(fields),
+            field: Field::read(fields, &["electrical", "inner", "modulator", "outer"]),
             cogging: fields.list("cogging", "Cogging torques against the modulator.", read_cogging),
             drag: fields.list("drag", "Drag torques.", read_drag),
             source: fields.source(),
@@ -102,7 +103,7 @@ impl MagneticCoupling {
             pull_out,
             damping,
             damping_peak_at,
-            field: Field::read(fields),
+            field: Field::read(fields, &["electrical", "mechanical"]),
             source: fields.source(),
         }
     }
@@ -110,7 +111,7 @@ impl MagneticCoupling {
 
 impl Field {
     /// Reads what gears and couplings have in common.
-    fn read(fields: &mut Fields<'_>) -> Self {
+    fn read(fields: &mut Fields<'_>, angles: &[&'static str]) -> Self {
         let initial_load_angle = fields.quantity_optional(
             "initial_load_angle",
             Dimension::Angle,
@@ -139,7 +140,17 @@ impl Field {
             );
             Harmonic { order: order as u32, amplitude, phase: read_phase(harmonic) }
         });
+        let torque_table = fields.group_optional(
+            "torque_table",
+            "Torque over load angle from a file, in place of `harmonics`; its shape counts.",
+            |table| TorqueTable::read(table, angles),
+        );
+        if torque_table.is_some() && fields.has("harmonics") {
+            fields
+                .fault("torque_table", "either `harmonics` or `torque_table` is stated, not both");
+        }
         Self {
+            torque_table,
             initial_load_angle: initial_load_angle.map(|angle| angle.min(PI)),
             harmonics,
             temperature_factor: read_temperature_factor(fields),

@@ -3,7 +3,7 @@
 use super::channel::Known;
 use super::requirement::channel_dimension;
 use crate::quantity::{self, Dimension};
-use crate::signal::table::TableColumns;
+use crate::signal::table::{Across, TableColumns};
 use crate::tree::{Fields, Range};
 
 /// A record as typed; no result of the run depends on it.
@@ -47,7 +47,7 @@ impl Measured {
             name: fields.own_name().to_owned(),
             of,
             file,
-            columns: TableColumns { time, value, time_unit, unit },
+            columns: TableColumns { time, value, time_unit, unit, across: Across::Time },
             offset,
             scale,
             rows: Vec::new(),

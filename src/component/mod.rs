@@ -17,3 +17,4 @@ pub mod polyline;
 pub mod protection;
 pub mod requirement;
 pub mod shaft;
+pub mod torque_table;

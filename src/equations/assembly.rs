@@ -329,14 +329,12 @@ fn quiet_powers(equations: &Equations, mode: &Mode) -> QuietPowers {
     }
     for damper in &equations.dampers {
         let row = equations.speed_row(&damper.row);
-        if let super::Owner::Magnet(index) = damper.owner {
-            if damper.row == equations.model.magnets[index].row() {
-                let place = equations.phase_state[index];
-                powers
-                    .rate_losses
-                    .push((place, damper.coefficient * equations.scale[place].powi(2)));
-                continue;
-            }
+        if let super::Owner::Magnet(index) = damper.owner
+            && damper.row == equations.model.magnets[index].row()
+        {
+            let place = equations.phase_state[index];
+            powers.rate_losses.push((place, damper.coefficient * equations.scale[place].powi(2)));
+            continue;
         }
         powers.losses.push((damper.coefficient, row));
     }

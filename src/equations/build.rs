@@ -259,7 +259,7 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
         LoadLaw::Periodic { mean, harmonics } => {
             if *mean > 0.0 {
                 // A mean against the motion holds at rest; as a load it takes power out.
-                let curve = LoadCurve::new(&[[0.0, *mean], [1.0, *mean]]);
+                let curve = LoadCurve::new(&[[0.0, *mean], [1e12, *mean]]);
                 add_friction(
                     equations,
                     owner,

@@ -61,20 +61,20 @@ pub fn find(
     for magnet in magnets {
         let frequency = magnet.natural_frequency();
         for member in &magnet.members {
-            if let (Some(body), true) = (member.body, frequency > 0.0 && frequency.is_finite()) {
-                if speed[body].is_none() {
-                    speed[body] = Some(frequency / member.count.abs());
-                }
+            if let (Some(body), true) = (member.body, frequency > 0.0 && frequency.is_finite())
+                && speed[body].is_none()
+            {
+                speed[body] = Some(frequency / member.count.abs());
             }
         }
     }
     spread(&mut speed, shafts, magnets, constraints);
     for shaft in shafts.iter().filter(|shaft| !shaft.rigid) {
         for (here, there) in [(0, 1), (1, 0)] {
-            if let (Some(here), Some(there)) = (shaft.ends[here], shaft.ends[there]) {
-                if torque[there].is_none() {
-                    torque[there] = torque[here];
-                }
+            if let (Some(here), Some(there)) = (shaft.ends[here], shaft.ends[there])
+                && torque[there].is_none()
+            {
+                torque[there] = torque[here];
             }
         }
     }

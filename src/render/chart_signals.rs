@@ -1,10 +1,14 @@
 //! What the strip of a run chart shows of the signals.
 
 use super::chart::train::{SignalBar, SignalBars};
+use crate::analysis::train::Train;
 use crate::equations::Equations;
 use crate::scenario::Scenario;
 use crate::signal::Signal;
 use crate::signal::course::SignalBank;
+
+/// Speeds below this are standstill, rad/s.
+const AT_REST: f64 = 1e-9;
 
 /// Pulses and steps of prescribed torques and brakes as bars; kinks of all signals as dotted lines.
 pub(super) fn bars(scenario: &Scenario, equations: &Equations) -> (Vec<SignalBars>, Vec<f64>) {
@@ -61,19 +65,32 @@ pub(super) fn bars(scenario: &Scenario, equations: &Equations) -> (Vec<SignalBar
     (rows, steps)
 }
 
-/// Brakes that are not pressed and frictions scaled to nothing when the run begins: they hold
-/// nothing, so that they are not stuck.
-pub(super) fn idle_at_start(scenario: &Scenario) -> Vec<String> {
+/// Brakes and frictions that are not stuck when the run begins: what they hold turns already, or
+/// they are not pressed.
+pub(super) fn idle_at_start(scenario: &Scenario, figures: &Train) -> Vec<String> {
+    let speed = |name: &str| {
+        figures.bodies.iter().find(|body| body.name == name).map_or(0.0, |body| body.start_speed)
+    };
+    let turns = |body: &str, against: Option<&String>| {
+        (speed(body) - against.map_or(0.0, |other| speed(other))).abs() > AT_REST
+    };
     let mut bank = SignalBank::new(&scenario.signals);
     let mut is_zero = |name: &str, signal: &Signal| {
         let id = bank.add(name, signal);
         bank.value(id, 0.0, &bank.no_overrides()) == 0.0
     };
-    let brakes = scenario.brakes.iter().map(|brake| (&brake.name, Some(&brake.applied)));
-    let loads = scenario.loads.iter().map(|load| (&load.name, load.scale.as_ref()));
+    let brakes = scenario.brakes.iter().map(|brake| {
+        (&brake.name, Some(&brake.applied), turns(&brake.body, brake.against.as_ref()))
+    });
+    let loads = scenario
+        .loads
+        .iter()
+        .map(|load| (&load.name, load.scale.as_ref(), turns(&load.body, load.against.as_ref())));
     brakes
         .chain(loads)
-        .filter(|(name, signal)| signal.is_some_and(|signal| is_zero(name, signal)))
-        .map(|(name, _)| name.clone())
+        .filter(|(name, signal, turns)| {
+            *turns || signal.is_some_and(|signal| is_zero(name, signal))
+        })
+        .map(|(name, ..)| name.clone())
         .collect()
 }

@@ -253,7 +253,7 @@ pub fn describe(equations: &Equations, figures: &Figures) -> Train {
         reference: figures.reference.replace('_', " "),
         signals,
         signal_steps,
-        idle_at_start: idle_at_start(scenario),
+        idle_at_start: idle_at_start(scenario, figures),
         records,
     }
 }

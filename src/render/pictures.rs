@@ -46,7 +46,7 @@ impl Default for Print {
 }
 
 impl Print {
-    /// The size by its name, `page` or `slide`, or as WIDTHxHEIGHT in CSS pixels.
+    /// The size by its name, `page` or `slide`, or as `WIDTHxHEIGHT` in CSS pixels.
     ///
     /// # Errors
     /// What is wrong with the words.

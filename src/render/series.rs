@@ -36,12 +36,12 @@ impl<'a, W: Write> SeriesWriter<'a, W> {
 
     fn write_line(&mut self) {
         self.line.push(b'\n');
-        if self.fault.is_none() {
-            if let Err(fault) = self.out.write_all(&self.line) {
-                self.fault = Some(fault);
-                if let Some(stop) = self.stop {
-                    stop.store(true, Ordering::Relaxed);
-                }
+        if self.fault.is_none()
+            && let Err(fault) = self.out.write_all(&self.line)
+        {
+            self.fault = Some(fault);
+            if let Some(stop) = self.stop {
+                stop.store(true, Ordering::Relaxed);
             }
         }
         self.line.clear();

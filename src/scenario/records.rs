@@ -38,10 +38,12 @@ pub(super) fn check(scenario: &Scenario, faults: &mut Diagnostics) {
             );
         } else if inside < record.rows.len() {
             let left_out = record.rows.len() - inside;
-            faults.warning(
-                path,
-                format!("{span}; {left_out} rows lie outside the run and are left out"),
-            );
+            let words = if left_out == 1 {
+                "1 row lies outside the run and is left out".to_owned()
+            } else {
+                format!("{left_out} rows lie outside the run and are left out")
+            };
+            faults.warning(path, format!("{span}; {words}"));
         } else if let Some(spacing) = spacing(&record.rows)
             && spacing < 0.9 * scenario.output_step
         {

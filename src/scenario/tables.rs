@@ -1,6 +1,7 @@
 //! The CSV files that signals and records of a scenario name, each read once.
 
 use super::Scenario;
+use crate::component::torque_table::shape;
 use crate::diagnostic::Diagnostics;
 use crate::signal::Signal;
 use crate::signal::table::{TableColumns, parse_table};
@@ -44,6 +45,7 @@ impl Tables {
             };
         let mut fill = |path: &str, signal: &mut Signal| signal.load_tables(path, &mut load);
         super::signals::each_with_table(scenario, &mut fill);
+        self.fill_torques(scenario, faults);
         for record in &mut scenario.measured {
             let named = [&record.file, &record.columns.time, &record.columns.value];
             if named.iter().any(|text| text.is_empty()) {
@@ -52,6 +54,46 @@ impl Tables {
             match self.rows(&record.file, &record.columns, false) {
                 Ok(rows) => record.fill(&rows),
                 Err(message) => faults.error(format!("measured.{}.file", record.name), message),
+            }
+        }
+    }
+
+    /// Gives every magnet with a table of torques its harmonics.
+    fn fill_torques(&mut self, scenario: &mut Scenario, faults: &mut Diagnostics) {
+        let gears = scenario.magnetic_gears.iter_mut().map(|gear| {
+            let counts = [gear.inner_pole_pairs, gear.outer_pole_pairs].map(f64::from);
+            let count = match gear.field.torque_table.as_ref().map(|table| table.at) {
+                Some("inner") => counts[0],
+                Some("outer") => counts[1],
+                Some("modulator") => counts[0] + counts[1],
+                _ => 1.0,
+            };
+            (format!("magnetic_gears.{}", gear.name), count, &mut gear.field)
+        });
+        let couplings = scenario.magnetic_couplings.iter_mut().map(|coupling| {
+            let count = match coupling.field.torque_table.as_ref().map(|table| table.at) {
+                Some("mechanical") => f64::from(coupling.pole_pairs),
+                _ => 1.0,
+            };
+            (format!("magnetic_couplings.{}", coupling.name), count, &mut coupling.field)
+        });
+        for (path, count, field) in gears.chain(couplings) {
+            let Some(table) = &field.torque_table else { continue };
+            if table.file.is_empty() {
+                continue;
+            }
+            let path = format!("{path}.torque_table.file");
+            let found = self.rows(&table.file, &table.columns, true).and_then(|rows| {
+                shape(&rows, count).map_err(|fault| format!("`{}`: {fault}", table.file))
+            });
+            match found {
+                Ok(found) => {
+                    for warning in found.warnings {
+                        faults.warning(path.clone(), warning);
+                    }
+                    field.harmonics = found.harmonics;
+                }
+                Err(message) => faults.error(path, message),
             }
         }
     }

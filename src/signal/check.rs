@@ -65,17 +65,17 @@ pub fn check_use(
         Signal::Product { .. } => {
             check_members(path, signal, named, faults);
             let found = effective_dimension(signal, named, named.len());
-            if let Some(found) = found.filter(|found| *found != dimension) {
-                if !faults.has_error_under(path) {
-                    faults.error(
-                        path,
-                        format!(
-                            "this product is {}, but {} is needed here",
-                            found.with_article(),
-                            dimension.with_article()
-                        ),
-                    );
-                }
+            if let Some(found) = found.filter(|found| *found != dimension)
+                && !faults.has_error_under(path)
+            {
+                faults.error(
+                    path,
+                    format!(
+                        "this product is {}, but {} is needed here",
+                        found.with_article(),
+                        dimension.with_article()
+                    ),
+                );
             }
         }
         _ => {}

@@ -110,10 +110,10 @@ impl SignalBank {
 
     /// The value where it does not change between `from` and `to`.
     pub fn constant_on(&self, id: SlotId, from: f64, to: f64, o: &Overrides) -> Option<f64> {
-        if let Some(kink) = o.next_kink(id, from) {
-            if kink < to {
-                return None;
-            }
+        if let Some(kink) = o.next_kink(id, from)
+            && kink < to
+        {
+            return None;
         }
         if let Some(entry) = o.live(id, Moment::after(from)) {
             let line = entry.line(Moment::after(from));

@@ -1,7 +1,7 @@
 //! The signal forms that are maps of keys: step, ramp, pulse, sine, table, extreme gust.
 
 use super::kind::Kind;
-use super::table::TableColumns;
+use super::table::{Across, TableColumns};
 use super::turbulence::{LENGTH_SCALE, Spectrum};
 use super::{Signal, gust};
 use crate::quantity::{self, Dimension, format_number};
@@ -126,12 +126,12 @@ fn table(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
     } else if matches!(kind.wanted, Some(Dimension::Speed | Dimension::Angle)) {
         fields.warn("unit", "the table has no unit, so its values are read in SI (rad, rad/s)");
     }
-    if let Some(unit) = &time_unit {
-        if let Err(fault) = quantity::parse(&format!("1 {unit}"), Dimension::Time) {
-            fault.report(&fields.path_of("time_unit"), &mut faults.borrow_mut());
-        }
+    if let Some(unit) = &time_unit
+        && let Err(fault) = quantity::parse(&format!("1 {unit}"), Dimension::Time)
+    {
+        fault.report(&fields.path_of("time_unit"), &mut faults.borrow_mut());
     }
-    let columns = TableColumns { time, value, time_unit, unit };
+    let columns = TableColumns { time, value, time_unit, unit, across: Across::Time };
     let named = ![&file, &columns.time, &columns.value].iter().any(|text| text.is_empty());
     named.then_some(Signal::Table { file, columns, rows: Vec::new() })
 }

@@ -19,12 +19,11 @@ impl Kind {
         let faults = &mut faults.borrow_mut();
         if let Some(dimension) = self.wanted {
             let value = quantity::read(path, node, dimension, faults);
-            if let Node::Text(text) = node {
-                if value.is_finite()
-                    && quantity::parse_any(text).is_ok_and(|found| found.1.is_some())
-                {
-                    self.found = Some(dimension);
-                }
+            if let Node::Text(text) = node
+                && value.is_finite()
+                && quantity::parse_any(text).is_ok_and(|found| found.1.is_some())
+            {
+                self.found = Some(dimension);
             }
             return value;
         }

@@ -1,7 +1,7 @@
 //! Reading signals: a quantity, a name from `signals`, or a one-key map that tells the course.
 
 use super::kind::Kind;
-use super::table::order_fault;
+use super::table::{Across, order_fault};
 use super::{NamedSignal, Signal, forms};
 use crate::diagnostic::{Diagnostics, closest};
 use crate::quantity::{self, Dimension};
@@ -201,7 +201,7 @@ fn read_points(
         let value = kind.value(&format!("{path}.{index}.1"), value, faults);
         points.push([time, value]);
         // A row that is out of order is told once and left out, so that it blames no other row.
-        if let Some(fault) = order_fault(&points) {
+        if let Some(fault) = order_fault(&points, Across::Time) {
             faults.borrow_mut().error(format!("{path}.{index}.0"), fault);
             points.pop();
             sound = false;

@@ -164,7 +164,11 @@ fn each_rule_has_one_fault_at_its_place() {
         (form("sum", list(vec![])), ".sum", "the list is empty"),
         (form("sum", text("5")), ".sum", "a list of signals is needed"),
         (form("rmap", map(&[])), ".rmap", "not a form of signal"),
-        (form("turbulence", map(&[("mean", "8 m/s")])), ".turbulence", "is a linear speed"),
+        (
+            form("turbulence", map(&[("mean", "8 m/s"), ("intensity", "10 %")])),
+            ".turbulence",
+            "is a linear speed",
+        ),
         (Node::Map(vec![]), "", "exactly one key, not 0"),
         (list(vec![]), "", "a signal is needed here, not a list"),
         (text("3 kg"), "", "is a mass, but a torque is needed here"),

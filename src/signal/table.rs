@@ -15,6 +15,28 @@ pub struct TableColumns {
     pub time_unit: Option<String>,
     /// Unit of the values; `None` is SI.
     pub unit: Option<String>,
+    /// What the first column is.
+    pub across: Across,
+}
+
+/// What the first column of a table is.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum Across {
+    /// A time, s.
+    #[default]
+    Time,
+    /// An angle, rad.
+    Angle,
+}
+
+impl Across {
+    /// Word and unit.
+    fn words(self) -> (&'static str, &'static str) {
+        match self {
+            Self::Time => ("time", "s"),
+            Self::Angle => ("angle", "rad"),
+        }
+    }
 }
 
 /// What is wrong with a table, and on which line of its file (from 1).
@@ -51,7 +73,7 @@ pub fn parse_table(text: &str, columns: &TableColumns) -> Result<Vec<[f64; 2]>, 
         let time = number(&record, time_column, &columns.time, &columns.time_unit, line)?;
         let value = number(&record, value_column, &columns.value, &columns.unit, line)?;
         rows.push([time, value]);
-        if let Some(fault) = order_fault(&rows) {
+        if let Some(fault) = order_fault(&rows, columns.across) {
             return Err(TableFault::new(line, fault));
         }
     }
@@ -62,15 +84,17 @@ pub fn parse_table(text: &str, columns: &TableColumns) -> Result<Vec<[f64; 2]>, 
 }
 
 /// What is wrong with the last of some rows: its time falls, or is the third of its kind.
-pub fn order_fault(rows: &[[f64; 2]]) -> Option<String> {
+pub fn order_fault(rows: &[[f64; 2]], across: Across) -> Option<String> {
+    let (word, unit) = across.words();
     let time = rows.last()?[0];
     let before = rows.len().checked_sub(2).and_then(|index| rows.get(index))?[0];
     if time < before {
-        return Some(format!("times must rise, but {time} s stands after {before} s"));
+        return Some(format!("{word}s must rise, but {time} {unit} stands after {before} {unit}"));
     }
     let earlier = rows.len().checked_sub(3).and_then(|index| rows.get(index))?[0];
-    (time <= earlier)
-        .then(|| format!("the time {time} s stands here for the third time; two make a jump"))
+    (time <= earlier).then(|| {
+        format!("the {word} {time} {unit} stands here for the third time; two make a jump")
+    })
 }
 
 fn column(headings: &csv::StringRecord, wanted: &str) -> Result<usize, TableFault> {
@@ -131,6 +155,7 @@ mod tests {
             value: "speed [rpm]".into(),
             time_unit: Some("ms".into()),
             unit: Some("rpm".into()),
+            across: Across::Time,
         }
     }
 

@@ -23,7 +23,7 @@ fn the_shares_are_the_integral_of_the_spectrum() {
     }
 }
 
-// W9: a series that is cut at a frequency has the variance below it, not the whole.
+// A series that is cut at a frequency has the variance below it, not the whole.
 #[test]
 fn the_series_has_the_variance_of_its_band() {
     for seed in [1, 2, 77] {

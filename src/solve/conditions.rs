@@ -159,16 +159,16 @@ impl Conditions {
                 _ => {}
             }
             let hold = self.list[index].hold;
-            if let Stage::Holding(since) = self.stage[index] {
-                if time >= since + hold {
-                    self.stage[index] = Stage::Pending(since + hold + self.list[index].delay);
-                }
+            if let Stage::Holding(since) = self.stage[index]
+                && time >= since + hold
+            {
+                self.stage[index] = Stage::Pending(since + hold + self.list[index].delay);
             }
-            if let Stage::Pending(due) = self.stage[index] {
-                if time >= due {
-                    self.stage[index] = Stage::Done;
-                    self.act(index, time, equations, overrides, events, &mut acted);
-                }
+            if let Stage::Pending(due) = self.stage[index]
+                && time >= due
+            {
+                self.stage[index] = Stage::Done;
+                self.act(index, time, equations, overrides, events, &mut acted);
             }
         }
         acted

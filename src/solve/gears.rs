@@ -108,10 +108,10 @@ impl GearTrack {
             if self.past { None } else { self.last_return.filter(|time| *time >= last.time) };
         let period = if period.is_finite() { period } else { 0.0 };
         let needed = (2.0 * period).max(2.0 * interval.unwrap_or(0.0));
-        if let Some(since) = since {
-            if end - since >= needed {
-                return (GearState::Synchronous, Some(since), None);
-            }
+        if let Some(since) = since
+            && end - since >= needed
+        {
+            return (GearState::Synchronous, Some(since), None);
         }
         let slipping = match interval {
             Some(interval) => end - last.time < 2.0 * interval,
@@ -177,20 +177,20 @@ pub fn crossings(equations: &Equations, step: &DenseStep, shares: &[f64]) -> Vec
             step.state(share, &mut state);
             let rate = dot(row, &state);
             let phase = state[place] * scale;
-            if let Some((last_share, last_rate)) = before {
-                if last_rate * rate < 0.0 {
-                    let turn = locate::root(
-                        last_share,
-                        share,
-                        |place| {
-                            step.state(place, &mut state);
-                            dot(row, &state) * last_rate.signum()
-                        },
-                        1e-12,
-                    );
-                    step.state(turn, &mut state);
-                    knots.push((turn, state[place] * scale));
-                }
+            if let Some((last_share, last_rate)) = before
+                && last_rate * rate < 0.0
+            {
+                let turn = locate::root(
+                    last_share,
+                    share,
+                    |place| {
+                        step.state(place, &mut state);
+                        dot(row, &state) * last_rate.signum()
+                    },
+                    1e-12,
+                );
+                step.state(turn, &mut state);
+                knots.push((turn, state[place] * scale));
             }
             knots.push((share, phase));
             before = Some((share, rate));

@@ -224,11 +224,11 @@ impl<'a> Observer<'a> {
     /// Shares of a step at which it is looked at.
     pub fn shares(&self, step: &DenseStep, inner: usize) -> Vec<f64> {
         let mut count = inner + 1;
-        if let Some(tracer) = &self.tracer {
-            if tracer.touches(step.start, step.start + step.length) {
-                let columns = (step.length / tracer.column_width()).ceil();
-                count = count.max((columns as usize).clamp(1, 400));
-            }
+        if let Some(tracer) = &self.tracer
+            && tracer.touches(step.start, step.start + step.length)
+        {
+            let columns = (step.length / tracer.column_width()).ceil();
+            count = count.max((columns as usize).clamp(1, 400));
         }
         (0..=count).map(|index| index as f64 / count as f64).collect()
     }

@@ -245,6 +245,12 @@ impl Run<'_, '_> {
         if let Some(magnet) = self.equations.phase_state.iter().position(|state| *state == place) {
             return format!("the phase of `{}`", self.equations.model.magnets[magnet].name);
         }
+        let machine =
+            self.equations.machines.iter().find(|machine| machine.states.contains(&place));
+        if let Some(machine) = machine {
+            let motor = &scenario.motors[machine.motor];
+            return format!("current and flux of `{}`", motor.name);
+        }
         "a controller".to_owned()
     }
 

@@ -114,7 +114,7 @@ impl Watcher<'_, '_> {
     }
 
     pub(super) fn look_around(&mut self) -> bool {
-        if self.steps % LOOK_AROUND == 0 {
+        if self.steps.is_multiple_of(LOOK_AROUND) {
             if let Some(progress) = &mut self.progress {
                 progress(self.time);
             }

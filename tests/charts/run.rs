@@ -6,6 +6,7 @@ use lodeshaft::render::chart::drawing::Drawing;
 use lodeshaft::render::chart::pick;
 use lodeshaft::render::chart::pick_rows::zoom_windows;
 use lodeshaft::render::chart::run::run_chart;
+use lodeshaft::render::chart::run_input::Row;
 use lodeshaft::render::chart::units::Display;
 use lodeshaft::results::{Event, EventKind, RunResult};
 
@@ -155,6 +156,33 @@ fn protections_states_and_long_names_find_their_rows() {
     assert_eq!(svg.matches("data-kind=\"flag\"").count(), 2);
     // Through three panels and the strip each.
     assert_eq!(svg.matches("data-kind=\"act\"").count(), 8);
+}
+
+#[test]
+fn what_holds_nothing_at_the_start_is_not_drawn_as_stuck() {
+    let run = Run::of(600.0, 400.0);
+    let mut result = run.result();
+    let event = |time, kind| Event {
+        time,
+        kind,
+        of: "holding".to_owned(),
+        value: 0.0,
+        unit: "1",
+        text: String::new(),
+    };
+    result.events = vec![event(0.4, EventKind::Sliding), event(0.9, EventKind::Stuck)];
+    let bars = |idle: Vec<String>| -> Vec<(f64, f64)> {
+        let train = lodeshaft::render::chart::train::Train { idle_at_start: idle, ..train() };
+        let traces = run.traces([0.0, END]);
+        let chart = pick::run(&result, &traces, &train, &Display::default(), "run");
+        let row = chart.rows.iter().find_map(|row| match row {
+            Row::Bars { label, bars, .. } if label == "Holding stuck" => Some(bars),
+            _ => None,
+        });
+        row.unwrap().iter().map(|bar| (bar.start, bar.end)).collect()
+    };
+    assert_eq!(bars(vec!["holding".to_owned()]), [(0.9, result.end_time)]);
+    assert_eq!(bars(Vec::new()), [(0.0, 0.4), (0.9, result.end_time)]);
 }
 
 #[test]

@@ -123,7 +123,8 @@ fn completions_and_manual_pages_are_printed() {
         let told = bench.run(&["completions", shell]);
         assert_eq!(told.status, Some(0), "{shell}: {told:?}");
         assert!(told.out.contains(words), "{shell}: {}", told.out);
-        assert!(told.out.contains("compare") && told.out.contains("--set"), "{shell}");
+        let option = if shell == "fish" { "-l set" } else { "--set" };
+        assert!(told.out.contains("compare") && told.out.contains(option), "{shell}");
     }
     assert_eq!(bench.run(&["completions", "dos"]).status, Some(2));
     let told = bench.run(&["man"]);
@@ -187,4 +188,30 @@ fn a_report_is_opened_by_the_desktop_when_asked() {
     let told = run("/nowhere");
     assert_eq!(told.status, Some(0), "the page stands: {told:?}");
     assert!(told.err.contains("cannot be opened with `xdg-open`"), "{}", told.err);
+}
+
+/// By hand: 20 N*m stop 1 kg*m2 at 10 rad/s within 0.5 s, so the brake that is pressed at 0.5 s holds
+/// from 1 s on and not before.
+#[test]
+fn a_brake_is_drawn_as_stuck_from_when_it_holds() {
+    let bench = Bench::new("stuck");
+    let text = "lodeshaft: 1\nduration: 2 s\nbodies:\n  wheel: { inertia: 1 kg*m2, speed: 10 rad/s }\nbrakes:\n  \
+        stop: { body: wheel, torque: 20 N*m, applied: { step: { at: 0.5 s, from: 0, to: 1 } } }\n";
+    bench.write("wheel.yaml", text);
+    assert_eq!(bench.run(&["run", "wheel.yaml", "--quiet"]).status, Some(0));
+    let chart = bench.read("output/wheel/run.svg");
+    let mut bars: Vec<[f64; 2]> = chart
+        .split("class=\"b\"")
+        .skip(1)
+        .map(|part| {
+            ["data-t=\"", "data-u=\""].map(|key| {
+                part.split(key).nth(1).unwrap().split('"').next().unwrap().parse().unwrap()
+            })
+        })
+        .collect();
+    bars.sort_by(|one, two| one[0].total_cmp(&two[0]));
+    assert_eq!(bars.len(), 2, "the signal and the state: {bars:?}");
+    for (bar, wanted) in bars.iter().zip([[0.5, 2.0], [1.0, 2.0]]) {
+        assert!((bar[0] - wanted[0]).abs() < 1e-6 && (bar[1] - wanted[1]).abs() < 1e-6, "{bars:?}");
+    }
 }

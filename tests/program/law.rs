@@ -3,7 +3,7 @@
 //! Expected: the laws as the scenario reference states them, worked out here by hand at the
 //! first instant of a run, where angles and speeds are the given ones.
 
-use super::helper::{head, near, run, run_well, same};
+use super::helper::{Folder, call, head, near, run, run_well, same};
 use super::swing::Swing;
 use std::f64::consts::{PI, TAU};
 
@@ -181,5 +181,58 @@ fn coupling_softens_under_load() {
         // Between turning points lies half a period, however lopsided the swing is.
         let half = outcome.found("second").unwrap() - outcome.found("first").unwrap();
         same(half, swing.seconds(0.5 * period), 1e-7);
+    }
+}
+
+/// A table of `raw` over the coupling's own angle, one pole pitch from `from` electrical degrees on.
+fn tabulated(from: f64, raw: impl Fn(f64) -> f64) -> String {
+    let mut table = "angle,M\n".to_owned();
+    for place in 0..=72 {
+        let degrees = from + 5.0 * f64::from(place);
+        table += &format!("{},{}\n", degrees / 6.0, 0.37 * raw(degrees.to_radians()));
+    }
+    table
+}
+
+// Closed form: the table of a sum of sines is that sum, so both files must give the same run.
+#[test]
+fn a_table_of_torques_is_its_harmonics() {
+    let raw = |x: f64| x.sin() + 0.12 * (2.0 * x + 0.7).sin() + 0.03 * (5.0 * x - 0.4).sin();
+    let listed = ", initial_load_angle: 2.4 rad, harmonics: [{ order: 2, amplitude: 0.12, phase: 0.7 }, \
+                  { order: 5, amplitude: 0.03, phase: -0.4 }]";
+    let named = ", initial_load_angle: 2.4 rad, torque_table: { file: map.csv, angle: angle, torque: M, \
+                 angle_unit: deg, unit: kN*m, at: mechanical }";
+    let by_hand = run_well(&rotor(listed, 3.0, "")).series();
+    let folder = Folder::new();
+    folder.write("map.csv", &tabulated(-180.0, raw));
+    folder.write("case.yaml", &rotor(named, 3.0, ""));
+    let outcome = call(folder, &["run", "case.yaml", "--out", "out", "--no-charts"], "");
+    assert_eq!(outcome.status, Some(0), "{}", outcome.stderr);
+    for channel in ["rotor.speed", "coupling.torque_b", "coupling.pull_out_share"] {
+        let (one, other) = (by_hand.column(channel), outcome.series().column(channel));
+        for (one, other) in one.into_iter().zip(other) {
+            near(one, other, 1e-7);
+        }
+    }
+}
+
+#[test]
+fn a_table_that_is_no_periodic_torque_is_refused_at_its_place() {
+    let named = ", torque_table: { file: map.csv, angle: angle, torque: M, angle_unit: deg, at: mechanical }";
+    for (table, words) in [
+        (tabulated(0.0, |x| x.sin() + 0.3), "a mean of 30 % of the fundamental"),
+        (tabulated(0.0, |x| x.sin() + 0.2 * (x / 2.0).sin()), "mean"),
+        ("angle,M\n0,1\n5,0\n3,2\n".to_owned(), "angles must rise"),
+        ("angle,M\n0,1\n5,0\n".to_owned(), "the table has 2 rows"),
+        ("angle,F\n0,1\n".to_owned(), "no column is headed `M`"),
+    ] {
+        let folder = Folder::new();
+        folder.write("map.csv", &table);
+        folder.write("case.yaml", &rotor(named, 0.0, ""));
+        let outcome = call(folder, &["run", "case.yaml", "--out", "out"], "");
+        assert_eq!(outcome.status, Some(2), "{}", outcome.stderr);
+        assert!(outcome.stderr.contains(words), "{}", outcome.stderr);
+        assert!(outcome.stderr.contains("(magnetic_couplings.coupling.torque_table.file)"));
+        assert!(outcome.stderr.contains("case.yaml:"), "{}", outcome.stderr);
     }
 }

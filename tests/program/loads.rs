@@ -65,7 +65,7 @@ fn an_angle_at_rest_ends_where_the_harmonic_lets_it() {
 }
 
 /// A shaft too heavy to change its speed.
-fn screw(duration: f64, step: f64, inertia: f64, speed: f64, law: &str) -> String {
+pub fn screw(duration: f64, step: f64, inertia: f64, speed: f64, law: &str) -> String {
     format!(
         "{}bodies:\n  shaft: {{ inertia: {inertia} kg*m2, speed: {speed} rad/s }}\n\
          loads:\n  screw: {{ body: shaft, law: {{ propeller: {{ diameter: 4 m, {law} }} }} }}\n",

@@ -3,17 +3,25 @@
 //! The machine is that of Chapman, Electric Machinery Fundamentals, example 7-5: 460 V, 60 Hz, four
 //! poles, star, R1 0.641, X1 1.106, R2 0.332, X2 0.464, Xm 26.3 ohm (data read in a public exercise).
 //! Its exact circuit was evaluated apart from this program. The recorded transients come from an
-//! integration with SciPy (DOP853, relative tolerance 1e-12) of the textbook's flux linkages of
+//! integration with `SciPy` (DOP853, relative tolerance 1e-12) of the textbook's flux linkages of
 //! stator and rotor in a frame at rest, sinusoidal phase voltages and all: other states and another
 //! frame than the program's.
 
 use super::helper::{Outcome, head, near, run, run_well, same};
 use std::f64::consts::PI;
 
-const SYNCHRONOUS: f64 = 60.0 * PI;
+/// Speed without load, rad/s.
+pub const SYNCHRONOUS: f64 = 60.0 * PI;
 
 /// The textbook's machine on a body of its own.
-fn machine(duration: f64, step: f64, inertia: f64, speed: f64, law: &str, more: &str) -> String {
+pub fn machine(
+    duration: f64,
+    step: f64,
+    inertia: f64,
+    speed: f64,
+    law: &str,
+    more: &str,
+) -> String {
     format!(
         "{}bodies:\n  rotor: {{ inertia: {inertia} kg*m2, speed: {speed} rad/s }}\n\
          motors:\n  motor: {{ body: rotor, law: {{ induction_circuit: {{ line_voltage: 460 V, frequency: 60 Hz, pole_pairs: 2, \
@@ -24,7 +32,7 @@ fn machine(duration: f64, step: f64, inertia: f64, speed: f64, law: &str, more: 
 }
 
 /// Torque at the start of a run at a slip.
-fn torque(slip: f64, law: &str) -> f64 {
+pub fn torque(slip: f64, law: &str) -> f64 {
     let speed = SYNCHRONOUS * (1.0 - slip);
     run_well(&machine(1.0, 0.5, 1e12, speed, law, "")).series().at("motor.torque", 0.0)
 }
@@ -102,7 +110,7 @@ fn the_flux_equations_come_to_rest_on_the_circuit() {
 }
 
 /// Torque at its `n`-th extreme in a fine series, by a parabola through three rows.
-fn extremes(outcome: &Outcome) -> Vec<(f64, f64)> {
+pub fn extremes(outcome: &Outcome) -> Vec<(f64, f64)> {
     let series = outcome.series();
     let (times, torques) = (series.column("time"), series.column("motor.torque"));
     let mut found = Vec::new();

@@ -128,8 +128,8 @@ fn a_coupling_of_next_to_no_torque_lets_its_rotor_run() {
 
 #[test]
 fn a_hundred_frictions_stop_together() {
-    // A hundred glands of 0.5 N*m on one wheel: J w/(100 * 0.5) = 2 s; then a hundred wheels that
-    // turn as one, each rubbed and at rest until the pull of 100 N*m is exceeded at 5 s.
+    // A hundred glands of 0.5 N*m on one wheel: J w/(100 * 0.5) = 2 s; then thirty wheels that
+    // turn as one, each rubbed and at rest until the pull of 30 N*m is exceeded at 5 s.
     let mut text = head(4.0, 0.5, 1e-8);
     text.push_str("bodies:\n  wheel: { inertia: 2 kg*m2, speed: 50 rad/s }\nloads:\n");
     for gland in 0..100 {
@@ -147,11 +147,11 @@ fn a_hundred_frictions_stop_together() {
 
     let mut text = head(6.0, 0.5, 1e-8);
     text.push_str("bodies:\n");
-    for wheel in 0..100 {
+    for wheel in 0..30 {
         let _ = writeln!(text, "  wheel_{wheel}: {{ inertia: 0.1 kg*m2 }}");
     }
     text.push_str("shafts:\n");
-    for wheel in 1..100 {
+    for wheel in 1..30 {
         let _ = writeln!(
             text,
             "  joint_{wheel}: {{ between: [wheel_{}, wheel_{wheel}], rigid: true }}",
@@ -159,31 +159,31 @@ fn a_hundred_frictions_stop_together() {
         );
     }
     text.push_str("loads:\n");
-    for wheel in 0..100 {
+    for wheel in 0..30 {
         let _ = writeln!(
             text,
             "  gland_{wheel}: {{ body: wheel_{wheel}, law: {{ friction: {{ sliding: 0.5 N*m, breakaway: 1 N*m }} }} }}"
         );
     }
-    text.push_str("motors:\n  winch: { body: wheel_0, law: { prescribed: { torque: { ramp: { start: 0 s, end: 6 s, from: 0 N*m, to: 120 N*m } } } } }\n");
+    text.push_str("motors:\n  winch: { body: wheel_0, law: { prescribed: { torque: { ramp: { start: 0 s, end: 6 s, from: 0 N*m, to: 36 N*m } } } } }\n");
     let outcome = through(&text);
     let events = outcome.events();
     let first = events.iter().find(|event| event.kind == "sliding").expect("it breaks away");
     near(first.time, 5.0, 1e-5);
-    // (20 t - 50)/10 rad/s2 from 5 s to 6 s.
-    near(outcome.channel("wheel_99.speed", "final"), 6.0, 1e-4);
+    // (6 t - 15)/3 rad/s2 from 5 s to 6 s.
+    near(outcome.channel("wheel_29.speed", "final"), 6.0, 1e-4);
 }
 
 #[test]
-fn a_hundred_brakes_on_elastic_wheels_come_to_rest() {
-    // A hundred wheels on shafts, each with a brake of its own: all energy ends as heat.
+fn thirty_brakes_on_elastic_wheels_come_to_rest() {
+    // Thirty wheels on shafts, each with a brake of its own: all energy ends as heat.
     let mut text = head(5.0, 0.5, 1e-7);
     text.push_str("bodies:\n");
-    for wheel in 0..100 {
+    for wheel in 0..30 {
         let _ = writeln!(text, "  wheel_{wheel}: {{ inertia: 0.1 kg*m2, speed: 3 rad/s }}");
     }
     text.push_str("shafts:\n");
-    for wheel in 1..100 {
+    for wheel in 1..30 {
         let _ = writeln!(
             text,
             "  joint_{wheel}: {{ between: [wheel_{}, wheel_{wheel}], stiffness: 500 N*m/rad, damping: 0.5 N*m*s/rad }}",
@@ -191,7 +191,7 @@ fn a_hundred_brakes_on_elastic_wheels_come_to_rest() {
         );
     }
     text.push_str("brakes:\n");
-    for wheel in 0..100 {
+    for wheel in 0..30 {
         let torque = 0.2 + 0.002 * f64::from(wheel);
         let _ = writeln!(
             text,
@@ -200,7 +200,7 @@ fn a_hundred_brakes_on_elastic_wheels_come_to_rest() {
     }
     let outcome = bounded(&text);
     if outcome.status != Some(3) {
-        for wheel in [0, 50, 99] {
+        for wheel in [0, 15, 29] {
             near(outcome.channel(&format!("wheel_{wheel}.speed"), "final"), 0.0, 1e-9);
         }
         assert!(outcome.number(&["energy", "residual_share"]) < 1e-4);

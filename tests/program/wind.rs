@@ -136,3 +136,66 @@ fn optimal_power_generator_takes_the_square_of_the_speed() {
         same(series.at("generator.torque", time), -k * (0.8 * ratio).powi(2), 1e-7);
     }
 }
+
+/// The rotor of 10 m in 10 m/s with a power coefficient of its own: tip speed ratio is rad/s.
+fn shaped(ratio: f64, pitch: &str, coefficient: &str) -> f64 {
+    let scenario = rotor(1.0, 0.5, ratio, 10.0, "10 m/s", pitch)
+        .replace("pitch:", &format!("power_coefficient: {{ {coefficient} }}, pitch:"));
+    let series = run_well(&scenario).series();
+    let found = series.at("blades.power_coefficient", 0.0);
+    // Torque = density pi R^3 V^2 Cp/(2 lambda).
+    same(series.at("blades.torque", 0.0), 0.5 * 1.225 * PI * 1e5 * found / ratio, 1e-12);
+    found
+}
+
+#[test]
+fn power_coefficients_can_be_given_by_constant_points_table_and_formula() {
+    same(shaped(7.0, "3 deg", "constant: 0.42"), 0.42, 1e-12);
+    let points = "points: [[2, 0.1], [6, 0.44], [10, 0.2]]";
+    for (ratio, expected) in
+        [(1.0, 0.05), (2.0, 0.1), (4.0, 0.27), (6.0, 0.44), (9.0, 0.26), (10.0, 0.2), (14.0, 0.2)]
+    {
+        same(shaped(ratio, "3 deg", points), expected, 1e-12);
+    }
+    let table = "table: { pitch: [0 deg, 5 deg, 10 deg], \
+                 rows: [[2, 0.1, 0.08, 0.02], [6, 0.44, 0.3, 0.1], [10, 0.2, 0.0, -0.2]] }";
+    for (ratio, pitch, expected) in [
+        (6.0, "0 deg", 0.44),
+        (6.0, "5 deg", 0.3),
+        (8.0, "5 deg", 0.15),
+        (4.0, "10 deg", 0.06),
+        (8.0, "20 deg", -0.05),
+    ] {
+        same(shaped(ratio, pitch, table), expected, 1e-11);
+    }
+    // Heier's set of constants, worked out apart: best point 0.410963103521 at 7.95402599099.
+    let heier =
+        "exponential: { c1: 0.5, c2: 116, c3: 0.4, c4: 0, c6: 5, c7: 21, c8: 0.08, c9: 0.035 }";
+    same(shaped(7.95402599099, "0 deg", heier), 0.410963103521, 1e-11);
+    same(shaped(6.0, "5 deg", heier), 0.209659686901, 1e-10);
+    // Without a word of it the constants are those of the built-in formula.
+    same(shaped(8.0, "0 deg", "exponential: {}"), 0.403882908061, 1e-11);
+}
+
+#[test]
+fn a_rotor_that_runs_through_its_points_stops_at_each_of_them() {
+    // The tip speed ratio passes all five points and several of them again as the wind swings; a
+    // run at a thousandth of the tolerance must agree however the corners fall between steps.
+    let run = |tolerance: &str| {
+        let scenario = format!(
+            "lodeshaft: 1\nduration: 20 s\noutput_step: 0.5 s\nsolver: {{ tolerance: {tolerance} }}\n\
+             bodies:\n  hub: {{ inertia: 300 kg*m2, speed: 0.5 rad/s }}\n\
+             loads:\n  blades: {{ body: hub, law: {{ axial_rotor: {{ radius: 4 m, density: 1.225 kg/m3, flow: {{ sine: {{ mean: 8 m/s, amplitude: 3 m/s, frequency: 0.2 Hz }} }}, \
+             power_coefficient: {{ points: [[1, 0.05], [3, 0.3], [5, 0.45], [7, 0.4], [9, 0]] }} }} }} }}\n"
+        );
+        run_well(&scenario)
+    };
+    let (coarse, fine) = (run("1e-7"), run("1e-10"));
+    for (one, other) in
+        coarse.series().column("hub.speed").into_iter().zip(fine.series().column("hub.speed"))
+    {
+        near(one, other, 5e-5);
+    }
+    assert!(fine.number(&["energy", "residual_share"]) < 1e-8);
+    assert!(fine.number(&["solver", "events"]) > 8.0, "corners are located");
+}

@@ -24,7 +24,7 @@ struct Outcome {
 /// Recorded figures are held to this, relative.
 const RECORDED: f64 = 0.01;
 
-const OUTCOMES: [Outcome; 13] = [
+const OUTCOMES: [Outcome; 14] = [
     Outcome {
         stem: "conveyor_stop",
         status: 0,
@@ -74,6 +74,18 @@ const OUTCOMES: [Outcome; 13] = [
             ("channels/loose_coupling.torque/max", 94.3),
         ],
         failing: &[],
+    },
+    Outcome {
+        stem: "line_start_pulses",
+        status: 1,
+        gear: "gear",
+        slips: 0..=0,
+        state: "synchronous",
+        figures: &[
+            ("gears/gear/peak_pull_out_share", 0.9731),
+            ("channels/line_motor.torque/max", 500.8),
+        ],
+        failing: &["gear_share"],
     },
     Outcome {
         stem: "overload_burst",

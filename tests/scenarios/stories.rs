@@ -197,3 +197,27 @@ fn hot_magnets_weaken_the_kiln_gear_by_the_square_of_the_remanence() {
     same(hot.last("motor_rotor.speed") / hot.last("kiln.speed"), 4.0 * 5.5 * 4.0, 1e-6);
     assert!(hot.last("motor_rotor.speed") > 1455.0 * RPM);
 }
+
+#[test]
+fn pulses_take_the_reserve_that_the_curve_promises() {
+    let pulses = run("line_start_pulses", &[]);
+    let curve =
+        run("line_start_pulses", &["motors.line_motor.law.induction_circuit.transient=false"]);
+    let share = "gears/gear/peak_pull_out_share";
+    assert!(curve.number(share) < 0.85 && curve.status == Some(0));
+    assert!(pulses.number(share) > curve.number(share) + 0.1);
+    // Closed form of the circuit's breakdown torque, 3 |Vth|^2/(2 ws (Rth + |Rth + j(Xth + X2)|)).
+    let squared = 0.2_f64.powi(2) + 18.6_f64.powi(2);
+    let voltage = 400.0 / 3.0_f64.sqrt() * 18.0 / squared.sqrt();
+    let resistance = 18.0 * 18.0 * 0.2 / squared;
+    let reactance = 18.0 * (0.2 * 0.2 + 0.6 * 18.6) / squared + 0.6;
+    let breakdown =
+        3.0 * voltage * voltage / (2.0 * 50.0 * PI * (resistance + resistance.hypot(reactance)));
+    let highest = "channels/line_motor.torque/max";
+    same(curve.number(highest), breakdown, 1e-6);
+    assert!(pulses.number(highest) > 1.4 * breakdown);
+    // The pulses even turn the torque round, while the curve drives until synchronous speed.
+    assert!(pulses.number("channels/line_motor.torque/min") < -0.5 * breakdown);
+    // Both arrive at the same speed.
+    same(pulses.last("crankshaft.speed"), curve.last("crankshaft.speed"), 1e-2);
+}

@@ -37,6 +37,13 @@ fn no_pump_of_the_tolerances_slips() {
 }
 
 #[test]
+fn trip_of_the_pump_may_be_delayed_by_a_quarter_of_a_second() {
+    let found = answer("pump_start_trip", "latest_trip", 0);
+    same(found.number("studies/latest_trip/value"), 0.28094, RECORDED);
+    assert_eq!(found.value("studies/latest_trip/first_to_fail"), "few_slips");
+}
+
+#[test]
 fn pump_is_estimated_and_linearised() {
     let found = answer("pump_start", "by_hand", 0);
     // Closed form: 1/J = 4^2/0.27 + 22^2/2.65 about K = 1500/22.

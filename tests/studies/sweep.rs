@@ -76,6 +76,6 @@ fn the_text_opens_with_the_answer() {
     let text = String::from_utf8(output.stdout).unwrap();
     let mut lines = text.lines();
     assert_eq!(lines.next(), Some("map (sweep)"));
-    assert_eq!(lines.next(), Some("  1 of 2 runs meet all requirements; 1 slip."));
+    assert_eq!(lines.next(), Some("  1 of 2 runs meet all requirements; 1 run slips."));
     assert!(text.contains("80 N*m") && text.contains("NOT MET"), "{text}");
 }

@@ -240,7 +240,7 @@ fn peak(basis: &Basis<'_>, hand: &GearEstimate, found: &RunResult) -> Option<Com
         why.push(format!("`{}` slips: its torque reaches the pull-out each time", gear.name));
     }
     Some(Comparison {
-        figure: "peak share of the pull-out (by hand: largest motor torque, slowly; a step swings to twice that)",
+        figure: "largest share of the pull-out: once to twice",
         hand: slow,
         found: Some(share),
         unit: "1",
@@ -327,7 +327,7 @@ fn in_step_again(basis: &Basis<'_>, hand: &GearEstimate, found: &RunResult) -> O
         Some(true) => {}
     }
     Some(Comparison {
-        figure: "load at the end, against the share below which it falls into step (by hand)",
+        figure: "load at the end, against that for falling into step",
         hand: limit,
         found: Some(load),
         unit: "1",

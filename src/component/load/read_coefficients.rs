@@ -92,7 +92,7 @@ pub(super) fn power_coefficient(fields: &mut Fields<'_>) -> Option<PowerCoeffici
     let table = table.map(PowerCoefficient::Rows);
     let exponential = fields.group_optional(
         "exponential",
-        "c1*(c2*z - c3*b - c4*b^c5 - c6)*exp(-c7*z) + c10*lambda, z = 1/(lambda + c8*b) - c9/(b^3 + 1), b in degrees.",
+        "Formula c1*(c2*z - c3*b - c4*b^c5 - c6)*exp(-c7*z) + c10*lambda, z = 1/(lambda + c8*b) - c9/(b^3 + 1), b in degrees.",
         exponential,
     );
     one_of_ways(

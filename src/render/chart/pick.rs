@@ -186,11 +186,11 @@ impl<'a> Desk<'a> {
             pieces: curve::pieces(&synchronous, window, unit.per_si),
         };
         let mut curves = vec![main];
-        if differ(&synchronous, whole, 0.003 * pull_out) {
-            if let Some(curve) = self.curve(&channel, unit.per_si) {
-                let label = "with damping".to_owned();
-                curves.push(Curve { label, hue: Hue::Grey, weight: Weight::Second, ..curve });
-            }
+        if differ(&synchronous, whole, 0.003 * pull_out)
+            && let Some(curve) = self.curve(&channel, unit.per_si)
+        {
+            let label = "with damping".to_owned();
+            curves.push(Curve { label, hue: Hue::Grey, weight: Weight::Second, ..curve });
         }
         let bound = unit.of(pull_out);
         let limits =

@@ -82,7 +82,7 @@ fn height(points: &[[f64; 2]], at: f64) -> Option<f64> {
         let ([x0, y0], [x1, y1]) = (pair[0], pair[1]);
         let inside = (x0.min(x1)..=x0.max(x1)).contains(&at);
         let share = if x1 == x0 { 0.0 } else { (at - x0) / (x1 - x0) };
-        (inside && share.is_finite()).then(|| y0 + share * (y1 - y0))
+        (inside && share.is_finite()).then_some(y0 + share * (y1 - y0))
     })
 }
 

@@ -154,19 +154,25 @@ fn draw_bar(pen: &mut Pen, axes: &Axes, middle: f64, kind: BarKind, bar: &Signal
         return;
     }
     let text_wide = font::width(&bar.text, pen::LABEL, false);
-    let centre = (bar.start.max(start) + bar.end.min(end)) / 2.0;
-    pen.open(Group::class("m").number("t", centre).with("kind", "words"));
+    let (from, to) = (bar.start.max(start), bar.end.min(end));
+    let y = middle + 3.9;
+    // The words hang on the time beside which they stand, so that a script can move them with it.
+    let mut words = |time: f64, x: f64, anchor: Anchor, plate: bool| {
+        pen.open(Group::class("m").number("t", time).with("kind", "words"));
+        if plate {
+            pen.text_on_plate([x, y], &bar.text, pen::label(Ink::Ink, anchor));
+        } else {
+            pen.text([x, y], &bar.text, pen::label(Ink::Ink, anchor));
+        }
+        pen.close();
+    };
     if text_wide + 4.0 <= wide && kind == BarKind::Signal {
-        let place = [left + wide / 2.0, middle + 3.9];
-        pen.text(place, &bar.text, pen::label(Ink::Ink, Anchor::Middle));
+        words((from + to) / 2.0, left + wide / 2.0, Anchor::Middle, false);
     } else if left + wide + 4.0 + text_wide <= axes.frame.right() {
-        let place = [left + wide + 4.0, middle + 3.9];
-        pen.text_on_plate(place, &bar.text, pen::label(Ink::Ink, Anchor::Start));
+        words(to, left + wide + 4.0, Anchor::Start, true);
     } else if left - 4.0 - text_wide >= axes.frame.left {
-        let place = [left - 4.0, middle + 3.9];
-        pen.text_on_plate(place, &bar.text, pen::label(Ink::Ink, Anchor::End));
+        words(from, left - 4.0, Anchor::End, true);
     }
-    pen.close();
 }
 
 fn draw_flags(pen: &mut Pen, axes: &Axes, middle: f64, flags: &[(f64, String)]) {

@@ -288,16 +288,16 @@ fn end_labels(input: &SwingChart, axes: &Axes, passes: &[Vec<[f64; 2]>]) -> Vec<
             leader: Ink::Axis,
         });
     }
-    if let Some(separatrix) = &input.swing.separatrix {
-        if axes.frame.right() - axes.x(separatrix.saddle * DEGREES) <= 40.0 {
-            labels.push(EndLabel {
-                y: axes.y(0.0),
-                text: "tips over".to_owned(),
-                bold: false,
-                ink: Ink::Ink,
-                leader: Ink::Ink,
-            });
-        }
+    if let Some(separatrix) = &input.swing.separatrix
+        && axes.frame.right() - axes.x(separatrix.saddle * DEGREES) <= 40.0
+    {
+        labels.push(EndLabel {
+            y: axes.y(0.0),
+            text: "tips over".to_owned(),
+            bold: false,
+            ink: Ink::Ink,
+            leader: Ink::Ink,
+        });
     }
     labels
 }

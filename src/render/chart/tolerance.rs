@@ -129,7 +129,11 @@ fn behind_the_wall(pen: &mut Pen, input: &Tolerance, axes: &Axes, draws: u64) {
     let mut y = bottom - 52.0;
     let share = if draws > 0 { f64::from(input.slipped) / draws as f64 } else { 0.0 };
     marks::slip(pen, [left + 4.0, y - 4.0], true, 7.5);
-    let words = format!("{} slip", input.slipped);
+    let words = match input.slipped {
+        0 => "none slips".to_owned(),
+        1 => "1 slips".to_owned(),
+        count => format!("{count} slip"),
+    };
     pen.text([left + 13.0, y], &words, pen::bold(Ink::Slip, Anchor::Start));
     y += 14.5;
     let digits = if share < 0.1 { 1 } else { 0 };

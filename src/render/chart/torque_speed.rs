@@ -237,16 +237,16 @@ fn end_labels(
         }
         _ => {}
     }
-    if let Some(load) = &input.load {
-        if let Some(last) = scaled(&load.points).last() {
-            labels.push(EndLabel {
-                y: axes.y(last[1]),
-                text: load.label.clone(),
-                bold: true,
-                ink: load.side.text(),
-                leader: load.side.ink(),
-            });
-        }
+    if let Some(load) = &input.load
+        && let Some(last) = scaled(&load.points).last()
+    {
+        labels.push(EndLabel {
+            y: axes.y(last[1]),
+            text: load.label.clone(),
+            bold: true,
+            ink: load.side.text(),
+            leader: load.side.ink(),
+        });
     }
     labels
 }

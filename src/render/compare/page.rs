@@ -76,7 +76,8 @@ fn inputs(side: &Side<'_>) -> String {
         let values = input.values.iter().map(|value| {
             value.as_deref().map_or_else(|| "–".to_owned(), |value| escape(&tidy(value)))
         });
-        let path = format!("<code>{}</code>", escape(&input.path));
+        // A long path may break behind a part, not within a word.
+        let path = format!("<code>{}</code>", escape(&input.path).replace('.', ".<wbr>"));
         table.row(std::iter::once(path).chain(values));
     }
     table.html()

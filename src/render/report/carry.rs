@@ -61,7 +61,22 @@ pub fn all(
             study(from, to, &name)?;
             continue;
         }
-        left.push(name.clone());
+        left.push(name);
+    }
+    begun(from, to)?;
+    Ok(left)
+}
+
+/// Takes the journals of all begun studies over, whatever they belong to.
+///
+/// # Errors
+/// The fault of the disk.
+pub fn begun(from: &Path, to: &Path) -> Result<(), FolderFault> {
+    if !leftovers::is_ours(from) {
+        return Ok(());
+    }
+    let folder = from.join(NAME);
+    for name in names(&folder) {
         let journal = format!("{name}.unfinished.csv");
         if folder.join(&journal).is_file() {
             let told = |error| FolderFault::disk(&format!("the study `{name}`"), &error);
@@ -70,7 +85,7 @@ pub fn all(
             fs::copy(folder.join(&journal), place.join(&journal)).map_err(told)?;
         }
     }
-    Ok(left)
+    Ok(())
 }
 
 /// Names of all studies of which something stands in a folder.

@@ -1,7 +1,8 @@
 //! Studies of the train as it stands or of its one run: tables and charts of the page.
 
 use super::Material;
-use super::html::{HtmlTable, escape};
+use super::figures::tidy;
+use super::html::{HtmlTable, escape, rich};
 use crate::analysis::estimates::EstimatesResult;
 use crate::analysis::modes::ModesResult;
 use crate::analysis::rainflow::RainflowResult;
@@ -14,6 +15,7 @@ use crate::render::chart::number::{NBSP, number, percent, words};
 use crate::render::chart::rainflow::{RainflowChart, rainflow_chart};
 use crate::render::chart::units::Unit;
 use crate::render::charts;
+use crate::render::study::by_hand;
 
 /// Cycles shown; the file on disk has all.
 const MOST_CYCLES: usize = 20;
@@ -72,7 +74,7 @@ pub fn rainflow(answer: &RainflowResult) -> String {
 }
 
 /// Closed forms beside what the run found, with the reasons where they differ.
-pub fn estimates(answer: &EstimatesResult) -> String {
+pub fn estimates(material: &Material<'_>, answer: &EstimatesResult) -> String {
     let mut table = HtmlTable::new("<<>><", &["Gear", "Figure", "By hand", "Run", ""]);
     for gear in &answer.gears {
         for one in &gear.comparisons {
@@ -91,27 +93,27 @@ pub fn estimates(answer: &EstimatesResult) -> String {
                 escape(one.figure),
                 figure(one.hand),
                 one.found.map_or_else(|| "–".to_owned(), figure),
-                escape(&why),
+                rich(&why),
             ]);
         }
     }
-    let head = ["Gear", "Damping", "Damping ratio", "Critical step", "Locks again below"];
-    let mut variants = HtmlTable::new("<<>>>", &head);
-    for gear in &answer.gears {
-        for variant in &gear.variants {
-            variants.row([
-                escape(&words(&gear.gear)),
-                escape(variant.damping),
-                format!("{}{NBSP}%", number(100.0 * variant.damping_ratio, 3)),
-                format!("{}{NBSP}% of pull-out", number(100.0 * variant.critical_step_share, 4)),
-                format!(
-                    "{}{NBSP}% of pull-out",
-                    number(100.0 * variant.resynchronisation_share, 4)
-                ),
-            ]);
+    let mut html = table.html();
+    let shown = material.written.shown();
+    for sheet in [by_hand::members(answer, shown), by_hand::damping(answer, shown)] {
+        let mut table = HtmlTable::new(sheet.sides, &sheet.head);
+        for row in sheet.rows {
+            let cells = row.iter().zip(sheet.sides.chars());
+            table.row(cells.map(|(cell, side)| match side {
+                '>' => escape(&tidy(cell)),
+                _ => escape(&words(cell)),
+            }));
         }
+        html.push_str(&table.html());
     }
-    format!("{}{}", table.html(), variants.html())
+    if !answer.gears.is_empty() {
+        html.push_str(&format!("<p><small>{}</small></p>", escape(by_hand::MEMBERS)));
+    }
+    html
 }
 
 /// The interference diagram with its caption.

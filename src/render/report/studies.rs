@@ -72,7 +72,7 @@ fn tables(material: &Material<'_>, study: &StudyResult) -> (String, String) {
         Answer::MonteCarlo(answer) => (monte_carlo(material, answer), String::new()),
         Answer::Modes(answer) => (one_run::modes(material, answer), String::new()),
         Answer::Rainflow(answer) => (String::new(), one_run::rainflow(answer)),
-        Answer::Estimates(answer) => (one_run::estimates(answer), String::new()),
+        Answer::Estimates(answer) => (one_run::estimates(material, answer), String::new()),
         Answer::Steady(answer) => (one_run::steady(material, answer), String::new()),
     }
 }

@@ -1,6 +1,7 @@
 //! Studies as files and text: one row a run, one map an answer, one sentence at its head.
 
 pub mod answer;
+pub mod by_hand;
 pub mod folder;
 pub mod journal;
 pub mod json;

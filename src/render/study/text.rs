@@ -1,6 +1,6 @@
 //! Studies for people: the answer in one sentence, then what it stands on.
 
-use super::{answer, json, steady};
+use super::{answer, by_hand, json, steady};
 use crate::analysis::estimates::EstimatesResult;
 use crate::analysis::modes::ModesResult;
 use crate::analysis::modes::interference::Crossing;
@@ -45,16 +45,21 @@ pub fn summary(result: &StudyResult, scenario: &Scenario) -> String {
         text.push('\n');
         text.push_str(&table.text(2));
     }
-    let second = match &result.answer {
-        Answer::MonteCarlo(answer) => Some(sensitivities(answer)),
-        Answer::Modes(answer) => Some(crossings(answer, shown)),
-        _ => None,
-    };
-    if let Some(table) = second {
-        if table.len() > 1 {
-            text.push('\n');
-            text.push_str(&table.text(2));
+    let more = match &result.answer {
+        Answer::MonteCarlo(answer) => vec![sensitivities(answer)],
+        Answer::Modes(answer) => vec![crossings(answer, shown)],
+        Answer::Estimates(answer) => {
+            vec![by_hand::members(answer, shown).table(), by_hand::damping(answer, shown).table()]
         }
+        _ => Vec::new(),
+    };
+    for table in more.iter().filter(|table| table.len() > 1) {
+        text.push('\n');
+        text.push_str(&table.text(2));
+    }
+    if matches!(&result.answer, Answer::Estimates(answer) if !answer.gears.is_empty()) {
+        text.push('\n');
+        text.push_str(&wrap("  ", by_hand::MEMBERS, WIDTH));
     }
     let notes = answer::notes(result);
     if !notes.is_empty() {

@@ -211,10 +211,10 @@ fn element(equations: &Equations, place: usize, value: f64) -> (f64, f64) {
         return (shaft.stiffness * beyond.copysign(value), shaft.stiffness);
     }
     for term in &equations.terms {
-        if let (Shape::Law(Law::Magnet(law)), [(state, _)]) = (&term.shape, term.input.as_slice()) {
-            if *state == place {
-                return (law.value(value), law.slope(value).max(1e-6 * law.amplitude()));
-            }
+        if let (Shape::Law(Law::Magnet(law)), [(state, _)]) = (&term.shape, term.input.as_slice())
+            && *state == place
+        {
+            return (law.value(value), law.slope(value).max(1e-6 * law.amplitude()));
         }
     }
     (0.0, 1.0)

@@ -29,11 +29,11 @@ impl Search<'_> {
             let mut changed = false;
             for (index, command) in commands.iter_mut().enumerate() {
                 let limit = self.equations().controllers[index].limit;
-                if let Command::Fixed(torque) = *command {
-                    if torque.abs() > limit * (1.0 + 1e-9) {
-                        *command = Command::ByLaw;
-                        changed = true;
-                    }
+                if let Command::Fixed(torque) = *command
+                    && torque.abs() > limit * (1.0 + 1e-9)
+                {
+                    *command = Command::ByLaw;
+                    changed = true;
                 }
             }
             if !changed {

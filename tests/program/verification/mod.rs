@@ -7,9 +7,11 @@
 
 mod coupling;
 mod fatigue;
+mod fluxes;
 mod friction;
 mod gears;
 mod limits;
+mod machines;
 mod sheet;
 mod slip;
 mod starts;
@@ -49,6 +51,8 @@ fn cases() -> Vec<Case> {
         slip::cases,
         gears::cases,
         starts::cases,
+        machines::cases,
+        fluxes::cases,
         friction::cases,
         vibration::cases,
         fatigue::cases,

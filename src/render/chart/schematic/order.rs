@@ -117,15 +117,15 @@ fn edges(train: &Schematic, nodes: &[Node]) -> Vec<Edge> {
     };
     let mut edges = Vec::new();
     for (place, link) in train.links.iter().enumerate() {
-        if let Link::Shaft { between: [Port::Body(a), Port::Body(b)], .. } = link {
-            if let (Some(one), Some(two)) = (seat(*a), seat(*b)) {
-                edges.push(Edge {
-                    nodes: [one.0, two.0],
-                    ports: [one.1, two.1],
-                    shaft: Some(place),
-                    bodies: [Some(*a), Some(*b)],
-                });
-            }
+        if let Link::Shaft { between: [Port::Body(a), Port::Body(b)], .. } = link
+            && let (Some(one), Some(two)) = (seat(*a), seat(*b))
+        {
+            edges.push(Edge {
+                nodes: [one.0, two.0],
+                ports: [one.1, two.1],
+                shaft: Some(place),
+                bodies: [Some(*a), Some(*b)],
+            });
         }
         if !link.is_device() {
             continue;

@@ -96,10 +96,10 @@ impl<'a> Slots<'a> {
             }
         }
         // Two ends that turn alike need one arrow.
-        if let [Some(left), Some(right)] = slots.arrows {
-            if speed(left) == speed(right) {
-                slots.arrows[1] = None;
-            }
+        if let [Some(left), Some(right)] = slots.arrows
+            && speed(left) == speed(right)
+        {
+            slots.arrows[1] = None;
         }
         slots
     }
