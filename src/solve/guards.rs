@@ -3,7 +3,7 @@
 use super::conditions::Conditions;
 use crate::equations::dot;
 use crate::equations::frame::{Evaluator, Frame};
-use crate::equations::mode::{Contact, FrictionMode, Mode};
+use crate::equations::mode::{Contact, FrictionMode, Mode, SLACK};
 use std::f64::consts::{PI, TAU};
 
 /// A guard trips when it falls below minus this; guards are scaled to working values of about 1.
@@ -100,14 +100,23 @@ pub fn value(
     let boundary = |term: usize, place: usize| -> f64 {
         equations.law_at(term).and_then(|law| law.boundaries().get(place)).copied().unwrap_or(0.0)
     };
+    // A controller that chatters at its limit leaves it a little late.
+    let slack = |term: usize, piece: usize| -> f64 {
+        let mut controllers = equations.controllers.iter().zip(&mode.slack);
+        let found = controllers.find(|(one, slack)| **slack && one.command == term);
+        match found {
+            Some((controller, _)) if mode.pieces[term] == piece => SLACK * controller.limit,
+            _ => 0.0,
+        }
+    };
     match guard {
         Guard::Lower(term) => {
-            let edge = boundary(term, mode.pieces[term] - 1);
+            let edge = boundary(term, mode.pieces[term] - 1) - slack(term, 2);
             let (place, size) = evaluator.place_on_axis(term, frame);
             (place - edge) / size
         }
         Guard::Upper(term) => {
-            let edge = boundary(term, mode.pieces[term]);
+            let edge = boundary(term, mode.pieces[term]) + slack(term, 0);
             let (place, size) = evaluator.place_on_axis(term, frame);
             (edge - place) / size
         }

@@ -17,6 +17,7 @@ use crate::results::{RunResult, SolverWork};
 use crate::scenario::{Method, Start};
 use crate::signal::course::Overrides;
 use std::collections::BTreeMap;
+use std::sync::atomic::Ordering;
 
 /// Changes of the equations at one instant before the run is given up.
 const CHATTER_LIMIT: u32 = 40;
@@ -49,6 +50,8 @@ pub struct Run<'e, 'a> {
     pub(super) judge_rest: bool,
     /// The guards that have tripped at the present instant.
     pub(super) tripped: Vec<Guard>,
+    /// Per controller: when it last came to or left its limit, s, and how often at short intervals.
+    pub(super) toggles: Vec<(f64, u32)>,
     limits: Limits,
     pub(super) breach: Option<Breach>,
 }
@@ -127,6 +130,7 @@ pub fn run_to_end(
         changed: true,
         judge_rest: true,
         tripped: Vec::new(),
+        toggles: vec![(f64::NEG_INFINITY, 0); equations.controllers.len()],
         limits: Limits::new(equations),
         breach: None,
     };
@@ -160,6 +164,7 @@ impl Run<'_, '_> {
         let mut instant = -1.0;
         let mut first = true;
         let mut finished = false;
+        let mut burst = (0_u32, self.time);
         while !finished {
             if (self.time - instant).abs() <= 1e-12 * self.time.abs().max(1.0) {
                 at_instant += 1;
@@ -171,6 +176,15 @@ impl Run<'_, '_> {
                 instant = self.time;
                 at_instant = 0;
                 self.tripped.clear();
+            }
+            if self.goes_nowhere(&mut burst, duration) {
+                self.give_up_chatter();
+                return;
+            }
+            // Short segments never come to the watch's own look around.
+            if options.interrupt.is_some_and(|flag| flag.load(Ordering::Relaxed)) {
+                self.failure = Some(format!("interrupted at {} s", self.time));
+                return;
             }
             let end = self.next_stop(duration);
             self.wrap_phases();

@@ -14,6 +14,18 @@ use crate::results::{Event, EventKind};
 use crate::scenario::Start;
 use std::f64::consts::{PI, TAU};
 
+/// Segments after which a run must have come forward by [`BURST_SHARE`] of its duration.
+const BURST: u32 = 20_000;
+
+/// See [`BURST`].
+const BURST_SHARE: f64 = 1e-6;
+
+/// Changes of a controller's limit closer than this, s, count as chatter after [`CHATTER`] of them.
+const NEAR: f64 = 0.02;
+
+/// See [`NEAR`].
+const CHATTER: u32 = 12;
+
 impl Run<'_, '_> {
     /// The next time at which the run must stop by itself.
     pub(super) fn next_stop(&self, duration: f64) -> f64 {
@@ -77,11 +89,13 @@ impl Run<'_, '_> {
         let equations = self.equations;
         match guard {
             Guard::Lower(term) => {
+                self.note_toggle(term);
                 self.mode.pieces[term] -= 1;
                 self.catch_up(term);
                 self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
             }
             Guard::Upper(term) => {
+                self.note_toggle(term);
                 self.mode.pieces[term] += 1;
                 self.catch_up(term);
                 self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
@@ -115,6 +129,35 @@ impl Run<'_, '_> {
             }
             Guard::Windup(index) => self.mode.held[index] = !self.mode.held[index],
             Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..) => {}
+        }
+    }
+
+    /// True when changes follow each other ever closer: that gets nowhere, as changes at one instant do.
+    pub(super) fn goes_nowhere(&self, burst: &mut (u32, f64), duration: f64) -> bool {
+        burst.0 += 1;
+        if burst.0 < BURST {
+            return false;
+        }
+        let came = self.time - burst.1;
+        *burst = (0, self.time);
+        came <= BURST_SHARE * duration
+    }
+
+    /// A controller whose integral pushes the command over the limit while the error pulls it back
+    /// would come to the limit and leave it without end: it then leaves it a little late.
+    fn note_toggle(&mut self, term: usize) {
+        let controllers = &self.equations.controllers;
+        let Some(index) = controllers.iter().position(|controller| controller.command == term)
+        else {
+            return;
+        };
+        let (last, count) = self.toggles[index];
+        let near = self.time - last <= NEAR;
+        self.toggles[index] = (self.time, if near { count + 1 } else { 0 });
+        if self.toggles[index].1 >= CHATTER {
+            self.mode.slack[index] = true;
+        } else if !near {
+            self.mode.slack[index] = false;
         }
     }
 
