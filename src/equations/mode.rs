@@ -58,9 +58,8 @@ pub struct Mode {
     pub contacts: Vec<Contact>,
     /// True where a controller's integral is held.
     pub held: Vec<bool>,
-    /// True where a controller has been seen to chatter at its limit: it then leaves the limit
-    /// only below it by [`SLACK`].
-    pub slack: Vec<bool>,
+    /// True where a controller slides along its limit: its integral is set when that ends.
+    pub tracking: Vec<bool>,
 }
 
 impl Mode {
@@ -118,7 +117,7 @@ impl Mode {
                 })
                 .collect(),
             held: vec![false; equations.controllers.len()],
-            slack: vec![false; equations.controllers.len()],
+            tracking: vec![false; equations.controllers.len()],
         };
         for index in 0..equations.frictions.len() {
             mode.choose_piece(equations, index, state);
@@ -169,9 +168,6 @@ impl Mode {
         }
     }
 }
-
-/// How far below its limit a chattering controller leaves it, as a share of the limit.
-pub const SLACK: f64 = 1e-4;
 
 /// Relative speed below which two bodies count as at rest to each other, as a share of the working speed.
 pub const REST: f64 = 1e-9;

@@ -1,9 +1,10 @@
 //! Functions whose sign change stops the run: the equations change there.
 
 use super::conditions::Conditions;
+use super::tracking;
 use crate::equations::dot;
 use crate::equations::frame::{Evaluator, Frame};
-use crate::equations::mode::{Contact, FrictionMode, Mode, SLACK};
+use crate::equations::mode::{Contact, FrictionMode, Mode};
 use std::f64::consts::{PI, TAU};
 
 /// A guard trips when it falls below minus this; guards are scaled to working values of about 1.
@@ -26,6 +27,8 @@ pub enum Guard {
     Close(usize),
     /// A controller's error changes sign while the limit acts.
     Windup(usize),
+    /// A controller slides along its limit no longer.
+    Track(usize),
     /// A protection's condition becomes true.
     Condition(usize),
     /// A protection's condition ceases before its time.
@@ -75,7 +78,11 @@ pub fn list(
         if controller.integral.is_some() && mode.pieces[controller.command] != 1 {
             guards.push(Guard::Windup(index));
         }
+        if mode.tracking[index] {
+            guards.push(Guard::Track(index));
+        }
     }
+    guards.retain(|guard| tracking::is_watched(mode, &equations.controllers, *guard));
     conditions.guards(&mut guards);
     for &magnet in &conditions.slip_watched {
         let place = equations.phase_state[magnet];
@@ -100,23 +107,14 @@ pub fn value(
     let boundary = |term: usize, place: usize| -> f64 {
         equations.law_at(term).and_then(|law| law.boundaries().get(place)).copied().unwrap_or(0.0)
     };
-    // A controller that chatters at its limit leaves it a little late.
-    let slack = |term: usize, piece: usize| -> f64 {
-        let mut controllers = equations.controllers.iter().zip(&mode.slack);
-        let found = controllers.find(|(one, slack)| **slack && one.command == term);
-        match found {
-            Some((controller, _)) if mode.pieces[term] == piece => SLACK * controller.limit,
-            _ => 0.0,
-        }
-    };
     match guard {
         Guard::Lower(term) => {
-            let edge = boundary(term, mode.pieces[term] - 1) - slack(term, 2);
+            let edge = boundary(term, mode.pieces[term] - 1);
             let (place, size) = evaluator.place_on_axis(term, frame);
             (place - edge) / size
         }
         Guard::Upper(term) => {
-            let edge = boundary(term, mode.pieces[term]) + slack(term, 0);
+            let edge = boundary(term, mode.pieces[term]);
             let (place, size) = evaluator.place_on_axis(term, frame);
             (edge - place) / size
         }
@@ -138,11 +136,12 @@ pub fn value(
             let controller = &equations.controllers[index];
             let Some(integral) = controller.integral else { return 1.0 };
             let term = &equations.terms[integral];
-            let error = frame_error(evaluator, integral, state, frame);
+            let error = controller_error(evaluator, integral, state, frame);
             let outwards = if mode.pieces[controller.command] == 2 { error } else { -error };
             let sign = if mode.held[index] { 1.0 } else { -1.0 };
             sign * outwards / term.input_size
         }
+        Guard::Track(index) => tracking::guard(evaluator, mode, index, state, frame),
         Guard::Condition(index) => conditions.guard(index, frame, false),
         Guard::ConditionLost(index) => conditions.guard(index, frame, true),
         Guard::Slip(magnet, well) => {
@@ -154,7 +153,12 @@ pub fn value(
 }
 
 /// Error of a controller; its integral term may be left out of the equations while it is held.
-fn frame_error(evaluator: &Evaluator<'_>, integral: usize, state: &[f64], frame: &Frame) -> f64 {
+pub(super) fn controller_error(
+    evaluator: &Evaluator<'_>,
+    integral: usize,
+    state: &[f64],
+    frame: &Frame,
+) -> f64 {
     if evaluator.assembly.active.iter().any(|active| active.place == integral) {
         return frame.inputs[integral];
     }

@@ -22,6 +22,7 @@ pub mod steady;
 pub mod step_cap;
 pub mod tableau;
 pub mod traces;
+mod tracking;
 pub mod turning;
 pub mod watcher;
 mod watcher_steps;

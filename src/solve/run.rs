@@ -50,8 +50,6 @@ pub struct Run<'e, 'a> {
     pub(super) judge_rest: bool,
     /// The guards that have tripped at the present instant.
     pub(super) tripped: Vec<Guard>,
-    /// Per controller: when it last came to or left its limit, s, and how often at short intervals.
-    pub(super) toggles: Vec<(f64, u32)>,
     limits: Limits,
     pub(super) breach: Option<Breach>,
 }
@@ -130,7 +128,6 @@ pub fn run_to_end(
         changed: true,
         judge_rest: true,
         tripped: Vec::new(),
-        toggles: vec![(f64::NEG_INFINITY, 0); equations.controllers.len()],
         limits: Limits::new(equations),
         breach: None,
     };
@@ -372,6 +369,7 @@ impl Run<'_, '_> {
             self.last_steps = last_steps;
         }
         self.changed = false;
+        self.end_sliding();
         self.observer.end(&evaluator, self.time, &self.state);
         if let Some((time, fault)) = failure {
             self.give_up(time, fault);

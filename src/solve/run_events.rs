@@ -20,12 +20,6 @@ const BURST: u32 = 20_000;
 /// See [`BURST`].
 const BURST_SHARE: f64 = 1e-6;
 
-/// Changes of a controller's limit closer than this, s, count as chatter after [`CHATTER`] of them.
-const NEAR: f64 = 0.02;
-
-/// See [`NEAR`].
-const CHATTER: u32 = 12;
-
 impl Run<'_, '_> {
     /// The next time at which the run must stop by itself.
     pub(super) fn next_stop(&self, duration: f64) -> f64 {
@@ -89,16 +83,18 @@ impl Run<'_, '_> {
         let equations = self.equations;
         match guard {
             Guard::Lower(term) => {
-                self.note_toggle(term);
+                if self.slides_at_limit(term, end) {
+                    return;
+                }
                 self.mode.pieces[term] -= 1;
-                self.catch_up(term);
-                self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
+                self.enter_piece(term, end);
             }
             Guard::Upper(term) => {
-                self.note_toggle(term);
+                if self.slides_at_limit(term, end) {
+                    return;
+                }
                 self.mode.pieces[term] += 1;
-                self.catch_up(term);
-                self.mode.judge_controllers(equations, self.time, &self.state, &self.overrides);
+                self.enter_piece(term, end);
             }
             Guard::Slide(_) | Guard::Hold => {
                 let tripped = guard == Guard::Hold;
@@ -128,8 +124,16 @@ impl Run<'_, '_> {
                 self.contact_event(shaft, EventKind::Contact);
             }
             Guard::Windup(index) => self.mode.held[index] = !self.mode.held[index],
+            Guard::Track(index) => self.leave_limit(index, end),
             Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..) => {}
         }
+    }
+
+    /// Settles what follows from another piece of a law.
+    fn enter_piece(&mut self, term: usize, end: f64) {
+        self.catch_up(term);
+        self.mode.judge_controllers(self.equations, self.time, &self.state, &self.overrides);
+        self.slides_at_limit(term, end);
     }
 
     /// True when changes follow each other ever closer: that gets nowhere, as changes at one instant do.
@@ -141,24 +145,6 @@ impl Run<'_, '_> {
         let came = self.time - burst.1;
         *burst = (0, self.time);
         came <= BURST_SHARE * duration
-    }
-
-    /// A controller whose integral pushes the command over the limit while the error pulls it back
-    /// would come to the limit and leave it without end: it then leaves it a little late.
-    fn note_toggle(&mut self, term: usize) {
-        let controllers = &self.equations.controllers;
-        let Some(index) = controllers.iter().position(|controller| controller.command == term)
-        else {
-            return;
-        };
-        let (last, count) = self.toggles[index];
-        let near = self.time - last <= NEAR;
-        self.toggles[index] = (self.time, if near { count + 1 } else { 0 });
-        if self.toggles[index].1 >= CHATTER {
-            self.mode.slack[index] = true;
-        } else if !near {
-            self.mode.slack[index] = false;
-        }
     }
 
     pub(super) fn contact_event(&mut self, shaft: usize, kind: EventKind) {
@@ -253,7 +239,7 @@ impl Run<'_, '_> {
             Guard::Open(shaft) | Guard::Close(shaft) => {
                 vec![format!("the free play of `{}`", scenario.shafts[shaft].name)]
             }
-            Guard::Windup(index) => {
+            Guard::Windup(index) | Guard::Track(index) => {
                 vec![format!(
                     "the controller of `{}`",
                     scenario.motors[equations.controllers[index].motor].name

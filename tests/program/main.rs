@@ -19,6 +19,7 @@ mod helper;
 mod invariance;
 mod law;
 mod likeness;
+mod limits_of_drives;
 mod loads;
 mod motors;
 mod oscillator;
