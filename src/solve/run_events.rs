@@ -291,6 +291,10 @@ impl Run<'_, '_> {
             .caps
             .entry(self.mode.clone())
             .or_insert_with(|| step_cap::stable_step(evaluator, solver.method, time, state));
+        if self.work.steps == 0 {
+            let warning = step_cap::warning(self.equations, stable);
+            self.warnings.extend(warning.filter(|one| !self.warnings.contains(one)));
+        }
         let mut cap = stable.min(end - self.time);
         if let Some(limit) = self.equations.bank.step_cap(self.time, end, &self.overrides) {
             cap = cap.min(limit);

@@ -261,3 +261,20 @@ fn durations_from_an_instant_to_years() {
         same(outcome.number(&["end_time"]), duration, 1e-12);
     }
 }
+
+#[test]
+fn a_run_that_stability_makes_long_names_its_stiffest_part() {
+    // c/J_e = 1e5 N*m*s/rad / 0.5 kg*m2 = 2e5 1/s: the real axis of dopri5 ends at 3.307, so a step
+    // of 16 us and 37 million steps in ten minutes (closed form); told although the run is cut short.
+    let text = "lodeshaft: 1\nduration: 600 s\nbodies:\n  a: { inertia: 1 kg*m2, speed: 1 rad/s }\n  b: { inertia: 1 kg*m2, speed: 0 rad/s }\n\
+                shafts:\n  dashpot: { between: [a, b], stiffness: 1 N*m/rad, damping: 1e5 N*m*s/rad }\n\
+                protections:\n  stop: { when: { time: 1 ms }, then: [{ end_run: true }] }\n";
+    let outcome = through(text);
+    assert!(outcome.stderr.contains("`dashpot` is the stiffest"), "{}", outcome.stderr);
+    assert!(
+        outcome.stderr.contains("2e5 1/s") || outcome.stderr.contains("200000 1/s"),
+        "{}",
+        outcome.stderr
+    );
+    assert!(outcome.stderr.contains("(shafts.dashpot)"), "{}", outcome.stderr);
+}
