@@ -309,6 +309,26 @@ pub struct Column {
     pub min_first: bool,
 }
 
+impl Column {
+    /// Takes a value into a column, which begins with its first one.
+    pub fn take(column: &mut Option<Self>, value: f64) {
+        let Some(column) = column else {
+            *column =
+                Some(Self { first: value, min: value, max: value, last: value, min_first: true });
+            return;
+        };
+        column.last = value;
+        if value < column.min {
+            column.min = value;
+            column.min_first = false;
+        }
+        if value > column.max {
+            column.max = value;
+            column.min_first = true;
+        }
+    }
+}
+
 /// The path of one gear in the plane of load angle and slip speed.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Swing {

@@ -51,7 +51,7 @@ impl Tracer {
     pub fn note(&mut self, time: f64, channels: &[f64]) {
         let Some(place) = self.column(time) else { return };
         for (columns, &channel) in self.columns.iter_mut().zip(&self.request.channels) {
-            widen(&mut columns[place], channels[channel]);
+            Column::take(&mut columns[place], channels[channel]);
         }
     }
 
@@ -103,26 +103,6 @@ impl Tracer {
                 .zip(&equations.model.magnets)
                 .map(|(path, magnet)| Swing { gear: magnet.name.clone(), path, separatrix: None })
                 .collect(),
-        }
-    }
-}
-
-fn widen(column: &mut Option<Column>, value: f64) {
-    match column {
-        None => {
-            *column =
-                Some(Column { first: value, min: value, max: value, last: value, min_first: true });
-        }
-        Some(column) => {
-            column.last = value;
-            if value < column.min {
-                column.min = value;
-                column.min_first = false;
-            }
-            if value > column.max {
-                column.max = value;
-                column.min_first = true;
-            }
         }
     }
 }

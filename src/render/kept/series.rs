@@ -99,26 +99,10 @@ impl Grid {
 }
 
 fn widen(column: Option<&mut Option<Column>>, value: f64) {
-    let Some(column) = column else { return };
-    if !value.is_finite() {
-        return;
-    }
-    match column {
-        None => {
-            *column =
-                Some(Column { first: value, min: value, max: value, last: value, min_first: true });
-        }
-        Some(column) => {
-            column.last = value;
-            if value < column.min {
-                column.min = value;
-                column.min_first = false;
-            }
-            if value > column.max {
-                column.max = value;
-                column.min_first = true;
-            }
-        }
+    if let Some(column) = column
+        && value.is_finite()
+    {
+        Column::take(column, value);
     }
 }
 
