@@ -224,13 +224,13 @@ impl Drop for Folder {
             leftovers::restore(&aside, &self.target);
         }
         for aside in &self.aside {
-            let _ = fs::remove_dir_all(aside);
+            leftovers::discard(&aside);
         }
         if self.committed {
             return;
         }
         if !self.temporary.as_os_str().is_empty() {
-            let _ = fs::remove_dir_all(&self.temporary);
+            leftovers::discard(&self.temporary);
         }
         for parent in self.made.iter().rev() {
             // Stays when something else has come into it.

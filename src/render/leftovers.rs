@@ -75,16 +75,29 @@ pub fn clean(target: &Path) {
         if is_old(&folder) && !target.exists() {
             restore(&folder, target);
         } else {
-            let _ = fs::remove_dir_all(folder);
+            discard(&folder);
         }
     }
+}
+
+/// Removes a hidden folder; the file that says who made it goes last, so that a removal that is
+/// killed on its way leaves a folder that can still be told and cleaned.
+pub fn discard(folder: &Path) {
+    for entry in fs::read_dir(folder).into_iter().flatten().flatten() {
+        if entry.file_name() == MAKER_FILE {
+            continue;
+        }
+        let path = entry.path();
+        let _ = if path.is_dir() { fs::remove_dir_all(path) } else { fs::remove_file(path) };
+    }
+    let _ = fs::remove_dir_all(folder);
 }
 
 /// Removes what killed runs left in a folder that is written in place.
 pub fn clean_inside(target: &Path) {
     for folder in hidden_in(target, INSIDE) {
         if is_abandoned(&folder) {
-            let _ = fs::remove_dir_all(folder);
+            discard(&folder);
         }
     }
 }
