@@ -224,7 +224,7 @@ impl Drop for Folder {
             leftovers::restore(&aside, &self.target);
         }
         for aside in &self.aside {
-            leftovers::discard(&aside);
+            leftovers::discard(aside);
         }
         if self.committed {
             return;
