@@ -11,7 +11,7 @@ use super::observer::Observer;
 use super::rhs::Rhs;
 use super::sampling::{Sample, StepView};
 use super::tableau::{self, Tableau};
-use super::watcher_steps::bracket;
+use super::watcher_steps::{Rest, bracket};
 use crate::equations::frame::{Evaluator, Frame};
 use crate::equations::mode::Mode;
 use crate::scenario::Method;
@@ -69,6 +69,7 @@ pub struct Watcher<'w, 'a> {
     pub(super) step_heats: Vec<f64>,
     pub(super) calm: Calm,
     pub(super) scratch: Sample,
+    pub(super) rest: Rest,
 }
 
 impl<'w, 'a> Watcher<'w, 'a> {
@@ -127,6 +128,7 @@ impl<'w, 'a> Watcher<'w, 'a> {
             stages: Vec::new(),
             step_energy: Powers::default(),
             scratch: Sample::default(),
+            rest: Rest::default(),
         }
     }
 
@@ -326,8 +328,13 @@ impl Watch for Watcher<'_, '_> {
         self.window_steps += 1;
         let full = self.window_steps >= WINDOW;
         let quiet = self.calm.look(time - self.time, &self.state, &self.rate, state, rates);
+        if quiet == Quiet::Rest && !row_due {
+            self.load_rest(rhs, time, state, rates);
+            return self.look_around() || full;
+        }
+        self.sum_rest(rhs);
         if quiet != Quiet::No && !row_due {
-            self.load_quiet(rhs, time, state, rates, quiet);
+            self.load_calm(rhs, time, state, rates);
             return self.look_around() || full;
         }
         if self.runs_away(rhs, time, state, rates) {
