@@ -62,12 +62,9 @@ impl Evaluator<'_> {
     /// The value of a factor that follows signals.
     pub fn factor(&self, factor: &Factor, time: f64) -> f64 {
         factor.slots.iter().fold(1.0, |value, &(slot, power)| {
-            value
-                * self
-                    .equations
-                    .bank
-                    .value_in(slot, time, self.assembly.start, self.overrides)
-                    .powi(power)
+            let signal =
+                self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
+            value * if power == 1 { signal } else { signal.powi(power) }
         })
     }
 

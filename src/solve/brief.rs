@@ -31,6 +31,8 @@ pub struct Brief {
     end: Sample,
     /// True when the last step was taken briefly: `start` then holds the values of its end.
     known: bool,
+    /// Channels that go beyond what they have been.
+    growing: Vec<usize>,
 }
 
 /// What the guards need beside the samples.
@@ -99,7 +101,7 @@ impl Observer<'_> {
             return false;
         }
         let scale = std::mem::take(&mut self.speed_scale);
-        let counters = std::mem::take(&mut self.counters);
+        let mut counters = std::mem::take(&mut self.counters);
         let view =
             StepView { step, evaluator, counters: &counters, crossings: Vec::new(), scale: &scale };
         if !brief.known || brief.start.time != step.start {
@@ -109,16 +111,19 @@ impl Observer<'_> {
         view.sample(1.0, Some(&self.wanted), &mut brief.end);
         let passes = self.phases_pass(brief, evaluator)
             && guards_pass(brief, evaluator, watched)
-            && self.channels_pass(brief, watched.tolerance)
-            && self.windows.iter().all(|window| !window.active || window_passes(window, brief));
+            && self.windows.iter().all(|window| !window.active || window_passes(window, brief))
+            && self.channels_pass(brief, watched.tolerance);
         if passes {
             self.take(brief, &view);
-            view.counters_at(1.0, &mut self.counters, &mut self.sums);
+            // No slip: of all that is counted only the angles go on.
+            counters.angles.clear();
+            counters
+                .angles
+                .extend(step.last_sum.iter().zip(&scale).map(|(sum, scale)| sum * scale));
             std::mem::swap(&mut brief.start, &mut brief.end);
-        } else {
-            self.counters.clone_from(&counters);
         }
         brief.known = passes;
+        self.counters = counters;
         self.speed_scale = scale;
         passes
     }
@@ -142,29 +147,41 @@ impl Observer<'_> {
         })
     }
 
-    /// No channel turns round beyond what it has been.
-    fn channels_pass(&self, brief: &Brief, tolerance: f64) -> bool {
-        self.wanted.iter().all(|&channel| {
-            let values = brief.channel(channel);
+    /// No channel turns round beyond what it has been. Those that grow are listed.
+    fn channels_pass(&self, brief: &mut Brief, tolerance: f64) -> bool {
+        let Brief { start, middle, end, growing, .. } = brief;
+        growing.clear();
+        let samples = [&start, &middle, &end].map(|sample| sample.frame.channels.as_slice());
+        for &channel in &self.wanted {
+            let values = Three(samples.map(|channels| channels[channel]));
             let known = &self.extremes[channel];
             let (mut low, high) = values.reach();
             // A magnitude has a corner at zero, which three samples do not show.
-            let corner = self.magnitudes[channel] && low <= 0.0;
-            if self.magnitudes[channel] {
+            let magnitude = self.magnitudes[channel];
+            let corner = magnitude && low <= 0.0;
+            if magnitude {
                 low = low.max(0.0);
             }
-            if (high <= known.max && low >= known.min) || values.is_monotone() && !corner {
-                return true;
+            if high <= known.max && low >= known.min {
+                continue;
+            }
+            growing.push(channel);
+            if values.is_monotone() && !corner {
+                continue;
             }
             let size = known.max.abs().max(known.min.abs());
-            values.high() - values.low() <= SLACK * tolerance * size
-        })
+            let rounding = values.high() - values.low() <= SLACK * tolerance * size;
+            if !rounding {
+                return false;
+            }
+        }
+        true
     }
 
     fn take(&mut self, brief: &Brief, view: &StepView<'_>) {
         let equations = view.evaluator.equations;
         for sample in [&brief.middle, &brief.end] {
-            for &channel in &self.wanted {
+            for &channel in &brief.growing {
                 self.extremes[channel].note(sample.frame.channels[channel], sample.time);
             }
             for (track, &place) in self.gears.iter_mut().zip(&equations.phase_state) {
@@ -172,6 +189,9 @@ impl Observer<'_> {
                 track.note_angle(angle, sample.time);
             }
             self.trace(view, sample);
+        }
+        for &channel in &self.wanted {
+            self.extremes[channel].last = brief.end.frame.channels[channel];
         }
         for window in self.windows.iter_mut().filter(|window| window.active && !window.settled()) {
             window.note(brief.end.time, brief.end.frame.channels[window.channel]);
@@ -207,7 +227,8 @@ fn window_passes(window: &Window, brief: &Brief) -> bool {
     let (low, high) = values.reach();
     let near = |mark: f64| low <= mark && mark <= high;
     match window.test {
-        Test::Reaches { .. } => !window.marks().into_iter().any(near),
+        Test::Reaches { value, band: None, .. } => !near(value),
+        Test::Reaches { value, band: Some(band), .. } => !near(value - band) && !near(value + band),
         Test::AtMost(limit) => {
             high <= window.extreme || values.is_monotone() && (window.crossed || !near(limit))
         }
