@@ -43,7 +43,7 @@ impl DenseStep {
     pub fn prepare(
         &mut self,
         method: Method,
-        stages: &[&[f64]],
+        stages: &[Vec<f64>],
         rates: &mut dyn FnMut(f64, &[f64], &mut [f64]),
     ) {
         let size = self.first.len();
@@ -95,7 +95,7 @@ impl DenseStep {
 
     fn more_stages(
         &self,
-        stages: &[&[f64]],
+        stages: &[Vec<f64>],
         rates: &mut dyn FnMut(f64, &[f64], &mut [f64]),
     ) -> Vec<Vec<f64>> {
         let size = self.first.len();
@@ -170,7 +170,7 @@ pub fn add_sums(
     method: Method,
     length: f64,
     first: &[f64],
-    stages: &[&[f64]],
+    stages: &[Vec<f64>],
     weights: &[f64],
     sums: &mut [f64],
 ) {

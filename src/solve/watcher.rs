@@ -1,6 +1,7 @@
 //! Watches the accepted steps of one segment: guards first, then the observer and the audit.
 
 use super::audit::Powers;
+use super::brief::{Brief, Watched};
 use super::calm::{Calm, Quiet};
 use super::conditions::Conditions;
 use super::dense::{DenseStep, add_sums};
@@ -38,6 +39,8 @@ pub struct Watcher<'w, 'a> {
     pub guards: Vec<Guard>,
     /// Method.
     pub method: Method,
+    /// Tolerance on the scaled state.
+    pub tolerance: f64,
     /// Time reached, s.
     pub time: f64,
     /// State reached.
@@ -70,6 +73,7 @@ pub struct Watcher<'w, 'a> {
     pub(super) calm: Calm,
     pub(super) scratch: Sample,
     pub(super) rest: Rest,
+    pub(super) brief: Brief,
 }
 
 impl<'w, 'a> Watcher<'w, 'a> {
@@ -107,6 +111,7 @@ impl<'w, 'a> Watcher<'w, 'a> {
             conditions,
             guards,
             method,
+            tolerance,
             time,
             state: state.to_vec(),
             rate,
@@ -129,6 +134,7 @@ impl<'w, 'a> Watcher<'w, 'a> {
             step_energy: Powers::default(),
             scratch: Sample::default(),
             rest: Rest::default(),
+            brief: Brief::default(),
         }
     }
 
@@ -183,20 +189,18 @@ impl<'w, 'a> Watcher<'w, 'a> {
             self.observer.counters.angles.iter().zip(scale).map(|(sum, scale)| sum / scale),
         );
         step.last_sum.clone_from(&step.first_sum);
-        let stages: Vec<&[f64]> = self.stages.iter().map(Vec::as_slice).collect();
         add_sums(
             self.method,
             length,
             &step.first[..speeds],
-            &stages,
+            &self.stages,
             &self.state_weights,
             &mut step.last_sum,
         );
     }
 
     fn prepare(&mut self, rhs: &Rhs<'_>) {
-        let stages: Vec<&[f64]> = self.stages.iter().map(Vec::as_slice).collect();
-        self.step.prepare(self.method, &stages, &mut |time, state, rates| {
+        self.step.prepare(self.method, &self.stages, &mut |time, state, rates| {
             rhs.system(time, state, rates);
         });
     }
@@ -350,11 +354,21 @@ impl Watch for Watcher<'_, '_> {
             self.advance();
             return self.look_around() || full;
         }
-        if let Some(cut) = self.first_trip(rhs.evaluator) {
-            self.cut = Some(cut);
-            return true;
+        let watched = Watched {
+            guards: &self.guards,
+            mode: self.mode,
+            conditions: self.conditions,
+            tolerance: self.tolerance,
+        };
+        let brief = self.method != Method::Dop853
+            && self.observer.step_briefly(&mut self.brief, rhs.evaluator, &self.step, watched);
+        if !brief {
+            if let Some(cut) = self.first_trip(rhs.evaluator) {
+                self.cut = Some(cut);
+                return true;
+            }
+            self.observer.step(rhs.evaluator, &self.step, self.inner());
         }
-        self.observer.step(rhs.evaluator, &self.step, self.inner());
         self.advance();
         self.calm.settle(
             &rhs.evaluator,
