@@ -92,6 +92,11 @@ impl<'a> Rhs<'a> {
         own.map(|(row, _)| *row).or(rate)
     }
 
+    /// The values of the laws in a record.
+    pub fn law_values<'r>(&self, record: &'r [f64]) -> &'r [f64] {
+        &record[2 * self.flat.width..]
+    }
+
     /// Fills a record as a call would, without remembering it.
     pub fn fill(&self, time: f64, state: &[f64], record: &mut [f64]) {
         let width = self.flat.width;

@@ -1,7 +1,7 @@
 //! Watches the accepted steps of one segment: guards first, then the observer and the audit.
 
 use super::audit::Powers;
-use super::brief::{Brief, Watched};
+use super::brief::Brief;
 use super::calm::{Calm, Quiet};
 use super::conditions::Conditions;
 use super::dense::{DenseStep, add_sums};
@@ -199,7 +199,7 @@ impl<'w, 'a> Watcher<'w, 'a> {
         );
     }
 
-    fn prepare(&mut self, rhs: &Rhs<'_>) {
+    pub(super) fn prepare(&mut self, rhs: &Rhs<'_>) {
         self.step.prepare(self.method, &self.stages, &mut |time, state, rates| {
             rhs.system(time, state, rates);
         });
@@ -345,8 +345,8 @@ impl Watch for Watcher<'_, '_> {
             return true;
         }
         self.load(rhs, time, state, rates);
-        self.prepare(rhs);
         if quiet != Quiet::No {
+            self.prepare(rhs);
             self.observer.rows_only(rhs.evaluator, &self.step);
             if let Some(tracer) = &mut self.observer.tracer {
                 self.calm.trace(tracer, self.time, time);
@@ -354,15 +354,7 @@ impl Watch for Watcher<'_, '_> {
             self.advance();
             return self.look_around() || full;
         }
-        let watched = Watched {
-            guards: &self.guards,
-            mode: self.mode,
-            conditions: self.conditions,
-            tolerance: self.tolerance,
-        };
-        let brief = self.method != Method::Dop853
-            && self.observer.step_briefly(&mut self.brief, rhs.evaluator, &self.step, watched);
-        if !brief {
+        if !self.is_brief(rhs, row_due) {
             if let Some(cut) = self.first_trip(rhs.evaluator) {
                 self.cut = Some(cut);
                 return true;

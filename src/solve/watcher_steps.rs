@@ -1,10 +1,12 @@
 //! The short way of a calm step, and where a guard trips within another.
 
+use super::brief::Watched;
 use super::gears;
 use super::guards::TRIP;
 use super::locate;
 use super::rhs::Rhs;
 use super::watcher::Watcher;
+use crate::scenario::Method;
 use std::sync::atomic::Ordering;
 
 /// Steps between two looks at the outside world.
@@ -148,6 +150,25 @@ impl Watcher<'_, '_> {
             self.calm.trace(tracer, self.time, time);
         }
         self.move_on(time, state, rates);
+    }
+
+    /// True when a brief look at the loaded step was enough; it is prepared otherwise.
+    pub(super) fn is_brief(&mut self, rhs: &Rhs<'_>, row_due: bool) -> bool {
+        let (mode, conditions, tolerance) = (self.mode, self.conditions, self.tolerance);
+        let brief = self.method != Method::Dop853;
+        if brief && !row_due {
+            let watched = Watched { guards: &self.guards, mode, conditions, tolerance };
+            let known = rhs.law_values(&self.new_record);
+            let step = &self.step;
+            if self.observer.look_back(&mut self.brief, rhs.evaluator, step, known, watched) {
+                return true;
+            }
+        } else {
+            self.brief.forget_end();
+        }
+        self.prepare(rhs);
+        let watched = Watched { guards: &self.guards, mode, conditions, tolerance };
+        brief && self.observer.look_between(&mut self.brief, rhs.evaluator, &self.step, watched)
     }
 
     pub(super) fn look_around(&mut self) -> bool {
