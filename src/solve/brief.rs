@@ -9,6 +9,7 @@
 
 use super::conditions::Conditions;
 use super::dense::DenseStep;
+use super::extremes::Extreme;
 use super::guards::{self, Guard, TRIP};
 use super::observer::Observer;
 use super::sampling::{Sample, StepView};
@@ -75,18 +76,19 @@ struct Look<'s> {
 struct Three([f64; 3]);
 
 impl Three {
-    /// Where it may be between the samples: their range, widened by itself on both sides.
-    #[inline]
-    fn reach(self) -> (f64, f64) {
-        let range = self.range();
+    /// Lowest and highest of the samples; a last one that is no number stays.
+    #[inline(always)]
+    fn span(self) -> (f64, f64) {
         let [a, b, c] = self.0;
-        (a.min(b).min(c) - range, a.max(b).max(c) + range)
+        let (low, high) = if a < b { (a, b) } else { (b, a) };
+        (if low < c { low } else { c }, if high > c { high } else { c })
     }
 
-    #[inline]
-    fn range(self) -> f64 {
-        let [a, b, c] = self.0;
-        a.max(b).max(c) - a.min(b).min(c)
+    /// Where it may be between the samples: their range, widened by itself on both sides.
+    #[inline(always)]
+    fn reach(self) -> (f64, f64) {
+        let (low, high) = self.span();
+        (low - (high - low), high + (high - low))
     }
 }
 
@@ -298,31 +300,37 @@ impl Observer<'_> {
     /// No channel turns round beyond what it has been. Those that grow are listed.
     fn channels_pass(&self, look: Look<'_>, growing: &mut Vec<usize>, tolerance: f64) -> bool {
         growing.clear();
-        let channels = look.samples.map(|sample| sample.frame.channels.as_slice());
-        for &channel in &self.wanted {
-            let values = Three(channels.map(|channels| channels[channel]));
-            let known = &self.extremes[channel];
+        let mut judge = |channel: usize, values: Three, known: &Extreme, magnitude: bool| {
             let (mut low, high) = values.reach();
             // A magnitude has a corner at zero, which three samples do not show.
-            let magnitude = self.magnitudes[channel];
             let corner = magnitude && low <= 0.0;
             if magnitude {
                 low = low.max(0.0);
             }
             if high <= known.max && low >= known.min {
-                continue;
+                return true;
             }
             growing.push(channel);
             if look.is_monotone(values) && !corner {
-                continue;
+                return true;
             }
             let size = known.max.abs().max(known.min.abs());
-            let rounding = values.range() <= SLACK * tolerance * size;
-            if !rounding {
-                return false;
-            }
+            let (low, high) = values.span();
+            high - low <= SLACK * tolerance * size
+        };
+        let [first, second, third] = look.samples.map(|sample| sample.frame.channels.as_slice());
+        if self.wanted.len() < self.extremes.len() {
+            return self.wanted.iter().all(|&channel| {
+                let values = Three([first[channel], second[channel], third[channel]]);
+                judge(channel, values, &self.extremes[channel], self.magnitudes[channel])
+            });
         }
-        true
+        // All of them: in step, which spares looking each up.
+        let values = first.iter().zip(second).zip(third);
+        let known = self.extremes.iter().zip(&self.magnitudes);
+        values.zip(known).enumerate().all(|(channel, (((a, b), c), (known, magnitude)))| {
+            judge(channel, Three([*a, *b, *c]), known, *magnitude)
+        })
     }
 
     fn take(&mut self, samples: &[&Sample], growing: &[usize], view: &StepView<'_>) {
@@ -338,9 +346,6 @@ impl Observer<'_> {
             self.trace(view, sample);
         }
         let Some(end) = samples.last() else { return };
-        for &channel in &self.wanted {
-            self.extremes[channel].last = end.frame.channels[channel];
-        }
         for window in self.windows.iter_mut().filter(|window| window.active && !window.settled()) {
             window.note(end.time, end.frame.channels[window.channel]);
         }
