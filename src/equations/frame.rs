@@ -62,12 +62,9 @@ impl Evaluator<'_> {
     /// The value of a factor that follows signals.
     pub fn factor(&self, factor: &Factor, time: f64) -> f64 {
         factor.slots.iter().fold(1.0, |value, &(slot, power)| {
-            value
-                * self
-                    .equations
-                    .bank
-                    .value_in(slot, time, self.assembly.start, self.overrides)
-                    .powi(power)
+            let signal =
+                self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
+            value * if power == 1 { signal } else { signal.powi(power) }
         })
     }
 
@@ -93,15 +90,25 @@ impl Evaluator<'_> {
         }
     }
 
+    /// Input of an active term.
+    #[inline]
+    fn input(&self, active: &Active, time: f64, state: &[f64]) -> f64 {
+        let input = active.input_at(state);
+        match active.offset {
+            Some((factor, slot)) => {
+                let bank = &self.equations.bank;
+                input + factor * bank.value_in(slot, time, self.assembly.start, self.overrides)
+            }
+            None => input,
+        }
+    }
+
     /// Input and value of an active term.
     #[inline]
     pub fn law(&self, active: &Active, time: f64, state: &[f64]) -> (f64, f64) {
         let signal =
             |slot| self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
-        let mut input = active.input_at(state);
-        if let Some((factor, slot)) = active.offset {
-            input += factor * signal(slot);
-        }
+        let input = self.input(active, time, state);
         let value = match &active.function {
             Function::Law(law, piece) => {
                 let parameters = match active.parameters {
@@ -138,16 +145,36 @@ impl Evaluator<'_> {
 
     /// Law values and holding torques.
     pub fn laws(&self, time: f64, state: &[f64], frame: &mut Frame) {
+        self.all_laws(time, state, None, frame);
+    }
+
+    /// Law values and holding torques; `known` are the values of the active terms where they are
+    /// known already.
+    fn all_laws(&self, time: f64, state: &[f64], known: Option<&[f64]>, frame: &mut Frame) {
         let assembly = self.assembly;
         frame.time = time;
         frame.laws.clear();
         frame.laws.resize(assembly.law_count, 0.0);
         frame.inputs.clear();
         frame.inputs.resize(assembly.law_count, 0.0);
-        for active in assembly.active.iter().chain(&assembly.folded) {
-            let (input, value) = self.law(active, time, state);
+        let mut take = |active: &Active, (input, value): (f64, f64)| {
             frame.inputs[active.place] = input;
             frame.laws[active.place] = value;
+        };
+        match known {
+            Some(values) => {
+                for (active, value) in assembly.active.iter().zip(values) {
+                    take(active, (self.input(active, time, state), *value));
+                }
+            }
+            None => {
+                for active in &assembly.active {
+                    take(active, self.law(active, time, state));
+                }
+            }
+        }
+        for active in &assembly.folded {
+            take(active, self.law(active, time, state));
         }
         frame.holding = None;
         if !assembly.stuck.is_empty() {
@@ -181,19 +208,49 @@ impl Evaluator<'_> {
         wanted: Option<&[usize]>,
         frame: &mut Frame,
     ) {
-        self.laws(time, state, frame);
+        self.all_laws(time, state, None, frame);
+        self.channels(time, state, counters, wanted, frame);
+    }
+
+    /// The same where the values of the active terms are known.
+    pub fn evaluate_known(
+        &self,
+        time: f64,
+        state: &[f64],
+        known: &[f64],
+        counters: &Counters,
+        wanted: Option<&[usize]>,
+        frame: &mut Frame,
+    ) {
+        self.all_laws(time, state, Some(known), frame);
+        self.channels(time, state, counters, wanted, frame);
+    }
+
+    fn channels(
+        &self,
+        time: f64,
+        state: &[f64],
+        counters: &Counters,
+        wanted: Option<&[usize]>,
+        frame: &mut Frame,
+    ) {
         let mut channels = std::mem::take(&mut frame.channels);
         channels.resize(self.assembly.channels.len(), 0.0);
+        // The commonest forms stand in line: as a call each costs twice as much.
+        let value = |form: &ChannelForm| match form {
+            ChannelForm::Linear(form) => linear(form, state, frame),
+            ChannelForm::Power(torque, speed) => linear(torque, state, frame) * dot(speed, state),
+            other => self.channel(other, time, state, counters, frame),
+        };
         match wanted {
-            None => {
-                for (value, form) in channels.iter_mut().zip(&self.assembly.channels) {
-                    *value = self.channel(form, time, state, counters, frame);
+            Some(wanted) if wanted.len() < channels.len() => {
+                for &index in wanted {
+                    channels[index] = value(&self.assembly.channels[index]);
                 }
             }
-            Some(wanted) => {
-                for &index in wanted {
-                    channels[index] =
-                        self.channel(&self.assembly.channels[index], time, state, counters, frame);
+            _ => {
+                for (channel, form) in channels.iter_mut().zip(&self.assembly.channels) {
+                    *channel = value(form);
                 }
             }
         }
@@ -306,7 +363,7 @@ impl Evaluator<'_> {
     }
 }
 
-#[inline]
+#[inline(always)]
 fn linear(form: &LinearForm, state: &[f64], frame: &Frame) -> f64 {
     let laws: f64 = form.laws.iter().map(|&(place, factor)| factor * frame.laws[place]).sum();
     dot(&form.state, state) + laws + form.constant

@@ -23,6 +23,8 @@ enum Kernel {
     Constant,
     /// The input itself.
     Input,
+    /// The factor alone, and it follows signals.
+    Followed,
     /// Any other law of one state that follows no signal.
     Steady,
     /// A law of several states, or one that follows signals.
@@ -80,6 +82,9 @@ impl Flat {
                 Kernel::PowerLaw(load, piece) => load.value(input, piece),
                 Kernel::Constant => 1.0,
                 Kernel::Input => input,
+                Kernel::Followed => {
+                    evaluator.strength(&evaluator.assembly.active[index].factor, time)
+                }
                 Kernel::Steady => steady(&evaluator.assembly.active[index], input),
                 Kernel::Other => evaluator.law(&evaluator.assembly.active[index], time, state).1,
             };
@@ -134,7 +139,7 @@ impl Flat {
 fn line(active: &Active) -> Line {
     let (kernel, scale) = kernel(active);
     let factor = match (kernel, &active.factor) {
-        (Kernel::Other, _) | (_, Strength::Varying(_)) => 1.0,
+        (Kernel::Other | Kernel::Followed, _) | (_, Strength::Varying(_)) => 1.0,
         (_, Strength::Constant(value)) => value * scale,
     };
     let (place, slope) = active.input.first().copied().unwrap_or((0, 0.0));
@@ -144,7 +149,8 @@ fn line(active: &Active) -> Line {
 /// The kernel of a term and what its factor is multiplied with.
 fn kernel(active: &Active) -> (Kernel, f64) {
     if active.follows_time || active.input.len() > 1 {
-        return (Kernel::Other, 1.0);
+        let alone = matches!(active.function, Function::Law(Law::Unit, _));
+        return (if alone { Kernel::Followed } else { Kernel::Other }, 1.0);
     }
     match &active.function {
         Function::Law(Law::Magnet(law), _) => match law.sine() {

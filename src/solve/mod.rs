@@ -1,6 +1,7 @@
 //! The run in time: segments, located events, one observer that streams.
 
 pub mod audit;
+mod brief;
 pub mod calm;
 pub mod conditions;
 pub mod dense;
@@ -16,6 +17,7 @@ pub mod observer;
 pub mod outcome;
 pub mod rest;
 pub mod rhs;
+mod rows;
 pub mod run;
 mod run_events;
 pub mod sampling;
