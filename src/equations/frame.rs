@@ -3,7 +3,7 @@
 use super::assembly::{Active, Assembly, Function, Strength};
 use super::channels::{ChannelForm, LinearForm, RotorChannel};
 use super::holding::{Holding, hold};
-use super::{Equations, Factor, Owner, Shape, Sliding, dot};
+use super::{Equations, Factor, Owner, Shape, Sliding, dot, thermal};
 use crate::component::channel::MagneticChannel;
 use crate::component::law::Law;
 use crate::component::load::LoadLaw;
@@ -119,6 +119,9 @@ impl Evaluator<'_> {
             }
             Function::Linear => input,
             Function::Products(list) => super::products(list, state),
+            Function::Warm(law, gains) => {
+                law.value(input, [0.0; 2], 0) * thermal::product(gains, state)
+            }
             Function::Friction(torque, direction) => -direction * torque,
         };
         (input, self.strength(&active.factor, time) * value)
@@ -310,9 +313,19 @@ impl Evaluator<'_> {
             MagneticChannel::PullOutShare => {
                 let term = self.equations.terms.iter().position(|term| {
                     term.owner == Owner::Magnet(index)
-                        && matches!(term.shape, Shape::Law(Law::Magnet(_)))
+                        && matches!(
+                            term.shape,
+                            Shape::Law(Law::Magnet(_)) | Shape::Warm(Law::Magnet(_), _)
+                        )
                 });
-                let torque = term.map_or(0.0, |place| frame.laws[place]);
+                let torque = match term {
+                    // Of what the magnets give at their temperature of the moment.
+                    Some(place) if !magnet.warmth.is_steady() => {
+                        magnet.law.value(frame.inputs[place])
+                    }
+                    Some(place) => frame.laws[place],
+                    None => 0.0,
+                };
                 let [low, high] = magnet.law.peak_values();
                 let peak = if torque >= 0.0 { high } else { low };
                 (torque / (magnet.amplitude * peak)).clamp(0.0, 1.0)

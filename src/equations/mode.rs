@@ -93,7 +93,7 @@ impl Mode {
                         let input = input(equations, term, time, state, overrides);
                         law.piece(input, parameters(equations, term, time, overrides))
                     }
-                    Shape::Linear | Shape::Products(_) => 0,
+                    Shape::Linear | Shape::Products(_) | Shape::Warm(..) => 0,
                 })
                 .chain(equations.frictions.iter().map(|_| 0))
                 .collect(),

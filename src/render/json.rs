@@ -83,6 +83,9 @@ fn gear(gear: &GearResult) -> Value {
     named(gear_found(&GearFound::of(gear)).into_iter().chain([
         ("run_longer", json_optional(gear.run_longer)),
         ("time_past_peak", json(gear.time_past_peak)),
+        ("slipping_time", json(gear.slipping_time)),
+        ("longest_slipping", json(gear.longest_slipping)),
+        ("longest_slipping_from", json(gear.longest_slipping_from)),
         ("ratio", json_optional(gear.ratio)),
         ("natural_frequency_hz", json(1.0 / gear.natural_period)),
         ("law_peaks", Value::Array(gear.law_peaks.iter().map(|peak| json(*peak)).collect())),

@@ -3,6 +3,7 @@
 use super::audit::Powers;
 use super::dense::DenseStep;
 use super::extremes::{Extreme, gear_event, refine};
+use super::gear_warnings;
 use super::gears::{GearTrack, crossings};
 use super::sampling::{Sample, StepView};
 use super::traces::Tracer;
@@ -83,6 +84,8 @@ impl<'a> Observer<'a> {
                 windows.push(Window::new(None, &watch, channel));
             }
         }
+        let hot = gear_warnings::watches(equations);
+        windows.extend(hot.iter().map(|(channel, watch)| Window::new(None, watch, *channel)));
         let mut wanted: Vec<usize> = match &options.wanted {
             Wanted::All => (0..model.channels.len()).collect(),
             Wanted::Asked(channels) => {
@@ -108,7 +111,8 @@ impl<'a> Observer<'a> {
             .iter()
             .zip(&equations.phase_state)
             .map(|(magnet, place)| {
-                GearTrack::new(start[*place] * equations.scale[*place], magnet.law.peaks())
+                let phase = start[*place] * equations.scale[*place];
+                GearTrack::new(phase, magnet.law.peaks(), magnet.natural_period())
             })
             .collect();
         let is = |kind: ChannelKind, test: &[MagneticChannel]| match kind {
