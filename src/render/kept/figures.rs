@@ -1,8 +1,8 @@
 //! From `summary.json` and `events.csv` back to the results of a run.
 
 use crate::results::{
-    ChannelResult, Energy, Event, EventKind, GearResult, GearState, MemberResult, MotorResult,
-    RequirementResult, RunResult, SlipEvent, SolverWork, Warning,
+    ChannelResult, ClutchResult, ClutchState, Energy, Event, EventKind, GearResult, GearState,
+    MemberResult, MotorResult, RequirementResult, RunResult, SlipEvent, SolverWork, Warning,
 };
 use crate::scenario::Scenario;
 use serde_json::Value;
@@ -44,6 +44,10 @@ pub fn result(summary: &Value, events: &str, scenario: &Scenario) -> Result<RunR
                 rotor_heat: at.optional("rotor_heat"),
             })
         })?,
+        clutches: match summary.get("clutches") {
+            Some(_) => root.each("clutches", clutch)?,
+            None => Vec::new(),
+        },
         warnings: warnings(summary),
         solver: solver(&root.at("solver")?)?,
         events: read_events(events),
@@ -169,6 +173,20 @@ fn gear(name: &str, at: &At<'_>, scenario: &Scenario) -> Result<GearResult, Stri
         natural_period: 1.0 / at.number("natural_frequency_hz")?,
         time_past_peak: at.number("time_past_peak")?,
         slip_events,
+    })
+}
+
+fn clutch(name: &str, at: &At<'_>) -> Result<ClutchResult, String> {
+    let word = at.text("state_at_end")?;
+    Ok(ClutchResult {
+        name: name.to_owned(),
+        slips: at.whole("slips")? as u32,
+        releases: at.whole("releases")? as u32,
+        heat: at.number("heat")?,
+        state_at_end: ClutchState::ALL
+            .into_iter()
+            .find(|state| state.word() == word)
+            .ok_or_else(|| at.wrong("a clutch with a known state"))?,
     })
 }
 
