@@ -21,6 +21,8 @@ pub struct RunResult {
     pub energy: Energy,
     /// Motors in file order.
     pub motors: Vec<MotorResult>,
+    /// Overrunning clutches, then torque limiters, in file order.
+    pub clutches: Vec<ClutchResult>,
     /// Warnings of the reader, the model and the run.
     pub warnings: Vec<Warning>,
     /// Work of the integrator.
@@ -190,6 +192,46 @@ pub struct MotorResult {
     pub run_up_time: Option<f64>,
     /// Integral of torque times (synchronous speed minus speed), J.
     pub rotor_heat: Option<f64>,
+}
+
+/// What an overrunning clutch or a torque limiter did.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ClutchResult {
+    /// Its name.
+    pub name: String,
+    /// How often it began to slip under its torque.
+    pub slips: u32,
+    /// How often it began to run free: overrunning clutches only.
+    pub releases: u32,
+    /// Heat of slipping and drag, J.
+    pub heat: f64,
+    /// What it does at the end.
+    pub state_at_end: ClutchState,
+}
+
+/// What a clutch does.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum ClutchState {
+    /// Both sides turn as one.
+    Locked,
+    /// The driven side runs ahead.
+    Free,
+    /// It slips under its torque.
+    Slipping,
+}
+
+impl ClutchState {
+    /// All of them.
+    pub const ALL: [Self; 3] = [Self::Locked, Self::Free, Self::Slipping];
+
+    /// The word of the results.
+    pub fn word(self) -> &'static str {
+        match self {
+            Self::Locked => "locked",
+            Self::Free => "free",
+            Self::Slipping => "slipping",
+        }
+    }
 }
 
 /// A warning that stands in the results.

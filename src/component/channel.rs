@@ -2,6 +2,8 @@
 
 use super::body::Body;
 use super::brake::Brake;
+use super::clutch::{Clutch, ClutchKind};
+use super::fluid_coupling::FluidCoupling;
 use super::gear_pair::GearPair;
 use super::load::{Load, LoadLaw};
 use super::magnet_temperature::{HALVES, ROTORS};
@@ -39,8 +41,14 @@ pub enum ChannelKind {
     Magnetic(usize, MagneticChannel),
     /// Constraint torque of a gear pair on its member (0 = a, 1 = b).
     GearPairTorque(usize, usize),
+    /// Power that a gear pair's drag loses.
+    GearPairLoss(usize),
     /// Constraint torque of a planetary set on its member (0 = sun, 1 = carrier, 2 = ring).
     PlanetaryTorque(usize, usize),
+    /// A clutch (overrunning ones first, then torque limiters).
+    Clutch(usize, ClutchChannel),
+    /// A fluid coupling.
+    FluidCoupling(usize, ClutchChannel),
     /// Torque of a motor on its body.
     MotorTorque(usize),
     /// Power of a motor into the train.
@@ -94,6 +102,17 @@ pub enum MagneticChannel {
     TorqueModulator,
 }
 
+/// Channels of an overrunning clutch, a torque limiter or a fluid coupling.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum ClutchChannel {
+    /// Torque on the second body.
+    Torque,
+    /// Speed of the first body against the second.
+    SlipSpeed,
+    /// Heat in W, never negative.
+    Loss,
+}
+
 /// The channels of a train as the reader of limits knows them.
 #[derive(Clone, Copy, Debug)]
 pub struct Known<'a> {
@@ -141,6 +160,12 @@ pub enum Section {
     GearPairs,
     /// `planetary_gears`.
     PlanetaryGears,
+    /// `overrunning_clutches`.
+    OverrunningClutches,
+    /// `torque_limiters`.
+    TorqueLimiters,
+    /// `fluid_couplings`.
+    FluidCouplings,
     /// `motors`.
     Motors,
     /// `loads`.
@@ -151,13 +176,16 @@ pub enum Section {
 
 impl Section {
     /// All of them in the order of the documentation.
-    pub const ALL: [Self; 9] = [
+    pub const ALL: [Self; 12] = [
         Self::Bodies,
         Self::Shafts,
         Self::MagneticGears,
         Self::MagneticCouplings,
         Self::GearPairs,
         Self::PlanetaryGears,
+        Self::OverrunningClutches,
+        Self::TorqueLimiters,
+        Self::FluidCouplings,
         Self::Motors,
         Self::Loads,
         Self::Brakes,
@@ -172,6 +200,9 @@ impl Section {
             Self::MagneticCouplings => "magnetic_couplings",
             Self::GearPairs => "gear_pairs",
             Self::PlanetaryGears => "planetary_gears",
+            Self::OverrunningClutches => "overrunning_clutches",
+            Self::TorqueLimiters => "torque_limiters",
+            Self::FluidCouplings => "fluid_couplings",
             Self::Motors => "motors",
             Self::Loads => "loads",
             Self::Brakes => "brakes",
@@ -194,6 +225,10 @@ pub struct Train<'a> {
     pub gear_pairs: &'a [GearPair],
     /// Rigid planetary sets.
     pub planetary_gears: &'a [PlanetaryGear],
+    /// Overrunning clutches, then torque limiters.
+    pub clutches: &'a [Clutch],
+    /// Fluid couplings.
+    pub fluid_couplings: &'a [FluidCoupling],
     /// Motors.
     pub motors: &'a [Motor],
     /// Loads.
@@ -253,6 +288,9 @@ pub fn list(train: &Train<'_>, order: &[Section]) -> Vec<Channel> {
                         let kind = ChannelKind::GearPairTorque(place, member);
                         add(channel, kind, Dimension::Torque);
                     }
+                    if !pair.drag.is_empty() {
+                        add("loss", ChannelKind::GearPairLoss(place), Dimension::Power);
+                    }
                 }
             }
             Section::PlanetaryGears => {
@@ -263,6 +301,14 @@ pub fn list(train: &Train<'_>, order: &[Section]) -> Vec<Channel> {
                         let kind = ChannelKind::PlanetaryTorque(place, member);
                         add(channel, kind, Dimension::Torque);
                     }
+                }
+            }
+            Section::OverrunningClutches => clutches(&mut channels, train.clutches, true),
+            Section::TorqueLimiters => clutches(&mut channels, train.clutches, false),
+            Section::FluidCouplings => {
+                for (place, coupling) in train.fluid_couplings.iter().enumerate() {
+                    let kind = |what| ChannelKind::FluidCoupling(place, what);
+                    between(&mut channels, &coupling.name, &kind);
                 }
             }
             Section::Motors => {
@@ -347,6 +393,22 @@ fn temperatures(
         let kind = ChannelKind::Magnetic(place, MagneticChannel::Temperature(node));
         add(&channel, kind, Dimension::Temperature);
     }
+}
+
+fn clutches(channels: &mut Vec<Channel>, list: &[Clutch], overrunning: bool) {
+    for (place, clutch) in list.iter().enumerate() {
+        if matches!(clutch.kind, ClutchKind::Overrunning { .. }) != overrunning {
+            continue;
+        }
+        between(channels, &clutch.name, &|what| ChannelKind::Clutch(place, what));
+    }
+}
+
+fn between(channels: &mut Vec<Channel>, name: &str, kind: &dyn Fn(ClutchChannel) -> ChannelKind) {
+    let mut add = adder(channels, name);
+    add("torque", kind(ClutchChannel::Torque), Dimension::Torque);
+    add("slip_speed", kind(ClutchChannel::SlipSpeed), Dimension::Speed);
+    add("loss", kind(ClutchChannel::Loss), Dimension::Power);
 }
 
 fn load_channels(channels: &mut Vec<Channel>, load: &Load, place: usize) {

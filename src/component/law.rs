@@ -11,6 +11,7 @@
 //! positive speed), at full voltage and scale 1, not mirrored: voltage, scale and mirroring
 //! are factors that the equations apply.
 
+use crate::component::elastic_curve::ElasticCurve;
 use crate::component::load::axial_rotor::AxialRotor;
 use crate::component::load::curve::LoadCurve;
 use crate::component::load::periodic::Periodic;
@@ -80,6 +81,8 @@ pub enum Law {
     Periodic(Periodic),
     /// Ship's propeller; the input is the body's speed, the parameter is the speed of advance (m/s).
     Propeller(Propeller),
+    /// Torque of a shaft by points beyond that of its line at no twist; the input is the twist, rad.
+    Elastic(ElasticCurve),
     /// `x` clamped to the limits; pieces 0 (at the lower), 1 (`x` itself), 2 (at the upper).
     Saturation {
         /// Lower and upper limit, in the input's unit.
@@ -127,6 +130,7 @@ impl Law {
             Self::AxialRotor(rotor) => rotor.value(x, p, piece),
             Self::Periodic(load) => load.value(x),
             Self::Propeller(propeller) => propeller.value(x, p, piece),
+            Self::Elastic(shaft) => shaft.beyond(x, piece),
             Self::Saturation { limits } => match piece {
                 0 => limits[0],
                 1 => x,
@@ -164,6 +168,7 @@ impl Law {
             Self::AxialRotor(rotor) => rotor.slope(x, p, piece),
             Self::Periodic(load) => load.slope(x),
             Self::Propeller(propeller) => propeller.slope(x, p, piece),
+            Self::Elastic(shaft) => shaft.beyond_slope(piece),
             Self::Saturation { .. } => f64::from(u8::from(piece == 1)),
         }
     }
@@ -223,6 +228,7 @@ impl Law {
             Self::PowerLaw(load) => load.boundaries(),
             Self::LoadCurve(load) => load.boundaries(),
             Self::Propeller(propeller) => propeller.boundaries(),
+            Self::Elastic(shaft) => shaft.boundaries(),
             Self::Saturation { limits } => limits,
         }
     }
@@ -239,6 +245,7 @@ impl Law {
             Self::Induction(motor) => Some(motor.warn_range()),
             Self::MotorCurve(motor) => motor.warn_range(),
             Self::LoadCurve(load) => load.warn_range(),
+            Self::Elastic(shaft) => Some(shaft.range()),
             _ => None,
         }
     }
@@ -252,6 +259,9 @@ impl Law {
             }
             Self::MotorCurve(_) | Self::LoadCurve(_) => {
                 "the run leaves the points of this curve; its end values are held there"
+            }
+            Self::Elastic(_) => {
+                "the twist leaves the points of this stiffness; its last line goes on there"
             }
             _ => "",
         }

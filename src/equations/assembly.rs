@@ -5,6 +5,7 @@ use super::mode::{Contact, Mode};
 use super::parts::Parts;
 use super::{Equations, Factor, Gain, PowerKind, Shape, Sliding, StateRow, Target, dot};
 use crate::component::law::Law;
+use crate::component::pair_law::PairLaw;
 use crate::model::BodyRow;
 use crate::signal::course::{Overrides, SlotId};
 use nalgebra::DMatrix;
@@ -60,6 +61,8 @@ pub struct Active {
 pub enum Function {
     /// A law in one of its pieces.
     Law(Law, usize),
+    /// A law of the input and of a second form over the state.
+    Pair(PairLaw, StateRow),
     /// The input itself.
     Linear,
     /// A sum of products of two states each.
@@ -204,10 +207,16 @@ pub fn assemble(
         if direction == 0.0 || factor == Strength::Constant(0.0) {
             continue;
         }
+        let side = |[forward, backward]: [f64; 2]| if direction > 0.0 { forward } else { backward };
+        // A clutch that runs free without drag is absent from the equations.
+        if matches!(friction.sliding, Sliding::Sides(torques) if side(torques) == 0.0) {
+            continue;
+        }
         active.push(Active {
             place: equations.terms.len() + index,
             function: match &friction.sliding {
                 Sliding::Constant(torque) => Function::Friction(*torque, direction),
+                Sliding::Sides(torques) => Function::Friction(side(*torques), direction),
                 Sliding::Curve(law) => {
                     Function::Law(law.clone(), mode.pieces[equations.terms.len() + index])
                 }
@@ -221,11 +230,12 @@ pub fn assemble(
             column: parts.column(&friction.row),
             // A load by points takes power out of the train, friction turns it to heat.
             power: match &friction.sliding {
-                Sliding::Constant(_) => PowerKind::Lost,
+                Sliding::Constant(_) | Sliding::Sides(_) => PowerKind::Lost,
                 Sliding::Curve(_) => PowerKind::Drive,
             },
             speed: None,
-            heat: None,
+            // Heat is the torque times the speed still missing to none.
+            heat: friction.heat.map(|place| (place, 0.0)),
         });
     }
     if parts.has_constant {
@@ -356,6 +366,7 @@ impl Active {
             place,
             function: match &term.shape {
                 Shape::Law(law) => Function::Law(law.clone(), piece),
+                Shape::Pair(law, second) => Function::Pair(law.clone(), second.clone()),
                 Shape::Linear => Function::Linear,
                 Shape::Products(list) => Function::Products(list.clone()),
                 Shape::Warm(law, gains) => Function::Warm(law.clone(), gains.clone()),

@@ -5,7 +5,7 @@ use super::holding::pseudo_inverse;
 use super::mode::{Contact, Mode};
 use super::parts::Parts;
 use super::{Equations, Owner, Shape, StateRow, Target};
-use crate::component::channel::{ChannelKind, MagneticChannel};
+use crate::component::channel::{ChannelKind, ClutchChannel, MagneticChannel};
 use crate::component::law::Law;
 use crate::model::{BodyRow, body_index, difference};
 use nalgebra::DMatrix;
@@ -82,11 +82,19 @@ fn form(
             let factor = if member == 0 { 1.0 } else { -model.scenario.gear_pairs[pair].ratio };
             ChannelForm::Linear(scaled(&constraint[pair], factor))
         }
+        ChannelKind::GearPairLoss(pair) => {
+            let (squares, laws) = drag(equations, Owner::GearPair(pair));
+            ChannelForm::Loss(squares, laws)
+        }
         ChannelKind::PlanetaryTorque(set, member) => {
             let teeth = &model.scenario.planetary_gears[set];
             let (sun, ring) = (f64::from(teeth.teeth_sun), f64::from(teeth.teeth_ring));
             let factor = [sun, -(sun + ring), ring][member.min(2)];
             ChannelForm::Linear(scaled(&constraint[model.scenario.gear_pairs.len() + set], factor))
+        }
+        ChannelKind::Clutch(index, what) => clutch(equations, Owner::Clutch(index), what),
+        ChannelKind::FluidCoupling(index, what) => {
+            clutch(equations, Owner::FluidCoupling(index), what)
         }
         ChannelKind::MotorTorque(index) => {
             ChannelForm::Linear(torque_of(equations, Owner::Motor(index)))
@@ -154,7 +162,9 @@ fn shaft_torque(
         let rate = equations.speed_row(&shaft.row());
         state.extend(rate.iter().map(|(speed, value)| (*speed, shaft.damping * value)));
     }
-    ChannelForm::Linear(LinearForm { state, laws: Vec::new(), constant: offset })
+    let stages = equations.terms.iter().position(|term| term.owner == Owner::Shaft(index));
+    let laws = stages.map(|place| (place, 1.0)).into_iter().collect();
+    ChannelForm::Linear(LinearForm { state, laws, constant: offset })
 }
 
 fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> ChannelForm {
@@ -191,12 +201,7 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
         MagneticChannel::TorqueModulator => member(1),
         MagneticChannel::SlipSpeed => linear(equations.speed_row(&magnet.row())),
         MagneticChannel::Loss => {
-            let squares = equations
-                .dampers
-                .iter()
-                .filter(|damper| damper.owner == Owner::Magnet(index))
-                .map(|damper| (damper.coefficient, equations.speed_row(&damper.row)))
-                .collect();
+            let (squares, drag) = drag(equations, Owner::Magnet(index));
             let fading = equations
                 .terms
                 .iter()
@@ -205,12 +210,6 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
                     term.owner == Owner::Magnet(index) && term.power == super::PowerKind::Lost
                 })
                 .map(|(place, _)| place);
-            let drag = equations
-                .frictions
-                .iter()
-                .enumerate()
-                .filter(|(_, friction)| friction.owner == Owner::Magnet(index))
-                .map(|(place, _)| equations.terms.len() + place);
             ChannelForm::Loss(squares, fading.chain(drag).collect())
         }
         MagneticChannel::EddyLoss => {
@@ -239,6 +238,19 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
     }
 }
 
+/// Dampers and dry friction of a thing: squares of forms with weights, and places of laws.
+fn drag(equations: &Equations, owner: Owner) -> (Vec<(f64, StateRow)>, Vec<usize>) {
+    let dampers = equations.dampers.iter().filter(|damper| damper.owner == owner);
+    let squares =
+        dampers.map(|damper| (damper.coefficient, equations.speed_row(&damper.row))).collect();
+    let frictions = equations.frictions.iter().enumerate();
+    let laws = frictions
+        .filter(|(_, friction)| friction.owner == owner)
+        .map(|(place, _)| equations.terms.len() + place)
+        .collect();
+    (squares, laws)
+}
+
 /// The bodies that a motor, load or brake acts on: its own, and the one it acts against.
 pub fn ends_of(equations: &Equations, owner: Owner) -> (Option<usize>, Option<usize>) {
     let scenario = &equations.model.scenario;
@@ -254,7 +266,38 @@ pub fn ends_of(equations: &Equations, owner: Owner) -> (Option<usize>, Option<us
             let brake = &scenario.brakes[index];
             (body_index(scenario, &brake.body), against(&brake.against))
         }
-        Owner::Magnet(_) => (None, None),
+        Owner::Clutch(index) => {
+            let [a, b] = &scenario.clutches[index].between;
+            (body_index(scenario, b), body_index(scenario, a))
+        }
+        Owner::FluidCoupling(index) => {
+            let [pump, turbine] = &scenario.fluid_couplings[index].between;
+            (body_index(scenario, turbine), body_index(scenario, pump))
+        }
+        Owner::Magnet(_) | Owner::Shaft(_) | Owner::GearPair(_) => (None, None),
+    }
+}
+
+/// The friction of a clutch and the law of a fluid coupling put their value on the first body and
+/// the opposite on the second.
+fn clutch(equations: &Equations, owner: Owner, what: ClutchChannel) -> ChannelForm {
+    let terms = equations.terms.iter().position(|term| term.owner == owner);
+    let (law, speed) = match terms {
+        Some(place) => (place, &equations.terms[place].input),
+        None => {
+            let of = |friction: &super::Friction| friction.owner == owner;
+            let Some(place) = equations.frictions.iter().position(of) else {
+                return linear(Vec::new());
+            };
+            (equations.terms.len() + place, &equations.frictions[place].speed)
+        }
+    };
+    match what {
+        ClutchChannel::Torque => {
+            ChannelForm::Linear(LinearForm { laws: vec![(law, -1.0)], ..LinearForm::default() })
+        }
+        ClutchChannel::SlipSpeed => linear(speed.clone()),
+        ClutchChannel::Loss => ChannelForm::Loss(Vec::new(), vec![law]),
     }
 }
 

@@ -2,8 +2,8 @@
 
 use super::assembly::{Active, Assembly, Function, Strength};
 use super::channels::{ChannelForm, LinearForm, RotorChannel};
-use super::holding::{Holding, hold};
-use super::{Equations, Factor, Owner, Shape, Sliding, dot, thermal};
+use super::holding::{Holding, Limits, hold};
+use super::{Equations, Factor, Owner, Shape, dot, thermal};
 use crate::component::channel::MagneticChannel;
 use crate::component::law::Law;
 use crate::component::load::LoadLaw;
@@ -117,6 +117,7 @@ impl Evaluator<'_> {
                 };
                 law.value(input, parameters, *piece)
             }
+            Function::Pair(law, second) => law.value(input, dot(second, state)),
             Function::Linear => input,
             Function::Products(list) => super::products(list, state),
             Function::Warm(law, gains) => {
@@ -127,20 +128,10 @@ impl Evaluator<'_> {
         (input, self.strength(&active.factor, time) * value)
     }
 
-    /// Breakaway limit of a friction element at a time, N*m.
-    pub fn limit(&self, friction: usize, time: f64) -> f64 {
+    /// Breakaway limits of a friction element at a time.
+    pub fn limit(&self, friction: usize, time: f64) -> Limits {
         let friction = &self.equations.frictions[friction];
-        friction.breakaway * self.factor(&friction.factor, time)
-    }
-
-    /// Sliding torque of a friction element at a time and speed of magnitude `speed`, N*m.
-    pub fn sliding(&self, friction: usize, time: f64, speed: f64) -> f64 {
-        let friction = &self.equations.frictions[friction];
-        let torque = match &friction.sliding {
-            Sliding::Constant(torque) => *torque,
-            Sliding::Curve(law) => sliding_of(law, speed),
-        };
-        torque * self.factor(&friction.factor, time)
+        friction.breakaway.scaled(self.factor(&friction.factor, time))
     }
 
     /// Law values and holding torques.
@@ -189,7 +180,7 @@ impl Evaluator<'_> {
                             .sum::<f64>()
                 })
                 .collect();
-            let limits: Vec<f64> =
+            let limits: Vec<Limits> =
                 assembly.stuck.iter().map(|index| self.limit(*index, time)).collect();
             let holding = hold(&assembly.stuck_compliance, &drive, &limits);
             for (index, torque) in assembly.stuck.iter().zip(&holding.torque) {

@@ -1,8 +1,8 @@
 //! The exact linearisation `A + sum D_j q_j' row_j` of one mode at a state.
 
-use super::assembly::{Assembly, Function};
+use super::assembly::{Active, Assembly, Function};
 use super::frame::Evaluator;
-use super::thermal;
+use super::{StateRow, dot, thermal};
 use crate::component::law::Law;
 use nalgebra::DMatrix;
 use nalgebra::linalg::Schur;
@@ -52,6 +52,15 @@ pub fn jacobian(
                 }
             }
         }
+        if let Some(form) = pair_form(active, state) {
+            let strength = evaluator.strength(&active.factor, time);
+            for &(row, share) in &active.column {
+                for &(column, slope) in &form {
+                    matrix[(row, column)] += share * strength * slope;
+                }
+            }
+            continue;
+        }
         let slope = match &active.function {
             Function::Law(Law::Magnet(magnet), _) if magnets == MagnetSlope::Steepest => {
                 magnet.amplitude() * magnet.steepest()
@@ -67,7 +76,7 @@ pub fn jacobian(
                 law.slope(input, [first.map_or(0.0, signal), second.map_or(0.0, signal)], *piece)
             }
             Function::Linear => 1.0,
-            Function::Products(_) => 0.0,
+            Function::Products(_) | Function::Pair(..) => 0.0,
             // Sliding friction adds nothing: its torque does not follow small changes of speed.
             Function::Friction(..) => 0.0,
         };
@@ -79,6 +88,16 @@ pub fn jacobian(
         }
     }
     matrix
+}
+
+/// How the value of a law of two inputs changes with the state, before its factor; `None` for all
+/// other laws.
+pub fn pair_form(active: &Active, state: &[f64]) -> Option<StateRow> {
+    let Function::Pair(law, second) = &active.function else { return None };
+    let slopes = law.slopes(active.input_at(state), dot(second, state));
+    let rows = active.input.iter().map(|entry| (entry, slopes[0]));
+    let both = rows.chain(second.iter().map(|entry| (entry, slopes[1])));
+    Some(both.map(|((place, share), slope)| (*place, share * slope)).collect())
 }
 
 /// Eigenvalues of a real matrix as (real, imaginary); `None` when the iteration does not converge.

@@ -9,6 +9,7 @@
 
 pub mod assembly;
 pub mod build;
+mod build_joints;
 mod build_machine;
 mod build_magnet;
 mod build_motor;
@@ -23,8 +24,11 @@ pub mod parts;
 pub mod thermal;
 
 use crate::component::law::Law;
+use crate::component::pair_law::PairLaw;
 use crate::model::{BodyRow, Model};
 use crate::signal::course::{SignalBank, SlotId};
+use holding::Limits;
+use mode::{FrictionMode, REST};
 
 /// A sparse form over the scaled state.
 pub type StateRow = Vec<(usize, f64)>;
@@ -62,6 +66,8 @@ pub struct Equations {
     pub heats: Vec<(usize, f64)>,
     /// Thermal nodes of magnets.
     pub thermal: Vec<thermal::ThermalState>,
+    /// Number of friction elements whose heat is asked for; they stand behind the motors.
+    pub friction_heats: usize,
     /// Everything that follows time.
     pub bank: SignalBank,
     /// What a reader of the results must know.
@@ -79,6 +85,14 @@ pub enum Owner {
     Brake(usize),
     /// A magnet by place.
     Magnet(usize),
+    /// A clutch by place.
+    Clutch(usize),
+    /// A shaft by place.
+    Shaft(usize),
+    /// A fluid coupling by place.
+    FluidCoupling(usize),
+    /// A gear pair by place.
+    GearPair(usize),
 }
 
 /// What the value of a term acts on.
@@ -108,6 +122,8 @@ pub enum PowerKind {
 pub enum Shape {
     /// A law of the library.
     Law(Law),
+    /// A law of the input and of a second form over the scaled state.
+    Pair(PairLaw, StateRow),
     /// The input itself.
     Linear,
     /// A sum of products of two states each; the input is the speed that makes its power.
@@ -174,6 +190,8 @@ pub struct Term {
 pub enum Sliding {
     /// The same at every speed, N*m.
     Constant(f64),
+    /// Forward and backward each their own, N*m; a side whose torque is infinite never slides.
+    Sides([f64; 2]),
     /// A load curve read at the magnitude of the speed.
     Curve(Law),
 }
@@ -192,11 +210,49 @@ pub struct Friction {
     /// Torque while sliding.
     pub sliding: Sliding,
     /// Torque that breaks it away, N*m.
-    pub breakaway: f64,
+    pub breakaway: Limits,
     /// Factor on both.
     pub factor: Factor,
     /// Typical speed, rad/s, for tolerances.
     pub speed_size: f64,
+    /// Place in the list of heats, where its heat is asked for.
+    pub heat: Option<usize>,
+}
+
+impl Friction {
+    /// Magnitude of the torque while it slides at a relative speed, before its factor, N*m.
+    pub fn sliding_torque(&self, speed: f64) -> f64 {
+        match &self.sliding {
+            Sliding::Constant(torque) => *torque,
+            Sliding::Sides([forward, backward]) => {
+                if speed > 0.0 {
+                    *forward
+                } else {
+                    *backward
+                }
+            }
+            Sliding::Curve(law) => frame::sliding_of(law, speed.abs()),
+        }
+    }
+
+    /// What an element that is there does at a relative speed, rad/s.
+    pub fn judge(&self, speed: f64) -> FrictionMode {
+        let slides = FrictionMode::sliding(speed);
+        if speed.abs() <= REST * self.speed_size || self.never_slides(slides) {
+            FrictionMode::Stuck
+        } else {
+            slides
+        }
+    }
+
+    /// True for the way in which a clutch passes any torque.
+    pub fn never_slides(&self, way: FrictionMode) -> bool {
+        match &self.sliding {
+            Sliding::Sides([forward, _]) if way == FrictionMode::Forward => forward.is_infinite(),
+            Sliding::Sides([_, backward]) => backward.is_infinite(),
+            Sliding::Constant(_) | Sliding::Curve(_) => false,
+        }
+    }
 }
 
 /// A torque proportional to a relative speed.
@@ -246,11 +302,11 @@ impl Equations {
         match self.terms.get(place) {
             Some(term) => match &term.shape {
                 Shape::Law(law) => Some(law),
-                Shape::Linear | Shape::Products(_) | Shape::Warm(..) => None,
+                Shape::Linear | Shape::Products(_) | Shape::Warm(..) | Shape::Pair(..) => None,
             },
             None => match &self.frictions.get(place - self.terms.len())?.sliding {
                 Sliding::Curve(law) => Some(law),
-                Sliding::Constant(_) => None,
+                Sliding::Constant(_) | Sliding::Sides(_) => None,
             },
         }
     }

@@ -76,14 +76,7 @@ impl Mode {
             frictions: equations
                 .frictions
                 .iter()
-                .map(|friction| {
-                    let speed = dot(&friction.speed, state);
-                    if speed.abs() <= REST * friction.speed_size {
-                        FrictionMode::Stuck
-                    } else {
-                        FrictionMode::sliding(speed)
-                    }
-                })
+                .map(|friction| friction.judge(dot(&friction.speed, state)))
                 .collect(),
             pieces: equations
                 .terms
@@ -93,7 +86,7 @@ impl Mode {
                         let input = input(equations, term, time, state, overrides);
                         law.piece(input, parameters(equations, term, time, overrides))
                     }
-                    Shape::Linear | Shape::Products(_) | Shape::Warm(..) => 0,
+                    Shape::Linear | Shape::Products(_) | Shape::Warm(..) | Shape::Pair(..) => 0,
                 })
                 .chain(equations.frictions.iter().map(|_| 0))
                 .collect(),

@@ -320,7 +320,8 @@ fn load_signals<'a>(path: &str, law: &'a LoadLaw, uses: &mut Vec<Use<'a>>) {
         | LoadLaw::Friction { .. }
         | LoadLaw::Viscous { .. }
         | LoadLaw::Curve { .. }
-        | LoadLaw::Periodic { .. } => {}
+        | LoadLaw::Periodic { .. }
+        | LoadLaw::Reciprocating { .. } => {}
     }
 }
 
@@ -375,7 +376,8 @@ pub(super) fn each_with_table(scenario: &mut Scenario, look: &mut dyn FnMut(&str
             | LoadLaw::Friction { .. }
             | LoadLaw::Viscous { .. }
             | LoadLaw::Curve { .. }
-            | LoadLaw::Periodic { .. } => {}
+            | LoadLaw::Periodic { .. }
+            | LoadLaw::Reciprocating { .. } => {}
         }
     }
     for brake in &mut scenario.brakes {

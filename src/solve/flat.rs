@@ -161,7 +161,7 @@ fn kernel(active: &Active) -> (Kernel, f64) {
         Function::Law(Law::PowerLaw(load), piece) => (Kernel::PowerLaw(*load, *piece), 1.0),
         Function::Law(Law::Unit, _) => (Kernel::Constant, 1.0),
         Function::Law(..) => (Kernel::Steady, 1.0),
-        Function::Products(_) | Function::Warm(..) => (Kernel::Other, 1.0),
+        Function::Products(_) | Function::Warm(..) | Function::Pair(..) => (Kernel::Other, 1.0),
         Function::Linear => (Kernel::Input, 1.0),
         Function::Friction(torque, direction) => (Kernel::Constant, -direction * torque),
     }
@@ -171,7 +171,7 @@ fn kernel(active: &Active) -> (Kernel, f64) {
 fn steady(active: &Active, input: f64) -> f64 {
     match &active.function {
         Function::Law(law, piece) => law.value(input, active.fixed.1, *piece),
-        Function::Linear | Function::Products(_) | Function::Warm(..) => input,
+        Function::Linear | Function::Products(_) | Function::Warm(..) | Function::Pair(..) => input,
         Function::Friction(torque, direction) => -direction * torque,
     }
 }

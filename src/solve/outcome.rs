@@ -6,8 +6,8 @@ use crate::component::load::LoadLaw;
 use crate::equations::frame::load_angle;
 use crate::equations::{Equations, Owner, Shape, energy};
 use crate::results::{
-    ChannelResult, Energy, Event, EventKind, GearResult, GearState, MemberResult, MotorResult,
-    RunResult, Warning,
+    ChannelResult, ClutchResult, ClutchState, Energy, Event, EventKind, GearResult, GearState,
+    MemberResult, MotorResult, RunResult, Warning,
 };
 use crate::scenario::Method;
 
@@ -85,6 +85,7 @@ pub fn collect(mut run: Run<'_, '_>, stored: f64) -> RunResult {
         requirements,
         energy: audit,
         motors: motors(&run),
+        clutches: clutches(&run),
         warnings,
         solver: work,
         events: std::mem::take(&mut run.observer.events),
@@ -190,6 +191,37 @@ fn motors(run: &Run<'_, '_>) -> Vec<MotorResult> {
         .collect()
 }
 
+fn clutches(run: &Run<'_, '_>) -> Vec<ClutchResult> {
+    let equations = run.equations;
+    let frictions = equations.frictions.iter().enumerate();
+    frictions
+        .filter_map(|(index, friction)| {
+            let Owner::Clutch(clutch) = friction.owner else { return None };
+            let clutch = equations.model.scenario.clutches.get(clutch)?;
+            let count = |free: bool| {
+                let sliding = |event: &&Event| {
+                    event.kind == EventKind::Sliding
+                        && event.of == clutch.name
+                        && clutch.runs_free(event.value) == free
+                };
+                u32::try_from(run.observer.events.iter().filter(sliding).count())
+                    .unwrap_or(u32::MAX)
+            };
+            Some(ClutchResult {
+                name: clutch.name.clone(),
+                slips: count(false),
+                releases: count(true),
+                heat: friction.heat.and_then(|heat| run.observer.heats.get(heat)).copied()?,
+                state_at_end: match run.mode.frictions[index].direction() {
+                    0.0 => ClutchState::Locked,
+                    way if clutch.runs_free(way) => ClutchState::Free,
+                    _ => ClutchState::Slipping,
+                },
+            })
+        })
+        .collect()
+}
+
 fn audit(equations: &Equations, run: &Run<'_, '_>, stored: f64) -> Energy {
     let sums = run.observer.energy;
     let stored_change = energy::stored(equations, &run.mode.contacts, &run.state) - stored;
@@ -241,18 +273,23 @@ fn warn_of_ranges(run: &mut Run<'_, '_>) {
     for term in &equations.terms {
         let Shape::Law(law) = &term.shape else { continue };
         let Some([low, high]) = law.warn_range() else { continue };
-        let (path, body, reversed) = match term.owner {
+        let (path, name, reversed) = match term.owner {
             Owner::Motor(index) => {
                 let motor = &scenario.motors[index];
-                (format!("motors.{}.law", motor.name), &motor.body, motor.reversed)
+                let name = format!("{}.speed", motor.body);
+                (format!("motors.{}.law", motor.name), name, motor.reversed)
             }
             Owner::Load(index) => {
                 let load = &scenario.loads[index];
-                (format!("loads.{}.law", load.name), &load.body, load.reversed)
+                let name = format!("{}.speed", load.body);
+                (format!("loads.{}.law", load.name), name, load.reversed)
+            }
+            Owner::Shaft(index) => {
+                let shaft = &scenario.shafts[index].name;
+                (format!("shafts.{shaft}.stiffness"), format!("{shaft}.twist"), false)
             }
             _ => continue,
         };
-        let name = format!("{body}.speed");
         let Some(place) = equations.model.channels.iter().position(|channel| channel.name == name)
         else {
             continue;

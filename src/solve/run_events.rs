@@ -216,6 +216,10 @@ impl Run<'_, '_> {
             Some(Owner::Motor(motor)) => scenario.motors[motor].name.clone(),
             Some(Owner::Load(load)) => scenario.loads[load].name.clone(),
             Some(Owner::Brake(brake)) => scenario.brakes[brake].name.clone(),
+            Some(Owner::Shaft(shaft)) => scenario.shafts[shaft].name.clone(),
+            Some(Owner::FluidCoupling(place)) => scenario.fluid_couplings[place].name.clone(),
+            Some(Owner::GearPair(pair)) => scenario.gear_pairs[pair].name.clone(),
+            Some(Owner::Clutch(clutch)) => scenario.clutches[clutch].name.clone(),
             Some(Owner::Magnet(magnet)) => equations.model.magnets[magnet].name.clone(),
             None => equations
                 .frictions
@@ -311,8 +315,12 @@ impl Run<'_, '_> {
         }
         // Laws over an angle: a sixth of a period at the working speed.
         for term in &self.equations.terms {
-            if let Shape::Law(law) = &term.shape {
-                let Some(order) = law.turn_order() else { continue };
+            let order = match &term.shape {
+                Shape::Law(law) => law.turn_order(),
+                Shape::Pair(law, _) => law.turn_order(),
+                Shape::Linear | Shape::Products(_) | Shape::Warm(..) => None,
+            };
+            if let Some(order) = order {
                 let fastest =
                     self.equations.model.scales.body_speed.iter().fold(0.0_f64, |a, b| a.max(*b));
                 cap = cap.min(TAU / (6.0 * order * fastest));

@@ -8,11 +8,15 @@
 #![allow(clippy::unwrap_used, clippy::cast_precision_loss)]
 
 mod checking;
+mod clutches;
 mod commands;
 mod convergence;
+mod elastic;
 mod endings;
 mod energy;
 mod equal_area;
+mod everyday;
+mod fluid;
 mod friction;
 mod gears;
 mod helper;

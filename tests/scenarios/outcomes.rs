@@ -24,7 +24,7 @@ struct Outcome {
 /// Recorded figures are held to this, relative.
 const RECORDED: f64 = 0.01;
 
-const OUTCOMES: [Outcome; 14] = [
+const OUTCOMES: [Outcome; 16] = [
     Outcome {
         stem: "conveyor_stop",
         status: 0,
@@ -35,6 +35,15 @@ const OUTCOMES: [Outcome; 14] = [
             ("gears/gear/peak_pull_out_share", 0.733),
             ("channels/slow_shaft.torque/min", -834.0),
         ],
+        failing: &[],
+    },
+    Outcome {
+        stem: "crusher_jam",
+        status: 0,
+        gear: "gear",
+        slips: 0..=0,
+        state: "synchronous",
+        figures: &[("clutches/limiter/heat", 19_400.0)],
         failing: &[],
     },
     Outcome {
@@ -62,6 +71,15 @@ const OUTCOMES: [Outcome; 14] = [
             ("channels/pinion_shaft.torque/max", 6332.0),
         ],
         failing: &["no_slip", "no_overspeed", "pinion_shaft_peak"],
+    },
+    Outcome {
+        stem: "inclined_conveyor",
+        status: 0,
+        gear: "gear",
+        slips: 0..=0,
+        state: "synchronous",
+        figures: &[("gears/gear/peak_pull_out_share", 0.7)],
+        failing: &[],
     },
     Outcome {
         stem: "kiln_train",

@@ -15,7 +15,7 @@ use crate::tree::{Alternative, Fields, Range};
 const HIGHEST_ORDER: i64 = 10_000;
 
 /// The laws a load may have.
-const LAWS: [Alternative<LoadLaw>; 8] = [
+const LAWS: [Alternative<LoadLaw>; 9] = [
     ("power_law", "Torque*|w/speed|^exponent against the motion.", power_law),
     ("friction", "Dry friction that sticks and slips.", friction),
     ("viscous", "Torque in proportion to the speed.", viscous),
@@ -24,6 +24,7 @@ const LAWS: [Alternative<LoadLaw>; 8] = [
     ("axial_rotor", "Wind or water rotor in a flow.", axial_rotor),
     ("periodic", "Torque by the body's angle.", periodic),
     ("propeller", "Ship's propeller.", propeller),
+    ("reciprocating", "Inertia torque of a mass moved by crank and rod.", reciprocating),
 ];
 
 impl Load {
@@ -120,6 +121,31 @@ fn viscous(fields: &mut Fields<'_>) -> LoadLaw {
             "Torque per speed.",
         ),
     }
+}
+
+fn reciprocating(fields: &mut Fields<'_>) -> LoadLaw {
+    let length = |fields: &mut Fields<'_>, key, doc| {
+        fields.quantity(key, Dimension::Length, Range::Positive, doc)
+    };
+    let crank_radius = length(fields, "crank_radius", "Radius of the crank: half the stroke.");
+    let rod_length = length(fields, "rod_length", "Length of the connecting rod.");
+    let mass = fields.quantity(
+        "reciprocating_mass",
+        Dimension::Mass,
+        Range::Positive,
+        "Mass that moves with the piston, the rod's share with it.",
+    );
+    let phase = fields.quantity_or(
+        "phase",
+        Dimension::Angle,
+        Range::Any,
+        0.0,
+        "Crank angle at the start, from the dead centre far from the crank.",
+    );
+    if rod_length <= crank_radius {
+        fields.fault("rod_length", "`rod_length` must be above `crank_radius`");
+    }
+    LoadLaw::Reciprocating { crank_radius, rod_length, mass, phase }
 }
 
 fn prescribed(fields: &mut Fields<'_>) -> LoadLaw {

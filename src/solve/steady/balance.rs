@@ -3,8 +3,8 @@
 use super::SteadyError;
 use super::external::{Command, External};
 use crate::equations::Equations;
-use crate::equations::holding::hold;
-use crate::equations::mode::REST;
+use crate::equations::holding::{Limits, hold};
+use crate::equations::mode::FrictionMode;
 use crate::signal::course::Overrides;
 use nalgebra::{DMatrix, DVector};
 
@@ -240,7 +240,7 @@ impl Search<'_> {
         let resting: Vec<usize> = (0..equations.frictions.len())
             .filter(|index| {
                 let friction = &equations.frictions[*index];
-                self.external.relative(friction, speeds).abs() <= REST * friction.speed_size
+                friction.judge(self.external.relative(friction, speeds)) == FrictionMode::Stuck
             })
             .collect();
         let mut at_rest = vec![None; equations.frictions.len()];
@@ -267,7 +267,7 @@ impl Search<'_> {
         });
         let compliance = &rows * &inverse * rows.transpose();
         let drive = &rows * &inverse * (self.motions.transpose() * &*torque);
-        let limits: Vec<f64> = resting
+        let limits: Vec<Limits> = resting
             .iter()
             .map(|index| self.external.breakaway(&equations.frictions[*index]))
             .collect();
@@ -283,7 +283,9 @@ impl Search<'_> {
             return Err(SteadyError {
                 message: format!(
                     "no torque balance: at rest `{}` would have to hold {:.6} N*m, its breakaway is {:.6} N*m",
-                    friction.name, holding.torque[line], limits[line]
+                    friction.name,
+                    holding.torque[line],
+                    limits[line].of(holding.torque[line])
                 ),
             });
         }

@@ -2,10 +2,11 @@
 
 use crate::component::law::Law;
 use crate::component::motor::circuit::CONNECTED;
-use crate::equations::frame::sliding_of;
+use crate::component::pair_law::PairLaw;
+use crate::equations::holding::Limits;
 use crate::equations::machine::Machine;
-use crate::equations::mode::REST;
-use crate::equations::{Equations, Friction, Owner, Shape, Sliding, Target, Term};
+use crate::equations::mode::FrictionMode;
+use crate::equations::{Equations, Friction, Owner, Shape, Target, Term};
 use crate::signal::course::Overrides;
 use nalgebra::DVector;
 
@@ -41,7 +42,7 @@ impl External<'_> {
         let state = self.scaled(speeds);
         for (index, term) in self.equations.terms.iter().enumerate() {
             let Target::Torque(direction) = &term.target else { continue };
-            if let Owner::Magnet(_) = term.owner {
+            if let Owner::Magnet(_) | Owner::Shaft(_) = term.owner {
                 continue;
             }
             let controller = self
@@ -60,10 +61,7 @@ impl External<'_> {
             apply(&damper.row, -damper.coefficient * speed);
         }
         for friction in &self.equations.frictions {
-            let speed = self.relative(friction, speeds);
-            if speed.abs() > REST * friction.speed_size {
-                apply(&friction.row, -speed.signum() * self.sliding(friction, speed.abs()));
-            }
+            apply(&friction.row, self.rubbing(friction, speeds));
         }
         (sum, at_work)
     }
@@ -116,17 +114,18 @@ impl External<'_> {
         self.equations.model.reduction.dense(&friction.row).dot(speeds)
     }
 
-    /// Breakaway torque of a friction element, N*m.
-    pub fn breakaway(&self, friction: &Friction) -> f64 {
-        friction.breakaway * self.slots(&friction.factor.slots)
+    /// Torque of a friction element along its row while it slides, N*m; none at rest.
+    pub fn rubbing(&self, friction: &Friction, speeds: &DVector<f64>) -> f64 {
+        let speed = self.relative(friction, speeds);
+        if friction.judge(speed) == FrictionMode::Stuck {
+            return 0.0;
+        }
+        -speed.signum() * friction.sliding_torque(speed) * self.slots(&friction.factor.slots)
     }
 
-    fn sliding(&self, friction: &Friction, speed: f64) -> f64 {
-        let torque = match &friction.sliding {
-            Sliding::Constant(torque) => *torque,
-            Sliding::Curve(law) => sliding_of(law, speed),
-        };
-        torque * self.slots(&friction.factor.slots)
+    /// Breakaway limits of a friction element.
+    pub fn breakaway(&self, friction: &Friction) -> Limits {
+        friction.breakaway.scaled(self.slots(&friction.factor.slots))
     }
 
     fn scaled(&self, speeds: &DVector<f64>) -> Vec<f64> {
@@ -143,6 +142,8 @@ impl External<'_> {
             Shape::Linear => input,
             // The torque of magnets is that of the train's own deformation.
             Shape::Warm(..) => 0.0,
+            Shape::Pair(PairLaw::Reciprocating(_), _) => 0.0,
+            Shape::Pair(law, second) => law.value(input, crate::equations::dot(second, state)),
             // Of products of states only a machine's torque reaches the train.
             Shape::Products(_) => self.machine(term, input),
             // Torques over an angle count by their mean over a turn, which is zero.

@@ -185,6 +185,9 @@ fn deform(
 fn undeform(equations: &Equations, place: usize, torque: f64) -> Result<f64, SteadyError> {
     if let Some(index) = equations.twist_state.iter().position(|state| *state == Some(place)) {
         let shaft = &equations.model.shafts[index];
+        if let Some(curve) = &shaft.curve {
+            return Ok(curve.twist(torque));
+        }
         let play = if torque == 0.0 { 0.0 } else { shaft.backlash / 2.0 * torque.signum() };
         return Ok(torque / shaft.stiffness + play);
     }
@@ -208,6 +211,9 @@ fn undeform(equations: &Equations, place: usize, torque: f64) -> Result<f64, Ste
 fn element(equations: &Equations, place: usize, value: f64) -> (f64, f64) {
     if let Some(index) = equations.twist_state.iter().position(|state| *state == Some(place)) {
         let shaft = &equations.model.shafts[index];
+        if let Some(curve) = &shaft.curve {
+            return curve.at(value);
+        }
         let beyond = value.abs() - shaft.backlash / 2.0;
         if beyond <= 0.0 {
             return (0.0, 1e-6 * shaft.stiffness);

@@ -3,7 +3,8 @@
 use super::SteadyError;
 use super::balance::{Balance, CLOSED, Search};
 use super::external::Command;
-use crate::equations::mode::REST;
+use crate::equations::Friction;
+use crate::equations::mode::FrictionMode;
 use nalgebra::{DMatrix, DVector};
 
 impl Search<'_> {
@@ -56,19 +57,20 @@ impl Search<'_> {
             .filter(|index| matches!(commands[*index], Command::Fixed(_)))
             .collect();
         // Members that are given at rest and held by friction stay at rest while a balance is sought.
-        let held: Vec<DVector<f64>> = self
+        let held: Vec<(&Friction, DVector<f64>)> = self
             .equations()
             .frictions
             .iter()
             .filter(|friction| {
                 let speed = self.external.relative(friction, &self.speeds(&start));
-                speed.abs() <= REST * friction.speed_size && self.external.breakaway(friction) > 0.0
+                friction.judge(speed) == FrictionMode::Stuck
+                    && self.external.breakaway(friction).largest() > 0.0
             })
             .map(|friction| {
-                (self.equations().model.reduction.dense(&friction.row).transpose() * self.motions)
-                    .transpose()
+                let dense = self.equations().model.reduction.dense(&friction.row);
+                (friction, (dense.transpose() * self.motions).transpose())
             })
-            .filter(|row| row.amax() > 1e-12)
+            .filter(|(_, row)| row.amax() > 1e-12)
             .collect();
         let total = count + open.len() + held.len();
         let scale = DVector::from_fn(count, |column, _| {
@@ -85,15 +87,18 @@ impl Search<'_> {
             }
             let motion = unknown.rows(0, count).into_owned();
             let (mut net, at_work) = self.net(&motion, commands);
-            for (line, row) in held.iter().enumerate() {
-                net += row * unknown[count + open.len() + line];
+            let speeds = self.speeds(&motion);
+            for (line, (friction, row)) in held.iter().enumerate() {
+                // What holds does not slide as well, however little a trial moves it.
+                let slides = self.external.rubbing(friction, &speeds);
+                net += row * (unknown[count + open.len() + line] - slides);
             }
             let mut all = DVector::zeros(total);
             all.rows_mut(0, count).copy_from(&net);
             for (line, index) in open.iter().enumerate() {
                 all[count + line] = self.external.error(*index, &self.speeds(&motion));
             }
-            for (line, row) in held.iter().enumerate() {
+            for (line, (_, row)) in held.iter().enumerate() {
                 all[count + open.len() + line] = row.dot(&motion);
             }
             (all, at_work)
