@@ -5,7 +5,7 @@ use super::brake::Brake;
 use super::gear_pair::GearPair;
 use super::load::{Load, LoadLaw};
 use super::magnetic_gear::{MagneticCoupling, MagneticGear};
-use super::motor::Motor;
+use super::motor::{Motor, MotorLaw};
 use super::planetary::PlanetaryGear;
 use super::shaft::Shaft;
 use crate::quantity::Dimension;
@@ -44,6 +44,8 @@ pub enum ChannelKind {
     MotorTorque(usize),
     /// Power of a motor into the train.
     MotorPower(usize),
+    /// Current of a line of an induction motor by its circuit.
+    MotorCurrent(usize),
     /// Torque of a load on its body.
     LoadTorque(usize),
     /// Power of a load into the train.
@@ -58,6 +60,8 @@ pub enum ChannelKind {
     LoadTipSpeedRatio(usize),
     /// Power coefficient of an axial rotor, 0 while the flow is not positive.
     LoadPowerCoefficient(usize),
+    /// Pitch of an axial rotor with a pitch loop.
+    LoadPitch(usize),
 }
 
 /// Channels of a magnetic gear or coupling.
@@ -108,9 +112,10 @@ pub fn dimension_of(channel: &str) -> Option<Dimension> {
     let quantity = channel.split_once('.')?.1;
     Some(match quantity {
         "speed" | "slip_speed" => Dimension::Speed,
-        "angle" | "twist" | "load_angle" | "phase" => Dimension::Angle,
+        "angle" | "twist" | "load_angle" | "phase" | "pitch" => Dimension::Angle,
         "power" | "loss" => Dimension::Power,
         "flow" => Dimension::LinearSpeed,
+        "current" => Dimension::Current,
         "slips" | "net_slips" | "pull_out_share" | "short_of_peak" | "tip_speed_ratio"
         | "power_coefficient" => Dimension::One,
         _ if quantity.starts_with("torque") => Dimension::Torque,
@@ -250,6 +255,9 @@ pub fn list(train: &Train<'_>, order: &[Section]) -> Vec<Channel> {
                     let mut add = adder(&mut channels, &motor.name);
                     add("torque", ChannelKind::MotorTorque(place), Dimension::Torque);
                     add("power", ChannelKind::MotorPower(place), Dimension::Power);
+                    if matches!(motor.law, MotorLaw::InductionCircuit { .. }) {
+                        add("current", ChannelKind::MotorCurrent(place), Dimension::Current);
+                    }
                 }
             }
             Section::Loads => {
@@ -317,5 +325,8 @@ fn load_channels(channels: &mut Vec<Channel>, load: &Load, place: usize) {
         add("flow", ChannelKind::LoadFlow(place), Dimension::LinearSpeed);
         add("tip_speed_ratio", ChannelKind::LoadTipSpeedRatio(place), Dimension::One);
         add("power_coefficient", ChannelKind::LoadPowerCoefficient(place), Dimension::One);
+    }
+    if matches!(load.law, LoadLaw::AxialRotor { pitch_loop: Some(_), .. }) {
+        add("pitch", ChannelKind::LoadPitch(place), Dimension::Angle);
     }
 }

@@ -1,7 +1,7 @@
 //! The equations of one mode over one stretch of time, ready to be evaluated.
 
 use super::channels::{self, ChannelForm};
-use super::mode::{Contact, Mode};
+use super::mode::{Contact, Mode, Slewing};
 use super::parts::Parts;
 use super::{Equations, Factor, PowerKind, Shape, Sliding, StateRow, Target, dot};
 use crate::component::law::Law;
@@ -36,9 +36,11 @@ pub struct Active {
     /// Input as a form over the scaled state.
     pub input: StateRow,
     /// Added to the input.
-    pub offset: Option<(f64, SlotId)>,
+    pub offsets: Vec<(f64, SlotId)>,
     /// Parameters of the law.
     pub parameters: [Option<SlotId>; 2],
+    /// Added to the parameters: forms over the scaled state; empty for none.
+    pub by_state: [StateRow; 2],
     /// Offset and parameters where nothing of them follows time.
     pub fixed: (f64, [f64; 2]),
     /// True when its factor, offset or a parameter follows time within the stretch.
@@ -155,24 +157,36 @@ pub fn assemble(
                 .is_some_and(|scale| scale == 0.0);
             controller.integral == Some(place) && (*held || off)
         });
-        if held || equations.machines.iter().any(|machine| machine.is_off(mode, place)) {
+        let ended = equations.pitches.iter().zip(&mode.pitch_held);
+        let ended = ended.into_iter().any(|(pitch, held)| pitch.integral == place && *held != 0);
+        if held
+            || ended
+            || equations.machines.iter().any(|machine| machine.is_off(mode, place))
+            || mode.is_off(equations, place)
+        {
             continue;
         }
-        let factor = strength(&term.factor, &mut varies);
+        let mut factor = strength(&term.factor, &mut varies);
+        let slewing = mode.slewing_at(equations, place);
+        if let Some(Slewing::Rate(sign)) = slewing {
+            factor = Strength::Constant(sign);
+        }
         if factor == Strength::Constant(0.0) {
             continue;
         }
         let mut moving =
-            term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
+            term.offsets.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
         let moves =
             moving.any(|slot| equations.bank.constant_on(slot, start, end, overrides).is_none());
         varies |= moves;
         let column = match &term.target {
+            // A command that is out of reach moves nothing: the rate does.
+            _ if slewing == Some(Slewing::Command) => Vec::new(),
             Target::Torque(direction) => parts.column(direction),
             Target::State(state, rate) => vec![(*state, rate / equations.scale[*state])],
         };
-        if let (Shape::Linear, None, Strength::Constant(value)) =
-            (&term.shape, term.offset, &factor)
+        if let (Shape::Linear, [], Strength::Constant(value)) =
+            (&term.shape, term.offsets.as_slice(), &factor)
         {
             for &(row, share) in &column {
                 for &(state, weight) in &term.input {
@@ -190,7 +204,7 @@ pub fn assemble(
         let constant =
             |slot| equations.bank.constant_on(slot, start, end, overrides).unwrap_or(0.0);
         entry.fixed = (
-            term.offset.map_or(0.0, |(gain, slot)| gain * constant(slot)),
+            term.offsets.iter().map(|(gain, slot)| gain * constant(*slot)).sum(),
             term.parameters.map(|slot| slot.map_or(0.0, constant)),
         );
         entry.follows_time |= moves;
@@ -211,8 +225,9 @@ pub fn assemble(
                 }
             },
             input: friction.speed.clone(),
-            offset: None,
+            offsets: Vec::new(),
             parameters: [None; 2],
+            by_state: [Vec::new(), Vec::new()],
             fixed: (0.0, [0.0; 2]),
             follows_time: matches!(factor, Strength::Varying(_)),
             factor,
@@ -231,8 +246,9 @@ pub fn assemble(
             place: constant_place,
             function: Function::Law(Law::Unit, 0),
             input: Vec::new(),
-            offset: None,
+            offsets: Vec::new(),
             parameters: [None; 2],
+            by_state: [Vec::new(), Vec::new()],
             fixed: (0.0, [0.0; 2]),
             follows_time: false,
             factor: Strength::Constant(1.0),
@@ -251,9 +267,9 @@ pub fn assemble(
         }
     }
     add_rates(equations, &mut full);
-    for controller in &equations.controllers {
-        if let Some(state) = controller.torque_state {
-            full[(state, state)] -= 1.0 / controller.lag;
+    for (follower, slewing) in equations.followers.iter().zip(&mode.slewing) {
+        if *slewing == 0 {
+            full[(follower.state, follower.state)] -= 1.0 / follower.lag;
         }
     }
     let channels = channels::forms(equations, mode, &parts);
@@ -357,8 +373,9 @@ impl Active {
                 Shape::Products(list) => Function::Products(list.clone()),
             },
             input: term.input.clone(),
-            offset: term.offset,
+            offsets: term.offsets.clone(),
             parameters: term.parameters,
+            by_state: term.by_state.clone(),
             fixed: (0.0, [0.0; 2]),
             follows_time: matches!(factor, Strength::Varying(_)),
             factor,

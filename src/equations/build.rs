@@ -1,6 +1,7 @@
 //! From the model to states, terms, frictions and dampers.
 
 use super::build_motor::add_motor;
+use super::build_pitch::add_pitch;
 use super::{
     Damper, Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, Target, Term, speed_row,
 };
@@ -45,6 +46,8 @@ pub fn build(model: &Model) -> Equations {
         frictions: Vec::new(),
         dampers: Vec::new(),
         controllers: Vec::new(),
+        followers: Vec::new(),
+        pitches: Vec::new(),
         machines: Vec::new(),
         heats: Vec::new(),
         bank: SignalBank::new(&model.scenario.signals),
@@ -92,8 +95,9 @@ fn add_magnet(equations: &mut Equations, index: usize) {
         owner: Owner::Magnet(index),
         shape: Shape::Law(Law::Magnet(magnet.law.clone())),
         input: vec![(place, equations.scale[place])],
-        offset: None,
+        offsets: Vec::new(),
         parameters: [None; 2],
+        by_state: [Vec::new(), Vec::new()],
         factor: Factor::default(),
         target: Target::Torque(against),
         power: PowerKind::None,
@@ -112,8 +116,9 @@ fn add_magnet(equations: &mut Equations, index: usize) {
                 peak_at: fading.peak_at,
             }),
             input,
-            offset: None,
+            offsets: Vec::new(),
             parameters: [None; 2],
+            by_state: [Vec::new(), Vec::new()],
             factor: Factor::default(),
             target: Target::Torque(scaled.iter().map(|(body, factor)| (*body, -factor)).collect()),
             power: PowerKind::Lost,
@@ -148,8 +153,9 @@ fn add_cogging_and_drag(equations: &mut Equations, index: usize) {
                 phase: cogging.phase,
             }),
             input: vec![(place, equations.scale[place])],
-            offset: None,
+            offsets: Vec::new(),
             parameters: [None; 2],
+            by_state: [Vec::new(), Vec::new()],
             factor: Factor::default(),
             target: Target::Torque(row),
             power: PowerKind::None,
@@ -221,6 +227,7 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
     let owner = Owner::Load(index);
     let mut factor = factor_of(equations, "loads", &load.name, &load.scale);
     let mut parameters = [None; 2];
+    let mut by_state = [Vec::new(), Vec::new()];
     let mut own_speed = None;
     let mut input = speed.clone();
     let (shape, target) = match &load.law {
@@ -241,12 +248,15 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
             own_speed = Some(std::mem::take(&mut input));
             (Shape::Law(Law::Unit), direction.clone())
         }
-        LoadLaw::AxialRotor { flow, pitch, .. } => {
+        LoadLaw::AxialRotor { flow, pitch, pitch_loop, .. } => {
             let path = |key: &str| format!("loads.{}.law.axial_rotor.{key}", load.name);
-            parameters = [
-                Some(slot(equations, path("flow"), flow)),
-                Some(slot(equations, path("pitch"), pitch)),
-            ];
+            parameters[0] = Some(slot(equations, path("flow"), flow));
+            match pitch_loop {
+                Some(pitch_loop) => {
+                    by_state[1] = add_pitch(equations, index, load, pitch_loop);
+                }
+                None => parameters[1] = Some(slot(equations, path("pitch"), pitch)),
+            }
             let Some(law) = load.law.scalar() else { return };
             (Shape::Law(law), direction.clone())
         }
@@ -307,8 +317,9 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
         owner,
         shape,
         input,
-        offset: None,
+        offsets: Vec::new(),
         parameters,
+        by_state,
         factor,
         target: Target::Torque(target),
         power: PowerKind::Drive,

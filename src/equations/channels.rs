@@ -34,6 +34,10 @@ pub enum ChannelForm {
     Loss(Vec<(f64, StateRow)>, Vec<usize>),
     /// Flow, tip speed ratio or power coefficient of an axial rotor: its term and which one.
     Rotor(usize, RotorChannel),
+    /// Length of the stator current of a machine with flux equations: two states and their size.
+    Vector([usize; 2], f64),
+    /// Stator current of a circuit by its term.
+    CircuitCurrent(usize),
 }
 
 /// Channels of an axial rotor.
@@ -96,6 +100,7 @@ fn form(
             ChannelForm::Linear(torque_of(equations, Owner::Brake(index)))
         }
         ChannelKind::MotorPower(index) => power_of(equations, Owner::Motor(index)),
+        ChannelKind::MotorCurrent(index) => current(equations, index),
         ChannelKind::LoadPower(index) => power_of(equations, Owner::Load(index)),
         ChannelKind::BrakePower(index) => power_of(equations, Owner::Brake(index)),
         ChannelKind::LoadFlow(index) => rotor(equations, index, RotorChannel::Flow),
@@ -105,6 +110,14 @@ fn form(
         ChannelKind::LoadPowerCoefficient(index) => {
             rotor(equations, index, RotorChannel::PowerCoefficient)
         }
+        ChannelKind::LoadPitch(index) => linear(
+            equations
+                .pitches
+                .iter()
+                .filter(|pitch| pitch.load == index)
+                .map(|pitch| (pitch.state, equations.scale[pitch.state]))
+                .collect(),
+        ),
     }
 }
 
@@ -121,8 +134,25 @@ fn scaled(form: &LinearForm, factor: f64) -> LinearForm {
 }
 
 fn rotor(equations: &Equations, load: usize, what: RotorChannel) -> ChannelForm {
-    match equations.terms.iter().position(|term| term.owner == Owner::Load(load)) {
+    let acts = |term: &super::Term| {
+        term.owner == Owner::Load(load) && matches!(term.target, Target::Torque(_))
+    };
+    match equations.terms.iter().position(acts) {
         Some(term) => ChannelForm::Rotor(term, what),
+        None => linear(Vec::new()),
+    }
+}
+
+/// Root mean square of a line's current; with flux equations the length of the current's vector,
+/// which is the same in steady running.
+fn current(equations: &Equations, motor: usize) -> ChannelForm {
+    let machine = equations.machines.iter().find(|machine| machine.motor == motor);
+    if let Some(machine) = machine {
+        let [a, b, ..] = machine.states;
+        return ChannelForm::Vector([a, b], equations.scale[a]);
+    }
+    match equations.terms.iter().position(|term| term.owner == Owner::Motor(motor)) {
+        Some(term) => ChannelForm::CircuitCurrent(term),
         None => linear(Vec::new()),
     }
 }

@@ -2,6 +2,7 @@
 
 use super::assembly::{Assembly, Function};
 use super::frame::Evaluator;
+use super::parameters_at;
 use nalgebra::DMatrix;
 use nalgebra::linalg::Schur;
 
@@ -45,8 +46,17 @@ pub fn jacobian(
                 magnet.amplitude() * magnet.steepest()
             }
             Function::Law(law, piece) => {
-                let [first, second] = active.parameters;
-                law.slope(input, [first.map_or(0.0, signal), second.map_or(0.0, signal)], *piece)
+                let parameters = parameters_at(active.parameters, &active.by_state, state, signal);
+                let slopes = law.parameter_slopes(input, parameters, *piece);
+                let strength = evaluator.strength(&active.factor, time);
+                for (form, slope) in active.by_state.iter().zip(slopes) {
+                    for &(row, share) in &active.column {
+                        for &(column, weight) in form {
+                            matrix[(row, column)] += share * slope * strength * weight;
+                        }
+                    }
+                }
+                law.slope(input, parameters, *piece)
             }
             Function::Linear => 1.0,
             Function::Products(_) => 0.0,

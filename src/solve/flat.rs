@@ -143,7 +143,8 @@ fn line(active: &Active) -> Line {
 
 /// The kernel of a term and what its factor is multiplied with.
 fn kernel(active: &Active) -> (Kernel, f64) {
-    if active.follows_time || active.input.len() > 1 {
+    let by_state = active.by_state.iter().any(|form| !form.is_empty());
+    if active.follows_time || active.input.len() > 1 || by_state {
         return (Kernel::Other, 1.0);
     }
     match &active.function {

@@ -6,6 +6,7 @@ pub mod conditions;
 pub mod dense;
 pub mod extremes;
 mod flat;
+mod following;
 pub mod gears;
 pub mod guards;
 pub mod integrate;

@@ -10,6 +10,7 @@
 mod checking;
 mod commands;
 mod convergence;
+mod drives;
 mod endings;
 mod energy;
 mod equal_area;
@@ -25,6 +26,7 @@ mod motors;
 mod oscillator;
 mod output;
 mod pendulum;
+mod pitch;
 mod protections;
 mod signals;
 mod slipping;

@@ -82,16 +82,22 @@ pub fn find(
     for (place, value) in &deformations {
         state[*place] = value / equations.scale[*place];
     }
+    let external = External { equations, time, overrides };
     for (index, controller) in equations.controllers.iter().enumerate() {
         let torque = balance.command[index];
         if let Some(place) = controller.integral_state {
-            state[place] = torque / equations.scale[place];
+            state[place] = (torque - external.feed_forward(index)) / equations.scale[place];
         }
         if let Some(place) = controller.torque_state {
             state[place] = torque / equations.scale[place];
         }
     }
-    let external = External { equations, time, overrides };
+    for (index, pitch) in equations.pitches.iter().enumerate() {
+        let angle = balance.command[equations.controllers.len() + index];
+        for place in [pitch.state, pitch.integral_state] {
+            state[place] = angle / equations.scale[place];
+        }
+    }
     for machine in &equations.machines {
         machine.settle(&mut state, &equations.scale, external.machine_voltage(machine));
     }
