@@ -4,7 +4,8 @@ use super::body::Body;
 use super::brake::Brake;
 use super::gear_pair::GearPair;
 use super::load::{Load, LoadLaw};
-use super::magnetic_gear::{MagneticCoupling, MagneticGear};
+use super::magnet_temperature::{HALVES, ROTORS};
+use super::magnetic_gear::{Field, MagneticCoupling, MagneticGear};
 use super::motor::{Motor, MotorLaw};
 use super::planetary::PlanetaryGear;
 use super::shaft::Shaft;
@@ -83,6 +84,12 @@ pub enum MagneticChannel {
     SlipSpeed,
     /// Damper's power, W, never negative.
     Loss,
+    /// What hysteresis takes, W.
+    HysteresisLoss,
+    /// What eddy currents take, W.
+    EddyLoss,
+    /// Temperature of the magnets of a thermal node, degC.
+    Temperature(usize),
     /// Torque on the inner rotor (coupling: a).
     TorqueFirst,
     /// Torque on the outer rotor (coupling: b).
@@ -113,11 +120,12 @@ pub fn dimension_of(channel: &str) -> Option<Dimension> {
     Some(match quantity {
         "speed" | "slip_speed" => Dimension::Speed,
         "angle" | "twist" | "load_angle" | "phase" | "pitch" => Dimension::Angle,
-        "power" | "loss" => Dimension::Power,
+        "power" | "loss" | "hysteresis_loss" | "eddy_loss" => Dimension::Power,
         "flow" => Dimension::LinearSpeed,
         "current" => Dimension::Current,
         "slips" | "net_slips" | "pull_out_share" | "short_of_peak" | "tip_speed_ratio"
         | "power_coefficient" => Dimension::One,
+        _ if quantity.starts_with("magnet_temperature") => Dimension::Temperature,
         _ if quantity.starts_with("torque") => Dimension::Torque,
         _ => return None,
     })
@@ -223,12 +231,24 @@ pub fn list(train: &Train<'_>, order: &[Section]) -> Vec<Channel> {
             Section::MagneticGears => {
                 for (place, gear) in train.magnetic_gears.iter().enumerate() {
                     magnetic(&mut channels, &gear.name, place, false);
+                    if gear.losses.is_some() {
+                        let mut add = adder(&mut channels, &gear.name);
+                        for (channel, kind) in [
+                            ("hysteresis_loss", MagneticChannel::HysteresisLoss),
+                            ("eddy_loss", MagneticChannel::EddyLoss),
+                        ] {
+                            add(channel, ChannelKind::Magnetic(place, kind), Dimension::Power);
+                        }
+                    }
+                    temperatures(&mut channels, &gear.name, place, &gear.field, ROTORS);
                 }
             }
             Section::MagneticCouplings => {
                 let gears = train.magnetic_gears.len();
                 for (place, coupling) in train.magnetic_couplings.iter().enumerate() {
                     magnetic(&mut channels, &coupling.name, gears + place, true);
+                    let (name, place) = (&coupling.name, gears + place);
+                    temperatures(&mut channels, name, place, &coupling.field, HALVES);
                 }
             }
             Section::GearPairs => {
@@ -314,6 +334,26 @@ fn magnetic(channels: &mut Vec<Channel>, name: &str, place: usize, coupling: boo
     if !coupling {
         let kind = ChannelKind::Magnetic(place, M::TorqueModulator);
         add("torque_modulator", kind, Dimension::Torque);
+    }
+}
+
+/// `magnet_temperature` of the one node, or one a member.
+fn temperatures(
+    channels: &mut Vec<Channel>,
+    name: &str,
+    place: usize,
+    field: &Field,
+    members: [&str; 2],
+) {
+    let Some(thermal) = &field.warmth.thermal else { return };
+    let mut add = adder(channels, name);
+    for (node, member) in members.iter().enumerate().take(thermal.nodes().count()) {
+        let channel = match thermal.second {
+            Some(_) => format!("magnet_temperature_{member}"),
+            None => "magnet_temperature".to_owned(),
+        };
+        let kind = ChannelKind::Magnetic(place, MagneticChannel::Temperature(node));
+        add(&channel, kind, Dimension::Temperature);
     }
 }
 

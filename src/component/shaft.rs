@@ -52,6 +52,11 @@ impl Shaft {
             |stiffness| stiffness,
             read_solid,
         );
+        let solid = fields.group_optional(
+            "solid",
+            "The dimensions of a round solid or hollow shaft, instead of stiffness.",
+            read_solid,
+        );
         let coefficient = fields.quantity_optional(
             "damping",
             Dimension::Damping,
@@ -79,15 +84,17 @@ impl Shaft {
             torque(fields, "rated_torque", "Torque for utilisation in long running.");
         let peak_torque = torque(fields, "peak_torque", "Torque for utilisation at peaks.");
         if rigid {
-            for key in ["stiffness", "damping", "damping_ratio", "backlash"] {
+            for key in ["stiffness", "solid", "damping", "damping_ratio", "backlash"] {
                 if fields.has(key) {
                     fields.fault(key, format!("a rigid shaft takes no `{key}`"));
                 }
             }
-        } else if stiffness.is_none() && !fields.has("stiffness") {
+        } else if fields.has("stiffness") && fields.has("solid") {
+            fields.fault("solid", "`stiffness` and `solid` exclude each other");
+        } else if !fields.has("stiffness") && !fields.has("solid") {
             fields.miss(
                 "stiffness",
-                "give stiffness, or `rigid: true` for two bodies that turn as one",
+                "give stiffness, or `solid` with its dimensions, or `rigid: true` for two bodies that turn as one",
             );
         }
         if coefficient.is_some() && ratio.is_some() {
@@ -96,7 +103,7 @@ impl Shaft {
         Self {
             name: fields.own_name().to_owned(),
             between,
-            stiffness: stiffness.unwrap_or(f64::NAN),
+            stiffness: stiffness.or(solid).unwrap_or(f64::NAN),
             damping: match (ratio, coefficient) {
                 (Some(ratio), _) => ShaftDamping::Ratio(ratio),
                 (None, coefficient) => ShaftDamping::Coefficient(coefficient.unwrap_or(0.0)),

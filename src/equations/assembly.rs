@@ -3,7 +3,7 @@
 use super::channels::{self, ChannelForm};
 use super::mode::{Contact, Mode, Slewing};
 use super::parts::Parts;
-use super::{Equations, Factor, PowerKind, Shape, Sliding, StateRow, Target, dot};
+use super::{Equations, Factor, Gain, PowerKind, Shape, Sliding, StateRow, Target, dot};
 use crate::component::law::Law;
 use crate::model::BodyRow;
 use crate::signal::course::{Overrides, SlotId};
@@ -66,6 +66,8 @@ pub enum Function {
     Linear,
     /// A sum of products of two states each.
     Products(Vec<(usize, usize, f64)>),
+    /// A law times gains that follow other states.
+    Warm(Law, Vec<Gain>),
     /// Friction of constant size against this direction.
     Friction(f64, f64),
 }
@@ -157,10 +159,7 @@ pub fn assemble(
                 .is_some_and(|scale| scale == 0.0);
             controller.integral == Some(place) && (*held || off)
         });
-        let ended = equations.pitches.iter().zip(&mode.pitch_held);
-        let ended = ended.into_iter().any(|(pitch, held)| pitch.integral == place && *held != 0);
         if held
-            || ended
             || equations.machines.iter().any(|machine| machine.is_off(mode, place))
             || mode.is_off(equations, place)
         {
@@ -272,6 +271,7 @@ pub fn assemble(
             full[(follower.state, follower.state)] -= 1.0 / follower.lag;
         }
     }
+    super::thermal::add_flows(equations, &mut full);
     let channels = channels::forms(equations, mode, &parts);
     let (stuck_drive, stuck_compliance) = parts.stuck_forms(equations);
     Assembly {
@@ -371,6 +371,7 @@ impl Active {
                 Shape::Law(law) => Function::Law(law.clone(), piece),
                 Shape::Linear => Function::Linear,
                 Shape::Products(list) => Function::Products(list.clone()),
+                Shape::Warm(law, gains) => Function::Warm(law.clone(), gains.clone()),
             },
             input: term.input.clone(),
             offsets: term.offsets.clone(),

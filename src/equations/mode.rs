@@ -106,7 +106,7 @@ impl Mode {
                         let input = input(equations, term, time, state, overrides);
                         law.piece(input, parameters(equations, term, time, state, overrides))
                     }
-                    Shape::Linear | Shape::Products(_) => 0,
+                    Shape::Linear | Shape::Products(_) | Shape::Warm(..) => 0,
                 })
                 .chain(equations.frictions.iter().map(|_| 0))
                 .collect(),
@@ -165,8 +165,13 @@ impl Mode {
             usize::from(command > edges[0]) + usize::from(command >= edges[1]);
     }
 
-    /// True for the limit of a command that does not stand at it.
+    /// True for the limit of a command that does not stand at it, and for what feeds the integral of
+    /// a pitch loop at the end of its way.
     pub fn is_off(&self, equations: &Equations, term: usize) -> bool {
+        let mut pitches = equations.pitches.iter().zip(&self.pitch_held);
+        if pitches.any(|(pitch, held)| pitch.integral == term && *held != 0) {
+            return true;
+        }
         equations.controllers.iter().any(|controller| {
             controller.moving_limits.is_some_and(|limits| {
                 let piece = self.pieces[controller.command];

@@ -297,6 +297,10 @@ impl Run<'_, '_> {
             let motor = &scenario.motors[machine.motor];
             return format!("current and flux of `{}`", motor.name);
         }
+        if let Some(node) = self.equations.thermal.iter().find(|node| node.place == place) {
+            let magnet = &self.equations.model.magnets[node.magnet];
+            return format!("the temperature of the magnets of `{}`", magnet.name);
+        }
         "a controller".to_owned()
     }
 

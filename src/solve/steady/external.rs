@@ -203,6 +203,8 @@ impl External<'_> {
         let input = self.input(term, state);
         match &term.shape {
             Shape::Linear => input,
+            // The torque of magnets is that of the train's own deformation.
+            Shape::Warm(..) => 0.0,
             // Of products of states only a machine's torque reaches the train.
             Shape::Products(_) => self.machine(term, input),
             // Torques over an angle count by their mean over a turn, which is zero.
