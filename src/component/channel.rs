@@ -1,17 +1,20 @@
 //! Channels: every quantity of a train that can be asked for by name.
 
+mod things;
+
 use super::body::Body;
 use super::brake::Brake;
-use super::clutch::{Clutch, ClutchKind};
+use super::clutch::Clutch;
 use super::fluid_coupling::FluidCoupling;
 use super::gear_pair::GearPair;
-use super::load::{Load, LoadLaw};
+use super::load::Load;
 use super::magnet_temperature::{HALVES, ROTORS};
-use super::magnetic_gear::{Field, MagneticCoupling, MagneticGear};
-use super::motor::Motor;
+use super::magnetic_gear::{MagneticCoupling, MagneticGear};
+use super::motor::{Motor, MotorLaw};
 use super::planetary::PlanetaryGear;
 use super::shaft::Shaft;
 use crate::quantity::Dimension;
+use things::{adder, between, clutches, load_channels, magnetic, temperatures};
 
 /// One channel.
 #[derive(Clone, Debug, PartialEq)]
@@ -53,6 +56,8 @@ pub enum ChannelKind {
     MotorTorque(usize),
     /// Power of a motor into the train.
     MotorPower(usize),
+    /// Current of a line of an induction motor by its circuit.
+    MotorCurrent(usize),
     /// Torque of a load on its body.
     LoadTorque(usize),
     /// Power of a load into the train.
@@ -67,6 +72,8 @@ pub enum ChannelKind {
     LoadTipSpeedRatio(usize),
     /// Power coefficient of an axial rotor, 0 while the flow is not positive.
     LoadPowerCoefficient(usize),
+    /// Pitch of an axial rotor with a pitch loop.
+    LoadPitch(usize),
 }
 
 /// Channels of a magnetic gear or coupling.
@@ -134,9 +141,10 @@ pub fn dimension_of(channel: &str) -> Option<Dimension> {
     let quantity = channel.split_once('.')?.1;
     Some(match quantity {
         "speed" | "slip_speed" => Dimension::Speed,
-        "angle" | "twist" | "load_angle" | "phase" => Dimension::Angle,
+        "angle" | "twist" | "load_angle" | "phase" | "pitch" => Dimension::Angle,
         "power" | "loss" | "hysteresis_loss" | "eddy_loss" => Dimension::Power,
         "flow" => Dimension::LinearSpeed,
+        "current" => Dimension::Current,
         "slips" | "net_slips" | "pull_out_share" | "short_of_peak" | "tip_speed_ratio"
         | "power_coefficient" => Dimension::One,
         _ if quantity.starts_with("magnet_temperature") => Dimension::Temperature,
@@ -316,6 +324,9 @@ pub fn list(train: &Train<'_>, order: &[Section]) -> Vec<Channel> {
                     let mut add = adder(&mut channels, &motor.name);
                     add("torque", ChannelKind::MotorTorque(place), Dimension::Torque);
                     add("power", ChannelKind::MotorPower(place), Dimension::Power);
+                    if matches!(motor.law, MotorLaw::InductionCircuit { .. }) {
+                        add("current", ChannelKind::MotorCurrent(place), Dimension::Current);
+                    }
                 }
             }
             Section::Loads => {
@@ -333,91 +344,4 @@ pub fn list(train: &Train<'_>, order: &[Section]) -> Vec<Channel> {
         }
     }
     channels
-}
-
-/// A closure that appends channels of one thing.
-fn adder<'a>(
-    channels: &'a mut Vec<Channel>,
-    thing: &'a str,
-) -> impl FnMut(&str, ChannelKind, Dimension) + 'a {
-    move |channel, kind, dimension| {
-        channels.push(Channel {
-            name: format!("{thing}.{channel}"),
-            kind,
-            dimension,
-            unit: dimension.si_unit(),
-        });
-    }
-}
-
-fn magnetic(channels: &mut Vec<Channel>, name: &str, place: usize, coupling: bool) {
-    use MagneticChannel as M;
-    let (first, second) =
-        if coupling { ("torque_a", "torque_b") } else { ("torque_inner", "torque_outer") };
-    let mut add = adder(channels, name);
-    for (channel, kind, dimension) in [
-        ("load_angle", M::LoadAngle, Dimension::Angle),
-        ("phase", M::Phase, Dimension::Angle),
-        ("slips", M::Slips, Dimension::One),
-        ("net_slips", M::NetSlips, Dimension::One),
-        ("pull_out_share", M::PullOutShare, Dimension::One),
-        ("short_of_peak", M::ShortOfPeak, Dimension::One),
-        ("slip_speed", M::SlipSpeed, Dimension::Speed),
-        ("loss", M::Loss, Dimension::Power),
-        (first, M::TorqueFirst, Dimension::Torque),
-        (second, M::TorqueSecond, Dimension::Torque),
-    ] {
-        add(channel, ChannelKind::Magnetic(place, kind), dimension);
-    }
-    if !coupling {
-        let kind = ChannelKind::Magnetic(place, M::TorqueModulator);
-        add("torque_modulator", kind, Dimension::Torque);
-    }
-}
-
-/// `magnet_temperature` of the one node, or one a member.
-fn temperatures(
-    channels: &mut Vec<Channel>,
-    name: &str,
-    place: usize,
-    field: &Field,
-    members: [&str; 2],
-) {
-    let Some(thermal) = &field.warmth.thermal else { return };
-    let mut add = adder(channels, name);
-    for (node, member) in members.iter().enumerate().take(thermal.nodes().count()) {
-        let channel = match thermal.second {
-            Some(_) => format!("magnet_temperature_{member}"),
-            None => "magnet_temperature".to_owned(),
-        };
-        let kind = ChannelKind::Magnetic(place, MagneticChannel::Temperature(node));
-        add(&channel, kind, Dimension::Temperature);
-    }
-}
-
-fn clutches(channels: &mut Vec<Channel>, list: &[Clutch], overrunning: bool) {
-    for (place, clutch) in list.iter().enumerate() {
-        if matches!(clutch.kind, ClutchKind::Overrunning { .. }) != overrunning {
-            continue;
-        }
-        between(channels, &clutch.name, &|what| ChannelKind::Clutch(place, what));
-    }
-}
-
-fn between(channels: &mut Vec<Channel>, name: &str, kind: &dyn Fn(ClutchChannel) -> ChannelKind) {
-    let mut add = adder(channels, name);
-    add("torque", kind(ClutchChannel::Torque), Dimension::Torque);
-    add("slip_speed", kind(ClutchChannel::SlipSpeed), Dimension::Speed);
-    add("loss", kind(ClutchChannel::Loss), Dimension::Power);
-}
-
-fn load_channels(channels: &mut Vec<Channel>, load: &Load, place: usize) {
-    let mut add = adder(channels, &load.name);
-    add("torque", ChannelKind::LoadTorque(place), Dimension::Torque);
-    add("power", ChannelKind::LoadPower(place), Dimension::Power);
-    if matches!(load.law, LoadLaw::AxialRotor { .. }) {
-        add("flow", ChannelKind::LoadFlow(place), Dimension::LinearSpeed);
-        add("tip_speed_ratio", ChannelKind::LoadTipSpeedRatio(place), Dimension::One);
-        add("power_coefficient", ChannelKind::LoadPowerCoefficient(place), Dimension::One);
-    }
 }

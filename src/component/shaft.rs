@@ -269,7 +269,7 @@ mod tests {
             ("shear_modulus".into(), text("80 GPa")),
         ]);
         let faults = RefCell::new(Diagnostics::new());
-        let stiffness = Fields::read("s", &node, &faults, |fields| read_solid(fields, false));
+        let stiffness = Fields::read("s", &node, &faults, |fields| read_solid(fields, None));
         assert!(faults.borrow().is_empty());
         assert!((stiffness / 127_234.5 - 1.0).abs() < 1e-6, "{stiffness}");
     }

@@ -2,7 +2,7 @@
 
 use super::assembly::{Active, Assembly, Function};
 use super::frame::Evaluator;
-use super::{StateRow, dot, thermal};
+use super::{StateRow, dot, parameters_at, thermal};
 use crate::component::law::Law;
 use nalgebra::DMatrix;
 use nalgebra::linalg::Schur;
@@ -72,8 +72,17 @@ pub fn jacobian(
                 law.slope(input, [0.0; 2], 0) * thermal::product(gains, state)
             }
             Function::Law(law, piece) => {
-                let [first, second] = active.parameters;
-                law.slope(input, [first.map_or(0.0, signal), second.map_or(0.0, signal)], *piece)
+                let parameters = parameters_at(active.parameters, &active.by_state, state, signal);
+                let slopes = law.parameter_slopes(input, parameters, *piece);
+                let strength = evaluator.strength(&active.factor, time);
+                for (form, slope) in active.by_state.iter().zip(slopes) {
+                    for &(row, share) in &active.column {
+                        for &(column, weight) in form {
+                            matrix[(row, column)] += share * slope * strength * weight;
+                        }
+                    }
+                }
+                law.slope(input, parameters, *piece)
             }
             Function::Linear => 1.0,
             Function::Products(_) | Function::Pair(..) => 0.0,

@@ -44,7 +44,7 @@ impl Tables {
                 }
             };
         let mut fill = |path: &str, signal: &mut Signal| signal.load_tables(path, &mut load);
-        super::signals::each_with_table(scenario, &mut fill);
+        super::table_places::each_with_table(scenario, &mut fill);
         self.fill_torques(scenario, faults);
         for record in &mut scenario.measured {
             let named = [&record.file, &record.columns.time, &record.columns.value];

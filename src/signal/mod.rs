@@ -87,6 +87,17 @@ pub enum Signal {
         /// Gust magnitude of the standard, m/s.
         magnitude: f64,
     },
+    /// IEC 61400-1 extreme coherent gust: it rises and stays.
+    CoherentGust {
+        /// Start, s.
+        start: f64,
+        /// Wind speed at the hub before the gust, m/s.
+        hub_wind: f64,
+        /// By how much it rises, m/s.
+        rise: f64,
+        /// In what time, s.
+        rise_time: f64,
+    },
     /// Turbulent wind at a point by Kaimal's spectrum.
     Turbulence(turbulence::Spectrum),
     /// Sum of signals of one dimension.

@@ -148,7 +148,8 @@ fn line(active: &Active) -> Line {
 
 /// The kernel of a term and what its factor is multiplied with.
 fn kernel(active: &Active) -> (Kernel, f64) {
-    if active.follows_time || active.input.len() > 1 {
+    let by_state = active.by_state.iter().any(|form| !form.is_empty());
+    if active.follows_time || active.input.len() > 1 || by_state {
         let alone = matches!(active.function, Function::Law(Law::Unit, _));
         return (if alone { Kernel::Followed } else { Kernel::Other }, 1.0);
     }

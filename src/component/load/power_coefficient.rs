@@ -79,20 +79,41 @@ impl Rows {
         [(before, -left), (low, 1.0 - first - right), (high, first + left), (after, right)]
     }
 
+    /// Derivatives of the weights with respect to the pitch.
+    fn weight_slopes(&self, pitch: f64) -> Weights {
+        let count = self.pitches.len();
+        let above = self.pitches.partition_point(|known| *known <= pitch);
+        if above == 0 || above == count || count < 2 {
+            return [(0, 0.0); 4];
+        }
+        let (low, high) = (above - 1, above);
+        let (before, after) = (low.saturating_sub(1), (high + 1).min(count - 1));
+        let at = |column: usize| self.pitches[column];
+        let width = at(high) - at(low);
+        let u = (pitch - at(low)) / width;
+        let first = 6.0 * u * (1.0 - u) / width;
+        let left = (1.0 - u) * (1.0 - 3.0 * u) / (at(high) - at(before));
+        let right = -u * (2.0 - 3.0 * u) / (at(after) - at(low));
+        [(before, -left), (low, -first - right), (high, first + left), (after, right)]
+    }
+
     /// Value and derivative over the tip speed ratio on the line of `piece`.
     fn at(&self, ratio: f64, pitch: f64, piece: usize) -> (f64, f64) {
-        let weights = self.weights(pitch);
+        self.by_weights(ratio, piece, &self.weights(pitch))
+    }
+
+    fn by_weights(&self, ratio: f64, piece: usize, weights: &Weights) -> (f64, f64) {
         let last = self.ratios.len().saturating_sub(1);
         if piece == 0 {
             let first = self.ratios.first().copied().unwrap_or(1.0);
-            let slope = if first > 0.0 { self.row(0, &weights) / first } else { 0.0 };
+            let slope = if first > 0.0 { self.row(0, weights) / first } else { 0.0 };
             return (slope * ratio, slope);
         }
         if piece > last {
-            return (self.row(last, &weights), 0.0);
+            return (self.row(last, weights), 0.0);
         }
         let (from, to) = (self.ratios[piece - 1], self.ratios[piece]);
-        let (low, high) = (self.row(piece - 1, &weights), self.row(piece, &weights));
+        let (low, high) = (self.row(piece - 1, weights), self.row(piece, weights));
         let slope = (high - low) / (to - from);
         (low + slope * (ratio - from), slope)
     }
@@ -109,6 +130,26 @@ impl PowerCoefficient {
             Self::Formula(constants) => formula(constants, ratio, pitch),
             Self::Constant(value) => (*value, 0.0),
             Self::Rows(rows) => rows.at(ratio, pitch, piece),
+        }
+    }
+
+    /// Derivative with respect to the pitch, 1/rad.
+    pub fn pitch_slope(&self, ratio: f64, pitch: f64, piece: usize) -> f64 {
+        match self {
+            Self::Formula(constants) => formula_over_pitch(constants, ratio, pitch),
+            Self::Constant(_) => 0.0,
+            Self::Rows(rows) => rows.by_weights(ratio, piece, &rows.weight_slopes(pitch)).0,
+        }
+    }
+
+    /// True when the pitch changes anything.
+    pub fn follows_pitch(&self) -> bool {
+        match self {
+            Self::Formula([_, _, c3, c4, _, _, _, c8, c9, _]) => {
+                [c3, c4, c8, c9].iter().any(|constant| **constant != 0.0)
+            }
+            Self::Constant(_) => false,
+            Self::Rows(rows) => rows.pitches.len() > 1,
         }
     }
 
@@ -141,6 +182,30 @@ fn formula(constants: &[f64; 10], ratio: f64, pitch: f64) -> (f64, f64) {
     }
     let blade = c2 * z - bias;
     (decay * blade + c10 * ratio, decay * (c7 * blade - c2) * inverse * inverse + c10)
+}
+
+/// Derivative of the formula with respect to the pitch, 1/rad.
+fn formula_over_pitch(constants: &[f64; 10], ratio: f64, pitch: f64) -> f64 {
+    let [c1, c2, c3, c4, c5, c6, c7, c8, c9, _] = *constants;
+    let degrees = pitch.to_degrees();
+    let reach = ratio + c8 * degrees;
+    if degrees <= 0.0 || reach <= 0.0 {
+        return 0.0;
+    }
+    let (power, power_slope) = if c4 == 0.0 {
+        (0.0, 0.0)
+    } else {
+        (c4 * degrees.powf(c5), c4 * c5 * degrees.powf(c5 - 1.0))
+    };
+    let below = degrees * degrees * degrees + 1.0;
+    let z = 1.0 / reach - c9 / below;
+    let decay = c1 * (-c7 * z).exp();
+    if decay == 0.0 {
+        return 0.0;
+    }
+    let z_slope = -c8 / (reach * reach) + 3.0 * c9 * degrees * degrees / (below * below);
+    let blade = c2 * z - (c3 * degrees + power + c6);
+    decay * (c2 * z_slope - c3 - power_slope - c7 * z_slope * blade) * 1.0_f64.to_degrees()
 }
 
 #[cfg(test)]
