@@ -70,6 +70,12 @@ pub struct GearResult {
     pub natural_period: f64,
     /// Time spent past the peak, s.
     pub time_past_peak: f64,
+    /// Time spent slipping, from each first slip to being back in step or the end, s.
+    pub slipping_time: f64,
+    /// The longest of these stretches, s.
+    pub longest_slipping: f64,
+    /// When that one began, s.
+    pub longest_slipping_from: f64,
     /// Each slip.
     pub slip_events: Vec<SlipEvent>,
 }

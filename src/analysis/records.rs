@@ -87,6 +87,12 @@ impl<'a> Follower<'a> {
     }
 }
 
+impl RowSink for Follower<'_> {
+    fn row(&mut self, time: f64, values: &[f64]) {
+        self.take(time, values);
+    }
+}
+
 /// Rows of a run for two readers.
 pub struct Shared<'a, 'b> {
     /// The one that writes them.

@@ -199,6 +199,7 @@ mod tests {
             amplitude: 1.0,
             damping,
             fading: None,
+            warmth: crate::component::magnet_temperature::Warmth::default(),
             start_phase: 0.0,
             phase_inertia: 1.0,
         }

@@ -8,6 +8,8 @@
 //! ```
 
 use crate::analysis::poles::PolePairs;
+use crate::component::magnet_losses::Losses;
+use crate::component::magnetic_gear::{MagneticGear, Member};
 use crate::model::elimination::{self, Constraint, Reduction};
 use crate::model::magnet::Magnet;
 use crate::model::{Model, ShaftModel};
@@ -84,6 +86,25 @@ pub struct MagnetFigures {
     pub temperature_factor: f64,
     /// The law's peaks, electrical rad.
     pub law_peaks: [f64; 2],
+    /// Losses without load, when they are stated.
+    pub losses: Option<LossFigures>,
+    /// Time constants of its thermal nodes, each by itself, s.
+    pub thermal_times: Vec<f64>,
+}
+
+/// Losses of a gear in step without load.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct LossFigures {
+    /// The rotor whose speed is stated.
+    pub rotor: &'static str,
+    /// Its speed against the modulator, rad/s.
+    pub speed: f64,
+    /// W.
+    pub hysteresis: f64,
+    /// W.
+    pub eddy: f64,
+    /// Frequencies of the field in the inner rotor, the pieces and the outer rotor, Hz.
+    pub frequencies: [f64; 3],
 }
 
 /// Figures of a member.
@@ -226,7 +247,24 @@ fn magnet_figures(model: &Model, magnet: &Magnet, rigid: &Reduction) -> MagnetFi
         natural_frequency: magnet.natural_frequency() / TAU,
         damping_ratio: damping / (2.0 * (stiffness * magnet.phase_inertia).sqrt()),
         phase_inertia: magnet.phase_inertia,
-        temperature_factor: field.map_or(1.0, |field| field.temperature_factor),
+        temperature_factor: field.map_or(1.0, |field| field.warmth.factor()),
         law_peaks: magnet.law.peaks(),
+        losses: gear.and_then(|gear| Some(loss_figures(gear, gear.losses?))),
+        thermal_times: field
+            .and_then(|field| field.warmth.thermal)
+            .map(|thermal| thermal.nodes().map(|node| node.capacity * node.resistance).collect())
+            .unwrap_or_default(),
+    }
+}
+
+fn loss_figures(gear: &MagneticGear, losses: Losses) -> LossFigures {
+    let pairs = [f64::from(gear.inner_pole_pairs), f64::from(gear.outer_pole_pairs)];
+    let [hysteresis, eddy] = losses.whole();
+    LossFigures {
+        rotor: if losses.at == Member::Outer { "outer" } else { "inner" },
+        speed: losses.speed,
+        hysteresis,
+        eddy,
+        frequencies: losses.frequencies(pairs),
     }
 }

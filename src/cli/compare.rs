@@ -7,6 +7,7 @@ use super::run::{judge, tell_failure, tell_warnings};
 use super::status::Status;
 use super::{Common, Format, streams};
 use crate::analysis::comparison::{self, Comparison, Subject};
+use crate::analysis::records::{Follower, RecordComparison};
 use crate::analysis::train;
 use crate::analysis::transient::{prepare, run_prepared};
 use crate::diagnostic::Severity;
@@ -46,6 +47,7 @@ struct Run {
     wanted: Wanted,
     loaded: Loaded,
     result: RunResult,
+    records: Vec<RecordComparison>,
     equations: Option<Equations>,
     kept: Option<Kept>,
     status: Status,
@@ -129,6 +131,7 @@ fn made(
         wanted: Wanted { sets: kept.loaded.source.sets.clone(), ..wanted },
         loaded: kept.loaded.clone(),
         result: kept.result.clone(),
+        records: kept.records.clone(),
         equations: prepare(&kept.loaded.scenario).ok(),
         kept: Some(kept),
         status: if met { Status::Done } else { Status::NotMet },
@@ -154,7 +157,9 @@ fn fresh(
     let equations = prepare(&loaded.scenario).map_err(at_fault)?;
     let mut progress = Progress::new(loaded.scenario.duration, common.quiet);
     let mut show = |time: f64| progress.at(time);
+    let mut follower = Follower::new(&loaded.scenario);
     let options = RunOptions {
+        rows: Some(&mut follower),
         traces: (!common.no_charts).then(|| charts::request(&equations)),
         interrupt: Some(interrupt.flag()),
         progress: Some(&mut show),
@@ -163,6 +168,7 @@ fn fresh(
     let outcome = run_prepared(&equations, options);
     progress.end();
     let mut result = outcome.map_err(at_fault)?;
+    let records = follower.finish();
     let typed = loaded
         .warnings
         .warnings()
@@ -176,7 +182,7 @@ fn fresh(
     tell_warnings(&loaded.source, &new);
     let status = judge(&result, interrupt);
     tell_failure(&result, status);
-    Ok(Run { wanted, loaded, result, equations: Some(equations), kept: None, status })
+    Ok(Run { wanted, loaded, result, records, equations: Some(equations), kept: None, status })
 }
 
 /// The chart of a run on its own; `Err` says why there is none.
@@ -197,7 +203,12 @@ fn chart(run: &Run, display: &Display) -> Result<RunChart, String> {
 fn write(runs: &[Run], out: &Path, common: &Common) -> Result<(String, String), FolderFault> {
     let subjects: Vec<Subject<'_>> = runs
         .iter()
-        .map(|run| Subject { name: &run.wanted.name, node: &run.loaded.node, result: &run.result })
+        .map(|run| Subject {
+            name: &run.wanted.name,
+            node: &run.loaded.node,
+            result: &run.result,
+            records: &run.records,
+        })
         .collect();
     let comparison: Comparison = comparison::compare(&subjects);
     let origins: Vec<Origin> = runs.iter().map(origin).collect();

@@ -47,6 +47,17 @@ pub enum Law {
         /// Phase, rad.
         phase: f64,
     },
+    /// Power that a drag or a damper turns to heat, W, over its relative speed, rad/s.
+    LossHeat {
+        /// Torque against the motion at any speed, N*m.
+        constant: f64,
+        /// Torque over the speed, N*m*s/rad.
+        coefficient: f64,
+        /// Speed of the damper's largest torque, rad/s; infinite for a straight line.
+        peak_at: f64,
+    },
+    /// Energy of a magnet's field over the phase, J, zero at the stable point.
+    MagnetEnergy(MagnetLaw),
     /// Induction motor by Kloss's formula; the input is the body's speed, rad/s.
     Induction(Induction),
     /// Cage motor by its rating plate; the input is the body's speed, rad/s.
@@ -96,6 +107,11 @@ impl Law {
                 coefficient * x / (1.0 + share * share)
             }
             Self::Cogging { order, torque, phase } => -torque * (order * x + phase).sin(),
+            Self::LossHeat { constant, coefficient, peak_at } => {
+                let share = x / peak_at;
+                constant * x.abs() + coefficient * x * x / (1.0 + share * share)
+            }
+            Self::MagnetEnergy(magnet) => magnet.energy(x),
             Self::Induction(motor) => motor.value(x),
             Self::RatingPlate(motor) => motor.value(x, piece),
             Self::MotorCurve(motor) => motor.value(x, piece),
@@ -134,6 +150,12 @@ impl Law {
                 coefficient * (1.0 - square) / ((1.0 + square) * (1.0 + square))
             }
             Self::Cogging { order, torque, phase } => -torque * order * (order * x + phase).cos(),
+            Self::LossHeat { constant, coefficient, peak_at } => {
+                let square = 1.0 + (x / peak_at) * (x / peak_at);
+                let dry = if x == 0.0 { 0.0 } else { constant * x.signum() };
+                dry + 2.0 * coefficient * x / (square * square)
+            }
+            Self::MagnetEnergy(magnet) => magnet.value(x),
             Self::Induction(motor) => motor.slope(x),
             Self::RatingPlate(motor) => motor.slope(x, piece),
             Self::MotorCurve(motor) => motor.slope(piece),
@@ -193,6 +215,8 @@ impl Law {
             Self::Unit
             | Self::Magnet(_)
             | Self::FadingDamper { .. }
+            | Self::LossHeat { .. }
+            | Self::MagnetEnergy(_)
             | Self::Cogging { .. }
             | Self::Induction(_)
             | Self::Periodic(_) => &[],

@@ -1,5 +1,7 @@
 //! Magnetic gears and couplings as typed, and their law.
 
+use super::magnet_losses::Losses;
+use super::magnet_temperature::Warmth;
 use super::torque_table::TorqueTable;
 
 /// Which member of a magnetic gear.
@@ -40,6 +42,8 @@ pub struct MagneticGear {
     pub cogging: Vec<Cogging>,
     /// Drag torques.
     pub drag: Vec<Drag>,
+    /// Losses in magnets, pieces and yokes.
+    pub losses: Option<Losses>,
     /// Where its figures come from.
     pub source: Option<String>,
 }
@@ -74,8 +78,10 @@ pub struct Field {
     pub harmonics: Vec<Harmonic>,
     /// The table of which the harmonics come.
     pub torque_table: Option<TorqueTable>,
-    /// Factor on the pull-out torque from the magnets' temperature, 1 when none is given.
-    pub temperature_factor: f64,
+    /// Temperature of the magnets and what they stand.
+    pub warmth: Warmth,
+    /// Longest time at a stretch that it may slip, s.
+    pub slip_time_limit: Option<f64>,
 }
 
 /// One harmonic of the torque law.

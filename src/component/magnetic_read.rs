@@ -1,5 +1,7 @@
 //! How magnetic gears and couplings are read.
 
+use super::magnet_losses::Losses;
+use super::magnet_temperature::{HALVES, ROTORS, Warmth};
 use super::magnetic_gear::{
     Cogging, Drag, Field, GearDamping, Harmonic, MagneticCoupling, MagneticGear, Member,
 };
@@ -72,9 +74,14 @@ impl MagneticGear {
             pull_out_at,
             pull_out_torque,
             damping: fields.group_optional("damping", "Damping of the slip.", read_damping),
-            field: Field::read(fields, &["electrical", "inner", "modulator", "outer"]),
+            field: Field::read(fields, &["electrical", "inner", "modulator", "outer"], ROTORS),
             cogging: fields.list("cogging", "Cogging torques against the modulator.", read_cogging),
             drag: fields.list("drag", "Drag torques.", read_drag),
+            losses: fields.group_optional(
+                "losses",
+                "Losses at constant flux in pieces, magnets and yokes.",
+                Losses::read,
+            ),
             source: fields.source(),
         }
     }
@@ -103,7 +110,7 @@ impl MagneticCoupling {
             pull_out,
             damping,
             damping_peak_at,
-            field: Field::read(fields, &["electrical", "mechanical"]),
+            field: Field::read(fields, &["electrical", "mechanical"], HALVES),
             source: fields.source(),
         }
     }
@@ -111,7 +118,7 @@ impl MagneticCoupling {
 
 impl Field {
     /// Reads what gears and couplings have in common.
-    fn read(fields: &mut Fields<'_>, angles: &[&'static str]) -> Self {
+    fn read(fields: &mut Fields<'_>, angles: &[&'static str], members: [&'static str; 2]) -> Self {
         let initial_load_angle = fields.quantity_optional(
             "initial_load_angle",
             Dimension::Angle,
@@ -153,62 +160,14 @@ impl Field {
             torque_table,
             initial_load_angle: initial_load_angle.map(|angle| angle.min(PI)),
             harmonics,
-            temperature_factor: read_temperature_factor(fields),
+            warmth: Warmth::read(fields, members),
+            slip_time_limit: fields.quantity_optional(
+                "slip_time_limit",
+                Dimension::Time,
+                Range::NotNegative,
+                "Longest time at a stretch that it may slip; a run that slips longer is warned.",
+            ),
         }
-    }
-}
-
-/// Pull-out scales with the remanence squared: `(1 + coefficient*(temperature - rated))^2`.
-fn read_temperature_factor(fields: &mut Fields<'_>) -> f64 {
-    const KEYS: [&str; 3] = ["magnet_temperature", "rated_temperature", "remanence_coefficient"];
-    // Nothing is colder than this.
-    let warm = Range::Between(-273.15, 2000.0);
-    let temperature = fields.quantity_optional(
-        KEYS[0],
-        Dimension::Temperature,
-        warm,
-        "Temperature of the magnets in this case.",
-    );
-    let rated = fields.quantity_optional(
-        KEYS[1],
-        Dimension::Temperature,
-        warm,
-        "Temperature for which the pull-out torque is stated.",
-    );
-    let coefficient = fields.quantity_optional(
-        KEYS[2],
-        Dimension::PerKelvin,
-        Range::Any,
-        "Relative change of the remanence per kelvin, for example -0.11 %/K.",
-    );
-    let given = KEYS.iter().filter(|key| fields.has(key)).count();
-    if given != 0 && given != KEYS.len() {
-        let missing: Vec<_> =
-            KEYS.iter().filter(|key| !fields.has(key)).map(|key| format!("`{key}`")).collect();
-        fields.fault_here_hint(
-            format!("{} missing for the magnets' temperature", told(&missing)),
-            "magnet_temperature, rated_temperature and remanence_coefficient go together",
-        );
-    }
-    let (Some(temperature), Some(rated), Some(coefficient)) = (temperature, rated, coefficient)
-    else {
-        return 1.0;
-    };
-    let remanence = 1.0 + coefficient * (temperature - rated);
-    if remanence <= 0.0 {
-        fields.fault_hint(
-            KEYS[0],
-            format!("at {temperature} degC nothing is left of the remanence"),
-            "the coefficient is a small negative share per kelvin, for example -0.11 %/K",
-        );
-    }
-    remanence * remanence
-}
-
-fn told(missing: &[String]) -> String {
-    match missing {
-        [only] => format!("{only} is"),
-        list => format!("{} are", list.join(" and ")),
     }
 }
 

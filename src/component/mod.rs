@@ -3,12 +3,16 @@
 pub mod body;
 pub mod brake;
 pub mod channel;
+mod channel_list;
 pub mod clutch;
 pub mod elastic_curve;
 pub mod fluid_coupling;
 pub mod gear_pair;
 pub mod law;
 pub mod load;
+pub mod magnet_losses;
+pub mod magnet_temperature;
+pub mod magnet_thermal;
 pub mod magnetic_gear;
 pub mod magnetic_law;
 mod magnetic_read;

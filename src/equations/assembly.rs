@@ -3,7 +3,7 @@
 use super::channels::{self, ChannelForm};
 use super::mode::{Contact, Mode};
 use super::parts::Parts;
-use super::{Equations, Factor, PowerKind, Shape, Sliding, StateRow, Target, dot};
+use super::{Equations, Factor, Gain, PowerKind, Shape, Sliding, StateRow, Target, dot};
 use crate::component::law::Law;
 use crate::component::pair_law::PairLaw;
 use crate::model::BodyRow;
@@ -67,6 +67,8 @@ pub enum Function {
     Linear,
     /// A sum of products of two states each.
     Products(Vec<(usize, usize, f64)>),
+    /// A law times gains that follow other states.
+    Warm(Law, Vec<Gain>),
     /// Friction of constant size against this direction.
     Friction(f64, f64),
 }
@@ -266,6 +268,7 @@ pub fn assemble(
             full[(state, state)] -= 1.0 / controller.lag;
         }
     }
+    super::thermal::add_flows(equations, &mut full);
     let channels = channels::forms(equations, mode, &parts);
     let (stuck_drive, stuck_compliance) = parts.stuck_forms(equations);
     Assembly {
@@ -366,6 +369,7 @@ impl Active {
                 Shape::Pair(law, second) => Function::Pair(law.clone(), second.clone()),
                 Shape::Linear => Function::Linear,
                 Shape::Products(list) => Function::Products(list.clone()),
+                Shape::Warm(law, gains) => Function::Warm(law.clone(), gains.clone()),
             },
             input: term.input.clone(),
             offset: term.offset,

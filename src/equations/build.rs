@@ -1,16 +1,16 @@
 //! From the model to states, terms, frictions and dampers.
 
 use super::build_joints::{add_clutches, add_fluid_couplings, add_gear_drag, add_shafts};
+use super::build_magnet::add_magnet;
 use super::build_motor::add_motor;
 use super::holding::Limits;
 use super::{
-    Damper, Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, Target, Term, speed_row,
+    Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, Target, Term, speed_row,
 };
 use crate::component::law::Law;
 use crate::component::load::curve::LoadCurve;
 use crate::component::load::reciprocating::Reciprocating;
 use crate::component::load::{Load, LoadLaw};
-use crate::component::magnetic_gear::Member;
 use crate::component::pair_law::PairLaw;
 use crate::model::{BodyRow, Model, body_index, difference};
 use crate::signal::Signal;
@@ -55,6 +55,7 @@ pub fn build(model: &Model) -> Equations {
         machines: Vec::new(),
         heats: Vec::new(),
         friction_heats: 0,
+        thermal: Vec::new(),
         bank: SignalBank::new(&model.scenario.signals),
         warnings: Vec::new(),
     };
@@ -95,107 +96,8 @@ pub fn build(model: &Model) -> Equations {
     equations
 }
 
-fn add_magnet(equations: &mut Equations, index: usize) {
-    let magnet = equations.model.magnets[index].clone();
-    let row = magnet.row();
-    let against: BodyRow = row.iter().map(|(body, count)| (*body, -count)).collect();
-    let place = equations.phase_state[index];
-    equations.terms.push(Term {
-        owner: Owner::Magnet(index),
-        shape: Shape::Law(Law::Magnet(magnet.law.clone())),
-        input: vec![(place, equations.scale[place])],
-        offset: None,
-        parameters: [None; 2],
-        factor: Factor::default(),
-        target: Target::Torque(against),
-        power: PowerKind::None,
-        speed: None,
-        input_size: 1.0,
-        heat: None,
-    });
-    if let Some(fading) = magnet.fading {
-        let scaled: BodyRow =
-            row.iter().map(|(body, count)| (*body, count / fading.count)).collect();
-        let input = speed_row(&equations.model, &equations.scale, &scaled);
-        equations.terms.push(Term {
-            owner: Owner::Magnet(index),
-            shape: Shape::Law(Law::FadingDamper {
-                coefficient: fading.coefficient,
-                peak_at: fading.peak_at,
-            }),
-            input,
-            offset: None,
-            parameters: [None; 2],
-            factor: Factor::default(),
-            target: Target::Torque(scaled.iter().map(|(body, factor)| (*body, -factor)).collect()),
-            power: PowerKind::Lost,
-            speed: None,
-            input_size: fading.peak_at,
-            heat: None,
-        });
-    }
-    if magnet.damping > 0.0 {
-        let (owner, coefficient) = (Owner::Magnet(index), magnet.damping);
-        equations.dampers.push(Damper { owner, row, coefficient, is_load: false });
-    }
-    add_cogging_and_drag(equations, index);
-}
-
-fn add_cogging_and_drag(equations: &mut Equations, index: usize) {
-    let Some(gear) = equations.model.scenario.magnetic_gears.get(index).cloned() else { return };
-    let members = equations.model.magnets[index].members.clone();
-    let body_of = |member: Member| match member {
-        Member::Inner => members[0].body,
-        Member::Modulator => members[1].body,
-        Member::Outer => members[2].body,
-    };
-    for cogging in &gear.cogging {
-        let row = difference(body_of(cogging.at), members[1].body);
-        let place = angle_state(equations, row.clone());
-        equations.terms.push(Term {
-            owner: Owner::Magnet(index),
-            shape: Shape::Law(Law::Cogging {
-                order: f64::from(cogging.order),
-                torque: cogging.torque,
-                phase: cogging.phase,
-            }),
-            input: vec![(place, equations.scale[place])],
-            offset: None,
-            parameters: [None; 2],
-            factor: Factor::default(),
-            target: Target::Torque(row),
-            power: PowerKind::None,
-            speed: None,
-            input_size: 1.0,
-            heat: None,
-        });
-    }
-    for (number, drag) in gear.drag.iter().enumerate() {
-        let against = if drag.against_modulator { members[1].body } else { None };
-        let row = difference(body_of(drag.at), against);
-        if row.is_empty() {
-            continue;
-        }
-        if drag.per_speed > 0.0 {
-            equations.dampers.push(Damper {
-                owner: Owner::Magnet(index),
-                row: row.clone(),
-                coefficient: drag.per_speed,
-                is_load: false,
-            });
-        }
-        if drag.constant > 0.0 {
-            let name = format!("{}.drag.{number}", gear.name);
-            let sliding = Sliding::Constant(drag.constant);
-            let owner = Owner::Magnet(index);
-            let breakaway = Limits::both(drag.constant);
-            add_friction(equations, owner, &name, row, sliding, breakaway, Factor::default());
-        }
-    }
-}
-
 /// The state of an angle that a law needs, made once for each row.
-fn angle_state(equations: &mut Equations, row: BodyRow) -> usize {
+pub(super) fn angle_state(equations: &mut Equations, row: BodyRow) -> usize {
     if let Some((place, _)) = equations.angle_states.iter().find(|(_, known)| *known == row) {
         return *place;
     }

@@ -1,10 +1,12 @@
 //! How each channel follows from the state and the law values of one mode.
 
+use super::build_magnet::{hysteresis_name, loss_drags};
 use super::holding::pseudo_inverse;
 use super::mode::{Contact, Mode};
 use super::parts::Parts;
-use super::{Equations, Owner, StateRow, Target};
+use super::{Equations, Owner, Shape, StateRow, Target};
 use crate::component::channel::{ChannelKind, ClutchChannel, MagneticChannel};
+use crate::component::law::Law;
 use crate::model::{BodyRow, body_index, difference};
 use nalgebra::DMatrix;
 
@@ -175,13 +177,10 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
                 continue;
             }
             match (&term.shape, magnet.fading) {
-                (super::Shape::Law(crate::component::law::Law::Magnet(_)), _) => {
+                (Shape::Law(Law::Magnet(_)) | Shape::Warm(Law::Magnet(_), _), _) => {
                     form.laws.push((place, -count));
                 }
-                (
-                    super::Shape::Law(crate::component::law::Law::FadingDamper { .. }),
-                    Some(fading),
-                ) => {
+                (Shape::Law(Law::FadingDamper { .. }), Some(fading)) => {
                     form.laws.push((place, -count / fading.count));
                 }
                 _ => {}
@@ -212,6 +211,28 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
                 })
                 .map(|(place, _)| place);
             ChannelForm::Loss(squares, fading.chain(drag).collect())
+        }
+        MagneticChannel::EddyLoss => {
+            let drags = loss_drags(equations, index).into_iter();
+            let squares = drags.filter(|(row, _)| !row.is_empty());
+            let squares = squares.map(|(row, drag)| (drag.eddy, equations.speed_row(&row)));
+            ChannelForm::Loss(squares.collect(), Vec::new())
+        }
+        MagneticChannel::HysteresisLoss => {
+            let name = hysteresis_name(&magnet.name);
+            let drag = equations.frictions.iter().enumerate();
+            let drag = drag.filter(|(_, friction)| friction.name.starts_with(&name));
+            let places = drag.map(|(place, _)| equations.terms.len() + place);
+            ChannelForm::Loss(Vec::new(), places.collect())
+        }
+        MagneticChannel::Temperature(node) => {
+            let found = equations.thermal.iter().find(|it| it.magnet == index && it.node == node);
+            let Some(state) = found else { return linear(Vec::new()) };
+            ChannelForm::Linear(LinearForm {
+                state: vec![(state.place, equations.scale[state.place])],
+                laws: Vec::new(),
+                constant: state.ambient,
+            })
         }
         other => ChannelForm::Magnet(index, other),
     }

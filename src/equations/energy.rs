@@ -37,8 +37,11 @@ pub fn stored(equations: &Equations, contacts: &[Contact], state: &[f64]) -> f64
         }
     }
     for term in &equations.terms {
-        let Shape::Law(law) = &term.shape else { continue };
         let input = super::dot(&term.input, state);
+        if let Shape::Warm(Law::Magnet(magnet), gains) = &term.shape {
+            energy += magnet.energy(input) * super::thermal::product(gains, state);
+        }
+        let Shape::Law(law) = &term.shape else { continue };
         match law {
             Law::Magnet(magnet) => energy += magnet.energy(input),
             Law::Elastic(shaft) => energy += shaft.energy_beyond(input),

@@ -3,7 +3,7 @@
 use super::assembly::{Active, Assembly, Function, Strength};
 use super::channels::{ChannelForm, LinearForm, RotorChannel};
 use super::holding::{Holding, Limits, hold};
-use super::{Equations, Factor, Owner, Shape, dot};
+use super::{Equations, Factor, Owner, Shape, dot, thermal};
 use crate::component::channel::MagneticChannel;
 use crate::component::law::Law;
 use crate::component::load::LoadLaw;
@@ -62,12 +62,9 @@ impl Evaluator<'_> {
     /// The value of a factor that follows signals.
     pub fn factor(&self, factor: &Factor, time: f64) -> f64 {
         factor.slots.iter().fold(1.0, |value, &(slot, power)| {
-            value
-                * self
-                    .equations
-                    .bank
-                    .value_in(slot, time, self.assembly.start, self.overrides)
-                    .powi(power)
+            let signal =
+                self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
+            value * if power == 1 { signal } else { signal.powi(power) }
         })
     }
 
@@ -93,15 +90,25 @@ impl Evaluator<'_> {
         }
     }
 
+    /// Input of an active term.
+    #[inline]
+    fn input(&self, active: &Active, time: f64, state: &[f64]) -> f64 {
+        let input = active.input_at(state);
+        match active.offset {
+            Some((factor, slot)) => {
+                let bank = &self.equations.bank;
+                input + factor * bank.value_in(slot, time, self.assembly.start, self.overrides)
+            }
+            None => input,
+        }
+    }
+
     /// Input and value of an active term.
     #[inline]
     pub fn law(&self, active: &Active, time: f64, state: &[f64]) -> (f64, f64) {
         let signal =
             |slot| self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
-        let mut input = active.input_at(state);
-        if let Some((factor, slot)) = active.offset {
-            input += factor * signal(slot);
-        }
+        let input = self.input(active, time, state);
         let value = match &active.function {
             Function::Law(law, piece) => {
                 let parameters = match active.parameters {
@@ -113,6 +120,9 @@ impl Evaluator<'_> {
             Function::Pair(law, second) => law.value(input, dot(second, state)),
             Function::Linear => input,
             Function::Products(list) => super::products(list, state),
+            Function::Warm(law, gains) => {
+                law.value(input, [0.0; 2], 0) * thermal::product(gains, state)
+            }
             Function::Friction(torque, direction) => -direction * torque,
         };
         (input, self.strength(&active.factor, time) * value)
@@ -126,16 +136,36 @@ impl Evaluator<'_> {
 
     /// Law values and holding torques.
     pub fn laws(&self, time: f64, state: &[f64], frame: &mut Frame) {
+        self.all_laws(time, state, None, frame);
+    }
+
+    /// Law values and holding torques; `known` are the values of the active terms where they are
+    /// known already.
+    fn all_laws(&self, time: f64, state: &[f64], known: Option<&[f64]>, frame: &mut Frame) {
         let assembly = self.assembly;
         frame.time = time;
         frame.laws.clear();
         frame.laws.resize(assembly.law_count, 0.0);
         frame.inputs.clear();
         frame.inputs.resize(assembly.law_count, 0.0);
-        for active in assembly.active.iter().chain(&assembly.folded) {
-            let (input, value) = self.law(active, time, state);
+        let mut take = |active: &Active, (input, value): (f64, f64)| {
             frame.inputs[active.place] = input;
             frame.laws[active.place] = value;
+        };
+        match known {
+            Some(values) => {
+                for (active, value) in assembly.active.iter().zip(values) {
+                    take(active, (self.input(active, time, state), *value));
+                }
+            }
+            None => {
+                for active in &assembly.active {
+                    take(active, self.law(active, time, state));
+                }
+            }
+        }
+        for active in &assembly.folded {
+            take(active, self.law(active, time, state));
         }
         frame.holding = None;
         if !assembly.stuck.is_empty() {
@@ -169,19 +199,49 @@ impl Evaluator<'_> {
         wanted: Option<&[usize]>,
         frame: &mut Frame,
     ) {
-        self.laws(time, state, frame);
+        self.all_laws(time, state, None, frame);
+        self.channels(time, state, counters, wanted, frame);
+    }
+
+    /// The same where the values of the active terms are known.
+    pub fn evaluate_known(
+        &self,
+        time: f64,
+        state: &[f64],
+        known: &[f64],
+        counters: &Counters,
+        wanted: Option<&[usize]>,
+        frame: &mut Frame,
+    ) {
+        self.all_laws(time, state, Some(known), frame);
+        self.channels(time, state, counters, wanted, frame);
+    }
+
+    fn channels(
+        &self,
+        time: f64,
+        state: &[f64],
+        counters: &Counters,
+        wanted: Option<&[usize]>,
+        frame: &mut Frame,
+    ) {
         let mut channels = std::mem::take(&mut frame.channels);
         channels.resize(self.assembly.channels.len(), 0.0);
+        // The commonest forms stand in line: as a call each costs twice as much.
+        let value = |form: &ChannelForm| match form {
+            ChannelForm::Linear(form) => linear(form, state, frame),
+            ChannelForm::Power(torque, speed) => linear(torque, state, frame) * dot(speed, state),
+            other => self.channel(other, time, state, counters, frame),
+        };
         match wanted {
-            None => {
-                for (value, form) in channels.iter_mut().zip(&self.assembly.channels) {
-                    *value = self.channel(form, time, state, counters, frame);
+            Some(wanted) if wanted.len() < channels.len() => {
+                for &index in wanted {
+                    channels[index] = value(&self.assembly.channels[index]);
                 }
             }
-            Some(wanted) => {
-                for &index in wanted {
-                    channels[index] =
-                        self.channel(&self.assembly.channels[index], time, state, counters, frame);
+            _ => {
+                for (channel, form) in channels.iter_mut().zip(&self.assembly.channels) {
+                    *channel = value(form);
                 }
             }
         }
@@ -244,9 +304,19 @@ impl Evaluator<'_> {
             MagneticChannel::PullOutShare => {
                 let term = self.equations.terms.iter().position(|term| {
                     term.owner == Owner::Magnet(index)
-                        && matches!(term.shape, Shape::Law(Law::Magnet(_)))
+                        && matches!(
+                            term.shape,
+                            Shape::Law(Law::Magnet(_)) | Shape::Warm(Law::Magnet(_), _)
+                        )
                 });
-                let torque = term.map_or(0.0, |place| frame.laws[place]);
+                let torque = match term {
+                    // Of what the magnets give at their temperature of the moment.
+                    Some(place) if !magnet.warmth.is_steady() => {
+                        magnet.law.value(frame.inputs[place])
+                    }
+                    Some(place) => frame.laws[place],
+                    None => 0.0,
+                };
                 let [low, high] = magnet.law.peak_values();
                 let peak = if torque >= 0.0 { high } else { low };
                 (torque / (magnet.amplitude * peak)).clamp(0.0, 1.0)
@@ -284,7 +354,7 @@ impl Evaluator<'_> {
     }
 }
 
-#[inline]
+#[inline(always)]
 fn linear(form: &LinearForm, state: &[f64], frame: &Frame) -> f64 {
     let laws: f64 = form.laws.iter().map(|&(place, factor)| factor * frame.laws[place]).sum();
     dot(&form.state, state) + laws + form.constant

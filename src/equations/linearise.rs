@@ -2,7 +2,9 @@
 
 use super::assembly::{Active, Assembly, Function};
 use super::frame::Evaluator;
+use super::thermal;
 use super::{StateRow, dot};
+use crate::component::law::Law;
 use nalgebra::DMatrix;
 use nalgebra::linalg::Schur;
 
@@ -48,11 +50,27 @@ pub fn jacobian(
             }
             continue;
         }
+        if let Function::Warm(law, gains) = &active.function {
+            let strength = evaluator.strength(&active.factor, time);
+            let value = strength * law.value(input, [0.0; 2], 0);
+            for (index, gain) in gains.iter().enumerate() {
+                let others = gains.iter().enumerate().filter(|(other, _)| *other != index);
+                let slope =
+                    others.map(|(_, other)| other.value(state)).product::<f64>() * gain.slope;
+                for &(row, share) in &active.column {
+                    matrix[(row, gain.place)] += share * slope * value;
+                }
+            }
+        }
         let slope = match &active.function {
-            Function::Law(crate::component::law::Law::Magnet(magnet), _)
-                if magnets == MagnetSlope::Steepest =>
-            {
+            Function::Law(Law::Magnet(magnet), _) if magnets == MagnetSlope::Steepest => {
                 magnet.amplitude() * magnet.steepest()
+            }
+            Function::Warm(Law::Magnet(magnet), gains) if magnets == MagnetSlope::Steepest => {
+                magnet.amplitude() * magnet.steepest() * thermal::product(gains, state)
+            }
+            Function::Warm(law, gains) => {
+                law.slope(input, [0.0; 2], 0) * thermal::product(gains, state)
             }
             Function::Law(law, piece) => {
                 let [first, second] = active.parameters;

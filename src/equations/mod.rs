@@ -3,7 +3,7 @@
 //! ```text
 //! y = [ independent speeds | twists of elastic shafts, magnetic phases | controllers | angles ]
 //! ```
-//! Everything linear is one matrix `A`, rebuilt when the mode changes; each nonlinear law is a
+//! Temperatures of magnets stand behind the phases. Everything linear is one matrix `A`, rebuilt when the mode changes; each nonlinear law is a
 //! scalar `q_j` of one input row and enters through one column `D_j`. States are scaled by
 //! their working sizes, so that one tolerance means the same for all of them.
 
@@ -11,6 +11,7 @@ pub mod assembly;
 pub mod build;
 mod build_joints;
 mod build_machine;
+mod build_magnet;
 mod build_motor;
 pub mod channels;
 pub mod energy;
@@ -20,6 +21,7 @@ pub mod linearise;
 pub mod machine;
 pub mod mode;
 pub mod parts;
+pub mod thermal;
 
 use crate::component::law::Law;
 use crate::component::pair_law::PairLaw;
@@ -64,6 +66,8 @@ pub struct Equations {
     pub heats: Vec<(usize, f64)>,
     /// Number of friction elements whose heat is asked for; they stand behind the motors.
     pub friction_heats: usize,
+    /// Thermal nodes of magnets.
+    pub thermal: Vec<thermal::ThermalState>,
     /// Everything that follows time.
     pub bank: SignalBank,
     /// What a reader of the results must know.
@@ -101,7 +105,7 @@ pub enum Target {
 }
 
 /// What the power of a term counts as.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq)]
 pub enum PowerKind {
     /// Supplied when positive, absorbed when negative.
     Drive,
@@ -109,6 +113,8 @@ pub enum PowerKind {
     Lost,
     /// Stored, or no power at all.
     None,
+    /// Lost: the value times the rate of this state times this factor.
+    Warming(usize, f64),
 }
 
 /// A function of one input.
@@ -122,6 +128,27 @@ pub enum Shape {
     Linear,
     /// A sum of products of two states each; the input is the speed that makes its power.
     Products(Vec<(usize, usize, f64)>),
+    /// A law times gains that follow other states.
+    Warm(Law, Vec<Gain>),
+}
+
+/// A factor that follows a state in a straight line, and is never negative.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Gain {
+    /// The state.
+    pub place: usize,
+    /// Change with the scaled state.
+    pub slope: f64,
+    /// Value where the state is zero.
+    pub offset: f64,
+}
+
+impl Gain {
+    /// The factor at a state.
+    #[inline]
+    pub fn value(&self, state: &[f64]) -> f64 {
+        (self.offset + self.slope * state[self.place]).max(0.0)
+    }
 }
 
 /// A factor that follows signals: the product of slots to whole powers.
@@ -275,7 +302,7 @@ impl Equations {
         match self.terms.get(place) {
             Some(term) => match &term.shape {
                 Shape::Law(law) => Some(law),
-                Shape::Linear | Shape::Products(_) | Shape::Pair(..) => None,
+                Shape::Linear | Shape::Products(_) | Shape::Pair(..) | Shape::Warm(..) => None,
             },
             None => match &self.frictions.get(place - self.terms.len())?.sliding {
                 Sliding::Curve(law) => Some(law),
@@ -303,6 +330,9 @@ impl Equations {
         }
         for (magnet, place) in self.model.magnets.iter().zip(&self.phase_state) {
             state[*place] = magnet.start_phase / self.scale[*place];
+        }
+        for node in &self.thermal {
+            state[node.place] = node.start / self.scale[node.place];
         }
         state
     }

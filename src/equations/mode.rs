@@ -86,7 +86,7 @@ impl Mode {
                         let input = input(equations, term, time, state, overrides);
                         law.piece(input, parameters(equations, term, time, overrides))
                     }
-                    Shape::Linear | Shape::Products(_) | Shape::Pair(..) => 0,
+                    Shape::Linear | Shape::Products(_) | Shape::Pair(..) | Shape::Warm(..) => 0,
                 })
                 .chain(equations.frictions.iter().map(|_| 0))
                 .collect(),

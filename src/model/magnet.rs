@@ -8,10 +8,12 @@
 
 use super::elimination::{self, Constraint};
 use super::{BodyRow, ShaftModel, body_index};
+use crate::component::magnet_temperature::Warmth;
 use crate::component::magnetic_gear::Member;
 use crate::component::magnetic_law::MagnetLaw;
 use crate::diagnostic::Diagnostics;
 use crate::scenario::Scenario;
+use std::f64::consts::TAU;
 
 /// A magnetic gear or coupling.
 #[derive(Clone, Debug)]
@@ -32,6 +34,8 @@ pub struct Magnet {
     pub damping: f64,
     /// A damper that fades: its member's count, coefficient and speed of the largest torque there.
     pub fading: Option<FadingDamping>,
+    /// Temperature of the magnets.
+    pub warmth: Warmth,
     /// Phase at the start, electrical rad.
     pub start_phase: f64,
     /// Inertia along the phase with shafts rigid and everything else left out, kg*m2 per electrical rad squared.
@@ -80,6 +84,12 @@ impl Magnet {
         (self.law.slope(rest).max(0.0) / self.phase_inertia).sqrt()
     }
 
+    /// Zero-load natural period, s; infinite when there is none.
+    pub fn natural_period(&self) -> f64 {
+        let frequency = self.natural_frequency();
+        if frequency > 0.0 { TAU / frequency } else { f64::INFINITY }
+    }
+
     /// Speed of the faster over the slower turning member in synchronism, signed; `None` unless two turn.
     pub fn ratio(&self) -> Option<f64> {
         if self.coupling {
@@ -126,7 +136,7 @@ pub fn build(
             Member::Outer => outer,
         };
         let amplitude =
-            gear.pull_out_torque / count_of(gear.pull_out_at) * gear.field.temperature_factor;
+            gear.pull_out_torque / count_of(gear.pull_out_at) * gear.field.warmth.factor();
         let path = format!("magnetic_gears.{}", gear.name);
         let Some(law) = law(&path, amplitude, &gear.field.harmonics, found) else { continue };
         let linear = gear.damping.filter(|damping| damping.peak_at.is_none());
@@ -162,13 +172,14 @@ pub fn build(
                     peak_at,
                 })
             }),
+            warmth: gear.field.warmth,
             start_phase: gear.field.initial_load_angle.unwrap_or(0.0),
             phase_inertia: f64::INFINITY,
         });
     }
     for coupling in &scenario.magnetic_couplings {
         let count = f64::from(coupling.pole_pairs);
-        let amplitude = coupling.pull_out / count * coupling.field.temperature_factor;
+        let amplitude = coupling.pull_out / count * coupling.field.warmth.factor();
         let path = format!("magnetic_couplings.{}", coupling.name);
         let Some(law) = law(&path, amplitude, &coupling.field.harmonics, found) else { continue };
         magnets.push(Magnet {
@@ -195,6 +206,7 @@ pub fn build(
                 coefficient: coupling.damping,
                 peak_at,
             }),
+            warmth: coupling.field.warmth,
             start_phase: coupling.field.initial_load_angle.unwrap_or(0.0),
             phase_inertia: f64::INFINITY,
         });

@@ -82,6 +82,7 @@ const UNITS: &[Unit] = &[
     unit("degC", Dimension::Temperature, 1.0),
     Unit { symbol: "K", dimension: Dimension::Temperature, factor: 1.0, offset: -273.15 },
     unit("J/K", Dimension::HeatCapacity, 1.0),
+    unit("kJ/K", Dimension::HeatCapacity, 1e3),
     unit("K/W", Dimension::ThermalResistance, 1.0),
     unit("1/K", Dimension::PerKelvin, 1.0),
     unit("%/K", Dimension::PerKelvin, 0.01),

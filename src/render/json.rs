@@ -3,6 +3,7 @@
 use super::measured;
 use super::number::{json, json_optional};
 use crate::analysis::records::RecordComparison;
+use crate::analysis::study::outcome::{Extremes, GearFound};
 use crate::results::{ChannelResult, GearResult, RequirementResult, RunResult};
 use serde_json::{Map, Value};
 use std::fmt::Write as _;
@@ -36,7 +37,7 @@ pub fn summary(result: &RunResult, records: &[RecordComparison], origin: &Origin
     put("failure", result.failure.as_deref().map_or(Value::Null, Value::from));
     put("end_time", json(result.end_time));
     put("gears", gears(&result.gears));
-    put("channels", named(result.channels.iter().map(|one| (one.name.as_str(), channel(one)))));
+    put("channels", named(result.channels.iter().map(channel)));
     put("requirements", requirements(&result.requirements));
     put("energy", energy(result));
     put("motors", motors(result));
@@ -82,34 +83,48 @@ fn gear(gear: &GearResult) -> Value {
         ]);
         (member.member, figures)
     });
-    named([
+    named(gear_found(&GearFound::of(gear)).into_iter().chain([
+        ("run_longer", json_optional(gear.run_longer)),
+        ("time_past_peak", json(gear.time_past_peak)),
+        ("slipping_time", json(gear.slipping_time)),
+        ("longest_slipping", json(gear.longest_slipping)),
+        ("longest_slipping_from", json(gear.longest_slipping_from)),
+        ("ratio", json_optional(gear.ratio)),
+        ("natural_frequency_hz", json(1.0 / gear.natural_period)),
+        ("law_peaks", Value::Array(gear.law_peaks.iter().map(|peak| json(*peak)).collect())),
+        ("members", named(members)),
+        ("slip_events", Value::Array(slips.collect())),
+    ]))
+}
+
+fn channel(channel: &ChannelResult) -> (&str, Value) {
+    (channel.name.as_str(), extremes(channel.unit, &Extremes::of(channel)))
+}
+
+/// What every run tells of a gear or coupling.
+pub fn gear_found(gear: &GearFound) -> [(&'static str, Value); 9] {
+    [
         ("slips", Value::from(gear.slips)),
         ("net_slips", Value::from(gear.net_slips)),
         ("state_at_end", Value::from(gear.state_at_end.word())),
-        ("run_longer", json_optional(gear.run_longer)),
         ("resynchronised_at", json_optional(gear.resynchronised_at)),
         ("peak_pull_out_share", json(gear.peak_pull_out_share)),
         ("peak_pull_out_share_time", json(gear.peak_pull_out_share_time)),
         ("peak_load_angle", json(gear.peak_load_angle)),
         ("peak_load_angle_time", json(gear.peak_load_angle_time)),
         ("final_load_angle", json(gear.final_load_angle)),
-        ("time_past_peak", json(gear.time_past_peak)),
-        ("ratio", json_optional(gear.ratio)),
-        ("natural_frequency_hz", json(1.0 / gear.natural_period)),
-        ("law_peaks", Value::Array(gear.law_peaks.iter().map(|peak| json(*peak)).collect())),
-        ("members", named(members)),
-        ("slip_events", Value::Array(slips.collect())),
-    ])
+    ]
 }
 
-fn channel(channel: &ChannelResult) -> Value {
+/// Extremes of a channel in its unit.
+pub fn extremes(unit: &str, found: &Extremes) -> Value {
     named([
-        ("unit", Value::from(channel.unit)),
-        ("min", json(channel.min)),
-        ("min_time", json(channel.min_time)),
-        ("max", json(channel.max)),
-        ("max_time", json(channel.max_time)),
-        ("final", json(channel.last)),
+        ("unit", Value::from(unit)),
+        ("min", json(found.min)),
+        ("min_time", json(found.min_time)),
+        ("max", json(found.max)),
+        ("max_time", json(found.max_time)),
+        ("final", json(found.last)),
     ])
 }
 

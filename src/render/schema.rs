@@ -121,13 +121,7 @@ impl Parts {
                 let (quantity, group) = (self.quantity(*dimension, *range), self.group(inside));
                 json!({ "anyOf": [quantity, group] })
             }
-            Shape::Signals => {
-                let any = json!({ "anyOf": [
-                    { "type": ["number", "string"] },
-                    { "type": "object", "minProperties": 1, "maxProperties": 2 },
-                ]});
-                section(any)
-            }
+            Shape::Signals => section(self.named_signal()),
             Shape::OfChannel => json!({ "type": ["number", "string"] }),
             Shape::Free => json!({}),
         }
@@ -187,12 +181,40 @@ impl Parts {
         // Stands before its inside is worked out, so that it may hold itself.
         self.definitions.insert(name.clone(), Value::Null);
         let quantity = self.quantity(dimension, Range::Any);
-        let mut forms = self.one_key_map(&describe_forms(dimension));
-        for (form, item) in [
-            ("sum", reference.clone()),
-            // One member of a product may carry the dimension, the others are plain.
-            ("product", json!({ "type": ["number", "string", "object"] })),
-        ] {
+        let members = self.signal_of_any();
+        let forms = self.forms(&describe_forms(dimension), &reference, &members);
+        let signal = json!({
+            "anyOf": [quantity, { "type": "string", "pattern": NAME }, forms],
+        });
+        self.definitions.insert(name, signal);
+        reference
+    }
+
+    /// A signal whose own units tell its dimension.
+    fn signal_of_any(&mut self) -> Value {
+        let reference = json!({ "$ref": "#/$defs/signal_of_any" });
+        if !self.definitions.contains_key("signal_of_any") {
+            self.definitions.insert("signal_of_any".to_owned(), Value::Null);
+            let forms = self.forms(&any_forms(), &reference, &reference);
+            let signal = json!({ "anyOf": [{ "type": ["number", "string"] }, forms] });
+            self.definitions.insert("signal_of_any".to_owned(), signal);
+        }
+        reference
+    }
+
+    /// A signal of the section `signals`, which may carry its source.
+    fn named_signal(&mut self) -> Value {
+        let reference = self.signal_of_any();
+        let mut forms = self.forms(&any_forms(), &reference, &reference);
+        forms["properties"]["source"] = self.shape(&Shape::Text);
+        forms["maxProperties"] = json!(2);
+        json!({ "anyOf": [{ "type": ["number", "string"] }, forms] })
+    }
+
+    /// The one-key map of a signal; one member of a product may carry the dimension.
+    fn forms(&mut self, forms: &[FieldDescription], sum: &Value, product: &Value) -> Value {
+        let mut forms = self.one_key_map(forms);
+        for (form, item) in [("sum", sum), ("product", product)] {
             if let Some(place) = forms["properties"].get_mut(form) {
                 *place = json!({
                     "type": "array", "items": item, "minItems": 1,
@@ -200,12 +222,29 @@ impl Parts {
                 });
             }
         }
-        let signal = json!({
-            "anyOf": [quantity, { "type": "string", "pattern": NAME }, forms],
-        });
-        self.definitions.insert(name, signal);
-        reference
+        forms
     }
+}
+
+/// The forms of a signal whose own units tell its dimension.
+fn any_forms() -> Vec<FieldDescription> {
+    // No form has a torque among its own keys, so a torque is the signal's value.
+    let own = Dimension::Torque;
+    let mut forms = describe_forms(own);
+    for form in &mut forms {
+        match &mut form.shape {
+            Shape::Group(inside) => {
+                for field in inside {
+                    if field.shape == Shape::Quantity(own, Range::Any) {
+                        field.shape = Shape::OfChannel;
+                    }
+                }
+            }
+            Shape::Rows(_) => form.shape = Shape::Free,
+            _ => {}
+        }
+    }
+    forms
 }
 
 /// A map from names of the user's; a section with nothing under it is empty.

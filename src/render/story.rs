@@ -58,7 +58,11 @@ pub fn told(gear: &GearResult, shown: Shown<'_>) -> String {
             None => "whether it is back in step cannot be told yet".to_owned(),
         },
     };
-    format!("`{name}` {when}; {end}. Past its peak for {} in all.", time(gear.time_past_peak))
+    format!(
+        "`{name}` {when}; {end}. Slipping for {} in all, past its peak for {}.",
+        time(gear.slipping_time),
+        time(gear.time_past_peak)
+    )
 }
 
 /// Which member turns how fast against which; `None` when the gear has no fixed ratio.
@@ -137,6 +141,9 @@ mod tests {
             ],
             natural_period: 0.05,
             time_past_peak: 0.0,
+            slipping_time: 0.0,
+            longest_slipping: 0.0,
+            longest_slipping_from: 0.0,
             slip_events,
         }
     }

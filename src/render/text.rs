@@ -157,7 +157,8 @@ fn peaks(result: &RunResult, shown: Shown<'_>) -> String {
     let wanted = [".speed", ".torque", ".slip_speed", ".load_angle", ".flow"];
     for channel in &result.channels {
         let (_, what) = channel.name.split_at(channel.name.rfind('.').unwrap_or(0));
-        if !wanted.contains(&what) || channel.max < channel.min {
+        let warm = what.starts_with(".magnet_temperature");
+        if !(warm || wanted.contains(&what)) || channel.max < channel.min {
             continue;
         }
         let (_, unit) = shown.channel(&channel.name, channel.unit, channel.last);

@@ -2,12 +2,13 @@
 
 use super::json::named;
 use super::number::{json, json_optional};
+use super::poles;
 use super::shown::{self, Shown};
 use super::story;
 use super::table::{Table, wrap};
 use super::text::WIDTH;
 use crate::analysis::poles::{Held, PolePairs};
-use crate::analysis::train::{MagnetFigures, Train};
+use crate::analysis::train::{LossFigures, MagnetFigures, Train};
 use crate::component::clutch::{Clutch, ClutchKind};
 use crate::quantity::format_number;
 use crate::scenario::{Method, Scenario, Start};
@@ -103,9 +104,11 @@ fn magnet_text(magnet: &MagnetFigures, shown: Shown<'_>) -> String {
     text.push_str(&table.text(2));
     if let Some(pairs) = magnet.pole_pairs {
         let [inner, outer] = pairs.ripple_orders();
+        let remarks: String =
+            poles::remarks(pairs).iter().map(|remark| format!("; {remark}")).collect();
         let line = format!(
             "inner : outer {} (modulator held), inner : modulator {} (outer held), outer : modulator {} \
-             (inner held); ripple orders {inner} and {outer}, cogging factor {}",
+             (inner held); ripple orders {inner} and {outer}, cogging factor {}{remarks}",
             format_number(pairs.ratio(Held::Modulator), 6),
             format_number(pairs.ratio(Held::Outer), 6),
             format_number(pairs.ratio(Held::Inner), 6),
@@ -134,7 +137,40 @@ fn magnet_text(magnet: &MagnetFigures, shown: Shown<'_>) -> String {
         )
     };
     text.push_str(&wrap("  ", &format!("{swing}{peaks}"), WIDTH));
+    if let Some(losses) = &magnet.losses {
+        text.push_str(&wrap("  ", &loss_words(losses, shown), WIDTH));
+    }
+    for (index, time) in magnet.thermal_times.iter().enumerate() {
+        let node = if magnet.thermal_times.len() > 1 { magnet_node(magnet, index) } else { "" };
+        let line =
+            format!("the magnets {node}warm up with a time constant of {}", shown::time(*time));
+        text.push_str(&wrap("  ", &line, WIDTH));
+    }
     text
+}
+
+/// Which of two thermal nodes, in words.
+fn magnet_node(magnet: &MagnetFigures, index: usize) -> &'static str {
+    match (magnet.coupling, index) {
+        (false, 0) => "of the inner rotor, by themselves, ",
+        (false, _) => "of the outer rotor, by themselves, ",
+        (true, 0) => "of half a, by themselves, ",
+        (true, _) => "of half b, by themselves, ",
+    }
+}
+
+fn loss_words(losses: &LossFigures, shown: Shown<'_>) -> String {
+    let [inner, pieces, outer] =
+        losses.frequencies.map(|frequency| format!("{} Hz", shown::number(frequency)));
+    format!(
+        "loss without load {} W at {} of the {} rotor against the modulator: hysteresis {} W, eddy currents {} W; \
+         the fields change at {pieces} in the pieces, {inner} in the inner rotor, {outer} in the outer one",
+        shown::number(losses.hysteresis + losses.eddy),
+        shown.speed(losses.speed),
+        losses.rotor,
+        shown::number(losses.hysteresis),
+        shown::number(losses.eddy),
+    )
 }
 
 fn sense(magnet: &MagnetFigures) -> String {
@@ -304,7 +340,25 @@ fn magnet_json(magnet: &MagnetFigures) -> Value {
         ("damping_ratio", json(magnet.damping_ratio)),
         ("phase_inertia", json(magnet.phase_inertia)),
         ("temperature_factor", json(magnet.temperature_factor)),
+        ("losses", magnet.losses.as_ref().map_or(Value::Null, losses_json)),
+        (
+            "thermal_times",
+            Value::Array(magnet.thermal_times.iter().map(|time| json(*time)).collect()),
+        ),
         ("law_peaks", Value::Array(magnet.law_peaks.iter().map(|peak| json(*peak)).collect())),
+    ])
+}
+
+fn losses_json(losses: &LossFigures) -> Value {
+    let [inner, pieces, outer] = losses.frequencies;
+    named([
+        ("rotor", Value::from(losses.rotor)),
+        ("speed", json(losses.speed)),
+        ("hysteresis", json(losses.hysteresis)),
+        ("eddy", json(losses.eddy)),
+        ("inner_hz", json(inner)),
+        ("pieces_hz", json(pieces)),
+        ("outer_hz", json(outer)),
     ])
 }
 

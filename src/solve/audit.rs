@@ -99,6 +99,10 @@ impl Audit {
                 PowerKind::Drive => audit.add_drive(products(1.0)),
                 PowerKind::Lost => audit.losses.extend(products(lost_sign(active))),
                 PowerKind::None => {}
+                PowerKind::Warming(state, factor) => {
+                    let second = width + state;
+                    audit.losses.push(Product { factor, first: value, second });
+                }
             }
             if let Some((place, synchronous_speed)) = active.heat {
                 let speed = active.input.clone();

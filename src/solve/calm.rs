@@ -38,6 +38,16 @@ pub enum Quiet {
     Rest,
 }
 
+/// A place inside the region where the train rests.
+#[derive(Debug, Default)]
+struct Near {
+    centre: Vec<f64>,
+    /// Distance of the nearest side of the region; 0 when there is no such place.
+    room: f64,
+    /// Largest rate at the end of the last step.
+    fastest: f64,
+}
+
 /// The region, when there is one.
 pub struct Calm {
     possible: bool,
@@ -48,6 +58,7 @@ pub struct Calm {
     high: Vec<f64>,
     wait: u32,
     values: Vec<f64>,
+    near: Near,
 }
 
 impl Calm {
@@ -62,6 +73,7 @@ impl Calm {
             high: Vec::new(),
             wait: PATIENCE,
             values: Vec::new(),
+            near: Near::default(),
         }
     }
 
@@ -74,12 +86,13 @@ impl Calm {
     /// Drops the region.
     pub fn forget(&mut self) {
         self.active = false;
+        self.near.room = 0.0;
     }
 
     /// How quiet a step is.
     #[inline]
     pub fn look(
-        &self,
+        &mut self,
         h: f64,
         first: &[f64],
         first_rate: &[f64],
@@ -90,6 +103,15 @@ impl Calm {
             return Quiet::No;
         }
         let reach = 4.0 / 27.0 * h;
+        if self.near.room > 0.0 {
+            let (away, fastest) = farthest(last, &self.near.centre, last_rate);
+            let beyond = reach * (self.near.fastest + fastest);
+            self.near.fastest = fastest;
+            if beyond < REST && away + beyond < self.near.room {
+                return Quiet::Rest;
+            }
+            self.near.room = 0.0;
+        }
         let ends = first.iter().zip(last).zip(first_rate.iter().zip(last_rate));
         let mut inside = true;
         let mut most = 0.0;
@@ -101,9 +123,23 @@ impl Calm {
         }
         match inside {
             false => Quiet::No,
-            true if most < REST => Quiet::Rest,
+            true if most < REST => {
+                self.come_near(last, last_rate);
+                Quiet::Rest
+            }
             true => Quiet::Calm,
         }
+    }
+
+    /// Takes the end of a step at rest as the place that the next ones are held against.
+    fn come_near(&mut self, last: &[f64], last_rate: &[f64]) {
+        self.near.centre.clear();
+        self.near.centre.extend_from_slice(last);
+        self.near.fastest = farthest(last, last, last_rate).1;
+        let room = last.iter().zip(self.low.iter().zip(&self.high));
+        self.near.room = room.fold(f64::INFINITY, |room, (value, (low, high))| {
+            room.min(value - low).min(high - value)
+        });
     }
 
     /// Notes the channels of the reference in every column that a calm stretch passes.
@@ -135,6 +171,7 @@ impl Calm {
         step: f64,
     ) {
         self.active = false;
+        self.near.room = 0.0;
         if !self.possible || rate.iter().any(|rate| (rate * step).abs() > STILL) {
             return;
         }
@@ -191,6 +228,32 @@ impl Calm {
         self.active = true;
         self.wait = PATIENCE;
     }
+}
+
+/// The largest distance of a state from a centre, and the largest rate.
+///
+/// In two lanes: the processor takes both at once.
+#[inline(always)]
+fn farthest(state: &[f64], centre: &[f64], rate: &[f64]) -> (f64, f64) {
+    #[inline(always)]
+    fn larger(most: &mut f64, value: f64) {
+        *most = if value.abs() > *most { value.abs() } else { *most };
+    }
+    let size = state.len();
+    let (centre, rate) = (&centre[..size], &rate[..size]);
+    let (mut away, mut fastest) = ([0.0; 2], [0.0; 2]);
+    let pairs = size / 2 * 2;
+    for place in (0..pairs).step_by(2) {
+        for lane in 0..2 {
+            larger(&mut away[lane], state[place + lane] - centre[place + lane]);
+            larger(&mut fastest[lane], rate[place + lane]);
+        }
+    }
+    if pairs < size {
+        larger(&mut away[0], state[pairs] - centre[pairs]);
+        larger(&mut fastest[0], rate[pairs]);
+    }
+    (away[0].max(away[1]), fastest[0].max(fastest[1]))
 }
 
 struct Probe<'p, 'a> {

@@ -43,7 +43,7 @@ impl DenseStep {
     pub fn prepare(
         &mut self,
         method: Method,
-        stages: &[&[f64]],
+        stages: &[Vec<f64>],
         rates: &mut dyn FnMut(f64, &[f64], &mut [f64]),
     ) {
         let size = self.first.len();
@@ -95,7 +95,7 @@ impl DenseStep {
 
     fn more_stages(
         &self,
-        stages: &[&[f64]],
+        stages: &[Vec<f64>],
         rates: &mut dyn FnMut(f64, &[f64], &mut [f64]),
     ) -> Vec<Vec<f64>> {
         let size = self.first.len();
@@ -125,32 +125,44 @@ impl DenseStep {
     /// The state at a share of the step.
     pub fn state(&self, share: f64, state: &mut Vec<f64>) {
         state.clear();
+        if share <= 0.0 || share >= 1.0 {
+            state.extend_from_slice(if share <= 0.0 { &self.first } else { &self.last });
+            return;
+        }
         let rest = 1.0 - share;
-        let c = &self.coefficients;
-        let ends = |i: usize, inner: f64| {
-            self.first[i] + share * (c[0][i] + rest * (c[1][i] + share * (c[2][i] + inner)))
+        let rows = |first: usize| {
+            let [a, b, c] = [first, first + 1, first + 2].map(|row| &self.coefficients[row]);
+            a.iter().zip(b).zip(c)
+        };
+        let ends = self.first.iter().zip(rows(0));
+        let at = |((first, ((a, b), c)), inner): ((&f64, ((&f64, &f64), &f64)), f64)| {
+            first + share * (a + rest * (b + share * (c + inner)))
         };
         match self.kind {
-            Kind::Cubic => state.extend((0..self.first.len()).map(|i| ends(i, 0.0))),
-            Kind::Quartic => state.extend((0..self.first.len()).map(|i| ends(i, rest * c[3][i]))),
-            Kind::Septic => state.extend((0..self.first.len()).map(|i| {
-                let inner = c[3][i] + share * (c[4][i] + rest * (c[5][i] + share * c[6][i]));
-                ends(i, rest * inner)
-            })),
-        }
-        if share <= 0.0 {
-            state.copy_from_slice(&self.first);
-        } else if share >= 1.0 {
-            state.copy_from_slice(&self.last);
+            Kind::Cubic => state.extend(ends.map(|end| at((end, 0.0)))),
+            Kind::Quartic => {
+                state.extend(ends.zip(&self.coefficients[3]).map(|(end, d)| at((end, rest * d))));
+            }
+            Kind::Septic => {
+                let inner = rows(4)
+                    .zip(&self.coefficients[3])
+                    .map(|(((e, f), g), d)| rest * (d + share * (e + rest * (f + share * g))));
+                state.extend(ends.zip(inner).map(at));
+            }
         }
     }
 
     /// The summed independent speeds at a share of the step (quintic Hermite), scaled.
     pub fn sums(&self, share: f64, sums: &mut Vec<f64>) {
         sums.clear();
+        if share >= 1.0 {
+            sums.extend_from_slice(&self.last_sum);
+            return;
+        }
         let h = self.length;
         let s = share;
-        let (s3, s4, s5) = (s.powi(3), s.powi(4), s.powi(5));
+        let s3 = s * s * s;
+        let (s4, s5) = (s3 * s, s3 * s * s);
         let end = 10.0 * s3 - 15.0 * s4 + 6.0 * s5;
         let first_slope = s - 6.0 * s3 + 8.0 * s4 - 3.0 * s5;
         let last_slope = -4.0 * s3 + 7.0 * s4 - 3.0 * s5;
@@ -170,7 +182,7 @@ pub fn add_sums(
     method: Method,
     length: f64,
     first: &[f64],
-    stages: &[&[f64]],
+    stages: &[Vec<f64>],
     weights: &[f64],
     sums: &mut [f64],
 ) {

@@ -23,6 +23,8 @@ enum Kernel {
     Constant,
     /// The input itself.
     Input,
+    /// The factor alone, and it follows signals.
+    Followed,
     /// Any other law of one state that follows no signal.
     Steady,
     /// A law of several states, or one that follows signals.
@@ -80,6 +82,9 @@ impl Flat {
                 Kernel::PowerLaw(load, piece) => load.value(input, piece),
                 Kernel::Constant => 1.0,
                 Kernel::Input => input,
+                Kernel::Followed => {
+                    evaluator.strength(&evaluator.assembly.active[index].factor, time)
+                }
                 Kernel::Steady => steady(&evaluator.assembly.active[index], input),
                 Kernel::Other => evaluator.law(&evaluator.assembly.active[index], time, state).1,
             };
@@ -134,7 +139,7 @@ impl Flat {
 fn line(active: &Active) -> Line {
     let (kernel, scale) = kernel(active);
     let factor = match (kernel, &active.factor) {
-        (Kernel::Other, _) | (_, Strength::Varying(_)) => 1.0,
+        (Kernel::Other | Kernel::Followed, _) | (_, Strength::Varying(_)) => 1.0,
         (_, Strength::Constant(value)) => value * scale,
     };
     let (place, slope) = active.input.first().copied().unwrap_or((0, 0.0));
@@ -144,7 +149,8 @@ fn line(active: &Active) -> Line {
 /// The kernel of a term and what its factor is multiplied with.
 fn kernel(active: &Active) -> (Kernel, f64) {
     if active.follows_time || active.input.len() > 1 {
-        return (Kernel::Other, 1.0);
+        let alone = matches!(active.function, Function::Law(Law::Unit, _));
+        return (if alone { Kernel::Followed } else { Kernel::Other }, 1.0);
     }
     match &active.function {
         Function::Law(Law::Magnet(law), _) => match law.sine() {
@@ -155,7 +161,7 @@ fn kernel(active: &Active) -> (Kernel, f64) {
         Function::Law(Law::PowerLaw(load), piece) => (Kernel::PowerLaw(*load, *piece), 1.0),
         Function::Law(Law::Unit, _) => (Kernel::Constant, 1.0),
         Function::Law(..) => (Kernel::Steady, 1.0),
-        Function::Products(_) | Function::Pair(..) => (Kernel::Other, 1.0),
+        Function::Products(_) | Function::Pair(..) | Function::Warm(..) => (Kernel::Other, 1.0),
         Function::Linear => (Kernel::Input, 1.0),
         Function::Friction(torque, direction) => (Kernel::Constant, -direction * torque),
     }
@@ -165,7 +171,7 @@ fn kernel(active: &Active) -> (Kernel, f64) {
 fn steady(active: &Active, input: f64) -> f64 {
     match &active.function {
         Function::Law(law, piece) => law.value(input, active.fixed.1, *piece),
-        Function::Linear | Function::Products(_) | Function::Pair(..) => input,
+        Function::Linear | Function::Products(_) | Function::Pair(..) | Function::Warm(..) => input,
         Function::Friction(torque, direction) => -direction * torque,
     }
 }

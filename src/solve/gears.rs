@@ -2,6 +2,7 @@
 
 use super::dense::DenseStep;
 use super::locate;
+use super::spells::Spells;
 use crate::equations::frame::load_angle;
 use crate::equations::{Equations, dot};
 use crate::results::{GearState, SlipEvent};
@@ -47,11 +48,13 @@ pub struct GearTrack {
     pub peak_angle: f64,
     /// s.
     pub peak_angle_time: f64,
+    /// How long it slips at a stretch.
+    pub spells: Spells,
 }
 
 impl GearTrack {
-    /// The track of a gear that starts at a phase.
-    pub fn new(phase: f64, peaks: [f64; 2]) -> Self {
+    /// The track of a gear that starts at a phase; `period` is its natural one at no load, s.
+    pub fn new(phase: f64, peaks: [f64; 2], period: f64) -> Self {
         let angle = load_angle(phase);
         Self {
             slips: Vec::new(),
@@ -61,6 +64,7 @@ impl GearTrack {
             last_return: None,
             peak_angle: angle,
             peak_angle_time: 0.0,
+            spells: Spells::new(period),
         }
     }
 
@@ -80,6 +84,7 @@ impl GearTrack {
                 direction: crossing.direction,
                 slip_speed: crossing.slip_speed,
             });
+            self.spells.slip(time);
             self.note_angle(PI * f64::from(crossing.direction), time);
             if self.peak_angle.abs() < PI {
                 self.peak_angle = PI * f64::from(crossing.direction);
@@ -91,9 +96,11 @@ impl GearTrack {
             }
             self.past = false;
             self.last_return = Some(time);
+            self.spells.short(time);
         } else {
             self.past = true;
             self.past_since = time;
+            self.spells.past(time);
         }
     }
 
@@ -265,7 +272,7 @@ mod tests {
 
     #[test]
     fn a_gear_is_in_step_again_only_after_two_periods_and_two_slip_intervals() {
-        let mut track = GearTrack::new(0.0, [-PI / 2.0, PI / 2.0]);
+        let mut track = GearTrack::new(0.0, [-PI / 2.0, PI / 2.0], 0.1);
         track.slips = vec![slip(1.0), slip(1.5)];
         track.last_return = Some(1.7);
         assert_eq!(track.judge(2.0, 0.1).0, GearState::Slipping);

@@ -239,7 +239,7 @@ fn fixed(window: &Window, rhs: &Rhs<'_>, state: &[f64], watch: &mut dyn Watch) -
                 length / 6.0 * (k[0][place] + 2.0 * k[1][place] + 2.0 * k[2][place] + k[3][place]);
         }
         rhs.system(end, &now, &mut first);
-        if rhs.fault().is_some() {
+        if first.iter().any(|rate| !rate.is_finite()) {
             return Stop::StepTooSmall(end);
         }
         if watch.accept(rhs, end, &now, &first) {

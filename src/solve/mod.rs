@@ -1,11 +1,13 @@
 //! The run in time: segments, located events, one observer that streams.
 
 pub mod audit;
+mod brief;
 pub mod calm;
 pub mod conditions;
 pub mod dense;
 pub mod extremes;
 mod flat;
+mod gear_warnings;
 pub mod gears;
 pub mod guards;
 pub mod integrate;
@@ -15,9 +17,11 @@ pub mod observer;
 pub mod outcome;
 pub mod rest;
 pub mod rhs;
+mod rows;
 pub mod run;
 mod run_events;
 pub mod sampling;
+mod spells;
 pub mod steady;
 pub mod step_cap;
 pub mod tableau;

@@ -3,6 +3,7 @@
 use super::audit::Powers;
 use super::dense::DenseStep;
 use super::extremes::{Extreme, gear_event, refine};
+use super::gear_warnings;
 use super::gears::{GearTrack, crossings};
 use super::sampling::{Sample, StepView};
 use super::traces::Tracer;
@@ -39,15 +40,17 @@ pub struct Observer<'a> {
     pub heats: Vec<f64>,
     /// Scale of each independent speed, for the summed angles.
     pub speed_scale: Vec<f64>,
-    rows: Option<&'a mut dyn RowSink>,
-    next_row: u64,
-    output_step: f64,
-    duration: f64,
+    pub(super) rows: Option<&'a mut dyn RowSink>,
+    pub(super) next_row: u64,
+    pub(super) output_step: f64,
+    pub(super) duration: f64,
     discrete: Vec<bool>,
     wraps: Vec<bool>,
+    /// Channels that are magnitudes: they have a corner at zero.
+    pub(super) magnitudes: Vec<bool>,
     samples: Vec<Sample>,
-    scratch: Sample,
-    sums: Vec<f64>,
+    pub(super) scratch: Sample,
+    pub(super) sums: Vec<f64>,
     names: Vec<String>,
 }
 
@@ -81,6 +84,8 @@ impl<'a> Observer<'a> {
                 windows.push(Window::new(None, &watch, channel));
             }
         }
+        let hot = gear_warnings::watches(equations);
+        windows.extend(hot.iter().map(|(channel, watch)| Window::new(None, watch, *channel)));
         let mut wanted: Vec<usize> = match &options.wanted {
             Wanted::All => (0..model.channels.len()).collect(),
             Wanted::Asked(channels) => {
@@ -106,7 +111,8 @@ impl<'a> Observer<'a> {
             .iter()
             .zip(&equations.phase_state)
             .map(|(magnet, place)| {
-                GearTrack::new(start[*place] * equations.scale[*place], magnet.law.peaks())
+                let phase = start[*place] * equations.scale[*place];
+                GearTrack::new(phase, magnet.law.peaks(), magnet.natural_period())
             })
             .collect();
         let is = |kind: ChannelKind, test: &[MagneticChannel]| match kind {
@@ -142,6 +148,14 @@ impl<'a> Observer<'a> {
                 .iter()
                 .map(|channel| is(channel.kind, &[MagneticChannel::LoadAngle]))
                 .collect(),
+            magnitudes: model
+                .channels
+                .iter()
+                .map(|channel| {
+                    channel.name.ends_with("loss")
+                        || is(channel.kind, &[MagneticChannel::PullOutShare])
+                })
+                .collect(),
             samples: Vec::new(),
             scratch: Sample::default(),
             sums: Vec::new(),
@@ -151,11 +165,6 @@ impl<'a> Observer<'a> {
                 .map(|requirement| requirement.name.clone())
                 .collect(),
         }
-    }
-
-    /// Time of the next row, s; rows stand at whole multiples of the output step.
-    pub fn next_row_time(&self) -> f64 {
-        if self.rows.is_none() { f64::INFINITY } else { self.next_row as f64 * self.output_step }
     }
 
     /// Takes the values at the start of a segment, from the right; returns the time of the next window border.
@@ -210,15 +219,6 @@ impl<'a> Observer<'a> {
         for &channel in &self.wanted {
             self.extremes[channel].note(channels[channel], time);
         }
-    }
-
-    /// Rows up to an instant that is not part of a step (the very start of a run's last instant).
-    pub fn final_row(&mut self, evaluator: &Evaluator<'_>, time: f64, state: &[f64]) {
-        let Some(rows) = &mut self.rows else { return };
-        let mut scratch = std::mem::take(&mut self.scratch);
-        evaluator.evaluate(time, state, &self.counters, None, &mut scratch.frame);
-        rows.row(time, &scratch.frame.channels);
-        self.scratch = scratch;
     }
 
     /// Shares of a step at which it is looked at.
@@ -286,7 +286,7 @@ impl<'a> Observer<'a> {
         }
     }
 
-    fn trace(&mut self, view: &StepView<'_>, sample: &Sample) {
+    pub(super) fn trace(&mut self, view: &StepView<'_>, sample: &Sample) {
         let Some(tracer) = &mut self.tracer else { return };
         tracer.note(sample.time, &sample.frame.channels);
         let equations = view.evaluator.equations;
@@ -346,36 +346,6 @@ impl<'a> Observer<'a> {
             for sample in &self.samples {
                 track.note_angle(load_angle(sample.state[place] * scale), sample.time);
             }
-        }
-    }
-
-    /// Takes the rows of a step in which nothing else can happen.
-    pub fn rows_only(&mut self, evaluator: Evaluator<'_>, step: &DenseStep) {
-        let scale = std::mem::take(&mut self.speed_scale);
-        let counters = std::mem::take(&mut self.counters);
-        let view =
-            StepView { step, evaluator, counters: &counters, crossings: Vec::new(), scale: &scale };
-        let mut scratch = std::mem::take(&mut self.scratch);
-        self.rows_in(&view, &mut scratch);
-        view.counters_at(1.0, &mut self.counters, &mut self.sums);
-        self.speed_scale = scale;
-        self.scratch = scratch;
-    }
-
-    fn rows_in(&mut self, view: &StepView<'_>, scratch: &mut Sample) {
-        let end = view.step.start + view.step.length;
-        while self.rows.is_some() {
-            let time = self.next_row as f64 * self.output_step;
-            // The end itself belongs to the next segment (samples at a jump are from the right) or to the final row.
-            if time >= end || time >= self.duration {
-                break;
-            }
-            let share = ((time - view.step.start) / view.step.length).clamp(0.0, 1.0);
-            view.sample(share, None, scratch);
-            if let Some(rows) = &mut self.rows {
-                rows.row(time, &scratch.frame.channels);
-            }
-            self.next_row += 1;
         }
     }
 

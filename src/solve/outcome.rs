@@ -1,5 +1,6 @@
 //! From the recorder of a finished run to its results.
 
+use super::gear_warnings;
 use super::run::Run;
 use crate::component::load::LoadLaw;
 use crate::equations::frame::load_angle;
@@ -9,13 +10,13 @@ use crate::results::{
     MemberResult, MotorResult, RunResult, Warning,
 };
 use crate::scenario::Method;
-use std::f64::consts::TAU;
 
 /// Collects the results; `stored` is the energy at the start, J.
 pub fn collect(mut run: Run<'_, '_>, stored: f64) -> RunResult {
     let equations = run.equations;
     let completed = run.failure.is_none();
     run.observer.settle_peak_angles(equations);
+    run.observer.gears.iter_mut().for_each(|track| track.spells.end(run.time));
     let gears = gears(&run);
     for gear in &gears {
         if let Some(time) = gear.resynchronised_at {
@@ -54,6 +55,7 @@ pub fn collect(mut run: Run<'_, '_>, stored: f64) -> RunResult {
     let audit = audit(equations, &run, stored);
     warn_of_ranges(&mut run);
     warn_of_rotors(&mut run);
+    gear_warnings::add(&mut run);
     let mut warnings: Vec<Warning> = equations
         .model
         .warnings
@@ -120,8 +122,7 @@ fn gears(run: &Run<'_, '_>) -> Vec<GearResult> {
         .enumerate()
         .map(|(index, magnet)| {
             let track = &run.observer.gears[index];
-            let frequency = magnet.natural_frequency();
-            let period = if frequency > 0.0 { TAU / frequency } else { f64::INFINITY };
+            let period = magnet.natural_period();
             let (state, resynchronised_at, run_longer) = track.judge(run.time, period);
             let place = equations.phase_state[index];
             let share = model
@@ -160,6 +161,9 @@ fn gears(run: &Run<'_, '_>) -> Vec<GearResult> {
                 natural_period: period,
                 time_past_peak: track.time_past
                     + if track.past { run.time - track.past_since } else { 0.0 },
+                slipping_time: track.spells.total,
+                longest_slipping: track.spells.longest,
+                longest_slipping_from: track.spells.longest_start,
                 slip_events: track.slips.clone(),
             }
         })

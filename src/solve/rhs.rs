@@ -5,7 +5,7 @@ use super::flat::Flat;
 use crate::equations::assembly::Matrix;
 use crate::equations::dot;
 use crate::equations::frame::Evaluator;
-use std::cell::{Cell, RefCell};
+use std::cell::RefCell;
 
 /// Calls kept: the twelve stages of the longest method and its rate at the end.
 const RING: usize = 16;
@@ -48,7 +48,6 @@ pub struct Rhs<'a> {
     pub audit: Audit,
     flat: Flat,
     ring: RefCell<Ring>,
-    fault: Cell<Option<(f64, usize)>>,
 }
 
 impl<'a> Rhs<'a> {
@@ -57,7 +56,7 @@ impl<'a> Rhs<'a> {
         let flat = Flat::new(&evaluator);
         let audit = Audit::new(&evaluator, flat.width);
         let ring = RefCell::new(Ring::new(flat.width, evaluator.assembly.active.len()));
-        Self { evaluator, audit, flat, ring, fault: Cell::new(None) }
+        Self { evaluator, audit, flat, ring }
     }
 
     /// The last calls.
@@ -65,19 +64,52 @@ impl<'a> Rhs<'a> {
         self.ring.borrow()
     }
 
-    /// Time and state of the first rate that was not a number, if there was one.
-    pub fn fault(&self) -> Option<(f64, usize)> {
-        self.fault.get()
+    /// The state whose rate is no number at the time and state reached, or was the first such
+    /// among the last calls.
+    ///
+    /// Asked when the steps have become too small, so that the right-hand side need not look at
+    /// what it returns: a rate that is no number makes the library shrink its step to nothing, and
+    /// the calls of the last attempt are still there.
+    pub fn fault(&self, time: f64, state: &[f64]) -> Option<usize> {
+        let ring = self.ring();
+        let mut reached = vec![0.0; ring.length];
+        self.fill(time, state, &mut reached);
+        let kept = usize::try_from(ring.calls).map_or(RING, |calls| calls.min(RING));
+        let records = std::iter::once(reached.as_slice())
+            .chain((0..kept).rev().map(|back| ring.record(back)));
+        let lost = |values: &[f64]| values.iter().position(|value| !value.is_finite());
+        let parts = |record: &'_ [f64]| {
+            let (state, rest) = record.split_at(ring.width);
+            let (rates, values) = rest.split_at(ring.width);
+            (lost(state), lost(rates), lost(values))
+        };
+        let (_, rate, law) = records.map(parts).find(|(state, rate, _)| {
+            // A state that is none comes of an earlier rate.
+            state.is_none() && rate.is_some()
+        })?;
+        // A value that is no number spoils every rate of the dense matrix: its own comes first.
+        let own = law.and_then(|law| self.evaluator.assembly.active.get(law)?.column.first());
+        own.map(|(row, _)| *row).or(rate)
     }
 
-    /// Rates of the scaled state; the call is remembered. Both may be padded with zeros.
+    /// The values of the laws in a record.
+    pub fn law_values<'r>(&self, record: &'r [f64]) -> &'r [f64] {
+        &record[2 * self.flat.width..]
+    }
+
+    /// Fills a record as a call would, without remembering it.
+    pub fn fill(&self, time: f64, state: &[f64], record: &mut [f64]) {
+        let width = self.flat.width;
+        let (kept_state, rest) = record.split_at_mut(width);
+        let (rates, values) = rest.split_at_mut(width);
+        kept_state[..state.len()].copy_from_slice(state);
+        self.evaluate(time, kept_state, rates, values);
+    }
+
+    /// Values of the laws and rates of the state.
     #[inline(always)]
-    pub fn system(&self, time: f64, state: &[f64], rates: &mut [f64]) {
-        let ring = &mut *self.ring.borrow_mut();
+    fn evaluate(&self, time: f64, state: &[f64], rates: &mut [f64], values: &mut [f64]) {
         let assembly = self.evaluator.assembly;
-        let record = &mut ring.records[ring.next * ring.length..(ring.next + 1) * ring.length];
-        let (kept_state, rest) = record.split_at_mut(ring.width);
-        let (kept_rates, values) = rest.split_at_mut(ring.width);
         self.flat.values(&self.evaluator, time, state, values);
         match &assembly.matrix {
             Matrix::Dense(_) => self.flat.rates(state, values, rates),
@@ -93,27 +125,22 @@ impl<'a> Rhs<'a> {
                 }
             }
         }
+    }
+
+    /// Rates of the scaled state; the call is remembered. Both may be padded with zeros.
+    #[inline(always)]
+    pub fn system(&self, time: f64, state: &[f64], rates: &mut [f64]) {
+        let ring = &mut *self.ring.borrow_mut();
+        let record = &mut ring.records[ring.next * ring.length..(ring.next + 1) * ring.length];
+        let (kept_state, rest) = record.split_at_mut(ring.width);
+        let (kept_rates, values) = rest.split_at_mut(ring.width);
+        self.evaluate(time, state, rates, values);
         if kept_rates.len() == rates.len() && state.len() == rates.len() {
             kept_state.copy_from_slice(state);
             kept_rates.copy_from_slice(rates);
         } else {
             kept_state.iter_mut().zip(state).for_each(|(kept, value)| *kept = *value);
             kept_rates.iter_mut().zip(&*rates).for_each(|(kept, rate)| *kept = *rate);
-        }
-        // Two sums side by side: one after the other took as long as a law.
-        let mut sums = [0.0; 2];
-        let pairs = rates.chunks_exact(2);
-        sums[0] += pairs.remainder().iter().sum::<f64>();
-        for pair in pairs {
-            sums[0] += pair[0];
-            sums[1] += pair[1];
-        }
-        if !(sums[0] + sums[1]).is_finite() && self.fault.get().is_none() {
-            // A value that is no number spoils every rate of the dense matrix: its own comes first.
-            let lost = assembly.active.iter().zip(&*values).find(|(_, value)| !value.is_finite());
-            let own = lost.and_then(|(active, _)| active.column.first()).map(|(row, _)| *row);
-            let any = rates.iter().position(|rate| !rate.is_finite()).unwrap_or(0);
-            self.fault.set(Some((time, own.unwrap_or(any))));
         }
         ring.next = (ring.next + 1) % RING;
         ring.calls += 1;

@@ -340,8 +340,10 @@ impl Run<'_, '_> {
             };
             let state = watcher.state.clone();
             let stop = integrate::run(&window, &rhs, &state, &mut watcher);
+            watcher.sum_rest(&rhs);
             if let Stop::StepTooSmall(time) = stop {
-                failure = Some((time, rhs.fault()));
+                let fault = rhs.fault(watcher.time, &watcher.state);
+                failure = Some((time, fault.map(|state| (time, state))));
                 break;
             }
             if let Some(cut) = watcher.cut {

@@ -284,6 +284,10 @@ impl Run<'_, '_> {
             let motor = &scenario.motors[machine.motor];
             return format!("current and flux of `{}`", motor.name);
         }
+        if let Some(node) = self.equations.thermal.iter().find(|node| node.place == place) {
+            let magnet = &self.equations.model.magnets[node.magnet];
+            return format!("the temperature of the magnets of `{}`", magnet.name);
+        }
         "a controller".to_owned()
     }
 
@@ -314,7 +318,7 @@ impl Run<'_, '_> {
             let order = match &term.shape {
                 Shape::Law(law) => law.turn_order(),
                 Shape::Pair(law, _) => law.turn_order(),
-                Shape::Linear | Shape::Products(_) => None,
+                Shape::Linear | Shape::Products(_) | Shape::Warm(..) => None,
             };
             if let Some(order) = order {
                 let fastest =

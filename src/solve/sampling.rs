@@ -60,6 +60,16 @@ impl StepView<'_> {
         self.evaluator.evaluate(*time, state, counters, wanted, frame);
     }
 
+    /// All values at the end of a step in which nothing slips, from the values of its laws there.
+    pub fn sample_end(&self, known: &[f64], wanted: &[usize], sample: &mut Sample) {
+        sample.share = 1.0;
+        sample.time = self.step.time(1.0);
+        sample.state.clone_from(&self.step.last);
+        self.counters_at(1.0, &mut sample.counters, &mut sample.sums);
+        let Sample { time, state, frame, counters, .. } = sample;
+        self.evaluator.evaluate_known(*time, state, known, counters, Some(wanted), frame);
+    }
+
     /// One channel's value at a share of the step.
     pub fn channel(&self, channel: usize, share: f64, scratch: &mut Sample) -> f64 {
         self.sample(share, Some(&[channel]), scratch);

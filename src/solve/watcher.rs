@@ -1,6 +1,7 @@
 //! Watches the accepted steps of one segment: guards first, then the observer and the audit.
 
 use super::audit::Powers;
+use super::brief::Brief;
 use super::calm::{Calm, Quiet};
 use super::conditions::Conditions;
 use super::dense::{DenseStep, add_sums};
@@ -11,7 +12,7 @@ use super::observer::Observer;
 use super::rhs::Rhs;
 use super::sampling::{Sample, StepView};
 use super::tableau::{self, Tableau};
-use super::watcher_steps::bracket;
+use super::watcher_steps::{Rest, bracket};
 use crate::equations::frame::{Evaluator, Frame};
 use crate::equations::mode::Mode;
 use crate::scenario::Method;
@@ -38,6 +39,8 @@ pub struct Watcher<'w, 'a> {
     pub guards: Vec<Guard>,
     /// Method.
     pub method: Method,
+    /// Tolerance on the scaled state.
+    pub tolerance: f64,
     /// Time reached, s.
     pub time: f64,
     /// State reached.
@@ -69,6 +72,8 @@ pub struct Watcher<'w, 'a> {
     pub(super) step_heats: Vec<f64>,
     pub(super) calm: Calm,
     pub(super) scratch: Sample,
+    pub(super) rest: Rest,
+    pub(super) brief: Brief,
 }
 
 impl<'w, 'a> Watcher<'w, 'a> {
@@ -106,6 +111,7 @@ impl<'w, 'a> Watcher<'w, 'a> {
             conditions,
             guards,
             method,
+            tolerance,
             time,
             state: state.to_vec(),
             rate,
@@ -127,6 +133,8 @@ impl<'w, 'a> Watcher<'w, 'a> {
             stages: Vec::new(),
             step_energy: Powers::default(),
             scratch: Sample::default(),
+            rest: Rest::default(),
+            brief: Brief::default(),
         }
     }
 
@@ -181,20 +189,18 @@ impl<'w, 'a> Watcher<'w, 'a> {
             self.observer.counters.angles.iter().zip(scale).map(|(sum, scale)| sum / scale),
         );
         step.last_sum.clone_from(&step.first_sum);
-        let stages: Vec<&[f64]> = self.stages.iter().map(Vec::as_slice).collect();
         add_sums(
             self.method,
             length,
             &step.first[..speeds],
-            &stages,
+            &self.stages,
             &self.state_weights,
             &mut step.last_sum,
         );
     }
 
-    fn prepare(&mut self, rhs: &Rhs<'_>) {
-        let stages: Vec<&[f64]> = self.stages.iter().map(Vec::as_slice).collect();
-        self.step.prepare(self.method, &stages, &mut |time, state, rates| {
+    pub(super) fn prepare(&mut self, rhs: &Rhs<'_>) {
+        self.step.prepare(self.method, &self.stages, &mut |time, state, rates| {
             rhs.system(time, state, rates);
         });
     }
@@ -326,16 +332,21 @@ impl Watch for Watcher<'_, '_> {
         self.window_steps += 1;
         let full = self.window_steps >= WINDOW;
         let quiet = self.calm.look(time - self.time, &self.state, &self.rate, state, rates);
+        if quiet == Quiet::Rest && !row_due {
+            self.load_rest(rhs, time, state, rates);
+            return self.look_around() || full;
+        }
+        self.sum_rest(rhs);
         if quiet != Quiet::No && !row_due {
-            self.load_quiet(rhs, time, state, rates, quiet);
+            self.load_calm(rhs, time, state, rates);
             return self.look_around() || full;
         }
         if self.runs_away(rhs, time, state, rates) {
             return true;
         }
         self.load(rhs, time, state, rates);
-        self.prepare(rhs);
         if quiet != Quiet::No {
+            self.prepare(rhs);
             self.observer.rows_only(rhs.evaluator, &self.step);
             if let Some(tracer) = &mut self.observer.tracer {
                 self.calm.trace(tracer, self.time, time);
@@ -343,11 +354,13 @@ impl Watch for Watcher<'_, '_> {
             self.advance();
             return self.look_around() || full;
         }
-        if let Some(cut) = self.first_trip(rhs.evaluator) {
-            self.cut = Some(cut);
-            return true;
+        if !self.is_brief(rhs, row_due) {
+            if let Some(cut) = self.first_trip(rhs.evaluator) {
+                self.cut = Some(cut);
+                return true;
+            }
+            self.observer.step(rhs.evaluator, &self.step, self.inner());
         }
-        self.observer.step(rhs.evaluator, &self.step, self.inner());
         self.advance();
         self.calm.settle(
             &rhs.evaluator,

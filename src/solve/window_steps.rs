@@ -57,7 +57,7 @@ impl Window {
     }
 
     /// True once the extreme has passed the limit.
-    fn is_over(&self) -> bool {
+    pub(super) fn is_over(&self) -> bool {
         match self.test {
             Test::AtMost(limit) => self.extreme > limit,
             Test::AtLeast(limit) => self.extreme < limit,

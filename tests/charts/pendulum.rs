@@ -169,6 +169,9 @@ impl Run {
             ],
             natural_period: 0.03,
             time_past_peak: 0.1,
+            slipping_time: 0.0,
+            longest_slipping: 0.0,
+            longest_slipping_from: 0.0,
             slip_events,
         };
         let channel = |name: &str, value: &dyn Fn(&[f64; 4]) -> f64| ChannelResult {

@@ -41,6 +41,42 @@ fn meter(told: &Told) -> serde_json::Value {
 }
 
 #[test]
+fn compare_tells_how_far_each_run_is_from_its_record() {
+    // Twice the inertia: 10 rad/s2 t against a record of 20 rad/s2 t from 0.2 s to 0.9 s. The
+    // error is -10 t: its mean -5.5 rad/s, its root mean square sqrt(100 * mean of t^2) over the
+    // 71 rows at 0.2, 0.21 ... 0.9 s (closed form).
+    let bench = bench("record_compare", &record(0.0));
+    let kept = bench.run(&["run", "pushed.yaml", "--out", "kept", "--quiet"]);
+    assert_eq!(kept.status, Some(0), "{kept:?}");
+    let told = bench.run(&[
+        "compare",
+        "kept",
+        "pushed.yaml",
+        "--set",
+        "bodies.hub.inertia=0.2 kg*m2",
+        "--format",
+        "json",
+        "--no-charts",
+    ]);
+    let answers = &json(&told.out)["answers"];
+    let second = |key: &str| answers[format!("measured.meter.{key}")]["values"][1].as_f64();
+    let first = |key: &str| answers[format!("measured.meter.{key}")]["values"][0].as_f64();
+    let squares: f64 = (0..=70).map(|row| (0.2 + 0.01 * f64::from(row)).powi(2)).sum();
+    assert!((second("rms").unwrap() - (100.0 * squares / 71.0).sqrt()).abs() < 1e-6, "{answers}");
+    assert!((second("bias").unwrap() + 5.5).abs() < 1e-6, "{answers}");
+    assert!(first("rms").unwrap().abs() < 1e-6, "{answers}");
+    let text = bench.run(&[
+        "compare",
+        "kept",
+        "pushed.yaml",
+        "--set",
+        "bodies.hub.inertia=0.2 kg*m2",
+        "--no-charts",
+    ]);
+    assert!(text.out.contains("rms error"), "{text:?}");
+}
+
+#[test]
 fn a_record_of_the_truth_has_no_error() {
     let bench = bench("record_true", &record(0.0));
     let told = bench.run(&["run", "pushed.yaml", "--format", "json"]);

@@ -33,6 +33,50 @@ fn every_starting_file_runs_as_printed() {
     }
 }
 
+/// The studies of a starting file: those it has, and those that wait behind `#`.
+#[test]
+fn studies_of_starting_files_answer_as_printed_and_with_the_marks_taken_off() {
+    let bench = Bench::new("new_studies");
+    let mut with_studies = 0;
+    for kind in KINDS {
+        let text = bench.run(&["new", kind]).out;
+        let Some((train, studies)) = text.split_once("\nstudies:") else { continue };
+        with_studies += 1;
+        let uncommented: Vec<String> = studies
+            .lines()
+            .map(|line| match line.strip_prefix("  # ") {
+                Some(study) => format!("  {study}"),
+                None => line.to_owned(),
+            })
+            .collect();
+        let all = format!("{train}\nstudies:{}\n", uncommented.join("\n"));
+        assert_ne!(all, text, "{kind} has a study behind `#`");
+        for (name, text, least) in [("as_printed", &text, 1), ("all", &all, 2)] {
+            let file = format!("{kind}_{name}.yaml");
+            bench.write(&file, text);
+            let told = bench.run(&["study", &file, "--no-charts", "--format", "json"]);
+            assert!(matches!(told.status, Some(0 | 1)), "{kind}, {name}: {told:?}");
+            let answers = json(&told.out)["studies"].clone();
+            let answers = answers.as_object().unwrap();
+            assert!(answers.len() >= least, "{kind}, {name}");
+            for (study, answer) in answers {
+                assert_eq!(answer["completed"], true, "{kind}, {study}");
+            }
+        }
+        // The margin that stands in it says something: it finds the limit within its range.
+        let told = bench.run(&["study", &format!("{kind}_as_printed.yaml"), "--format", "json"]);
+        let answers = json(&told.out)["studies"].clone();
+        let margin = answers.as_object().unwrap().values().next().unwrap();
+        assert_eq!(
+            (&margin["kind"], &margin["reached"]),
+            (&"margin".into(), &true.into()),
+            "{kind}"
+        );
+        assert!(margin["value"].is_number(), "{kind}: {margin}");
+    }
+    assert!(with_studies >= 3, "{with_studies}");
+}
+
 #[test]
 fn help_lists_every_kind_of_starting_file() {
     let bench = Bench::new("kinds");

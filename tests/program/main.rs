@@ -25,6 +25,8 @@ mod law;
 mod likeness;
 mod limits_of_drives;
 mod loads;
+mod magnets_heat;
+mod magnets_temperature;
 mod motors;
 mod oscillator;
 mod output;

@@ -2,7 +2,7 @@
 //!
 //! Expected: the contract of protections as the README documents it, worked out by hand.
 
-use super::helper::{Outcome, head, near, run, run_through};
+use super::helper::{Folder, Outcome, call, head, near, run, run_through};
 
 /// A wheel of 1 kg*m2 with a torque by a signal and protections; 10 s.
 fn guarded(signal: &str, more: &str) -> Outcome {
@@ -135,4 +135,77 @@ fn a_wrong_path_is_a_fault() {
         assert_eq!(outcome.status, Some(2), "{path}\n{}", outcome.stderr);
         assert!(outcome.stderr.contains("protections.stop"), "{}", outcome.stderr);
     }
+}
+
+/// A brake of 5 N*m that a protection lets fall while it cuts the drive.
+const STOP: &str =
+    "then: [ { set: motors.push.scale, to: 0 }, { set: brakes.holding.applied, to: 1 } ]";
+const BRAKE: &str = "brakes:\n  holding: { body: wheel, torque: 5 N*m, applied: 0 }\n";
+
+#[test]
+fn over_speed_is_stopped() {
+    // 1 rad/s2: 6 rad/s at 6 s, 0.2 s later the brake, which takes 5 rad/s2.
+    let trip = format!(
+        "{BRAKE}protections:\n  trip: {{ when: {{ of: wheel.speed, at_least: 6 rad/s }}, delay: 0.2 s, {STOP} }}\n"
+    );
+    let outcome = guarded("1 N*m", &trip);
+    near(outcome.channel("wheel.speed", "max"), 6.2, 1e-7);
+    near(outcome.channel("wheel.speed", "max_time"), 6.2, 1e-7);
+    near(*outcome.times("stuck", "holding").last().unwrap(), 6.2 + 6.2 / 5.0, 1e-7);
+}
+
+#[test]
+fn too_much_torque_for_too_long_is_stopped() {
+    // A quarter of the torque stays in the first wheel: the shaft carries 0.75 N*m/s * t.
+    let scenario = format!(
+        "{}bodies:\n  first: {{ inertia: 1 kg*m2 }}\n  second: {{ inertia: 3 kg*m2 }}\n\
+         shafts:\n  shaft: {{ between: [first, second], rigid: true }}\n\
+         motors:\n  push: {{ body: first, law: {{ prescribed: {{ torque: {{ ramp: {{ start: 0 s, end: 8 s, from: 0 N*m, to: 8 N*m }} }} }} }} }}\n\
+         protections:\n  trip: {{ when: {{ of: shaft.torque, at_least: 3 N*m, for: 1.5 s }}, delay: 0.5 s, then: [ {{ end_run: true }} ] }}\n",
+        head(10.0, 0.25, 1e-9),
+    );
+    // 3 N*m at 4 s, held for 1.5 s, 0.5 s for the relay.
+    near(run_through(&scenario).number(&["end_time"]), 6.0, 1e-7);
+}
+
+#[test]
+fn slip_is_told_by_the_difference_of_speeds() {
+    // A coupling far too weak: the wheel runs up as if free and its four pole pairs slip at 4 rad/s2.
+    let weak = "magnetic_couplings:\n  coupling: { between: [wheel, ground], pole_pairs: 4, pull_out: 1e-7 N*m }\n";
+    let trip = format!(
+        "{weak}protections:\n  trip: {{ when: {{ of: coupling.slip_speed, at_least: 20 rad/s, for: 1 s }}, then: [ {{ end_run: true }} ] }}\n"
+    );
+    near(guarded("1 N*m", &trip).number(&["end_time"]), 6.0, 1e-6);
+}
+
+#[test]
+fn loss_of_drive_lets_the_brake_fall() {
+    // The torque is gone at 3 s; half a second later the brake stops 3 rad/s in 0.6 s.
+    let gone = "{ step: { at: 3 s, from: 1 N*m, to: 0 N*m } }";
+    let trip = format!(
+        "{BRAKE}protections:\n  lost: {{ when: {{ of: push.torque, at_most: 0.1 N*m, for: 0.5 s }}, {STOP} }}\n"
+    );
+    let outcome = guarded(gone, &trip);
+    near(*outcome.times("protection", "lost").last().unwrap(), 3.5, 1e-9);
+    near(*outcome.times("stuck", "holding").last().unwrap(), 4.1, 1e-7);
+}
+
+#[test]
+fn a_margin_says_how_late_the_trip_may_come() {
+    // 6 rad/s at 6 s, at most 7.5 rad/s allowed, 1 rad/s2: 1.5 s.
+    let scenario = format!(
+        "{}bodies:\n  wheel: {{ inertia: 1 kg*m2 }}\n\
+         motors:\n  push: {{ body: wheel, law: {{ prescribed: {{ torque: 1 N*m }} }} }}\n{BRAKE}\
+         protections:\n  trip: {{ when: {{ of: wheel.speed, at_least: 6 rad/s }}, delay: 0.5 s, {STOP} }}\n\
+         requirements:\n  speed: {{ of: wheel.speed, at_most: 7.5 rad/s }}\n\
+         studies:\n  how_late: {{ margin: {{ vary: protections.trip.delay, between: [0 s, 4 s] }} }}\n",
+        head(10.0, 0.25, 1e-9),
+    );
+    let folder = Folder::new();
+    folder.write("case.yaml", &scenario);
+    let outcome =
+        call(folder, &["study", "case.yaml", "how_late", "--out", "out", "--format", "json"], "");
+    assert_eq!(outcome.status, Some(0), "{}", outcome.stderr);
+    near(outcome.number(&["studies", "how_late", "value"]), 1.5, 0.0021);
+    near(outcome.number(&["studies", "how_late", "margin_share"]), 2.0, 0.0042);
 }

@@ -238,3 +238,44 @@ fn inertia_vanishes_from_strongly_damped_slip() {
         near(fine - (coarse - fine) / 3.0, 0.0, 1e-6);
     }
 }
+
+/// End of twice the pull-out torque, and from the first slip to being back short of the peak for
+/// good, both without dimension, at damping 2: by SciPy (DOP853, rtol 1e-12, events on the phase).
+pub const SPELLS: [(f64, f64); 2] = [(8.0, 1.4185597613278667), (13.0, 9.109119127920877)];
+
+/// A coupling pushed to slip; `limit` is the time it may slip, s.
+pub fn pushed(torque: Vec<(f64, f64)>, duration: f64, limit: f64) -> String {
+    let swing = Swing { beta: 2.0, torque: (2.0, torque), duration, ..Swing::workshop() };
+    swing.yaml().replace("pull_out: 40,", &format!("pull_out: 40, slip_time_limit: {limit} s,"))
+}
+
+#[test]
+fn the_time_it_slips_is_told_against_what_is_allowed() {
+    let frequency = Swing::workshop().frequency();
+    for (push, expected) in SPELLS {
+        let length = expected / frequency;
+        for (limit, warned) in [(0.99 * length, true), (1.01 * length, false)] {
+            let outcome = run_through(&pushed(vec![(push, 0.0)], 60.0, limit));
+            same(outcome.number(&["gears", "coupling", "longest_slipping"]), length, 1e-7);
+            same(outcome.number(&["gears", "coupling", "slipping_time"]), length, 1e-7);
+            let told = outcome.at(&["warnings"]).to_string().contains("at a stretch");
+            assert_eq!(told, warned, "{limit} s, {length} s");
+        }
+    }
+}
+
+#[test]
+fn two_stretches_of_slipping_are_told_apart() {
+    let frequency = Swing::workshop().frequency();
+    let twice = vec![(8.0, 0.0), (40.0, 2.0), (48.0, 0.0)];
+    let outcome = run_through(&pushed(twice, 90.0, 0.01));
+    let one = SPELLS[0].1 / frequency;
+    same(outcome.number(&["gears", "coupling", "longest_slipping"]), one, 1e-7);
+    same(outcome.number(&["gears", "coupling", "slipping_time"]), 2.0 * one, 1e-7);
+    // Under a torque that goes on it slips to the end.
+    let outcome = run_through(&pushed(Vec::new(), 60.0, 0.01));
+    let first = outcome.slip_times("coupling")[0];
+    let length = 60.0 / frequency - first;
+    same(outcome.number(&["gears", "coupling", "longest_slipping"]), length, 1e-12);
+    same(outcome.number(&["gears", "coupling", "longest_slipping_from"]), first, 1e-12);
+}

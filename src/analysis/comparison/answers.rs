@@ -209,6 +209,7 @@ fn gear(name: &str, put: &mut dyn FnMut(Question<'_>)) {
     of("final_load_angle", "load angle at the end", "rad", "load_angle", &|it| {
         Some(Found::Number(it.final_load_angle))
     });
+    of("slipping_time", "time slipping", "s", "", &|it| Some(Found::Number(it.slipping_time)));
     of("time_past_peak", "time past the peak", "s", "", &|it| {
         Some(Found::Number(it.time_past_peak))
     });

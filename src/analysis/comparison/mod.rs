@@ -2,10 +2,12 @@
 
 mod answers;
 mod inputs;
+mod records;
 
 pub use answers::{Figure, Found};
 pub use inputs::InputDifference;
 
+use crate::analysis::records::RecordComparison;
 use crate::results::RunResult;
 use crate::tree::Node;
 
@@ -18,6 +20,8 @@ pub struct Subject<'a> {
     pub node: &'a Node,
     /// What it found.
     pub result: &'a RunResult,
+    /// How far it is from measured records.
+    pub records: &'a [RecordComparison],
 }
 
 /// Runs side by side; every list of values has one entry a run, in their order.
@@ -35,10 +39,14 @@ pub struct Comparison {
 pub fn compare(subjects: &[Subject<'_>]) -> Comparison {
     let nodes: Vec<&Node> = subjects.iter().map(|subject| subject.node).collect();
     let results: Vec<&RunResult> = subjects.iter().map(|subject| subject.result).collect();
+    let records: Vec<&[RecordComparison]> =
+        subjects.iter().map(|subject| subject.records).collect();
+    let mut figures = records::figures(&records);
+    figures.extend(answers::figures(&results));
     Comparison {
         names: subjects.iter().map(|subject| subject.name.to_owned()).collect(),
         inputs: inputs::differences(&nodes),
-        figures: answers::figures(&results),
+        figures,
     }
 }
 

@@ -13,7 +13,7 @@ use crate::component::pair_law::PairLaw;
 use crate::equations::assembly::{Active, Assembly, Function, assemble};
 use crate::equations::frame::Evaluator;
 use crate::equations::linearise::{MagnetSlope, jacobian};
-use crate::equations::{Equations, Owner, dot};
+use crate::equations::{Equations, Owner, dot, thermal};
 use nalgebra::{DMatrix, DVector};
 
 /// Which stiffness the magnets have.
@@ -47,15 +47,20 @@ pub fn linearise(equations: &Equations, point: &LinearPoint, load: MagnetLoad) -
     let assembly = assemble(equations, &point.mode, point.time, end, &point.overrides);
     let evaluator = Evaluator { equations, assembly: &assembly, overrides: &point.overrides };
     let mut full = jacobian(&evaluator, point.time, &point.state, MagnetSlope::AtState);
+    thermal::hold(equations, &mut full);
     let mut magnet_stiffness = vec![0.0; equations.model.magnets.len()];
     for active in &assembly.active {
         let input = active.input_at(&point.state);
         match &active.function {
-            Function::Law(Law::Magnet(law), _) => {
-                let here = law.slope(input);
+            Function::Law(Law::Magnet(law), _) | Function::Warm(Law::Magnet(law), _) => {
+                let warm = match &active.function {
+                    Function::Warm(_, gains) => thermal::product(gains, &point.state),
+                    _ => 1.0,
+                };
+                let here = warm * law.slope(input);
                 let wanted = match load {
                     MagnetLoad::AtPoint => here,
-                    MagnetLoad::None => law.slope(law.stable_point()),
+                    MagnetLoad::None => warm * law.slope(law.stable_point()),
                 };
                 add(&mut full, active, wanted - here);
                 let index = equations.terms.get(active.place).map(|term| term.owner);

@@ -129,13 +129,16 @@ fn read_excitation(fields: &mut Fields<'_>, known: Known<'_>) -> ExcitationSpec 
         Range::Positive,
         "A frequency that follows no speed.",
     );
+    let turns = body.is_some() || against.is_some();
+    // `ground` typed out is the default.
+    let against = against.filter(|other| other != "ground");
     for (key, name) in [("body", &body), ("against", &against)] {
         if let Some(name) = name {
             known_body(fields, key, name, known);
         }
     }
     let follows = match (body, order, frequency) {
-        (None, None, Some(frequency)) if against.is_none() => Follows::Frequency(frequency),
+        (None, None, Some(frequency)) if !turns => Follows::Frequency(frequency),
         (Some(body), Some(order), None) => Follows::Turns { body, against, order },
         _ => {
             if !fields.describing() {

@@ -153,11 +153,12 @@ fn look_again(
     margin: &Margin,
     work: &mut Work<'_, '_>,
 ) -> Result<Sharper, Stop> {
+    let setting = work.sharper_setting();
     let at = |value: f64| Task { sharper: true, ..Task::at(SHARPER, vec![value]) };
     let row = work.batch(&[at(bracket.good), at(bracket.bad)])?;
     let (good, bad) = (is_good(work, row), !is_good(work, row + 1));
     if good && bad {
-        return Ok(Sharper { held: true, value: Some(bracket.good) });
+        return Ok(Sharper { setting, held: true, value: Some(bracket.good) });
     }
     // Towards the end of the range while it stays good, towards its begin while it stays bad.
     let outwards = good;
@@ -179,10 +180,10 @@ fn look_again(
                 Bracket { good: next, bad: here, good_row: next_row, bad_row: here_row }
             };
             let found = narrow(found, margin, true, work)?;
-            return Ok(Sharper { held: false, value: Some(found.good) });
+            return Ok(Sharper { setting, held: false, value: Some(found.good) });
         }
         (here, here_row) = (next, next_row);
         step *= 2.0;
     }
-    Ok(Sharper { held: false, value: None })
+    Ok(Sharper { setting, held: false, value: None })
 }

@@ -1,7 +1,7 @@
 //! What one run of a study found: only what the study's table and answer need.
 
 use crate::component::requirement::{Requirement, Test};
-use crate::results::{EventKind, GearState, RunResult};
+use crate::results::{ChannelResult, EventKind, GearResult, GearState, RunResult};
 use crate::scenario::Scenario;
 
 /// What the runs of a study are asked for, and in which order it stands in the table.
@@ -123,6 +123,36 @@ pub struct Extremes {
     pub last: f64,
 }
 
+impl GearFound {
+    /// What a run tells of a gear or coupling.
+    pub fn of(gear: &GearResult) -> Self {
+        Self {
+            slips: gear.slips,
+            net_slips: gear.net_slips,
+            state_at_end: gear.state_at_end,
+            resynchronised_at: gear.resynchronised_at,
+            peak_pull_out_share: gear.peak_pull_out_share,
+            peak_pull_out_share_time: gear.peak_pull_out_share_time,
+            peak_load_angle: gear.peak_load_angle,
+            peak_load_angle_time: gear.peak_load_angle_time,
+            final_load_angle: gear.final_load_angle,
+        }
+    }
+}
+
+impl Extremes {
+    /// What a run tells of a channel.
+    pub fn of(channel: &ChannelResult) -> Self {
+        Self {
+            min: channel.min,
+            min_time: channel.min_time,
+            max: channel.max,
+            max_time: channel.max_time,
+            last: channel.last,
+        }
+    }
+}
+
 impl Outcome {
     /// A run that came to nothing.
     pub fn failed(layout: &Layout, end_time: f64, reason: String) -> Self {
@@ -153,30 +183,9 @@ impl Outcome {
                 passed: passed.map(|event| event.time),
             })
         };
-        let gear = |name: &str| {
-            let found = result.gears.iter().find(|one| one.name == name)?;
-            Some(GearFound {
-                slips: found.slips,
-                net_slips: found.net_slips,
-                state_at_end: found.state_at_end,
-                resynchronised_at: found.resynchronised_at,
-                peak_pull_out_share: found.peak_pull_out_share,
-                peak_pull_out_share_time: found.peak_pull_out_share_time,
-                peak_load_angle: found.peak_load_angle,
-                peak_load_angle_time: found.peak_load_angle_time,
-                final_load_angle: found.final_load_angle,
-            })
-        };
-        let extremes = |name: &str| {
-            let found = result.channels.iter().find(|one| one.name == name)?;
-            Some(Extremes {
-                min: found.min,
-                min_time: found.min_time,
-                max: found.max,
-                max_time: found.max_time,
-                last: found.last,
-            })
-        };
+        let gear = |name: &str| result.gears.iter().find(|one| one.name == name).map(GearFound::of);
+        let extremes =
+            |name: &str| result.channels.iter().find(|one| one.name == name).map(Extremes::of);
         Self {
             failure: None,
             end_time: result.end_time,

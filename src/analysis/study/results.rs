@@ -104,6 +104,8 @@ pub struct MarginAnswer {
 /// What a tenth of the tolerance made of the bracket.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Sharper {
+    /// What was taken a tenth of: `tolerance`, or `step` with rk4.
+    pub setting: &'static str,
     /// True when the same value is the last good one and the same the first bad one.
     pub held: bool,
     /// The last good value at that tolerance, where it could be found within the range.

@@ -150,6 +150,14 @@ impl<'a, 's> Work<'a, 's> {
         Self { setting, varied, layout, rows: Vec::new(), cost: Cost::default(), kept: 0, expected }
     }
 
+    /// What a sharper run takes a tenth of: the tolerance, or the step with rk4.
+    pub fn sharper_setting(&self) -> &'static str {
+        match self.setting.base.get("solver").and_then(|solver| solver.get("method")) {
+            Some(Node::Text(method)) if method == "rk4" => "step",
+            _ => "tolerance",
+        }
+    }
+
     /// Makes runs and returns the number of the first; those known before are not repeated.
     ///
     /// # Errors

@@ -89,6 +89,8 @@ fn every_law() -> Vec<(&'static str, Law, [f64; 2], f64)> {
         ("magnet", Law::Magnet(MagnetLaw::new(75.0, &[]).unwrap()), none, 4.0),
         ("harmonic magnet", Law::Magnet(MagnetLaw::new(75.0, &harmonics).unwrap()), none, 4.0),
         ("damper", Law::FadingDamper { coefficient: 24.2, peak_at: 12.0 }, none, 60.0),
+        ("heat", Law::LossHeat { constant: 3.0, coefficient: 0.4, peak_at: 12.0 }, none, 60.0),
+        ("field", Law::MagnetEnergy(MagnetLaw::new(75.0, &harmonics).unwrap()), none, 4.0),
         ("cogging", Law::Cogging { order: 104.0, torque: 2.0, phase: 0.4 }, none, 0.5),
         ("induction", Law::Induction(Induction::new(157.0, 450.0, 0.12)), none, 400.0),
         ("plate", Law::RatingPlate(RatingPlate::new(&plate)), none, 400.0),

@@ -32,6 +32,36 @@ pub struct Tolerance {
     pub sheet: Sheet,
 }
 
+/// Draws counted by their largest share, in percent.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Bins {
+    /// Where the first begins.
+    pub low: f64,
+    /// Width of each; the last ends at 100.
+    pub width: f64,
+    /// Draws in each.
+    pub counts: Vec<u64>,
+}
+
+impl Tolerance {
+    /// The bars of the histogram.
+    pub fn bins(&self) -> Bins {
+        let finite = self.shares.iter().filter(|share| share.is_finite());
+        let percent: Vec<f64> = finite.map(|share| (100.0 * share).clamp(0.0, 100.0)).collect();
+        let lowest = percent.iter().copied().fold(100.0, f64::min);
+        let low = (lowest / 10.0).floor() * 10.0;
+        let low = if low >= 95.0 { 90.0 } else { low };
+        let width = ticks::nice_step((100.0 - low) / 60.0).max(0.5);
+        Bins { low, width, counts: histogram(&percent, low, width) }
+    }
+
+    /// All draws of the chart.
+    pub fn draws(&self) -> u64 {
+        let short = self.shares.iter().filter(|share| share.is_finite()).count() as u64;
+        short + u64::from(self.came_back) + u64::from(self.slipped)
+    }
+}
+
 const TOP: f64 = 24.0;
 const FOOT: f64 = 40.0;
 /// Room for the two bars behind the wall, px.
@@ -43,18 +73,8 @@ const WORDS: f64 = 122.0;
 pub fn tolerance_chart(input: &Tolerance) -> Drawing {
     let sheet = input.sheet.sound();
     let height = sheet.height.unwrap_or(280.0);
-    let percent: Vec<f64> = input
-        .shares
-        .iter()
-        .filter(|share| share.is_finite())
-        .map(|share| (100.0 * share).clamp(0.0, 100.0))
-        .collect();
-    let lowest = percent.iter().copied().fold(100.0, f64::min);
-    let low = (lowest / 10.0).floor() * 10.0;
-    let low = if low >= 95.0 { 90.0 } else { low };
-    let width = ticks::nice_step((100.0 - low) / 60.0).max(0.5);
-    let bins = histogram(&percent, low, width);
-    let draws = percent.len() as u64 + u64::from(input.came_back) + u64::from(input.slipped);
+    let Bins { low, width, counts: bins } = input.bins();
+    let draws = input.draws();
     let tallest =
         bins.iter().copied().max().unwrap_or(0).max(u64::from(input.came_back.max(input.slipped)));
     // A fifth of the height is left for the bar of quantiles.

@@ -172,6 +172,9 @@ fn gear(name: &str, at: &At<'_>, scenario: &Scenario) -> Result<GearResult, Stri
         members,
         natural_period: 1.0 / at.number("natural_frequency_hz")?,
         time_past_peak: at.number("time_past_peak")?,
+        slipping_time: at.optional("slipping_time").unwrap_or(0.0),
+        longest_slipping: at.optional("longest_slipping").unwrap_or(0.0),
+        longest_slipping_from: at.optional("longest_slipping_from").unwrap_or(0.0),
         slip_events,
     })
 }

@@ -4,10 +4,12 @@
 //! when the file has changed since.
 
 mod figures;
+mod records;
 mod series;
 
 use super::folder::FolderFault;
 use super::leftovers;
+use crate::analysis::records::RecordComparison;
 use crate::results::{RunResult, Traces};
 use crate::scenario::{self, Loaded};
 use crate::solve::TraceRequest;
@@ -26,6 +28,8 @@ pub struct Kept {
     pub loaded: Loaded,
     /// What the run found; traces are made from the rows when asked for.
     pub result: RunResult,
+    /// How far it is from measured records.
+    pub records: Vec<RecordComparison>,
     /// What must be known about it.
     pub warnings: Vec<String>,
     folder: PathBuf,
@@ -122,7 +126,8 @@ pub fn read(folder: &Path) -> Result<Kept, Box<KeptFault>> {
         })
         .into_iter()
         .collect();
-    Ok(Kept { loaded, result, warnings, folder: folder.to_path_buf() })
+    let records = records::read(&summary, &loaded.scenario);
+    Ok(Kept { loaded, result, records, warnings, folder: folder.to_path_buf() })
 }
 
 fn told(error: &io::Error) -> String {

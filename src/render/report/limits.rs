@@ -51,10 +51,18 @@ pub fn limits(material: &Material<'_>) -> Vec<String> {
         "The gear's damping grows in a straight line with slip speed, without end. Cages and eddy currents fade \
          beyond a peak: a return into step found with a straight line can be too good to be true.",
     );
+    let gears = scenario.magnetic_gears.iter().map(|gear| &gear.field);
+    let fields = gears.chain(scenario.magnetic_couplings.iter().map(|coupling| &coupling.field));
+    let warming = fields.filter(|field| !field.warmth.is_steady()).count();
     say(
-        magnets > 0,
+        magnets > warming,
         "The temperature of the magnets stays as given during the run; heating by losses and slips, and \
          demagnetisation, are not followed.",
+    );
+    say(
+        warming > 0,
+        "Magnets with thermal nodes warm up by their share of the gear's own losses, evenly inside and in still \
+         surroundings; what they lose for good when they get too hot is not followed.",
     );
     say(
         material.result.gears.iter().any(|gear| gear.slips > 0),

@@ -69,7 +69,9 @@ fn tables(material: &Material<'_>, study: &StudyResult) -> (String, String) {
         Answer::LoadCases(answer) => (load_cases(material, answer, study), String::new()),
         Answer::Margin(_) => (String::new(), runs(study)),
         Answer::Sweep(answer) => (sweep_words(answer), runs(study)),
-        Answer::MonteCarlo(answer) => (monte_carlo(material, answer), String::new()),
+        Answer::MonteCarlo(answer) => {
+            (monte_carlo(material, answer), study_charts::tolerance_table(material, study, answer))
+        }
         Answer::Modes(answer) => (one_run::modes(material, answer), String::new()),
         Answer::Rainflow(answer) => (String::new(), one_run::rainflow(answer)),
         Answer::Estimates(answer) => (one_run::estimates(material, answer), String::new()),

@@ -1,6 +1,7 @@
 //! From the answers of studies to their charts.
 
 use super::Material;
+use super::html::HtmlTable;
 use super::one_run;
 use super::requirements::use_of_limit;
 use crate::analysis::study::results::{
@@ -15,7 +16,7 @@ use crate::render::chart::load_cases::{CaseBar, LoadCases, load_cases_chart};
 use crate::render::chart::map::{Cell, MapChart, Parameter, map_chart};
 use crate::render::chart::margin::{MarginChart, MarginPoint, margin_chart};
 use crate::render::chart::marks::Forbidden;
-use crate::render::chart::number::{capital, percent, unit_text, words};
+use crate::render::chart::number::{NBSP, capital, fixed, number, percent, unit_text, words};
 use crate::render::chart::tolerance::{Tolerance, tolerance_chart};
 use crate::results::{GearState, RequirementResult};
 
@@ -239,6 +240,47 @@ fn tolerance(
     study: &StudyResult,
     answer: &MonteCarloAnswer,
 ) -> Option<(Drawing, String)> {
+    let (chart, name) = scatter(material, study, answer)?;
+    let caption = format!(
+        "Largest share of the pull-out torque of `{name}` in {} draws (seed {}). The hatched wall is the pull-out torque; \
+         draws beyond it stand behind the wall. The bar above is from 5 % over the median to 95 %.",
+        answer.draws, answer.seed
+    );
+    Some((tolerance_chart(&chart), caption))
+}
+
+/// The bars of the chart of a tolerance study as a table.
+pub fn tolerance_table(
+    material: &Material<'_>,
+    study: &StudyResult,
+    answer: &MonteCarloAnswer,
+) -> String {
+    let Some((chart, _)) = scatter(material, study, answer) else { return String::new() };
+    let (bins, draws) = (chart.bins(), chart.draws());
+    let head = ["Peak pull-out share", "Draws", "Of all", "Up to here"];
+    let mut table = HtmlTable::new("<>>>", &head).class("small");
+    let mut so_far = 0;
+    let mut row = |name: String, count: u64| {
+        so_far += count;
+        let share =
+            |part: u64| format!("{}{NBSP}%", fixed(100.0 * part as f64 / draws.max(1) as f64, 1));
+        table.row([name, count.to_string(), share(count), share(so_far)]);
+    };
+    for (place, count) in bins.counts.iter().enumerate().filter(|(_, count)| **count > 0) {
+        let from = bins.low + bins.width * place as f64;
+        row(format!("{} to {}{NBSP}%", number(from, 4), number(from + bins.width, 4)), *count);
+    }
+    row("past the peak, came back".to_owned(), u64::from(chart.came_back));
+    row("slipped".to_owned(), u64::from(chart.slipped));
+    table.html()
+}
+
+/// How the largest share of the gear nearest to its limit scatters, and that gear.
+fn scatter<'s>(
+    material: &Material<'_>,
+    study: &StudyResult,
+    answer: &'s MonteCarloAnswer,
+) -> Option<(Tolerance, &'s str)> {
     const END: &str = ".peak_pull_out_share";
     let median = |values: &[f64]| values.get(3).copied().unwrap_or(0.0);
     let scatter = answer
@@ -271,10 +313,5 @@ fn tolerance(
             chart.shares.push(found.peak_pull_out_share);
         }
     }
-    let caption = format!(
-        "Largest share of the pull-out torque of `{name}` in {} draws (seed {}). The hatched wall is the pull-out torque; \
-         draws beyond it stand behind the wall. The bar above is from 5 % over the median to 95 %.",
-        answer.draws, answer.seed
-    );
-    Some((tolerance_chart(&chart), caption))
+    Some((chart, name))
 }

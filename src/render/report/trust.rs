@@ -55,7 +55,8 @@ fn accuracy(material: &Material<'_>) -> String {
         return html;
     }
     let comparison = Comparison::of(material, sharper);
-    html.push_str(&paragraph(&comparison.sentence()));
+    let setting = if work.method == "rk4" { "step" } else { "tolerance" };
+    html.push_str(&paragraph(&comparison.sentence(setting)));
     html.push_str(&comparison.table.html());
     html
 }
@@ -160,16 +161,16 @@ impl Comparison {
         self.table.row([escape(name), told(pair[0]), told(pair[1]), moved]);
     }
 
-    fn sentence(&self) -> String {
+    fn sentence(&self, setting: &str) -> String {
         if !self.changed.is_empty() {
             return format!(
-                "<b>At a tenth of the tolerance the outcome differs:</b> {}. The case is sensitive, or the \
-                 tolerance too coarse: do not rely on the figures that moved.",
+                "<b>At a tenth of the {setting} the outcome differs:</b> {}. The case is sensitive, or the \
+                 {setting} too coarse: do not rely on the figures that moved.",
                 rich(&self.changed.join(", "))
             );
         }
         format!(
-            "The same run at a tenth of the tolerance gives the same slips and verdicts; no figure moves by more \
+            "The same run at a tenth of the {setting} gives the same slips and verdicts; no figure moves by more \
              than {} of itself. This tells the error of the integration, not that of the model or its inputs.",
             share_text(self.worst)
         )

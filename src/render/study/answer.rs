@@ -166,14 +166,18 @@ fn margin_notes(answer: &MarginAnswer, notes: &mut Vec<String>) {
     }
     match &answer.sharper {
         Some(sharper) if sharper.held => {
-            notes.push("a tenth of the tolerance gives the same bracket".to_owned());
+            notes.push(format!("a tenth of the {} gives the same bracket", sharper.setting));
         }
         Some(sharper) => notes.push(match sharper.value {
             Some(value) => format!(
-                "a tenth of the tolerance moves the limit to {}: give a smaller solver.tolerance",
+                "a tenth of the {0} moves the limit to {1}: give a smaller solver.{0}",
+                sharper.setting,
                 precise(answer, value)
             ),
-            None => "a tenth of the tolerance moves the limit out of the range: give a smaller solver.tolerance".to_owned(),
+            None => format!(
+                "a tenth of the {0} moves the limit out of the range: give a smaller solver.{0}",
+                sharper.setting
+            ),
         }),
         None => {}
     }

@@ -1,12 +1,12 @@
 //! The answer of a study for machines: SI and rad.
 
 use super::{answer, of_one_run, steady};
-use crate::analysis::study::outcome::{GearFound, Outcome};
+use crate::analysis::study::outcome::Outcome;
 use crate::analysis::study::results::{
     Answer, CaseAnswer, MarginAnswer, MonteCarloAnswer, SHARES, Sensitivity, StudyResult,
     SweepAnswer,
 };
-use crate::render::json::{named, requirements};
+use crate::render::json::{extremes, gear_found, named, requirements};
 use crate::render::number::{json, json_optional};
 use serde_json::{Map, Value};
 
@@ -107,6 +107,7 @@ fn margin_answer(answer: &MarginAnswer, result: &StudyResult) -> Entries {
             "tenth_of_tolerance",
             answer.sharper.map_or(Value::Null, |sharper| {
                 named([
+                    ("setting", Value::from(sharper.setting)),
                     ("held", Value::from(sharper.held)),
                     ("value", json_optional(sharper.value)),
                 ])
@@ -161,37 +162,16 @@ fn load_cases(cases: &[CaseAnswer], result: &StudyResult) -> Value {
 
 fn gears(outcome: &Outcome, result: &StudyResult) -> Value {
     let all = result.layout.gears.iter().zip(&outcome.gears);
-    named(all.filter_map(|(name, found)| Some((name.as_str(), gear(found.as_ref()?)))))
-}
-
-fn gear(gear: &GearFound) -> Value {
-    named([
-        ("slips", Value::from(gear.slips)),
-        ("net_slips", Value::from(gear.net_slips)),
-        ("state_at_end", Value::from(gear.state_at_end.word())),
-        ("resynchronised_at", json_optional(gear.resynchronised_at)),
-        ("peak_pull_out_share", json(gear.peak_pull_out_share)),
-        ("peak_pull_out_share_time", json(gear.peak_pull_out_share_time)),
-        ("peak_load_angle", json(gear.peak_load_angle)),
-        ("peak_load_angle_time", json(gear.peak_load_angle_time)),
-        ("final_load_angle", json(gear.final_load_angle)),
-    ])
+    named(all.filter_map(|(name, found)| Some((name.as_str(), named(gear_found(found.as_ref()?))))))
 }
 
 fn channels(outcome: &Outcome, result: &StudyResult) -> Value {
     let all = result.layout.channels.iter().zip(&outcome.channels);
-    named(all.filter_map(|((name, unit), found)| {
-        let found = found.as_ref()?;
-        let figures = named([
-            ("unit", Value::from(*unit)),
-            ("min", json(found.min)),
-            ("min_time", json(found.min_time)),
-            ("max", json(found.max)),
-            ("max_time", json(found.max_time)),
-            ("final", json(found.last)),
-        ]);
-        Some((name.as_str(), figures))
-    }))
+    named(
+        all.filter_map(|((name, unit), found)| {
+            Some((name.as_str(), extremes(unit, found.as_ref()?)))
+        }),
+    )
 }
 
 fn sweep_answer(answer: &SweepAnswer, result: &StudyResult) -> Entries {

@@ -142,6 +142,8 @@ impl External<'_> {
             Shape::Linear => input,
             Shape::Pair(PairLaw::Reciprocating(_), _) => 0.0,
             Shape::Pair(law, second) => law.value(input, crate::equations::dot(second, state)),
+            // The torque of magnets is that of the train's own deformation.
+            Shape::Warm(..) => 0.0,
             // Of products of states only a machine's torque reaches the train.
             Shape::Products(_) => self.machine(term, input),
             // Torques over an angle count by their mean over a turn, which is zero.

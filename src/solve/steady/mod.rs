@@ -18,7 +18,7 @@ use crate::equations::assembly::assemble;
 use crate::equations::frame::Evaluator;
 use crate::equations::linearise::{MagnetSlope, eigenvalues, jacobian};
 use crate::equations::mode::{FrictionMode, Mode};
-use crate::equations::{Equations, Shape};
+use crate::equations::{Equations, Shape, thermal};
 use crate::signal::course::Overrides;
 use balance::Balance;
 use external::External;
@@ -90,6 +90,10 @@ pub fn find(
         if let Some(place) = controller.torque_state {
             state[place] = torque / equations.scale[place];
         }
+    }
+    // Magnets warm up over minutes: the motion is in balance at the temperatures of the start.
+    for node in &equations.thermal {
+        state[node.place] = node.start / equations.scale[node.place];
     }
     let external = External { equations, time, overrides };
     for machine in &equations.machines {
@@ -217,7 +221,8 @@ fn element(equations: &Equations, place: usize, value: f64) -> (f64, f64) {
         return (shaft.stiffness * beyond.copysign(value), shaft.stiffness);
     }
     for term in &equations.terms {
-        if let (Shape::Law(Law::Magnet(law)), [(state, _)]) = (&term.shape, term.input.as_slice())
+        if let (Shape::Law(Law::Magnet(law)) | Shape::Warm(Law::Magnet(law), _), [(state, _)]) =
+            (&term.shape, term.input.as_slice())
             && *state == place
         {
             return (law.value(value), law.slope(value).max(1e-6 * law.amplitude()));
@@ -294,7 +299,8 @@ fn check(
             )));
         }
     }
-    let matrix = jacobian(&evaluator, time, state, MagnetSlope::AtState);
+    let mut matrix = jacobian(&evaluator, time, state, MagnetSlope::AtState);
+    thermal::hold(equations, &mut matrix);
     let Some(values) = eigenvalues(&matrix) else { return Ok(()) };
     let fastest = values.iter().fold(0.0_f64, |size, (re, im)| size.max(re.hypot(*im)));
     let growth = values.iter().fold(0.0_f64, |growth, (re, _)| growth.max(*re));

@@ -10,6 +10,7 @@ mod fatigue;
 mod fluxes;
 mod friction;
 mod gears;
+mod heat;
 mod limits;
 mod machines;
 mod sheet;
@@ -50,6 +51,7 @@ fn cases() -> Vec<Case> {
         limits::cases,
         slip::cases,
         gears::cases,
+        heat::cases,
         starts::cases,
         machines::cases,
         fluxes::cases,
