@@ -1,20 +1,18 @@
 //! Channels: every quantity of a train that can be asked for by name.
 
-mod things;
-
 use super::body::Body;
 use super::brake::Brake;
 use super::clutch::Clutch;
 use super::fluid_coupling::FluidCoupling;
 use super::gear_pair::GearPair;
 use super::load::Load;
-use super::magnet_temperature::{HALVES, ROTORS};
 use super::magnetic_gear::{MagneticCoupling, MagneticGear};
-use super::motor::{Motor, MotorLaw};
+use super::motor::Motor;
 use super::planetary::PlanetaryGear;
 use super::shaft::Shaft;
 use crate::quantity::Dimension;
-use things::{adder, between, clutches, load_channels, magnetic, temperatures};
+
+pub use super::channel_list::list;
 
 /// One channel.
 #[derive(Clone, Debug, PartialEq)]
@@ -243,105 +241,4 @@ pub struct Train<'a> {
     pub loads: &'a [Load],
     /// Brakes.
     pub brakes: &'a [Brake],
-}
-
-/// Lists all channels of a train, sections in the order given, things in file order.
-pub fn list(train: &Train<'_>, order: &[Section]) -> Vec<Channel> {
-    let mut channels = Vec::new();
-    for section in order {
-        match section {
-            Section::Bodies => {
-                for (place, body) in train.bodies.iter().enumerate() {
-                    let mut add = adder(&mut channels, &body.name);
-                    add("speed", ChannelKind::BodySpeed(place), Dimension::Speed);
-                    add("angle", ChannelKind::BodyAngle(place), Dimension::Angle);
-                }
-            }
-            Section::Shafts => {
-                for (place, shaft) in train.shafts.iter().enumerate() {
-                    let mut add = adder(&mut channels, &shaft.name);
-                    add("torque", ChannelKind::ShaftTorque(place), Dimension::Torque);
-                    if !shaft.rigid {
-                        add("twist", ChannelKind::ShaftTwist(place), Dimension::Angle);
-                    }
-                }
-            }
-            Section::MagneticGears => {
-                for (place, gear) in train.magnetic_gears.iter().enumerate() {
-                    magnetic(&mut channels, &gear.name, place, false);
-                    if gear.losses.is_some() {
-                        let mut add = adder(&mut channels, &gear.name);
-                        for (channel, kind) in [
-                            ("hysteresis_loss", MagneticChannel::HysteresisLoss),
-                            ("eddy_loss", MagneticChannel::EddyLoss),
-                        ] {
-                            add(channel, ChannelKind::Magnetic(place, kind), Dimension::Power);
-                        }
-                    }
-                    temperatures(&mut channels, &gear.name, place, &gear.field, ROTORS);
-                }
-            }
-            Section::MagneticCouplings => {
-                let gears = train.magnetic_gears.len();
-                for (place, coupling) in train.magnetic_couplings.iter().enumerate() {
-                    magnetic(&mut channels, &coupling.name, gears + place, true);
-                    let (name, place) = (&coupling.name, gears + place);
-                    temperatures(&mut channels, name, place, &coupling.field, HALVES);
-                }
-            }
-            Section::GearPairs => {
-                for (place, pair) in train.gear_pairs.iter().enumerate() {
-                    let mut add = adder(&mut channels, &pair.name);
-                    for (member, channel) in ["torque_a", "torque_b"].into_iter().enumerate() {
-                        let kind = ChannelKind::GearPairTorque(place, member);
-                        add(channel, kind, Dimension::Torque);
-                    }
-                    if !pair.drag.is_empty() {
-                        add("loss", ChannelKind::GearPairLoss(place), Dimension::Power);
-                    }
-                }
-            }
-            Section::PlanetaryGears => {
-                for (place, set) in train.planetary_gears.iter().enumerate() {
-                    let mut add = adder(&mut channels, &set.name);
-                    let members = ["torque_sun", "torque_carrier", "torque_ring"];
-                    for (member, channel) in members.into_iter().enumerate() {
-                        let kind = ChannelKind::PlanetaryTorque(place, member);
-                        add(channel, kind, Dimension::Torque);
-                    }
-                }
-            }
-            Section::OverrunningClutches => clutches(&mut channels, train.clutches, true),
-            Section::TorqueLimiters => clutches(&mut channels, train.clutches, false),
-            Section::FluidCouplings => {
-                for (place, coupling) in train.fluid_couplings.iter().enumerate() {
-                    let kind = |what| ChannelKind::FluidCoupling(place, what);
-                    between(&mut channels, &coupling.name, &kind);
-                }
-            }
-            Section::Motors => {
-                for (place, motor) in train.motors.iter().enumerate() {
-                    let mut add = adder(&mut channels, &motor.name);
-                    add("torque", ChannelKind::MotorTorque(place), Dimension::Torque);
-                    add("power", ChannelKind::MotorPower(place), Dimension::Power);
-                    if matches!(motor.law, MotorLaw::InductionCircuit { .. }) {
-                        add("current", ChannelKind::MotorCurrent(place), Dimension::Current);
-                    }
-                }
-            }
-            Section::Loads => {
-                for (place, load) in train.loads.iter().enumerate() {
-                    load_channels(&mut channels, load, place);
-                }
-            }
-            Section::Brakes => {
-                for (place, brake) in train.brakes.iter().enumerate() {
-                    let mut add = adder(&mut channels, &brake.name);
-                    add("torque", ChannelKind::BrakeTorque(place), Dimension::Torque);
-                    add("power", ChannelKind::BrakePower(place), Dimension::Power);
-                }
-            }
-        }
-    }
-    channels
 }

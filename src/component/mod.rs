@@ -3,6 +3,7 @@
 pub mod body;
 pub mod brake;
 pub mod channel;
+mod channel_list;
 pub mod clutch;
 pub mod elastic_curve;
 pub mod fluid_coupling;

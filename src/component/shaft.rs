@@ -64,7 +64,7 @@ impl Shaft {
         let solid = fields.group_optional(
             "solid",
             "The dimensions of a round solid or hollow shaft, instead of stiffness.",
-            |fields| read_solid(fields, None),
+            |fields| read_solid(fields, Beside::Nothing),
         );
         let coefficient = fields.quantity_optional(
             "damping",
@@ -159,6 +159,17 @@ enum Stiffness {
     Curve(ElasticCurve),
 }
 
+/// What else could stand beside the dimensions of a solid.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Beside {
+    /// Nothing: the dimensions are needed.
+    Nothing,
+    /// Points stand in their place.
+    Points,
+    /// Points could, but do not.
+    NoPoints,
+}
+
 fn read_stiffness(fields: &mut Fields<'_>) -> Stiffness {
     let points = read_pairs(
         fields,
@@ -167,7 +178,8 @@ fn read_stiffness(fields: &mut Fields<'_>) -> Stiffness {
         "twists",
         "Rows of twist and torque instead of a solid: from no twist (both sides alike), or from a negative one through it.",
     );
-    let stiffness = read_solid(fields, Some(points.is_some()));
+    let beside = if points.is_some() { Beside::Points } else { Beside::NoPoints };
+    let stiffness = read_solid(fields, beside);
     match points {
         Some(points) => Stiffness::Curve(read_points(fields, points)),
         None => Stiffness::Linear(stiffness),
@@ -211,23 +223,20 @@ fn read_points(fields: &mut Fields<'_>, mut points: Vec<[f64; 2]>) -> ElasticCur
 }
 
 /// Stiffness of a round shaft in torsion, `G pi (D^4 - d^4) / (32 L)` (handbook of mechanics of materials).
-///
-/// `points`: whether points may stand instead, and do.
-fn read_solid(fields: &mut Fields<'_>, points: Option<bool>) -> f64 {
-    let missing = |fields: &mut Fields<'_>, key| match points {
-        Some(true) if fields.has(key) => {
-            fields.fault(key, format!("`{key}` and `points` exclude each other"));
+fn read_solid(fields: &mut Fields<'_>, beside: Beside) -> f64 {
+    let number = |fields: &mut Fields<'_>, key, dimension, doc| {
+        if beside == Beside::Nothing {
+            return fields.quantity(key, dimension, Range::Positive, doc);
         }
-        Some(true) => {}
-        _ if fields.has(key) => {}
-        Some(false) => fields.miss(key, "or give `points` of twist and torque"),
-        None => fields.miss(key, "a solid shaft needs it"),
+        let number = fields.quantity_optional(key, dimension, Range::Positive, doc);
+        if beside == Beside::Points && fields.has(key) {
+            fields.fault(key, format!("`{key}` and `points` exclude each other"));
+        } else if beside == Beside::NoPoints && !fields.has(key) {
+            fields.miss(key, "or give `points` of twist and torque");
+        }
+        number.unwrap_or(f64::NAN)
     };
-    let length = |fields: &mut Fields<'_>, key, doc| {
-        let length = fields.quantity_optional(key, Dimension::Length, Range::Positive, doc);
-        missing(fields, key);
-        length.unwrap_or(f64::NAN)
-    };
+    let length = |fields: &mut Fields<'_>, key, doc| number(fields, key, Dimension::Length, doc);
     let diameter = length(fields, "diameter", "Outer diameter.");
     let bore = fields.quantity_or(
         "bore",
@@ -237,14 +246,12 @@ fn read_solid(fields: &mut Fields<'_>, points: Option<bool>) -> f64 {
         "Diameter of the hole along the axis.",
     );
     let long = length(fields, "length", "Length that twists.");
-    let shear_modulus = fields.quantity_optional(
+    let shear_modulus = number(
+        fields,
         "shear_modulus",
         Dimension::Pressure,
-        Range::Positive,
         "Shear modulus of the material; steel about 80 GPa.",
     );
-    missing(fields, "shear_modulus");
-    let shear_modulus = shear_modulus.unwrap_or(f64::NAN);
     if bore >= diameter {
         fields.fault("bore", "`bore` must be smaller than `diameter`");
     }
@@ -269,7 +276,8 @@ mod tests {
             ("shear_modulus".into(), text("80 GPa")),
         ]);
         let faults = RefCell::new(Diagnostics::new());
-        let stiffness = Fields::read("s", &node, &faults, |fields| read_solid(fields, None));
+        let stiffness =
+            Fields::read("s", &node, &faults, |fields| read_solid(fields, Beside::Nothing));
         assert!(faults.borrow().is_empty());
         assert!((stiffness / 127_234.5 - 1.0).abs() < 1e-6, "{stiffness}");
     }

@@ -20,10 +20,11 @@ enum Turn {
 }
 
 /// What is turned round in a train; `*` stands for any name or place in a list.
-const TURNED: [(&str, Turn); 10] = [
+const TURNED: [(&str, Turn); 11] = [
     ("bodies.*.speed", Turn::Sign),
     ("motors.*.reversed", Turn::Flag),
     ("loads.*.reversed", Turn::Flag),
+    ("overrunning_clutches.*.reversed", Turn::Flag),
     ("magnetic_gears.*.initial_load_angle", Turn::Sign),
     ("magnetic_gears.*.harmonics.*.phase", Turn::Sign),
     ("magnetic_gears.*.cogging.*.phase", Turn::Sign),

@@ -78,7 +78,7 @@ const OUTCOMES: [Outcome; 19] = [
         gear: "gear",
         slips: 0..=0,
         state: "synchronous",
-        figures: &[("gears/gear/peak_pull_out_share", 0.7)],
+        figures: &[("gears/gear/peak_pull_out_share", 0.793)],
         failing: &[],
     },
     Outcome {
