@@ -58,6 +58,8 @@ pub enum ChannelKind {
     LoadTipSpeedRatio(usize),
     /// Power coefficient of an axial rotor, 0 while the flow is not positive.
     LoadPowerCoefficient(usize),
+    /// Advance ratio of a propeller, within plus and minus 100.
+    LoadAdvanceRatio(usize),
 }
 
 /// Channels of a magnetic gear or coupling.
@@ -112,7 +114,7 @@ pub fn dimension_of(channel: &str) -> Option<Dimension> {
         "power" | "loss" => Dimension::Power,
         "flow" => Dimension::LinearSpeed,
         "slips" | "net_slips" | "pull_out_share" | "short_of_peak" | "tip_speed_ratio"
-        | "power_coefficient" => Dimension::One,
+        | "power_coefficient" | "advance_ratio" => Dimension::One,
         _ if quantity.starts_with("torque") => Dimension::Torque,
         _ => return None,
     })
@@ -317,5 +319,8 @@ fn load_channels(channels: &mut Vec<Channel>, load: &Load, place: usize) {
         add("flow", ChannelKind::LoadFlow(place), Dimension::LinearSpeed);
         add("tip_speed_ratio", ChannelKind::LoadTipSpeedRatio(place), Dimension::One);
         add("power_coefficient", ChannelKind::LoadPowerCoefficient(place), Dimension::One);
+    }
+    if matches!(load.law, LoadLaw::Propeller { .. }) {
+        add("advance_ratio", ChannelKind::LoadAdvanceRatio(place), Dimension::One);
     }
 }

@@ -32,11 +32,12 @@ pub enum ChannelForm {
     Magnet(usize, MagneticChannel),
     /// Damping and drag of a magnet: squares of forms, and laws whose power is lost.
     Loss(Vec<(f64, StateRow)>, Vec<usize>),
-    /// Flow, tip speed ratio or power coefficient of an axial rotor: its term and which one.
+    /// Flow, tip speed ratio or power coefficient of an axial rotor, advance ratio of a propeller:
+    /// its term and which one.
     Rotor(usize, RotorChannel),
 }
 
-/// Channels of an axial rotor.
+/// Channels of an axial rotor or a propeller.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum RotorChannel {
     /// m/s.
@@ -45,6 +46,8 @@ pub enum RotorChannel {
     TipSpeedRatio,
     /// Power over the power of the flow.
     PowerCoefficient,
+    /// Advance over what a turn of a propeller is wide.
+    AdvanceRatio,
 }
 
 /// The forms of all channels in one mode.
@@ -105,6 +108,7 @@ fn form(
         ChannelKind::LoadPowerCoefficient(index) => {
             rotor(equations, index, RotorChannel::PowerCoefficient)
         }
+        ChannelKind::LoadAdvanceRatio(index) => rotor(equations, index, RotorChannel::AdvanceRatio),
     }
 }
 

@@ -10,6 +10,9 @@ use crate::component::load::LoadLaw;
 use crate::signal::course::Overrides;
 use std::f64::consts::{PI, TAU};
 
+/// Near standstill an advance ratio grows without bound and says no more.
+const LARGEST_ADVANCE_RATIO: f64 = 100.0;
+
 /// Counts and sums that are not part of the state.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Counters {
@@ -268,6 +271,15 @@ impl Evaluator<'_> {
         let term = &self.equations.terms[place];
         let signal =
             |slot| self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
+        if what == RotorChannel::AdvanceRatio {
+            let (Shape::Law(Law::Propeller(propeller)), [Some(advance), _]) =
+                (&term.shape, term.parameters)
+            else {
+                return 0.0;
+            };
+            let ratio = propeller.advance_ratio(dot(&term.input, state), signal(advance));
+            return ratio.clamp(-LARGEST_ADVANCE_RATIO, LARGEST_ADVANCE_RATIO);
+        }
         let [Some(flow), Some(pitch)] = term.parameters else { return 0.0 };
         let (flow, pitch) = (signal(flow), signal(pitch));
         let Owner::Load(load) = term.owner else { return 0.0 };

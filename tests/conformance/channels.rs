@@ -35,6 +35,7 @@ const UNITS: [(&str, &[&str]); 6] = [
             "short_of_peak",
             "tip_speed_ratio",
             "power_coefficient",
+            "advance_ratio",
         ],
     ),
 ];
