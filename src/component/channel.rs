@@ -72,6 +72,8 @@ pub enum ChannelKind {
     LoadPowerCoefficient(usize),
     /// Pitch of an axial rotor with a pitch loop.
     LoadPitch(usize),
+    /// Advance ratio of a propeller, within plus and minus 100.
+    LoadAdvanceRatio(usize),
 }
 
 /// Channels of a magnetic gear or coupling.
@@ -144,7 +146,7 @@ pub fn dimension_of(channel: &str) -> Option<Dimension> {
         "flow" => Dimension::LinearSpeed,
         "current" => Dimension::Current,
         "slips" | "net_slips" | "pull_out_share" | "short_of_peak" | "tip_speed_ratio"
-        | "power_coefficient" => Dimension::One,
+        | "power_coefficient" | "advance_ratio" => Dimension::One,
         _ if quantity.starts_with("magnet_temperature") => Dimension::Temperature,
         _ if quantity.starts_with("torque") => Dimension::Torque,
         _ => return None,

@@ -197,4 +197,7 @@ fn load_channels(channels: &mut Vec<Channel>, load: &Load, place: usize) {
     if matches!(load.law, LoadLaw::AxialRotor { pitch_loop: Some(_), .. }) {
         add("pitch", ChannelKind::LoadPitch(place), Dimension::Angle);
     }
+    if matches!(load.law, LoadLaw::Propeller { .. }) {
+        add("advance_ratio", ChannelKind::LoadAdvanceRatio(place), Dimension::One);
+    }
 }

@@ -1,6 +1,7 @@
 //! Loads as typed, and their laws.
 
 pub mod axial_rotor;
+pub mod coefficient_file;
 pub mod curve;
 pub mod periodic;
 pub mod pitch;

@@ -33,7 +33,8 @@ pub enum ChannelForm {
     Magnet(usize, MagneticChannel),
     /// Damping and drag of a magnet: squares of forms, and laws whose power is lost.
     Loss(Vec<(f64, StateRow)>, Vec<usize>),
-    /// Flow, tip speed ratio or power coefficient of an axial rotor: its term and which one.
+    /// Flow, tip speed ratio or power coefficient of an axial rotor, advance ratio of a propeller:
+    /// its term and which one.
     Rotor(usize, RotorChannel),
     /// Length of the stator current of a machine with flux equations: two states and their size.
     Vector([usize; 2], f64),
@@ -41,7 +42,7 @@ pub enum ChannelForm {
     CircuitCurrent(usize),
 }
 
-/// Channels of an axial rotor.
+/// Channels of an axial rotor or a propeller.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum RotorChannel {
     /// m/s.
@@ -50,6 +51,8 @@ pub enum RotorChannel {
     TipSpeedRatio,
     /// Power over the power of the flow.
     PowerCoefficient,
+    /// Advance over what a turn of a propeller is wide.
+    AdvanceRatio,
 }
 
 /// The forms of all channels in one mode.
@@ -127,6 +130,7 @@ fn form(
                 .map(|pitch| (pitch.state, equations.scale[pitch.state]))
                 .collect(),
         ),
+        ChannelKind::LoadAdvanceRatio(index) => rotor(equations, index, RotorChannel::AdvanceRatio),
     }
 }
 

@@ -27,6 +27,7 @@ pub mod mode;
 pub mod parts;
 pub mod pitch;
 pub mod quiet_powers;
+mod ratios;
 pub mod thermal;
 
 pub use controller::{Controller, Follower};

@@ -1,6 +1,7 @@
 //! The signal forms that are maps of keys: step, ramp, pulse, sine, table, extreme gust.
 
 use super::kind::Kind;
+use super::sampling::Sampling;
 use super::table::{Across, TableColumns};
 use super::turbulence::{LENGTH_SCALE, Spectrum};
 use super::{Signal, gust};
@@ -136,9 +137,19 @@ fn table(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
     {
         fault.report(&fields.path_of("time_unit"), &mut faults.borrow_mut());
     }
+    let mut span = |key, doc| fields.quantity_optional(key, Dimension::Time, Range::Positive, doc);
+    let every = span(
+        "every",
+        "Makes even rows this far apart, each the file's mean over that time: for fast records.",
+    );
+    let largest_gap = span(
+        "largest_gap",
+        "Longest time without a row, else a fault; absent: ten median steps, else a warning.",
+    );
+    let sampling = Sampling { largest_gap, every };
     let columns = TableColumns { time, value, time_unit, unit, across: Across::Time };
     let named = ![&file, &columns.time, &columns.value].iter().any(|text| text.is_empty());
-    named.then_some(Signal::Table { file, columns, rows: Vec::new() })
+    named.then_some(Signal::Table { file, columns, sampling, rows: Vec::new() })
 }
 
 fn extreme_gust(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {

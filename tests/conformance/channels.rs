@@ -45,6 +45,7 @@ const UNITS: [(&str, &[&str]); 7] = [
             "short_of_peak",
             "tip_speed_ratio",
             "power_coefficient",
+            "advance_ratio",
         ],
     ),
 ];

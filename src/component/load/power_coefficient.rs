@@ -5,7 +5,8 @@
 //!            z  = 1/(lambda + c8 b) - c9/(b^3 + 1)                    b pitch in degrees
 //! constant   Cp at every tip speed ratio and pitch
 //! points     straight lines through points of lambda and Cp, whatever the pitch
-//! table      straight lines over lambda, cubics over pitch (slopes from the neighbours)
+//! table      straight lines over lambda, cubics over pitch (slopes from the neighbours); inline or
+//!            from a file
 //! ```
 //!
 //! The formula is that of Heier, Grid Integration of Wind Energy Conversion Systems, and of many
@@ -16,6 +17,8 @@
 //! Points and tables hold their last values above their last tip speed ratio; below the first one
 //! Cp goes straight to zero at `lambda = 0`, so that the torque holds. Outside its pitches a table
 //! holds its end columns.
+
+use super::coefficient_file::CoefficientFile;
 
 /// Constants c1 to c10 of the default formula.
 pub const DEFAULT: [f64; 10] = [0.73, 151.0, 0.58, 0.002, 2.14, 13.2, 18.4, -0.02, 0.003, 0.0];
@@ -37,12 +40,36 @@ pub struct Rows {
     ratios: Vec<f64>,
     pitches: Vec<f64>,
     values: Vec<Vec<f64>>,
+    file: Option<CoefficientFile>,
 }
 
 impl Rows {
     /// From rising tip speed ratios, rising pitches (rad) and one row of values for each ratio.
     pub fn new(ratios: Vec<f64>, pitches: Vec<f64>, values: Vec<Vec<f64>>) -> Self {
-        Self { ratios, pitches, values }
+        Self { ratios, pitches, values, file: None }
+    }
+
+    /// Rows that stand in a file: empty until it has been read.
+    pub fn of_file(file: CoefficientFile) -> Self {
+        Self { file: Some(file), ..Self::new(Vec::new(), Vec::new(), Vec::new()) }
+    }
+
+    /// The same rows, with the file that they come from.
+    pub fn from_file(self, file: CoefficientFile) -> Self {
+        Self { file: Some(file), ..self }
+    }
+
+    /// The file that they stand in, if they stand in one.
+    pub fn file(&self) -> Option<&CoefficientFile> {
+        self.file.as_ref()
+    }
+
+    /// Shows every number, in pairs with its tip speed ratio; pitches first.
+    pub fn each(&self, take: &mut dyn FnMut(&[f64; 2])) {
+        self.pitches.iter().for_each(|pitch| take(&[0.0, *pitch]));
+        for (ratio, values) in self.ratios.iter().zip(&self.values) {
+            values.iter().for_each(|value| take(&[*ratio, *value]));
+        }
     }
 
     /// First and last tip speed ratio.
