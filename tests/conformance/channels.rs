@@ -7,9 +7,9 @@ use super::trees::trains;
 use serde_json::Value;
 
 /// Unit of a channel by the part of its name behind the dot, as documented.
-const UNITS: [(&str, &[&str]); 6] = [
+const UNITS: [(&str, &[&str]); 7] = [
     ("rad/s", &["speed", "slip_speed"]),
-    ("rad", &["angle", "twist", "load_angle", "phase"]),
+    ("rad", &["angle", "twist", "load_angle", "phase", "pitch"]),
     (
         "N*m",
         &[
@@ -26,6 +26,7 @@ const UNITS: [(&str, &[&str]); 6] = [
     ),
     ("W", &["power", "loss"]),
     ("m/s", &["flow"]),
+    ("A", &["current"]),
     (
         "1",
         &[
