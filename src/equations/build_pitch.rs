@@ -25,11 +25,11 @@ pub(super) fn add_pitch(
     let path = format!("loads.{}.law.axial_rotor.pitch_loop.speed", load.name);
     let reference = slot(equations, path, &pitch.speed);
     let asked = equations.bank.value(reference, 0.0, &equations.bank.no_overrides());
-    // The rotor's own body is mirrored with its law, another one is read in the sense asked for.
-    let mirrored = pitch.body.is_none() && load.reversed;
-    let sense = if mirrored || asked < 0.0 { -1.0 } else { 1.0 };
-    let error = speed_row(&equations.model, &equations.scale, &[(body, sense)]);
-    let asked_share = if mirrored { -1.0 } else { -sense };
+    // A mirrored law counts the speed the other way round, whatever body it looks at.
+    let mirror = if load.reversed { -1.0 } else { 1.0 };
+    let sense = if asked < 0.0 { -1.0 } else { 1.0 };
+    let error = speed_row(&equations.model, &equations.scale, &[(body, sense * mirror)]);
+    let asked_share = -sense;
     let mut new_state = || {
         equations.scale.push(SIZE);
         equations.scale.len() - 1
