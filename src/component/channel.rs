@@ -54,6 +54,8 @@ pub enum ChannelKind {
     MotorTorque(usize),
     /// Power of a motor into the train.
     MotorPower(usize),
+    /// Current of a line of an induction motor by its circuit.
+    MotorCurrent(usize),
     /// Torque of a load on its body.
     LoadTorque(usize),
     /// Power of a load into the train.
@@ -68,6 +70,10 @@ pub enum ChannelKind {
     LoadTipSpeedRatio(usize),
     /// Power coefficient of an axial rotor, 0 while the flow is not positive.
     LoadPowerCoefficient(usize),
+    /// Pitch of an axial rotor with a pitch loop.
+    LoadPitch(usize),
+    /// Advance ratio of a propeller, within plus and minus 100.
+    LoadAdvanceRatio(usize),
 }
 
 /// Channels of a magnetic gear or coupling.
@@ -135,11 +141,12 @@ pub fn dimension_of(channel: &str) -> Option<Dimension> {
     let quantity = channel.split_once('.')?.1;
     Some(match quantity {
         "speed" | "slip_speed" => Dimension::Speed,
-        "angle" | "twist" | "load_angle" | "phase" => Dimension::Angle,
+        "angle" | "twist" | "load_angle" | "phase" | "pitch" => Dimension::Angle,
         "power" | "loss" | "hysteresis_loss" | "eddy_loss" => Dimension::Power,
         "flow" => Dimension::LinearSpeed,
+        "current" => Dimension::Current,
         "slips" | "net_slips" | "pull_out_share" | "short_of_peak" | "tip_speed_ratio"
-        | "power_coefficient" => Dimension::One,
+        | "power_coefficient" | "advance_ratio" => Dimension::One,
         _ if quantity.starts_with("magnet_temperature") => Dimension::Temperature,
         _ if quantity.starts_with("torque") => Dimension::Torque,
         _ => return None,

@@ -5,6 +5,7 @@ use super::clutch::{Clutch, ClutchKind};
 use super::load::{Load, LoadLaw};
 use super::magnet_temperature::{HALVES, ROTORS};
 use super::magnetic_gear::Field;
+use super::motor::MotorLaw;
 use crate::quantity::Dimension;
 
 /// Lists all channels of a train, sections in the order given, things in file order.
@@ -86,6 +87,9 @@ pub fn list(train: &Train<'_>, order: &[Section]) -> Vec<Channel> {
                     let mut add = adder(&mut channels, &motor.name);
                     add("torque", ChannelKind::MotorTorque(place), Dimension::Torque);
                     add("power", ChannelKind::MotorPower(place), Dimension::Power);
+                    if matches!(motor.law, MotorLaw::InductionCircuit { .. }) {
+                        add("current", ChannelKind::MotorCurrent(place), Dimension::Current);
+                    }
                 }
             }
             Section::Loads => {
@@ -189,5 +193,11 @@ fn load_channels(channels: &mut Vec<Channel>, load: &Load, place: usize) {
         add("flow", ChannelKind::LoadFlow(place), Dimension::LinearSpeed);
         add("tip_speed_ratio", ChannelKind::LoadTipSpeedRatio(place), Dimension::One);
         add("power_coefficient", ChannelKind::LoadPowerCoefficient(place), Dimension::One);
+    }
+    if matches!(load.law, LoadLaw::AxialRotor { pitch_loop: Some(_), .. }) {
+        add("pitch", ChannelKind::LoadPitch(place), Dimension::Angle);
+    }
+    if matches!(load.law, LoadLaw::Propeller { .. }) {
+        add("advance_ratio", ChannelKind::LoadAdvanceRatio(place), Dimension::One);
     }
 }

@@ -15,6 +15,7 @@ use crate::component::elastic_curve::ElasticCurve;
 use crate::component::load::axial_rotor::AxialRotor;
 use crate::component::load::curve::LoadCurve;
 use crate::component::load::periodic::Periodic;
+use crate::component::load::pitch::schedule;
 use crate::component::load::power_law::PowerLaw;
 use crate::component::load::propeller::Propeller;
 use crate::component::magnetic_law::MagnetLaw;
@@ -23,6 +24,7 @@ use crate::component::motor::curve::MotorCurve;
 use crate::component::motor::induction::Induction;
 use crate::component::motor::optimal_power::OptimalPower;
 use crate::component::motor::rating_plate::RatingPlate;
+use crate::component::motor::torque_limit::TorqueLimit;
 
 /// One scalar law.
 #[derive(Clone, Debug, PartialEq)]
@@ -88,6 +90,25 @@ pub enum Law {
         /// Lower and upper limit, in the input's unit.
         limits: [f64; 2],
     },
+    /// `x` between limits that are laws of their own; pieces 0 (at the lower), 1 (`x`), 2 (at the upper).
+    Between {
+        /// The largest limits; where it stands at one its value is 0 and the limit's law speaks.
+        limits: [f64; 2],
+    },
+    /// `x` times the factor of a gain that falls with the pitch, the first parameter, rad.
+    Scheduled {
+        /// Pitch at which the factor is half, rad.
+        halves_at: f64,
+    },
+    /// The same and the second parameter added, clamped; pieces as for a saturation.
+    PitchCommand {
+        /// Lowest and highest angle, rad.
+        limits: [f64; 2],
+        /// As in [`Law::Scheduled`].
+        halves_at: f64,
+    },
+    /// Torque limit of a drive; the input is the body's speed, rad/s.
+    TorqueLimit(TorqueLimit),
 }
 
 impl Law {
@@ -136,6 +157,20 @@ impl Law {
                 1 => x,
                 _ => limits[1],
             },
+            Self::Between { .. } => {
+                if piece == 1 {
+                    x
+                } else {
+                    0.0
+                }
+            }
+            Self::TorqueLimit(limit) => limit.value(x, piece),
+            Self::Scheduled { halves_at } => x * schedule(p[0], *halves_at).0,
+            Self::PitchCommand { limits, halves_at } => match piece {
+                0 => limits[0],
+                1 => x * schedule(p[0], *halves_at).0 + p[1],
+                _ => limits[1],
+            },
         }
     }
 
@@ -169,7 +204,24 @@ impl Law {
             Self::Periodic(load) => load.slope(x),
             Self::Propeller(propeller) => propeller.slope(x, p, piece),
             Self::Elastic(shaft) => shaft.beyond_slope(piece),
-            Self::Saturation { .. } => f64::from(u8::from(piece == 1)),
+            Self::Saturation { .. } | Self::Between { .. } => f64::from(u8::from(piece == 1)),
+            Self::TorqueLimit(limit) => limit.slope(x, piece),
+            Self::PitchCommand { .. } if piece != 1 => 0.0,
+            Self::Scheduled { halves_at } | Self::PitchCommand { halves_at, .. } => {
+                schedule(p[0], *halves_at).0
+            }
+        }
+    }
+
+    /// The derivatives of [`Law::value`] with respect to the parameters that may follow the state.
+    pub fn parameter_slopes(&self, x: f64, p: [f64; 2], piece: usize) -> [f64; 2] {
+        match self {
+            Self::AxialRotor(rotor) => [0.0, rotor.pitch_slope(x, p, piece)],
+            Self::Scheduled { halves_at } => [x * schedule(p[0], *halves_at).1, 0.0],
+            Self::PitchCommand { halves_at, .. } if piece == 1 => {
+                [x * schedule(p[0], *halves_at).1, 1.0]
+            }
+            _ => [0.0; 2],
         }
     }
 
@@ -180,16 +232,21 @@ impl Law {
             Self::AxialRotor(rotor) => rotor.tip_speed_ratio(x, p[0]),
             Self::Propeller(propeller) => propeller.advance_ratio(x, p[0]),
             Self::Circuit(_) | Self::Contactor => p[0],
+            Self::PitchCommand { halves_at, .. } => x * schedule(p[0], *halves_at).0 + p[1],
             _ => x,
         }
     }
 
-    /// True when the piece hangs on signals, not on the input alone.
+    /// True when the piece hangs on parameters, not on the input alone.
     #[inline]
     pub fn piece_follows_signals(&self) -> bool {
         matches!(
             self,
-            Self::AxialRotor(_) | Self::Propeller(_) | Self::Circuit(_) | Self::Contactor
+            Self::AxialRotor(_)
+                | Self::Propeller(_)
+                | Self::Circuit(_)
+                | Self::Contactor
+                | Self::PitchCommand { .. }
         )
     }
 
@@ -219,6 +276,7 @@ impl Law {
             | Self::MagnetEnergy(_)
             | Self::Cogging { .. }
             | Self::Induction(_)
+            | Self::Scheduled { .. }
             | Self::Periodic(_) => &[],
             Self::AxialRotor(rotor) => rotor.boundaries(),
             Self::RatingPlate(motor) => motor.boundaries(),
@@ -229,7 +287,10 @@ impl Law {
             Self::LoadCurve(load) => load.boundaries(),
             Self::Propeller(propeller) => propeller.boundaries(),
             Self::Elastic(shaft) => shaft.boundaries(),
-            Self::Saturation { limits } => limits,
+            Self::Saturation { limits }
+            | Self::Between { limits }
+            | Self::PitchCommand { limits, .. } => limits,
+            Self::TorqueLimit(limit) => limit.boundaries(),
         }
     }
 

@@ -1,8 +1,10 @@
 //! Loads as typed, and their laws.
 
 pub mod axial_rotor;
+pub mod coefficient_file;
 pub mod curve;
 pub mod periodic;
+pub mod pitch;
 pub mod power_coefficient;
 pub mod power_law;
 pub mod propeller;
@@ -75,8 +77,10 @@ pub enum LoadLaw {
         density: f64,
         /// m/s.
         flow: Signal,
-        /// rad.
+        /// rad; not in force beside a loop.
         pitch: Signal,
+        /// A controller of the pitch.
+        pitch_loop: Option<Box<pitch::PitchLoop>>,
         /// Power coefficient over tip speed ratio and pitch.
         coefficient: power_coefficient::PowerCoefficient,
     },

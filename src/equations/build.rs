@@ -3,6 +3,7 @@
 use super::build_joints::{add_clutches, add_fluid_couplings, add_gear_drag, add_shafts};
 use super::build_magnet::add_magnet;
 use super::build_motor::add_motor;
+use super::build_pitch::add_pitch;
 use super::holding::Limits;
 use super::{
     Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, Target, Term, speed_row,
@@ -52,10 +53,12 @@ pub fn build(model: &Model) -> Equations {
         frictions: Vec::new(),
         dampers: Vec::new(),
         controllers: Vec::new(),
+        followers: Vec::new(),
+        pitches: Vec::new(),
         machines: Vec::new(),
         heats: Vec::new(),
-        friction_heats: 0,
         thermal: Vec::new(),
+        friction_heats: 0,
         bank: SignalBank::new(&model.scenario.signals),
         warnings: Vec::new(),
     };
@@ -136,6 +139,7 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
     let owner = Owner::Load(index);
     let mut factor = factor_of(equations, "loads", &load.name, &load.scale);
     let mut parameters = [None; 2];
+    let mut by_state = [Vec::new(), Vec::new()];
     let mut own_speed = None;
     let mut input = speed.clone();
     let (shape, target) = match &load.law {
@@ -157,12 +161,15 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
             own_speed = Some(std::mem::take(&mut input));
             (Shape::Law(Law::Unit), direction.clone())
         }
-        LoadLaw::AxialRotor { flow, pitch, .. } => {
+        LoadLaw::AxialRotor { flow, pitch, pitch_loop, .. } => {
             let path = |key: &str| format!("loads.{}.law.axial_rotor.{key}", load.name);
-            parameters = [
-                Some(slot(equations, path("flow"), flow)),
-                Some(slot(equations, path("pitch"), pitch)),
-            ];
+            parameters[0] = Some(slot(equations, path("flow"), flow));
+            match pitch_loop {
+                Some(pitch_loop) => {
+                    by_state[1] = add_pitch(equations, index, load, pitch_loop);
+                }
+                None => parameters[1] = Some(slot(equations, path("pitch"), pitch)),
+            }
             let Some(law) = load.law.scalar() else { return };
             (Shape::Law(law), direction.clone())
         }
@@ -230,8 +237,9 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
         owner,
         shape,
         input,
-        offset: None,
+        offsets: Vec::new(),
         parameters,
+        by_state,
         factor,
         target: Target::Torque(target),
         power: PowerKind::Drive,

@@ -74,6 +74,9 @@ impl Limits {
 /// Share of the largest eigenvalue below which a direction counts as redundant.
 const RANK_TOLERANCE: f64 = 1e-12;
 
+/// Rows count as parallel when the square of their cosine is less than 1 by no more than this.
+const PARALLEL: f64 = 1e-13;
+
 /// Balance that counts as closed, relative to the drive.
 const BALANCE_TOLERANCE: f64 = 1e-12;
 
@@ -142,6 +145,10 @@ fn inverse_of_group(matrix: DMatrix<f64>) -> DMatrix<f64> {
         let value = matrix[(0, 0)];
         return DMatrix::from_element(1, 1, if value > 0.0 { 1.0 / value } else { 0.0 });
     }
+    let bundles = bundles(&matrix);
+    if bundles.len() < size {
+        return inverse_of_bundles(&matrix, &bundles);
+    }
     let eigen = matrix.symmetric_eigen();
     let largest = eigen.eigenvalues.amax();
     let mut inverse = DMatrix::zeros(size, size);
@@ -149,6 +156,65 @@ fn inverse_of_group(matrix: DMatrix<f64>) -> DMatrix<f64> {
         if *value > RANK_TOLERANCE * largest {
             let vector = eigen.eigenvectors.column(place);
             inverse += vector * vector.transpose() / *value;
+        }
+    }
+    inverse
+}
+
+/// Rows of a semidefinite matrix that are multiples of each other.
+struct Bundle {
+    /// The first of them.
+    first: usize,
+    /// Each with its multiple of the first.
+    rows: Vec<(usize, f64)>,
+}
+
+impl Bundle {
+    /// Length of the multiples as a vector.
+    fn length(&self) -> f64 {
+        self.rows.iter().map(|(_, share)| share * share).sum::<f64>().sqrt()
+    }
+}
+
+/// Rows put together where they are parallel: there `m_ij^2 = m_ii m_jj`, else it is less.
+fn bundles(matrix: &DMatrix<f64>) -> Vec<Bundle> {
+    let mut bundles: Vec<Bundle> = Vec::new();
+    for row in 0..matrix.nrows() {
+        let parallel = |bundle: &&mut Bundle| {
+            let (cross, own) = (matrix[(row, bundle.first)], matrix[(row, row)]);
+            let product = own * matrix[(bundle.first, bundle.first)];
+            product > 0.0 && cross * cross >= product * (1.0 - PARALLEL)
+        };
+        match bundles.iter_mut().find(parallel) {
+            Some(bundle) => {
+                let share = matrix[(row, bundle.first)] / matrix[(bundle.first, bundle.first)];
+                bundle.rows.push((row, share));
+            }
+            None => bundles.push(Bundle { first: row, rows: vec![(row, 1.0)] }),
+        }
+    }
+    bundles
+}
+
+/// The pseudo-inverse of a matrix with parallel rows, by the small matrix of one row a bundle.
+///
+/// `M = Q N Q'` with orthonormal columns of `Q`, so `M^+ = Q N^+ Q'`: a hundred frictions on
+/// wheels that turn as one cost no more than one.
+fn inverse_of_bundles(matrix: &DMatrix<f64>, bundles: &[Bundle]) -> DMatrix<f64> {
+    let lengths: Vec<f64> = bundles.iter().map(Bundle::length).collect();
+    let small = DMatrix::from_fn(bundles.len(), bundles.len(), |i, j| {
+        lengths[i] * matrix[(bundles[i].first, bundles[j].first)] * lengths[j]
+    });
+    let small = inverse_of_group(small);
+    let mut inverse = DMatrix::zeros(matrix.nrows(), matrix.nrows());
+    for (i, one) in bundles.iter().enumerate() {
+        for (j, other) in bundles.iter().enumerate() {
+            let value = small[(i, j)] / (lengths[i] * lengths[j]);
+            for &(row, left) in &one.rows {
+                for &(column, right) in &other.rows {
+                    inverse[(row, column)] = left * value * right;
+                }
+            }
         }
     }
     inverse
@@ -254,6 +320,42 @@ mod tests {
         assert!((held.torque[0] - 30.0).abs() < 1e-9 && (held.torque[1] - 10.0).abs() < 1e-9);
         assert!(hold(&compliance, &[-39.999, -39.999], &both(&[60.0, 20.0])).holds);
         assert!(!hold(&compliance, &[-40.001, -40.001], &both(&[60.0, 20.0])).holds);
+    }
+
+    #[test]
+    fn parallel_rows_have_the_inverse_of_the_definition() {
+        // Penrose's four conditions (Proc. Cambridge Phil. Soc. 51, 1955) for rows of which some
+        // are multiples of others, some in a loop.
+        let rows = DMatrix::from_row_slice(
+            7,
+            3,
+            &[
+                1.0, 0.0, 0.0, -2.5, 0.0, 0.0, 0.0, 1.0, 0.0, 1.0, -1.0, 0.0, 0.3, -0.3, 0.0, 0.0,
+                0.0, 0.7, 0.0, 0.0, 1e-3,
+            ],
+        );
+        let matrix = &rows * rows.transpose();
+        let inverse = pseudo_inverse(&matrix);
+        let near = |a: DMatrix<f64>, b: &DMatrix<f64>| {
+            assert!((&a - b).amax() <= 1e-11 * b.amax(), "{a} {b}");
+        };
+        near(&matrix * &inverse * &matrix, &matrix);
+        near(&inverse * &matrix * &inverse, &inverse);
+        near((&matrix * &inverse).transpose(), &(&matrix * &inverse));
+        near((&inverse * &matrix).transpose(), &(&inverse * &matrix));
+    }
+
+    #[test]
+    fn a_hundred_on_one_member_carry_in_proportion_to_their_breakaway() {
+        let limits: Vec<f64> = (1..=100).map(f64::from).collect();
+        let compliance = DMatrix::from_element(100, 100, 0.25);
+        // 5050 N*m of breakaway hold 1010 N*m: each carries a fifth of its own.
+        let both: Vec<Limits> = limits.iter().map(|limit| Limits::both(*limit)).collect();
+        let held = hold(&compliance, &[-0.25 * 1010.0; 100], &both);
+        assert!(held.holds && (held.margin - 0.8).abs() < 1e-12);
+        for (torque, limit) in held.torque.iter().zip(&limits) {
+            assert!((torque - 0.2 * limit).abs() < 1e-10, "{torque} of {limit}");
+        }
     }
 
     #[test]

@@ -2,8 +2,7 @@
 
 use super::assembly::{Active, Assembly, Function};
 use super::frame::Evaluator;
-use super::thermal;
-use super::{StateRow, dot};
+use super::{StateRow, dot, parameters_at, thermal};
 use crate::component::law::Law;
 use nalgebra::DMatrix;
 use nalgebra::linalg::Schur;
@@ -41,15 +40,6 @@ pub fn jacobian(
             }
             continue;
         }
-        if let Some(form) = pair_form(active, state) {
-            let strength = evaluator.strength(&active.factor, time);
-            for &(row, share) in &active.column {
-                for &(column, slope) in &form {
-                    matrix[(row, column)] += share * strength * slope;
-                }
-            }
-            continue;
-        }
         if let Function::Warm(law, gains) = &active.function {
             let strength = evaluator.strength(&active.factor, time);
             let value = strength * law.value(input, [0.0; 2], 0);
@@ -62,6 +52,15 @@ pub fn jacobian(
                 }
             }
         }
+        if let Some(form) = pair_form(active, state) {
+            let strength = evaluator.strength(&active.factor, time);
+            for &(row, share) in &active.column {
+                for &(column, slope) in &form {
+                    matrix[(row, column)] += share * strength * slope;
+                }
+            }
+            continue;
+        }
         let slope = match &active.function {
             Function::Law(Law::Magnet(magnet), _) if magnets == MagnetSlope::Steepest => {
                 magnet.amplitude() * magnet.steepest()
@@ -73,8 +72,17 @@ pub fn jacobian(
                 law.slope(input, [0.0; 2], 0) * thermal::product(gains, state)
             }
             Function::Law(law, piece) => {
-                let [first, second] = active.parameters;
-                law.slope(input, [first.map_or(0.0, signal), second.map_or(0.0, signal)], *piece)
+                let parameters = parameters_at(active.parameters, &active.by_state, state, signal);
+                let slopes = law.parameter_slopes(input, parameters, *piece);
+                let strength = evaluator.strength(&active.factor, time);
+                for (form, slope) in active.by_state.iter().zip(slopes) {
+                    for &(row, share) in &active.column {
+                        for &(column, weight) in form {
+                            matrix[(row, column)] += share * slope * strength * weight;
+                        }
+                    }
+                }
+                law.slope(input, parameters, *piece)
             }
             Function::Linear => 1.0,
             Function::Products(_) | Function::Pair(..) => 0.0,

@@ -9,11 +9,15 @@
 
 pub mod assembly;
 pub mod build;
+mod build_drive;
 mod build_joints;
 mod build_machine;
 mod build_magnet;
 mod build_motor;
+mod build_pitch;
 pub mod channels;
+mod constraints;
+pub mod controller;
 pub mod energy;
 pub mod frame;
 pub mod holding;
@@ -21,7 +25,12 @@ pub mod linearise;
 pub mod machine;
 pub mod mode;
 pub mod parts;
+pub mod pitch;
+pub mod quiet_powers;
+mod ratios;
 pub mod thermal;
+
+pub use controller::{Controller, Follower};
 
 use crate::component::law::Law;
 use crate::component::pair_law::PairLaw;
@@ -58,16 +67,20 @@ pub struct Equations {
     pub frictions: Vec<Friction>,
     /// Viscous torques without a factor: they stand in the matrix.
     pub dampers: Vec<Damper>,
-    /// Speed controllers.
+    /// Controllers of drives.
     pub controllers: Vec<Controller>,
+    /// States that follow a command.
+    pub followers: Vec<Follower>,
+    /// Pitch loops of axial rotors.
+    pub pitches: Vec<pitch::Pitch>,
     /// Induction machines with flux equations.
     pub machines: Vec<machine::Machine>,
     /// Motors with a synchronous speed: motor by place and that speed (mirrored with the law), rad/s.
     pub heats: Vec<(usize, f64)>,
-    /// Number of friction elements whose heat is asked for; they stand behind the motors.
-    pub friction_heats: usize,
     /// Thermal nodes of magnets.
     pub thermal: Vec<thermal::ThermalState>,
+    /// Number of friction elements whose heat is asked for; they stand behind the motors.
+    pub friction_heats: usize,
     /// Everything that follows time.
     pub bank: SignalBank,
     /// What a reader of the results must know.
@@ -167,10 +180,12 @@ pub struct Term {
     pub shape: Shape,
     /// The input as a form over the scaled state.
     pub input: StateRow,
-    /// Added to the input: factor times a signal.
-    pub offset: Option<(f64, SlotId)>,
+    /// Added to the input: factors times signals.
+    pub offsets: Vec<(f64, SlotId)>,
     /// Signals that the law reads as parameters.
     pub parameters: [Option<SlotId>; 2],
+    /// Added to the parameters: forms over the scaled state; empty for none.
+    pub by_state: [StateRow; 2],
     /// Factor on the value.
     pub factor: Factor,
     /// Where the value goes.
@@ -268,29 +283,6 @@ pub struct Damper {
     pub is_load: bool,
 }
 
-/// A speed controller's states and terms.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Controller {
-    /// The motor by place.
-    pub motor: usize,
-    /// Term of the limited command.
-    pub command: usize,
-    /// Term that feeds the integral, if there is one.
-    pub integral: Option<usize>,
-    /// State of the integral.
-    pub integral_state: Option<usize>,
-    /// State of the lagging torque.
-    pub torque_state: Option<usize>,
-    /// Scale slot, when the motor has one.
-    pub scale: Option<SlotId>,
-    /// Limit of the command, N*m.
-    pub limit: f64,
-    /// N*m*s/rad.
-    pub gain: f64,
-    /// Lag, s.
-    pub lag: f64,
-}
-
 impl Equations {
     /// A form over bodies as a form over the scaled state.
     pub fn speed_row(&self, row: &[(usize, f64)]) -> StateRow {
@@ -302,7 +294,7 @@ impl Equations {
         match self.terms.get(place) {
             Some(term) => match &term.shape {
                 Shape::Law(law) => Some(law),
-                Shape::Linear | Shape::Products(_) | Shape::Pair(..) | Shape::Warm(..) => None,
+                Shape::Linear | Shape::Products(_) | Shape::Warm(..) | Shape::Pair(..) => None,
             },
             None => match &self.frictions.get(place - self.terms.len())?.sliding {
                 Sliding::Curve(law) => Some(law),
@@ -331,6 +323,12 @@ impl Equations {
         for (magnet, place) in self.model.magnets.iter().zip(&self.phase_state) {
             state[*place] = magnet.start_phase / self.scale[*place];
         }
+        // Blades begin in fine pitch.
+        for pitch in &self.pitches {
+            for place in [pitch.state, pitch.integral_state] {
+                state[place] = pitch.angles[0] / self.scale[place];
+            }
+        }
         for node in &self.thermal {
             state[node.place] = node.start / self.scale[node.place];
         }
@@ -347,6 +345,21 @@ pub fn speed_row(model: &Model, scale: &[f64], row: &[(usize, f64)]) -> StateRow
         .filter(|(_, value)| **value != 0.0)
         .map(|(place, value)| (place, value * scale[place]))
         .collect()
+}
+
+/// The parameters of a law: signals as read by `signal`, and forms over the state.
+#[inline]
+pub fn parameters_at(
+    parameters: [Option<SlotId>; 2],
+    by_state: &[StateRow; 2],
+    state: &[f64],
+    signal: impl Fn(SlotId) -> f64,
+) -> [f64; 2] {
+    let [first, second] = parameters;
+    [
+        first.map_or(0.0, &signal) + dot(&by_state[0], state),
+        second.map_or(0.0, &signal) + dot(&by_state[1], state),
+    ]
 }
 
 /// The value of a sum of products of states.

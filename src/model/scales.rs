@@ -171,6 +171,7 @@ fn signal_size(signal: &Signal) -> f64 {
             rows.iter().fold(0.0, |size, row| f64::max(size, row[1].abs()))
         }
         Signal::Turbulence(spectrum) => spectrum.mean + 3.0 * spectrum.deviation,
+        Signal::CoherentGust { hub_wind, rise, .. } => hub_wind + rise,
         Signal::Sine { mean, amplitude, .. } => mean.abs() + amplitude.abs(),
         _ => 0.0,
     }
@@ -190,10 +191,11 @@ fn motor_size(law: &MotorLaw) -> (f64, f64) {
         }
         MotorLaw::Curve { points, .. } => curve_size(points),
         MotorLaw::Prescribed { torque } => (0.0, signal_size(torque)),
-        MotorLaw::SpeedLoop { speed, torque_limit, .. } => (signal_size(speed), *torque_limit),
-        MotorLaw::OptimalPower { coefficient, torque_limit } => {
-            ((torque_limit / coefficient).sqrt(), *torque_limit)
+        MotorLaw::SpeedLoop { speed, drive, .. } => (signal_size(speed), drive.limits.torque_limit),
+        MotorLaw::TorqueLoop { drive, .. } => {
+            (drive.limits.base_speed.unwrap_or(0.0), drive.limits.torque_limit)
         }
+        MotorLaw::OptimalPower { figures } => (figures.square_law_ends(), figures.largest_torque()),
     }
 }
 

@@ -252,6 +252,13 @@ impl<'a> Check<'a> {
                 members.push(member(&path, "against", against, words));
             }
             self.members(&path, &members, false);
+            if let LoadLaw::AxialRotor { pitch_loop: Some(pitch_loop), .. } = &load.law
+                && let Some(body) = &pitch_loop.body
+            {
+                let path = format!("{path}.law.axial_rotor.pitch_loop");
+                let words = format!("the pitch loop of `{}` holds", load.name);
+                self.members(&path, &[member(&path, "body", body, words)], false);
+            }
         }
         for brake in &scenario.brakes {
             let path = format!("brakes.{}", brake.name);

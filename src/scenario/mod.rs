@@ -13,6 +13,7 @@ mod records;
 mod sections;
 pub mod signals;
 mod source;
+mod table_places;
 mod tables;
 mod yaml;
 

@@ -153,6 +153,7 @@ impl<'a> Observer<'a> {
                 .iter()
                 .map(|channel| {
                     channel.name.ends_with("loss")
+                        || channel.name.ends_with(".current")
                         || is(channel.kind, &[MagneticChannel::PullOutShare])
                 })
                 .collect(),

@@ -1,10 +1,12 @@
 //! From the recorder of a finished run to its results.
 
+use super::extremes::Extreme;
 use super::gear_warnings;
 use super::run::Run;
 use crate::component::load::LoadLaw;
 use crate::equations::frame::load_angle;
 use crate::equations::{Equations, Owner, Shape, energy};
+use crate::quantity::format_number;
 use crate::results::{
     ChannelResult, ClutchResult, ClutchState, Energy, Event, EventKind, GearResult, GearState,
     MemberResult, MotorResult, RunResult, Warning,
@@ -56,6 +58,7 @@ pub fn collect(mut run: Run<'_, '_>, stored: f64) -> RunResult {
     warn_of_ranges(&mut run);
     warn_of_rotors(&mut run);
     gear_warnings::add(&mut run);
+    warn_of_propellers(&mut run);
     let mut warnings: Vec<Warning> = equations
         .model
         .warnings
@@ -263,6 +266,45 @@ fn warn_of_rotors(run: &mut Run<'_, '_>) {
         }
         let path = format!("loads.{}.law.axial_rotor", load.name);
         run.warnings.extend(texts.into_iter().map(|text| (path.clone(), text.to_owned())));
+    }
+}
+
+/// Warns of propellers read outside their open-water data, or turning astern.
+fn warn_of_propellers(run: &mut Run<'_, '_>) {
+    let equations = run.equations;
+    for load in &equations.model.scenario.loads {
+        let LoadLaw::Propeller { coefficient, .. } = &load.law else { continue };
+        let extreme = |name: String| {
+            let place = equations.model.channels.iter().position(|channel| channel.name == name)?;
+            let extreme = run.observer.extremes[place];
+            (extreme.max >= extreme.min).then_some(extreme)
+        };
+        let mut texts = Vec::new();
+        let ratio = extreme(format!("{}.advance_ratio", load.name));
+        if let (Some(ratio), Some([low, high])) = (ratio, coefficient.range()) {
+            let room = 1e-9 * (high - low).abs();
+            if ratio.min < low - room || ratio.max > high + room {
+                let shown = |value: f64| format_number(value, 4);
+                texts.push(format!(
+                    "the advance ratio runs from {} to {}, the data of the torque coefficient from {} to {}; \
+                     its end values are held beyond",
+                    shown(ratio.min),
+                    shown(ratio.max),
+                    shown(low),
+                    shown(high)
+                ));
+            }
+        }
+        let speed = extreme(format!("{}.speed", load.body));
+        let astern = |speed: Extreme| if load.reversed { speed.max > 0.0 } else { speed.min < 0.0 };
+        if speed.is_some_and(astern) {
+            texts.push(
+                "the propeller turns astern at times: its torque coefficient at J = 0 is used there, a rough guess"
+                    .to_owned(),
+            );
+        }
+        let path = format!("loads.{}.law.propeller", load.name);
+        run.warnings.extend(texts.into_iter().map(|text| (path.clone(), text)));
     }
 }
 

@@ -65,7 +65,8 @@ impl Run<'_, '_> {
         if law.piece_follows_signals() {
             let input =
                 mode::input(self.equations, term_of, self.time, &self.state, &self.overrides);
-            let parameters = mode::parameters(self.equations, term_of, self.time, &self.overrides);
+            let parameters =
+                mode::parameters(self.equations, term_of, self.time, &self.state, &self.overrides);
             let piece = law.piece(input, parameters);
             if piece.abs_diff(self.mode.pieces[term]) > 1 {
                 self.mode.pieces[term] = piece;
@@ -125,6 +126,8 @@ impl Run<'_, '_> {
             }
             Guard::Windup(index) => self.mode.held[index] = !self.mode.held[index],
             Guard::Track(index) => self.leave_limit(index, end),
+            Guard::Slew(index) => self.turn_slewing(index),
+            Guard::PitchEnd(index) => self.turn_pitch(index),
             Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..) => {}
         }
     }
@@ -132,6 +135,7 @@ impl Run<'_, '_> {
     /// Settles what follows from another piece of a law.
     fn enter_piece(&mut self, term: usize, end: f64) {
         self.catch_up(term);
+        self.mode.meet_limits(self.equations, term, &self.state);
         self.mode.judge_controllers(self.equations, self.time, &self.state, &self.overrides);
         self.slides_at_limit(term, end);
     }
@@ -249,6 +253,19 @@ impl Run<'_, '_> {
                     scenario.motors[equations.controllers[index].motor].name
                 )]
             }
+            Guard::PitchEnd(index) => {
+                let load = &scenario.loads[equations.pitches[index].load];
+                vec![format!("the pitch loop of `{}`", load.name)]
+            }
+            Guard::Slew(index) => match equations.followers[index].owner {
+                Owner::Motor(motor) => {
+                    vec![format!("the ramp limit of `{}`", scenario.motors[motor].name)]
+                }
+                Owner::Load(load) => {
+                    vec![format!("the rate limit of `{}`", scenario.loads[load].name)]
+                }
+                _ => Vec::new(),
+            },
             Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..) => Vec::new(),
         }
     }

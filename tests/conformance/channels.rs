@@ -7,7 +7,7 @@ use super::trees::trains;
 use serde_json::Value;
 
 /// Unit of a channel by the part of its name behind the dot, as documented.
-const UNITS: [(&str, &[&str]); 6] = [
+const UNITS: [(&str, &[&str]); 7] = [
     ("rad/s", &["speed", "slip_speed"]),
     ("rad", &["angle", "twist", "load_angle", "phase"]),
     (
@@ -24,7 +24,17 @@ const UNITS: [(&str, &[&str]); 6] = [
             "torque_ring",
         ],
     ),
-    ("W", &["power", "loss"]),
+    ("W", &["power", "loss", "hysteresis_loss", "eddy_loss"]),
+    (
+        "degC",
+        &[
+            "magnet_temperature",
+            "magnet_temperature_inner",
+            "magnet_temperature_outer",
+            "magnet_temperature_a",
+            "magnet_temperature_b",
+        ],
+    ),
     ("m/s", &["flow"]),
     (
         "1",
@@ -35,6 +45,7 @@ const UNITS: [(&str, &[&str]); 6] = [
             "short_of_peak",
             "tip_speed_ratio",
             "power_coefficient",
+            "advance_ratio",
         ],
     ),
 ];

@@ -195,6 +195,24 @@ fn gust_spares_the_gear_because_of_the_torque_limit() {
 }
 
 #[test]
+fn pitched_turbine_comes_back_to_its_speed_and_slow_blades_cost_overspeed() {
+    let found = run("wind_pitch", &[]);
+    // Closed form: the speed asked for over the gear's ratio of 10.25, the rated torque, their power.
+    let (asked, rated) = (186.0 * RPM, 2e6 / (183.0 * RPM));
+    same(found.last("rotor.speed"), asked / 10.25, 3e-4);
+    same(found.last("generator.power"), -rated * asked, 3e-4);
+    same(found.last("blades.power"), rated * asked, 1e-3);
+    let slow = run("wind_pitch", &["loads.blades.law.axial_rotor.pitch_loop.rate=3 deg/s"]);
+    let speed = "channels/rotor.speed/max";
+    assert!(slow.number(speed) > 1.05 * found.number(speed));
+    same(
+        slow.number("gears/gear/peak_pull_out_share"),
+        found.number("gears/gear/peak_pull_out_share"),
+        0.02,
+    );
+}
+
+#[test]
 fn tidal_rotor_is_steady_before_the_waves_come() {
     let found = run("tidal_waves", &["duration=0.5 s"]);
     // Closed form: 1/2 rho pi R^3 V^2 Cp/lambda less the seal is what the gear carries.

@@ -211,7 +211,12 @@ impl DampingSources {
                 continue;
             }
             let (input, _) = evaluator.law(active, point.time, &point.state);
-            let parameters = term.parameters.map(|slot| slot.map_or(0.0, signal));
+            let parameters = crate::equations::parameters_at(
+                term.parameters,
+                &term.by_state,
+                &point.state,
+                signal,
+            );
             let slope = match (&active.function, &term.shape) {
                 // Magnets and ripple store energy: they take none out.
                 (Function::Law(crate::component::law::Law::Magnet(_), _), _)
@@ -229,8 +234,16 @@ impl DampingSources {
                 _ => continue,
             };
             let strength = evaluator.strength(&active.factor, point.time);
+            let slopes = match &active.function {
+                Function::Law(law, piece) => law.parameter_slopes(input, parameters, *piece),
+                _ => [0.0; 2],
+            };
+            let by_state = active.by_state.iter().zip(slopes).flat_map(|(form, slope)| {
+                form.iter().map(move |(place, weight)| (*place, weight * slope * strength))
+            });
+            let form = active.input.iter();
             let form =
-                active.input.iter().map(|(place, weight)| (*place, weight * slope * strength));
+                form.map(|(place, weight)| (*place, weight * slope * strength)).chain(by_state);
             torques.push(Torque {
                 name: name(term.owner),
                 direction: model.reduction.dense(direction),

@@ -1,6 +1,7 @@
 //! How a load is written in a scenario.
 
 use super::periodic::TurnHarmonic;
+use super::pitch::PitchLoop;
 use super::power_coefficient::{DEFAULT, PowerCoefficient};
 use super::propeller::TorqueCoefficient;
 use super::read_coefficients::{power_coefficient, torque_coefficient};
@@ -181,6 +182,14 @@ fn axial_rotor(fields: &mut Fields<'_>) -> LoadLaw {
     let flow =
         read_signal(fields, "flow", Dimension::LinearSpeed, true, "Speed of the wind or water.");
     let pitch = read_signal_or(fields, "pitch", Dimension::Angle, 0.0, "Pitch of the blades.");
+    let pitch_loop = fields.group_optional(
+        "pitch_loop",
+        "A controller that holds a speed with the pitch, in place of `pitch`.",
+        PitchLoop::read,
+    );
+    if pitch_loop.is_some() && fields.has("pitch") {
+        fields.fault("pitch", "either `pitch` or `pitch_loop` is stated, not both");
+    }
     let coefficient = fields.group_optional(
         "power_coefficient",
         "Cp over tip speed ratio and pitch in one of these ways, in place of the built-in formula.",
@@ -188,7 +197,11 @@ fn axial_rotor(fields: &mut Fields<'_>) -> LoadLaw {
     );
     let coefficient = coefficient.flatten().unwrap_or(PowerCoefficient::Formula(DEFAULT));
     let flow = flow.unwrap_or(Signal::Constant(0.0));
-    LoadLaw::AxialRotor { radius, density, flow, pitch, coefficient }
+    if let Some(pitch_loop) = &pitch_loop {
+        pitch_loop.check(&coefficient, fields);
+    }
+    let pitch_loop = pitch_loop.map(Box::new);
+    LoadLaw::AxialRotor { radius, density, flow, pitch, pitch_loop, coefficient }
 }
 
 fn periodic(fields: &mut Fields<'_>) -> LoadLaw {

@@ -106,9 +106,9 @@ fn drives(material: &Material<'_>) -> Vec<String> {
         "The formula of breakdown torque and slip understates the starting torque of real cage motors.",
     );
     say(
-        motor(|law| matches!(law, MotorLaw::SpeedLoop { .. })),
-        "The drive gives the torque its speed controller asks for up to the limit; current loops, filters and \
-         voltage limits of the converter are not in it.",
+        motor(|law| matches!(law, MotorLaw::SpeedLoop { .. } | MotorLaw::TorqueLoop { .. })),
+        "The drive gives the torque it is asked for up to its limits; current loops, filters and voltage limits \
+         of the converter are not in it, and its trips are those of the protections only.",
     );
     say(
         motor(|law| matches!(law, MotorLaw::Prescribed { .. }))

@@ -222,11 +222,14 @@ fn motor_text(law: &MotorLaw, written: Written<'_>) -> String {
         MotorLaw::InductionCircuit { figures, .. } => {
             format!("{}{NBSP}V, {}{NBSP}Hz", plain(figures.line_voltage), plain(figures.frequency))
         }
-        MotorLaw::SpeedLoop { torque_limit, .. } => {
-            format!("speed loop, up to {}", written.torque(*torque_limit))
+        MotorLaw::SpeedLoop { drive, .. } => {
+            format!("speed loop, up to {}", written.torque(drive.limits.torque_limit))
         }
-        MotorLaw::OptimalPower { torque_limit, .. } => {
-            format!("generator, up to {}", written.torque(*torque_limit))
+        MotorLaw::TorqueLoop { drive, .. } => {
+            format!("torque loop, up to {}", written.torque(drive.limits.torque_limit))
+        }
+        MotorLaw::OptimalPower { figures } => {
+            format!("generator, up to {}", written.torque(figures.largest_torque()))
         }
         MotorLaw::Prescribed { .. } => "torque as given".to_owned(),
         _ => String::new(),

@@ -82,20 +82,26 @@ pub fn find(
     for (place, value) in &deformations {
         state[*place] = value / equations.scale[*place];
     }
+    let external = External { equations, time, overrides };
     for (index, controller) in equations.controllers.iter().enumerate() {
         let torque = balance.command[index];
         if let Some(place) = controller.integral_state {
-            state[place] = torque / equations.scale[place];
+            state[place] = (torque - external.feed_forward(index)) / equations.scale[place];
         }
         if let Some(place) = controller.torque_state {
             state[place] = torque / equations.scale[place];
+        }
+    }
+    for (index, pitch) in equations.pitches.iter().enumerate() {
+        let angle = balance.command[equations.controllers.len() + index];
+        for place in [pitch.state, pitch.integral_state] {
+            state[place] = angle / equations.scale[place];
         }
     }
     // Magnets warm up over minutes: the motion is in balance at the temperatures of the start.
     for node in &equations.thermal {
         state[node.place] = node.start / equations.scale[node.place];
     }
-    let external = External { equations, time, overrides };
     for machine in &equations.machines {
         machine.settle(&mut state, &equations.scale, external.machine_voltage(machine));
     }

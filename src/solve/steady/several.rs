@@ -12,26 +12,22 @@ impl Search<'_> {
     pub(super) fn many(&self, given: &DVector<f64>) -> Result<Balance, SteadyError> {
         let count = given.len();
         let mut motion = given.clone();
-        let mut commands: Vec<Command> = self
-            .equations()
-            .controllers
-            .iter()
-            .enumerate()
-            .map(|(index, controller)| {
-                if controller.integral.is_some() && self.external.scale(index) != 0.0 {
-                    Command::Fixed(0.0)
-                } else {
-                    Command::ByLaw
-                }
+        let mut commands: Vec<Command> = (0..self.external.commands())
+            .map(|index| match self.external.pitch(index) {
+                // A little off fine pitch: there the torque answers.
+                Some(pitch) => Command::Fixed(0.9 * pitch.angles[0] + 0.1 * pitch.angles[1]),
+                None if self.external.integrates(index) => Command::Fixed(0.0),
+                None => Command::ByLaw,
             })
             .collect();
         for _ in 0..4 {
             motion = self.newton(motion, &mut commands, count)?;
             let mut changed = false;
             for (index, command) in commands.iter_mut().enumerate() {
-                let limit = self.equations().controllers[index].limit;
+                let edges = self.external.edges(index, &self.speeds(&motion));
+                let room = 1e-9 * (edges[1] - edges[0]);
                 if let Command::Fixed(torque) = *command
-                    && torque.abs() > limit * (1.0 + 1e-9)
+                    && (torque < edges[0] - room || torque > edges[1] + room)
                 {
                     *command = Command::ByLaw;
                     changed = true;
@@ -81,6 +77,11 @@ impl Search<'_> {
         });
         let mut unknown = DVector::zeros(total);
         unknown.rows_mut(0, count).copy_from(&start);
+        for (line, index) in open.iter().enumerate() {
+            if let Command::Fixed(value) = commands[*index] {
+                unknown[count + line] = value;
+            }
+        }
         let residual = |unknown: &DVector<f64>, commands: &mut [Command]| {
             for (line, index) in open.iter().enumerate() {
                 commands[*index] = Command::Fixed(unknown[count + line]);
@@ -112,8 +113,14 @@ impl Search<'_> {
             }
             let mut slope = DMatrix::zeros(total, total);
             for column in 0..total {
-                let width =
-                    if column < count { 1e-7 * scale[column].min(1e9) } else { 1e-6 * size };
+                let pitch = column.checked_sub(count).and_then(|line| open.get(line));
+                let width = if column < count {
+                    1e-7 * scale[column].min(1e9)
+                } else if pitch.is_some_and(|index| self.external.pitch(*index).is_some()) {
+                    1e-6
+                } else {
+                    1e-6 * size
+                };
                 let mut moved = unknown.clone();
                 moved[column] += width;
                 let (there, _) = residual(&moved, commands);
