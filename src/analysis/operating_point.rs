@@ -1,7 +1,7 @@
 //! The operating point as a table: speeds, torques, powers, losses, load angles, margin to pull-out.
 
 use crate::analysis::linear_point::LinearPoint;
-use crate::component::channel::{ChannelKind, MagneticChannel};
+use crate::component::channel::{ChannelKind, ClutchChannel, MagneticChannel};
 use crate::equations::assembly::assemble;
 use crate::equations::frame::{Counters, Evaluator, Frame};
 use crate::equations::{Equations, Owner, Sliding};
@@ -162,6 +162,11 @@ pub fn at(equations: &Equations, point: &LinearPoint) -> OperatingPoint {
         }
         sums.lost += magnet.loss;
     }
+    for (place, pair) in model.scenario.gear_pairs.iter().enumerate() {
+        if !pair.drag.is_empty() {
+            sums.lost += table.value(ChannelKind::GearPairLoss(place));
+        }
+    }
     sums.efficiency = (sums.supplied > 0.0).then(|| sums.absorbed / sums.supplied);
     sums
 }
@@ -274,7 +279,19 @@ impl Table<'_> {
             let (torque, power) = (ChannelKind::BrakeTorque(place), ChannelKind::BrakePower(place));
             point("brake", &brake.name, torque, power)
         });
-        motors.chain(loads).chain(brakes).collect()
+        let clutches = scenario.clutches.iter().enumerate().map(|(place, clutch)| ActorPoint {
+            kind: "clutch",
+            name: clutch.name.clone(),
+            torque: self.value(ChannelKind::Clutch(place, ClutchChannel::Torque)),
+            power: -self.value(ChannelKind::Clutch(place, ClutchChannel::Loss)),
+        });
+        let fluids = scenario.fluid_couplings.iter().enumerate().map(|(place, it)| ActorPoint {
+            kind: "fluid coupling",
+            name: it.name.clone(),
+            torque: self.value(ChannelKind::FluidCoupling(place, ClutchChannel::Torque)),
+            power: -self.value(ChannelKind::FluidCoupling(place, ClutchChannel::Loss)),
+        });
+        motors.chain(loads).chain(brakes).chain(clutches).chain(fluids).collect()
     }
 }
 

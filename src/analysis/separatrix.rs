@@ -93,6 +93,12 @@ fn end_load(equations: &Equations, result: &RunResult, magnet: &Magnet) -> Optio
     for (index, brake) in scenario.brakes.iter().enumerate() {
         add(Owner::Brake(index), &brake.name);
     }
+    for (index, clutch) in scenario.clutches.iter().enumerate() {
+        add(Owner::Clutch(index), &clutch.name);
+    }
+    for (index, coupling) in scenario.fluid_couplings.iter().enumerate() {
+        add(Owner::FluidCoupling(index), &coupling.name);
+    }
     let load = sum * magnet.phase_inertia;
     load.is_finite().then_some(load)
 }

@@ -2,14 +2,17 @@
 
 use super::body::Body;
 use super::brake::Brake;
+use super::clutch::Clutch;
+use super::fluid_coupling::FluidCoupling;
 use super::gear_pair::GearPair;
-use super::load::{Load, LoadLaw};
-use super::magnet_temperature::{HALVES, ROTORS};
-use super::magnetic_gear::{Field, MagneticCoupling, MagneticGear};
+use super::load::Load;
+use super::magnetic_gear::{MagneticCoupling, MagneticGear};
 use super::motor::Motor;
 use super::planetary::PlanetaryGear;
 use super::shaft::Shaft;
 use crate::quantity::Dimension;
+
+pub use super::channel_list::list;
 
 /// One channel.
 #[derive(Clone, Debug, PartialEq)]
@@ -39,12 +42,20 @@ pub enum ChannelKind {
     Magnetic(usize, MagneticChannel),
     /// Constraint torque of a gear pair on its member (0 = a, 1 = b).
     GearPairTorque(usize, usize),
+    /// Power that a gear pair's drag loses.
+    GearPairLoss(usize),
     /// Constraint torque of a planetary set on its member (0 = sun, 1 = carrier, 2 = ring).
     PlanetaryTorque(usize, usize),
+    /// A clutch (overrunning ones first, then torque limiters).
+    Clutch(usize, ClutchChannel),
+    /// A fluid coupling.
+    FluidCoupling(usize, ClutchChannel),
     /// Torque of a motor on its body.
     MotorTorque(usize),
     /// Power of a motor into the train.
     MotorPower(usize),
+    /// Current of a line of an induction motor by its circuit.
+    MotorCurrent(usize),
     /// Torque of a load on its body.
     LoadTorque(usize),
     /// Power of a load into the train.
@@ -59,6 +70,10 @@ pub enum ChannelKind {
     LoadTipSpeedRatio(usize),
     /// Power coefficient of an axial rotor, 0 while the flow is not positive.
     LoadPowerCoefficient(usize),
+    /// Pitch of an axial rotor with a pitch loop.
+    LoadPitch(usize),
+    /// Advance ratio of a propeller, within plus and minus 100.
+    LoadAdvanceRatio(usize),
 }
 
 /// Channels of a magnetic gear or coupling.
@@ -94,6 +109,17 @@ pub enum MagneticChannel {
     TorqueModulator,
 }
 
+/// Channels of an overrunning clutch, a torque limiter or a fluid coupling.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum ClutchChannel {
+    /// Torque on the second body.
+    Torque,
+    /// Speed of the first body against the second.
+    SlipSpeed,
+    /// Heat in W, never negative.
+    Loss,
+}
+
 /// The channels of a train as the reader of limits knows them.
 #[derive(Clone, Copy, Debug)]
 pub struct Known<'a> {
@@ -115,11 +141,12 @@ pub fn dimension_of(channel: &str) -> Option<Dimension> {
     let quantity = channel.split_once('.')?.1;
     Some(match quantity {
         "speed" | "slip_speed" => Dimension::Speed,
-        "angle" | "twist" | "load_angle" | "phase" => Dimension::Angle,
+        "angle" | "twist" | "load_angle" | "phase" | "pitch" => Dimension::Angle,
         "power" | "loss" | "hysteresis_loss" | "eddy_loss" => Dimension::Power,
         "flow" => Dimension::LinearSpeed,
+        "current" => Dimension::Current,
         "slips" | "net_slips" | "pull_out_share" | "short_of_peak" | "tip_speed_ratio"
-        | "power_coefficient" => Dimension::One,
+        | "power_coefficient" | "advance_ratio" => Dimension::One,
         _ if quantity.starts_with("magnet_temperature") => Dimension::Temperature,
         _ if quantity.starts_with("torque") => Dimension::Torque,
         _ => return None,
@@ -141,6 +168,12 @@ pub enum Section {
     GearPairs,
     /// `planetary_gears`.
     PlanetaryGears,
+    /// `overrunning_clutches`.
+    OverrunningClutches,
+    /// `torque_limiters`.
+    TorqueLimiters,
+    /// `fluid_couplings`.
+    FluidCouplings,
     /// `motors`.
     Motors,
     /// `loads`.
@@ -151,13 +184,16 @@ pub enum Section {
 
 impl Section {
     /// All of them in the order of the documentation.
-    pub const ALL: [Self; 9] = [
+    pub const ALL: [Self; 12] = [
         Self::Bodies,
         Self::Shafts,
         Self::MagneticGears,
         Self::MagneticCouplings,
         Self::GearPairs,
         Self::PlanetaryGears,
+        Self::OverrunningClutches,
+        Self::TorqueLimiters,
+        Self::FluidCouplings,
         Self::Motors,
         Self::Loads,
         Self::Brakes,
@@ -172,6 +208,9 @@ impl Section {
             Self::MagneticCouplings => "magnetic_couplings",
             Self::GearPairs => "gear_pairs",
             Self::PlanetaryGears => "planetary_gears",
+            Self::OverrunningClutches => "overrunning_clutches",
+            Self::TorqueLimiters => "torque_limiters",
+            Self::FluidCouplings => "fluid_couplings",
             Self::Motors => "motors",
             Self::Loads => "loads",
             Self::Brakes => "brakes",
@@ -194,168 +233,14 @@ pub struct Train<'a> {
     pub gear_pairs: &'a [GearPair],
     /// Rigid planetary sets.
     pub planetary_gears: &'a [PlanetaryGear],
+    /// Overrunning clutches, then torque limiters.
+    pub clutches: &'a [Clutch],
+    /// Fluid couplings.
+    pub fluid_couplings: &'a [FluidCoupling],
     /// Motors.
     pub motors: &'a [Motor],
     /// Loads.
     pub loads: &'a [Load],
     /// Brakes.
     pub brakes: &'a [Brake],
-}
-
-/// Lists all channels of a train, sections in the order given, things in file order.
-pub fn list(train: &Train<'_>, order: &[Section]) -> Vec<Channel> {
-    let mut channels = Vec::new();
-    for section in order {
-        match section {
-            Section::Bodies => {
-                for (place, body) in train.bodies.iter().enumerate() {
-                    let mut add = adder(&mut channels, &body.name);
-                    add("speed", ChannelKind::BodySpeed(place), Dimension::Speed);
-                    add("angle", ChannelKind::BodyAngle(place), Dimension::Angle);
-                }
-            }
-            Section::Shafts => {
-                for (place, shaft) in train.shafts.iter().enumerate() {
-                    let mut add = adder(&mut channels, &shaft.name);
-                    add("torque", ChannelKind::ShaftTorque(place), Dimension::Torque);
-                    if !shaft.rigid {
-                        add("twist", ChannelKind::ShaftTwist(place), Dimension::Angle);
-                    }
-                }
-            }
-            Section::MagneticGears => {
-                for (place, gear) in train.magnetic_gears.iter().enumerate() {
-                    magnetic(&mut channels, &gear.name, place, false);
-                    if gear.losses.is_some() {
-                        let mut add = adder(&mut channels, &gear.name);
-                        for (channel, kind) in [
-                            ("hysteresis_loss", MagneticChannel::HysteresisLoss),
-                            ("eddy_loss", MagneticChannel::EddyLoss),
-                        ] {
-                            add(channel, ChannelKind::Magnetic(place, kind), Dimension::Power);
-                        }
-                    }
-                    temperatures(&mut channels, &gear.name, place, &gear.field, ROTORS);
-                }
-            }
-            Section::MagneticCouplings => {
-                let gears = train.magnetic_gears.len();
-                for (place, coupling) in train.magnetic_couplings.iter().enumerate() {
-                    magnetic(&mut channels, &coupling.name, gears + place, true);
-                    let (name, place) = (&coupling.name, gears + place);
-                    temperatures(&mut channels, name, place, &coupling.field, HALVES);
-                }
-            }
-            Section::GearPairs => {
-                for (place, pair) in train.gear_pairs.iter().enumerate() {
-                    let mut add = adder(&mut channels, &pair.name);
-                    for (member, channel) in ["torque_a", "torque_b"].into_iter().enumerate() {
-                        let kind = ChannelKind::GearPairTorque(place, member);
-                        add(channel, kind, Dimension::Torque);
-                    }
-                }
-            }
-            Section::PlanetaryGears => {
-                for (place, set) in train.planetary_gears.iter().enumerate() {
-                    let mut add = adder(&mut channels, &set.name);
-                    let members = ["torque_sun", "torque_carrier", "torque_ring"];
-                    for (member, channel) in members.into_iter().enumerate() {
-                        let kind = ChannelKind::PlanetaryTorque(place, member);
-                        add(channel, kind, Dimension::Torque);
-                    }
-                }
-            }
-            Section::Motors => {
-                for (place, motor) in train.motors.iter().enumerate() {
-                    let mut add = adder(&mut channels, &motor.name);
-                    add("torque", ChannelKind::MotorTorque(place), Dimension::Torque);
-                    add("power", ChannelKind::MotorPower(place), Dimension::Power);
-                }
-            }
-            Section::Loads => {
-                for (place, load) in train.loads.iter().enumerate() {
-                    load_channels(&mut channels, load, place);
-                }
-            }
-            Section::Brakes => {
-                for (place, brake) in train.brakes.iter().enumerate() {
-                    let mut add = adder(&mut channels, &brake.name);
-                    add("torque", ChannelKind::BrakeTorque(place), Dimension::Torque);
-                    add("power", ChannelKind::BrakePower(place), Dimension::Power);
-                }
-            }
-        }
-    }
-    channels
-}
-
-/// A closure that appends channels of one thing.
-fn adder<'a>(
-    channels: &'a mut Vec<Channel>,
-    thing: &'a str,
-) -> impl FnMut(&str, ChannelKind, Dimension) + 'a {
-    move |channel, kind, dimension| {
-        channels.push(Channel {
-            name: format!("{thing}.{channel}"),
-            kind,
-            dimension,
-            unit: dimension.si_unit(),
-        });
-    }
-}
-
-fn magnetic(channels: &mut Vec<Channel>, name: &str, place: usize, coupling: bool) {
-    use MagneticChannel as M;
-    let (first, second) =
-        if coupling { ("torque_a", "torque_b") } else { ("torque_inner", "torque_outer") };
-    let mut add = adder(channels, name);
-    for (channel, kind, dimension) in [
-        ("load_angle", M::LoadAngle, Dimension::Angle),
-        ("phase", M::Phase, Dimension::Angle),
-        ("slips", M::Slips, Dimension::One),
-        ("net_slips", M::NetSlips, Dimension::One),
-        ("pull_out_share", M::PullOutShare, Dimension::One),
-        ("short_of_peak", M::ShortOfPeak, Dimension::One),
-        ("slip_speed", M::SlipSpeed, Dimension::Speed),
-        ("loss", M::Loss, Dimension::Power),
-        (first, M::TorqueFirst, Dimension::Torque),
-        (second, M::TorqueSecond, Dimension::Torque),
-    ] {
-        add(channel, ChannelKind::Magnetic(place, kind), dimension);
-    }
-    if !coupling {
-        let kind = ChannelKind::Magnetic(place, M::TorqueModulator);
-        add("torque_modulator", kind, Dimension::Torque);
-    }
-}
-
-/// `magnet_temperature` of the one node, or one a member.
-fn temperatures(
-    channels: &mut Vec<Channel>,
-    name: &str,
-    place: usize,
-    field: &Field,
-    members: [&str; 2],
-) {
-    let Some(thermal) = &field.warmth.thermal else { return };
-    let mut add = adder(channels, name);
-    for (node, member) in members.iter().enumerate().take(thermal.nodes().count()) {
-        let channel = match thermal.second {
-            Some(_) => format!("magnet_temperature_{member}"),
-            None => "magnet_temperature".to_owned(),
-        };
-        let kind = ChannelKind::Magnetic(place, MagneticChannel::Temperature(node));
-        add(&channel, kind, Dimension::Temperature);
-    }
-}
-
-fn load_channels(channels: &mut Vec<Channel>, load: &Load, place: usize) {
-    let mut add = adder(channels, &load.name);
-    add("torque", ChannelKind::LoadTorque(place), Dimension::Torque);
-    add("power", ChannelKind::LoadPower(place), Dimension::Power);
-    if matches!(load.law, LoadLaw::AxialRotor { .. }) {
-        add("flow", ChannelKind::LoadFlow(place), Dimension::LinearSpeed);
-        add("tip_speed_ratio", ChannelKind::LoadTipSpeedRatio(place), Dimension::One);
-        add("power_coefficient", ChannelKind::LoadPowerCoefficient(place), Dimension::One);
-    }
 }

@@ -11,9 +11,11 @@
 //! positive speed), at full voltage and scale 1, not mirrored: voltage, scale and mirroring
 //! are factors that the equations apply.
 
+use crate::component::elastic_curve::ElasticCurve;
 use crate::component::load::axial_rotor::AxialRotor;
 use crate::component::load::curve::LoadCurve;
 use crate::component::load::periodic::Periodic;
+use crate::component::load::pitch::schedule;
 use crate::component::load::power_law::PowerLaw;
 use crate::component::load::propeller::Propeller;
 use crate::component::magnetic_law::MagnetLaw;
@@ -22,6 +24,7 @@ use crate::component::motor::curve::MotorCurve;
 use crate::component::motor::induction::Induction;
 use crate::component::motor::optimal_power::OptimalPower;
 use crate::component::motor::rating_plate::RatingPlate;
+use crate::component::motor::torque_limit::TorqueLimit;
 
 /// One scalar law.
 #[derive(Clone, Debug, PartialEq)]
@@ -80,11 +83,32 @@ pub enum Law {
     Periodic(Periodic),
     /// Ship's propeller; the input is the body's speed, the parameter is the speed of advance (m/s).
     Propeller(Propeller),
+    /// Torque of a shaft by points beyond that of its line at no twist; the input is the twist, rad.
+    Elastic(ElasticCurve),
     /// `x` clamped to the limits; pieces 0 (at the lower), 1 (`x` itself), 2 (at the upper).
     Saturation {
         /// Lower and upper limit, in the input's unit.
         limits: [f64; 2],
     },
+    /// `x` between limits that are laws of their own; pieces 0 (at the lower), 1 (`x`), 2 (at the upper).
+    Between {
+        /// The largest limits; where it stands at one its value is 0 and the limit's law speaks.
+        limits: [f64; 2],
+    },
+    /// `x` times the factor of a gain that falls with the pitch, the first parameter, rad.
+    Scheduled {
+        /// Pitch at which the factor is half, rad.
+        halves_at: f64,
+    },
+    /// The same and the second parameter added, clamped; pieces as for a saturation.
+    PitchCommand {
+        /// Lowest and highest angle, rad.
+        limits: [f64; 2],
+        /// As in [`Law::Scheduled`].
+        halves_at: f64,
+    },
+    /// Torque limit of a drive; the input is the body's speed, rad/s.
+    TorqueLimit(TorqueLimit),
 }
 
 impl Law {
@@ -127,9 +151,24 @@ impl Law {
             Self::AxialRotor(rotor) => rotor.value(x, p, piece),
             Self::Periodic(load) => load.value(x),
             Self::Propeller(propeller) => propeller.value(x, p, piece),
+            Self::Elastic(shaft) => shaft.beyond(x, piece),
             Self::Saturation { limits } => match piece {
                 0 => limits[0],
                 1 => x,
+                _ => limits[1],
+            },
+            Self::Between { .. } => {
+                if piece == 1 {
+                    x
+                } else {
+                    0.0
+                }
+            }
+            Self::TorqueLimit(limit) => limit.value(x, piece),
+            Self::Scheduled { halves_at } => x * schedule(p[0], *halves_at).0,
+            Self::PitchCommand { limits, halves_at } => match piece {
+                0 => limits[0],
+                1 => x * schedule(p[0], *halves_at).0 + p[1],
                 _ => limits[1],
             },
         }
@@ -164,7 +203,25 @@ impl Law {
             Self::AxialRotor(rotor) => rotor.slope(x, p, piece),
             Self::Periodic(load) => load.slope(x),
             Self::Propeller(propeller) => propeller.slope(x, p, piece),
-            Self::Saturation { .. } => f64::from(u8::from(piece == 1)),
+            Self::Elastic(shaft) => shaft.beyond_slope(piece),
+            Self::Saturation { .. } | Self::Between { .. } => f64::from(u8::from(piece == 1)),
+            Self::TorqueLimit(limit) => limit.slope(x, piece),
+            Self::PitchCommand { .. } if piece != 1 => 0.0,
+            Self::Scheduled { halves_at } | Self::PitchCommand { halves_at, .. } => {
+                schedule(p[0], *halves_at).0
+            }
+        }
+    }
+
+    /// The derivatives of [`Law::value`] with respect to the parameters that may follow the state.
+    pub fn parameter_slopes(&self, x: f64, p: [f64; 2], piece: usize) -> [f64; 2] {
+        match self {
+            Self::AxialRotor(rotor) => [0.0, rotor.pitch_slope(x, p, piece)],
+            Self::Scheduled { halves_at } => [x * schedule(p[0], *halves_at).1, 0.0],
+            Self::PitchCommand { halves_at, .. } if piece == 1 => {
+                [x * schedule(p[0], *halves_at).1, 1.0]
+            }
+            _ => [0.0; 2],
         }
     }
 
@@ -175,16 +232,21 @@ impl Law {
             Self::AxialRotor(rotor) => rotor.tip_speed_ratio(x, p[0]),
             Self::Propeller(propeller) => propeller.advance_ratio(x, p[0]),
             Self::Circuit(_) | Self::Contactor => p[0],
+            Self::PitchCommand { halves_at, .. } => x * schedule(p[0], *halves_at).0 + p[1],
             _ => x,
         }
     }
 
-    /// True when the piece hangs on signals, not on the input alone.
+    /// True when the piece hangs on parameters, not on the input alone.
     #[inline]
     pub fn piece_follows_signals(&self) -> bool {
         matches!(
             self,
-            Self::AxialRotor(_) | Self::Propeller(_) | Self::Circuit(_) | Self::Contactor
+            Self::AxialRotor(_)
+                | Self::Propeller(_)
+                | Self::Circuit(_)
+                | Self::Contactor
+                | Self::PitchCommand { .. }
         )
     }
 
@@ -214,6 +276,7 @@ impl Law {
             | Self::MagnetEnergy(_)
             | Self::Cogging { .. }
             | Self::Induction(_)
+            | Self::Scheduled { .. }
             | Self::Periodic(_) => &[],
             Self::AxialRotor(rotor) => rotor.boundaries(),
             Self::RatingPlate(motor) => motor.boundaries(),
@@ -223,7 +286,11 @@ impl Law {
             Self::PowerLaw(load) => load.boundaries(),
             Self::LoadCurve(load) => load.boundaries(),
             Self::Propeller(propeller) => propeller.boundaries(),
-            Self::Saturation { limits } => limits,
+            Self::Elastic(shaft) => shaft.boundaries(),
+            Self::Saturation { limits }
+            | Self::Between { limits }
+            | Self::PitchCommand { limits, .. } => limits,
+            Self::TorqueLimit(limit) => limit.boundaries(),
         }
     }
 
@@ -239,6 +306,7 @@ impl Law {
             Self::Induction(motor) => Some(motor.warn_range()),
             Self::MotorCurve(motor) => motor.warn_range(),
             Self::LoadCurve(load) => load.warn_range(),
+            Self::Elastic(shaft) => Some(shaft.range()),
             _ => None,
         }
     }
@@ -252,6 +320,9 @@ impl Law {
             }
             Self::MotorCurve(_) | Self::LoadCurve(_) => {
                 "the run leaves the points of this curve; its end values are held there"
+            }
+            Self::Elastic(_) => {
+                "the twist leaves the points of this stiffness; its last line goes on there"
             }
             _ => "",
         }

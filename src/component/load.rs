@@ -1,14 +1,17 @@
 //! Loads as typed, and their laws.
 
 pub mod axial_rotor;
+pub mod coefficient_file;
 pub mod curve;
 pub mod periodic;
+pub mod pitch;
 pub mod power_coefficient;
 pub mod power_law;
 pub mod propeller;
 pub mod propeller_series;
 mod read;
 mod read_coefficients;
+pub mod reciprocating;
 
 use crate::component::law::Law;
 use crate::signal::Signal;
@@ -74,8 +77,10 @@ pub enum LoadLaw {
         density: f64,
         /// m/s.
         flow: Signal,
-        /// rad.
+        /// rad; not in force beside a loop.
         pitch: Signal,
+        /// A controller of the pitch.
+        pitch_loop: Option<Box<pitch::PitchLoop>>,
         /// Power coefficient over tip speed ratio and pitch.
         coefficient: power_coefficient::PowerCoefficient,
     },
@@ -85,6 +90,17 @@ pub enum LoadLaw {
         mean: f64,
         /// Harmonics of the resisting torque.
         harmonics: Vec<periodic::TurnHarmonic>,
+    },
+    /// Inertia of a reciprocating mass on the body as its crank.
+    Reciprocating {
+        /// m.
+        crank_radius: f64,
+        /// m.
+        rod_length: f64,
+        /// kg.
+        mass: f64,
+        /// Crank angle at the start, rad.
+        phase: f64,
     },
     /// Ship's propeller.
     Propeller {
@@ -101,7 +117,7 @@ pub enum LoadLaw {
 
 impl LoadLaw {
     /// The scalar law; none for friction and viscous loads, which are dry friction and a linear
-    /// part of the equations. A prescribed torque is the unit law times its signal.
+    /// part of the equations, and for reciprocating masses, whose law has two inputs. A prescribed torque is the unit law times its signal.
     pub fn scalar(&self) -> Option<Law> {
         match self {
             Self::PowerLaw { torque, speed, exponent } => {
@@ -118,7 +134,7 @@ impl LoadLaw {
                 propeller::Propeller::new(*diameter, *density, coefficient.clone()),
             )),
             Self::Prescribed { .. } => Some(Law::Unit),
-            Self::Friction { .. } | Self::Viscous { .. } => None,
+            Self::Friction { .. } | Self::Viscous { .. } | Self::Reciprocating { .. } => None,
         }
     }
 }

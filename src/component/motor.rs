@@ -6,6 +6,9 @@ pub mod induction;
 pub mod optimal_power;
 pub mod rating_plate;
 mod read;
+mod read_drive;
+mod read_generator;
+pub mod torque_limit;
 
 use crate::component::law::Law;
 use crate::signal::Signal;
@@ -74,14 +77,21 @@ pub enum MotorLaw {
     SpeedLoop {
         /// Speed asked for, rad/s.
         speed: Signal,
-        /// Limit of the command, N*m.
-        torque_limit: f64,
         /// N*m*s/rad.
         gain: f64,
         /// s; `None`: no integral part.
         integral_time: Option<f64>,
-        /// First-order lag of the torque, s; 0 for none.
-        lag: f64,
+        /// Torque added to the command before its limit, N*m.
+        feed_forward: Signal,
+        /// Limits and lag.
+        drive: Drive,
+    },
+    /// Drive that gives the torque asked for within its limits.
+    TorqueLoop {
+        /// Torque asked for, N*m.
+        torque: Signal,
+        /// Limits and lag.
+        drive: Drive,
     },
     /// Equivalent circuit of an induction motor.
     InductionCircuit {
@@ -94,13 +104,22 @@ pub enum MotorLaw {
         /// With the flux equations instead of the circuit at each instant.
         transient: bool,
     },
-    /// Generator: torque = -min(coefficient*speed^2, limit) while turning forward.
+    /// Generator of a variable-speed rotor.
     OptimalPower {
-        /// N*m*s2/rad2.
-        coefficient: f64,
-        /// N*m.
-        torque_limit: f64,
+        /// Its regions.
+        figures: optimal_power::GeneratorFigures,
     },
+}
+
+/// What limits the torque of a drive, and how it follows its command.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Drive {
+    /// Limits of the command.
+    pub limits: torque_limit::TorqueLimits,
+    /// First-order lag of the torque, s; 0 for none.
+    pub lag: f64,
+    /// Largest rate of the torque, N*m/s; only with a lag.
+    pub torque_rate: Option<f64>,
 }
 
 /// The figures of a cage motor's rating plate, checked.
@@ -138,7 +157,7 @@ impl Plate {
 }
 
 impl MotorLaw {
-    /// The scalar law at full voltage; none for a speed loop, which has states of its own. With
+    /// The scalar law at full voltage; none for a drive with a controller, which has terms of its own. With
     /// `transient` a circuit has states too, and this is where they come to rest.
     /// A prescribed torque is the unit law times its signal.
     pub fn scalar(&self) -> Option<Law> {
@@ -169,9 +188,9 @@ impl MotorLaw {
             Self::Curve { points, .. } => Law::MotorCurve(curve::MotorCurve::new(points)),
             Self::Prescribed { .. } => Law::Unit,
             Self::InductionCircuit { figures, .. } => Law::Circuit(circuit::Circuit::new(*figures)),
-            Self::SpeedLoop { .. } => return None,
-            Self::OptimalPower { coefficient, torque_limit } => {
-                Law::OptimalPower(optimal_power::OptimalPower::new(*coefficient, *torque_limit))
+            Self::SpeedLoop { .. } | Self::TorqueLoop { .. } => return None,
+            Self::OptimalPower { figures } => {
+                Law::OptimalPower(optimal_power::OptimalPower::new(figures))
             }
         };
         Some(law)

@@ -1,10 +1,12 @@
 //! The equations of one mode over one stretch of time, ready to be evaluated.
 
 use super::channels::{self, ChannelForm};
-use super::mode::{Contact, Mode};
+use super::mode::{Mode, Slewing};
 use super::parts::Parts;
+use super::quiet_powers::{QuietPowers, quiet_powers};
 use super::{Equations, Factor, Gain, PowerKind, Shape, Sliding, StateRow, Target, dot};
 use crate::component::law::Law;
+use crate::component::pair_law::PairLaw;
 use crate::model::BodyRow;
 use crate::signal::course::{Overrides, SlotId};
 use nalgebra::DMatrix;
@@ -36,9 +38,11 @@ pub struct Active {
     /// Input as a form over the scaled state.
     pub input: StateRow,
     /// Added to the input.
-    pub offset: Option<(f64, SlotId)>,
+    pub offsets: Vec<(f64, SlotId)>,
     /// Parameters of the law.
     pub parameters: [Option<SlotId>; 2],
+    /// Added to the parameters: forms over the scaled state; empty for none.
+    pub by_state: [StateRow; 2],
     /// Offset and parameters where nothing of them follows time.
     pub fixed: (f64, [f64; 2]),
     /// True when its factor, offset or a parameter follows time within the stretch.
@@ -60,6 +64,8 @@ pub struct Active {
 pub enum Function {
     /// A law in one of its pieces.
     Law(Law, usize),
+    /// A law of the input and of a second form over the state.
+    Pair(PairLaw, StateRow),
     /// The input itself.
     Linear,
     /// A sum of products of two states each.
@@ -77,17 +83,6 @@ pub enum Strength {
     Constant(f64),
     /// Follows signals.
     Varying(Factor),
-}
-
-/// Powers that follow from the state without a law.
-#[derive(Clone, Debug, Default, PartialEq)]
-pub struct QuietPowers {
-    /// Lost: weight times the square of a state's scaled rate (deformation rates).
-    pub rate_losses: Vec<(usize, f64)>,
-    /// Lost: weight times the square of a form.
-    pub losses: Vec<(f64, StateRow)>,
-    /// Power of loads and motors that are linear: weight times the product of two forms.
-    pub drives: Vec<(f64, StateRow, StateRow)>,
 }
 
 /// The equations of one mode over one stretch of time.
@@ -157,24 +152,33 @@ pub fn assemble(
                 .is_some_and(|scale| scale == 0.0);
             controller.integral == Some(place) && (*held || off)
         });
-        if held || equations.machines.iter().any(|machine| machine.is_off(mode, place)) {
+        if held
+            || equations.machines.iter().any(|machine| machine.is_off(mode, place))
+            || mode.is_off(equations, place)
+        {
             continue;
         }
-        let factor = strength(&term.factor, &mut varies);
+        let mut factor = strength(&term.factor, &mut varies);
+        let slewing = mode.slewing_at(equations, place);
+        if let Some(Slewing::Rate(sign)) = slewing {
+            factor = Strength::Constant(sign);
+        }
         if factor == Strength::Constant(0.0) {
             continue;
         }
         let mut moving =
-            term.offset.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
+            term.offsets.iter().map(|(_, slot)| *slot).chain(term.parameters.into_iter().flatten());
         let moves =
             moving.any(|slot| equations.bank.constant_on(slot, start, end, overrides).is_none());
         varies |= moves;
         let column = match &term.target {
+            // A command that is out of reach moves nothing: the rate does.
+            _ if slewing == Some(Slewing::Command) => Vec::new(),
             Target::Torque(direction) => parts.column(direction),
             Target::State(state, rate) => vec![(*state, rate / equations.scale[*state])],
         };
-        if let (Shape::Linear, None, Strength::Constant(value)) =
-            (&term.shape, term.offset, &factor)
+        if let (Shape::Linear, [], Strength::Constant(value)) =
+            (&term.shape, term.offsets.as_slice(), &factor)
         {
             for &(row, share) in &column {
                 for &(state, weight) in &term.input {
@@ -192,7 +196,7 @@ pub fn assemble(
         let constant =
             |slot| equations.bank.constant_on(slot, start, end, overrides).unwrap_or(0.0);
         entry.fixed = (
-            term.offset.map_or(0.0, |(gain, slot)| gain * constant(slot)),
+            term.offsets.iter().map(|(gain, slot)| gain * constant(*slot)).sum(),
             term.parameters.map(|slot| slot.map_or(0.0, constant)),
         );
         entry.follows_time |= moves;
@@ -204,28 +208,36 @@ pub fn assemble(
         if direction == 0.0 || factor == Strength::Constant(0.0) {
             continue;
         }
+        let side = |[forward, backward]: [f64; 2]| if direction > 0.0 { forward } else { backward };
+        // A clutch that runs free without drag is absent from the equations.
+        if matches!(friction.sliding, Sliding::Sides(torques) if side(torques) == 0.0) {
+            continue;
+        }
         active.push(Active {
             place: equations.terms.len() + index,
             function: match &friction.sliding {
                 Sliding::Constant(torque) => Function::Friction(*torque, direction),
+                Sliding::Sides(torques) => Function::Friction(side(*torques), direction),
                 Sliding::Curve(law) => {
                     Function::Law(law.clone(), mode.pieces[equations.terms.len() + index])
                 }
             },
             input: friction.speed.clone(),
-            offset: None,
+            offsets: Vec::new(),
             parameters: [None; 2],
+            by_state: [Vec::new(), Vec::new()],
             fixed: (0.0, [0.0; 2]),
             follows_time: matches!(factor, Strength::Varying(_)),
             factor,
             column: parts.column(&friction.row),
             // A load by points takes power out of the train, friction turns it to heat.
             power: match &friction.sliding {
-                Sliding::Constant(_) => PowerKind::Lost,
+                Sliding::Constant(_) | Sliding::Sides(_) => PowerKind::Lost,
                 Sliding::Curve(_) => PowerKind::Drive,
             },
             speed: None,
-            heat: None,
+            // Heat is the torque times the speed still missing to none.
+            heat: friction.heat.map(|place| (place, 0.0)),
         });
     }
     if parts.has_constant {
@@ -233,8 +245,9 @@ pub fn assemble(
             place: constant_place,
             function: Function::Law(Law::Unit, 0),
             input: Vec::new(),
-            offset: None,
+            offsets: Vec::new(),
             parameters: [None; 2],
+            by_state: [Vec::new(), Vec::new()],
             fixed: (0.0, [0.0; 2]),
             follows_time: false,
             factor: Strength::Constant(1.0),
@@ -253,9 +266,9 @@ pub fn assemble(
         }
     }
     add_rates(equations, &mut full);
-    for controller in &equations.controllers {
-        if let Some(state) = controller.torque_state {
-            full[(state, state)] -= 1.0 / controller.lag;
+    for (follower, slewing) in equations.followers.iter().zip(&mode.slewing) {
+        if *slewing == 0 {
+            full[(follower.state, follower.state)] -= 1.0 / follower.lag;
         }
     }
     super::thermal::add_flows(equations, &mut full);
@@ -315,35 +328,6 @@ fn pack(full: &DMatrix<f64>) -> Matrix {
     Matrix::Sparse { starts, entries }
 }
 
-fn quiet_powers(equations: &Equations, mode: &Mode) -> QuietPowers {
-    let mut powers = QuietPowers::default();
-    for (index, (shaft, place)) in
-        equations.model.shafts.iter().zip(&equations.twist_state).enumerate()
-    {
-        let Some(place) = *place else { continue };
-        let scale = equations.scale[place];
-        match mode.contacts[index] {
-            Contact::Gap => {}
-            _ if shaft.damping > 0.0 => {
-                powers.rate_losses.push((place, shaft.damping * scale * scale));
-            }
-            _ => {}
-        }
-    }
-    for damper in &equations.dampers {
-        let row = equations.speed_row(&damper.row);
-        if let super::Owner::Magnet(index) = damper.owner
-            && damper.row == equations.model.magnets[index].row()
-        {
-            let place = equations.phase_state[index];
-            powers.rate_losses.push((place, damper.coefficient * equations.scale[place].powi(2)));
-            continue;
-        }
-        powers.losses.push((damper.coefficient, row));
-    }
-    powers
-}
-
 impl Active {
     fn of_term(
         place: usize,
@@ -356,13 +340,15 @@ impl Active {
             place,
             function: match &term.shape {
                 Shape::Law(law) => Function::Law(law.clone(), piece),
+                Shape::Pair(law, second) => Function::Pair(law.clone(), second.clone()),
                 Shape::Linear => Function::Linear,
                 Shape::Products(list) => Function::Products(list.clone()),
                 Shape::Warm(law, gains) => Function::Warm(law.clone(), gains.clone()),
             },
             input: term.input.clone(),
-            offset: term.offset,
+            offsets: term.offsets.clone(),
             parameters: term.parameters,
+            by_state: term.by_state.clone(),
             fixed: (0.0, [0.0; 2]),
             follows_time: matches!(factor, Strength::Varying(_)),
             factor,

@@ -1,16 +1,24 @@
 //! From the model to states, terms, frictions and dampers.
 
+use super::build_joints::{add_clutches, add_fluid_couplings, add_gear_drag, add_shafts};
 use super::build_magnet::add_magnet;
 use super::build_motor::add_motor;
+use super::build_pitch::add_pitch;
+use super::holding::Limits;
 use super::{
     Equations, Factor, Friction, Owner, PowerKind, Shape, Sliding, Target, Term, speed_row,
 };
 use crate::component::law::Law;
 use crate::component::load::curve::LoadCurve;
+use crate::component::load::reciprocating::Reciprocating;
 use crate::component::load::{Load, LoadLaw};
+use crate::component::pair_law::PairLaw;
 use crate::model::{BodyRow, Model, body_index, difference};
 use crate::signal::Signal;
 use crate::signal::course::{SignalBank, SlotId};
+
+/// Mean inertia of a reciprocating mass over that of its train from which it is warned of.
+const HEAVY_PISTON: f64 = 0.1;
 
 /// Builds the equations of a model.
 pub fn build(model: &Model) -> Equations {
@@ -45,15 +53,20 @@ pub fn build(model: &Model) -> Equations {
         frictions: Vec::new(),
         dampers: Vec::new(),
         controllers: Vec::new(),
+        followers: Vec::new(),
+        pitches: Vec::new(),
         machines: Vec::new(),
         heats: Vec::new(),
         thermal: Vec::new(),
+        friction_heats: 0,
         bank: SignalBank::new(&model.scenario.signals),
         warnings: Vec::new(),
     };
     for index in 0..model.magnets.len() {
         add_magnet(&mut equations, index);
     }
+    add_shafts(&mut equations);
+    add_fluid_couplings(&mut equations);
     let scenario = &model.scenario;
     for (index, motor) in scenario.motors.iter().enumerate() {
         add_motor(&mut equations, index, motor);
@@ -74,10 +87,12 @@ pub fn build(model: &Model) -> Equations {
             &brake.name,
             row,
             Sliding::Constant(brake.torque),
-            brake.breakaway,
+            Limits::both(brake.breakaway),
             factor,
         );
     }
+    add_gear_drag(&mut equations);
+    add_clutches(&mut equations);
     equations.size = equations.scale.len();
     let rows = model.magnets.iter().map(|magnet| equations.speed_row(&magnet.row()));
     equations.phase_rows = rows.collect();
@@ -124,12 +139,14 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
     let owner = Owner::Load(index);
     let mut factor = factor_of(equations, "loads", &load.name, &load.scale);
     let mut parameters = [None; 2];
+    let mut by_state = [Vec::new(), Vec::new()];
     let mut own_speed = None;
     let mut input = speed.clone();
     let (shape, target) = match &load.law {
         LoadLaw::Friction { sliding, breakaway } => {
             let sliding = Sliding::Constant(*sliding);
-            add_friction(equations, owner, &load.name, direction, sliding, *breakaway, factor);
+            let limits = Limits::both(*breakaway);
+            add_friction(equations, owner, &load.name, direction, sliding, limits, factor);
             return;
         }
         LoadLaw::Viscous { coefficient } => {
@@ -144,12 +161,15 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
             own_speed = Some(std::mem::take(&mut input));
             (Shape::Law(Law::Unit), direction.clone())
         }
-        LoadLaw::AxialRotor { flow, pitch, .. } => {
+        LoadLaw::AxialRotor { flow, pitch, pitch_loop, .. } => {
             let path = |key: &str| format!("loads.{}.law.axial_rotor.{key}", load.name);
-            parameters = [
-                Some(slot(equations, path("flow"), flow)),
-                Some(slot(equations, path("pitch"), pitch)),
-            ];
+            parameters[0] = Some(slot(equations, path("flow"), flow));
+            match pitch_loop {
+                Some(pitch_loop) => {
+                    by_state[1] = add_pitch(equations, index, load, pitch_loop);
+                }
+                None => parameters[1] = Some(slot(equations, path("pitch"), pitch)),
+            }
             let Some(law) = load.law.scalar() else { return };
             (Shape::Law(law), direction.clone())
         }
@@ -169,7 +189,7 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
                     &load.name,
                     direction.clone(),
                     Sliding::Curve(Law::LoadCurve(curve)),
-                    *mean,
+                    Limits::both(*mean),
                     factor.clone(),
                 );
             }
@@ -180,6 +200,13 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
             own_speed = Some(std::mem::replace(&mut input, vec![(place, equations.scale[place])]));
             let Some(law) = load.law.scalar() else { return };
             (Shape::Law(law), direction.clone())
+        }
+        LoadLaw::Reciprocating { crank_radius, rod_length, mass, phase } => {
+            let law = Reciprocating::new(*crank_radius, *rod_length, *mass, *phase);
+            warn_of_heavy_piston(equations, &load.name, &direction, law.mean_inertia());
+            let place = angle_state(equations, direction.clone());
+            own_speed = Some(std::mem::replace(&mut input, vec![(place, equations.scale[place])]));
+            (Shape::Pair(PairLaw::Reciprocating(law), speed.clone()), direction.clone())
         }
         LoadLaw::PowerLaw { .. } | LoadLaw::Curve { .. } => {
             let Some(law) = load.law.scalar() else { return };
@@ -192,7 +219,7 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
                         &load.name,
                         direction,
                         Sliding::Curve(law),
-                        breakaway,
+                        Limits::both(breakaway),
                         factor,
                     );
                     return;
@@ -210,8 +237,9 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
         owner,
         shape,
         input,
-        offset: None,
+        offsets: Vec::new(),
         parameters,
+        by_state,
         factor,
         target: Target::Torque(target),
         power: PowerKind::Drive,
@@ -219,6 +247,21 @@ fn add_load(equations: &mut Equations, index: usize, load: &Load) {
         input_size: size,
         heat: None,
     });
+}
+
+/// The law is that of a crank at constant speed: a piston that makes its own speed ripple is told.
+fn warn_of_heavy_piston(equations: &mut Equations, name: &str, row: &BodyRow, inertia: f64) {
+    let share = inertia / equations.model.reduction.inertia_along(row);
+    if share > HEAVY_PISTON {
+        equations.warnings.push((
+            format!("loads.{name}.law.reciprocating"),
+            format!(
+                "the mass comes to {} % of the inertia that its crank feels: the speed ripples within \
+                 a turn, and this law, exact at constant speed, is then an approximation",
+                crate::quantity::format_number(100.0 * share, 3)
+            ),
+        ));
+    }
 }
 
 fn viscous(law: &LoadLaw) -> f64 {
@@ -234,7 +277,7 @@ pub(super) fn add_friction(
     name: &str,
     row: BodyRow,
     sliding: Sliding,
-    breakaway: f64,
+    breakaway: Limits,
     factor: Factor,
 ) {
     let speed = speed_row(&equations.model, &equations.scale, &row);
@@ -249,5 +292,6 @@ pub(super) fn add_friction(
         breakaway,
         factor,
         speed_size: if speed_size > 0.0 { speed_size } else { 1.0 },
+        heat: None,
     });
 }

@@ -1,6 +1,7 @@
 //! From magnetic gears and couplings to terms, dampers, frictions and thermal nodes.
 
 use super::build::{add_friction, angle_state};
+use super::holding::Limits;
 use super::thermal::{self, Source};
 use super::{Damper, Equations, Factor, Owner, PowerKind, Shape, Sliding, Target, Term, speed_row};
 use crate::component::law::Law;
@@ -67,8 +68,9 @@ fn term(
         owner: Owner::Magnet(index),
         shape,
         input,
-        offset: None,
+        offsets: Vec::new(),
         parameters: [None; 2],
+        by_state: [Vec::new(), Vec::new()],
         factor: Factor::default(),
         target,
         power,
@@ -133,7 +135,8 @@ fn add_drags(equations: &mut Equations, index: usize) -> Vec<Source> {
             }
             if constant > 0.0 {
                 let (row, sliding) = (row.clone(), Sliding::Constant(constant));
-                add_friction(equations, owner, &name, row, sliding, constant, Factor::default());
+                let limits = Limits::both(constant);
+                add_friction(equations, owner, &name, row, sliding, limits, Factor::default());
             }
             Source { row, constant, coefficient, peak_at: f64::INFINITY }
         })

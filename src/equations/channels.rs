@@ -1,14 +1,13 @@
 //! How each channel follows from the state and the law values of one mode.
 
 use super::build_magnet::{hysteresis_name, loss_drags};
-use super::holding::pseudo_inverse;
+use super::constraints::constraint_forms;
 use super::mode::{Contact, Mode};
 use super::parts::Parts;
 use super::{Equations, Owner, Shape, StateRow, Target};
-use crate::component::channel::{ChannelKind, MagneticChannel};
+use crate::component::channel::{ChannelKind, ClutchChannel, MagneticChannel};
 use crate::component::law::Law;
 use crate::model::{BodyRow, body_index, difference};
-use nalgebra::DMatrix;
 
 /// A linear form over the scaled state and the law values.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -34,11 +33,16 @@ pub enum ChannelForm {
     Magnet(usize, MagneticChannel),
     /// Damping and drag of a magnet: squares of forms, and laws whose power is lost.
     Loss(Vec<(f64, StateRow)>, Vec<usize>),
-    /// Flow, tip speed ratio or power coefficient of an axial rotor: its term and which one.
+    /// Flow, tip speed ratio or power coefficient of an axial rotor, advance ratio of a propeller:
+    /// its term and which one.
     Rotor(usize, RotorChannel),
+    /// Length of the stator current of a machine with flux equations: two states and their size.
+    Vector([usize; 2], f64),
+    /// Stator current of a circuit by its term.
+    CircuitCurrent(usize),
 }
 
-/// Channels of an axial rotor.
+/// Channels of an axial rotor or a propeller.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum RotorChannel {
     /// m/s.
@@ -47,6 +51,8 @@ pub enum RotorChannel {
     TipSpeedRatio,
     /// Power over the power of the flow.
     PowerCoefficient,
+    /// Advance over what a turn of a propeller is wide.
+    AdvanceRatio,
 }
 
 /// The forms of all channels in one mode.
@@ -82,11 +88,19 @@ fn form(
             let factor = if member == 0 { 1.0 } else { -model.scenario.gear_pairs[pair].ratio };
             ChannelForm::Linear(scaled(&constraint[pair], factor))
         }
+        ChannelKind::GearPairLoss(pair) => {
+            let (squares, laws) = drag(equations, Owner::GearPair(pair));
+            ChannelForm::Loss(squares, laws)
+        }
         ChannelKind::PlanetaryTorque(set, member) => {
             let teeth = &model.scenario.planetary_gears[set];
             let (sun, ring) = (f64::from(teeth.teeth_sun), f64::from(teeth.teeth_ring));
             let factor = [sun, -(sun + ring), ring][member.min(2)];
             ChannelForm::Linear(scaled(&constraint[model.scenario.gear_pairs.len() + set], factor))
+        }
+        ChannelKind::Clutch(index, what) => clutch(equations, Owner::Clutch(index), what),
+        ChannelKind::FluidCoupling(index, what) => {
+            clutch(equations, Owner::FluidCoupling(index), what)
         }
         ChannelKind::MotorTorque(index) => {
             ChannelForm::Linear(torque_of(equations, Owner::Motor(index)))
@@ -98,6 +112,7 @@ fn form(
             ChannelForm::Linear(torque_of(equations, Owner::Brake(index)))
         }
         ChannelKind::MotorPower(index) => power_of(equations, Owner::Motor(index)),
+        ChannelKind::MotorCurrent(index) => current(equations, index),
         ChannelKind::LoadPower(index) => power_of(equations, Owner::Load(index)),
         ChannelKind::BrakePower(index) => power_of(equations, Owner::Brake(index)),
         ChannelKind::LoadFlow(index) => rotor(equations, index, RotorChannel::Flow),
@@ -107,6 +122,15 @@ fn form(
         ChannelKind::LoadPowerCoefficient(index) => {
             rotor(equations, index, RotorChannel::PowerCoefficient)
         }
+        ChannelKind::LoadPitch(index) => linear(
+            equations
+                .pitches
+                .iter()
+                .filter(|pitch| pitch.load == index)
+                .map(|pitch| (pitch.state, equations.scale[pitch.state]))
+                .collect(),
+        ),
+        ChannelKind::LoadAdvanceRatio(index) => rotor(equations, index, RotorChannel::AdvanceRatio),
     }
 }
 
@@ -123,8 +147,25 @@ fn scaled(form: &LinearForm, factor: f64) -> LinearForm {
 }
 
 fn rotor(equations: &Equations, load: usize, what: RotorChannel) -> ChannelForm {
-    match equations.terms.iter().position(|term| term.owner == Owner::Load(load)) {
+    let acts = |term: &super::Term| {
+        term.owner == Owner::Load(load) && matches!(term.target, Target::Torque(_))
+    };
+    match equations.terms.iter().position(acts) {
         Some(term) => ChannelForm::Rotor(term, what),
+        None => linear(Vec::new()),
+    }
+}
+
+/// Root mean square of a line's current; with flux equations the length of the current's vector,
+/// which is the same in steady running.
+fn current(equations: &Equations, motor: usize) -> ChannelForm {
+    let machine = equations.machines.iter().find(|machine| machine.motor == motor);
+    if let Some(machine) = machine {
+        let [a, b, ..] = machine.states;
+        return ChannelForm::Vector([a, b], equations.scale[a]);
+    }
+    match equations.terms.iter().position(|term| term.owner == Owner::Motor(motor)) {
+        Some(term) => ChannelForm::CircuitCurrent(term),
         None => linear(Vec::new()),
     }
 }
@@ -154,7 +195,9 @@ fn shaft_torque(
         let rate = equations.speed_row(&shaft.row());
         state.extend(rate.iter().map(|(speed, value)| (*speed, shaft.damping * value)));
     }
-    ChannelForm::Linear(LinearForm { state, laws: Vec::new(), constant: offset })
+    let stages = equations.terms.iter().position(|term| term.owner == Owner::Shaft(index));
+    let laws = stages.map(|place| (place, 1.0)).into_iter().collect();
+    ChannelForm::Linear(LinearForm { state, laws, constant: offset })
 }
 
 fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> ChannelForm {
@@ -191,12 +234,7 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
         MagneticChannel::TorqueModulator => member(1),
         MagneticChannel::SlipSpeed => linear(equations.speed_row(&magnet.row())),
         MagneticChannel::Loss => {
-            let squares = equations
-                .dampers
-                .iter()
-                .filter(|damper| damper.owner == Owner::Magnet(index))
-                .map(|damper| (damper.coefficient, equations.speed_row(&damper.row)))
-                .collect();
+            let (squares, drag) = drag(equations, Owner::Magnet(index));
             let fading = equations
                 .terms
                 .iter()
@@ -205,12 +243,6 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
                     term.owner == Owner::Magnet(index) && term.power == super::PowerKind::Lost
                 })
                 .map(|(place, _)| place);
-            let drag = equations
-                .frictions
-                .iter()
-                .enumerate()
-                .filter(|(_, friction)| friction.owner == Owner::Magnet(index))
-                .map(|(place, _)| equations.terms.len() + place);
             ChannelForm::Loss(squares, fading.chain(drag).collect())
         }
         MagneticChannel::EddyLoss => {
@@ -239,6 +271,19 @@ fn magnetic(equations: &Equations, index: usize, what: MagneticChannel) -> Chann
     }
 }
 
+/// Dampers and dry friction of a thing: squares of forms with weights, and places of laws.
+fn drag(equations: &Equations, owner: Owner) -> (Vec<(f64, StateRow)>, Vec<usize>) {
+    let dampers = equations.dampers.iter().filter(|damper| damper.owner == owner);
+    let squares =
+        dampers.map(|damper| (damper.coefficient, equations.speed_row(&damper.row))).collect();
+    let frictions = equations.frictions.iter().enumerate();
+    let laws = frictions
+        .filter(|(_, friction)| friction.owner == owner)
+        .map(|(place, _)| equations.terms.len() + place)
+        .collect();
+    (squares, laws)
+}
+
 /// The bodies that a motor, load or brake acts on: its own, and the one it acts against.
 pub fn ends_of(equations: &Equations, owner: Owner) -> (Option<usize>, Option<usize>) {
     let scenario = &equations.model.scenario;
@@ -254,7 +299,38 @@ pub fn ends_of(equations: &Equations, owner: Owner) -> (Option<usize>, Option<us
             let brake = &scenario.brakes[index];
             (body_index(scenario, &brake.body), against(&brake.against))
         }
-        Owner::Magnet(_) => (None, None),
+        Owner::Clutch(index) => {
+            let [a, b] = &scenario.clutches[index].between;
+            (body_index(scenario, b), body_index(scenario, a))
+        }
+        Owner::FluidCoupling(index) => {
+            let [pump, turbine] = &scenario.fluid_couplings[index].between;
+            (body_index(scenario, turbine), body_index(scenario, pump))
+        }
+        Owner::Magnet(_) | Owner::Shaft(_) | Owner::GearPair(_) => (None, None),
+    }
+}
+
+/// The friction of a clutch and the law of a fluid coupling put their value on the first body and
+/// the opposite on the second.
+fn clutch(equations: &Equations, owner: Owner, what: ClutchChannel) -> ChannelForm {
+    let terms = equations.terms.iter().position(|term| term.owner == owner);
+    let (law, speed) = match terms {
+        Some(place) => (place, &equations.terms[place].input),
+        None => {
+            let of = |friction: &super::Friction| friction.owner == owner;
+            let Some(place) = equations.frictions.iter().position(of) else {
+                return linear(Vec::new());
+            };
+            (equations.terms.len() + place, &equations.frictions[place].speed)
+        }
+    };
+    match what {
+        ClutchChannel::Torque => {
+            ChannelForm::Linear(LinearForm { laws: vec![(law, -1.0)], ..LinearForm::default() })
+        }
+        ClutchChannel::SlipSpeed => linear(speed.clone()),
+        ClutchChannel::Loss => ChannelForm::Loss(Vec::new(), vec![law]),
     }
 }
 
@@ -280,75 +356,4 @@ fn torque_of(equations: &Equations, owner: Owner) -> LinearForm {
 fn power_of(equations: &Equations, owner: Owner) -> ChannelForm {
     let (body, against) = ends_of(equations, owner);
     ChannelForm::Power(torque_of(equations, owner), equations.speed_row(&difference(body, against)))
-}
-
-/// What each rigid joint puts on its members, per unit factor of its row.
-///
-/// ```text
-/// J w' = tau + C' mu   =>   mu = (C C')^+ C (J G u' - tau)
-/// ```
-fn constraint_forms(equations: &Equations, parts: &Parts) -> Vec<LinearForm> {
-    let model = &equations.model;
-    let count = model.constraints.len();
-    if count == 0 {
-        return Vec::new();
-    }
-    let bodies = model.scenario.bodies.len();
-    let mut rows = DMatrix::zeros(count, bodies);
-    for (line, joint) in model.constraints.iter().enumerate() {
-        for &(body, factor) in &joint.row {
-            rows[(line, body)] += factor;
-        }
-    }
-    let solve = pseudo_inverse(&(&rows * rows.transpose())) * &rows;
-    let inertia = |body: usize| model.scenario.bodies[body].inertia;
-    // Over the scaled state: inertia times acceleration minus torque, body by body. Linear terms
-    // that stand in the matrix are left to the law values, like all other terms.
-    let own = &parts.accelerate * &parts.force;
-    let mut over_state = DMatrix::zeros(bodies, equations.size);
-    for body in 0..bodies {
-        for state in 0..equations.size {
-            let acceleration: f64 = model.reduction.speeds[body]
-                .iter()
-                .map(|&(place, share)| share * own[(place, state)] * equations.scale[state])
-                .sum();
-            let torque = parts.body_force[(body, state)] * equations.scale[state];
-            over_state[(body, state)] = inertia(body) * acceleration - torque;
-        }
-    }
-    let state_forms = &solve * over_state;
-    let mut forms: Vec<LinearForm> = (0..count)
-        .map(|line| LinearForm {
-            state: (0..equations.size)
-                .map(|place| (place, state_forms[(line, place)]))
-                .filter(|(_, value)| value.abs() > 1e-14)
-                .collect(),
-            laws: Vec::new(),
-            constant: 0.0,
-        })
-        .collect();
-    for (place, direction) in parts.directions() {
-        let stuck = parts.stuck.iter().any(|index| equations.terms.len() + index == *place);
-        let acceleration = parts.acceleration(direction);
-        let residual = nalgebra::DVector::from_fn(bodies, |body, _| {
-            let torque: f64 =
-                direction.iter().filter(|(b, _)| *b == body).map(|(_, factor)| factor).sum();
-            let moved: f64 = if stuck {
-                0.0
-            } else {
-                model.reduction.speeds[body]
-                    .iter()
-                    .map(|&(speed, share)| share * acceleration[speed])
-                    .sum()
-            };
-            inertia(body) * moved - torque
-        });
-        let value = &solve * residual;
-        for (line, form) in forms.iter_mut().enumerate() {
-            if value[line].abs() > 1e-14 {
-                form.laws.push((*place, value[line]));
-            }
-        }
-    }
-    forms
 }

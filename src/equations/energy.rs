@@ -44,6 +44,7 @@ pub fn stored(equations: &Equations, contacts: &[Contact], state: &[f64]) -> f64
         let Shape::Law(law) = &term.shape else { continue };
         match law {
             Law::Magnet(magnet) => energy += magnet.energy(input),
+            Law::Elastic(shaft) => energy += shaft.energy_beyond(input),
             // Torque -T sin(n x + phase) on the rotor: energy -(T/n) cos(n x + phase).
             Law::Cogging { order, torque, phase } => {
                 energy -= torque / order * ((order * input + phase).cos() - phase.cos());

@@ -1,12 +1,11 @@
 //! The values of all laws and channels at one instant.
 
 use super::assembly::{Active, Assembly, Function, Strength};
-use super::channels::{ChannelForm, LinearForm, RotorChannel};
-use super::holding::{Holding, hold};
-use super::{Equations, Factor, Owner, Shape, Sliding, dot, thermal};
+use super::channels::{ChannelForm, LinearForm};
+use super::holding::{Holding, Limits, hold};
+use super::{Equations, Factor, Owner, Shape, dot, thermal};
 use crate::component::channel::MagneticChannel;
 use crate::component::law::Law;
-use crate::component::load::LoadLaw;
 use crate::signal::course::Overrides;
 use std::f64::consts::{PI, TAU};
 
@@ -69,7 +68,7 @@ impl Evaluator<'_> {
     }
 
     /// Where a term stands on the axis of its law's boundaries, and the size of that axis.
-    pub fn place_on_axis(&self, term: usize, frame: &Frame) -> (f64, f64) {
+    pub fn place_on_axis(&self, term: usize, state: &[f64], frame: &Frame) -> (f64, f64) {
         let input = frame.inputs[term];
         let size = self.equations.input_size_at(term);
         let Some(term) = self.equations.terms.get(term) else { return (input, size) };
@@ -83,7 +82,8 @@ impl Evaluator<'_> {
                         self.overrides,
                     )
                 };
-                let parameters = term.parameters.map(|slot| slot.map_or(0.0, signal));
+                let parameters =
+                    super::parameters_at(term.parameters, &term.by_state, state, signal);
                 (law.axis(input, parameters), 1.0)
             }
             _ => (input, size),
@@ -93,14 +93,12 @@ impl Evaluator<'_> {
     /// Input of an active term.
     #[inline]
     fn input(&self, active: &Active, time: f64, state: &[f64]) -> f64 {
-        let input = active.input_at(state);
-        match active.offset {
-            Some((factor, slot)) => {
-                let bank = &self.equations.bank;
-                input + factor * bank.value_in(slot, time, self.assembly.start, self.overrides)
-            }
-            None => input,
+        let mut input = active.input_at(state);
+        for &(factor, slot) in &active.offsets {
+            let bank = &self.equations.bank;
+            input += factor * bank.value_in(slot, time, self.assembly.start, self.overrides);
         }
+        input
     }
 
     /// Input and value of an active term.
@@ -111,12 +109,11 @@ impl Evaluator<'_> {
         let input = self.input(active, time, state);
         let value = match &active.function {
             Function::Law(law, piece) => {
-                let parameters = match active.parameters {
-                    [None, None] => [0.0; 2],
-                    [first, second] => [first.map_or(0.0, signal), second.map_or(0.0, signal)],
-                };
+                let parameters =
+                    super::parameters_at(active.parameters, &active.by_state, state, signal);
                 law.value(input, parameters, *piece)
             }
+            Function::Pair(law, second) => law.value(input, dot(second, state)),
             Function::Linear => input,
             Function::Products(list) => super::products(list, state),
             Function::Warm(law, gains) => {
@@ -127,20 +124,10 @@ impl Evaluator<'_> {
         (input, self.strength(&active.factor, time) * value)
     }
 
-    /// Breakaway limit of a friction element at a time, N*m.
-    pub fn limit(&self, friction: usize, time: f64) -> f64 {
+    /// Breakaway limits of a friction element at a time.
+    pub fn limit(&self, friction: usize, time: f64) -> Limits {
         let friction = &self.equations.frictions[friction];
-        friction.breakaway * self.factor(&friction.factor, time)
-    }
-
-    /// Sliding torque of a friction element at a time and speed of magnitude `speed`, N*m.
-    pub fn sliding(&self, friction: usize, time: f64, speed: f64) -> f64 {
-        let friction = &self.equations.frictions[friction];
-        let torque = match &friction.sliding {
-            Sliding::Constant(torque) => *torque,
-            Sliding::Curve(law) => sliding_of(law, speed),
-        };
-        torque * self.factor(&friction.factor, time)
+        friction.breakaway.scaled(self.factor(&friction.factor, time))
     }
 
     /// Law values and holding torques.
@@ -189,7 +176,7 @@ impl Evaluator<'_> {
                             .sum::<f64>()
                 })
                 .collect();
-            let limits: Vec<f64> =
+            let limits: Vec<Limits> =
                 assembly.stuck.iter().map(|index| self.limit(*index, time)).collect();
             let holding = hold(&assembly.stuck_compliance, &drive, &limits);
             for (index, torque) in assembly.stuck.iter().zip(&holding.torque) {
@@ -279,6 +266,8 @@ impl Evaluator<'_> {
                 damping + others
             }
             ChannelForm::Rotor(term, what) => self.rotor(*term, *what, time, state),
+            ChannelForm::Vector([a, b], size) => size * state[*a].hypot(state[*b]),
+            ChannelForm::CircuitCurrent(term) => self.circuit_current(*term, time, state),
         }
     }
 
@@ -332,34 +321,6 @@ impl Evaluator<'_> {
             }
             _ => 0.0,
         }
-    }
-
-    fn rotor(&self, place: usize, what: RotorChannel, time: f64, state: &[f64]) -> f64 {
-        let term = &self.equations.terms[place];
-        let signal =
-            |slot| self.equations.bank.value_in(slot, time, self.assembly.start, self.overrides);
-        let [Some(flow), Some(pitch)] = term.parameters else { return 0.0 };
-        let (flow, pitch) = (signal(flow), signal(pitch));
-        let Owner::Load(load) = term.owner else { return 0.0 };
-        let LoadLaw::AxialRotor { radius, density, .. } =
-            &self.equations.model.scenario.loads[load].law
-        else {
-            return 0.0;
-        };
-        if what == RotorChannel::Flow {
-            return flow;
-        }
-        if flow <= 0.0 {
-            return 0.0;
-        }
-        let speed = dot(&term.input, state);
-        if what == RotorChannel::TipSpeedRatio {
-            return speed * radius / flow;
-        }
-        let Shape::Law(law) = &term.shape else { return 0.0 };
-        let torque = law.value(speed, [flow, pitch], law.piece(speed, [flow, pitch]));
-        let flow_power = 0.5 * density * PI * radius * radius * flow.powi(3);
-        torque * speed / flow_power
     }
 }
 

@@ -1,8 +1,8 @@
 //! The exact linearisation `A + sum D_j q_j' row_j` of one mode at a state.
 
-use super::assembly::{Assembly, Function};
+use super::assembly::{Active, Assembly, Function};
 use super::frame::Evaluator;
-use super::thermal;
+use super::{StateRow, dot, parameters_at, thermal};
 use crate::component::law::Law;
 use nalgebra::DMatrix;
 use nalgebra::linalg::Schur;
@@ -52,6 +52,15 @@ pub fn jacobian(
                 }
             }
         }
+        if let Some(form) = pair_form(active, state) {
+            let strength = evaluator.strength(&active.factor, time);
+            for &(row, share) in &active.column {
+                for &(column, slope) in &form {
+                    matrix[(row, column)] += share * strength * slope;
+                }
+            }
+            continue;
+        }
         let slope = match &active.function {
             Function::Law(Law::Magnet(magnet), _) if magnets == MagnetSlope::Steepest => {
                 magnet.amplitude() * magnet.steepest()
@@ -63,11 +72,20 @@ pub fn jacobian(
                 law.slope(input, [0.0; 2], 0) * thermal::product(gains, state)
             }
             Function::Law(law, piece) => {
-                let [first, second] = active.parameters;
-                law.slope(input, [first.map_or(0.0, signal), second.map_or(0.0, signal)], *piece)
+                let parameters = parameters_at(active.parameters, &active.by_state, state, signal);
+                let slopes = law.parameter_slopes(input, parameters, *piece);
+                let strength = evaluator.strength(&active.factor, time);
+                for (form, slope) in active.by_state.iter().zip(slopes) {
+                    for &(row, share) in &active.column {
+                        for &(column, weight) in form {
+                            matrix[(row, column)] += share * slope * strength * weight;
+                        }
+                    }
+                }
+                law.slope(input, parameters, *piece)
             }
             Function::Linear => 1.0,
-            Function::Products(_) => 0.0,
+            Function::Products(_) | Function::Pair(..) => 0.0,
             // Sliding friction adds nothing: its torque does not follow small changes of speed.
             Function::Friction(..) => 0.0,
         };
@@ -79,6 +97,16 @@ pub fn jacobian(
         }
     }
     matrix
+}
+
+/// How the value of a law of two inputs changes with the state, before its factor; `None` for all
+/// other laws.
+pub fn pair_form(active: &Active, state: &[f64]) -> Option<StateRow> {
+    let Function::Pair(law, second) = &active.function else { return None };
+    let slopes = law.slopes(active.input_at(state), dot(second, state));
+    let rows = active.input.iter().map(|entry| (entry, slopes[0]));
+    let both = rows.chain(second.iter().map(|entry| (entry, slopes[1])));
+    Some(both.map(|((place, share), slope)| (*place, share * slope)).collect())
 }
 
 /// Eigenvalues of a real matrix as (real, imaginary); `None` when the iteration does not converge.

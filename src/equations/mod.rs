@@ -9,10 +9,15 @@
 
 pub mod assembly;
 pub mod build;
+mod build_drive;
+mod build_joints;
 mod build_machine;
 mod build_magnet;
 mod build_motor;
+mod build_pitch;
 pub mod channels;
+mod constraints;
+pub mod controller;
 pub mod energy;
 pub mod frame;
 pub mod holding;
@@ -20,11 +25,19 @@ pub mod linearise;
 pub mod machine;
 pub mod mode;
 pub mod parts;
+pub mod pitch;
+pub mod quiet_powers;
+mod ratios;
 pub mod thermal;
 
+pub use controller::{Controller, Follower};
+
 use crate::component::law::Law;
+use crate::component::pair_law::PairLaw;
 use crate::model::{BodyRow, Model};
 use crate::signal::course::{SignalBank, SlotId};
+use holding::Limits;
+use mode::{FrictionMode, REST};
 
 /// A sparse form over the scaled state.
 pub type StateRow = Vec<(usize, f64)>;
@@ -54,14 +67,20 @@ pub struct Equations {
     pub frictions: Vec<Friction>,
     /// Viscous torques without a factor: they stand in the matrix.
     pub dampers: Vec<Damper>,
-    /// Speed controllers.
+    /// Controllers of drives.
     pub controllers: Vec<Controller>,
+    /// States that follow a command.
+    pub followers: Vec<Follower>,
+    /// Pitch loops of axial rotors.
+    pub pitches: Vec<pitch::Pitch>,
     /// Induction machines with flux equations.
     pub machines: Vec<machine::Machine>,
     /// Motors with a synchronous speed: motor by place and that speed (mirrored with the law), rad/s.
     pub heats: Vec<(usize, f64)>,
     /// Thermal nodes of magnets.
     pub thermal: Vec<thermal::ThermalState>,
+    /// Number of friction elements whose heat is asked for; they stand behind the motors.
+    pub friction_heats: usize,
     /// Everything that follows time.
     pub bank: SignalBank,
     /// What a reader of the results must know.
@@ -79,6 +98,14 @@ pub enum Owner {
     Brake(usize),
     /// A magnet by place.
     Magnet(usize),
+    /// A clutch by place.
+    Clutch(usize),
+    /// A shaft by place.
+    Shaft(usize),
+    /// A fluid coupling by place.
+    FluidCoupling(usize),
+    /// A gear pair by place.
+    GearPair(usize),
 }
 
 /// What the value of a term acts on.
@@ -108,6 +135,8 @@ pub enum PowerKind {
 pub enum Shape {
     /// A law of the library.
     Law(Law),
+    /// A law of the input and of a second form over the scaled state.
+    Pair(PairLaw, StateRow),
     /// The input itself.
     Linear,
     /// A sum of products of two states each; the input is the speed that makes its power.
@@ -151,10 +180,12 @@ pub struct Term {
     pub shape: Shape,
     /// The input as a form over the scaled state.
     pub input: StateRow,
-    /// Added to the input: factor times a signal.
-    pub offset: Option<(f64, SlotId)>,
+    /// Added to the input: factors times signals.
+    pub offsets: Vec<(f64, SlotId)>,
     /// Signals that the law reads as parameters.
     pub parameters: [Option<SlotId>; 2],
+    /// Added to the parameters: forms over the scaled state; empty for none.
+    pub by_state: [StateRow; 2],
     /// Factor on the value.
     pub factor: Factor,
     /// Where the value goes.
@@ -174,6 +205,8 @@ pub struct Term {
 pub enum Sliding {
     /// The same at every speed, N*m.
     Constant(f64),
+    /// Forward and backward each their own, N*m; a side whose torque is infinite never slides.
+    Sides([f64; 2]),
     /// A load curve read at the magnitude of the speed.
     Curve(Law),
 }
@@ -192,11 +225,49 @@ pub struct Friction {
     /// Torque while sliding.
     pub sliding: Sliding,
     /// Torque that breaks it away, N*m.
-    pub breakaway: f64,
+    pub breakaway: Limits,
     /// Factor on both.
     pub factor: Factor,
     /// Typical speed, rad/s, for tolerances.
     pub speed_size: f64,
+    /// Place in the list of heats, where its heat is asked for.
+    pub heat: Option<usize>,
+}
+
+impl Friction {
+    /// Magnitude of the torque while it slides at a relative speed, before its factor, N*m.
+    pub fn sliding_torque(&self, speed: f64) -> f64 {
+        match &self.sliding {
+            Sliding::Constant(torque) => *torque,
+            Sliding::Sides([forward, backward]) => {
+                if speed > 0.0 {
+                    *forward
+                } else {
+                    *backward
+                }
+            }
+            Sliding::Curve(law) => frame::sliding_of(law, speed.abs()),
+        }
+    }
+
+    /// What an element that is there does at a relative speed, rad/s.
+    pub fn judge(&self, speed: f64) -> FrictionMode {
+        let slides = FrictionMode::sliding(speed);
+        if speed.abs() <= REST * self.speed_size || self.never_slides(slides) {
+            FrictionMode::Stuck
+        } else {
+            slides
+        }
+    }
+
+    /// True for the way in which a clutch passes any torque.
+    pub fn never_slides(&self, way: FrictionMode) -> bool {
+        match &self.sliding {
+            Sliding::Sides([forward, _]) if way == FrictionMode::Forward => forward.is_infinite(),
+            Sliding::Sides([_, backward]) => backward.is_infinite(),
+            Sliding::Constant(_) | Sliding::Curve(_) => false,
+        }
+    }
 }
 
 /// A torque proportional to a relative speed.
@@ -212,29 +283,6 @@ pub struct Damper {
     pub is_load: bool,
 }
 
-/// A speed controller's states and terms.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Controller {
-    /// The motor by place.
-    pub motor: usize,
-    /// Term of the limited command.
-    pub command: usize,
-    /// Term that feeds the integral, if there is one.
-    pub integral: Option<usize>,
-    /// State of the integral.
-    pub integral_state: Option<usize>,
-    /// State of the lagging torque.
-    pub torque_state: Option<usize>,
-    /// Scale slot, when the motor has one.
-    pub scale: Option<SlotId>,
-    /// Limit of the command, N*m.
-    pub limit: f64,
-    /// N*m*s/rad.
-    pub gain: f64,
-    /// Lag, s.
-    pub lag: f64,
-}
-
 impl Equations {
     /// A form over bodies as a form over the scaled state.
     pub fn speed_row(&self, row: &[(usize, f64)]) -> StateRow {
@@ -246,11 +294,11 @@ impl Equations {
         match self.terms.get(place) {
             Some(term) => match &term.shape {
                 Shape::Law(law) => Some(law),
-                Shape::Linear | Shape::Products(_) | Shape::Warm(..) => None,
+                Shape::Linear | Shape::Products(_) | Shape::Warm(..) | Shape::Pair(..) => None,
             },
             None => match &self.frictions.get(place - self.terms.len())?.sliding {
                 Sliding::Curve(law) => Some(law),
-                Sliding::Constant(_) => None,
+                Sliding::Constant(_) | Sliding::Sides(_) => None,
             },
         }
     }
@@ -275,6 +323,12 @@ impl Equations {
         for (magnet, place) in self.model.magnets.iter().zip(&self.phase_state) {
             state[*place] = magnet.start_phase / self.scale[*place];
         }
+        // Blades begin in fine pitch.
+        for pitch in &self.pitches {
+            for place in [pitch.state, pitch.integral_state] {
+                state[place] = pitch.angles[0] / self.scale[place];
+            }
+        }
         for node in &self.thermal {
             state[node.place] = node.start / self.scale[node.place];
         }
@@ -291,6 +345,21 @@ pub fn speed_row(model: &Model, scale: &[f64], row: &[(usize, f64)]) -> StateRow
         .filter(|(_, value)| **value != 0.0)
         .map(|(place, value)| (place, value * scale[place]))
         .collect()
+}
+
+/// The parameters of a law: signals as read by `signal`, and forms over the state.
+#[inline]
+pub fn parameters_at(
+    parameters: [Option<SlotId>; 2],
+    by_state: &[StateRow; 2],
+    state: &[f64],
+    signal: impl Fn(SlotId) -> f64,
+) -> [f64; 2] {
+    let [first, second] = parameters;
+    [
+        first.map_or(0.0, &signal) + dot(&by_state[0], state),
+        second.map_or(0.0, &signal) + dot(&by_state[1], state),
+    ]
 }
 
 /// The value of a sum of products of states.

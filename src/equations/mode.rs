@@ -60,6 +60,19 @@ pub struct Mode {
     pub held: Vec<bool>,
     /// True where a controller slides along its limit: its integral is set when that ends.
     pub tracking: Vec<bool>,
+    /// +1 or -1 where a follower moves at its limited rate, else 0.
+    pub slewing: Vec<i8>,
+    /// +1 or -1 where the integral of a pitch loop stands at its highest or lowest angle, else 0.
+    pub pitch_held: Vec<i8>,
+}
+
+/// What a follower at its limited rate makes of a term.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Slewing {
+    /// The term is its command, which it cannot keep up with.
+    Command,
+    /// The term is the limited rate, with this sign.
+    Rate(f64),
 }
 
 impl Mode {
@@ -76,14 +89,7 @@ impl Mode {
             frictions: equations
                 .frictions
                 .iter()
-                .map(|friction| {
-                    let speed = dot(&friction.speed, state);
-                    if speed.abs() <= REST * friction.speed_size {
-                        FrictionMode::Stuck
-                    } else {
-                        FrictionMode::sliding(speed)
-                    }
-                })
+                .map(|friction| friction.judge(dot(&friction.speed, state)))
                 .collect(),
             pieces: equations
                 .terms
@@ -91,9 +97,9 @@ impl Mode {
                 .map(|term| match &term.shape {
                     Shape::Law(law) => {
                         let input = input(equations, term, time, state, overrides);
-                        law.piece(input, parameters(equations, term, time, overrides))
+                        law.piece(input, parameters(equations, term, time, state, overrides))
                     }
-                    Shape::Linear | Shape::Products(_) | Shape::Warm(..) => 0,
+                    Shape::Linear | Shape::Products(_) | Shape::Warm(..) | Shape::Pair(..) => 0,
                 })
                 .chain(equations.frictions.iter().map(|_| 0))
                 .collect(),
@@ -118,12 +124,75 @@ impl Mode {
                 .collect(),
             held: vec![false; equations.controllers.len()],
             tracking: vec![false; equations.controllers.len()],
+            slewing: vec![0; equations.followers.len()],
+            pitch_held: vec![0; equations.pitches.len()],
         };
         for index in 0..equations.frictions.len() {
             mode.choose_piece(equations, index, state);
         }
+        for index in 0..equations.controllers.len() {
+            mode.judge_command(equations, index, time, state, overrides);
+        }
         mode.judge_controllers(equations, time, state, overrides);
+        mode.judge_pitches(equations, time, state, overrides);
         mode
+    }
+
+    /// The piece of a command whose limits follow the speed.
+    fn judge_command(
+        &mut self,
+        equations: &Equations,
+        index: usize,
+        time: f64,
+        state: &[f64],
+        overrides: &Overrides,
+    ) {
+        let controller = &equations.controllers[index];
+        if controller.moving_limits.is_none() {
+            return;
+        }
+        let term = &equations.terms[controller.command];
+        let command = input(equations, term, time, state, overrides);
+        let edges = [0, 1].map(|side| controller.edge(equations, side, state));
+        self.pieces[controller.command] =
+            usize::from(command > edges[0]) + usize::from(command >= edges[1]);
+    }
+
+    /// True for the limit of a command that does not stand at it, and for what feeds the integral of
+    /// a pitch loop at the end of its way.
+    pub fn is_off(&self, equations: &Equations, term: usize) -> bool {
+        let mut pitches = equations.pitches.iter().zip(&self.pitch_held);
+        if pitches.any(|(pitch, held)| pitch.integral == term && *held != 0) {
+            return true;
+        }
+        equations.controllers.iter().any(|controller| {
+            controller.moving_limits.is_some_and(|limits| {
+                let piece = self.pieces[controller.command];
+                (term == limits[0] && piece != 0) || (term == limits[1] && piece != 2)
+            })
+        })
+    }
+
+    /// What a follower at its limited rate makes of a term; a rate that is not in force has sign 0.
+    pub fn slewing_at(&self, equations: &Equations, term: usize) -> Option<Slewing> {
+        let all = equations.followers.iter().zip(&self.slewing);
+        all.filter_map(|(follower, sign)| match follower.slew {
+            Some((rate, _)) if rate == term => Some(Slewing::Rate(f64::from(*sign))),
+            Some(_) if *sign != 0 && follower.commands.contains(&term) => Some(Slewing::Command),
+            _ => None,
+        })
+        .next()
+    }
+
+    /// Takes the pieces of a command's moving limits from where the speed stands.
+    pub fn meet_limits(&mut self, equations: &Equations, command: usize, state: &[f64]) {
+        for controller in equations.controllers.iter().filter(|one| one.command == command) {
+            for term in controller.moving_limits.into_iter().flatten() {
+                if let Some(law) = equations.law_at(term) {
+                    self.pieces[term] = law.piece_at(dot(&equations.terms[term].input, state));
+                }
+            }
+        }
     }
 
     /// Lets a friction element do something else; one that begins to slide takes the piece of its
@@ -177,9 +246,11 @@ pub fn parameters(
     equations: &Equations,
     term: &super::Term,
     time: f64,
+    state: &[f64],
     overrides: &Overrides,
 ) -> [f64; 2] {
-    term.parameters.map(|slot| slot.map_or(0.0, |slot| equations.bank.value(slot, time, overrides)))
+    let signal = |slot| equations.bank.value(slot, time, overrides);
+    super::parameters_at(term.parameters, &term.by_state, state, signal)
 }
 
 /// The input of a term at a state.
@@ -190,8 +261,8 @@ pub fn input(
     state: &[f64],
     overrides: &Overrides,
 ) -> f64 {
-    let offset = term
-        .offset
-        .map_or(0.0, |(factor, slot)| factor * equations.bank.value(slot, time, overrides));
+    let offsets = term.offsets.iter();
+    let offset: f64 =
+        offsets.map(|(factor, slot)| factor * equations.bank.value(*slot, time, overrides)).sum();
     dot(&term.input, state) + offset
 }

@@ -8,6 +8,7 @@ pub mod scales;
 pub mod starting_speeds;
 
 use crate::component::channel::Channel;
+use crate::component::elastic_curve::ElasticCurve;
 use crate::component::shaft::ShaftDamping;
 use crate::diagnostic::Diagnostics;
 use crate::scenario::Scenario;
@@ -50,6 +51,8 @@ pub struct ShaftModel {
     pub stiffness: f64,
     /// N*m*s/rad.
     pub damping: f64,
+    /// Torque over twist where it has stages; `stiffness` is then the one at no twist.
+    pub curve: Option<ElasticCurve>,
     /// Total free play, rad.
     pub backlash: f64,
     /// Eliminated instead of sprung.
@@ -98,6 +101,7 @@ pub fn build(scenario: &Scenario) -> Result<Model, Diagnostics> {
                 ShaftDamping::Coefficient(value) => value,
                 ShaftDamping::Ratio(_) => 0.0,
             },
+            curve: shaft.curve.clone(),
             backlash: shaft.backlash,
             rigid: shaft.rigid,
         })
@@ -116,6 +120,7 @@ pub fn build(scenario: &Scenario) -> Result<Model, Diagnostics> {
     let magnets = magnet::build(scenario, &shafts, &constraints, &inertias, &mut found);
     let start_speeds =
         starting_speeds::find(scenario, &constraints, &shafts, &magnets, &reduction, &mut found);
+    refuse_clutches_overtaken(scenario, &start_speeds, &mut found);
     warn_of_idle_bodies(scenario, &mut found);
     if found.has_errors() {
         return Err(found);
@@ -133,6 +138,29 @@ pub fn build(scenario: &Scenario) -> Result<Model, Diagnostics> {
         scales,
         warnings: found,
     })
+}
+
+/// A clutch that passes any torque cannot begin with a difference that only an impact would end.
+fn refuse_clutches_overtaken(scenario: &Scenario, speeds: &[f64], found: &mut Diagnostics) {
+    for clutch in &scenario.clutches {
+        let of = |name: &str| body_index(scenario, name).and_then(|body| speeds.get(body));
+        let [first, second] =
+            [0, 1].map(|end: usize| of(&clutch.between[end]).copied().unwrap_or(0.0));
+        let ([forward, backward], _) = clutch.torques();
+        let room = 1e-9 * first.abs().max(second.abs());
+        let gap = first - second;
+        if (gap > room && forward.is_infinite()) || (gap < -room && backward.is_infinite()) {
+            let [faster, slower] = if gap > 0.0 { [0, 1] } else { [1, 0] };
+            found.error_hint(
+                format!("{}.{}.between", clutch.section(), clutch.name),
+                format!(
+                    "`{}` starts faster than `{}`, but the clutch locks that way",
+                    clutch.between[faster], clutch.between[slower]
+                ),
+                "give both the same speed, or the clutch a `slipping_torque`",
+            );
+        }
+    }
 }
 
 /// A body on which nothing acts keeps its speed for ever: more likely forgotten than meant.
@@ -155,6 +183,8 @@ fn warn_of_idle_bodies(scenario: &Scenario, found: &mut Diagnostics) {
                 .planetary_gears
                 .iter()
                 .any(|set| [&set.sun, &set.carrier, &set.ring].iter().any(|end| *end == name))
+            || scenario.clutches.iter().any(|it| it.between.iter().any(|end| end == name))
+            || scenario.fluid_couplings.iter().any(|it| it.between.iter().any(|end| end == name))
             || scenario.motors.iter().any(|motor| motor.body == name)
             || scenario
                 .loads

@@ -6,7 +6,7 @@
 
 use super::elimination::{Constraint, Reduction};
 use super::magnet::Magnet;
-use super::{BodyRow, ShaftModel, body_index};
+use super::{BodyRow, ShaftModel, body_index, difference};
 use crate::component::load::LoadLaw;
 use crate::component::motor::MotorLaw;
 use crate::component::motor::circuit::Circuit;
@@ -50,6 +50,13 @@ pub fn find(
         let (rated_speed, rated_torque) = load_size(&load.law);
         note(&load.body, rated_speed, rated_torque);
     }
+    for clutch in &scenario.clutches {
+        let (_, limits) = clutch.torques();
+        let finite = limits.into_iter().filter(|limit| limit.is_finite()).fold(0.0, f64::max);
+        for body in &clutch.between {
+            note(body, 0.0, finite);
+        }
+    }
     for magnet in magnets {
         for member in &magnet.members {
             if let Some(body) = member.body {
@@ -57,7 +64,19 @@ pub fn find(
             }
         }
     }
-    spread(&mut speed, shafts, magnets, constraints);
+    let clutches: Vec<BodyRow> = scenario
+        .clutches
+        .iter()
+        .map(|clutch| {
+            let [a, b] = [0, 1].map(|end: usize| body_index(scenario, &clutch.between[end]));
+            difference(a, b)
+        })
+        .chain(scenario.fluid_couplings.iter().map(|coupling| {
+            let [a, b] = [0, 1].map(|end: usize| body_index(scenario, &coupling.between[end]));
+            difference(a, b)
+        }))
+        .collect();
+    spread(&mut speed, shafts, magnets, constraints, &clutches);
     for magnet in magnets {
         let frequency = magnet.natural_frequency();
         for member in &magnet.members {
@@ -68,7 +87,7 @@ pub fn find(
             }
         }
     }
-    spread(&mut speed, shafts, magnets, constraints);
+    spread(&mut speed, shafts, magnets, constraints, &clutches);
     for shaft in shafts.iter().filter(|shaft| !shaft.rigid) {
         for (here, there) in [(0, 1), (1, 0)] {
             if let (Some(here), Some(there)) = (shaft.ends[here], shaft.ends[there])
@@ -120,12 +139,14 @@ fn spread(
     shafts: &[ShaftModel],
     magnets: &[Magnet],
     constraints: &[Constraint],
+    clutches: &[BodyRow],
 ) {
     let rows: Vec<BodyRow> = constraints
         .iter()
         .map(|joint| joint.row.clone())
         .chain(shafts.iter().map(ShaftModel::row))
         .chain(magnets.iter().map(Magnet::row))
+        .chain(clutches.iter().cloned())
         .collect();
     for _ in 0..speed.len() {
         for row in &rows {
@@ -150,6 +171,7 @@ fn signal_size(signal: &Signal) -> f64 {
             rows.iter().fold(0.0, |size, row| f64::max(size, row[1].abs()))
         }
         Signal::Turbulence(spectrum) => spectrum.mean + 3.0 * spectrum.deviation,
+        Signal::CoherentGust { hub_wind, rise, .. } => hub_wind + rise,
         Signal::Sine { mean, amplitude, .. } => mean.abs() + amplitude.abs(),
         _ => 0.0,
     }
@@ -169,10 +191,11 @@ fn motor_size(law: &MotorLaw) -> (f64, f64) {
         }
         MotorLaw::Curve { points, .. } => curve_size(points),
         MotorLaw::Prescribed { torque } => (0.0, signal_size(torque)),
-        MotorLaw::SpeedLoop { speed, torque_limit, .. } => (signal_size(speed), *torque_limit),
-        MotorLaw::OptimalPower { coefficient, torque_limit } => {
-            ((torque_limit / coefficient).sqrt(), *torque_limit)
+        MotorLaw::SpeedLoop { speed, drive, .. } => (signal_size(speed), drive.limits.torque_limit),
+        MotorLaw::TorqueLoop { drive, .. } => {
+            (drive.limits.base_speed.unwrap_or(0.0), drive.limits.torque_limit)
         }
+        MotorLaw::OptimalPower { figures } => (figures.square_law_ends(), figures.largest_torque()),
     }
 }
 
@@ -180,7 +203,7 @@ fn load_size(law: &LoadLaw) -> (f64, f64) {
     match law {
         LoadLaw::PowerLaw { torque, speed, .. } => (*speed, *torque),
         LoadLaw::Friction { breakaway, .. } => (0.0, *breakaway),
-        LoadLaw::Viscous { .. } => (0.0, 0.0),
+        LoadLaw::Viscous { .. } | LoadLaw::Reciprocating { .. } => (0.0, 0.0),
         LoadLaw::Prescribed { torque } => (0.0, signal_size(torque)),
         LoadLaw::Curve { points } => curve_size(points),
         LoadLaw::Periodic { mean, harmonics } => {

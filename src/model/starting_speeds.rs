@@ -24,11 +24,18 @@ pub fn find(
     let elastic: Vec<BodyRow> =
         shafts.iter().filter(|shaft| !shaft.rigid).map(ShaftModel::row).collect();
     let magnetic: Vec<BodyRow> = magnets.iter().map(Magnet::row).collect();
+    let body = |name: &str| super::body_index(scenario, name);
+    let clutched: Vec<BodyRow> = scenario
+        .clutches
+        .iter()
+        .map(|clutch| super::difference(body(&clutch.between[0]), body(&clutch.between[1])))
+        .collect();
     // Rigid joints first: what they fix must not be overruled by a joint that may slip.
     loop {
         let changed = follow(&mut speeds, rigid.iter().copied())
             || follow(&mut speeds, elastic.iter())
-            || follow(&mut speeds, magnetic.iter());
+            || follow(&mut speeds, magnetic.iter())
+            || follow(&mut speeds, clutched.iter());
         if !changed {
             break;
         }

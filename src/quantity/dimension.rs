@@ -21,6 +21,8 @@ pub enum Dimension {
     Stiffness,
     /// Rotational damping, N*m*s/rad.
     Damping,
+    /// Change of a torque over time, N*m/s.
+    TorqueRate,
     /// Torque over speed squared, N*m*s2/rad2.
     TorquePerSpeedSquared,
     /// Power, W.
@@ -70,6 +72,7 @@ impl Dimension {
             Self::Inertia => "kg*m2",
             Self::Stiffness => "N*m/rad",
             Self::Damping => "N*m*s/rad",
+            Self::TorqueRate => "N*m/s",
             Self::TorquePerSpeedSquared => "N*m*s2/rad2",
             Self::Power => "W",
             Self::Energy => "J",
@@ -102,6 +105,7 @@ impl Dimension {
             Self::Inertia => "moment of inertia",
             Self::Stiffness => "torsional stiffness",
             Self::Damping => "rotational damping",
+            Self::TorqueRate => "rate of torque",
             Self::TorquePerSpeedSquared => "torque per speed squared",
             Self::Power => "power",
             Self::Energy => "energy",

@@ -41,6 +41,9 @@ pub fn summary(result: &RunResult, records: &[RecordComparison], origin: &Origin
     put("requirements", requirements(&result.requirements));
     put("energy", energy(result));
     put("motors", motors(result));
+    if !result.clutches.is_empty() {
+        put("clutches", clutches(result));
+    }
     if !records.is_empty() {
         put("measured", measured::to_json(records));
     }
@@ -154,6 +157,18 @@ fn motors(result: &RunResult) -> Value {
             ("rotor_heat", json_optional(motor.rotor_heat)),
         ]);
         (motor.name.as_str(), figures)
+    }))
+}
+
+fn clutches(result: &RunResult) -> Value {
+    named(result.clutches.iter().map(|clutch| {
+        let figures = named([
+            ("slips", Value::from(clutch.slips)),
+            ("releases", Value::from(clutch.releases)),
+            ("heat", json(clutch.heat)),
+            ("state_at_end", Value::from(clutch.state_at_end.word())),
+        ]);
+        (clutch.name.as_str(), figures)
     }))
 }
 

@@ -6,7 +6,7 @@ use super::story;
 use super::table::{Table, wrap};
 use crate::analysis::records::RecordComparison;
 use crate::component::motor::MotorLaw;
-use crate::results::{RequirementResult, RunResult};
+use crate::results::{ClutchResult, RequirementResult, RunResult};
 use crate::scenario::{Scenario, Start};
 use std::fmt::Write as _;
 
@@ -45,6 +45,7 @@ pub fn summary(scenario: &Scenario, result: &RunResult, telling: &Telling<'_>) -
     text.push_str(&peaks(result, shown));
     text.push_str(&measured::text(telling.records, shown));
     text.push_str(&start_up(scenario, result));
+    text.push_str(&clutches(result));
     text.push_str(&bookkeeping(result));
     let warnings = match result.warnings.len() {
         0 => String::new(),
@@ -204,6 +205,31 @@ fn start_up(scenario: &Scenario, result: &RunResult) -> String {
         let _ = writeln!(text, "  `{}`: {reached}{heat}", motor.name);
     }
     if text.is_empty() { text } else { format!("\nMotors\n{text}") }
+}
+
+fn clutches(result: &RunResult) -> String {
+    let mut text = String::new();
+    for clutch in &result.clutches {
+        let _ = writeln!(text, "  `{}`: {}", clutch.name, clutch_words(clutch));
+    }
+    if text.is_empty() { text } else { format!("\nClutches\n{text}") }
+}
+
+/// What a clutch did, in words.
+pub fn clutch_words(clutch: &ClutchResult) -> String {
+    let count = |count: u32, what: &str| match count {
+        0 => String::new(),
+        1 => format!("{what} once, "),
+        2 => format!("{what} twice, "),
+        many => format!("{what} {many} times, "),
+    };
+    format!(
+        "{}{}heat {}, {} at the end",
+        count(clutch.slips, "began to slip"),
+        count(clutch.releases, "ran free"),
+        shown::energy(clutch.heat),
+        clutch.state_at_end.word()
+    )
 }
 
 /// Whether a motor starts at or above 95 % of its synchronous speed, as one in steady running does.

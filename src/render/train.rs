@@ -9,6 +9,7 @@ use super::table::{Table, wrap};
 use super::text::WIDTH;
 use crate::analysis::poles::{Held, PolePairs};
 use crate::analysis::train::{LossFigures, MagnetFigures, Train};
+use crate::component::clutch::{Clutch, ClutchKind};
 use crate::quantity::format_number;
 use crate::scenario::{Method, Scenario, Start};
 use serde_json::Value;
@@ -220,7 +221,44 @@ fn joints(scenario: &Scenario) -> String {
             set.name, set.sun, set.teeth_sun, set.carrier, set.ring, set.teeth_ring
         );
     }
+    for clutch in &scenario.clutches {
+        let [a, b] = &clutch.between;
+        let _ = writeln!(
+            text,
+            "  {} `{}`: {}",
+            clutch.label(),
+            clutch.name,
+            clutch_words(clutch, a, b)
+        );
+    }
+    for coupling in &scenario.fluid_couplings {
+        let [pump, turbine] = &coupling.between;
+        let _ = writeln!(
+            text,
+            "  fluid coupling `{}`: pump wheel on `{pump}`, turbine wheel on `{turbine}`",
+            coupling.name
+        );
+    }
     if text.is_empty() { text } else { format!("\n{text}") }
+}
+
+fn clutch_words(clutch: &Clutch, a: &str, b: &str) -> String {
+    match clutch.kind {
+        ClutchKind::Overrunning { reversed, slipping_torque, .. } => {
+            let [ahead, behind] = if reversed { [a, b] } else { [b, a] };
+            let slips = if slipping_torque.is_finite() {
+                format!(", slips at {} N*m", format_number(slipping_torque, 6))
+            } else {
+                String::new()
+            };
+            format!("`{ahead}` may turn faster than `{behind}`{slips}")
+        }
+        ClutchKind::Limiter { torque, breakaway } => format!(
+            "between `{a}` and `{b}`, begins to slip at {} N*m, slips at {} N*m",
+            format_number(breakaway, 6),
+            format_number(torque, 6)
+        ),
+    }
 }
 
 fn drives(scenario: &Scenario) -> String {

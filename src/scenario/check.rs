@@ -13,13 +13,16 @@ use std::collections::BTreeMap;
 const GROUND: &str = "ground";
 
 /// The sections whose entries are named by the user.
-const NAMED_SECTIONS: [&str; 14] = [
+const NAMED_SECTIONS: [&str; 17] = [
     "bodies",
     "shafts",
     "magnetic_gears",
     "magnetic_couplings",
     "gear_pairs",
     "planetary_gears",
+    "overrunning_clutches",
+    "torque_limiters",
+    "fluid_couplings",
     "motors",
     "loads",
     "brakes",
@@ -209,6 +212,25 @@ impl<'a> Check<'a> {
             ];
             self.members(&path, &members, true);
         }
+        for coupling in &scenario.fluid_couplings {
+            let path = format!("fluid_couplings.{}", coupling.name);
+            let words =
+                |wheel| format!("fluid coupling `{}` has its {wheel} wheel on", coupling.name);
+            let members = [
+                member(&path, "between.0", &coupling.between[0], words("pump")),
+                member(&path, "between.1", &coupling.between[1], words("turbine")),
+            ];
+            self.members(&path, &members, true);
+        }
+        for clutch in &scenario.clutches {
+            let path = format!("{}.{}", clutch.section(), clutch.name);
+            let words = || format!("{} `{}` has a half on", clutch.label(), clutch.name);
+            let members = [
+                member(&path, "between.0", &clutch.between[0], words()),
+                member(&path, "between.1", &clutch.between[1], words()),
+            ];
+            self.members(&path, &members, true);
+        }
     }
 
     /// Bodies of motors, loads and brakes.
@@ -230,6 +252,13 @@ impl<'a> Check<'a> {
                 members.push(member(&path, "against", against, words));
             }
             self.members(&path, &members, false);
+            if let LoadLaw::AxialRotor { pitch_loop: Some(pitch_loop), .. } = &load.law
+                && let Some(body) = &pitch_loop.body
+            {
+                let path = format!("{path}.law.axial_rotor.pitch_loop");
+                let words = format!("the pitch loop of `{}` holds", load.name);
+                self.members(&path, &[member(&path, "body", body, words)], false);
+            }
         }
         for brake in &scenario.brakes {
             let path = format!("brakes.{}", brake.name);

@@ -314,7 +314,7 @@ impl<'n> At<'n, '_> {
         dimension: Option<Dimension>,
     ) -> Result<Found<'n>, PathFault> {
         let (dimension, default) = match step {
-            "at" | "start" | "end" => (Some(Dimension::Time), None),
+            "at" | "start" | "end" | "every" | "largest_gap" => (Some(Dimension::Time), None),
             "frequency" => (Some(Dimension::Frequency), None),
             "phase" => (Some(Dimension::Angle), Some(0.0)),
             "rotor_diameter" | "hub_height" => (Some(Dimension::Length), None),

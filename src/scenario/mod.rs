@@ -13,6 +13,7 @@ mod records;
 mod sections;
 pub mod signals;
 mod source;
+mod table_places;
 mod tables;
 mod yaml;
 
@@ -25,6 +26,8 @@ use crate::component::{
     body::Body,
     brake::Brake,
     channel::Channel,
+    clutch::Clutch,
+    fluid_coupling::FluidCoupling,
     gear_pair::GearPair,
     load::Load,
     magnetic_gear::{MagneticCoupling, MagneticGear},
@@ -69,6 +72,10 @@ pub struct Scenario {
     pub gear_pairs: Vec<GearPair>,
     /// Rigid planetary sets.
     pub planetary_gears: Vec<PlanetaryGear>,
+    /// Overrunning clutches, then torque limiters.
+    pub clutches: Vec<Clutch>,
+    /// Fluid couplings.
+    pub fluid_couplings: Vec<FluidCoupling>,
     /// Motors.
     pub motors: Vec<Motor>,
     /// Loads.

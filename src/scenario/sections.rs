@@ -5,6 +5,8 @@ use super::{Display, Method, Scenario, Solver, Start};
 use crate::component::body::Body;
 use crate::component::brake::Brake;
 use crate::component::channel::{self, Known, Section, Train};
+use crate::component::clutch::Clutch;
+use crate::component::fluid_coupling::FluidCoupling;
 use crate::component::gear_pair::GearPair;
 use crate::component::load::Load;
 use crate::component::magnetic_gear::{MagneticCoupling, MagneticGear};
@@ -60,6 +62,22 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
     let gear_pairs = fields.section("gear_pairs", "Rigid gear pairs.", GearPair::read);
     let planetary_gears =
         fields.section("planetary_gears", "Rigid planetary sets.", PlanetaryGear::read);
+    let mut clutches = fields.section(
+        "overrunning_clutches",
+        "Clutches that lock one way and run free the other way.",
+        Clutch::read_overrunning,
+    );
+    let limiters = fields.section(
+        "torque_limiters",
+        "Slip clutches: they slip beyond their torque.",
+        Clutch::read_limiter,
+    );
+    clutches.extend(limiters);
+    let fluid_couplings = fields.section(
+        "fluid_couplings",
+        "Fluid couplings of a pump wheel and a turbine wheel.",
+        FluidCoupling::read,
+    );
     let motors = fields.section("motors", "Motors and generators.", |motor| {
         let name = motor.own_name().to_owned();
         Motor::read(&name, motor)
@@ -77,6 +95,8 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         magnetic_couplings: &magnetic_couplings,
         gear_pairs: &gear_pairs,
         planetary_gears: &planetary_gears,
+        clutches: &clutches,
+        fluid_couplings: &fluid_couplings,
         motors: &motors,
         loads: &loads,
         brakes: &brakes,
@@ -131,6 +151,8 @@ pub(super) fn read(fields: &mut Fields<'_>, root: &Node) -> Scenario {
         magnetic_couplings,
         gear_pairs,
         planetary_gears,
+        clutches,
+        fluid_couplings,
         motors,
         loads,
         brakes,

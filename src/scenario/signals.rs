@@ -289,7 +289,13 @@ fn motor_signals<'a>(path: &str, law: &'a MotorLaw, uses: &mut Vec<Use<'a>>) {
         MotorLaw::Induction { voltage, .. } => add("induction", "voltage", voltage, Dimension::One),
         MotorLaw::Curve { voltage, .. } => add("curve", "voltage", voltage, Dimension::One),
         MotorLaw::Prescribed { torque } => add("prescribed", "torque", torque, Dimension::Torque),
-        MotorLaw::SpeedLoop { speed, .. } => add("speed_loop", "speed", speed, Dimension::Speed),
+        MotorLaw::SpeedLoop { speed, feed_forward, .. } => {
+            add("speed_loop", "speed", speed, Dimension::Speed);
+            add("speed_loop", "feed_forward", feed_forward, Dimension::Torque);
+        }
+        MotorLaw::TorqueLoop { torque, .. } => {
+            add("torque_loop", "torque", torque, Dimension::Torque);
+        }
         MotorLaw::InductionCircuit { voltage, connected, .. } => {
             add("induction_circuit", "voltage", voltage, Dimension::One);
             add("induction_circuit", "connected", connected, Dimension::One);
@@ -309,9 +315,15 @@ fn load_signals<'a>(path: &str, law: &'a LoadLaw, uses: &mut Vec<Use<'a>>) {
     };
     match law {
         LoadLaw::Prescribed { torque } => add("prescribed.torque", torque, Dimension::Torque),
-        LoadLaw::AxialRotor { flow, pitch, .. } => {
+        LoadLaw::AxialRotor { flow, pitch, pitch_loop, .. } => {
             add("axial_rotor.flow", flow, Dimension::LinearSpeed);
-            add("axial_rotor.pitch", pitch, Dimension::Angle);
+            match pitch_loop {
+                Some(pitch_loop) => {
+                    let speed = &pitch_loop.speed;
+                    add("axial_rotor.pitch_loop.speed", speed, Dimension::Speed);
+                }
+                None => add("axial_rotor.pitch", pitch, Dimension::Angle),
+            }
         }
         LoadLaw::Propeller { advance, .. } => {
             add("propeller.advance", advance, Dimension::LinearSpeed);
@@ -320,65 +332,7 @@ fn load_signals<'a>(path: &str, law: &'a LoadLaw, uses: &mut Vec<Use<'a>>) {
         | LoadLaw::Friction { .. }
         | LoadLaw::Viscous { .. }
         | LoadLaw::Curve { .. }
-        | LoadLaw::Periodic { .. } => {}
-    }
-}
-
-/// Hands every signal that holds a table to `look`, with its path.
-pub(super) fn each_with_table(scenario: &mut Scenario, look: &mut dyn FnMut(&str, &mut Signal)) {
-    let mut visit = |path: String, signal: &mut Signal| {
-        let mut holds = false;
-        signal.visit("", &mut |_, inside| holds |= matches!(inside, Signal::Table { .. }));
-        if holds {
-            look(&path, signal);
-        }
-    };
-    for named in &mut scenario.signals {
-        visit(format!("signals.{}", named.name), &mut named.signal);
-    }
-    for motor in &mut scenario.motors {
-        let path = format!("motors.{}", motor.name);
-        if let Some(scale) = &mut motor.scale {
-            visit(format!("{path}.scale"), scale);
-        }
-        let (key, signal) = match &mut motor.law {
-            MotorLaw::RatingPlate { voltage, .. } => ("rating_plate.voltage", voltage),
-            MotorLaw::Induction { voltage, .. } => ("induction.voltage", voltage),
-            MotorLaw::Curve { voltage, .. } => ("curve.voltage", voltage),
-            MotorLaw::Prescribed { torque } => ("prescribed.torque", torque),
-            MotorLaw::SpeedLoop { speed, .. } => ("speed_loop.speed", speed),
-            MotorLaw::InductionCircuit { voltage, connected, .. } => {
-                visit(format!("{path}.law.induction_circuit.connected"), connected);
-                ("induction_circuit.voltage", voltage)
-            }
-            MotorLaw::OptimalPower { .. } => continue,
-        };
-        visit(format!("{path}.law.{key}"), signal);
-    }
-    for load in &mut scenario.loads {
-        let path = format!("loads.{}", load.name);
-        if let Some(scale) = &mut load.scale {
-            visit(format!("{path}.scale"), scale);
-        }
-        match &mut load.law {
-            LoadLaw::Prescribed { torque } => {
-                visit(format!("{path}.law.prescribed.torque"), torque);
-            }
-            LoadLaw::AxialRotor { flow, pitch, .. } => {
-                visit(format!("{path}.law.axial_rotor.flow"), flow);
-                visit(format!("{path}.law.axial_rotor.pitch"), pitch);
-            }
-            LoadLaw::Propeller { advance, .. } => {
-                visit(format!("{path}.law.propeller.advance"), advance);
-            }
-            LoadLaw::PowerLaw { .. }
-            | LoadLaw::Friction { .. }
-            | LoadLaw::Viscous { .. }
-            | LoadLaw::Curve { .. }
-            | LoadLaw::Periodic { .. } => {}
-        }
-    }
-    for brake in &mut scenario.brakes {
-        visit(format!("brakes.{}.applied", brake.name), &mut brake.applied);
+        | LoadLaw::Periodic { .. }
+        | LoadLaw::Reciprocating { .. } => {}
     }
 }

@@ -1,9 +1,13 @@
 //! The CSV files that signals and records of a scenario name, each read once.
 
 use super::Scenario;
+use crate::component::load::LoadLaw;
+use crate::component::load::coefficient_file::CoefficientFile;
+use crate::component::load::power_coefficient::{PowerCoefficient, Rows};
 use crate::component::torque_table::shape;
 use crate::diagnostic::Diagnostics;
 use crate::signal::Signal;
+use crate::signal::sampling::{Sampling, Told};
 use crate::signal::table::{TableColumns, parse_table};
 use std::io::Read as _;
 use std::path::{Path, PathBuf};
@@ -16,6 +20,7 @@ const LARGEST: u64 = 256 * 1024 * 1024;
 pub struct Tables {
     base: PathBuf,
     read: Vec<Table>,
+    coefficients: Vec<(CoefficientFile, Result<Rows, String>)>,
 }
 
 #[derive(Clone, Debug)]
@@ -30,22 +35,32 @@ struct Table {
 impl Tables {
     /// No tables yet; relative names start from the folder `base`.
     pub fn new(base: &Path) -> Self {
-        Self { base: base.to_path_buf(), read: Vec::new() }
+        Self { base: base.to_path_buf(), read: Vec::new(), coefficients: Vec::new() }
     }
 
     /// Gives every table signal of a scenario its rows.
     pub(super) fn fill(&mut self, scenario: &mut Scenario, faults: &mut Diagnostics) {
-        let mut load =
-            |path: &str, file: &str, columns: &TableColumns| match self.rows(file, columns, true) {
+        let until = scenario.duration;
+        let mut load = |path: &str, file: &str, columns: &TableColumns, sampling: &Sampling| {
+            let rows = match self.rows(file, columns, true) {
                 Ok(rows) => rows,
                 Err(message) => {
-                    faults.error(path, message);
-                    Vec::new()
+                    faults.error(format!("{path}.file"), message);
+                    return Vec::new();
                 }
             };
+            let (rows, told) = sampling.take(rows, until);
+            match told {
+                Some(Told::Fault(key, text)) => faults.error(format!("{path}.{key}"), text),
+                Some(Told::Warning(text)) => faults.warning(format!("{path}.file"), text),
+                None => {}
+            }
+            rows
+        };
         let mut fill = |path: &str, signal: &mut Signal| signal.load_tables(path, &mut load);
-        super::signals::each_with_table(scenario, &mut fill);
+        super::table_places::each_with_table(scenario, &mut fill);
         self.fill_torques(scenario, faults);
+        self.fill_coefficients(scenario, faults);
         for record in &mut scenario.measured {
             let named = [&record.file, &record.columns.time, &record.columns.value];
             if named.iter().any(|text| text.is_empty()) {
@@ -98,11 +113,49 @@ impl Tables {
         }
     }
 
+    /// Gives every rotor with a table of power coefficients in a file its rows.
+    fn fill_coefficients(&mut self, scenario: &mut Scenario, faults: &mut Diagnostics) {
+        for load in &mut scenario.loads {
+            let LoadLaw::AxialRotor { coefficient: PowerCoefficient::Rows(rows), .. } =
+                &mut load.law
+            else {
+                continue;
+            };
+            let Some(asked) = rows.file().cloned() else { continue };
+            match self.coefficients(&asked) {
+                Ok(found) => *rows = found,
+                Err(message) => faults.error(
+                    format!("loads.{}.law.axial_rotor.power_coefficient.table.file", load.name),
+                    message,
+                ),
+            }
+        }
+    }
+
+    fn coefficients(&mut self, asked: &CoefficientFile) -> Result<Rows, String> {
+        if let Some((_, known)) = self.coefficients.iter().find(|(known, _)| known == asked) {
+            return known.clone();
+        }
+        let file = &asked.file;
+        let rows = read_text(&self.base.join(file))
+            .map_err(|fault| format!("cannot read the table `{file}`: {fault}"))
+            .and_then(|text| {
+                asked
+                    .parse(&text)
+                    .map_err(|fault| format!("line {} of `{file}`: {}", fault.line, fault.message))
+            });
+        self.coefficients.push((asked.clone(), rows.clone()));
+        rows
+    }
+
     /// Shows every row read so far that results depend on.
     pub fn each_row(&self, take: &mut dyn FnMut(&[f64; 2])) {
         let followed = self.read.iter().filter(|table| table.followed);
         for row in followed.filter_map(|table| table.rows.as_ref().ok()).flatten() {
             take(row);
+        }
+        for rows in self.coefficients.iter().filter_map(|(_, rows)| rows.as_ref().ok()) {
+            rows.each(take);
         }
     }
 

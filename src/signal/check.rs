@@ -154,7 +154,9 @@ fn effective_dimension(signal: &Signal, named: &[NamedSignal], depth: usize) -> 
             .iter()
             .filter_map(|member| effective_dimension(member, named, depth))
             .find(|dimension| *dimension != Dimension::One),
-        Signal::ExtremeGust { .. } | Signal::Turbulence(_) => Some(Dimension::LinearSpeed),
+        Signal::ExtremeGust { .. } | Signal::CoherentGust { .. } | Signal::Turbulence(_) => {
+            Some(Dimension::LinearSpeed)
+        }
         _ => None,
     }
 }

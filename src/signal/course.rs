@@ -173,6 +173,12 @@ impl SignalBank {
                 Shape::sine(*mean, *amplitude, *frequency, *phase)
             }
             Signal::Turbulence(spectrum) => Shape::turbulence(spectrum),
+            Signal::CoherentGust { start, hub_wind, rise, rise_time } => Shape::CoherentGust {
+                start: *start,
+                end: start + rise_time,
+                hub_wind: *hub_wind,
+                rise: *rise,
+            },
             Signal::ExtremeGust { start, hub_wind, magnitude } => {
                 Shape::gust(*start, *hub_wind, *magnitude)
             }

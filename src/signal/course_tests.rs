@@ -121,6 +121,27 @@ fn a_gust_begins_and_ends_at_the_hub_wind() {
     assert!((steepest - 3.78303858494).abs() < 1e-3);
 }
 
+// IEC 61400-1, extreme coherent gust: V = V0 + 7.5 (1 - cos(pi t/10)); 15.0916106078 m/s after 3 s
+// from 12 m/s, the steepest slope 7.5 pi/10 after 5 s.
+#[test]
+fn a_coherent_gust_rises_and_stays() {
+    let gust = Signal::CoherentGust { start: 2.0, hub_wind: 12.0, rise: 15.0, rise_time: 10.0 };
+    let (bank, id) = bank_of(gust);
+    let o = bank.no_overrides();
+    for (time, wind) in
+        [(0.0, 12.0), (2.0, 12.0), (5.0, 15.0916106078), (7.0, 19.5), (12.0, 27.0), (99.0, 27.0)]
+    {
+        assert!((bank.value(id, time, &o) - wind).abs() < 1e-9, "{time}");
+    }
+    close(bank.slope(id, 7.0, &o), 0.75 * PI);
+    assert_eq!(kinks(&bank, &o), [2.0, 12.0]);
+    assert_eq!(bank.constant_on(id, 12.0, 30.0, &o), Some(27.0));
+    assert_eq!(bank.constant_on(id, 0.0, 2.0, &o), Some(12.0));
+    assert_eq!(bank.constant_on(id, 0.0, 2.1, &o), None);
+    let (low, high) = bank.range_on(id, 0.0, 30.0, &o);
+    assert!((low - 12.0).abs() < 1e-12 && (high - 27.0).abs() < 1e-12);
+}
+
 #[test]
 fn sums_and_products_combine_values_slopes_kinks_and_constants() {
     let members = vec![ramp(1.0, 2.0, 0.0, 4.0), sine(), Signal::Constant(3.0)];

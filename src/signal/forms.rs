@@ -1,6 +1,7 @@
 //! The signal forms that are maps of keys: step, ramp, pulse, sine, table, extreme gust.
 
 use super::kind::Kind;
+use super::sampling::Sampling;
 use super::table::{Across, TableColumns};
 use super::turbulence::{LENGTH_SCALE, Spectrum};
 use super::{Signal, gust};
@@ -10,13 +11,18 @@ use crate::tree::{Fields, Range, Shape};
 /// One form: its key, its documentation, how its map is read.
 type Form = (&'static str, &'static str, fn(&mut Fields<'_>, &mut Kind) -> Option<Signal>);
 
-const FORMS: [Form; 7] = [
+const FORMS: [Form; 8] = [
     ("step", "One value before an instant, another from then on.", step),
     ("ramp", "A straight line between two held values.", ramp),
     ("pulse", "One value between two instants, another outside.", pulse),
     ("sine", "Mean + amplitude*sin(2 pi frequency t + phase).", sine),
     ("table", "Two columns of a CSV file, straight lines between its rows.", table),
     ("extreme_gust", "Extreme operating gust of IEC 61400-1, 10.5 s long.", extreme_gust),
+    (
+        "extreme_coherent_gust",
+        "Extreme coherent gust of IEC 61400-1: the wind rises and stays; its turn is left out.",
+        extreme_coherent_gust,
+    ),
     (
         "turbulence",
         "Turbulent wind at one point by Kaimal's spectrum, drawn from a seed.",
@@ -131,9 +137,19 @@ fn table(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
     {
         fault.report(&fields.path_of("time_unit"), &mut faults.borrow_mut());
     }
+    let mut span = |key, doc| fields.quantity_optional(key, Dimension::Time, Range::Positive, doc);
+    let every = span(
+        "every",
+        "Makes even rows this far apart, each the file's mean over that time: for fast records.",
+    );
+    let largest_gap = span(
+        "largest_gap",
+        "Longest time without a row, else a fault; absent: ten median steps, else a warning.",
+    );
+    let sampling = Sampling { largest_gap, every };
     let columns = TableColumns { time, value, time_unit, unit, across: Across::Time };
     let named = ![&file, &columns.time, &columns.value].iter().any(|text| text.is_empty());
-    named.then_some(Signal::Table { file, columns, rows: Vec::new() })
+    named.then_some(Signal::Table { file, columns, sampling, rows: Vec::new() })
 }
 
 fn extreme_gust(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
@@ -170,6 +186,34 @@ fn extreme_gust(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
         return None;
     }
     sound([start, hub_wind, magnitude], Signal::ExtremeGust { start, hub_wind, magnitude })
+}
+
+fn extreme_coherent_gust(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {
+    let start = time(fields, "start", "When the gust begins.");
+    let hub_wind = fields.quantity(
+        "hub_wind",
+        Dimension::LinearSpeed,
+        Range::Positive,
+        "Wind speed at the hub before the gust.",
+    );
+    let rise = fields.quantity_or(
+        "rise",
+        Dimension::LinearSpeed,
+        Range::Positive,
+        gust::COHERENT_RISE,
+        "By how much the wind rises; 15 m/s in the standard.",
+    );
+    let rise_time = fields.quantity_or(
+        "rise_time",
+        Dimension::Time,
+        Range::Positive,
+        gust::COHERENT_TIME,
+        "In what time; 10 s in the standard.",
+    );
+    let here = fields.path().to_owned();
+    kind.meet(&here, Some(Dimension::LinearSpeed), &mut fields.faults().borrow_mut());
+    let figures = [start, hub_wind, rise, rise_time];
+    sound(figures, Signal::CoherentGust { start, hub_wind, rise, rise_time })
 }
 
 fn turbulence(fields: &mut Fields<'_>, kind: &mut Kind) -> Option<Signal> {

@@ -1,4 +1,4 @@
-//! Extreme operating gust of IEC 61400-1 (edition 3 and later).
+//! Extreme operating gust and extreme coherent gust of IEC 61400-1 (edition 3 and later).
 //!
 //! ```text
 //! Vref     = 50, 42.5, 37.5 m/s for turbine class I, II, III; Ve1 = 0.8*1.4*Vref at hub height
@@ -6,6 +6,8 @@
 //! Lambda   = 0.7 z for z <= 60 m, else 42 m                  turbulence scale at hub height z
 //! Vgust    = min(1.35 (Ve1 - Vhub), 3.3 sigma/(1 + 0.1 D/Lambda))
 //! V(t)     = Vhub - 0.37 Vgust sin(3 pi t/T)(1 - cos(2 pi t/T)), 0 <= t <= T = 10.5 s
+//!
+//! coherent: V(t) = Vhub + 0.5 Vcg (1 - cos(pi t/T)), 0 <= t <= T = 10 s, Vhub + Vcg after it, Vcg = 15 m/s
 //! ```
 //!
 //! The formulas of the standard are from memory and agree with the published class values;
@@ -62,6 +64,19 @@ pub fn magnitude(
     let by_turbulence = 3.3 * standard_deviation(turbulence_class, hub_wind)
         / (1.0 + 0.1 * rotor_diameter / turbulence_scale(hub_height));
     by_extreme.min(by_turbulence)
+}
+
+/// Rise of the extreme coherent gust, m/s.
+pub const COHERENT_RISE: f64 = 15.0;
+
+/// Time in which the extreme coherent gust rises, s.
+pub const COHERENT_TIME: f64 = 10.0;
+
+/// Share of a coherent gust's rise at a share of its time, and the derivative of one by the other.
+#[inline]
+pub fn coherent(share: f64) -> (f64, f64) {
+    let turn = PI * share;
+    (0.5 * (1.0 - turn.cos()), 0.5 * PI * turn.sin())
 }
 
 /// The change of the wind at `time` after the gust's start, per metre a second of magnitude.

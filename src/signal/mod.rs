@@ -8,15 +8,17 @@ mod kind;
 mod overrides;
 mod range;
 pub mod read;
+pub mod sampling;
 mod shape;
 pub mod table;
 pub mod turbulence;
 
 use crate::quantity::Dimension;
+use sampling::Sampling;
 use table::TableColumns;
 
-/// Reads a table: the path of its `file` key, the file as typed, its columns; the rows in SI.
-pub type TableLoader<'a> = dyn FnMut(&str, &str, &TableColumns) -> Vec<[f64; 2]> + 'a;
+/// Reads a table: its path, the file as typed, its columns, what is asked of its rows; the rows in SI.
+pub type TableLoader<'a> = dyn FnMut(&str, &str, &TableColumns, &Sampling) -> Vec<[f64; 2]> + 'a;
 
 /// A signal as typed, in SI.
 #[derive(Clone, Debug, PartialEq)]
@@ -75,6 +77,8 @@ pub enum Signal {
         file: String,
         /// Which columns, in which units.
         columns: TableColumns,
+        /// What is asked of its rows.
+        sampling: Sampling,
         /// `[time, value]` in SI.
         rows: Vec<[f64; 2]>,
     },
@@ -86,6 +90,17 @@ pub enum Signal {
         hub_wind: f64,
         /// Gust magnitude of the standard, m/s.
         magnitude: f64,
+    },
+    /// IEC 61400-1 extreme coherent gust: it rises and stays.
+    CoherentGust {
+        /// Start, s.
+        start: f64,
+        /// Wind speed at the hub before the gust, m/s.
+        hub_wind: f64,
+        /// By how much it rises, m/s.
+        rise: f64,
+        /// In what time, s.
+        rise_time: f64,
     },
     /// Turbulent wind at a point by Kaimal's spectrum.
     Turbulence(turbulence::Spectrum),
@@ -127,11 +142,11 @@ impl Signal {
         }
     }
 
-    /// Hands every table inside this signal to `load`, with the path of its `file` key.
+    /// Hands every table inside this signal to `load`, with its path.
     pub fn load_tables(&mut self, path: &str, load: &mut TableLoader<'_>) {
         match self {
-            Self::Table { file, columns, rows } => {
-                *rows = load(&format!("{path}.table.file"), file, columns);
+            Self::Table { file, columns, sampling, rows } => {
+                *rows = load(&format!("{path}.table"), file, columns, sampling);
             }
             Self::Sum(members) => {
                 for (index, member) in members.iter_mut().enumerate() {

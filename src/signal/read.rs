@@ -9,7 +9,7 @@ use crate::tree::{FieldDescription, Fields, Node, Shape};
 use std::cell::RefCell;
 
 /// The keys of a signal's one-key map, in the order of the reference.
-const FORMS: [&str; 10] = [
+const FORMS: [&str; 11] = [
     "step",
     "ramp",
     "pulse",
@@ -17,6 +17,7 @@ const FORMS: [&str; 10] = [
     "sine",
     "table",
     "extreme_gust",
+    "extreme_coherent_gust",
     "turbulence",
     "sum",
     "product",

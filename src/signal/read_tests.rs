@@ -94,7 +94,7 @@ fn a_table_keeps_its_columns_for_the_file_to_come() {
         ("unit", "rpm"),
         ("time_unit", "ms"),
     ]);
-    let Signal::Table { file, columns, rows } = sound(form("table", table), Speed) else {
+    let Signal::Table { file, columns, rows, .. } = sound(form("table", table), Speed) else {
         panic!()
     };
     assert_eq!((file.as_str(), columns.time.as_str()), ("gust.csv", "t [s]"));

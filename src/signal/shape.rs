@@ -121,6 +121,7 @@ pub(super) enum Shape {
     Lines(Lines),
     Sine { mean: f64, amplitude: f64, omega: f64, phase: f64 },
     Gust { start: f64, end: f64, hub_wind: f64, magnitude: f64 },
+    CoherentGust { start: f64, end: f64, hub_wind: f64, rise: f64 },
     Turbulence { mean: f64, course: Arc<Turbulence> },
 }
 
@@ -153,6 +154,15 @@ impl Shape {
                 mean + amplitude * (omega * time + phase).sin()
             }
             Self::Turbulence { mean, course } => mean + course.value(time),
+            Self::CoherentGust { start, end, hub_wind, rise } => {
+                if !at.is_past(*start) {
+                    *hub_wind
+                } else if at.is_past(*end) {
+                    hub_wind + rise
+                } else {
+                    hub_wind + rise * gust::coherent((time - start) / (end - start)).0
+                }
+            }
             Self::Gust { start, end, hub_wind, magnitude } => {
                 if at.is_past(*start) && !at.is_past(*end) {
                     hub_wind + magnitude * gust::shape(time - start)
@@ -172,6 +182,13 @@ impl Shape {
                 amplitude * omega * (omega * time + phase).cos()
             }
             Self::Turbulence { course, .. } => course.slope(time),
+            Self::CoherentGust { start, end, rise, .. } => {
+                if at.is_past(*start) && !at.is_past(*end) {
+                    rise / (end - start) * gust::coherent((time - start) / (end - start)).1
+                } else {
+                    0.0
+                }
+            }
             Self::Gust { start, end, magnitude, .. } => {
                 if at.is_past(*start) && !at.is_past(*end) {
                     magnitude * gust::shape_slope(time - start)
@@ -187,7 +204,9 @@ impl Shape {
         match self {
             Self::Constant(_) | Self::Sine { .. } | Self::Turbulence { .. } => None,
             Self::Lines(lines) => lines.next_start(time),
-            Self::Gust { start, end, .. } => [*start, *end].into_iter().find(|kink| *kink > time),
+            Self::Gust { start, end, .. } | Self::CoherentGust { start, end, .. } => {
+                [*start, *end].into_iter().find(|kink| *kink > time)
+            }
         }
     }
 
@@ -198,10 +217,10 @@ impl Shape {
             Self::Constant(_) => true,
             Self::Sine { .. } | Self::Turbulence { .. } => false,
             Self::Lines(lines) => lines.line(at).slope == 0.0,
-            Self::Gust { .. } => self.cap(from, to).is_none(),
+            Self::Gust { .. } | Self::CoherentGust { .. } => self.cap(from, to).is_none(),
         };
         let unbroken = match self {
-            Self::Gust { .. } => true,
+            Self::Gust { .. } | Self::CoherentGust { .. } => true,
             _ => self.next_kink(from).is_none_or(|kink| kink >= to),
         };
         (still && unbroken).then(|| self.value(from, at))
@@ -215,6 +234,9 @@ impl Shape {
             Self::Turbulence { course, .. } => Some(course.step()),
             Self::Gust { start, end, .. } => {
                 (from < *end && to > *start).then_some(gust::DURATION / 50.0)
+            }
+            Self::CoherentGust { start, end, .. } => {
+                (from < *end && to > *start).then_some((end - start) / 50.0)
             }
         }
     }

@@ -148,7 +148,8 @@ fn line(active: &Active) -> Line {
 
 /// The kernel of a term and what its factor is multiplied with.
 fn kernel(active: &Active) -> (Kernel, f64) {
-    if active.follows_time || active.input.len() > 1 {
+    let by_state = active.by_state.iter().any(|form| !form.is_empty());
+    if active.follows_time || active.input.len() > 1 || by_state {
         let alone = matches!(active.function, Function::Law(Law::Unit, _));
         return (if alone { Kernel::Followed } else { Kernel::Other }, 1.0);
     }
@@ -161,7 +162,7 @@ fn kernel(active: &Active) -> (Kernel, f64) {
         Function::Law(Law::PowerLaw(load), piece) => (Kernel::PowerLaw(*load, *piece), 1.0),
         Function::Law(Law::Unit, _) => (Kernel::Constant, 1.0),
         Function::Law(..) => (Kernel::Steady, 1.0),
-        Function::Products(_) | Function::Warm(..) => (Kernel::Other, 1.0),
+        Function::Products(_) | Function::Warm(..) | Function::Pair(..) => (Kernel::Other, 1.0),
         Function::Linear => (Kernel::Input, 1.0),
         Function::Friction(torque, direction) => (Kernel::Constant, -direction * torque),
     }
@@ -171,7 +172,7 @@ fn kernel(active: &Active) -> (Kernel, f64) {
 fn steady(active: &Active, input: f64) -> f64 {
     match &active.function {
         Function::Law(law, piece) => law.value(input, active.fixed.1, *piece),
-        Function::Linear | Function::Products(_) | Function::Warm(..) => input,
+        Function::Linear | Function::Products(_) | Function::Warm(..) | Function::Pair(..) => input,
         Function::Friction(torque, direction) => -direction * torque,
     }
 }

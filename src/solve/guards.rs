@@ -29,6 +29,10 @@ pub enum Guard {
     Windup(usize),
     /// A controller slides along its limit no longer.
     Track(usize),
+    /// The integral of a pitch loop comes to the end of its way, or is drawn back.
+    PitchEnd(usize),
+    /// A follower comes to its limited rate, or leaves it.
+    Slew(usize),
     /// A protection's condition becomes true.
     Condition(usize),
     /// A protection's condition ceases before its time.
@@ -82,6 +86,12 @@ pub fn list(
             guards.push(Guard::Track(index));
         }
     }
+    for (index, follower) in equations.followers.iter().enumerate() {
+        if follower.slew.is_some() {
+            guards.push(Guard::Slew(index));
+        }
+    }
+    guards.extend((0..equations.pitches.len()).map(Guard::PitchEnd));
     guards.retain(|guard| tracking::is_watched(mode, &equations.controllers, *guard));
     conditions.guards(&mut guards);
     for &magnet in &conditions.slip_watched {
@@ -105,17 +115,20 @@ pub fn value(
 ) -> f64 {
     let equations = evaluator.equations;
     let boundary = |term: usize, place: usize| -> f64 {
+        if let Some(edge) = moving_edge(evaluator, term, place, state) {
+            return edge;
+        }
         equations.law_at(term).and_then(|law| law.boundaries().get(place)).copied().unwrap_or(0.0)
     };
     match guard {
         Guard::Lower(term) => {
             let edge = boundary(term, mode.pieces[term] - 1);
-            let (place, size) = evaluator.place_on_axis(term, frame);
+            let (place, size) = evaluator.place_on_axis(term, state, frame);
             (place - edge) / size
         }
         Guard::Upper(term) => {
             let edge = boundary(term, mode.pieces[term]);
-            let (place, size) = evaluator.place_on_axis(term, frame);
+            let (place, size) = evaluator.place_on_axis(term, state, frame);
             (edge - place) / size
         }
         Guard::Slide(index) => {
@@ -142,6 +155,22 @@ pub fn value(
             sign * outwards / term.input_size
         }
         Guard::Track(index) => tracking::guard(evaluator, mode, index, state, frame),
+        Guard::PitchEnd(index) => {
+            let pitch = &equations.pitches[index];
+            match mode.pitch_held[index] {
+                0 => pitch.room(state, &equations.scale) / equations.scale[pitch.integral_state],
+                side => {
+                    let asked = evaluator.equations.bank.value_in(
+                        pitch.reference,
+                        frame.time,
+                        evaluator.assembly.start,
+                        evaluator.overrides,
+                    );
+                    f64::from(side) * pitch.error(asked, state) / pitch.speed_size
+                }
+            }
+        }
+        Guard::Slew(index) => slew(evaluator, mode.slewing[index], index, state, frame),
         Guard::Condition(index) => conditions.guard(index, frame, false),
         Guard::ConditionLost(index) => conditions.guard(index, frame, true),
         Guard::Slip(magnet, well) => {
@@ -150,6 +179,28 @@ pub fn value(
             PI - phase.abs()
         }
     }
+}
+
+/// The limit of a command where it follows the speed.
+fn moving_edge(evaluator: &Evaluator<'_>, term: usize, side: usize, state: &[f64]) -> Option<f64> {
+    let equations = evaluator.equations;
+    let controller = equations.controllers.iter().find(|one| one.command == term)?;
+    controller.moving_limits?;
+    Some(controller.edge(equations, side, state))
+}
+
+/// Room to the limited rate while a follower keeps up, else how far its command is out of reach.
+fn slew(evaluator: &Evaluator<'_>, slewing: i8, index: usize, state: &[f64], frame: &Frame) -> f64 {
+    let equations = evaluator.equations;
+    let follower = &equations.followers[index];
+    let Some((_, rate)) = follower.slew else { return 1.0 };
+    let distance = follower.distance(state, &equations.scale, &frame.laws);
+    let reach = rate * follower.lag;
+    let room = match slewing {
+        0 => reach - distance.abs(),
+        sign => f64::from(sign) * distance - reach,
+    };
+    room / equations.scale[follower.state]
 }
 
 /// Error of a controller; its integral term may be left out of the equations while it is held.
@@ -164,15 +215,10 @@ pub(super) fn controller_error(
     }
     let term = &evaluator.equations.terms[integral];
     let time = frame.time;
-    let offset = term.offset.map_or(0.0, |(factor, slot)| {
-        factor
-            * evaluator.equations.bank.value_in(
-                slot,
-                time,
-                evaluator.assembly.start,
-                evaluator.overrides,
-            )
-    });
+    let bank = &evaluator.equations.bank;
+    let start = evaluator.assembly.start;
+    let signal = |slot| bank.value_in(slot, time, start, evaluator.overrides);
+    let offset: f64 = term.offsets.iter().map(|(factor, slot)| factor * signal(*slot)).sum();
     dot(&term.input, state) + offset
 }
 

@@ -7,6 +7,7 @@ pub mod conditions;
 pub mod dense;
 pub mod extremes;
 mod flat;
+mod following;
 mod gear_warnings;
 pub mod gears;
 pub mod guards;

@@ -136,7 +136,7 @@ impl<'a> Observer<'a> {
             tracer: options.traces.take().map(|request| Tracer::new(request, model.magnets.len())),
             turning: options.turning.take().map(TurningWatch::new),
             energy: Powers::default(),
-            heats: vec![0.0; equations.heats.len()],
+            heats: vec![0.0; equations.heats.len() + equations.friction_heats],
             speed_scale: equations.scale[..equations.speeds].to_vec(),
             rows: options.rows.take(),
             next_row: 0,
@@ -153,6 +153,7 @@ impl<'a> Observer<'a> {
                 .iter()
                 .map(|channel| {
                     channel.name.ends_with("loss")
+                        || channel.name.ends_with(".current")
                         || is(channel.kind, &[MagneticChannel::PullOutShare])
                 })
                 .collect(),

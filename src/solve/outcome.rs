@@ -1,13 +1,15 @@
 //! From the recorder of a finished run to its results.
 
+use super::extremes::Extreme;
 use super::gear_warnings;
 use super::run::Run;
 use crate::component::load::LoadLaw;
 use crate::equations::frame::load_angle;
 use crate::equations::{Equations, Owner, Shape, energy};
+use crate::quantity::format_number;
 use crate::results::{
-    ChannelResult, Energy, Event, EventKind, GearResult, GearState, MemberResult, MotorResult,
-    RunResult, Warning,
+    ChannelResult, ClutchResult, ClutchState, Energy, Event, EventKind, GearResult, GearState,
+    MemberResult, MotorResult, RunResult, Warning,
 };
 use crate::scenario::Method;
 
@@ -56,6 +58,7 @@ pub fn collect(mut run: Run<'_, '_>, stored: f64) -> RunResult {
     warn_of_ranges(&mut run);
     warn_of_rotors(&mut run);
     gear_warnings::add(&mut run);
+    warn_of_propellers(&mut run);
     let mut warnings: Vec<Warning> = equations
         .model
         .warnings
@@ -85,6 +88,7 @@ pub fn collect(mut run: Run<'_, '_>, stored: f64) -> RunResult {
         requirements,
         energy: audit,
         motors: motors(&run),
+        clutches: clutches(&run),
         warnings,
         solver: work,
         events: std::mem::take(&mut run.observer.events),
@@ -190,6 +194,37 @@ fn motors(run: &Run<'_, '_>) -> Vec<MotorResult> {
         .collect()
 }
 
+fn clutches(run: &Run<'_, '_>) -> Vec<ClutchResult> {
+    let equations = run.equations;
+    let frictions = equations.frictions.iter().enumerate();
+    frictions
+        .filter_map(|(index, friction)| {
+            let Owner::Clutch(clutch) = friction.owner else { return None };
+            let clutch = equations.model.scenario.clutches.get(clutch)?;
+            let count = |free: bool| {
+                let sliding = |event: &&Event| {
+                    event.kind == EventKind::Sliding
+                        && event.of == clutch.name
+                        && clutch.runs_free(event.value) == free
+                };
+                u32::try_from(run.observer.events.iter().filter(sliding).count())
+                    .unwrap_or(u32::MAX)
+            };
+            Some(ClutchResult {
+                name: clutch.name.clone(),
+                slips: count(false),
+                releases: count(true),
+                heat: friction.heat.and_then(|heat| run.observer.heats.get(heat)).copied()?,
+                state_at_end: match run.mode.frictions[index].direction() {
+                    0.0 => ClutchState::Locked,
+                    way if clutch.runs_free(way) => ClutchState::Free,
+                    _ => ClutchState::Slipping,
+                },
+            })
+        })
+        .collect()
+}
+
 fn audit(equations: &Equations, run: &Run<'_, '_>, stored: f64) -> Energy {
     let sums = run.observer.energy;
     let stored_change = energy::stored(equations, &run.mode.contacts, &run.state) - stored;
@@ -234,6 +269,45 @@ fn warn_of_rotors(run: &mut Run<'_, '_>) {
     }
 }
 
+/// Warns of propellers read outside their open-water data, or turning astern.
+fn warn_of_propellers(run: &mut Run<'_, '_>) {
+    let equations = run.equations;
+    for load in &equations.model.scenario.loads {
+        let LoadLaw::Propeller { coefficient, .. } = &load.law else { continue };
+        let extreme = |name: String| {
+            let place = equations.model.channels.iter().position(|channel| channel.name == name)?;
+            let extreme = run.observer.extremes[place];
+            (extreme.max >= extreme.min).then_some(extreme)
+        };
+        let mut texts = Vec::new();
+        let ratio = extreme(format!("{}.advance_ratio", load.name));
+        if let (Some(ratio), Some([low, high])) = (ratio, coefficient.range()) {
+            let room = 1e-9 * (high - low).abs();
+            if ratio.min < low - room || ratio.max > high + room {
+                let shown = |value: f64| format_number(value, 4);
+                texts.push(format!(
+                    "the advance ratio runs from {} to {}, the data of the torque coefficient from {} to {}; \
+                     its end values are held beyond",
+                    shown(ratio.min),
+                    shown(ratio.max),
+                    shown(low),
+                    shown(high)
+                ));
+            }
+        }
+        let speed = extreme(format!("{}.speed", load.body));
+        let astern = |speed: Extreme| if load.reversed { speed.max > 0.0 } else { speed.min < 0.0 };
+        if speed.is_some_and(astern) {
+            texts.push(
+                "the propeller turns astern at times: its torque coefficient at J = 0 is used there, a rough guess"
+                    .to_owned(),
+            );
+        }
+        let path = format!("loads.{}.law.propeller", load.name);
+        run.warnings.extend(texts.into_iter().map(|text| (path.clone(), text)));
+    }
+}
+
 /// Warns of laws that were read beyond the data they stand on.
 fn warn_of_ranges(run: &mut Run<'_, '_>) {
     let equations = run.equations;
@@ -241,18 +315,23 @@ fn warn_of_ranges(run: &mut Run<'_, '_>) {
     for term in &equations.terms {
         let Shape::Law(law) = &term.shape else { continue };
         let Some([low, high]) = law.warn_range() else { continue };
-        let (path, body, reversed) = match term.owner {
+        let (path, name, reversed) = match term.owner {
             Owner::Motor(index) => {
                 let motor = &scenario.motors[index];
-                (format!("motors.{}.law", motor.name), &motor.body, motor.reversed)
+                let name = format!("{}.speed", motor.body);
+                (format!("motors.{}.law", motor.name), name, motor.reversed)
             }
             Owner::Load(index) => {
                 let load = &scenario.loads[index];
-                (format!("loads.{}.law", load.name), &load.body, load.reversed)
+                let name = format!("{}.speed", load.body);
+                (format!("loads.{}.law", load.name), name, load.reversed)
+            }
+            Owner::Shaft(index) => {
+                let shaft = &scenario.shafts[index].name;
+                (format!("shafts.{shaft}.stiffness"), format!("{shaft}.twist"), false)
             }
             _ => continue,
         };
-        let name = format!("{body}.speed");
         let Some(place) = equations.model.channels.iter().position(|channel| channel.name == name)
         else {
             continue;

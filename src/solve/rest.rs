@@ -7,8 +7,8 @@
 
 use crate::equations::assembly::assemble;
 use crate::equations::frame::{Evaluator, Frame};
-use crate::equations::mode::{FrictionMode, Mode, REST};
-use crate::equations::{Equations, dot};
+use crate::equations::mode::{FrictionMode, Mode};
+use crate::equations::{Equations, Owner, dot};
 use crate::results::{Event, EventKind};
 use crate::signal::course::Overrides;
 
@@ -28,17 +28,14 @@ pub fn presence(
     overrides: &Overrides,
 ) {
     for (index, friction) in equations.frictions.iter().enumerate() {
-        let absent = friction.breakaway == 0.0
+        let absent = friction.breakaway.largest() == 0.0
             || friction.factor.slots.iter().any(|(slot, _)| {
                 equations.bank.constant_on(*slot, time, end, overrides) == Some(0.0)
             });
         let speed = dot(&friction.speed, state);
         let friction = match (absent, mode.frictions[index]) {
             (true, _) => FrictionMode::Absent,
-            (false, FrictionMode::Absent) if speed.abs() > REST * friction.speed_size => {
-                FrictionMode::sliding(speed)
-            }
-            (false, FrictionMode::Absent) => FrictionMode::Stuck,
+            (false, FrictionMode::Absent) => friction.judge(speed),
             (false, other) => other,
         };
         mode.set_friction(equations, index, friction, state);
@@ -61,12 +58,7 @@ pub fn resolve(
     let before = mode.frictions.clone();
     for (index, friction) in equations.frictions.iter().enumerate() {
         if mode.frictions[index] != FrictionMode::Absent {
-            let speed = dot(&friction.speed, state);
-            let judged = if speed.abs() <= REST * friction.speed_size {
-                FrictionMode::Stuck
-            } else {
-                FrictionMode::sliding(speed)
-            };
+            let judged = friction.judge(dot(&friction.speed, state));
             mode.set_friction(equations, index, judged, state);
         }
     }
@@ -88,10 +80,14 @@ pub fn resolve(
         };
         let index = assembly.stuck[line];
         // What the element's own limit could do to its members: the size of a real acceleration.
-        let size = assembly.stuck_compliance[(line, line)] * evaluator.limit(index, time);
+        let size = assembly.stuck_compliance[(line, line)] * evaluator.limit(index, time).largest();
         let mut released = false;
         for torque in [holding.torque[line], -holding.torque[line]] {
-            mode.set_friction(equations, index, FrictionMode::sliding(-torque), state);
+            let slides = FrictionMode::sliding(-torque);
+            if equations.frictions[index].never_slides(slides) {
+                continue;
+            }
+            mode.set_friction(equations, index, slides, state);
             if accelerates(equations, mode, index, size, time, end, state, overrides) {
                 released = true;
                 break;
@@ -120,7 +116,7 @@ fn weakest(
             continue;
         }
         let limit = evaluator.limit(*index, time);
-        let share = if torque[line] == 0.0 { 0.0 } else { torque[line].abs() / limit.max(0.0) };
+        let share = limit.use_by(torque[line]);
         // Ties go to the first in the file: a later one must be clearly larger.
         if best.is_none_or(|(_, largest)| share > largest * (1.0 + 1e-12)) {
             best = Some((line, share));
@@ -174,7 +170,28 @@ fn tell(
 ) {
     for (index, (old, new)) in before.iter().zip(&mode.frictions).enumerate() {
         let name = &equations.frictions[index].name;
+        let clutch = match equations.frictions[index].owner {
+            Owner::Clutch(place) => equations.model.scenario.clutches.get(place),
+            _ => None,
+        };
         let (kind, text) = match (old, new) {
+            (FrictionMode::Stuck, FrictionMode::Forward | FrictionMode::Backward)
+            | (FrictionMode::Forward, FrictionMode::Backward)
+            | (FrictionMode::Backward, FrictionMode::Forward)
+                if clutch.is_some_and(|clutch| clutch.runs_free(new.direction())) =>
+            {
+                (EventKind::Sliding, format!("`{name}` runs free"))
+            }
+            (FrictionMode::Stuck, FrictionMode::Forward | FrictionMode::Backward)
+                if clutch.is_some() =>
+            {
+                (EventKind::Sliding, format!("`{name}` begins to slip"))
+            }
+            (FrictionMode::Forward | FrictionMode::Backward, FrictionMode::Stuck)
+                if clutch.is_some() =>
+            {
+                (EventKind::Stuck, format!("`{name}` locks"))
+            }
             (FrictionMode::Stuck, FrictionMode::Forward | FrictionMode::Backward) => {
                 (EventKind::Sliding, format!("`{name}` begins to slide"))
             }

@@ -65,7 +65,8 @@ impl Run<'_, '_> {
         if law.piece_follows_signals() {
             let input =
                 mode::input(self.equations, term_of, self.time, &self.state, &self.overrides);
-            let parameters = mode::parameters(self.equations, term_of, self.time, &self.overrides);
+            let parameters =
+                mode::parameters(self.equations, term_of, self.time, &self.state, &self.overrides);
             let piece = law.piece(input, parameters);
             if piece.abs_diff(self.mode.pieces[term]) > 1 {
                 self.mode.pieces[term] = piece;
@@ -125,6 +126,8 @@ impl Run<'_, '_> {
             }
             Guard::Windup(index) => self.mode.held[index] = !self.mode.held[index],
             Guard::Track(index) => self.leave_limit(index, end),
+            Guard::Slew(index) => self.turn_slewing(index),
+            Guard::PitchEnd(index) => self.turn_pitch(index),
             Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..) => {}
         }
     }
@@ -132,6 +135,7 @@ impl Run<'_, '_> {
     /// Settles what follows from another piece of a law.
     fn enter_piece(&mut self, term: usize, end: f64) {
         self.catch_up(term);
+        self.mode.meet_limits(self.equations, term, &self.state);
         self.mode.judge_controllers(self.equations, self.time, &self.state, &self.overrides);
         self.slides_at_limit(term, end);
     }
@@ -216,6 +220,10 @@ impl Run<'_, '_> {
             Some(Owner::Motor(motor)) => scenario.motors[motor].name.clone(),
             Some(Owner::Load(load)) => scenario.loads[load].name.clone(),
             Some(Owner::Brake(brake)) => scenario.brakes[brake].name.clone(),
+            Some(Owner::Shaft(shaft)) => scenario.shafts[shaft].name.clone(),
+            Some(Owner::FluidCoupling(place)) => scenario.fluid_couplings[place].name.clone(),
+            Some(Owner::GearPair(pair)) => scenario.gear_pairs[pair].name.clone(),
+            Some(Owner::Clutch(clutch)) => scenario.clutches[clutch].name.clone(),
             Some(Owner::Magnet(magnet)) => equations.model.magnets[magnet].name.clone(),
             None => equations
                 .frictions
@@ -245,6 +253,19 @@ impl Run<'_, '_> {
                     scenario.motors[equations.controllers[index].motor].name
                 )]
             }
+            Guard::PitchEnd(index) => {
+                let load = &scenario.loads[equations.pitches[index].load];
+                vec![format!("the pitch loop of `{}`", load.name)]
+            }
+            Guard::Slew(index) => match equations.followers[index].owner {
+                Owner::Motor(motor) => {
+                    vec![format!("the ramp limit of `{}`", scenario.motors[motor].name)]
+                }
+                Owner::Load(load) => {
+                    vec![format!("the rate limit of `{}`", scenario.loads[load].name)]
+                }
+                _ => Vec::new(),
+            },
             Guard::Condition(_) | Guard::ConditionLost(_) | Guard::Slip(..) => Vec::new(),
         }
     }
@@ -311,8 +332,12 @@ impl Run<'_, '_> {
         }
         // Laws over an angle: a sixth of a period at the working speed.
         for term in &self.equations.terms {
-            if let Shape::Law(law) = &term.shape {
-                let Some(order) = law.turn_order() else { continue };
+            let order = match &term.shape {
+                Shape::Law(law) => law.turn_order(),
+                Shape::Pair(law, _) => law.turn_order(),
+                Shape::Linear | Shape::Products(_) | Shape::Warm(..) => None,
+            };
+            if let Some(order) = order {
                 let fastest =
                     self.equations.model.scales.body_speed.iter().fold(0.0_f64, |a, b| a.max(*b));
                 cap = cap.min(TAU / (6.0 * order * fastest));

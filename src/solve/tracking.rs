@@ -4,8 +4,9 @@
 //! slowly than the integral would grow, neither holding it nor letting it run is right: held, the
 //! command drops below the limit at once; let run, it rises above it at once. Between the two lies
 //! the motion of Filippov (*Differential Equations with Discontinuous Righthand Sides*, 1988):
-//! the command stays at the limit, `I = limit - gain*e`. The integral itself changes nothing
-//! meanwhile, so it is only set when the sliding ends.
+//! the command stays at the limit, `I = limit - gain*e - feed_forward`, where the limit may move
+//! with the speed. The integral itself changes nothing meanwhile, so it is only set when the
+//! sliding ends.
 
 use super::guards::{self, Guard};
 use super::run::Run;
@@ -38,10 +39,9 @@ fn pushes(
     let term = &equations.terms[integral];
     let Target::State(_, growth) = term.target else { return None };
     let error = guards::controller_error(evaluator, integral, state, frame);
-    let reference = term.offset.map_or(0.0, |(factor, slot)| {
-        let bank = &equations.bank;
-        factor * bank.slope_in(slot, frame.time, assembly.start, evaluator.overrides)
-    });
+    let drift =
+        |slot| equations.bank.slope_in(slot, frame.time, assembly.start, evaluator.overrides);
+    let reference = controller.reference.map_or(0.0, drift);
     let speed: f64 = term
         .input
         .iter()
@@ -60,7 +60,10 @@ fn pushes(
         })
         .sum();
     let side = side(mode, controller);
-    let held = side * controller.gain * (reference + speed);
+    // `speed` is that of the error: the body's with the other sign.
+    let edge = controller.edge_slope(equations, usize::from(side > 0.0), state) * -speed;
+    let own = controller.gain * (reference + speed) + drift(controller.feed_forward);
+    let held = side * (own - edge);
     let size = growth * term.input_size;
     Some([(held + side * growth * error) / size, -held / size])
 }
@@ -125,7 +128,8 @@ impl Run<'_, '_> {
                 &self.state,
                 &self.overrides,
             );
-            let limit = side(&self.mode, controller) * controller.limit;
+            let upper = side(&self.mode, controller) > 0.0;
+            let limit = controller.edge(equations, usize::from(upper), &self.state);
             self.state[place] += (limit - command) / equations.scale[place];
         }
     }

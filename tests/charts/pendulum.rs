@@ -193,6 +193,7 @@ impl Run {
             requirements: Vec::new(),
             energy: Energy::default(),
             motors: Vec::new(),
+            clutches: Vec::new(),
             warnings: Vec::new(),
             solver: SolverWork::default(),
             events,

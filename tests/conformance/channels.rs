@@ -9,7 +9,7 @@ use serde_json::Value;
 /// Unit of a channel by the part of its name behind the dot, as documented.
 const UNITS: [(&str, &[&str]); 7] = [
     ("rad/s", &["speed", "slip_speed"]),
-    ("rad", &["angle", "twist", "load_angle", "phase"]),
+    ("rad", &["angle", "twist", "load_angle", "phase", "pitch"]),
     (
         "N*m",
         &[
@@ -36,6 +36,7 @@ const UNITS: [(&str, &[&str]); 7] = [
         ],
     ),
     ("m/s", &["flow"]),
+    ("A", &["current"]),
     (
         "1",
         &[
@@ -45,6 +46,7 @@ const UNITS: [(&str, &[&str]); 7] = [
             "short_of_peak",
             "tip_speed_ratio",
             "power_coefficient",
+            "advance_ratio",
         ],
     ),
 ];

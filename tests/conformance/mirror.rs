@@ -20,10 +20,11 @@ enum Turn {
 }
 
 /// What is turned round in a train; `*` stands for any name or place in a list.
-const TURNED: [(&str, Turn); 10] = [
+const TURNED: [(&str, Turn); 11] = [
     ("bodies.*.speed", Turn::Sign),
     ("motors.*.reversed", Turn::Flag),
     ("loads.*.reversed", Turn::Flag),
+    ("overrunning_clutches.*.reversed", Turn::Flag),
     ("magnetic_gears.*.initial_load_angle", Turn::Sign),
     ("magnetic_gears.*.harmonics.*.phase", Turn::Sign),
     ("magnetic_gears.*.cogging.*.phase", Turn::Sign),
@@ -130,6 +131,8 @@ fn columns(text: &str) -> Vec<(String, Vec<f64>)> {
 fn sign(head: &str) -> Option<f64> {
     let unit = head.rsplit_once(" [").map_or("", |(_, unit)| unit.trim_end_matches(']'));
     match unit {
+        // Blades are pitched alike either way.
+        "rad" if head.contains(".pitch ") => Some(1.0),
         "rad/s" | "rad" | "N*m" => Some(-1.0),
         "s" | "W" | "m/s" => Some(1.0),
         _ if head.contains(".net_slips ") => Some(-1.0),

@@ -99,7 +99,15 @@ fn a_propeller_follows_its_lines_as_the_ship_gathers_way_and_reverses() {
     // J from -0.75 to 1.5 at 2 turns a second: lines, held outside.
     let law = "advance: { ramp: { start: 0 s, end: 3 s, from: -6 m/s, to: 12 m/s } }, \
                torque_coefficient: { points: [[0, 0.06], [0.5, 0.05], [1, 0.01]] }";
-    let series = run_well(&screw(3.0, 0.125, 1e15, 2.0 * TAU, law)).series();
+    let outcome = run_well(&screw(3.0, 0.125, 1e15, 2.0 * TAU, law));
+    // J = advance/(n D) by its definition, from -0.75 to 1.5; the data end at 0 and 1.
+    let warnings = outcome.at(&["warnings"]).to_string();
+    assert!(warnings.contains("runs from -0.75 to 1.5"), "{warnings}");
+    assert!(warnings.contains("from 0 to 1"), "{warnings}");
+    let series = outcome.series();
+    for (time, ratio) in series.column("time").iter().zip(series.column("screw.advance_ratio")) {
+        near(ratio, (-6.0 + 6.0 * time) / 8.0, 1e-12);
+    }
     let value = |j: f64| match j {
         j if j < 0.0 => 0.06,
         j if j < 0.5 => 0.06 - 0.02 * j,
@@ -130,6 +138,10 @@ fn a_propeller_driven_through_rest_under_way_passes_all_its_lines() {
     let series = outcome.series();
     let speeds = series.column("shaft.speed");
     assert!(speeds.first().unwrap() > &0.0 && speeds.last().unwrap() < &-5.0);
+    let warnings = outcome.at(&["warnings"]).to_string();
+    assert!(warnings.contains("turns astern at times"), "{warnings}");
+    // Near standstill the ratio grows beyond all bounds; the channel ends at 100.
+    near(outcome.channel("screw.advance_ratio", "max"), 100.0, 1e-12);
     for (speed, torque) in speeds.iter().zip(series.column("screw.torque")) {
         let turns = speed / TAU;
         let ratio = 6.0 / (turns * 4.0);

@@ -8,11 +8,16 @@
 #![allow(clippy::unwrap_used, clippy::cast_precision_loss)]
 
 mod checking;
+mod clutches;
 mod commands;
 mod convergence;
+mod drives;
+mod elastic;
 mod endings;
 mod energy;
 mod equal_area;
+mod everyday;
+mod fluid;
 mod friction;
 mod gears;
 mod helper;
@@ -27,6 +32,7 @@ mod motors;
 mod oscillator;
 mod output;
 mod pendulum;
+mod pitch;
 mod protections;
 mod signals;
 mod slipping;

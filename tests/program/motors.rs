@@ -213,3 +213,23 @@ fn a_scale_is_refused() {
         near(series.at("motor.torque", 0.75), 0.0, 1e-300);
     }
 }
+
+// Chapman, Electric Machinery Fundamentals, example 7-5 (inputs read, figures by the exact circuit):
+// 144.52765992 A at standstill, 18.8919485451 A at a slip of 2.2 %; in proportion to the voltage.
+#[test]
+fn the_current_is_that_of_the_circuit_and_of_the_fluxes_at_rest() {
+    for (slip, current) in [(1.0, 144.52765992), (0.022, 18.8919485451)] {
+        let speed = SYNCHRONOUS * (1.0 - slip);
+        let scenario = machine(1.0, 0.5, 1e12, speed, ", voltage: 80 %", "");
+        same(run_well(&scenario).series().at("motor.current", 0.5), 0.8 * current, 1e-10);
+        // The direct current in the fluxes is gone after three seconds; opened, no current is left.
+        let law = ", transient: true, connected: { step: { at: 4 s, from: 1, to: 0 } }";
+        let series = run_well(&machine(5.0, 0.5, 1e12, speed, law, "")).series();
+        same(series.at("motor.current", 3.5), current, 1e-6);
+        near(series.at("motor.current", 4.5), 0.0, 1e-300);
+        let law = ", connected: { step: { at: 0.5 s, from: 1, to: 0 } }";
+        let series = run_well(&machine(1.0, 0.25, 1e12, speed, law, "")).series();
+        same(series.at("motor.current", 0.25), current, 1e-10);
+        near(series.at("motor.current", 0.75), 0.0, 1e-300);
+    }
+}

@@ -199,3 +199,70 @@ fn a_rotor_that_runs_through_its_points_stops_at_each_of_them() {
     assert!(fine.number(&["energy", "residual_share"]) < 1e-8);
     assert!(fine.number(&["solver", "events"]) > 8.0, "corners are located");
 }
+
+/// Speeds in rpm at which the generator of the 5-MW reference turbine is read.
+pub const TURNS: [f64; 7] = [600.0, 770.5, 1000.0, 1136.498, 1161.963, 1250.0, 1400.0];
+
+/// The generator of the 5-MW reference turbine on bodies too heavy to change their speed.
+pub fn reference_generator(coefficient: f64) -> String {
+    let mut bodies = String::new();
+    let mut motors = String::new();
+    for (place, turns) in TURNS.into_iter().enumerate() {
+        bodies += &format!("  shaft_{place}: {{ inertia: 1e15 kg*m2, speed: {turns} rpm }}\n");
+        motors += &format!(
+            "  generator_{place}: {{ body: shaft_{place}, law: {{ optimal_power: {{ coefficient: {coefficient} N*m/rpm2, \
+             cut_in: {{ from: 670 rpm, to: 871 rpm }}, rated_speed: 1161.963 rpm, rated_power: 5.2966102 MW, \
+             transition_slip: 10 % }} }} }}\n"
+        );
+    }
+    format!("{}bodies:\n{bodies}motors:\n{motors}", head(1.0, 0.5, 1e-8))
+}
+
+// NREL/TP-500-38060 (2009), section 7 (regions 1 1/2 to 3; read in data files that cite it): no torque
+// up to 670 rpm, straight to the square law at 871 rpm, 0.0255764 N*m/rpm2, from 1136.498 rpm on the
+// line of a slip of 10 % to 43 528.84 N*m at 1161.963 rpm, then 5.2966102 MW.
+#[test]
+fn the_generator_of_the_reference_turbine_has_its_regions() {
+    let k = 0.0255764;
+    let series = run_well(&reference_generator(k)).series();
+    let power = 5.2966102e6 * 30.0 / PI;
+    for (place, torque, within) in [
+        (0, 0.0, 1e-12),
+        (1, 0.5 * k * 871.0 * 871.0, 1e-10),
+        (2, k * 1e6, 1e-10),
+        (3, 33035.2, 5e-6),
+        (4, 43528.84, 1e-7),
+        (5, power / 1250.0, 1e-10),
+        (6, power / 1400.0, 1e-10),
+    ] {
+        let found = series.at(&format!("generator_{place}.torque"), 0.0);
+        assert!((found + torque).abs() <= within * torque.max(1.0), "{}: {found}", TURNS[place]);
+    }
+}
+
+// A rotor that is driven by a constant torque through all regions: J dw/dt = M - T(w). Independent
+// integration of the regions as written in the report (SciPy 1.x, DOP853, rtol 1e-12, atol 1e-9).
+#[test]
+fn a_run_through_all_regions_agrees_with_an_independent_integration() {
+    for (above, expected) in [("constant_power", POWER), ("constant_torque", TORQUE)] {
+        let scenario = format!(
+            "{}bodies:\n  shaft: {{ inertia: 5000 kg*m2, speed: 60 rad/s }}\n\
+             motors:\n  generator: {{ body: shaft, law: {{ optimal_power: {{ coefficient: 0.0255764 N*m/rpm2, \
+             cut_in: {{ from: 670 rpm, to: 871 rpm }}, rated_speed: 1161.963 rpm, rated_torque: 43528.84 N*m, \
+             above_rated: {above} }} }} }}\n\
+             loads:\n  wind: {{ body: shaft, law: {{ prescribed: {{ torque: 50 kN*m }} }} }}\n",
+            head(20.0, 5.0, 1e-11),
+        );
+        let series = run_well(&scenario).series();
+        for (time, speed) in [5.0, 10.0, 15.0, 20.0].into_iter().zip(expected) {
+            same(series.at("shaft.speed", time), speed, 1e-9);
+        }
+    }
+}
+
+/// Speeds after 5, 10, 15 and 20 s, rad/s.
+const POWER: [f64; 4] =
+    [98.83873905614276, 120.13397642565435, 127.91688237451619, 137.9829903620129];
+/// Speeds after 5, 10, 15 and 20 s, rad/s.
+const TORQUE: [f64; 4] =
+    [98.83873905614276, 120.13397642565435, 127.06150326427453, 133.53266326427453];

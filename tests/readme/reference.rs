@@ -164,7 +164,7 @@ fn reference() -> String {
 }
 
 /// Every dimension, in the order of the program.
-const DIMENSIONS: [Dimension; 26] = [
+const DIMENSIONS: [Dimension; 27] = [
     Dimension::One,
     Dimension::Time,
     Dimension::Angle,
@@ -174,6 +174,7 @@ const DIMENSIONS: [Dimension; 26] = [
     Dimension::Inertia,
     Dimension::Stiffness,
     Dimension::Damping,
+    Dimension::TorqueRate,
     Dimension::TorquePerSpeedSquared,
     Dimension::Power,
     Dimension::Energy,

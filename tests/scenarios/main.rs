@@ -6,3 +6,4 @@ mod runner;
 mod sources;
 mod stories;
 mod studies;
+mod switching;

@@ -24,7 +24,7 @@ struct Outcome {
 /// Recorded figures are held to this, relative.
 const RECORDED: f64 = 0.01;
 
-const OUTCOMES: [Outcome; 14] = [
+const OUTCOMES: [Outcome; 19] = [
     Outcome {
         stem: "conveyor_stop",
         status: 0,
@@ -35,6 +35,15 @@ const OUTCOMES: [Outcome; 14] = [
             ("gears/gear/peak_pull_out_share", 0.733),
             ("channels/slow_shaft.torque/min", -834.0),
         ],
+        failing: &[],
+    },
+    Outcome {
+        stem: "crusher_jam",
+        status: 0,
+        gear: "gear",
+        slips: 0..=0,
+        state: "synchronous",
+        figures: &[("clutches/limiter/heat", 19_400.0)],
         failing: &[],
     },
     Outcome {
@@ -62,6 +71,15 @@ const OUTCOMES: [Outcome; 14] = [
             ("channels/pinion_shaft.torque/max", 6332.0),
         ],
         failing: &["no_slip", "no_overspeed", "pinion_shaft_peak"],
+    },
+    Outcome {
+        stem: "inclined_conveyor",
+        status: 0,
+        gear: "gear",
+        slips: 0..=0,
+        state: "synchronous",
+        figures: &[("gears/gear/peak_pull_out_share", 0.793)],
+        failing: &[],
     },
     Outcome {
         stem: "kiln_train",
@@ -144,6 +162,18 @@ const OUTCOMES: [Outcome; 14] = [
         failing: &[],
     },
     Outcome {
+        stem: "star_delta",
+        status: 1,
+        gear: "gear",
+        slips: 85..=100,
+        state: "slipping",
+        figures: &[
+            ("requirements/star_share/value", 0.3396),
+            ("channels/fan_motor.torque/min", -528.9),
+        ],
+        failing: &["no_slip", "gear_share", "up_to_speed"],
+    },
+    Outcome {
         stem: "test_bench",
         status: 0,
         gear: "coupling",
@@ -180,6 +210,18 @@ const OUTCOMES: [Outcome; 14] = [
         failing: &[],
     },
     Outcome {
+        stem: "voltage_dip",
+        status: 1,
+        gear: "gear",
+        slips: 62..=78,
+        state: "slipping",
+        figures: &[
+            ("channels/line_motor.torque/min", -641.3),
+            ("channels/line_motor.torque/max", 347.9),
+        ],
+        failing: &["no_slip", "gear_share", "back_at_speed"],
+    },
+    Outcome {
         stem: "wind_gust",
         status: 0,
         gear: "gear",
@@ -188,6 +230,19 @@ const OUTCOMES: [Outcome; 14] = [
         figures: &[
             ("gears/gear/peak_pull_out_share", 0.7912),
             ("channels/rotor.speed/max", 2.1222),
+        ],
+        failing: &[],
+    },
+    Outcome {
+        stem: "wind_pitch",
+        status: 0,
+        gear: "gear",
+        slips: 0..=0,
+        state: "synchronous",
+        figures: &[
+            ("gears/gear/peak_pull_out_share", 0.7490),
+            ("channels/rotor.speed/max", 1.9930),
+            ("channels/blades.pitch/max", 0.2673),
         ],
         failing: &[],
     },

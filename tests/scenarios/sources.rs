@@ -5,7 +5,7 @@ use lodeshaft::scenario::{Loaded, load};
 use lodeshaft::tree::Node;
 
 /// Sections whose things carry figures.
-const WITH_FIGURES: [&str; 9] = [
+const WITH_FIGURES: [&str; 12] = [
     "bodies",
     "shafts",
     "magnetic_gears",
@@ -15,6 +15,9 @@ const WITH_FIGURES: [&str; 9] = [
     "motors",
     "loads",
     "brakes",
+    "overrunning_clutches",
+    "torque_limiters",
+    "fluid_couplings",
 ];
 
 fn loaded(stem: &str) -> Loaded {

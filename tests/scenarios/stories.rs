@@ -83,6 +83,54 @@ fn conveyor_slips_when_the_same_brake_closes_at_once() {
 }
 
 #[test]
+fn jam_slips_the_limiter_for_as_long_as_rigid_bodies_say() {
+    let found = run("crusher_jam", &[]);
+    let clutch = |key: &str| found.number(&format!("clutches/limiter/{key}"));
+    assert_eq!(clutch("slips").to_bits(), 1.0_f64.to_bits());
+    // Closed form: while it slips it passes 1000 N*m on, against 700 N*m at 267 rpm in proportion to
+    // the speed. The jam (6 kN*m from 2.005 s on, by the middle of its ramp) stops 12 kg*m2 on a way
+    // of w^2/(2*(6000 + 700 - 1000)/12); let go at 2.508 s, 12 w' = 1000 - 25.04 w until w is the
+    // drive's speed again: that of 1000 N*m on the motor, with a slip in proportion to its torque.
+    let rated = 22_000.0 / (1465.0 * RPM);
+    let drive = (1500.0 - 35.0 * 1000.0 / 5.5 / rated) / 5.5 * RPM;
+    let decay = 700.0 / (267.0 * RPM) / 12.0;
+    let end = 1000.0 / (12.0 * decay);
+    let again = -(1.0 - drive / end).ln() / decay;
+    let stopping = drive * drive / (2.0 * 5700.0 / 12.0);
+    let starting = end * again - end / decay * (1.0 - (-decay * again).exp());
+    let way = drive * (0.503 + again) - stopping - starting;
+    same(clutch("heat"), 1000.0 * way, 0.03);
+    // The blow on the gear: above the limiter's torque, below the pull-out.
+    let share = found.number("gears/gear/peak_pull_out_share");
+    assert!((1000.0 / 1500.0..1.0).contains(&share), "{share}");
+}
+
+#[test]
+fn a_gear_without_limiter_slips_in_the_jam_and_stays_behind() {
+    let bolted = run("crusher_jam", &["torque_limiters.limiter.torque=20 kN*m"]);
+    assert!(bolted.slips("gear") > 20);
+    assert_eq!(bolted.state("gear"), "slipping");
+    assert!(bolted.number("clutches/limiter/heat") < 1.0);
+    assert!(bolted.last("crusher_rotor.speed").abs() < 0.5 * 27.0);
+}
+
+#[test]
+fn belt_on_a_slope_is_held_by_backstop_and_idlers() {
+    let found = run("inclined_conveyor", &[]);
+    // Closed form: statics of the drum at rest; the gear passes on 31/3 of what the pump wheel stirs up.
+    let stirred = found.last("start_coupling.torque") * 31.0 / 3.0;
+    let held = found.last("backstop.torque") + found.last("idlers.torque");
+    same(held + stirred, 900.0, 0.01);
+    // Closed form: with the turbine wheel at rest 0.3 w' = -0.012 w^2, so 1/w grows by 0.04 each second.
+    let before = run("inclined_conveyor", &["duration=9 s"]);
+    let slowed = 1.0 / before.last("motor_rotor.speed") + 0.04;
+    same(found.last("motor_rotor.speed"), 1.0 / slowed, 1e-3);
+    // In steady running the coupling carries the load over the ratio.
+    let running = run("inclined_conveyor", &["duration=5.9 s"]);
+    same(running.last("start_coupling.torque"), 1200.0 * 3.0 / 31.0, 1e-3);
+}
+
+#[test]
 fn hoist_holds_with_a_weaker_brake_on_the_motor() {
     let weak = run(
         "hoist_stop",
@@ -143,6 +191,24 @@ fn gust_spares_the_gear_because_of_the_torque_limit() {
     assert!(
         free.number("channels/rotor.speed/max") < held.number("channels/rotor.speed/max"),
         "the limit costs overspeed"
+    );
+}
+
+#[test]
+fn pitched_turbine_comes_back_to_its_speed_and_slow_blades_cost_overspeed() {
+    let found = run("wind_pitch", &[]);
+    // Closed form: the speed asked for over the gear's ratio of 10.25, the rated torque, their power.
+    let (asked, rated) = (186.0 * RPM, 2e6 / (183.0 * RPM));
+    same(found.last("rotor.speed"), asked / 10.25, 3e-4);
+    same(found.last("generator.power"), -rated * asked, 3e-4);
+    same(found.last("blades.power"), rated * asked, 1e-3);
+    let slow = run("wind_pitch", &["loads.blades.law.axial_rotor.pitch_loop.rate=3 deg/s"]);
+    let speed = "channels/rotor.speed/max";
+    assert!(slow.number(speed) > 1.05 * found.number(speed));
+    same(
+        slow.number("gears/gear/peak_pull_out_share"),
+        found.number("gears/gear/peak_pull_out_share"),
+        0.02,
     );
 }
 

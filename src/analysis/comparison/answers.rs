@@ -1,6 +1,8 @@
 //! The figures of several runs side by side.
 
-use crate::results::{ChannelResult, GearResult, MotorResult, RequirementResult, RunResult};
+use crate::results::{
+    ChannelResult, ClutchResult, GearResult, MotorResult, RequirementResult, RunResult,
+};
 
 /// A figure of one run.
 #[derive(Clone, Debug, PartialEq)]
@@ -113,6 +115,9 @@ pub fn figures(results: &[&RunResult]) -> Vec<Figure> {
     for name in names(results, |it| it.motors.iter().map(|one| one.name.as_str()).collect()) {
         motor(name, &mut put);
     }
+    for name in names(results, |it| it.clutches.iter().map(|one| one.name.as_str()).collect()) {
+        clutch(name, &mut put);
+    }
     for name in names(results, |it| it.channels.iter().map(|one| one.name.as_str()).collect()) {
         channel(results, name, &mut put);
     }
@@ -224,6 +229,22 @@ fn motor(name: &str, put: &mut dyn FnMut(Question<'_>)) {
     };
     of("run_up_time", "95 % of synchronous speed", "s", &|it| it.run_up_time);
     of("rotor_heat", "rotor heat", "J", &|it| it.rotor_heat);
+}
+
+fn clutch(name: &str, put: &mut dyn FnMut(Question<'_>)) {
+    let mut of = |key: &str, what, unit, ask: &dyn Fn(&ClutchResult) -> f64| {
+        put(Question {
+            path: format!("clutches.{name}.{key}"),
+            of: name.to_owned(),
+            what,
+            channel: String::new(),
+            unit,
+            size: 0.0,
+            ask: &|it| Some(Found::Number(ask(it.clutches.iter().find(|one| one.name == name)?))),
+        });
+    };
+    of("slips", "times it began to slip", "1", &|it| f64::from(it.slips));
+    of("heat", "heat", "J", &|it| it.heat);
 }
 
 fn channel(results: &[&RunResult], name: &str, put: &mut dyn FnMut(Question<'_>)) {

@@ -151,16 +151,20 @@ fn channel<'r>(found: &'r RunResult, name: &str) -> Option<&'r ChannelResult> {
     found.channels.iter().find(|channel| channel.name == name)
 }
 
-/// Every motor, load and brake with its torque channel.
+/// Every motor, load, brake and clutch with its torque channel.
 fn actors(equations: &Equations) -> Vec<(Owner, String)> {
     let scenario = &equations.model.scenario;
     let motors = scenario.motors.iter().enumerate();
     let loads = scenario.loads.iter().enumerate();
     let brakes = scenario.brakes.iter().enumerate();
+    let clutches = scenario.clutches.iter().enumerate();
+    let fluids = scenario.fluid_couplings.iter().enumerate();
     motors
         .map(|(place, motor)| (Owner::Motor(place), motor.name.clone()))
         .chain(loads.map(|(place, load)| (Owner::Load(place), load.name.clone())))
         .chain(brakes.map(|(place, brake)| (Owner::Brake(place), brake.name.clone())))
+        .chain(clutches.map(|(place, clutch)| (Owner::Clutch(place), clutch.name.clone())))
+        .chain(fluids.map(|(place, it)| (Owner::FluidCoupling(place), it.name.clone())))
         .collect()
 }
 

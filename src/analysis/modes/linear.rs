@@ -9,6 +9,7 @@
 
 use crate::analysis::linear_point::LinearPoint;
 use crate::component::law::Law;
+use crate::component::pair_law::PairLaw;
 use crate::equations::assembly::{Active, Assembly, Function, assemble};
 use crate::equations::frame::Evaluator;
 use crate::equations::linearise::{MagnetSlope, jacobian};
@@ -35,6 +36,8 @@ pub struct LinearTrain {
     pub free: DMatrix<f64>,
     /// Stiffness of each magnet over its phase, N*m/rad.
     pub magnet_stiffness: Vec<f64>,
+    /// Stiffness of each shaft at its twist, N*m/rad.
+    pub shaft_stiffness: Vec<f64>,
 }
 
 /// Linearises a train at a point.
@@ -70,10 +73,23 @@ pub fn linearise(equations: &Equations, point: &LinearPoint, load: MagnetLoad) -
             {
                 add(&mut full, active, -law.slope(input, [0.0; 2], *piece));
             }
+            // A crank that turns passes all angles: what hangs on the angle counts by its mean.
+            Function::Pair(PairLaw::Reciprocating(law), second)
+                if turns(equations, active, &point.state) =>
+            {
+                add(&mut full, active, -law.slopes(input, dot(second, &point.state))[0]);
+            }
             _ => {}
         }
     }
-    reduce(equations, &assembly, &full, magnet_stiffness)
+    let shafts = equations.model.shafts.iter().zip(&equations.twist_state);
+    let shaft_stiffness = shafts
+        .map(|(shaft, place)| match (&shaft.curve, place) {
+            (Some(curve), Some(place)) => curve.at(point.state[*place] * equations.scale[*place]).1,
+            _ => shaft.stiffness,
+        })
+        .collect();
+    reduce(equations, &assembly, &full, [magnet_stiffness, shaft_stiffness])
 }
 
 fn add(matrix: &mut DMatrix<f64>, active: &Active, slope: f64) {
@@ -104,7 +120,7 @@ fn reduce(
     equations: &Equations,
     assembly: &Assembly,
     full: &DMatrix<f64>,
-    magnet_stiffness: Vec<f64>,
+    [magnet_stiffness, shaft_stiffness]: [Vec<f64>; 2],
 ) -> LinearTrain {
     let (size, speeds) = (equations.size, equations.speeds);
     // States beyond the speeds that act on nothing, again and again until none is left.
@@ -136,7 +152,7 @@ fn reduce(
     let free = DMatrix::from_fn(speeds, free_scaled.ncols(), |row, column| {
         scale[row] * free_scaled[(row, column)]
     });
-    LinearTrain { matrix, expand, free, magnet_stiffness }
+    LinearTrain { matrix, expand, free, magnet_stiffness, shaft_stiffness }
 }
 
 /// Orthonormal scaled speeds that friction at rest leaves free.

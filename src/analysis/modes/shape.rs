@@ -4,6 +4,7 @@ use super::linear::LinearTrain;
 use crate::analysis::linear_point::LinearPoint;
 use crate::equations::assembly::{Active, Function, assemble};
 use crate::equations::frame::Evaluator;
+use crate::equations::linearise::pair_form;
 use crate::equations::{Equations, Owner, Shape, StateRow, Target};
 use nalgebra::{Complex, DMatrix, DVector};
 use std::collections::BTreeMap;
@@ -127,10 +128,11 @@ fn elastic(
     vector: &DVector<Complex<f64>>,
 ) -> Vec<Named> {
     let model = &equations.model;
-    let shafts = model.shafts.iter().zip(&equations.twist_state).zip(&model.scenario.shafts);
+    let shafts =
+        train.shaft_stiffness.iter().zip(&equations.twist_state).zip(&model.scenario.shafts);
     let mut list: Vec<Named> = shafts
-        .filter_map(|((shaft, place), typed)| {
-            place.map(|place| (typed.name.clone(), shaft.stiffness * vector[place].norm_sqr()))
+        .filter_map(|((stiffness, place), typed)| {
+            place.map(|place| (typed.name.clone(), stiffness * vector[place].norm_sqr()))
         })
         .collect();
     for (index, place) in equations.phase_state.iter().enumerate() {
@@ -198,15 +200,31 @@ impl DampingSources {
                 });
                 continue;
             }
+            if let Some(form) = pair_form(active, &point.state) {
+                let strength = evaluator.strength(&active.factor, point.time);
+                let speeds = form.into_iter().filter(|(place, _)| *place < equations.speeds);
+                torques.push(Torque {
+                    name: name(term.owner),
+                    direction: model.reduction.dense(direction),
+                    form: speeds.map(|(place, slope)| (place, slope * strength)).collect(),
+                });
+                continue;
+            }
             let (input, _) = evaluator.law(active, point.time, &point.state);
-            let parameters = term.parameters.map(|slot| slot.map_or(0.0, signal));
+            let parameters = crate::equations::parameters_at(
+                term.parameters,
+                &term.by_state,
+                &point.state,
+                signal,
+            );
             let slope = match (&active.function, &term.shape) {
                 // Magnets and ripple store energy: they take none out.
                 (Function::Law(crate::component::law::Law::Magnet(_), _), _)
                 | (
                     Function::Law(
                         crate::component::law::Law::Cogging { .. }
-                        | crate::component::law::Law::Periodic(_),
+                        | crate::component::law::Law::Periodic(_)
+                        | crate::component::law::Law::Elastic(_),
                         _,
                     ),
                     _,
@@ -216,8 +234,16 @@ impl DampingSources {
                 _ => continue,
             };
             let strength = evaluator.strength(&active.factor, point.time);
+            let slopes = match &active.function {
+                Function::Law(law, piece) => law.parameter_slopes(input, parameters, *piece),
+                _ => [0.0; 2],
+            };
+            let by_state = active.by_state.iter().zip(slopes).flat_map(|(form, slope)| {
+                form.iter().map(move |(place, weight)| (*place, weight * slope * strength))
+            });
+            let form = active.input.iter();
             let form =
-                active.input.iter().map(|(place, weight)| (*place, weight * slope * strength));
+                form.map(|(place, weight)| (*place, weight * slope * strength)).chain(by_state);
             torques.push(Torque {
                 name: name(term.owner),
                 direction: model.reduction.dense(direction),
@@ -279,6 +305,10 @@ fn name_of(equations: &Equations, owner: Owner) -> String {
         Owner::Motor(index) => scenario.motors[index].name.clone(),
         Owner::Load(index) => scenario.loads[index].name.clone(),
         Owner::Brake(index) => scenario.brakes[index].name.clone(),
+        Owner::Shaft(index) => scenario.shafts[index].name.clone(),
+        Owner::FluidCoupling(index) => scenario.fluid_couplings[index].name.clone(),
+        Owner::GearPair(index) => scenario.gear_pairs[index].name.clone(),
+        Owner::Clutch(index) => scenario.clutches[index].name.clone(),
         Owner::Magnet(index) => equations.model.magnets[index].name.clone(),
     }
 }

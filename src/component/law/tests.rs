@@ -7,6 +7,8 @@ use crate::component::load::propeller::TorqueCoefficient;
 use crate::component::magnetic_gear::Harmonic;
 use crate::component::motor::Plate;
 use crate::component::motor::circuit::CircuitFigures;
+use crate::component::motor::optimal_power::{GeneratorFigures, Rated};
+use crate::component::motor::torque_limit::TorqueLimits;
 
 fn rotor(coefficient: PowerCoefficient) -> AxialRotor {
     AxialRotor::new(40.0, 1.225, coefficient)
@@ -69,6 +71,17 @@ fn laws_cut_by_signals_are_smooth_within_a_piece_and_meet_at_its_ends() {
     }
 }
 
+const LIMITS: TorqueLimits =
+    TorqueLimits { torque_limit: 300.0, base_speed: Some(150.0), regeneration: Some([60.0, 5.0]) };
+
+const RATED: Rated =
+    Rated { speed: 80.0, torque: 900.0, transition_slip: 0.1, constant_power: true };
+
+fn generator(cut_in: Option<[f64; 2]>, torque_limit: Option<f64>, rated: Option<Rated>) -> Law {
+    let figures = GeneratorFigures { coefficient: 0.12, torque_limit, cut_in, rated };
+    Law::OptimalPower(OptimalPower::new(&figures))
+}
+
 fn every_law() -> Vec<(&'static str, Law, [f64; 2], f64)> {
     let harmonics = [Harmonic { order: 3, amplitude: 0.04, phase: 0.3 }];
     let plate = Plate {
@@ -96,7 +109,8 @@ fn every_law() -> Vec<(&'static str, Law, [f64; 2], f64)> {
         ("plate", Law::RatingPlate(RatingPlate::new(&plate)), none, 400.0),
         ("plate backward", Law::RatingPlate(RatingPlate::new(&backward)), none, 400.0),
         ("motor curve", Law::MotorCurve(MotorCurve::new(&points)), none, 200.0),
-        ("generator", Law::OptimalPower(OptimalPower::new(0.12, 900.0)), none, 200.0),
+        ("generator", generator(None, Some(900.0), None), none, 200.0),
+        ("rated generator", generator(Some([20.0, 40.0]), None, Some(RATED)), none, 200.0),
         ("square load", Law::PowerLaw(PowerLaw::new(700.0, 28.0, 2.0)), none, 60.0),
         ("cubic load", Law::PowerLaw(PowerLaw::new(700.0, 28.0, 3.0)), none, 60.0),
         ("odd load", Law::PowerLaw(PowerLaw::new(700.0, 28.0, 1.6)), none, 60.0),
@@ -104,6 +118,9 @@ fn every_law() -> Vec<(&'static str, Law, [f64; 2], f64)> {
         ("rotor", Law::AxialRotor(rotor(PowerCoefficient::Formula(DEFAULT))), [11.0, 0.05], 5.0),
         ("beat", Law::Periodic(Periodic::new(&beat)), none, 4.0),
         ("saturation", Law::saturation(3.0), none, 9.0),
+        ("scheduled", Law::Scheduled { halves_at: 0.2 }, [0.05, 0.0], 3.0),
+        ("upper limit", Law::TorqueLimit(TorqueLimit::new(&LIMITS, 1.0)), none, 500.0),
+        ("lower limit", Law::TorqueLimit(TorqueLimit::new(&LIMITS, -1.0)), none, 500.0),
     ]
 }
 
@@ -172,5 +189,38 @@ fn only_laws_from_data_have_a_range_to_warn_of() {
         let warned = matches!(name, "induction" | "motor curve" | "load curve");
         assert_eq!(law.warn_range().is_some(), warned, "{name}");
         assert_eq!(!law.warn_text().is_empty(), warned, "{name}");
+    }
+}
+
+// The derivative over a parameter against a central difference.
+#[test]
+fn every_slope_over_a_parameter_is_the_derivative_too() {
+    let rows = Rows::new(
+        vec![2.0, 6.0, 10.0],
+        vec![0.0, 0.1, 0.25],
+        vec![vec![0.1, 0.08, 0.02], vec![0.45, 0.3, 0.1], vec![0.25, 0.1, -0.1]],
+    );
+    let command = Law::PitchCommand { limits: [0.0, 9.0], halves_at: 0.2 };
+    for (law, x, p) in [
+        (Law::AxialRotor(rotor(PowerCoefficient::Formula(DEFAULT))), 1.7, [11.0, 0.05]),
+        (Law::AxialRotor(rotor(PowerCoefficient::Formula(DEFAULT))), 1.2, [16.0, 0.3]),
+        (Law::AxialRotor(rotor(PowerCoefficient::Rows(rows.clone()))), 1.7, [11.0, 0.03]),
+        (Law::AxialRotor(rotor(PowerCoefficient::Rows(rows))), 2.2, [11.0, 0.21]),
+        (Law::Scheduled { halves_at: 0.2 }, 1.5, [0.1, 0.0]),
+        (command, 1.5, [0.1, 0.3]),
+    ] {
+        let piece = law.piece(x, p);
+        let slopes = law.parameter_slopes(x, p, piece);
+        let turned = matches!(law, Law::AxialRotor(_));
+        for place in (0..2).filter(|place| !turned || *place == 1) {
+            let moved = |by: f64| {
+                let mut p = p;
+                p[place] += by;
+                law.value(x, p, piece)
+            };
+            let difference = (moved(1e-6) - moved(-1e-6)) / 2e-6;
+            let size = difference.abs().max(slopes[place].abs()).max(1e-3);
+            assert!((difference - slopes[place]).abs() < 1e-5 * size, "{law:?} {place}");
+        }
     }
 }

@@ -58,6 +58,15 @@ impl AxialRotor {
         self.scale * flow * self.radius * (slope - coefficient / ratio) / ratio
     }
 
+    /// Derivative of the torque with respect to the pitch, N*m/rad.
+    pub fn pitch_slope(&self, speed: f64, [flow, pitch]: [f64; 2], piece: usize) -> f64 {
+        if flow <= 0.0 {
+            return 0.0;
+        }
+        let ratio = (speed * self.radius / flow).max(SMALLEST_TIP_SPEED_RATIO);
+        self.scale * flow * flow * self.coefficient.pitch_slope(ratio, pitch, piece) / ratio
+    }
+
     /// Tip speed ratio at a speed in rad/s; very large without flow, where nothing hangs on it.
     #[inline]
     pub fn tip_speed_ratio(&self, speed: f64, flow: f64) -> f64 {

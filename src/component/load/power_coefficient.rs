@@ -5,7 +5,8 @@
 //!            z  = 1/(lambda + c8 b) - c9/(b^3 + 1)                    b pitch in degrees
 //! constant   Cp at every tip speed ratio and pitch
 //! points     straight lines through points of lambda and Cp, whatever the pitch
-//! table      straight lines over lambda, cubics over pitch (slopes from the neighbours)
+//! table      straight lines over lambda, cubics over pitch (slopes from the neighbours); inline or
+//!            from a file
 //! ```
 //!
 //! The formula is that of Heier, Grid Integration of Wind Energy Conversion Systems, and of many
@@ -16,6 +17,8 @@
 //! Points and tables hold their last values above their last tip speed ratio; below the first one
 //! Cp goes straight to zero at `lambda = 0`, so that the torque holds. Outside its pitches a table
 //! holds its end columns.
+
+use super::coefficient_file::CoefficientFile;
 
 /// Constants c1 to c10 of the default formula.
 pub const DEFAULT: [f64; 10] = [0.73, 151.0, 0.58, 0.002, 2.14, 13.2, 18.4, -0.02, 0.003, 0.0];
@@ -37,12 +40,36 @@ pub struct Rows {
     ratios: Vec<f64>,
     pitches: Vec<f64>,
     values: Vec<Vec<f64>>,
+    file: Option<CoefficientFile>,
 }
 
 impl Rows {
     /// From rising tip speed ratios, rising pitches (rad) and one row of values for each ratio.
     pub fn new(ratios: Vec<f64>, pitches: Vec<f64>, values: Vec<Vec<f64>>) -> Self {
-        Self { ratios, pitches, values }
+        Self { ratios, pitches, values, file: None }
+    }
+
+    /// Rows that stand in a file: empty until it has been read.
+    pub fn of_file(file: CoefficientFile) -> Self {
+        Self { file: Some(file), ..Self::new(Vec::new(), Vec::new(), Vec::new()) }
+    }
+
+    /// The same rows, with the file that they come from.
+    pub fn from_file(self, file: CoefficientFile) -> Self {
+        Self { file: Some(file), ..self }
+    }
+
+    /// The file that they stand in, if they stand in one.
+    pub fn file(&self) -> Option<&CoefficientFile> {
+        self.file.as_ref()
+    }
+
+    /// Shows every number, in pairs with its tip speed ratio; pitches first.
+    pub fn each(&self, take: &mut dyn FnMut(&[f64; 2])) {
+        self.pitches.iter().for_each(|pitch| take(&[0.0, *pitch]));
+        for (ratio, values) in self.ratios.iter().zip(&self.values) {
+            values.iter().for_each(|value| take(&[*ratio, *value]));
+        }
     }
 
     /// First and last tip speed ratio.
@@ -79,20 +106,41 @@ impl Rows {
         [(before, -left), (low, 1.0 - first - right), (high, first + left), (after, right)]
     }
 
+    /// Derivatives of the weights with respect to the pitch.
+    fn weight_slopes(&self, pitch: f64) -> Weights {
+        let count = self.pitches.len();
+        let above = self.pitches.partition_point(|known| *known <= pitch);
+        if above == 0 || above == count || count < 2 {
+            return [(0, 0.0); 4];
+        }
+        let (low, high) = (above - 1, above);
+        let (before, after) = (low.saturating_sub(1), (high + 1).min(count - 1));
+        let at = |column: usize| self.pitches[column];
+        let width = at(high) - at(low);
+        let u = (pitch - at(low)) / width;
+        let first = 6.0 * u * (1.0 - u) / width;
+        let left = (1.0 - u) * (1.0 - 3.0 * u) / (at(high) - at(before));
+        let right = -u * (2.0 - 3.0 * u) / (at(after) - at(low));
+        [(before, -left), (low, -first - right), (high, first + left), (after, right)]
+    }
+
     /// Value and derivative over the tip speed ratio on the line of `piece`.
     fn at(&self, ratio: f64, pitch: f64, piece: usize) -> (f64, f64) {
-        let weights = self.weights(pitch);
+        self.by_weights(ratio, piece, &self.weights(pitch))
+    }
+
+    fn by_weights(&self, ratio: f64, piece: usize, weights: &Weights) -> (f64, f64) {
         let last = self.ratios.len().saturating_sub(1);
         if piece == 0 {
             let first = self.ratios.first().copied().unwrap_or(1.0);
-            let slope = if first > 0.0 { self.row(0, &weights) / first } else { 0.0 };
+            let slope = if first > 0.0 { self.row(0, weights) / first } else { 0.0 };
             return (slope * ratio, slope);
         }
         if piece > last {
-            return (self.row(last, &weights), 0.0);
+            return (self.row(last, weights), 0.0);
         }
         let (from, to) = (self.ratios[piece - 1], self.ratios[piece]);
-        let (low, high) = (self.row(piece - 1, &weights), self.row(piece, &weights));
+        let (low, high) = (self.row(piece - 1, weights), self.row(piece, weights));
         let slope = (high - low) / (to - from);
         (low + slope * (ratio - from), slope)
     }
@@ -109,6 +157,26 @@ impl PowerCoefficient {
             Self::Formula(constants) => formula(constants, ratio, pitch),
             Self::Constant(value) => (*value, 0.0),
             Self::Rows(rows) => rows.at(ratio, pitch, piece),
+        }
+    }
+
+    /// Derivative with respect to the pitch, 1/rad.
+    pub fn pitch_slope(&self, ratio: f64, pitch: f64, piece: usize) -> f64 {
+        match self {
+            Self::Formula(constants) => formula_over_pitch(constants, ratio, pitch),
+            Self::Constant(_) => 0.0,
+            Self::Rows(rows) => rows.by_weights(ratio, piece, &rows.weight_slopes(pitch)).0,
+        }
+    }
+
+    /// True when the pitch changes anything.
+    pub fn follows_pitch(&self) -> bool {
+        match self {
+            Self::Formula([_, _, c3, c4, _, _, _, c8, c9, _]) => {
+                [c3, c4, c8, c9].iter().any(|constant| **constant != 0.0)
+            }
+            Self::Constant(_) => false,
+            Self::Rows(rows) => rows.pitches.len() > 1,
         }
     }
 
@@ -141,6 +209,30 @@ fn formula(constants: &[f64; 10], ratio: f64, pitch: f64) -> (f64, f64) {
     }
     let blade = c2 * z - bias;
     (decay * blade + c10 * ratio, decay * (c7 * blade - c2) * inverse * inverse + c10)
+}
+
+/// Derivative of the formula with respect to the pitch, 1/rad.
+fn formula_over_pitch(constants: &[f64; 10], ratio: f64, pitch: f64) -> f64 {
+    let [c1, c2, c3, c4, c5, c6, c7, c8, c9, _] = *constants;
+    let degrees = pitch.to_degrees();
+    let reach = ratio + c8 * degrees;
+    if degrees <= 0.0 || reach <= 0.0 {
+        return 0.0;
+    }
+    let (power, power_slope) = if c4 == 0.0 {
+        (0.0, 0.0)
+    } else {
+        (c4 * degrees.powf(c5), c4 * c5 * degrees.powf(c5 - 1.0))
+    };
+    let below = degrees * degrees * degrees + 1.0;
+    let z = 1.0 / reach - c9 / below;
+    let decay = c1 * (-c7 * z).exp();
+    if decay == 0.0 {
+        return 0.0;
+    }
+    let z_slope = -c8 / (reach * reach) + 3.0 * c9 * degrees * degrees / (below * below);
+    let blade = c2 * z - (c3 * degrees + power + c6);
+    decay * (c2 * z_slope - c3 - power_slope - c7 * z_slope * blade) * 1.0_f64.to_degrees()
 }
 
 #[cfg(test)]

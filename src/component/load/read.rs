@@ -1,6 +1,7 @@
 //! How a load is written in a scenario.
 
 use super::periodic::TurnHarmonic;
+use super::pitch::PitchLoop;
 use super::power_coefficient::{DEFAULT, PowerCoefficient};
 use super::propeller::TorqueCoefficient;
 use super::read_coefficients::{power_coefficient, torque_coefficient};
@@ -15,7 +16,7 @@ use crate::tree::{Alternative, Fields, Range};
 const HIGHEST_ORDER: i64 = 10_000;
 
 /// The laws a load may have.
-const LAWS: [Alternative<LoadLaw>; 8] = [
+const LAWS: [Alternative<LoadLaw>; 9] = [
     ("power_law", "Torque*|w/speed|^exponent against the motion.", power_law),
     ("friction", "Dry friction that sticks and slips.", friction),
     ("viscous", "Torque in proportion to the speed.", viscous),
@@ -24,6 +25,7 @@ const LAWS: [Alternative<LoadLaw>; 8] = [
     ("axial_rotor", "Wind or water rotor in a flow.", axial_rotor),
     ("periodic", "Torque by the body's angle.", periodic),
     ("propeller", "Ship's propeller.", propeller),
+    ("reciprocating", "Inertia torque of a mass moved by crank and rod.", reciprocating),
 ];
 
 impl Load {
@@ -122,6 +124,31 @@ fn viscous(fields: &mut Fields<'_>) -> LoadLaw {
     }
 }
 
+fn reciprocating(fields: &mut Fields<'_>) -> LoadLaw {
+    let length = |fields: &mut Fields<'_>, key, doc| {
+        fields.quantity(key, Dimension::Length, Range::Positive, doc)
+    };
+    let crank_radius = length(fields, "crank_radius", "Radius of the crank: half the stroke.");
+    let rod_length = length(fields, "rod_length", "Length of the connecting rod.");
+    let mass = fields.quantity(
+        "reciprocating_mass",
+        Dimension::Mass,
+        Range::Positive,
+        "Mass that moves with the piston, the rod's share with it.",
+    );
+    let phase = fields.quantity_or(
+        "phase",
+        Dimension::Angle,
+        Range::Any,
+        0.0,
+        "Crank angle at the start, from the dead centre far from the crank.",
+    );
+    if rod_length <= crank_radius {
+        fields.fault("rod_length", "`rod_length` must be above `crank_radius`");
+    }
+    LoadLaw::Reciprocating { crank_radius, rod_length, mass, phase }
+}
+
 fn prescribed(fields: &mut Fields<'_>) -> LoadLaw {
     let torque =
         read_signal(fields, "torque", Dimension::Torque, true, "Torque, positive drives forward.");
@@ -155,6 +182,14 @@ fn axial_rotor(fields: &mut Fields<'_>) -> LoadLaw {
     let flow =
         read_signal(fields, "flow", Dimension::LinearSpeed, true, "Speed of the wind or water.");
     let pitch = read_signal_or(fields, "pitch", Dimension::Angle, 0.0, "Pitch of the blades.");
+    let pitch_loop = fields.group_optional(
+        "pitch_loop",
+        "A controller that holds a speed with the pitch, in place of `pitch`.",
+        PitchLoop::read,
+    );
+    if pitch_loop.is_some() && fields.has("pitch") {
+        fields.fault("pitch", "either `pitch` or `pitch_loop` is stated, not both");
+    }
     let coefficient = fields.group_optional(
         "power_coefficient",
         "Cp over tip speed ratio and pitch in one of these ways, in place of the built-in formula.",
@@ -162,7 +197,11 @@ fn axial_rotor(fields: &mut Fields<'_>) -> LoadLaw {
     );
     let coefficient = coefficient.flatten().unwrap_or(PowerCoefficient::Formula(DEFAULT));
     let flow = flow.unwrap_or(Signal::Constant(0.0));
-    LoadLaw::AxialRotor { radius, density, flow, pitch, coefficient }
+    if let Some(pitch_loop) = &pitch_loop {
+        pitch_loop.check(&coefficient, fields);
+    }
+    let pitch_loop = pitch_loop.map(Box::new);
+    LoadLaw::AxialRotor { radius, density, flow, pitch, pitch_loop, coefficient }
 }
 
 fn periodic(fields: &mut Fields<'_>) -> LoadLaw {

@@ -1,5 +1,6 @@
 //! How the coefficients of rotors and propellers are written in a scenario.
 
+use super::coefficient_file::CoefficientFile;
 use super::power_coefficient::{DEFAULT, PowerCoefficient, Rows};
 use super::propeller::TorqueCoefficient;
 use super::propeller_series;
@@ -137,10 +138,18 @@ fn exponential(fields: &mut Fields<'_>) -> PowerCoefficient {
 
 fn table(fields: &mut Fields<'_>) -> Rows {
     let doc = "Pitches of the columns, rising: [0 deg, 5 deg, 10 deg].";
-    let pitches = fields.raw("pitch", Shape::Free, true, doc);
+    let pitches = fields.raw("pitch", Shape::Free, false, doc);
     let pitches = pitches.and_then(|node| numbers(fields, "pitch", node, Dimension::Angle));
     let doc = "Rows of a tip speed ratio and one Cp for each pitch, ratios rising.";
-    let rows = fields.raw("rows", Shape::Free, true, doc);
+    let rows = fields.raw("rows", Shape::Free, false, doc);
+    if let Some(file) = coefficient_file(fields) {
+        return Rows::of_file(file);
+    }
+    for key in ["pitch", "rows"] {
+        if !fields.has(key) && !fields.has("file") {
+            fields.miss(key, "give `pitch` and `rows`, or `file` with both in it");
+        }
+    }
     let (Some(pitches), Some(rows)) = (pitches, rows) else {
         return Rows::new(vec![], vec![], vec![]);
     };
@@ -188,6 +197,31 @@ fn table(fields: &mut Fields<'_>) -> Rows {
     let ratios = read.iter().filter_map(|row| row.first().copied()).collect();
     let values = read.iter().map(|row| row.iter().skip(1).copied().collect()).collect();
     Rows::new(ratios, pitches, values)
+}
+
+/// The file in place of pitches and rows; `None` when there is none, or it is at fault.
+fn coefficient_file(fields: &mut Fields<'_>) -> Option<CoefficientFile> {
+    let doc = "CSV file in place of `pitch` and `rows`: ratios in its first column, one column for each pitch, headed by it.";
+    let file = fields.name_optional("file", doc);
+    let doc = "Unit of pitches in the file's heading that stand without one, for example deg.";
+    let pitch_unit = fields.text("pitch_unit", doc);
+    if let Some(unit) = &pitch_unit
+        && let Err(fault) = quantity::parse(&format!("1 {unit}"), Dimension::Angle)
+    {
+        fault.report(&fields.path_of("pitch_unit"), &mut fields.faults().borrow_mut());
+    }
+    let Some(file) = file else {
+        if pitch_unit.is_some() {
+            fields.fault("pitch_unit", "`pitch_unit` goes with `file` only");
+        }
+        return None;
+    };
+    for key in ["pitch", "rows"] {
+        if fields.has(key) {
+            fields.fault(key, format!("either `file` or `{key}` is stated, not both"));
+        }
+    }
+    (!file.is_empty()).then_some(CoefficientFile { file, pitch_unit })
 }
 
 /// A list of numbers of one dimension; `None` when faulty.

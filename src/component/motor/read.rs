@@ -1,6 +1,8 @@
 //! How a motor is written in a scenario.
 
 use super::circuit::CircuitFigures;
+use super::read_drive::{speed_loop, torque_loop};
+use super::read_generator::optimal_power;
 use super::{Motor, MotorLaw, Plate};
 use crate::component::points::read_curve;
 use crate::quantity::{Dimension, format_number};
@@ -9,15 +11,16 @@ use crate::signal::read::{read_signal, read_signal_or};
 use crate::tree::{Alternative, Fields, Range};
 
 /// The laws a motor may have.
-const LAWS: [Alternative<MotorLaw>; 7] = [
+const LAWS: [Alternative<MotorLaw>; 8] = [
     ("rating_plate", "Cage motor from its rating plate.", rating_plate),
     ("induction", "Kloss's formula, right near synchronous speed.", induction),
     ("curve", "Points of speed and torque at full voltage, read at the signed speed.", curve),
     ("prescribed", "A torque as a signal.", prescribed),
     ("speed_loop", "PI speed controller with a torque limit.", speed_loop),
+    ("torque_loop", "Drive that gives the torque asked for within its limits.", torque_loop),
     (
         "optimal_power",
-        "Generator: -min(coefficient*speed^2, limit) turning forward.",
+        "Generator of a variable-speed rotor: coefficient*speed^2, then its limit or rated region.",
         optimal_power,
     ),
     ("induction_circuit", "Equivalent circuit of an induction motor.", induction_circuit),
@@ -161,50 +164,6 @@ fn prescribed(fields: &mut Fields<'_>) -> MotorLaw {
     let torque =
         read_signal(fields, "torque", Dimension::Torque, true, "Torque, positive drives forward.");
     MotorLaw::Prescribed { torque: torque.unwrap_or(Signal::Constant(0.0)) }
-}
-
-fn speed_loop(fields: &mut Fields<'_>) -> MotorLaw {
-    let speed = read_signal(fields, "speed", Dimension::Speed, true, "Speed asked for.");
-    MotorLaw::SpeedLoop {
-        speed: speed.unwrap_or(Signal::Constant(0.0)),
-        torque_limit: positive(
-            fields,
-            "torque_limit",
-            Dimension::Torque,
-            "The command stays within plus and minus this.",
-        ),
-        gain: positive(fields, "gain", Dimension::Damping, "Torque per speed error."),
-        integral_time: fields.quantity_optional(
-            "integral_time",
-            Dimension::Time,
-            Range::Positive,
-            "Time in which the integral part doubles the proportional one; absent: no integral.",
-        ),
-        lag: fields.quantity_or(
-            "lag",
-            Dimension::Time,
-            Range::NotNegative,
-            0.0,
-            "First-order lag of the torque behind the command.",
-        ),
-    }
-}
-
-fn optimal_power(fields: &mut Fields<'_>) -> MotorLaw {
-    MotorLaw::OptimalPower {
-        coefficient: positive(
-            fields,
-            "coefficient",
-            Dimension::TorquePerSpeedSquared,
-            "Braking torque per speed squared.",
-        ),
-        torque_limit: positive(
-            fields,
-            "torque_limit",
-            Dimension::Torque,
-            "The braking torque stays below this.",
-        ),
-    }
 }
 
 fn induction_circuit(fields: &mut Fields<'_>) -> MotorLaw {

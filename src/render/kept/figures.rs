@@ -1,8 +1,8 @@
 //! From `summary.json` and `events.csv` back to the results of a run.
 
 use crate::results::{
-    ChannelResult, Energy, Event, EventKind, GearResult, GearState, MemberResult, MotorResult,
-    RequirementResult, RunResult, SlipEvent, SolverWork, Warning,
+    ChannelResult, ClutchResult, ClutchState, Energy, Event, EventKind, GearResult, GearState,
+    MemberResult, MotorResult, RequirementResult, RunResult, SlipEvent, SolverWork, Warning,
 };
 use crate::scenario::Scenario;
 use serde_json::Value;
@@ -44,6 +44,10 @@ pub fn result(summary: &Value, events: &str, scenario: &Scenario) -> Result<RunR
                 rotor_heat: at.optional("rotor_heat"),
             })
         })?,
+        clutches: match summary.get("clutches") {
+            Some(_) => root.each("clutches", clutch)?,
+            None => Vec::new(),
+        },
         warnings: warnings(summary),
         solver: solver(&root.at("solver")?)?,
         events: read_events(events),
@@ -172,6 +176,20 @@ fn gear(name: &str, at: &At<'_>, scenario: &Scenario) -> Result<GearResult, Stri
         longest_slipping: at.optional("longest_slipping").unwrap_or(0.0),
         longest_slipping_from: at.optional("longest_slipping_from").unwrap_or(0.0),
         slip_events,
+    })
+}
+
+fn clutch(name: &str, at: &At<'_>) -> Result<ClutchResult, String> {
+    let word = at.text("state_at_end")?;
+    Ok(ClutchResult {
+        name: name.to_owned(),
+        slips: at.whole("slips")? as u32,
+        releases: at.whole("releases")? as u32,
+        heat: at.number("heat")?,
+        state_at_end: ClutchState::ALL
+            .into_iter()
+            .find(|state| state.word() == word)
+            .ok_or_else(|| at.wrong("a clutch with a known state"))?,
     })
 }
 

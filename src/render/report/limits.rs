@@ -106,9 +106,9 @@ fn drives(material: &Material<'_>) -> Vec<String> {
         "The formula of breakdown torque and slip understates the starting torque of real cage motors.",
     );
     say(
-        motor(|law| matches!(law, MotorLaw::SpeedLoop { .. })),
-        "The drive gives the torque its speed controller asks for up to the limit; current loops, filters and \
-         voltage limits of the converter are not in it.",
+        motor(|law| matches!(law, MotorLaw::SpeedLoop { .. } | MotorLaw::TorqueLoop { .. })),
+        "The drive gives the torque it is asked for up to its limits; current loops, filters and voltage limits \
+         of the converter are not in it, and its trips are those of the protections only.",
     );
     say(
         motor(|law| matches!(law, MotorLaw::Prescribed { .. }))
@@ -135,12 +135,26 @@ fn drives(material: &Material<'_>) -> Vec<String> {
         "The torque over a turn is the same at every speed and starts at the angle of the run's start; run the worst angles.",
     );
     say(
+        load(|law| matches!(law, LoadLaw::Reciprocating { .. })),
+        "The torque of a reciprocating mass is that of a crank at the speed of the moment: the part that follows its \
+         acceleration is left out.",
+    );
+    say(
+        !scenario.clutches.is_empty(),
+        "Clutches lock and let go at once and rigidly; the wind-up of rollers and sprags, wear, and the fall of friction \
+         with heat are not in them.",
+    );
+    say(
+        !scenario.fluid_couplings.is_empty(),
+        "Fluid couplings follow their curve of steady flow at once; filling, heating and the fluid's own inertia are not in it.",
+    );
+    say(
         load(|law| matches!(law, LoadLaw::Friction { .. })) || !scenario.brakes.is_empty(),
         "Dry friction has one sliding and one breakaway torque; wear, heat and the fall of friction with speed are not in it.",
     );
     say(
         !scenario.gear_pairs.is_empty() || !scenario.planetary_gears.is_empty(),
-        "Toothed gears are rigid and without play, losses and meshing forces.",
+        "Toothed gears are rigid and without play, meshing forces and losses that grow with the load; only a drag that is given is in them.",
     );
     let rigid = scenario.shafts.iter().filter(|shaft| shaft.rigid).count();
     if rigid > 0 {

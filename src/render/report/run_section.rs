@@ -32,6 +32,7 @@ pub fn section(material: &Material<'_>, figures: &mut Figures) -> String {
     html.push_str(&super::records::section(material));
     html.push_str(&peaks(material));
     html.push_str(&motors(material));
+    html.push_str(&clutches(material));
     html.push_str(&events(material));
     html
 }
@@ -187,6 +188,21 @@ fn motors(material: &Material<'_>) -> String {
         ]);
     }
     if table.is_empty() { String::new() } else { format!("<h3>Run-up</h3>\n{}", table.html()) }
+}
+
+fn clutches(material: &Material<'_>) -> String {
+    let mut table =
+        HtmlTable::new("<>>><", &["Clutch", "Slips", "Runs free", "Heat", "At the end"]);
+    for clutch in &material.result.clutches {
+        table.row([
+            escape(&clutch.name),
+            clutch.slips.to_string(),
+            clutch.releases.to_string(),
+            escape(&super::figures::tidy(&shown::energy(clutch.heat))),
+            capital(clutch.state_at_end.word()),
+        ]);
+    }
+    if table.is_empty() { String::new() } else { format!("<h3>Clutches</h3>\n{}", table.html()) }
 }
 
 fn events(material: &Material<'_>) -> String {

@@ -3,6 +3,7 @@
 use super::figures::{Written, plain, tidy};
 use super::sides::sides;
 use crate::analysis::train::{MagnetFigures, Train as TrainFigures};
+use crate::component::clutch::ClutchKind;
 use crate::component::load::LoadLaw;
 use crate::component::motor::MotorLaw;
 use crate::quantity::{Dimension, format_quantity};
@@ -137,6 +138,30 @@ fn links(
             text: format!("teeth {} and {}", set.teeth_sun, set.teeth_ring),
         });
     }
+    for clutch in &scenario.clutches {
+        let text = match clutch.kind {
+            ClutchKind::Overrunning { .. } => "locks one way".to_owned(),
+            ClutchKind::Limiter { breakaway, .. } => {
+                format!("slips at {}", written.torque(breakaway))
+            }
+        };
+        links.push(Link::Shaft {
+            name: words(&clutch.name),
+            between: [port(&clutch.between[0]), port(&clutch.between[1])],
+            text,
+            elastic: false,
+            backlash: true,
+        });
+    }
+    for coupling in &scenario.fluid_couplings {
+        links.push(Link::Shaft {
+            name: words(&coupling.name),
+            between: [port(&coupling.between[0]), port(&coupling.between[1])],
+            text: "fluid coupling".to_owned(),
+            elastic: false,
+            backlash: true,
+        });
+    }
     links
 }
 
@@ -197,11 +222,14 @@ fn motor_text(law: &MotorLaw, written: Written<'_>) -> String {
         MotorLaw::InductionCircuit { figures, .. } => {
             format!("{}{NBSP}V, {}{NBSP}Hz", plain(figures.line_voltage), plain(figures.frequency))
         }
-        MotorLaw::SpeedLoop { torque_limit, .. } => {
-            format!("speed loop, up to {}", written.torque(*torque_limit))
+        MotorLaw::SpeedLoop { drive, .. } => {
+            format!("speed loop, up to {}", written.torque(drive.limits.torque_limit))
         }
-        MotorLaw::OptimalPower { torque_limit, .. } => {
-            format!("generator, up to {}", written.torque(*torque_limit))
+        MotorLaw::TorqueLoop { drive, .. } => {
+            format!("torque loop, up to {}", written.torque(drive.limits.torque_limit))
+        }
+        MotorLaw::OptimalPower { figures } => {
+            format!("generator, up to {}", written.torque(figures.largest_torque()))
         }
         MotorLaw::Prescribed { .. } => "torque as given".to_owned(),
         _ => String::new(),
@@ -220,6 +248,9 @@ fn load_text(law: &LoadLaw, written: Written<'_>) -> String {
         }
         LoadLaw::Propeller { diameter, .. } => {
             format!("propeller, diameter {}{NBSP}m", plain(*diameter))
+        }
+        LoadLaw::Reciprocating { mass, .. } => {
+            format!("reciprocating mass {}{NBSP}kg", plain(*mass))
         }
         LoadLaw::AxialRotor { radius, .. } => format!("rotor, radius {}{NBSP}m", plain(*radius)),
         _ => String::new(),

@@ -3,8 +3,8 @@
 use super::SteadyError;
 use super::external::{Command, External};
 use crate::equations::Equations;
-use crate::equations::holding::hold;
-use crate::equations::mode::REST;
+use crate::equations::holding::{Limits, hold};
+use crate::equations::mode::FrictionMode;
 use crate::signal::course::Overrides;
 use nalgebra::{DMatrix, DVector};
 
@@ -13,6 +13,9 @@ pub(super) const CLOSED: f64 = 1e-11;
 
 /// Points of the scan over speed on each side of the given one.
 const SCAN: usize = 3000;
+
+/// Angles looked at for the pitch that closes a balance.
+const PITCH_SCAN: u32 = 720;
 
 /// Torques and speeds of a balanced train.
 #[derive(Clone, Debug)]
@@ -23,7 +26,7 @@ pub struct Balance {
     pub torque: DVector<f64>,
     /// Sum of the magnitudes of the torques at work, N*m.
     pub at_work: f64,
-    /// Command of each controller, N*m.
+    /// Command of each drive's controller, N*m, then of each pitch loop, rad.
     pub command: Vec<f64>,
     /// Holding torque of each friction element at rest.
     pub at_rest: Vec<Option<f64>>,
@@ -77,7 +80,7 @@ impl Search<'_> {
     }
 
     fn by_law(&self) -> Vec<Command> {
-        vec![Command::ByLaw; self.equations().controllers.len()]
+        vec![Command::ByLaw; self.external.commands()]
     }
 
     /// Net torque along each motion, and the sum of magnitudes at work.
@@ -153,8 +156,8 @@ impl Search<'_> {
         if !self.equations().frictions.is_empty() {
             knots.push(0.0);
         }
-        for (index, controller) in self.equations().controllers.iter().enumerate() {
-            if controller.integral.is_some() && self.external.scale(index) != 0.0 {
+        for index in 0..self.external.commands() {
+            if self.external.integrates(index) {
                 let zero = self.external.error(index, &DVector::zeros(self.equations().speeds));
                 let one = self.external.error(index, &self.speeds(&DVector::from_element(1, 1.0)));
                 if one != zero {
@@ -194,26 +197,37 @@ impl Search<'_> {
         let mut commands = commands.to_vec();
         let holding_speed: Vec<usize> = (0..commands.len())
             .filter(|index| {
-                let controller = &equations.controllers[*index];
-                let size = equations.terms[controller.command].input_size / controller.gain;
-                controller.integral.is_some()
+                let size = match equations.controllers.get(*index) {
+                    Some(one) => equations.terms[one.command].input_size / one.gain,
+                    None => 0.0,
+                };
+                let integrates =
+                    equations.controllers.get(*index).is_none_or(|one| one.integral.is_some());
+                integrates
                     && commands[*index] == Command::ByLaw
                     && self.external.error(*index, &speeds).abs() <= 1e-8 * size.max(speeds.amax())
             })
             .collect();
         for index in &holding_speed {
-            commands[*index] = Command::Fixed(0.0);
+            let lower = self.external.pitch(*index).map_or(0.0, |pitch| pitch.angles[0]);
+            commands[*index] = Command::Fixed(lower);
         }
         let (mut torque, mut at_work) = self.external.torque(&speeds, &commands);
         // A controller that holds its speed carries what is missing, up to its limit.
-        if let ([index], true) = (holding_speed.as_slice(), self.motions.ncols() > 0) {
+        let turns = self.motions.ncols() > 0;
+        if let ([index], true) = (holding_speed.as_slice(), turns)
+            && self.external.pitch(*index).is_some()
+        {
+            commands[*index] = Command::Fixed(self.pitch_for(*index, &speeds, &commands));
+            (torque, at_work) = self.external.torque(&speeds, &commands);
+        } else if let ([index], true) = (holding_speed.as_slice(), turns) {
             commands[*index] = Command::Fixed(1.0);
             let (with_one, _) = self.external.torque(&speeds, &commands);
             let unit = self.motions.column(0).dot(&(&with_one - &torque));
             let missing = self.motions.column(0).dot(&torque);
-            let limit = equations.controllers[*index].limit;
+            let [lower, upper] = self.external.edges(*index, &speeds);
             let needed = if unit == 0.0 { 0.0 } else { -missing / unit };
-            commands[*index] = Command::Fixed(needed.clamp(-limit, limit));
+            commands[*index] = Command::Fixed(needed.max(lower).min(upper));
             (torque, at_work) = self.external.torque(&speeds, &commands);
         }
         let at_rest = self.hold_at_rest(&speeds, &mut torque, &mut at_work)?;
@@ -229,6 +243,36 @@ impl Search<'_> {
         Ok(Balance { speeds, torque, at_work, command, at_rest })
     }
 
+    /// The pitch at which a rotor closes the balance at its speed: the first on the way from fine
+    /// pitch where its torque falls below what is needed.
+    fn pitch_for(&self, index: usize, speeds: &DVector<f64>, commands: &[Command]) -> f64 {
+        let [lowest, highest] = self.external.edges(index, speeds);
+        let mut commands = commands.to_vec();
+        let motion = self.motions.column(0);
+        // The rotor drives in the sense in which its loop counts the speed.
+        let there = self.speeds(&DVector::from_element(1, 1.0));
+        let none = DVector::zeros(there.len());
+        let sense =
+            (self.external.error(index, &there) - self.external.error(index, &none)).signum();
+        let mut net = |angle: f64| {
+            commands[index] = Command::Fixed(angle);
+            sense * motion.dot(&self.external.torque(speeds, &commands).0)
+        };
+        let step = (highest - lowest) / f64::from(PITCH_SCAN);
+        let mut below = lowest;
+        if net(lowest) <= 0.0 {
+            return lowest;
+        }
+        for place in 1..=PITCH_SCAN {
+            let above = lowest + step * f64::from(place);
+            if net(above) <= 0.0 {
+                return crate::solve::locate::root(below, above, net, 0.0);
+            }
+            below = above;
+        }
+        highest
+    }
+
     /// Friction at rest carries the balance in proportion to its breakaway, as far as it suffices.
     fn hold_at_rest(
         &self,
@@ -240,7 +284,7 @@ impl Search<'_> {
         let resting: Vec<usize> = (0..equations.frictions.len())
             .filter(|index| {
                 let friction = &equations.frictions[*index];
-                self.external.relative(friction, speeds).abs() <= REST * friction.speed_size
+                friction.judge(self.external.relative(friction, speeds)) == FrictionMode::Stuck
             })
             .collect();
         let mut at_rest = vec![None; equations.frictions.len()];
@@ -267,7 +311,7 @@ impl Search<'_> {
         });
         let compliance = &rows * &inverse * rows.transpose();
         let drive = &rows * &inverse * (self.motions.transpose() * &*torque);
-        let limits: Vec<f64> = resting
+        let limits: Vec<Limits> = resting
             .iter()
             .map(|index| self.external.breakaway(&equations.frictions[*index]))
             .collect();
@@ -283,7 +327,9 @@ impl Search<'_> {
             return Err(SteadyError {
                 message: format!(
                     "no torque balance: at rest `{}` would have to hold {:.6} N*m, its breakaway is {:.6} N*m",
-                    friction.name, holding.torque[line], limits[line]
+                    friction.name,
+                    holding.torque[line],
+                    limits[line].of(holding.torque[line])
                 ),
             });
         }

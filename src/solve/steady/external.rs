@@ -2,10 +2,12 @@
 
 use crate::component::law::Law;
 use crate::component::motor::circuit::CONNECTED;
-use crate::equations::frame::sliding_of;
+use crate::component::pair_law::PairLaw;
+use crate::equations::holding::Limits;
 use crate::equations::machine::Machine;
-use crate::equations::mode::REST;
-use crate::equations::{Equations, Friction, Owner, Shape, Sliding, Target, Term};
+use crate::equations::mode::FrictionMode;
+use crate::equations::pitch::Pitch;
+use crate::equations::{Controller, Equations, Friction, Owner, Shape, Target, Term};
 use crate::signal::course::Overrides;
 use nalgebra::DVector;
 
@@ -41,7 +43,11 @@ impl External<'_> {
         let state = self.scaled(speeds);
         for (index, term) in self.equations.terms.iter().enumerate() {
             let Target::Torque(direction) = &term.target else { continue };
-            if let Owner::Magnet(_) = term.owner {
+            let limits =
+                |one: &Controller| one.moving_limits.is_some_and(|two| two.contains(&index));
+            if matches!(term.owner, Owner::Magnet(_) | Owner::Shaft(_))
+                || self.equations.controllers.iter().any(limits)
+            {
                 continue;
             }
             let controller = self
@@ -51,7 +57,7 @@ impl External<'_> {
                 .position(|controller| self.drives(controller, index));
             let value = match controller {
                 Some(controller) => self.command(controller, speeds, commands[controller]),
-                None => self.law(term, &state),
+                None => self.law(term, &self.with_pitch(term, &state, speeds, commands)),
             };
             apply(direction, value * self.factor(term));
         }
@@ -60,16 +66,13 @@ impl External<'_> {
             apply(&damper.row, -damper.coefficient * speed);
         }
         for friction in &self.equations.frictions {
-            let speed = self.relative(friction, speeds);
-            if speed.abs() > REST * friction.speed_size {
-                apply(&friction.row, -speed.signum() * self.sliding(friction, speed.abs()));
-            }
+            apply(&friction.row, self.rubbing(friction, speeds));
         }
         (sum, at_work)
     }
 
     /// The term that puts a controller's torque on the train.
-    fn drives(&self, controller: &crate::equations::Controller, term: usize) -> bool {
+    fn drives(&self, controller: &Controller, term: usize) -> bool {
         match controller.torque_state {
             None => controller.command == term,
             Some(state) => {
@@ -81,29 +84,86 @@ impl External<'_> {
         }
     }
 
-    /// The torque that a controller asks for, before its scale.
+    /// A state in which the blades of a rotor stand as its pitch loop's command has them.
+    fn with_pitch(
+        &self,
+        term: &Term,
+        state: &[f64],
+        speeds: &DVector<f64>,
+        commands: &[Command],
+    ) -> Vec<f64> {
+        let mut state = state.to_vec();
+        let pitches = self.equations.pitches.iter().enumerate();
+        for (index, pitch) in pitches.filter(|(_, pitch)| Owner::Load(pitch.load) == term.owner) {
+            let index = self.equations.controllers.len() + index;
+            let angle = self.command(index, speeds, commands[index]);
+            state[pitch.state] = angle / self.equations.scale[pitch.state];
+        }
+        state
+    }
+
+    /// The pitch loop of a command, which stand behind those of the drives.
+    pub fn pitch(&self, index: usize) -> Option<&Pitch> {
+        self.equations.pitches.get(index.checked_sub(self.equations.controllers.len())?)
+    }
+
+    /// Number of commands: of drives, then of pitch loops.
+    pub fn commands(&self) -> usize {
+        self.equations.controllers.len() + self.equations.pitches.len()
+    }
+
+    /// True for a command with an integral part that acts.
+    pub fn integrates(&self, index: usize) -> bool {
+        let of_drive = self.equations.controllers.get(index);
+        of_drive.is_none_or(|one| one.integral.is_some() && self.scale(index) != 0.0)
+    }
+
+    /// The torque that a drive's controller asks for, before its scale, or the angle that a pitch
+    /// loop asks for.
     pub fn command(&self, index: usize, speeds: &DVector<f64>, command: Command) -> f64 {
-        let controller = &self.equations.controllers[index];
         match command {
             Command::Fixed(torque) => torque,
             Command::ByLaw => {
                 let error = self.error(index, speeds);
-                if controller.integral.is_some() {
-                    if error == 0.0 { 0.0 } else { controller.limit.copysign(error) }
+                let [lower, upper] = self.edges(index, speeds);
+                let of_drive = self.equations.controllers.get(index);
+                if let Some(controller) = of_drive.filter(|one| one.integral.is_none()) {
+                    let command = controller.gain * error + self.feed_forward(index);
+                    command.max(lower).min(upper)
+                } else if error == 0.0 {
+                    if of_drive.is_some() { 0.0 } else { lower }
+                } else if error > 0.0 {
+                    upper
                 } else {
-                    (controller.gain * error).clamp(-controller.limit, controller.limit)
+                    lower
                 }
             }
         }
     }
 
-    /// Speed asked for minus speed, in the controller's own sense, rad/s.
+    /// Speed asked for minus speed (pitch loops: the other way), in the controller's sense, rad/s.
     pub fn error(&self, index: usize, speeds: &DVector<f64>) -> f64 {
+        if let Some(pitch) = self.pitch(index) {
+            return pitch.error(self.signal(pitch.reference), &self.scaled(speeds));
+        }
         let controller = &self.equations.controllers[index];
-        let command = &self.equations.terms[controller.command];
+        let speed = crate::equations::dot(&controller.speed, &self.scaled(speeds));
+        controller.reference.map_or(0.0, |slot| self.signal(slot) - speed)
+    }
+
+    /// The lower and the upper limit of a command, N*m or rad.
+    pub fn edges(&self, index: usize, speeds: &DVector<f64>) -> [f64; 2] {
+        if let Some(pitch) = self.pitch(index) {
+            return pitch.angles;
+        }
         let state = self.scaled(speeds);
-        // The command's input is gain*(ref - w) + I with I at zero here.
-        self.input(command, &state) / controller.gain
+        let controller = &self.equations.controllers[index];
+        [0, 1].map(|side| controller.edge(self.equations, side, &state))
+    }
+
+    /// The torque that is added to a controller's command, N*m.
+    pub fn feed_forward(&self, index: usize) -> f64 {
+        self.signal(self.equations.controllers[index].feed_forward)
     }
 
     /// The scale on a controller's torque.
@@ -116,17 +176,18 @@ impl External<'_> {
         self.equations.model.reduction.dense(&friction.row).dot(speeds)
     }
 
-    /// Breakaway torque of a friction element, N*m.
-    pub fn breakaway(&self, friction: &Friction) -> f64 {
-        friction.breakaway * self.slots(&friction.factor.slots)
+    /// Torque of a friction element along its row while it slides, N*m; none at rest.
+    pub fn rubbing(&self, friction: &Friction, speeds: &DVector<f64>) -> f64 {
+        let speed = self.relative(friction, speeds);
+        if friction.judge(speed) == FrictionMode::Stuck {
+            return 0.0;
+        }
+        -speed.signum() * friction.sliding_torque(speed) * self.slots(&friction.factor.slots)
     }
 
-    fn sliding(&self, friction: &Friction, speed: f64) -> f64 {
-        let torque = match &friction.sliding {
-            Sliding::Constant(torque) => *torque,
-            Sliding::Curve(law) => sliding_of(law, speed),
-        };
-        torque * self.slots(&friction.factor.slots)
+    /// Breakaway limits of a friction element.
+    pub fn breakaway(&self, friction: &Friction) -> Limits {
+        friction.breakaway.scaled(self.slots(&friction.factor.slots))
     }
 
     fn scaled(&self, speeds: &DVector<f64>) -> Vec<f64> {
@@ -143,13 +204,19 @@ impl External<'_> {
             Shape::Linear => input,
             // The torque of magnets is that of the train's own deformation.
             Shape::Warm(..) => 0.0,
+            Shape::Pair(PairLaw::Reciprocating(_), _) => 0.0,
+            Shape::Pair(law, second) => law.value(input, crate::equations::dot(second, state)),
             // Of products of states only a machine's torque reaches the train.
             Shape::Products(_) => self.machine(term, input),
             // Torques over an angle count by their mean over a turn, which is zero.
             Shape::Law(Law::Cogging { .. } | Law::Periodic(_) | Law::Magnet(_)) => 0.0,
             Shape::Law(law) => {
-                let parameters =
-                    term.parameters.map(|slot| slot.map_or(0.0, |slot| self.signal(slot)));
+                let parameters = crate::equations::parameters_at(
+                    term.parameters,
+                    &term.by_state,
+                    state,
+                    |slot| self.signal(slot),
+                );
                 law.value(input, parameters, law.piece(input, parameters))
             }
         }
@@ -172,7 +239,8 @@ impl External<'_> {
     }
 
     fn input(&self, term: &Term, state: &[f64]) -> f64 {
-        let offset = term.offset.map_or(0.0, |(factor, slot)| factor * self.signal(slot));
+        let signals = term.offsets.iter().map(|(factor, slot)| factor * self.signal(*slot));
+        let offset: f64 = signals.sum();
         crate::equations::dot(&term.input, state) + offset
     }
 

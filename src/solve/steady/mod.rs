@@ -82,20 +82,26 @@ pub fn find(
     for (place, value) in &deformations {
         state[*place] = value / equations.scale[*place];
     }
+    let external = External { equations, time, overrides };
     for (index, controller) in equations.controllers.iter().enumerate() {
         let torque = balance.command[index];
         if let Some(place) = controller.integral_state {
-            state[place] = torque / equations.scale[place];
+            state[place] = (torque - external.feed_forward(index)) / equations.scale[place];
         }
         if let Some(place) = controller.torque_state {
             state[place] = torque / equations.scale[place];
+        }
+    }
+    for (index, pitch) in equations.pitches.iter().enumerate() {
+        let angle = balance.command[equations.controllers.len() + index];
+        for place in [pitch.state, pitch.integral_state] {
+            state[place] = angle / equations.scale[place];
         }
     }
     // Magnets warm up over minutes: the motion is in balance at the temperatures of the start.
     for node in &equations.thermal {
         state[node.place] = node.start / equations.scale[node.place];
     }
-    let external = External { equations, time, overrides };
     for machine in &equations.machines {
         machine.settle(&mut state, &equations.scale, external.machine_voltage(machine));
     }
@@ -185,6 +191,9 @@ fn deform(
 fn undeform(equations: &Equations, place: usize, torque: f64) -> Result<f64, SteadyError> {
     if let Some(index) = equations.twist_state.iter().position(|state| *state == Some(place)) {
         let shaft = &equations.model.shafts[index];
+        if let Some(curve) = &shaft.curve {
+            return Ok(curve.twist(torque));
+        }
         let play = if torque == 0.0 { 0.0 } else { shaft.backlash / 2.0 * torque.signum() };
         return Ok(torque / shaft.stiffness + play);
     }
@@ -208,6 +217,9 @@ fn undeform(equations: &Equations, place: usize, torque: f64) -> Result<f64, Ste
 fn element(equations: &Equations, place: usize, value: f64) -> (f64, f64) {
     if let Some(index) = equations.twist_state.iter().position(|state| *state == Some(place)) {
         let shaft = &equations.model.shafts[index];
+        if let Some(curve) = &shaft.curve {
+            return curve.at(value);
+        }
         let beyond = value.abs() - shaft.backlash / 2.0;
         if beyond <= 0.0 {
             return (0.0, 1e-6 * shaft.stiffness);

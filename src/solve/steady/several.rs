@@ -3,7 +3,8 @@
 use super::SteadyError;
 use super::balance::{Balance, CLOSED, Search};
 use super::external::Command;
-use crate::equations::mode::REST;
+use crate::equations::Friction;
+use crate::equations::mode::FrictionMode;
 use nalgebra::{DMatrix, DVector};
 
 impl Search<'_> {
@@ -11,26 +12,22 @@ impl Search<'_> {
     pub(super) fn many(&self, given: &DVector<f64>) -> Result<Balance, SteadyError> {
         let count = given.len();
         let mut motion = given.clone();
-        let mut commands: Vec<Command> = self
-            .equations()
-            .controllers
-            .iter()
-            .enumerate()
-            .map(|(index, controller)| {
-                if controller.integral.is_some() && self.external.scale(index) != 0.0 {
-                    Command::Fixed(0.0)
-                } else {
-                    Command::ByLaw
-                }
+        let mut commands: Vec<Command> = (0..self.external.commands())
+            .map(|index| match self.external.pitch(index) {
+                // A little off fine pitch: there the torque answers.
+                Some(pitch) => Command::Fixed(0.9 * pitch.angles[0] + 0.1 * pitch.angles[1]),
+                None if self.external.integrates(index) => Command::Fixed(0.0),
+                None => Command::ByLaw,
             })
             .collect();
         for _ in 0..4 {
             motion = self.newton(motion, &mut commands, count)?;
             let mut changed = false;
             for (index, command) in commands.iter_mut().enumerate() {
-                let limit = self.equations().controllers[index].limit;
+                let edges = self.external.edges(index, &self.speeds(&motion));
+                let room = 1e-9 * (edges[1] - edges[0]);
                 if let Command::Fixed(torque) = *command
-                    && torque.abs() > limit * (1.0 + 1e-9)
+                    && (torque < edges[0] - room || torque > edges[1] + room)
                 {
                     *command = Command::ByLaw;
                     changed = true;
@@ -56,19 +53,20 @@ impl Search<'_> {
             .filter(|index| matches!(commands[*index], Command::Fixed(_)))
             .collect();
         // Members that are given at rest and held by friction stay at rest while a balance is sought.
-        let held: Vec<DVector<f64>> = self
+        let held: Vec<(&Friction, DVector<f64>)> = self
             .equations()
             .frictions
             .iter()
             .filter(|friction| {
                 let speed = self.external.relative(friction, &self.speeds(&start));
-                speed.abs() <= REST * friction.speed_size && self.external.breakaway(friction) > 0.0
+                friction.judge(speed) == FrictionMode::Stuck
+                    && self.external.breakaway(friction).largest() > 0.0
             })
             .map(|friction| {
-                (self.equations().model.reduction.dense(&friction.row).transpose() * self.motions)
-                    .transpose()
+                let dense = self.equations().model.reduction.dense(&friction.row);
+                (friction, (dense.transpose() * self.motions).transpose())
             })
-            .filter(|row| row.amax() > 1e-12)
+            .filter(|(_, row)| row.amax() > 1e-12)
             .collect();
         let total = count + open.len() + held.len();
         let scale = DVector::from_fn(count, |column, _| {
@@ -79,21 +77,29 @@ impl Search<'_> {
         });
         let mut unknown = DVector::zeros(total);
         unknown.rows_mut(0, count).copy_from(&start);
+        for (line, index) in open.iter().enumerate() {
+            if let Command::Fixed(value) = commands[*index] {
+                unknown[count + line] = value;
+            }
+        }
         let residual = |unknown: &DVector<f64>, commands: &mut [Command]| {
             for (line, index) in open.iter().enumerate() {
                 commands[*index] = Command::Fixed(unknown[count + line]);
             }
             let motion = unknown.rows(0, count).into_owned();
             let (mut net, at_work) = self.net(&motion, commands);
-            for (line, row) in held.iter().enumerate() {
-                net += row * unknown[count + open.len() + line];
+            let speeds = self.speeds(&motion);
+            for (line, (friction, row)) in held.iter().enumerate() {
+                // What holds does not slide as well, however little a trial moves it.
+                let slides = self.external.rubbing(friction, &speeds);
+                net += row * (unknown[count + open.len() + line] - slides);
             }
             let mut all = DVector::zeros(total);
             all.rows_mut(0, count).copy_from(&net);
             for (line, index) in open.iter().enumerate() {
                 all[count + line] = self.external.error(*index, &self.speeds(&motion));
             }
-            for (line, row) in held.iter().enumerate() {
+            for (line, (_, row)) in held.iter().enumerate() {
                 all[count + open.len() + line] = row.dot(&motion);
             }
             (all, at_work)
@@ -107,8 +113,14 @@ impl Search<'_> {
             }
             let mut slope = DMatrix::zeros(total, total);
             for column in 0..total {
-                let width =
-                    if column < count { 1e-7 * scale[column].min(1e9) } else { 1e-6 * size };
+                let pitch = column.checked_sub(count).and_then(|line| open.get(line));
+                let width = if column < count {
+                    1e-7 * scale[column].min(1e9)
+                } else if pitch.is_some_and(|index| self.external.pitch(*index).is_some()) {
+                    1e-6
+                } else {
+                    1e-6 * size
+                };
                 let mut moved = unknown.clone();
                 moved[column] += width;
                 let (there, _) = residual(&moved, commands);

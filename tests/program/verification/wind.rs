@@ -8,6 +8,8 @@ use std::f64::consts::PI;
 const CHAPTER: &str = "Wind";
 const GUST: &str = "IEC 61400-1 edition 3, extreme operating gust (formulas from memory)";
 const SLOOTWEG: &str = "Slootweg, Polinder and Kling 2003 (coefficients read in published code)";
+const REGIONS: &str =
+    "NREL/TP-500-38060 (2009), torques of the generator read in data files that cite it";
 const TURBINE: &str = "NREL/TP-500-38060 (2009), figures by closed form";
 
 /// The cases of this chapter.
@@ -86,6 +88,14 @@ pub fn cases() -> Vec<Case> {
         );
         let found = run_well(&scenario).series().at("generator.torque", 0.0);
         sheet.relative("its generator torque at 1136.497 rpm", "N*m", [-33035.0283973, found], 1e-10);
+    }));
+    cases.push(Case::new(CHAPTER, REGIONS, |sheet| {
+        let series = run_well(&crate::wind::reference_generator(0.0255764)).series();
+        for (place, turns, torque) in [(3, 1136.498, 33035.2), (4, 1161.963, 43528.84)] {
+            let found = series.at(&format!("generator_{place}.torque"), 0.0);
+            let what = format!("generator torque at {turns} rpm");
+            sheet.relative(what, "N*m", [-torque, found], 5e-6);
+        }
     }));
     cases
 }
