@@ -7,7 +7,7 @@ use super::trees::trains;
 use serde_json::Value;
 
 /// Unit of a channel by the part of its name behind the dot, as documented.
-const UNITS: [(&str, &[&str]); 7] = [
+const UNITS: [(&str, &[&str]); 8] = [
     ("rad/s", &["speed", "slip_speed"]),
     ("rad", &["angle", "twist", "load_angle", "phase", "pitch"]),
     (
