@@ -176,6 +176,34 @@ pub fn kick(torque: f64, rate: f64, train: Swing) -> Swing {
     Swing { phase: torque.asin(), rate, torque: (torque, Vec::new()), duration: 80.0, ..train }
 }
 
+/// Load over pull-out, and the longest time for which the magnets may be without torque, in units
+/// of the inverse frequency: cos dc = (pi - 2 d0) sin d0 - cos d0, t^2 = 2 (dc - d0)/load (critical
+/// clearing by equal areas, textbooks of power-system stability; from memory, sure).
+pub const CLEARINGS: [(f64, f64); 3] =
+    [(0.3, 3.121563736), (0.5, 1.86012833888), (0.8, 0.706132728986)];
+
+/// The rotor at the instant when the magnets take hold again: until then its load alone turned it.
+pub fn clearing(torque: f64, time: f64, train: Swing) -> Swing {
+    let phase = torque.asin() + 0.5 * torque * time * time;
+    Swing { phase, rate: torque * time, ..kick(torque, 0.0, train) }
+}
+
+#[test]
+fn critical_time_without_magnets_at_each_load() {
+    for (torque, critical) in CLEARINGS {
+        // The time itself, from its closed form.
+        let start = torque.asin();
+        let end = ((PI - 2.0 * start) * torque - start.cos()).acos();
+        same((2.0 * (end - start) / torque).sqrt(), critical, 1e-9);
+        for (factor, slips_above) in BRACKET {
+            for train in [Swing::default(), Swing::workshop()] {
+                let swing = clearing(torque, critical * factor, train);
+                slips(&swing, slips_above, &format!("{critical} x {factor} without at {torque}"));
+            }
+        }
+    }
+}
+
 #[test]
 fn critical_kick_at_each_load() {
     for (torque, critical) in KICKS {

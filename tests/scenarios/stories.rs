@@ -287,3 +287,52 @@ fn pulses_take_the_reserve_that_the_curve_promises() {
     // Both arrive at the same speed.
     same(pulses.last("crankshaft.speed"), curve.last("crankshaft.speed"), 1e-2);
 }
+
+#[test]
+fn propeller_carries_the_torque_of_its_series_and_asks_for_more_when_the_water_comes_back() {
+    let calm = run(
+        "ship_propeller",
+        &["loads.screw.law.propeller.advance=4.148148148148148 m/s", "duration=1 s"],
+    );
+    // Oosterveld and van Oossanen's polynomials (Int. Shipbuilding Progress 22, 1975) for four
+    // blades, P/D 1 and 0.7 blade area at J = 0.7: KQ = 0.0307678303, worked out apart from them.
+    let turns: f64 = 1200.0 / 60.0 / 6.75;
+    let torque = 0.030_767_830_3 * 1025.0 * turns * turns * 2.0_f64.powi(5);
+    same(calm.number("channels/screw.torque/max"), torque, 1e-6);
+    same(calm.last("screw.advance_ratio"), 0.7, 1e-6);
+    // Closed form: sin(load angle) = torque over pull-out torque.
+    let share = torque / 12.5e3;
+    let key = "gears/gear/peak_pull_out_share";
+    same(calm.number(key), share, 1e-6);
+    let found = run("ship_propeller", &[]);
+    assert!(found.number(key) > 1.15 * share, "the quick return adds to {share}");
+    let slow = run("ship_propeller", &["signals.immersion.points.8.0=9.1 s"]);
+    assert!(slow.number(key) < 1.03 * share, "the slow one does not");
+    let soft = run("ship_propeller", &["motors.drive.law.speed_loop.gain=60 N*m*s/rad"]);
+    same(soft.number(key), share, 0.01);
+    let slowest = |found: &crate::runner::Found| found.number("channels/propeller.speed/max").abs();
+    assert!(slowest(&soft) < slowest(&found), "the soft drive pays with speed");
+}
+
+#[test]
+fn turbulence_goes_into_the_speed_and_the_limit_into_the_gear() {
+    // Closed form: what the limit asks for at the modulator, 76/8 times 13.5 kN*m, over 160 kN*m.
+    let limit: f64 = 13.5e3 * 76.0 / 8.0 / 160e3;
+    for seed in [7, 8] {
+        let set = format!("signals.wind.turbulence.seed={seed}");
+        let found = run("turbulent_wind", &[&set]);
+        let share = found.number("gears/gear/peak_pull_out_share");
+        assert!(share > limit && share < 1.04 * limit, "{share} against {limit}");
+        same(found.number("channels/generator.torque/min"), -13.5e3, 1e-9);
+        // IEC 61400-1, class B: sigma = 0.14 (0.75 V + 5.6); below 1 Hz Kaimal's spectrum keeps
+        // 1 - (1 + 6 f L/V)^(-2/3) of the variance (closed form of its integral). The extremes of
+        // five minutes lie two to four deviations from the mean (Davenport, Proc. ICE 28, 1964:
+        // about three, from memory).
+        let sigma: f64 = 0.14 * (0.75 * 10.5 + 5.6);
+        let kept = 1.0 - (1.0 + 6.0 * 340.2 / 10.5_f64).powf(-2.0 / 3.0);
+        let peak = (found.number("channels/blades.flow/max") - 10.5) / (sigma * kept.sqrt());
+        assert!((2.0..4.0).contains(&peak), "{peak} deviations");
+        // One wind stays below the limit of the speed, the other does not.
+        assert_eq!(found.number("channels/rotor.speed/max") > 52.0 * RPM, seed == 8);
+    }
+}

@@ -66,6 +66,37 @@ pub fn cases() -> Vec<Case> {
             let found = outcome.channel("spring.twist", "max");
             sheet.absolute("its highest point", "rad", [0.101622776602, found], 1e-8);
         }),
+        Case::new(
+            CHAPTER,
+            "true stick; smoothed by tanh it would creep at vs*artanh(load)",
+            |sheet| {
+                // A brake that holds 0.5 and 0.9 of its torque for a hundred seconds: 0.55 and 1.47 of
+                // the smoothing speed would be its creep.
+                for share in [0.5, 0.9] {
+                    let scenario = format!(
+                        "{}bodies:\n  drum: {{ inertia: 2 kg*m2 }}\n\
+                     motors:\n  weight: {{ body: drum, law: {{ prescribed: {{ torque: {} N*m }} }} }}\n\
+                     brakes:\n  holding: {{ body: drum, torque: 100 N*m, applied: 1 }}\n",
+                        head(100.0, 1.0, 1e-6),
+                        100.0 * share,
+                    );
+                    let outcome = run_well(&scenario);
+                    let what = format!("creep of a brake at {share} of its torque");
+                    let moved = outcome.channel("drum.angle", "final");
+                    sheet.exact(
+                        format!("{what}: angle after 100 s"),
+                        "0 rad",
+                        format!("{} rad", moved.abs()),
+                    );
+                    let fastest = outcome.channel("drum.speed", "max");
+                    sheet.exact(
+                        format!("{what}: speed"),
+                        "0 rad/s",
+                        format!("{} rad/s", fastest.abs()),
+                    );
+                }
+            },
+        ),
         Case::new(CHAPTER, DYNAMICS, |sheet| {
             let outcome = run_well(&clutch(&head(3.0, 0.5, 1e-9)));
             let locked = outcome.times("stuck", "clutch")[0];

@@ -2,7 +2,8 @@
 
 use super::sheet::Case;
 use crate::equal_area::{
-    DAMPED_STEPS, KICKS, PULSES, STEPS, damped_step, free_pair, jam, kick, pulse, step,
+    CLEARINGS, DAMPED_STEPS, KICKS, PULSES, STEPS, clearing, damped_step, free_pair, jam, kick,
+    pulse, step,
 };
 use crate::gears::{BENCHMARK_STEPS, benchmark, push};
 use crate::helper::{run_through, run_well};
@@ -53,6 +54,15 @@ pub fn cases() -> Vec<Case> {
             let value = format!("{critical:.12} of the frequency");
             sheet.bracket(format!("kick at {torque} of pull-out"), value, 1e-4, |factor| {
                 slips(&kick(torque, critical * factor, Swing::workshop()))
+            });
+        }));
+    }
+    for (torque, critical) in CLEARINGS {
+        cases.push(Case::new(CHAPTER, EQUAL_AREAS, move |sheet| {
+            let what = format!("time without magnets at {torque} of pull-out");
+            let value = format!("{critical:.12} over the frequency");
+            sheet.bracket(what, value, 1e-4, |factor| {
+                slips(&clearing(torque, critical * factor, Swing::workshop()))
             });
         }));
     }

@@ -12,6 +12,16 @@ const REGIONS: &str =
     "NREL/TP-500-38060 (2009), torques of the generator read in data files that cite it";
 const TURBINE: &str = "NREL/TP-500-38060 (2009), figures by closed form";
 
+const KAIMAL: &str = "IEC 61400-1, normal turbulence and Kaimal's spectrum, closed form of its integral (from memory)";
+
+/// Turbulence class, highest frequency in Hz, deviation at 12 m/s (Iref (0.75 V + 5.6)) and the
+/// share of the variance below that frequency, 1 - (1 + 6 f L/V)^(-2/3) with L = 340.2 m.
+const TURBULENT: [(&str, f64, f64, f64); 2] =
+    [("A", 1.0, 2.336, 0.967_553_589_359), ("B", 0.1, 2.044, 0.854_457_155_645)];
+
+/// Samples of one period of a wind, four to the shortest wave.
+const SAMPLES: usize = 65_536;
+
 /// The cases of this chapter.
 pub fn cases() -> Vec<Case> {
     let mut cases = Vec::new();
@@ -38,6 +48,21 @@ pub fn cases() -> Vec<Case> {
         let found = outcome.channel("blades.flow", "max");
         sheet.relative("its peak", "m/s", [16.79179008, found], 1e-9);
     }));
+    for (class, highest, deviation, share) in TURBULENT {
+        cases.push(Case::new(CHAPTER, KAIMAL, move |sheet| {
+            // One period of the wind, sampled evenly: its variance is that of its lines.
+            let flow = format!(
+                "{{ turbulence: {{ mean: 12 m/s, turbulence_class: {class}, length_scale: 340.2 m, highest_frequency: {highest} Hz, seed: 3 }} }}"
+            );
+            let step = 0.25 / highest;
+            let scenario = rotor(SAMPLES as f64 * step, step, 1.5, 40.0, &flow, "0 deg");
+            let column = run_well(&scenario).series().column("blades.flow");
+            let squares = column[..SAMPLES].iter().map(|flow| (flow - 12.0).powi(2));
+            let found = (squares.sum::<f64>() / SAMPLES as f64).sqrt();
+            let what = format!("deviation of the wind below {highest} Hz, class {class}");
+            sheet.relative(what, "m/s", [deviation * share.sqrt(), found], 1e-9);
+        }));
+    }
     for (ratio, pitch, coefficient) in COEFFICIENTS {
         cases.push(Case::new(CHAPTER, SLOOTWEG, move |sheet| {
             let scenario = rotor(1.0, 0.5, ratio, 10.0, "10 m/s", &format!("{pitch} deg"));
