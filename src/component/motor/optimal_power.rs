@@ -185,7 +185,7 @@ mod tests {
         assert!((coefficient - 177964.760634).abs() < 1e-3);
         let generator = OptimalPower::new(&GeneratorFigures {
             coefficient,
-            torque_limit: Some(1.0e6),
+            torque_limit: Some(2.0e6),
             cut_in: None,
             rated: None,
         });
@@ -193,7 +193,7 @@ mod tests {
         let power = at(&generator, speed) * speed;
         let wind = 0.5 * density * std::f64::consts::PI * radius.powi(2) * 12.0_f64.powi(3);
         assert!((power / wind - cp).abs() < 1e-9);
-        assert!((generator.boundaries()[1] - (1.0e6 / coefficient).sqrt()).abs() < 1e-12);
+        assert!((generator.boundaries()[1] - (2.0e6 / coefficient).sqrt()).abs() < 1e-12);
     }
 
     // NREL/TP-500-38060 (2009), figures read in data files that cite it: 0.0255764 N*m/rpm2,
