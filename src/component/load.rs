@@ -82,7 +82,7 @@ pub enum LoadLaw {
         /// A controller of the pitch.
         pitch_loop: Option<Box<pitch::PitchLoop>>,
         /// Power coefficient over tip speed ratio and pitch.
-        coefficient: power_coefficient::PowerCoefficient,
+        coefficient: Box<power_coefficient::PowerCoefficient>,
     },
     /// By the body's angle: a mean against the motion, and harmonics of a turn.
     Periodic {
@@ -125,7 +125,7 @@ impl LoadLaw {
             }
             Self::Curve { points } => Some(Law::LoadCurve(curve::LoadCurve::new(points))),
             Self::AxialRotor { radius, density, coefficient, .. } => Some(Law::AxialRotor(
-                axial_rotor::AxialRotor::new(*radius, *density, coefficient.clone()),
+                axial_rotor::AxialRotor::new(*radius, *density, (**coefficient).clone()),
             )),
             Self::Periodic { harmonics, .. } => {
                 Some(Law::Periodic(periodic::Periodic::new(harmonics)))

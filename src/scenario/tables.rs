@@ -116,11 +116,8 @@ impl Tables {
     /// Gives every rotor with a table of power coefficients in a file its rows.
     fn fill_coefficients(&mut self, scenario: &mut Scenario, faults: &mut Diagnostics) {
         for load in &mut scenario.loads {
-            let LoadLaw::AxialRotor { coefficient: PowerCoefficient::Rows(rows), .. } =
-                &mut load.law
-            else {
-                continue;
-            };
+            let LoadLaw::AxialRotor { coefficient, .. } = &mut load.law else { continue };
+            let PowerCoefficient::Rows(rows) = &mut **coefficient else { continue };
             let Some(asked) = rows.file().cloned() else { continue };
             match self.coefficients(&asked) {
                 Ok(found) => *rows = found,

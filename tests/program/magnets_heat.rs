@@ -154,7 +154,7 @@ pub fn slipping(coupling: &str, top: &str) -> Outcome {
 pub const WARM: &str = "damping: 0.8 N*m*s/rad, rated_temperature: 20 degC, remanence_coefficient: -0.12 %/K, \
                         thermal: { capacity: 30 J/K, resistance: 0.2 K/W, ambient: 20 degC }";
 
-/// Its speed, phase and temperature after 1 s by SciPy: DOP853 at 1e-12; Radau agrees.
+/// Its speed, phase and temperature after 1 s by `SciPy`: DOP853 at 1e-12; Radau agrees.
 pub const SLIPS_WARM: [f64; 3] = [59.56665408969994, 299.26402162918106, 110.80348930670995];
 
 #[test]

@@ -240,7 +240,7 @@ fn inertia_vanishes_from_strongly_damped_slip() {
 }
 
 /// End of twice the pull-out torque, and from the first slip to being back short of the peak for
-/// good, both without dimension, at damping 2: by SciPy (DOP853, rtol 1e-12, events on the phase).
+/// good, both without dimension, at damping 2: by `SciPy` (DOP853, rtol 1e-12, events on the phase).
 pub const SPELLS: [(f64, f64); 2] = [(8.0, 1.4185597613278667), (13.0, 9.109119127920877)];
 
 /// A coupling pushed to slip; `limit` is the time it may slip, s.

@@ -201,6 +201,7 @@ fn axial_rotor(fields: &mut Fields<'_>) -> LoadLaw {
         pitch_loop.check(&coefficient, fields);
     }
     let pitch_loop = pitch_loop.map(Box::new);
+    let coefficient = Box::new(coefficient);
     LoadLaw::AxialRotor { radius, density, flow, pitch, pitch_loop, coefficient }
 }
 
