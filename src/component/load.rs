@@ -37,7 +37,6 @@ pub struct Load {
 
 /// How a load's torque comes about.
 #[derive(Clone, Debug, PartialEq)]
-#[allow(clippy::large_enum_variant, reason = "a train holds a handful, read once")]
 pub enum LoadLaw {
     /// `torque*|w/speed|^exponent` against the motion; torque worked out from power where that is given.
     PowerLaw {
