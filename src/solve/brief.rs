@@ -132,7 +132,10 @@ impl<'s> Look<'s> {
             let values = Three(self.samples.map(|sample| {
                 guards::value(guard, &evaluator, mode, conditions, &sample.state, &sample.frame)
             }));
-            values.reach().0 > TRIP
+            let (low, high) = values.span();
+            let range = high - low;
+            // What is at rest on its mark (a law of a body that is held) does not move off it.
+            low - range > TRIP || range < 0.1 * TRIP && low > -0.5 * TRIP
         })
     }
 

@@ -26,6 +26,15 @@ const RECORDED: f64 = 0.01;
 
 const OUTCOMES: &[Outcome] = &[
     Outcome {
+        stem: "agitator_jam",
+        status: 0,
+        gear: "gear",
+        slips: 2_530..=2_650,
+        state: "synchronous",
+        figures: &[("channels/gear.magnet_temperature/max", 100.4)],
+        failing: &[],
+    },
+    Outcome {
         stem: "conveyor_stop",
         status: 0,
         gear: "gear",

@@ -336,3 +336,26 @@ fn turbulence_goes_into_the_speed_and_the_limit_into_the_gear() {
         assert_eq!(found.number("channels/rotor.speed/max") > 52.0 * RPM, seed == 8);
     }
 }
+
+#[test]
+fn magnets_warm_up_by_slipping_and_the_gear_slips_on_without_a_protection() {
+    let found = run("agitator_jam", &[]);
+    // Closed form: with the outer rotor held, 1000 rpm over 5.5 at the damper 5 x/(1 + (x/10)^2), and
+    // of the losses those of the inner rotor's half, 3 + 7 + 6 W more or less; one node from 60 to
+    // 100 degC at that power, RC = 256 s. The slip speed swings, which costs the damper some of it.
+    let slip = 1000.0 * RPM / 5.5;
+    let power = 5.0 * slip * slip / (1.0 + slip * slip / 100.0) + 16.0;
+    let end = 35.0 + 0.8 * power;
+    let rise = 256.0 * ((end - 60.0) / (end - 100.0)).ln();
+    same(found.number("gears/gear/slipping_time"), rise, 0.1);
+    // Poles slip at that speed times 22 until then.
+    let poles = 22.0 * slip / std::f64::consts::TAU * found.number("gears/gear/slipping_time");
+    same(found.number("gears/gear/slips"), poles, 0.05);
+    // The drive off, the gear cools with RC.
+    let (hottest, since) = (100.38, 60.0 - 40.99);
+    let cooled = 35.0 + (hottest - 35.0) * f64::exp(-since / 256.0);
+    same(found.last("gear.magnet_temperature"), cooled, 2e-3);
+    let hot = run("agitator_jam", &["protections.hot_magnets.when.at_least=200 degC"]);
+    assert_eq!(hot.state("gear"), "slipping");
+    assert!(hot.last("gear.magnet_temperature") > 110.0);
+}
