@@ -279,6 +279,16 @@ pub struct Event {
     pub text: String,
 }
 
+impl Event {
+    /// How a friction element's event ends that turned round without coming to rest.
+    pub const OTHER_WAY: &str = "slides the other way";
+
+    /// True for a friction element that slid before, the other way: it did not break loose.
+    pub fn turns_round(&self) -> bool {
+        self.kind == EventKind::Sliding && self.text.ends_with(Self::OTHER_WAY)
+    }
+}
+
 /// Kinds of events.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum EventKind {

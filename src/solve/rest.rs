@@ -200,7 +200,7 @@ fn tell(
             }
             (FrictionMode::Forward, FrictionMode::Backward)
             | (FrictionMode::Backward, FrictionMode::Forward) => {
-                (EventKind::Sliding, format!("`{name}` slides the other way"))
+                (EventKind::Sliding, format!("`{name}` {}", Event::OTHER_WAY))
             }
             _ => continue,
         };

@@ -171,18 +171,22 @@ fn what_holds_nothing_at_the_start_is_not_drawn_as_stuck() {
         text: String::new(),
     };
     result.events = vec![event(0.4, EventKind::Sliding), event(0.9, EventKind::Stuck)];
-    let bars = |idle: Vec<String>| -> Vec<(f64, f64)> {
+    let end = result.end_time;
+    let bars = |result: &RunResult, idle: Vec<String>| -> Vec<(f64, f64)> {
         let train = lodeshaft::render::chart::train::Train { idle_at_start: idle, ..train() };
         let traces = run.traces([0.0, END]);
-        let chart = pick::run(&result, &traces, &train, &Display::default(), "run");
+        let chart = pick::run(result, &traces, &train, &Display::default(), "run");
         let row = chart.rows.iter().find_map(|row| match row {
             Row::Bars { label, bars, .. } if label == "Holding stuck" => Some(bars),
             _ => None,
         });
         row.unwrap().iter().map(|bar| (bar.start, bar.end)).collect()
     };
-    assert_eq!(bars(vec!["holding".to_owned()]), [(0.9, result.end_time)]);
-    assert_eq!(bars(Vec::new()), [(0.0, 0.4), (0.9, result.end_time)]);
+    assert_eq!(bars(&result, vec!["holding".to_owned()]), [(0.9, end)]);
+    assert_eq!(bars(&result, Vec::new()), [(0.0, 0.4), (0.9, end)]);
+    // What turns round without coming to rest slid before.
+    result.events[0].text = format!("`holding` {}", Event::OTHER_WAY);
+    assert_eq!(bars(&result, Vec::new()), [(0.9, end)]);
 }
 
 #[test]

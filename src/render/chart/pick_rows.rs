@@ -122,7 +122,7 @@ fn spans(
         } else if event.kind == closes {
             if let Some(start) = start.take() {
                 bars.push(bar(start, event.time));
-            } else if first && begun {
+            } else if first && begun && !event.turns_round() {
                 // The first event ends the state, so the run began in it.
                 bars.push(bar(0.0, event.time));
             }
@@ -156,7 +156,7 @@ fn state_rows(result: &RunResult, train: &Train, window: [f64; 2]) -> Vec<Row> {
         if rows.len() < STATE_ROWS
             && bars.iter().any(|bar| bar.end > window[0] && bar.start < window[1])
         {
-            let label = format!("{} {word}", capital(&words(&event.of)));
+            let label = format!("{} {word}", capital(&words(&event.of.replace('.', " "))));
             rows.push(Row::Bars { label, kind: BarKind::State, bars });
         }
     }
